@@ -1,0 +1,35 @@
+"""Canonical bytes, SHA-256 and the one rounding rule.
+
+Floats may differ in the last place between platforms, so whatever is printed or digested is rounded
+here and nowhere else; decisions are made on the unrounded values.
+"""
+
+import hashlib
+import json
+import math
+from typing import Any
+
+SIGNIFICANT_DIGITS = 6
+
+
+def rounded(value: float) -> float | None:
+    """Round to 6 significant digits; what is not finite has no number and becomes None."""
+    if not math.isfinite(value):
+        return None
+    return float(f"{value:.6g}")
+
+
+def canonical_bytes(value: Any) -> bytes:
+    """Give the one JSON text of a value: sorted keys, no spaces, UTF-8, no NaN."""
+    text = json.dumps(value, sort_keys=True, separators=(",", ":"), ensure_ascii=False, allow_nan=False)
+    return text.encode()
+
+
+def sha256(data: bytes) -> str:
+    """Give the SHA-256 of bytes in hexadecimal."""
+    return hashlib.sha256(data).hexdigest()
+
+
+def digest(value: Any) -> str:
+    """Give the SHA-256 of a value's canonical bytes."""
+    return sha256(canonical_bytes(value))
