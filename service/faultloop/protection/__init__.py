@@ -1,0 +1,1 @@
+"""What a protective device guarantees.  Knows currents and times, no installation."""

@@ -1,0 +1,1 @@
+"""What a set of wiring rules asks: data first, one TOML a rule set and edition, and one loader."""

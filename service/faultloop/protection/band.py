@@ -1,0 +1,139 @@
+"""Band: the least and greatest operating time that a standard guarantees at a current."""
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from faultloop.electrical.measurement import Array
+
+NEVER = np.inf
+
+
+@dataclass(frozen=True, slots=True)
+class Band:
+    """Guaranteed operating times of one device as steps.
+
+    Attributes
+    ----------
+    slow : tuple of (current_a, time_s)
+        At this current or above the device operates within the time; currents rise, times fall.
+    fast : tuple of (current_a, time_s)
+        At this current or below the device does not operate within the time; currents rise, times fall.
+    """
+
+    slow: tuple[tuple[float, float], ...]
+    fast: tuple[tuple[float, float], ...] = ()
+
+    def __post_init__(self) -> None:
+        for name, steps in (("slow", self.slow), ("fast", self.fast)):
+            for (i1, t1), (i2, t2) in zip(steps, steps[1:], strict=False):
+                if not (i1 < i2 and t1 > t2):
+                    raise ValueError(f"{name} edge must rise in current and fall in time at {i2:g} A")
+
+    def with_point(self, current_a: float, time_s: float) -> "Band":
+        """Give the band with a published point in place of its own at that time.
+
+        A point that another one makes idle (a greater current for no shorter time) is dropped, so that
+        the edge stays a falling step.
+        """
+        kept = [(i, t) for i, t in self.slow if t != time_s]
+        kept = [(i, t) for i, t in kept if not (i <= current_a and t < time_s)]
+        kept = [(i, t) for i, t in kept if not (i >= current_a and t > time_s)]
+        return Band(tuple(sorted([*kept, (current_a, time_s)])), self.fast)
+
+
+@dataclass(frozen=True, slots=True)
+class BandTable:
+    """Many bands compiled to arrays, so that a device is picked by its row."""
+
+    slow_current: Array
+    slow_time: Array
+    fast_current: Array
+    fast_time: Array
+
+    def greatest_time(self, row: NDArray[np.intp], current_a: Array) -> Array:
+        """Greatest guaranteed operating time at a current.
+
+        Parameters
+        ----------
+        row : (n,) array of int
+            Device rows.
+        current_a : (n,) array
+            Prospective current, r.m.s. [A].
+
+        Returns
+        -------
+        (n,) array
+            Time [s] of the last tested point at or below the current (the standard promises nothing
+            between its points); inf below the first point; nan where the current is unknown.
+        """
+        passed = (current_a[:, None] >= self.slow_current[row]).sum(axis=1)
+        time = self.slow_time[row, passed]
+        return np.where(np.isnan(current_a), np.nan, time)
+
+    def least_time(self, row: NDArray[np.intp], current_a: Array) -> Array:
+        """Least operating time at a current: the device does not operate sooner.
+
+        Parameters
+        ----------
+        row : (n,) array of int
+            Device rows.
+        current_a : (n,) array
+            Prospective current, r.m.s. [A].
+
+        Returns
+        -------
+        (n,) array
+            Time [s] of the first tested point at or above the current; 0 above the last point; nan where
+            the current is unknown.
+        """
+        passed = (current_a[:, None] > self.fast_current[row]).sum(axis=1)
+        time = self.fast_time[row, passed]
+        return np.where(np.isnan(current_a), np.nan, time)
+
+    def operating_current(self, row: NDArray[np.intp], time_s: Array) -> Array:
+        """Least current for which operation within a time is guaranteed: the band's inverse.
+
+        Parameters
+        ----------
+        row : (n,) array of int
+            Device rows.
+        time_s : (n,) array
+            Required disconnection time [s].
+
+        Returns
+        -------
+        (n,) array
+            I_a [A]; inf where no current guarantees the time; nan where the time is unknown.
+        """
+        slower = (self.slow_time[row, 1:] > time_s[:, None]).sum(axis=1)
+        current = self.slow_current[row, slower]
+        return np.where(np.isnan(time_s), np.nan, np.where(np.isnan(current), np.inf, current))
+
+
+def compile_bands(bands: list[Band]) -> BandTable:
+    """Lay bands out as arrays, row by row; the last row is no device, which never operates.
+
+    Padding is nan in currents (nothing compares with it) and 0 in times (no time is slower).
+    """
+    count = len(bands) + 1
+    width = max(len(band.slow) for band in bands) + 1
+    fast_width = max(len(band.fast) for band in bands) + 1
+    slow_current = np.full((count, width), np.nan)
+    slow_time = np.zeros((count, width + 1))
+    slow_time[:, 0] = NEVER
+    fast_current = np.full((count, fast_width), np.nan)
+    fast_time = np.zeros((count, fast_width + 1))
+    fast_time[-1] = NEVER
+    for row, band in enumerate(bands):
+        for at, (current, time) in enumerate(band.slow):
+            slow_current[row, at], slow_time[row, at + 1] = current, time
+        for at, (current, time) in enumerate(band.fast):
+            fast_current[row, at], fast_time[row, at] = current, time
+    return BandTable(slow_current, slow_time, fast_current, fast_time)
+
+
+def faster(first: Array, second: Array) -> Array:
+    """Time of two devices of which either interrupts: the shorter one, an unknown time being no help."""
+    return np.fmin(first, second)

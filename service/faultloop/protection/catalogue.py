@@ -1,0 +1,74 @@
+"""All devices compiled to one table of bands for each rule set, so that a device is a row."""
+
+from dataclasses import dataclass
+from functools import lru_cache
+from typing import cast
+
+from faultloop.digests import digest
+from faultloop.protection.band import Band, BandTable, compile_bands
+from faultloop.protection.breakers import breaker_band, breaker_table
+from faultloop.protection.designations import Breaker, Characteristic, Fuse, OvercurrentDevice
+from faultloop.protection.fuses import fuse_band, fuse_families
+from faultloop.protection.residual import DELAYS, residual_band, residual_table
+from faultloop.rules.loader import shipped
+from faultloop.rules.sheets import RuleSet
+
+
+@dataclass(frozen=True, slots=True)
+class Catalogue:
+    """Compiled devices: overcurrent rows by rule set and device, residual rows by delay."""
+
+    overcurrent: BandTable
+    residual: BandTable
+    rows: dict[tuple[str, OvercurrentDevice], int]
+    bands: dict[tuple[str, OvercurrentDevice], Band]
+    residual_rows: dict[str, int]
+    digest: str
+
+
+def listed_devices() -> list[OvercurrentDevice]:
+    """Every overcurrent device held here, family by family."""
+    breakers: list[OvercurrentDevice] = [
+        Breaker(cast(Characteristic, c), rated) for c in "BCD" for rated in breaker_table().ratings_a
+    ]
+    fuses: list[OvercurrentDevice] = [
+        Fuse(f.fuse_system, r.rated_current_a) for f in fuse_families().values() for r in f.rating
+    ]
+    return breakers + fuses
+
+
+def device_band(device: OvercurrentDevice, rules: RuleSet | None = None) -> Band:
+    """Band of a device; currents that the rule set prints for a time stand in place of the standard's."""
+    band = _standard_band(device)
+    for row in rules.operating_current if rules else ():
+        if device.designation in row.devices:
+            band = band.with_point(row.value, row.time_s)
+        elif isinstance(device, Breaker) and device.characteristic in row.devices:
+            band = band.with_point(row.value * device.rated_current_a, row.time_s)
+    return band
+
+
+def _standard_band(device: OvercurrentDevice) -> Band:
+    if isinstance(device, Breaker):
+        return breaker_band(device.characteristic, device.rated_current_a)
+    ratings = fuse_families()[device.fuse_system].rating
+    return fuse_band(next(r for r in ratings if r.rated_current_a == device.rated_current_a))
+
+
+@lru_cache(maxsize=1)
+def catalogue() -> Catalogue:
+    """Compile every device under every shipped rule set; the last row of each table is no device."""
+    bands = {
+        (key, device): device_band(device, loaded.rules)
+        for key, loaded in shipped().items()
+        for device in listed_devices()
+    }
+    told = [breaker_table(), *fuse_families().values(), residual_table()]
+    return Catalogue(
+        overcurrent=compile_bands(list(bands.values())),
+        residual=compile_bands([residual_band("general"), residual_band("selective"), Band(())]),
+        rows={key: row for row, key in enumerate(bands)},
+        bands=bands,
+        residual_rows={delay: row for row, delay in enumerate(DELAYS)},
+        digest=digest([sheet.model_dump(mode="json") for sheet in told]),
+    )

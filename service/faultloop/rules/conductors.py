@@ -1,0 +1,75 @@
+"""Conductor tables: resistance per length, service temperature and adiabatic factor k."""
+
+from functools import lru_cache
+from importlib import resources
+from typing import Literal
+
+from faultloop.rules.strict import Sheet, Sourced, read_sheet, read_table, refuse_duplicates
+
+Material = Literal["copper", "aluminium"]
+Insulation = Literal["pvc", "xlpe", "epr", "rubber", "mineral"]
+
+
+class ResistanceRow(Sourced):
+    """Greatest resistance at 20 °C of one rigid conductor."""
+
+    material: Material
+    area_mm2: float
+    value: float
+    unit: Literal["ohm/km"]
+
+
+class TemperatureRow(Sourced):
+    """Greatest service temperature of one insulation."""
+
+    insulation: Insulation
+    value: float
+    unit: Literal["degC"]
+
+
+class AdiabaticRow(Sourced):
+    """Adiabatic factor of a conductor in a cable."""
+
+    material: Material
+    insulation: Insulation
+    value: float
+    unit: Literal["A*s^0.5/mm2"]
+
+
+class ConductorTables(Sheet):
+    """Everything that the file of conductors says."""
+
+    resistance: list[ResistanceRow]
+    service_temperature: list[TemperatureRow]
+    adiabatic: list[AdiabaticRow]
+
+
+@lru_cache(maxsize=1)
+def conductor_tables() -> ConductorTables:
+    """Load the conductor tables that come with the package."""
+    file = resources.files("faultloop.rules") / "data" / "conductors.toml"
+    tables = read_sheet(ConductorTables, read_table(file), file.name)
+    refuse_duplicates(file.name, "resistance", [(r.material, r.area_mm2) for r in tables.resistance])
+    refuse_duplicates(file.name, "service_temperature", [(r.insulation,) for r in tables.service_temperature])
+    refuse_duplicates(file.name, "adiabatic", [(r.material, r.insulation) for r in tables.adiabatic])
+    return tables
+
+
+@lru_cache(maxsize=4096)
+def ohm_per_km(material: str, area_mm2: float) -> float | None:
+    """Resistance per length at 20 °C of a standard size; None for any other."""
+    rows = conductor_tables().resistance
+    return next((r.value for r in rows if (r.material, r.area_mm2) == (material, area_mm2)), None)
+
+
+@lru_cache(maxsize=64)
+def service_temperature(insulation: str) -> float | None:
+    """Greatest service temperature of an insulation [°C]; None where the table has none."""
+    return next((r.value for r in conductor_tables().service_temperature if r.insulation == insulation), None)
+
+
+@lru_cache(maxsize=64)
+def adiabatic_k(material: str, insulation: str) -> float | None:
+    """Adiabatic factor k of a core in a cable [A·s^½/mm²]; None where the table has none."""
+    rows = conductor_tables().adiabatic
+    return next((r.value for r in rows if (r.material, r.insulation) == (material, insulation)), None)

@@ -1,0 +1,82 @@
+"""The one loader of rule sets: strict, extending, dated, digested."""
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+from functools import lru_cache
+from importlib import resources
+from importlib.resources.abc import Traversable
+from pathlib import Path
+
+from faultloop.digests import digest
+from faultloop.rules.sheets import RuleSet
+from faultloop.rules.strict import DataFileError, read_sheet, read_table, refuse_duplicates
+
+Table = dict[str, object]
+
+
+@dataclass(frozen=True, slots=True)
+class LoadedRules:
+    """A rule set with the digest of everything that it says."""
+
+    rules: RuleSet
+    digest: str
+
+
+def load(files: Iterable[Traversable | Path]) -> dict[str, LoadedRules]:
+    """Load rule-set files by `id:edition`; one file may extend another by name and override values."""
+    tables: dict[str, Table] = {}
+    names: dict[str, str] = {}
+    for file in files:
+        table = read_table(file)
+        key = f"{table.get('id')}:{table.get('edition')}"
+        if key in tables:
+            raise DataFileError(f"{file.name}: id and edition {key} stand already in {names[key]}")
+        tables[key], names[key] = table, file.name
+    return {key: _checked(_resolved(key, tables, names, ()), names[key]) for key in tables}
+
+
+def _resolved(key: str, tables: dict[str, Table], names: dict[str, str], above: tuple[str, ...]) -> Table:
+    table = dict(tables[key])
+    base = table.pop("extends", None)
+    if base is None:
+        return table
+    if not isinstance(base, str) or base not in tables:
+        raise DataFileError(f"{names[key]}: extends: no rule set {base!r} (write id:edition)")
+    if base in (*above, key):
+        raise DataFileError(f"{names[key]}: extends: {base} leads back to itself")
+    return _overlaid(_resolved(base, tables, names, (*above, key)), table)
+
+
+def _overlaid(base: Table, over: Table) -> Table:
+    merged = dict(base)
+    for key, value in over.items():
+        below = merged.get(key)
+        # A parameter is replaced whole: half of an old source under a new value would be a lie.
+        deeper = isinstance(value, dict) and isinstance(below, dict) and "value" not in below
+        merged[key] = _overlaid(below, value) if deeper else value  # type: ignore[arg-type]
+    return merged
+
+
+def _checked(table: Table, name: str) -> LoadedRules:
+    rules = read_sheet(RuleSet, table, name)
+    rows = rules.disconnection.table
+    refuse_duplicates(name, "disconnection.table", [(r.earthing, r.current, r.above_v) for r in rows])
+    printed = [(device, row.time_s) for row in rules.operating_current for device in row.devices]
+    refuse_duplicates(name, "operating_current", list(printed))
+    return LoadedRules(rules, digest(rules.model_dump(mode="json")))
+
+
+@lru_cache(maxsize=1)
+def shipped() -> dict[str, LoadedRules]:
+    """Load the rule sets that come with the package."""
+    folder = resources.files("faultloop.rules") / "data" / "sets"
+    return load(sorted((f for f in folder.iterdir() if f.name.endswith(".toml")), key=lambda f: f.name))
+
+
+def resolve(name: str) -> LoadedRules | None:
+    """Find a rule set by `id:edition`, or the newest edition by `id` alone."""
+    rules = shipped()
+    if name in rules:
+        return rules[name]
+    editions = sorted(key for key, loaded in rules.items() if loaded.rules.id == name)
+    return rules[editions[-1]] if editions else None

@@ -1,0 +1,165 @@
+"""The shape of a rule-set file: what may stand in it, and in which unit."""
+
+from typing import Annotated, Literal
+
+from pydantic import AfterValidator, Field
+
+from faultloop.rules.strict import Parameter, Sheet, Sourced, Text
+
+
+def _in_unit(unit: str) -> AfterValidator:
+    def check(parameter: Parameter) -> Parameter:
+        if parameter.unit != unit:
+            raise ValueError(f"unit must be {unit!r}, not {parameter.unit!r}")
+        return parameter
+
+    return AfterValidator(check)
+
+
+Ratio = Annotated[Parameter, _in_unit("1")]
+Volts = Annotated[Parameter, _in_unit("V")]
+Amperes = Annotated[Parameter, _in_unit("A")]
+Milliamperes = Annotated[Parameter, _in_unit("mA")]
+Seconds = Annotated[Parameter, _in_unit("s")]
+Ohms = Annotated[Parameter, _in_unit("ohm")]
+Percent = Annotated[Parameter, _in_unit("%")]
+PerKelvin = Annotated[Parameter, _in_unit("1/K")]
+Celsius = Annotated[Parameter, _in_unit("degC")]
+
+
+class VoltageFactors(Sheet):
+    """Factors on the nominal voltage for the least and the greatest current."""
+
+    least: Ratio
+    greatest: Ratio
+
+
+class TimeRow(Sourced):
+    """One cell of the table of disconnection times of final circuits."""
+
+    earthing: Literal["TN", "TT"]
+    current: Literal["ac", "dc"]
+    above_v: float
+    to_v: float | None = None
+    value: float
+    unit: Literal["s"]
+
+
+class Disconnection(Sheet):
+    """Required disconnection times and the circuits that the table is for."""
+
+    table: list[TimeRow] = Field(min_length=1)
+    distribution_tn: Seconds
+    distribution_tt: Seconds
+    scope_socket_outlets: Amperes
+    scope_fixed_equipment: Amperes
+    touch_voltage_ac: Volts
+
+
+class NominalVoltages(Sourced):
+    """Nominal voltages to earth that pick a row of the table; any other is asked about."""
+
+    values: list[float] = Field(min_length=1)
+    unit: Literal["V"]
+
+
+class AdditionalProtection(Sheet):
+    """Which outlets need a sensitive residual device, and whom the rule exempts."""
+
+    residual_current: Milliamperes
+    socket_outlets_to: Amperes
+    mobile_outdoors_to: Amperes
+    exempt: list[Literal["instructed", "skilled", "designated-equipment"]]
+    exempt_clause: Text
+
+
+class Electrode(Sheet):
+    """How far an earth-electrode reading is trusted."""
+
+    stability_threshold: Ohms
+    season_factor: Ratio
+    source_allowance: Ohms
+
+
+class Instrument(Sheet):
+    """Uncertainty assumed (k = 2) where the request states no instrument."""
+
+    percent: Percent
+    constant: Ohms
+
+
+class Instruments(Sheet):
+    """Uncertainty by method of measurement."""
+
+    high_current: Instrument
+    no_trip: Instrument
+    continuity: Instrument
+    electrode: Instrument
+    residual_time: Percent
+    no_trip_uplift: Ohms
+
+
+class Temperature(Sheet):
+    """Constants of the temperature correction."""
+
+    alpha_20: PerKelvin
+    test_default: Celsius
+    two_thirds: Ratio
+    four_fifths: Ratio
+
+
+class Policy(Sheet):
+    """The decision made where the request asks for none."""
+
+    temperature: Literal["split", "two-thirds", "four-fifths", "none"]
+    decision: Literal["guarded", "simple"]
+    coverage: float = Field(ge=0.5, le=0.9999)
+
+
+class Expected(Sheet):
+    """Readings beyond which the fault path is taken as broken."""
+
+    tn_loop: Ohms
+
+
+class Urgency(Sheet):
+    """Constants that order work; they permit nothing."""
+
+    body_dry: Ohms
+    body_wet: Ohms
+    sustained_current: Milliamperes
+
+
+class OperatingCurrent(Sourced):
+    """A current that the rule set itself prints for a device and a time."""
+
+    devices: list[Text] = Field(min_length=1)
+    time_s: float = Field(gt=0)
+    value: float = Field(gt=0)
+    unit: Literal["A", "x In"]
+
+
+class RuleSet(Sheet):
+    """One edition of one set of wiring rules."""
+
+    id: Annotated[str, Field(pattern=r"^[a-z0-9]+(-[a-z0-9]+)*$")]
+    edition: Annotated[str, Field(pattern=r"^[0-9]{4}(-[0-9]{2})?$")]
+    title: Text
+    editions_named: Text
+    voltage_factor: VoltageFactors
+    nominal_voltage_to_earth: NominalVoltages
+    disconnection: Disconnection
+    additional_protection: AdditionalProtection
+    electrode: Electrode
+    instruments: Instruments
+    temperature: Temperature
+    policy: Policy
+    expected: Expected
+    urgency: Urgency
+    clauses: dict[str, Text]
+    operating_current: list[OperatingCurrent] = Field(default_factory=list)
+
+    @property
+    def key(self) -> str:
+        """Identifier with edition, as stored with every verdict."""
+        return f"{self.id}:{self.edition}"
