@@ -1,0 +1,1 @@
+"""The job: measured points -> quantities -> findings -> verdict."""

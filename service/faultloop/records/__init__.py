@@ -1,0 +1,1 @@
+"""What is remembered: tables, migrations, the writer, queries. Keeps bytes; computes nothing."""

@@ -117,9 +117,11 @@ class Policy(Sheet):
 
 
 class Expected(Sheet):
-    """Readings beyond which the fault path is taken as broken."""
+    """What a reading is held against before it is believed."""
 
     tn_loop: Ohms
+    length_uncertainty: Percent
+    least_plausible: Ohms
 
 
 class Urgency(Sheet):

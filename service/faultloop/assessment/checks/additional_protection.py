@@ -1,0 +1,72 @@
+"""Has the outlet the sensitive residual device that the rule set asks for?"""
+
+import numpy as np
+
+from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
+from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
+from faultloop.assessment.points import Choice, Feeds, Flags, Ints, Number, Points, Role, Users
+from faultloop.assessment.quantities import Quantities
+from faultloop.electrical.measurement import Interval
+
+REASONS = (
+    *COMPARISON,
+    *PREREQUISITES,
+    "exempt",
+    "absent",
+    "use-missing",
+    "rated-current-missing",
+    "device-over-time",
+    "operating-time-missing",
+)
+_DESIGNATED, _INSTRUCTED, _SKILLED = 1, 2, 4
+
+
+def _applies(points: Points, q: Quantities) -> Flags:
+    feeds, rated = points.choice(Choice.FEEDS), points.number(Number.RATED_CURRENT)
+    sockets = ((feeds == Feeds.SOCKET_OUTLETS) | (feeds == Feeds.UNKNOWN)) & ~(
+        rated > q.rule("additional_sockets")
+    )
+    mobile = (feeds == Feeds.MOBILE_OUTDOORS) & ~(rated > q.rule("additional_mobile"))
+    return (points.choice(Choice.ROLE) != Role.DISTRIBUTION) & (sockets | mobile)
+
+
+def _exemption(points: Points, q: Quantities) -> Ints:
+    """Condition bits under which the rule set exempts the outlet; 0 where it does not."""
+    allowed = q.given.rule.table.exempt[points.choice(Choice.RULES)]
+    users, designated = points.choice(Choice.USERS), points.choice(Choice.DESIGNATED) == 1
+    supervised = (users == Users.SKILLED) & ((allowed & _SKILLED) > 0)
+    supervised |= (users == Users.INSTRUCTED) & ((allowed & _INSTRUCTED) > 0)
+    by_use = designated & ((allowed & _DESIGNATED) > 0)
+    bits = np.where(supervised, 1 << Condition.SUPERVISION, 0) | np.where(
+        by_use, 1 << Condition.DESIGNATED_EQUIPMENT, 0
+    )
+    # Mobile equipment outdoors has no exemption.
+    return np.where(points.choice(Choice.FEEDS) == Feeds.SOCKET_OUTLETS, bits, 0).astype(np.int64)
+
+
+def _judge(points: Points, q: Quantities) -> Judged:
+    rated, limit = points.number(Number.RESIDUAL_LEAST_MA), q.rule("additional_ma")
+    sensitive = rated <= limit
+    own = points.number(Number.RESIDUAL_MA) == rated
+    bits = np.where(sensitive, 0, _exemption(points, q)).astype(np.int64)
+    cases = Cases(REASONS)
+    prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)
+    cases.when(bits > 0, Standing.MET, "exempt")
+    unknown_use = points.choice(Choice.FEEDS) == Feeds.UNKNOWN
+    cases.when(~sensitive & unknown_use, Standing.UNDETERMINED, "use-missing")
+    cases.when(~sensitive & np.isnan(points.number(Number.RATED_CURRENT)), Standing.UNDETERMINED, "rated-current-missing")
+    cases.when(np.isnan(rated), Standing.UNMET, "absent")
+    cases.when(sensitive & own & q.residual.over_limit, Standing.UNMET, "device-over-time", defect=True)
+    cases.when(sensitive & ~(own & q.residual.tested), Standing.UNDETERMINED, "operating-time-missing")
+    return cases.settle(Interval(rated, rated, rated), limit, bits)
+
+
+CHECK = Check(
+    id="additional-protection",
+    quantity="rated_residual_operating_current_ma",
+    unit="mA",
+    sense=AT_MOST,
+    reasons=REASONS,
+    applies=_applies,
+    judge=_judge,
+)

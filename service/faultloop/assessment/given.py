@@ -1,0 +1,47 @@
+"""What was given at n points: the readings as intervals, and each point's rule values."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from faultloop.assessment.points import READINGS, Bound, Choice, Earthing, Flags, Points
+from faultloop.assessment.rule_table import RuleValues, rule_table
+from faultloop.electrical.measurement import Array, Interval, expanded_uncertainty
+
+
+@dataclass(frozen=True, slots=True)
+class Given:
+    """Readings (R, n) with their intervals, and the rule set's values."""
+
+    points: Points
+    rule: RuleValues
+    uncertainty: Array
+    known: Flags
+    least: Array
+    greatest: Array
+    tt: Flags
+
+    def reading(self, which: int) -> Interval:
+        """Interval of one reading; nan where it was not taken, open where it is over or under range."""
+        return Interval(self.least[which], self.greatest[which], self.points.value[which])
+
+
+def given(points: Points) -> Given:
+    """Turn readings into intervals: the stated instrument's uncertainty, else the rule set's default."""
+    rule = rule_table().of(points)
+    rows, rules = np.arange(READINGS)[:, None], points.choice(Choice.RULES)[None, :]
+    table = rule.table
+    percent = np.where(np.isnan(points.percent), table.percent[rules, rows, points.method], points.percent)
+    constant = np.where(np.isnan(points.constant), table.constant[rules, rows, points.method], points.constant)
+    u = expanded_uncertainty(points.value, percent, constant) * points.coverage
+    least = np.where(points.bound == Bound.BELOW, 0.0, np.maximum(points.value - u, 0.0))
+    greatest = np.where(points.bound == Bound.ABOVE, np.inf, points.value + u)
+    return Given(
+        points=points,
+        rule=rule,
+        uncertainty=u,
+        known=points.bound != Bound.MISSING,
+        least=least,
+        greatest=greatest,
+        tt=points.choice(Choice.EARTHING) == Earthing.TT,
+    )

@@ -1,0 +1,202 @@
+"""What several checks share, computed once from the columns."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from faultloop.assessment.given import Given, given
+from faultloop.assessment.loops import Loops, loops
+from faultloop.assessment.points import (
+    Choice,
+    Codes,
+    Current,
+    Earthing,
+    Flags,
+    Ints,
+    Number,
+    Points,
+    Reading,
+    Role,
+    TemperaturePolicy,
+)
+from faultloop.assessment.rule_table import required_time
+from faultloop.assessment.standing import compare
+from faultloop.electrical.body import touch_voltage
+from faultloop.electrical.conductors import temperature_factor
+from faultloop.electrical.fault_current import heated_loop, prospective_current
+from faultloop.electrical.measurement import Array, Interval
+from faultloop.protection.catalogue import catalogue
+
+ONE = np.int64(1)
+
+
+class Wanting(Codes):
+    """Prerequisites without which nothing can be decided; 0 where all are there."""
+
+    NOTHING = 0
+    EARTHING = 1
+    EARTHING_NOT_COVERED = 2
+    DIRECT_CURRENT = 3
+    VOLTAGE = 4
+    ROLE = 5
+
+
+@dataclass(frozen=True, slots=True)
+class ResidualTimes:
+    """What the relied-on residual device does, (n,) each; nan where there is none."""
+
+    multiple: Array
+    multiple_nominal: Array
+    time_s: Interval
+    over_limit: Flags
+    tested: Flags
+
+
+@dataclass(frozen=True, slots=True)
+class Quantities:
+    """Shared intervals and numbers, (n,) each; nan where unknown."""
+
+    given: Given
+    wanting: Ints
+    required_s: Array
+    loops: Loops
+    factor: Array
+    hot: Interval
+    compared: Interval
+    operating_current: Array
+    loop_limit: Array
+    overcurrent: Ints
+    current: Interval
+    overcurrent_s: Interval
+    residual: ResidualTimes
+    touch_v: Array
+    touch_known: Flags
+
+    @property
+    def tt(self) -> Flags:
+        """Where the supply is TT."""
+        return self.given.tt
+
+    def rule(self, name: str) -> Array:
+        """One value of each point's rule set, (n,)."""
+        return self.given.rule[name]
+
+
+def shared(points: Points) -> Quantities:
+    """Compute the shared quantities of n points."""
+    g = given(points)
+    rule, voltage, device = g.rule, points.number(Number.VOLTAGE), points.choice(Choice.DEVICE)
+    found, required = loops(g), required_time(points, rule)
+    factor = temperature_factor(points.number(Number.SERVICE_C), points.number(Number.TEST_C), rule["alpha"])
+    hot = heated_loop(found.loop, found.dead_resistance, found.external, found.external_u, factor)
+    band = catalogue().overcurrent
+    operating = band.operating_current(device, required)
+    limit, compared = _loop_limit(g, operating), _compared(points, hot, found.loop)
+    current = Interval(
+        prospective_current(rule["c_min"], voltage, hot.greatest),
+        prospective_current(rule["c_max"], voltage, found.loop.least),
+        prospective_current(rule["c_min"], voltage, hot.nominal),
+    )
+    touch, touch_known = _touch(g, found, hot, factor)
+    return Quantities(
+        given=g,
+        wanting=_wanting(g, required),
+        required_s=required,
+        loops=found,
+        factor=factor,
+        hot=hot,
+        compared=compared,
+        operating_current=operating,
+        loop_limit=limit,
+        overcurrent=compare(compared, limit, ONE, points.choice(Choice.DECISION)),
+        current=current,
+        overcurrent_s=Interval(
+            band.least_time(device, current.greatest),
+            band.greatest_time(device, current.least),
+            band.greatest_time(device, current.nominal),
+        ),
+        residual=_residual(g, current),
+        touch_v=touch,
+        touch_known=touch_known,
+    )
+
+
+def _wanting(g: Given, required: Array) -> Ints:
+    points, earthing = g.points, g.points.choice(Choice.EARTHING)
+    covered = (earthing == Earthing.TN_S) | (earthing == Earthing.TN_C_S) | (earthing == Earthing.TT)
+    rows = g.rule.table.nominal[points.choice(Choice.RULES)]
+    nominal = (points.number(Number.VOLTAGE)[:, None] == rows).any(axis=1)
+    no_role = points.choice(Choice.ROLE) == Role.UNKNOWN
+    unclear = ~nominal | (np.isnan(required) & ~no_role)
+    wanting = np.where(unclear, Wanting.VOLTAGE, np.where(no_role, Wanting.ROLE, Wanting.NOTHING))
+    wanting = np.where(points.choice(Choice.CURRENT) == Current.DC, Wanting.DIRECT_CURRENT, wanting)
+    wanting = np.where(covered, wanting, Wanting.EARTHING_NOT_COVERED)
+    return np.where(earthing == Earthing.UNKNOWN, Wanting.EARTHING, wanting)
+
+
+def _loop_limit(g: Given, operating: Array) -> Array:
+    policy, voltage = g.points.choice(Choice.TEMPERATURE_POLICY), g.points.number(Number.VOLTAGE)
+    two_thirds = g.rule["two_thirds"]
+    factor = np.where(policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"])
+    factor = np.where(policy == TemperaturePolicy.TWO_THIRDS, two_thirds, factor)
+    return prospective_current(factor, voltage, operating)
+
+
+def _compared(points: Points, hot: Interval, cold: Interval) -> Interval:
+    split = points.choice(Choice.TEMPERATURE_POLICY) == TemperaturePolicy.SPLIT
+    return Interval(
+        np.where(split, hot.least, cold.least),
+        np.where(split, hot.greatest, cold.greatest),
+        np.where(split, hot.nominal, cold.nominal),
+    )
+
+
+def _residual(g: Given, current: Interval) -> ResidualTimes:
+    """Times of the band at the least and the nominal current, and what the tests said.
+
+    A time measured at the band's own multiple stands in place of the band where it is longer; a result
+    at another multiple says nothing about this one.
+    """
+    points, row = g.points, g.points.choice(Choice.RESIDUAL)
+    rated, band = points.number(Number.RESIDUAL_MA) / 1000.0, catalogue().residual
+    multiple, nominal = current.least / rated, current.nominal / rated
+    one, two, five = (points.value[r] / 1000.0 for r in (Reading.TIME_1, Reading.TIME_2, Reading.TIME_5))
+
+    def slow(m: Array) -> Array:
+        measured = np.where(m >= 5.0, five, np.where(m >= 2.0, two, np.where(m >= 1.0, one, np.nan)))
+        return np.fmax(band.greatest_time(row, m), measured)
+
+    over = np.zeros(points.count, dtype=np.bool_)
+    for reading, at in ((Reading.TIME_1, 1.0), (Reading.TIME_2, 2.0), (Reading.TIME_5, 5.0)):
+        limit_ms = 1000.0 * band.greatest_time(row, np.full(points.count, at))
+        above = points.bound[reading] == 2
+        over |= (points.value[reading] > limit_ms) | (above & (points.value[reading] >= limit_ms))
+    bound = points.bound[Reading.TIME_1]
+    tested = ((bound == 1) | (bound == 3)) & (points.value[Reading.TIME_1] >= 1.0)
+    times = Interval(band.least_time(row, current.greatest / rated), slow(multiple), slow(nominal))
+    return ResidualTimes(multiple, nominal, times, over, tested)
+
+
+def _touch(g: Given, found: Loops, hot: Interval, factor: Array) -> tuple[Array, Flags]:
+    """Touch voltage at the nominal current: exact where R2 is known, else the most that it can be."""
+    points, electrode = g.points, g.points.value[Reading.ELECTRODE]
+    line, protective = points.number(Number.LINE_MM2), points.number(Number.PROTECTIVE_MM2)
+    share = found.dead_resistance * line / (line + protective)
+    measured = np.where(g.known[Reading.PROTECTIVE], points.value[Reading.PROTECTIVE], share)
+    most = np.where(np.isnan(found.external), hot.nominal, hot.nominal - found.external)
+    path = np.where(np.isnan(measured), np.maximum(most, 0.0), measured * factor)
+    path = np.where(g.tt, np.where(np.isnan(electrode), hot.nominal, electrode), path)
+    known = np.where(g.tt, g.known[Reading.ELECTRODE], ~np.isnan(measured))
+    return touch_voltage(points.number(Number.VOLTAGE), path, hot.nominal), known
+
+
+def electrode_interval(q: Quantities) -> tuple[Interval, Flags]:
+    """Earth-electrode resistance, or the loop as its upper bound, and where it is the loop."""
+    electrode, loop = q.given.reading(Reading.ELECTRODE), q.loops.live
+    from_loop = ~q.given.known[Reading.ELECTRODE]
+    interval = Interval(
+        np.where(from_loop, np.maximum(loop.least - q.rule("source_allowance"), 0.0), electrode.least),
+        np.where(from_loop, loop.greatest, electrode.greatest),
+        np.where(from_loop, loop.nominal, electrode.nominal),
+    )
+    return interval, from_loop

@@ -1,0 +1,117 @@
+"""decide(): judged values -> findings -> groups -> verdict and urgency; the any-of groups are data."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from faultloop.assessment.checks import CHECKS
+from faultloop.assessment.judged import Condition, Judged, Standing, Verdict, compare
+from faultloop.assessment.points import Choice, Flags, Ints, Points
+from faultloop.assessment.quantities import Quantities, shared
+from faultloop.assessment.standing import STANDING_VERDICT
+from faultloop.assessment.urgency import Severity, urgency
+from faultloop.electrical.measurement import Array, Interval
+
+# A requirement that any one member meets takes its best member; every other check counts by itself.
+ANY_OF: dict[str, tuple[str, ...]] = {
+    "fault-protection": ("overcurrent-disconnection", "residual-disconnection"),
+}
+
+
+ROWS = {check.id: row for row, check in enumerate(CHECKS)}
+REPORTS = np.array([check.report for check in CHECKS])[:, None]
+SENSES = np.array([check.sense for check in CHECKS])[:, None]
+# Reason of a comparison by its verdict: fail, undetermined, marginal, pass-with-conditions, pass, and two never compared.
+COMPARED_REASON = np.array([2, -1, 1, 0, 0, -1, -1])
+
+
+@dataclass(frozen=True, slots=True)
+class Findings:
+    """What every check found at every point, (K, n)."""
+
+    verdict: Ints
+    reason: Ints
+    least: Array
+    greatest: Array
+    nominal: Array
+    limit: Array
+    defect: Flags
+    conditions: Ints
+    counts: Flags
+
+
+@dataclass(frozen=True, slots=True)
+class Outcome:
+    """The verdict of every point, and what it rests on."""
+
+    findings: Findings
+    quantities: Quantities
+    verdict: Ints
+    urgency: Ints
+    severity: Severity
+    conditions: Ints
+
+
+def decide(points: Points) -> Outcome:
+    """Judge n points by every check and draw the verdicts; the one path for one point and for a million."""
+    with np.errstate(divide="ignore", invalid="ignore"):
+        quantities = shared(points)
+        judged = [check.judge(points, quantities) for check in CHECKS]
+        applies = [check.applies(points, quantities) for check in CHECKS]
+        return _outcome(points, quantities, judged, applies)
+
+
+def _outcome(points: Points, quantities: Quantities, judged: list[Judged], applies: list[Flags]) -> Outcome:
+    value = Interval(
+        np.array([j.value.least for j in judged]),
+        np.array([j.value.greatest for j in judged]),
+        np.array([j.value.nominal for j in judged]),
+    )
+    limit, conditions = np.array([j.limit for j in judged]), np.array([j.conditions for j in judged])
+    compared = compare(value, limit, SENSES, points.choice(Choice.DECISION))
+    verdict, reason = _verdicts(compared, judged, np.array(applies), conditions)
+    counts, overall = _grouped(verdict)
+    findings = Findings(
+        verdict=verdict,
+        reason=reason,
+        least=value.least,
+        greatest=value.greatest,
+        nominal=value.nominal,
+        limit=limit,
+        defect=np.array([j.defect for j in judged]) & (verdict == Verdict.FAIL),
+        conditions=np.where(verdict == Verdict.PASS_WITH_CONDITIONS, conditions, 0),
+        counts=counts,
+    )
+    held = np.bitwise_or.reduce(np.where(counts, findings.conditions, 0), axis=0)
+    level, severity = urgency(points, quantities, overall, (findings.defect & counts).any(axis=0))
+    return Outcome(findings, quantities, overall, level, severity, held)
+
+
+def _verdicts(compared: Ints, judged: list[Judged], applies: Flags, conditions: Ints) -> tuple[Ints, Ints]:
+    """Verdicts and reasons, (K, n): compared where a check stands to comparison, conditional where it must."""
+    standing, settled = np.array([j.standing for j in judged]), np.array([j.reason for j in judged])
+    verdict = np.where(standing == Standing.COMPARED, compared, STANDING_VERDICT[standing])
+    reason = np.where(settled < 0, COMPARED_REASON[verdict], settled)
+    conditional = (verdict == Verdict.PASS) & (conditions != 0)
+    verdict = np.where(conditional, Verdict.PASS_WITH_CONDITIONS, verdict)
+    return np.where(applies, verdict, Verdict.NOT_APPLICABLE), np.where(applies, reason, -1)
+
+
+def _grouped(verdict: Ints) -> tuple[Flags, Ints]:
+    """Which findings count at each point, and the worst of those that do."""
+    given = verdict <= Verdict.PASS
+    counts = given & ~REPORTS
+    for members in ANY_OF.values():
+        at = [ROWS[member] for member in members]
+        best = np.where(given[at], verdict[at], -1).max(axis=0)
+        decided = np.zeros(verdict.shape[1], dtype=np.bool_)
+        for row in at:
+            counts[row] = given[row] & (verdict[row] == best) & ~decided
+            decided |= counts[row]
+    worst = np.where(counts, verdict, Verdict.PASS).min(axis=0)
+    return counts, worst
+
+
+def conditions_of(bits: int) -> list[str]:
+    """Words of the conditions held in a field of bits."""
+    return [word for word, bit in Condition.codes().items() if bits >> bit & 1]
