@@ -1,13 +1,16 @@
 """Opening the database: SQLite in one file, or PostgreSQL, behind one synchronous engine."""
 
 import sqlite3
+from collections.abc import Iterator
+from contextlib import contextmanager
 from pathlib import Path
 from typing import Any
 
 from sqlalchemy import URL, Connection, Engine, create_engine, event, make_url
-from sqlalchemy.exc import ArgumentError
+from sqlalchemy.exc import ArgumentError, DBAPIError
+from sqlalchemy.exc import TimeoutError as PoolExhausted
 
-from .errors import DatabaseRefused
+from .errors import DatabaseRefused, DatabaseUnreachable
 
 LOCK_WAIT_S = 5
 OLDEST_SQLITE = (3, 35, 0)
@@ -40,6 +43,15 @@ def reason(error: BaseException) -> str:
     """Give the first line of what a database said; the lines after it may show the record."""
     said = str(getattr(error, "orig", None) or error).strip()
     return said.splitlines()[0] if said else type(error).__name__
+
+
+@contextmanager
+def reaching(engine: Engine) -> Iterator[None]:
+    """Turn a database's refusal to answer into words that name the database and the reason."""
+    try:
+        yield
+    except (DBAPIError, PoolExhausted) as error:
+        raise DatabaseUnreachable(f"{describe(engine.url)} cannot be used now: {reason(error)}") from error
 
 
 def write_begin(connection: Connection) -> Connection:

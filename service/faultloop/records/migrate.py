@@ -1,8 +1,6 @@
 """Moving a database to the tables that this code expects, and telling where it stands."""
 
 import threading
-from collections.abc import Iterator
-from contextlib import contextmanager
 from functools import cache
 from pathlib import Path
 from typing import Literal
@@ -12,10 +10,8 @@ from alembic.config import Config
 from alembic.runtime.migration import MigrationContext
 from alembic.script import ScriptDirectory
 from sqlalchemy import Engine
-from sqlalchemy.exc import DBAPIError
 
-from .database import describe, reason
-from .errors import DatabaseUnreachable
+from .database import reaching
 
 State = Literal["empty", "behind", "current", "unknown"]
 
@@ -25,13 +21,13 @@ _ONE_AT_A_TIME = threading.Lock()
 
 def migrate(engine: Engine) -> None:
     """Upgrade the database to the newest revision; several starters may do so at once."""
-    with _ONE_AT_A_TIME, _reaching(engine):
+    with _ONE_AT_A_TIME, reaching(engine):
         command.upgrade(configuration(engine), "head")
 
 
 def state(engine: Engine) -> State:
     """Tell whether the database holds no tables yet, older ones, the right ones or ones not known here."""
-    with _reaching(engine), engine.connect() as connection:
+    with reaching(engine), engine.connect() as connection:
         found = set(MigrationContext.configure(connection).get_current_heads())
     heads, known = _revisions()
     if not found:
@@ -60,11 +56,3 @@ def _revisions() -> tuple[frozenset[str], frozenset[str]]:
     script = ScriptDirectory.from_config(_configuration())
     known = frozenset(step.revision for step in script.walk_revisions())
     return frozenset(script.get_heads()), known
-
-
-@contextmanager
-def _reaching(engine: Engine) -> Iterator[None]:
-    try:
-        yield
-    except DBAPIError as error:
-        raise DatabaseUnreachable(f"{describe(engine.url)} cannot be used now: {reason(error)}") from error

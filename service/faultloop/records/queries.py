@@ -2,6 +2,7 @@
 
 from sqlalchemy import Engine, select
 
+from .database import reaching
 from .errors import DatabaseUnreachable
 from .migrate import state
 from .tables import ASSESSMENT, LISTED_FIELDS, Listed, Stored, stored
@@ -9,7 +10,7 @@ from .tables import ASSESSMENT, LISTED_FIELDS, Listed, Stored, stored
 
 def find(engine: Engine, id: str) -> Stored | None:  # noqa: A002
     """Give the assessment with this id, if there is one."""
-    with engine.connect() as connection:
+    with reaching(engine), engine.connect() as connection:
         row = connection.execute(select(ASSESSMENT).where(ASSESSMENT.c.id == id)).mappings().one_or_none()
     return None if row is None else stored(row)
 
@@ -33,7 +34,7 @@ def page(
         wanted = wanted.where(ASSESSMENT.c.verdict == verdict)
     if urgency is not None:
         wanted = wanted.where(ASSESSMENT.c.urgency == urgency)
-    with engine.connect() as connection:
+    with reaching(engine), engine.connect() as connection:
         rows = connection.execute(wanted.order_by(ASSESSMENT.c.sequence.desc()).limit(size)).all()
     return [Listed(*row) for row in rows]
 

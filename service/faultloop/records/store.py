@@ -22,12 +22,9 @@ class Store:
     def __init__(self, engine: Engine) -> None:
         self._engine = engine
         self._connection: Connection | None = None
-        insert = {"sqlite": sqlite.insert, "postgresql": postgresql.insert}[engine.dialect.name]
-        self._insert: Any = (
-            insert(ASSESSMENT)
-            .on_conflict_do_nothing(index_elements=["id"])
-            .returning(ASSESSMENT.c.id, ASSESSMENT.c.sequence)
-        )
+        insert = sqlite.insert if engine.dialect.name == "sqlite" else postgresql.insert
+        new = insert(ASSESSMENT).on_conflict_do_nothing(index_elements=["id"])
+        self._insert = new.returning(ASSESSMENT.c.id, ASSESSMENT.c.sequence)
 
     def add(self, records: list[Record]) -> list[Created]:
         """Store all of them or none; each answer is the row now stored, and whether this call made it."""
@@ -36,7 +33,7 @@ class Store:
         with self._transaction() as connection:
             # in one order everywhere, or two services that store the same ids could wait for each other
             rows = [_row(first[key], stored_at) for key in sorted(first)]
-            sequences = {key: sequence for key, sequence in connection.execute(self._insert, rows)}
+            sequences: dict[str, int] = dict(connection.execute(self._insert, rows).tuples().all())
             found = _existing(connection, first.keys() - sequences.keys())
         made = {key: Stored(first[key], sequence, stored_at) for key, sequence in sequences.items()}
         rows_now = made | found

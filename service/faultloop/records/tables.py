@@ -49,7 +49,7 @@ class StoredAssessment(Base, table=True):
 
     # SQLite numbers rows by itself only in a column declared INTEGER
     sequence: int | None = Field(
-        default=None, primary_key=True, sa_type=BigInteger().with_variant(Integer(), "sqlite")  # type: ignore[call-overload]
+        default=None, primary_key=True, sa_type=BigInteger().with_variant(Integer(), "sqlite")
     )
     id: str = Field(max_length=36, unique=True)
     input_digest: str = Field(max_length=64)
@@ -100,9 +100,7 @@ class Stored:
 
 def stored(row: RowMapping) -> Stored:
     """Turn a row of the assessment table into the value that leaves this room."""
-    return Stored(
-        Record(**{name: row[name] for name in RECORD_FIELDS}), row["sequence"], row["stored_at"]
-    )
+    return Stored(Record(**{name: row[name] for name in RECORD_FIELDS}), row["sequence"], row["stored_at"])
 
 
 @dataclass(frozen=True, slots=True)
@@ -120,5 +118,6 @@ class Listed:
     rules_digest: str
     devices_digest: str
     stored_at: datetime
+
 
 LISTED_FIELDS = tuple(field.name for field in fields(Listed))

@@ -25,11 +25,9 @@ def _lock(connection: Connection) -> Connection:
     """Let one starter migrate at a time; the lock goes with the transaction or with the session."""
     connection.detach()  # closed for good at the end, with whatever it locked or set
     if connection.dialect.name == "sqlite":
-        driver = connection.connection.dbapi_connection
-        assert driver is not None
-        cursor = driver.cursor()
+        cursor = connection.connection.cursor()
         cursor.execute(f"PRAGMA busy_timeout = {LOCK_WAIT_S * 1000}")
-        cursor.execute("PRAGMA foreign_keys = OFF")  # a table that is rebuilt must not take its children along
+        cursor.execute("PRAGMA foreign_keys = OFF")  # a table that is rebuilt must not take others along
         cursor.close()
         return connection.execution_options(sqlite_begin="BEGIN EXCLUSIVE")
     connection.execute(text(f"SET lock_timeout = '{LOCK_WAIT_S}s'"))
