@@ -1,0 +1,1 @@
+"""Words in, words out: request and answer bodies, file columns, and their mapping to points."""

@@ -1,0 +1,216 @@
+"""A request in words -> one row of points, with the assumptions that had to be made."""
+
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from faultloop.assessment.points import (
+    Bound,
+    Choice,
+    Current,
+    Decision,
+    Earthing,
+    Feeds,
+    Method,
+    Number,
+    Reading,
+    Role,
+    Row,
+    TemperaturePolicy,
+    Users,
+)
+from faultloop.assessment.rule_table import rule_table
+from faultloop.electrical.measurement import coverage_scale
+from faultloop.exchange import requests as rq
+from faultloop.exchange.fields import Reading as ReadingBody
+from faultloop.protection import designations as ds
+from faultloop.protection.catalogue import catalogue
+from faultloop.rules.conductors import adiabatic_k, ohm_per_km, service_temperature
+from faultloop.rules.loader import LoadedRules, resolve
+
+_BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
+_METHOD = Method.codes()
+_EARTHING = {"TN-S": 1, "TN-C-S": 2, "TN-C": 3, "TT": 4, "IT": 5, "separated": 6, None: Earthing.UNKNOWN}
+_ROLE = {"final": Role.FINAL, "distribution": Role.DISTRIBUTION, None: Role.UNKNOWN}
+_FEEDS = {
+    "socket-outlets": Feeds.SOCKET_OUTLETS,
+    "fixed-equipment": Feeds.FIXED_EQUIPMENT,
+    "mobile-equipment-outdoors": Feeds.MOBILE_OUTDOORS,
+    None: Feeds.UNKNOWN,
+}
+_USERS, _POLICY, _DECISION, _CURRENT = (c.codes() for c in (Users, TemperaturePolicy, Decision, Current))
+NO_DEVICE = -1
+TEST_DEFAULT = "test-temperature"
+
+
+@dataclass(slots=True)
+class Mapped:
+    """One point ready to be judged: its row, its rule set, the words needed to explain it."""
+
+    row: Row
+    rules: LoadedRules
+    policy: dict[str, str | float]
+    device: str | None
+    residual: str | None
+    assumptions: list[str] = field(default_factory=list)
+
+
+def mapped(request: rq.AssessmentRequest) -> Mapped:
+    """Turn one request into a row."""
+    rules = resolve(request.rules)
+    assert rules is not None, "the request model refuses unknown rule sets"
+    point = Mapped(Row(), rules, _policy(request.policy, rules), None, None)
+    _put_supply(point, request)
+    _put_devices(point, request)
+    _put_circuit(point, request)
+    _put_readings(point, request)
+    return point
+
+
+def _policy(asked: rq.Policy, rules: LoadedRules) -> dict[str, str | float]:
+    """The policy in force; the two flat policies hold a margin already and so default to `simple`."""
+    default = rules.rules.policy
+    temperature = asked.temperature or default.temperature
+    flat = temperature in ("two-thirds", "four-fifths")
+    decision = asked.decision or ("simple" if flat else default.decision)
+    coverage = default.coverage if asked.coverage is None else asked.coverage
+    return {"temperature": temperature, "decision": decision, "coverage": coverage}
+
+
+def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
+    numbers, choices, supply = point.row.numbers, point.row.choices, request.supply
+    choices[Choice.RULES] = rule_table().row(point.rules.rules.key)
+    choices[Choice.EARTHING] = _EARTHING[supply.earthing]
+    choices[Choice.CURRENT] = _CURRENT[supply.current]
+    choices[Choice.TEMPERATURE_POLICY] = _POLICY[str(point.policy["temperature"])]
+    choices[Choice.DECISION] = _DECISION[str(point.policy["decision"])]
+    numbers[Number.COVERAGE_SCALE] = coverage_scale(float(point.policy["coverage"]))
+    if supply.nominal_voltage_to_earth_v is not None:
+        numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
+
+
+def overcurrent_device(body: rq.Breaker | rq.Fuse) -> ds.OvercurrentDevice:
+    """The device that a body describes."""
+    if isinstance(body, rq.Breaker):
+        return ds.Breaker(body.characteristic, body.rated_current_a)
+    return ds.Fuse(body.fuse_system, body.rated_current_a)
+
+
+def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
+    numbers, choices, table = point.row.numbers, point.row.choices, catalogue()
+    choices[Choice.DEVICE], choices[Choice.RESIDUAL] = NO_DEVICE, NO_DEVICE
+    if (body := request.overcurrent_device) is not None:
+        device = overcurrent_device(body)
+        point.device = device.designation
+        choices[Choice.DEVICE] = table.rows.get((point.rules.rules.key, device), NO_DEVICE)
+        numbers[Number.DEVICE_RATED_CURRENT] = body.rated_current_a
+        if body.breaking_capacity_ka is not None:
+            numbers[Number.BREAKING_CAPACITY_KA] = body.breaking_capacity_ka
+    own = [request.residual_current_device] if request.residual_current_device else []
+    chain = own + request.upstream_residual_current_devices
+    if chain:
+        rated = [device.rated_residual_operating_current_ma for device in chain]
+        # Where the circuit has no residual device of its own, the most sensitive one before it carries it.
+        relied = chain[0] if own else min(chain, key=lambda d: d.rated_residual_operating_current_ma)
+        numbers[Number.RESIDUAL_MA] = relied.rated_residual_operating_current_ma
+        numbers[Number.RESIDUAL_GREATEST_MA], numbers[Number.RESIDUAL_LEAST_MA] = max(rated), min(rated)
+        choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
+        told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
+        point.residual = told.designation
+
+
+def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
+    numbers, choices, circuit = point.row.numbers, point.row.choices, request.circuit
+    choices[Choice.ROLE], choices[Choice.FEEDS] = _ROLE[circuit.role], _FEEDS[circuit.feeds]
+    choices[Choice.USERS] = _USERS[circuit.users]
+    choices[Choice.DESIGNATED] = int(circuit.designated_equipment)
+    choices[Choice.RING] = int(circuit.arrangement == "ring")
+    rated = circuit.rated_current_a
+    numbers[Number.RATED_CURRENT] = numbers[Number.DEVICE_RATED_CURRENT] if rated is None else rated
+    if circuit.length_m is not None:
+        numbers[Number.LENGTH_M] = circuit.length_m
+    if circuit.current_carrying_capacity_a is not None:
+        numbers[Number.CARRYING_CAPACITY_A] = circuit.current_carrying_capacity_a
+    line, neutral, protective = circuit.line_conductor, circuit.neutral_conductor, circuit.protective_conductor
+    _put_conductor(numbers, line, Number.LINE_MM2, Number.LINE_OHM_PER_KM)
+    _put_conductor(numbers, protective, Number.PROTECTIVE_MM2, Number.PROTECTIVE_OHM_PER_KM)
+    _put_conductor(numbers, neutral, Number.NEUTRAL_MM2, None)
+    same = neutral is not None and protective is not None and neutral.material == protective.material != "steel"
+    choices[Choice.INFERABLE] = int(same)
+    if line is not None and (k := adiabatic_k(line.material, line.insulation)) is not None:
+        numbers[Number.ADIABATIC_K] = k
+    _put_service_temperature(point, [c for c in (line, protective) if c is not None])
+
+
+def _put_conductor(numbers: list[float], body: rq.Conductor | None, area: int, per_km: int | None) -> None:
+    if body is None:
+        return
+    numbers[area] = body.area_mm2
+    if per_km is not None:
+        known = ohm_per_km(body.material, body.area_mm2)
+        numbers[per_km] = np.nan if known is None else known
+
+
+def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> None:
+    known = [t for c in conductors if (t := service_temperature(c.insulation)) is not None]
+    if not known:
+        point.assumptions.append("service-temperature")
+    point.row.numbers[Number.SERVICE_C] = max(known) if known else service_temperature("pvc") or np.nan
+
+
+def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
+    readings, board, row = request.readings, request.board, point.row
+    _put(row, Reading.LOOP, readings.earth_fault_loop_impedance_ohm)
+    _put(row, Reading.EXTERNAL, readings.external_earth_fault_loop_impedance_ohm)
+    _put(row, Reading.LINE_NEUTRAL, readings.line_neutral_loop_impedance_ohm)
+    _put(row, Reading.LINE_PLUS_PROTECTIVE, readings.line_plus_protective_resistance_ohm)
+    _put(row, Reading.PROTECTIVE, readings.protective_conductor_resistance_ohm)
+    _put(row, Reading.ELECTRODE, readings.earth_electrode_resistance_ohm)
+    if (times := readings.residual_operating_time_ms) is not None:
+        _put(row, Reading.TIME_1, times.one)
+        _put(row, Reading.TIME_2, times.two)
+        _put(row, Reading.TIME_5, times.five)
+    if board is not None:
+        _put(row, Reading.ORIGIN_LINE_NEUTRAL, board.line_neutral_loop_impedance_ohm)
+        stated = board.prospective_current_ka
+        row.numbers[Number.BOARD_CURRENT_KA] = _exact(stated)
+    _put_method(point, request)
+    _put_test_temperature(point, readings.earth_fault_loop_impedance_ohm)
+
+
+def _exact(stated: float | ReadingBody | None) -> float:
+    if isinstance(stated, ReadingBody):
+        return stated.value if stated.bound != "above" else np.nan
+    return np.nan if stated is None else stated
+
+
+def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
+    if stated is None:
+        return
+    if isinstance(stated, float | int):
+        row.value[which], row.bound[which] = stated, Bound.EXACT
+        return
+    row.value[which], row.bound[which] = stated.value, _BOUND[stated.bound]
+    row.method[which] = _METHOD[stated.method or "unstated"]
+    if (instrument := stated.instrument) is not None:
+        row.percent[which], row.constant[which] = instrument.percent, instrument.digits * instrument.resolution
+
+
+def _put_method(point: Mapped, request: rq.AssessmentRequest) -> None:
+    """A loop reading whose method is not stated: no-trip if a residual device is fitted; said."""
+    row = point.row
+    if row.bound[Reading.LOOP] and row.method[Reading.LOOP] == Method.UNSTATED:
+        no_trip = point.residual is not None
+        row.method[Reading.LOOP] = Method.NO_TRIP if no_trip else Method.HIGH_CURRENT
+        point.assumptions.append("method-no-trip" if no_trip else "method-high-current")
+    stated = request.readings.earth_fault_loop_impedance_ohm
+    if stated is not None and not (isinstance(stated, ReadingBody) and stated.instrument):
+        point.assumptions.append("instrument")
+
+
+def _put_test_temperature(point: Mapped, stated: float | ReadingBody | None) -> None:
+    told = stated.conductor_temperature_c if isinstance(stated, ReadingBody) else None
+    if told is None:
+        point.assumptions.append(TEST_DEFAULT)
+        told = point.rules.rules.temperature.test_default.value
+    point.row.numbers[Number.TEST_C] = told

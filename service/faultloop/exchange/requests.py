@@ -1,0 +1,242 @@
+"""The body of one measured point, as it comes in."""
+
+from typing import Annotated, Any, Literal
+
+from pydantic import Field
+from pydantic.functional_validators import AfterValidator
+
+from faultloop.exchange.fields import Closed, Label, Measured, number
+from faultloop.protection.breakers import breaker_table
+from faultloop.protection.fuses import fuse_families
+from faultloop.protection.residual import residual_table
+from faultloop.rules.loader import resolve, shipped
+
+
+class Point(Closed):
+    """The socket-outlet, bench outlet or equipment terminal."""
+
+    id: Label | None = None
+    label: Label
+    location: Label | None = None
+
+
+class MeansOfEarthing(Closed):
+    """What is believed of the means of earthing, and why."""
+
+    evidence: Label
+    state: Label | None = None
+
+
+class Supply(Closed):
+    """The supply as seen from the point."""
+
+    earthing: Literal["TN-S", "TN-C-S", "TN-C", "TT", "IT", "separated"] | None = None
+    current: Literal["ac", "dc"] = "ac"
+    nominal_voltage_to_earth_v: (
+        Annotated[float, number("V", most=1000, positive=True, description="Nominal, not measured")] | None
+    ) = None
+    nominal_voltage_between_lines_v: (
+        Annotated[float, number("V", most=1000, positive=True, description="Nominal between lines")] | None
+    ) = None
+    frequency_hz: Annotated[float, number("Hz", most=1000, description="Frequency")] | None = None
+    phases: Literal[1, 2, 3] | None = None
+    means_of_earthing: MeansOfEarthing | None = None
+    declared_prospective_current_ka: (
+        Annotated[float, number("kA", most=1000, description="Declared by the distributor")] | None
+    ) = None
+    source: Label | None = None
+
+
+class Conductor(Closed):
+    """One conductor of the circuit."""
+
+    material: Literal["copper", "aluminium", "steel"]
+    insulation: Literal["pvc", "xlpe", "epr", "rubber", "mineral", "bare"]
+    area_mm2: Annotated[float, number("mm2", most=1000, positive=True, description="Cross-sectional area")]
+
+
+class Circuit(Closed):
+    """The circuit that feeds the point."""
+
+    role: Literal["final", "distribution"] | None = None
+    feeds: Literal["socket-outlets", "fixed-equipment", "mobile-equipment-outdoors"] | None = None
+    rated_current_a: Annotated[float, number("A", most=6300, positive=True, description="Rated current")] | None = None
+    arrangement: Literal["radial", "ring"] = "radial"
+    users: Literal["ordinary", "instructed", "skilled"] = "ordinary"
+    designated_equipment: Annotated[bool, Field(strict=True)] = False
+    line_conductor: Conductor | None = None
+    neutral_conductor: Conductor | None = None
+    protective_conductor: Conductor | None = None
+    length_m: Annotated[float, number("m", most=100_000, description="Route length")] | None = None
+    current_carrying_capacity_a: (
+        Annotated[float, number("A", most=6300, description="Iz of the live conductors")] | None
+    ) = None
+
+
+class Board(Closed):
+    """Readings and ratings at the board that holds the device."""
+
+    line_neutral_loop_impedance_ohm: Measured | None = None
+    earth_fault_loop_impedance_ohm: Measured | None = None
+    prospective_current_ka: Measured | None = None
+    assembly_conditional_rating_ka: Annotated[float, number("kA", most=1000, description="Rating")] | None = None
+
+
+def _breaker_rated(value: float) -> float:
+    return _listed(value, breaker_table().ratings_a)
+
+
+def _fuse_rated(value: float) -> float:
+    return _listed(value, _fuse_ratings())
+
+
+def _residual_rated(value: float) -> float:
+    return _listed(value, residual_table().rated_residual_operating_currents_ma)
+
+
+def _fuse_ratings() -> list[float]:
+    return sorted({rating.rated_current_a for family in fuse_families().values() for rating in family.rating})
+
+
+def _listed(value: float, values: list[float]) -> float:
+    if value not in values:
+        raise ValueError("no device has this rating; expected one of " + ", ".join(f"{v:g}" for v in values))
+    return value
+
+
+class Breaker(Closed):
+    """A miniature circuit-breaker, or the overcurrent part of a combined device."""
+
+    kind: Literal["miniature-circuit-breaker"]
+    characteristic: Literal["B", "C", "D"]
+    rated_current_a: Annotated[
+        float,
+        AfterValidator(_breaker_rated),
+        Field(
+            strict=True,
+            allow_inf_nan=False,
+            description="Rated current In [A]",
+            json_schema_extra=lambda schema: schema.update(enum=breaker_table().ratings_a),
+        ),
+    ]
+    breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
+    poles: Literal[1, 2, 3, 4] | None = None
+
+
+class Fuse(Closed):
+    """A fuse-link."""
+
+    kind: Literal["fuse"]
+    fuse_system: Literal["iec-60269", "bs-88-2"]
+    utilisation_category: Literal["gG"]
+    rated_current_a: Annotated[
+        float,
+        AfterValidator(_fuse_rated),
+        Field(
+            strict=True,
+            allow_inf_nan=False,
+            description="Rated current In [A]",
+            json_schema_extra=lambda schema: schema.update(enum=_fuse_ratings()),
+        ),
+    ]
+    breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None = None
+    poles: Literal[1, 2, 3, 4] | None = None
+
+
+OvercurrentDevice = Annotated[Breaker | Fuse, Field(discriminator="kind")]
+
+
+class ResidualCurrentDevice(Closed):
+    """A residual current device, or the residual part of a combined device."""
+
+    residual_type: Literal["AC", "A", "F", "B"] | None = None
+    rated_residual_operating_current_ma: Annotated[
+        float,
+        AfterValidator(_residual_rated),
+        Field(
+            strict=True,
+            allow_inf_nan=False,
+            description="Rated residual operating current IΔn [mA]",
+            json_schema_extra=lambda schema: schema.update(
+                enum=residual_table().rated_residual_operating_currents_ma
+            ),
+        ),
+    ]
+    delay: Literal["general", "selective", "time-delayed"] = "general"
+    delay_ms: Annotated[float, number("ms", most=10_000, description="Set delay")] | None = None
+
+
+class OperatingTimes(Closed):
+    """Operating times in millisecond by multiple of IΔn, the slower half-cycle of each."""
+
+    half: Measured | None = Field(default=None, alias="0.5")
+    one: Measured | None = Field(default=None, alias="1")
+    two: Measured | None = Field(default=None, alias="2")
+    five: Measured | None = Field(default=None, alias="5")
+    loads_connected: Annotated[bool, Field(strict=True)] | None = None
+
+
+class Readings(Closed):
+    """What was measured."""
+
+    earth_fault_loop_impedance_ohm: Measured | None = None
+    external_earth_fault_loop_impedance_ohm: Measured | None = None
+    line_neutral_loop_impedance_ohm: Measured | None = None
+    line_line_loop_impedance_ohm: Measured | None = None
+    line_plus_protective_resistance_ohm: Measured | None = None
+    protective_conductor_resistance_ohm: Measured | None = None
+    earth_electrode_resistance_ohm: Measured | None = None
+    insulation_resistance_megohm: Measured | None = None
+    residual_operating_time_ms: OperatingTimes | None = None
+    residual_operating_current_ma: Measured | None = None
+    standing_leakage_ma: Measured | None = None
+    voltage_v: Measured | None = None
+    voltage_neutral_to_earth_v: Measured | None = None
+    polarity: Literal["correct", "reversed", "not-tested"] | None = None
+
+
+class Policy(Closed):
+    """How the decision is made; what is left out comes from the rule set."""
+
+    temperature: Literal["split", "two-thirds", "four-fifths", "none"] | None = None
+    decision: Literal["guarded", "simple"] | None = None
+    coverage: Annotated[float, number("1", least=0.5, most=0.9999, description="Coverage probability")] | None = None
+
+
+def _known_rules(name: str) -> str:
+    if resolve(name) is None:
+        raise ValueError("no such rule set; expected one of " + ", ".join(rule_names()))
+    return name
+
+
+def rule_names() -> list[str]:
+    """Names under which a rule set may be asked for: with edition, or the newest without."""
+    return sorted({loaded.rules.id for loaded in shipped().values()} | set(shipped()))
+
+
+RulesName = Annotated[
+    str,
+    AfterValidator(_known_rules),
+    Field(
+        max_length=60,
+        description="Rule set, with an edition or its newest",
+        json_schema_extra=lambda schema: schema.update(enum=rule_names()),
+    ),
+]
+
+
+class AssessmentRequest(Closed):
+    """One measured point: what protects it, what was read, by which rules it is to be judged."""
+
+    point: Point
+    supply: Supply = Field(default_factory=Supply)
+    circuit: Circuit = Field(default_factory=Circuit)
+    board: Board | None = None
+    overcurrent_device: OvercurrentDevice | None = None
+    residual_current_device: ResidualCurrentDevice | None = None
+    upstream_residual_current_devices: Annotated[list[ResidualCurrentDevice], Field(max_length=8)] = Field(
+        default_factory=list
+    )
+    readings: Readings = Field(default_factory=Readings)
+    rules: RulesName = "iec-60364"
+    policy: Policy = Field(default_factory=Policy)
