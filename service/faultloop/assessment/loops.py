@@ -68,7 +68,9 @@ def loops(g: Given) -> Loops:
     live, dead_resistance = _live(g, no_trip), _dead_resistance(g)
     expected = _expected(g, dead_resistance)
     excess = points.value[Reading.LOOP] - expected.value
-    slack = combined(g.uncertainty[Reading.LOOP], expected.uncertainty) + np.where(no_trip, g.rule["uplift"], 0.0)
+    slack = combined(g.uncertainty[Reading.LOOP], expected.uncertainty) + np.where(
+        no_trip, g.rule["uplift"], 0.0
+    )
     beyond = known_live & (excess > slack)
     outranked = expected.by_dead_test & no_trip & ~beyond & (points.bound[Reading.LOOP] != Bound.ABOVE)
     loop, basis = _chosen(g, live, expected, outranked | (expected.by_dead_test & ~known_live), no_trip)
@@ -94,14 +96,18 @@ def _live(g: Given, no_trip: Flags) -> Interval:
     plain = g.reading(Reading.LOOP)
     external = np.where(g.known[Reading.EXTERNAL], g.points.value[Reading.EXTERNAL], 0.0)
     lower = np.maximum(plain.least - g.rule["uplift"], np.minimum(external, plain.nominal))
-    return Interval(np.where(no_trip, np.fmin(lower, plain.least), plain.least), plain.greatest, plain.nominal)
+    return Interval(
+        np.where(no_trip, np.fmin(lower, plain.least), plain.least), plain.greatest, plain.nominal
+    )
 
 
 def _dead_resistance(g: Given) -> Array:
     """R1 + R2 where a dead test measured it; a value computed from the loop itself proves nothing."""
     reading = Reading.LINE_PLUS_PROTECTIVE
     method = g.points.method[reading]
-    tested = (g.points.bound[reading] == Bound.EXACT) & (method != Method.CALCULATED) & (method != Method.DECLARED)
+    tested = (
+        (g.points.bound[reading] == Bound.EXACT) & (method != Method.CALCULATED) & (method != Method.DECLARED)
+    )
     return np.where(tested, g.points.value[reading], np.nan)
 
 

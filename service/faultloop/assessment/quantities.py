@@ -27,7 +27,7 @@ from faultloop.electrical.fault_current import heated_loop, prospective_current
 from faultloop.electrical.measurement import Array, Interval
 from faultloop.protection.catalogue import catalogue
 
-ONE = np.int64(1)
+AT_MOST = np.array(1)
 
 
 class Wanting(Codes):
@@ -108,7 +108,7 @@ def shared(points: Points) -> Quantities:
         compared=compared,
         operating_current=operating,
         loop_limit=limit,
-        overcurrent=compare(compared, limit, ONE, points.choice(Choice.DECISION)),
+        overcurrent=compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)),
         current=current,
         overcurrent_s=Interval(
             band.least_time(device, current.greatest),
@@ -137,7 +137,9 @@ def _wanting(g: Given, required: Array) -> Ints:
 def _loop_limit(g: Given, operating: Array) -> Array:
     policy, voltage = g.points.choice(Choice.TEMPERATURE_POLICY), g.points.number(Number.VOLTAGE)
     two_thirds = g.rule["two_thirds"]
-    factor = np.where(policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"])
+    factor = np.where(
+        policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"]
+    )
     factor = np.where(policy == TemperaturePolicy.TWO_THIRDS, two_thirds, factor)
     return prospective_current(factor, voltage, operating)
 

@@ -6,7 +6,17 @@ from functools import lru_cache
 import numpy as np
 
 from faultloop.assessment.points import (
-    READINGS, Choice, Current, Earthing, Feeds, Ints, Method, Number, Points, Reading, Role,
+    READINGS,
+    Choice,
+    Current,
+    Earthing,
+    Feeds,
+    Ints,
+    Method,
+    Number,
+    Points,
+    Reading,
+    Role,
 )
 from faultloop.electrical.measurement import Array
 from faultloop.rules.loader import shipped
@@ -53,7 +63,13 @@ class RuleValues:
 
 
 def _values(rules: RuleSet) -> dict[str, float]:
-    d, a, e, t, u = rules.disconnection, rules.additional_protection, rules.electrode, rules.temperature, rules.urgency
+    d, a, e, t, u = (
+        rules.disconnection,
+        rules.additional_protection,
+        rules.electrode,
+        rules.temperature,
+        rules.urgency,
+    )
     return {
         "c_min": rules.voltage_factor.least.value,
         "c_max": rules.voltage_factor.greatest.value,
@@ -68,6 +84,7 @@ def _values(rules: RuleSet) -> dict[str, float]:
         "stability": e.stability_threshold.value,
         "season": e.season_factor.value,
         "source_allowance": e.source_allowance.value,
+        "touch_limit_on_tn": e.touch_limit_on_tn.value,
         "uplift": rules.instruments.no_trip_uplift.value,
         "alpha": t.alpha_20.value,
         "two_thirds": t.two_thirds.value,
@@ -99,7 +116,13 @@ def _instruments(rules: RuleSet) -> tuple[Array, Array]:
     percent, constant = np.zeros((READINGS, len(Method.codes()))), np.zeros((READINGS, len(Method.codes())))
     loop = (Reading.LOOP, Reading.EXTERNAL, Reading.LINE_NEUTRAL, Reading.ORIGIN_LINE_NEUTRAL)
     for reading in Reading.codes().values():
-        default = i.high_current if reading in loop else i.electrode if reading == Reading.ELECTRODE else i.continuity
+        default = (
+            i.high_current
+            if reading in loop
+            else i.electrode
+            if reading == Reading.ELECTRODE
+            else i.continuity
+        )
         percent[reading, :], constant[reading, :] = default.percent.value, default.constant.value
     for reading in loop:
         percent[reading, Method.NO_TRIP] = i.no_trip.percent.value
@@ -122,7 +145,10 @@ def rule_table() -> RuleTable:
     bands = [_bands(rules) for rules in sets.values()]
     instruments = [_instruments(rules) for rules in sets.values()]
     marks = ("designated-equipment", "instructed", "skilled")
-    exempt = [sum(1 << at for at, m in enumerate(marks) if m in r.additional_protection.exempt) for r in sets.values()]
+    exempt = [
+        sum(1 << at for at, m in enumerate(marks) if m in r.additional_protection.exempt)
+        for r in sets.values()
+    ]
     return RuleTable(
         keys=tuple(sets),
         names={name: at for at, name in enumerate(values[0])},

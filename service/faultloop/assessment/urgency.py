@@ -24,7 +24,7 @@ class Urgency(Codes):
 
 @dataclass(frozen=True, slots=True)
 class Severity:
-    """Body current over the current-time limit, with the barriers as they are and with the residual device failed."""
+    """Body current over its limit: with the barriers as they are, and with the residual device failed."""
 
     as_is: Array
     barrier_failed: Array
@@ -33,12 +33,14 @@ class Severity:
 
 
 def severity(points: Points, q: Quantities) -> Severity:
-    """Severity of a fault at the nominal current; an untested residual device is taken to work, a failed one not."""
+    """Severity at the nominal current; an untested residual device is taken to work, a failed one not."""
     outdoors = points.choice(Choice.FEEDS) == Feeds.MOBILE_OUTDOORS
     body = np.where(outdoors, q.rule("body_wet"), q.rule("body_dry"))
     credited = ~np.isnan(points.number(Number.RESIDUAL_MA)) & ~q.residual.over_limit
     # A person who touches the part closes the path, so a device that sees no metallic return still sees them.
-    touched = np.fmax(q.residual.multiple_nominal, q.touch_v / body / (points.number(Number.RESIDUAL_MA) / 1000.0))
+    touched = np.fmax(
+        q.residual.multiple_nominal, q.touch_v / body / (points.number(Number.RESIDUAL_MA) / 1000.0)
+    )
     quick = np.where(touched > q.residual.multiple_nominal, 0.04, q.residual.time_s.nominal)
     residual = np.where(credited, quick, np.inf)
     time = faster(q.overcurrent_s.nominal, residual)

@@ -21,7 +21,7 @@ ANY_OF: dict[str, tuple[str, ...]] = {
 ROWS = {check.id: row for row, check in enumerate(CHECKS)}
 REPORTS = np.array([check.report for check in CHECKS])[:, None]
 SENSES = np.array([check.sense for check in CHECKS])[:, None]
-# Reason of a comparison by its verdict: fail, undetermined, marginal, pass-with-conditions, pass, and two never compared.
+# Reason of a comparison by verdict: fail, undetermined, marginal, pass-with-conditions, pass; two never compared.
 COMPARED_REASON = np.array([2, -1, 1, 0, 0, -1, -1])
 
 
@@ -83,12 +83,13 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
         counts=counts,
     )
     held = np.bitwise_or.reduce(np.where(counts, findings.conditions, 0), axis=0)
-    level, severity = urgency(points, quantities, overall, (findings.defect & counts).any(axis=0))
+    defect: Flags = np.logical_or.reduce(findings.defect & counts, axis=0)
+    level, severity = urgency(points, quantities, overall, defect)
     return Outcome(findings, quantities, overall, level, severity, held)
 
 
 def _verdicts(compared: Ints, judged: list[Judged], applies: Flags, conditions: Ints) -> tuple[Ints, Ints]:
-    """Verdicts and reasons, (K, n): compared where a check stands to comparison, conditional where it must."""
+    """Verdicts and reasons, (K, n): compared where a check leaves it to that, conditional where it must."""
     standing, settled = np.array([j.standing for j in judged]), np.array([j.reason for j in judged])
     verdict = np.where(standing == Standing.COMPARED, compared, STANDING_VERDICT[standing])
     reason = np.where(settled < 0, COMPARED_REASON[verdict], settled)

@@ -52,7 +52,7 @@ class Finding(Answer):
 
 
 class Quantities(Answer):
-    """What was computed on the way; each carries voltage factors, temperature and band, not only uncertainty."""
+    """What was computed on the way, with voltage factors, temperature and band in it."""
 
     prospective_earth_fault_current_a: IntervalBody | None = None
     prospective_short_circuit_current_a: IntervalBody | None = None

@@ -27,9 +27,10 @@ Label = Annotated[str, Field(min_length=1, max_length=200, pattern=r"^[^\x00]*$"
 
 def number(unit: str, *, least: float = 0.0, most: float, description: str, positive: bool = False) -> Any:
     """Field of a strict number with its unit, bounded to what can physically be meant."""
-    bounds: dict[str, float] = {"gt" if positive else "ge": least, "le": most}
     return Field(
-        **bounds,  # type: ignore[arg-type]
+        ge=None if positive else least,
+        gt=least if positive else None,
+        le=most,
         strict=True,
         allow_inf_nan=False,
         description=f"{description} [{unit}]",
@@ -62,9 +63,10 @@ class Reading(Closed):
     conductor_temperature_c: (
         Annotated[float, Field(ge=-40, le=90, strict=True, allow_inf_nan=False, description="[Cel]")] | None
     ) = None
-    taken_at: Annotated[str, Field(max_length=40, pattern=r"^\d{4}-\d{2}-\d{2}(T[0-9:.]+(Z|[+-]\d{2}:\d{2}))?$")] | None = (
-        Field(default=None, description="Date, or date and time with offset")
-    )
+    taken_at: (
+        Annotated[str, Field(max_length=40, pattern=r"^\d{4}-\d{2}-\d{2}(T[0-9:.]+(Z|[+-]\d{2}:\d{2}))?$")]
+        | None
+    ) = Field(default=None, description="Date, or date and time with offset")
 
 
 def _shape(value: Any) -> str:

@@ -115,7 +115,9 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.RESIDUAL_MA] = relied.rated_residual_operating_current_ma
         numbers[Number.RESIDUAL_GREATEST_MA], numbers[Number.RESIDUAL_LEAST_MA] = max(rated), min(rated)
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
-        told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
+        told = ds.ResidualDevice(
+            relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay
+        )
         point.residual = told.designation
 
 
@@ -131,11 +133,17 @@ def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.LENGTH_M] = circuit.length_m
     if circuit.current_carrying_capacity_a is not None:
         numbers[Number.CARRYING_CAPACITY_A] = circuit.current_carrying_capacity_a
-    line, neutral, protective = circuit.line_conductor, circuit.neutral_conductor, circuit.protective_conductor
+    line, neutral, protective = (
+        circuit.line_conductor,
+        circuit.neutral_conductor,
+        circuit.protective_conductor,
+    )
     _put_conductor(numbers, line, Number.LINE_MM2, Number.LINE_OHM_PER_KM)
     _put_conductor(numbers, protective, Number.PROTECTIVE_MM2, Number.PROTECTIVE_OHM_PER_KM)
     _put_conductor(numbers, neutral, Number.NEUTRAL_MM2, None)
-    same = neutral is not None and protective is not None and neutral.material == protective.material != "steel"
+    same = (
+        neutral is not None and protective is not None and neutral.material == protective.material != "steel"
+    )
     choices[Choice.INFERABLE] = int(same)
     if line is not None and (k := adiabatic_k(line.material, line.insulation)) is not None:
         numbers[Number.ADIABATIC_K] = k
@@ -193,7 +201,10 @@ def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
     row.value[which], row.bound[which] = stated.value, _BOUND[stated.bound]
     row.method[which] = _METHOD[stated.method or "unstated"]
     if (instrument := stated.instrument) is not None:
-        row.percent[which], row.constant[which] = instrument.percent, instrument.digits * instrument.resolution
+        row.percent[which], row.constant[which] = (
+            instrument.percent,
+            instrument.digits * instrument.resolution,
+        )
 
 
 def _put_method(point: Mapped, request: rq.AssessmentRequest) -> None:

@@ -11,8 +11,7 @@ from faultloop import __version__
 from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.explain import Explainer, Names, cautions_of
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import Earthing, Points, Reading, from_rows
-from faultloop.assessment.points import Choice
+from faultloop.assessment.points import Choice, Earthing, Number, Points, Reading, from_rows
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.texts import Texts, texts
 from faultloop.assessment.urgency import Urgency
@@ -35,7 +34,9 @@ def request_bytes(request: AssessmentRequest) -> bytes:
     return canonical_bytes(request.model_dump(mode="json", by_alias=True, exclude_unset=True))
 
 
-def assess_requests(requests: Sequence[AssessmentRequest], digests: Sequence[str] | None = None) -> list[Body]:
+def assess_requests(
+    requests: Sequence[AssessmentRequest], digests: Sequence[str] | None = None
+) -> list[Body]:
     """Judge requests and put the outcomes in words; one request and many take the same path."""
     if not requests:
         return []
@@ -44,7 +45,9 @@ def assess_requests(requests: Sequence[AssessmentRequest], digests: Sequence[str
     points = from_rows([point.row for point in given])
     outcome = decide(points)
     renderer = Renderer(points, outcome)
-    return [renderer.answer(at, point, told) for at, (point, told) in enumerate(zip(given, known, strict=True))]
+    return [
+        renderer.answer(at, point, told) for at, (point, told) in enumerate(zip(given, known, strict=True))
+    ]
 
 
 @lru_cache(maxsize=8)
@@ -97,10 +100,14 @@ class Renderer:
                 continue
             explanation, question, named = self._explainer.said(row, self._reason[row][at], at, values)
             if verdict == Verdict.NOT_EXAMINED:
-                not_examined.append(_not_examined(check.id, check.reasons[self._reason[row][at]], explanation, question))
+                not_examined.append(
+                    _not_examined(check.id, check.reasons[self._reason[row][at]], explanation, question)
+                )
                 continue
-            cautions.update(named)
-            findings.append(self._finding(row, at, point, explanation, question, named))
+            # A finding that is met and decides nothing warns of nothing.
+            told = named if self._counts[row][at] or verdict < Verdict.PASS_WITH_CONDITIONS else []
+            cautions.update(told)
+            findings.append(self._finding(row, at, point, explanation, question, told))
         for subject, text in self._texts.subjects.items():
             not_examined.append({"subject": subject, "reason": "out-of-scope", "text": text})
         return {
@@ -147,7 +154,9 @@ class Renderer:
 
     def _quantities_of(self, at: int) -> Body:
         columns = self._quantities
-        body: Body = {name: interval(least[at], greatest[at]) for name, (least, greatest) in columns.ends.items()}
+        body: Body = {
+            name: interval(least[at], greatest[at]) for name, (least, greatest) in columns.ends.items()
+        }
         time = interval(columns.time[0][at], columns.time[1][at])
         body["disconnection_time_s"] = None if time is None else {**time, "by": columns.by[at]}
         body.update({name: rounded(column[at]) for name, column in columns.plain.items()})
@@ -159,7 +168,7 @@ class Renderer:
         return [{"condition": name, "text": told[name].text, "owner": told[name].owner} for name in held]
 
     def _assumptions(self, at: int, point: Mapped, values: dict[str, float | str]) -> list[Body]:
-        names = [*point.assumptions, *_assumed(self._points, self._outcome, at)]
+        names = [*point.assumptions, *_assumed(self._outcome, at)]
         told = self._texts.assumptions
         return [{"assumption": name, "text": told[name].format_map(values)} for name in names]
 
@@ -198,7 +207,7 @@ def _quantity_columns(points: Points, outcome: Outcome) -> _QuantityColumns:
     q, found, columns = outcome.quantities, outcome.findings, _QuantityColumns()
     row = ROWS["line-neutral-disconnection"]
     given = found.verdict[row] < Verdict.NOT_EXAMINED
-    voltage = points.number(0)
+    voltage = points.number(Number.VOLTAGE)
     with np.errstate(divide="ignore", invalid="ignore"):
         short = [
             np.where(given, prospective_current(q.rule(c), voltage, z), np.nan)
@@ -220,7 +229,9 @@ def _quantity_columns(points: Points, outcome: Outcome) -> _QuantityColumns:
     known = ~np.isnan(q.current.least)
     columns.time = (np.where(known, least, np.nan).tolist(), np.where(known, greatest, np.nan).tolist())
     quicker = residual < np.where(np.isnan(q.overcurrent_s.greatest), np.inf, q.overcurrent_s.greatest)
-    by = np.where(np.isinf(greatest), "none", np.where(quicker, "residual-current-device", "overcurrent-device"))
+    by = np.where(
+        np.isinf(greatest), "none", np.where(quicker, "residual-current-device", "overcurrent-device")
+    )
     columns.by = by.tolist()
     columns.plain = {
         "required_disconnection_time_s": np.where(q.wanting == 0, q.required_s, np.nan).tolist(),
@@ -230,7 +241,7 @@ def _quantity_columns(points: Points, outcome: Outcome) -> _QuantityColumns:
     return columns
 
 
-def _assumed(points: Points, outcome: Outcome, at: int) -> list[str]:
+def _assumed(outcome: Outcome, at: int) -> list[str]:
     """Assumptions that the choice of the loop and of the electrode made."""
     q, basis = outcome.quantities, int(outcome.quantities.loops.basis[at])
     live = bool(q.given.known[Reading.LOOP, at])

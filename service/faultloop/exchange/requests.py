@@ -1,6 +1,6 @@
 """The body of one measured point, as it comes in."""
 
-from typing import Annotated, Any, Literal
+from typing import Annotated, Literal
 
 from pydantic import Field
 from pydantic.functional_validators import AfterValidator
@@ -60,7 +60,9 @@ class Circuit(Closed):
 
     role: Literal["final", "distribution"] | None = None
     feeds: Literal["socket-outlets", "fixed-equipment", "mobile-equipment-outdoors"] | None = None
-    rated_current_a: Annotated[float, number("A", most=6300, positive=True, description="Rated current")] | None = None
+    rated_current_a: (
+        Annotated[float, number("A", most=6300, positive=True, description="Rated current")] | None
+    ) = None
     arrangement: Literal["radial", "ring"] = "radial"
     users: Literal["ordinary", "instructed", "skilled"] = "ordinary"
     designated_equipment: Annotated[bool, Field(strict=True)] = False
@@ -79,7 +81,9 @@ class Board(Closed):
     line_neutral_loop_impedance_ohm: Measured | None = None
     earth_fault_loop_impedance_ohm: Measured | None = None
     prospective_current_ka: Measured | None = None
-    assembly_conditional_rating_ka: Annotated[float, number("kA", most=1000, description="Rating")] | None = None
+    assembly_conditional_rating_ka: Annotated[float, number("kA", most=1000, description="Rating")] | None = (
+        None
+    )
 
 
 def _breaker_rated(value: float) -> float:
@@ -139,7 +143,9 @@ class Fuse(Closed):
             json_schema_extra=lambda schema: schema.update(enum=_fuse_ratings()),
         ),
     ]
-    breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None = None
+    breaking_capacity_ka: (
+        Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None
+    ) = None
     poles: Literal[1, 2, 3, 4] | None = None
 
 
@@ -200,7 +206,9 @@ class Policy(Closed):
 
     temperature: Literal["split", "two-thirds", "four-fifths", "none"] | None = None
     decision: Literal["guarded", "simple"] | None = None
-    coverage: Annotated[float, number("1", least=0.5, most=0.9999, description="Coverage probability")] | None = None
+    coverage: (
+        Annotated[float, number("1", least=0.5, most=0.9999, description="Coverage probability")] | None
+    ) = None
 
 
 def _known_rules(name: str) -> str:

@@ -1,6 +1,7 @@
 """Band: the least and greatest operating time that a standard guarantees at a current."""
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -27,7 +28,7 @@ class Band:
 
     def __post_init__(self) -> None:
         for name, steps in (("slow", self.slow), ("fast", self.fast)):
-            for (i1, t1), (i2, t2) in zip(steps, steps[1:], strict=False):
+            for (i1, t1), (i2, t2) in pairwise(steps):
                 if not (i1 < i2 and t1 > t2):
                     raise ValueError(f"{name} edge must rise in current and fall in time at {i2:g} A")
 

@@ -79,6 +79,7 @@ class Electrode(Sheet):
     stability_threshold: Ohms
     season_factor: Ratio
     source_allowance: Ohms
+    touch_limit_on_tn: Ratio
 
 
 class Instrument(Sheet):

@@ -27,7 +27,8 @@ def _applies(points: Points, q: Quantities) -> Flags:
         rated > q.rule("additional_sockets")
     )
     mobile = (feeds == Feeds.MOBILE_OUTDOORS) & ~(rated > q.rule("additional_mobile"))
-    return (points.choice(Choice.ROLE) != Role.DISTRIBUTION) & (sockets | mobile)
+    concerned: Flags = (points.choice(Choice.ROLE) != Role.DISTRIBUTION) & (sockets | mobile)
+    return concerned
 
 
 def _exemption(points: Points, q: Quantities) -> Ints:
@@ -54,7 +55,11 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(bits > 0, Standing.MET, "exempt")
     unknown_use = points.choice(Choice.FEEDS) == Feeds.UNKNOWN
     cases.when(~sensitive & unknown_use, Standing.UNDETERMINED, "use-missing")
-    cases.when(~sensitive & np.isnan(points.number(Number.RATED_CURRENT)), Standing.UNDETERMINED, "rated-current-missing")
+    cases.when(
+        ~sensitive & np.isnan(points.number(Number.RATED_CURRENT)),
+        Standing.UNDETERMINED,
+        "rated-current-missing",
+    )
     cases.when(np.isnan(rated), Standing.UNMET, "absent")
     cases.when(sensitive & own & q.residual.over_limit, Standing.UNMET, "device-over-time", defect=True)
     cases.when(sensitive & ~(own & q.residual.tested), Standing.UNDETERMINED, "operating-time-missing")

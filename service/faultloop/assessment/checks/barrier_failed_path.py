@@ -2,7 +2,13 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON, LOOP, PREREQUISITES, loop_is_wanting, prerequisites_are_wanting
+from faultloop.assessment.checks.common import (
+    COMPARISON,
+    LOOP,
+    PREREQUISITES,
+    loop_is_wanting,
+    prerequisites_are_wanting,
+)
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
 from faultloop.assessment.points import Choice, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities

@@ -17,8 +17,9 @@ REASONS = (
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
-    tt = points.choice(Choice.EARTHING) == Earthing.TT
-    return tt & ~np.isnan(points.number(Number.RESIDUAL_GREATEST_MA))
+    tt: Flags = points.choice(Choice.EARTHING) == Earthing.TT
+    fitted: Flags = ~np.isnan(points.number(Number.RESIDUAL_GREATEST_MA))
+    return np.logical_and(tt, fitted)
 
 
 def _judge(points: Points, q: Quantities) -> Judged:

@@ -41,7 +41,9 @@ def _loop(points: Points, q: Quantities) -> tuple[Interval, Flags, Flags]:
     hot = heated_loop(cold, np.full(points.count, np.nan), part, part_u, q.factor)
     measured = ~np.isnan(cold.nominal)
     no_larger = points.number(Number.PROTECTIVE_MM2) <= points.number(Number.NEUTRAL_MM2)
-    inferred = ~measured & ~q.tt & (points.choice(Choice.INFERABLE) == 1) & no_larger & (q.loops.fault == Fault.NONE)
+    inferred = (
+        ~measured & ~q.tt & (points.choice(Choice.INFERABLE) == 1) & no_larger & (q.loops.fault == Fault.NONE)
+    )
     bound = Interval(np.zeros(points.count), q.hot.greatest, q.hot.nominal)
     loop = Interval(*(np.where(inferred, b, m) for b, m in zip(_ends(bound), _ends(hot), strict=True)))
     return loop, measured, inferred
@@ -49,7 +51,11 @@ def _loop(points: Points, q: Quantities) -> tuple[Interval, Flags, Flags]:
 
 def _cold(points: Points, q: Quantities) -> tuple[Interval, Array, Array]:
     """Z_LN as read, else on TT the origin's with R1 + R2; with the part outside that is not heated."""
-    read, at, dead = q.given.reading(Reading.LINE_NEUTRAL), Reading.ORIGIN_LINE_NEUTRAL, Reading.LINE_PLUS_PROTECTIVE
+    read, at, dead = (
+        q.given.reading(Reading.LINE_NEUTRAL),
+        Reading.ORIGIN_LINE_NEUTRAL,
+        Reading.LINE_PLUS_PROTECTIVE,
+    )
     origin, origin_u = points.value[at], q.given.uncertainty[at]
     total, u = origin + q.loops.dead_resistance, combined(origin_u, q.given.uncertainty[dead])
     use = q.tt & ~q.given.known[Reading.LINE_NEUTRAL] & q.given.known[dead] & ~np.isnan(total)

@@ -2,7 +2,13 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON, LOOP, PREREQUISITES, loop_is_wanting, prerequisites_are_wanting
+from faultloop.assessment.checks.common import (
+    COMPARISON,
+    LOOP,
+    PREREQUISITES,
+    loop_is_wanting,
+    prerequisites_are_wanting,
+)
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict
 from faultloop.assessment.points import Choice, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities
@@ -32,6 +38,8 @@ def _judge(points: Points, q: Quantities) -> Judged:
     multiple = catalogue().residual.operating_current(row, q.required_s)
     current = multiple * points.number(Number.RESIDUAL_MA) / 1000.0
     limit = prospective_current(q.rule("c_min"), points.number(Number.VOLTAGE), current)
+    touch = q.rule("touch_voltage") / (points.number(Number.RESIDUAL_MA) / 1000.0)
+    limit = np.where(~q.tt & (q.rule("touch_limit_on_tn") > 0), np.minimum(limit, touch), limit)
     relied_on = ~q.tt & (q.overcurrent != Verdict.PASS)
     cases = Cases(REASONS)
     prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)

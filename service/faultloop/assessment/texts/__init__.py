@@ -3,6 +3,8 @@
 from functools import lru_cache
 from importlib import resources
 
+from pydantic import Field
+
 from faultloop.rules.strict import DataFileError, Sheet, Text, read_sheet, read_table
 
 
@@ -11,7 +13,7 @@ class Said(Sheet):
 
     explanation: Text
     settled_by: Text | None = None
-    cautions: list[Text] = []
+    cautions: list[Text] = Field(default_factory=list)
 
 
 class Condition(Sheet):
@@ -73,7 +75,10 @@ def _nested(table: dict[str, object]) -> dict[str, object]:
     nested = {}
     for name, own in checks.items():
         plain = {key: value for key, value in own.items() if not isinstance(value, dict)}
-        nested[name] = {**plain, "reasons": {key: value for key, value in own.items() if isinstance(value, dict)}}
+        nested[name] = {
+            **plain,
+            "reasons": {key: value for key, value in own.items() if isinstance(value, dict)},
+        }
     return {**table, "checks": nested}
 
 
