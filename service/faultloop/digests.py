@@ -9,6 +9,8 @@ import json
 import math
 from typing import Any
 
+from pydantic_core import to_json
+
 SIGNIFICANT_DIGITS = 6
 
 
@@ -23,6 +25,11 @@ def canonical_bytes(value: Any) -> bytes:
     """Give the one JSON text of a value: sorted keys, no spaces, UTF-8, no NaN."""
     text = json.dumps(value, sort_keys=True, separators=(",", ":"), ensure_ascii=False, allow_nan=False)
     return text.encode()
+
+
+def json_bytes(value: Any) -> bytes:
+    """Give the JSON text of an answer, in the order in which it was built."""
+    return to_json(value, inf_nan_mode="strings")
 
 
 def sha256(data: bytes) -> str:

@@ -1,0 +1,1 @@
+"""HTTP: app factory, gather, one router a resource, problem details."""

@@ -4,6 +4,8 @@ from dataclasses import dataclass
 from functools import lru_cache
 from typing import cast
 
+import numpy as np
+
 from faultloop.digests import digest
 from faultloop.protection.band import Band, BandTable, compile_bands
 from faultloop.protection.breakers import breaker_band, breaker_table
@@ -72,3 +74,9 @@ def catalogue() -> Catalogue:
         residual_rows={delay: row for row, delay in enumerate(DELAYS)},
         digest=digest([sheet.model_dump(mode="json") for sheet in told]),
     )
+
+
+def residual_multiple(delay: str, time_s: float) -> float:
+    """Least multiple of IΔn at which a residual device is sure to operate within a time; inf where none is."""
+    row = np.array([catalogue().residual_rows[delay]])
+    return float(catalogue().residual.operating_current(row, np.array([time_s]))[0])

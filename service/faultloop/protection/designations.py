@@ -108,3 +108,10 @@ def parse_residual(text: str) -> ResidualDevice:
         )
     kind = cast(ResidualType, match[2].upper()) if match[2] else None
     return ResidualDevice(float(match[1]), kind, "selective" if match[3] else "general")
+
+
+def parse_device(text: str) -> OvercurrentDevice | ResidualDevice:
+    """Read the designation of either kind of device; what cannot be read is refused, saying what was expected."""
+    if "ma" in text.lower():
+        return parse_residual(text)
+    return parse_overcurrent(text)

@@ -1,0 +1,154 @@
+"""/v1/assessments: judge a point, with or without storing it; read, list and replay what is stored."""
+
+import base64
+import binascii
+import json
+from datetime import UTC
+from typing import Annotated, Any
+from uuid import UUID
+
+from fastapi import APIRouter, Header, Query, Request, Response
+
+from faultloop import __version__
+from faultloop.api.problems import Refused
+from faultloop.digests import digest, json_bytes, sha256
+from faultloop.exchange.answers import Assessment
+from faultloop.exchange.render import request_bytes
+from faultloop.exchange.requests import AssessmentRequest
+from faultloop.exchange.resources import AssessmentList, ListQuery, ReplayBody
+from faultloop.records.queries import find, page
+from faultloop.records.tables import Record, Stored
+from faultloop.replay import replay
+
+router = APIRouter(prefix="/v1/assessments", tags=["assessments"])
+JSON = "application/json"
+MOST_PER_PAGE = 200
+
+
+@router.post("/preview", response_model=Assessment, summary="Judge one measured point; store nothing")
+async def preview_assessment(body: AssessmentRequest, request: Request) -> Response:
+    """Give the verdict on one point with its arithmetic; nothing is stored."""
+    answer = await request.app.state.gather.assess(body, sha256(request_bytes(body)))
+    return Response(json_bytes(answer), media_type=JSON, headers={"Cache-Control": "no-store"})
+
+
+@router.put(
+    "/{id}",
+    response_model=Assessment,
+    summary="Judge one measured point and store the answer",
+    responses={201: {"model": Assessment, "description": "Judged and stored"}},
+)
+async def put_assessment(
+    id: UUID,  # noqa: A002
+    body: AssessmentRequest,
+    request: Request,
+    if_none_match: Annotated[str | None, Header(max_length=200, description="* asks for a new one only")] = None,
+) -> Response:
+    """Judge and store under the caller's id; the same body again answers what is stored, another is refused."""
+    raw = request_bytes(body)
+    input_digest = sha256(raw)
+    answer = await request.app.state.gather.assess(body, input_digest)
+    record = _record(id, body, raw, input_digest, answer)
+    stored, created = await request.app.state.writer.put(record)
+    if stored.record.input_digest != input_digest:
+        raise Refused("precondition-failed" if if_none_match is not None else "conflict")
+    return _stored_answer(stored, 201 if created else 200)
+
+
+def _record(id: UUID, body: AssessmentRequest, raw: bytes, input_digest: str, answer: dict[str, Any]) -> Record:  # noqa: A002
+    provenance = answer["provenance"]
+    return Record(
+        id=str(id),
+        input_digest=input_digest,
+        verdict=answer["verdict"],
+        urgency=answer["urgency"],
+        rules=provenance["rules"],
+        label=body.point.label,
+        engine=__version__,
+        rules_digest=provenance["rules_digest"],
+        devices_digest=provenance["devices_digest"],
+        request=raw,
+        answer=json_bytes(answer),
+    )
+
+
+def _stored_answer(stored: Stored, status: int) -> Response:
+    headers = {"ETag": f'"{sha256(stored.record.answer)}"', "Cache-Control": "no-store"}
+    headers["Location"] = f"/v1/assessments/{stored.record.id}"
+    return Response(stored.record.answer, status, media_type=JSON, headers=headers)
+
+
+@router.get("/{id}", response_model=Assessment, summary="Read a stored assessment")
+def get_assessment(
+    id: UUID,  # noqa: A002
+    request: Request,
+    if_none_match: Annotated[str | None, Header(max_length=200)] = None,
+) -> Response:
+    """Give the stored answer, byte for byte."""
+    stored = _found(request, id)
+    answer = _stored_answer(stored, 200)
+    wanted = {tag.strip().removeprefix("W/") for tag in (if_none_match or "").split(",")}
+    if answer.headers["ETag"] in wanted or "*" in wanted:
+        return Response(status_code=304, headers={"ETag": answer.headers["ETag"]})
+    return answer
+
+
+@router.get("", response_model=AssessmentList, summary="List stored assessments, newest first")
+def list_assessments(query: Annotated[ListQuery, Query()], request: Request) -> Response:
+    """Give one page; `next` leads on, and what is stored meanwhile neither repeats nor hides a line."""
+    size = min(query.page_size, MOST_PER_PAGE)
+    filters = {"verdict": query.verdict, "urgency": query.urgency}
+    before = _position(query.cursor, filters)
+    rows = page(request.app.state.engine, before=before, size=size + 1, **filters)
+    fields = ("id", "label", "verdict", "urgency", "rules", "input_digest")
+    items = []
+    for row in rows[:size]:
+        item = {name: getattr(row, name) for name in fields if getattr(row, name) is not None}
+        items.append({**item, "stored_at": row.stored_at.astimezone(UTC).isoformat().replace("+00:00", "Z")})
+    body: dict[str, Any] = {"items": items}
+    if len(rows) > size:
+        cursor = _cursor(rows[size - 1].sequence, filters)
+        wanted = {"page_size": size, "cursor": cursor, **{k: v for k, v in filters.items() if v}}
+        body["next"] = str(request.url.replace_query_params(**wanted))
+    return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
+
+
+def _cursor(sequence: int, filters: dict[str, Any]) -> str:
+    told = json.dumps([sequence, digest(filters)[:16]]).encode()
+    return base64.urlsafe_b64encode(told).decode().rstrip("=")
+
+
+def _position(cursor: str | None, filters: dict[str, Any]) -> int | None:
+    """Sequence that a cursor stands for; one of another list is refused."""
+    if cursor is None:
+        return None
+    try:
+        sequence, told = json.loads(base64.urlsafe_b64decode(cursor + "=" * (-len(cursor) % 4)))
+    except (binascii.Error, ValueError, TypeError):
+        raise Refused("refused", "This cursor was not given by this service.") from None
+    if told != digest(filters)[:16] or type(sequence) is not int or not 0 < sequence < 2**62:
+        raise Refused("refused", "This cursor belongs to another list.")
+    return sequence
+
+
+@router.get("/{id}/replay", response_model=ReplayBody, summary="Compute a stored assessment again")
+def replay_assessment(id: UUID, request: Request) -> Response:  # noqa: A002
+    """Compute the stored input again under the stored edition, and say whether the bytes are the same."""
+    stored = _found(request, id).record
+    again = replay(stored.request, stored.answer, stored.rules, stored.input_digest)
+    body: dict[str, Any] = {
+        "id": stored.id,
+        "identical": again.identical,
+        "stored": json.loads(stored.answer)["provenance"],
+        "differences": again.differences,
+    }
+    if again.recomputed is not None:
+        body["recomputed"] = again.recomputed["provenance"]
+    return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
+
+
+def _found(request: Request, id: UUID) -> Stored:  # noqa: A002
+    stored = find(request.app.state.engine, str(id))
+    if stored is None:
+        raise Refused("not-found", "No assessment is stored under this id.")
+    return stored

@@ -1,0 +1,47 @@
+"""Stored bytes -> computed again -> identical, or what differs."""
+
+import json
+from dataclasses import dataclass
+from typing import Any
+
+from faultloop.digests import json_bytes
+from faultloop.exchange.render import assess_requests
+from faultloop.exchange.requests import AssessmentRequest
+from faultloop.rules.loader import resolve
+
+MOST_DIFFERENCES = 100
+
+
+@dataclass(frozen=True, slots=True)
+class Replay:
+    """What computing a stored assessment again gave."""
+
+    identical: bool
+    recomputed: dict[str, Any] | None
+    differences: list[dict[str, Any]]
+
+
+def replay(request: bytes, answer: bytes, rules: str, input_digest: str) -> Replay:
+    """Compute a stored request again, under the very edition that was stored with it."""
+    if resolve(rules) is None:
+        return Replay(False, None, [{"pointer": "/provenance/rules", "stored": rules}])
+    body = {**json.loads(request), "rules": rules}
+    again = assess_requests([AssessmentRequest.model_validate(body)], [input_digest])[0]
+    if json_bytes(again) == answer:
+        return Replay(True, again, [])
+    return Replay(False, again, list(_differences(json.loads(answer), json.loads(json_bytes(again)), ""))[:MOST_DIFFERENCES])
+
+
+def _differences(stored: Any, now: Any, pointer: str) -> list[dict[str, Any]]:
+    """Every place at which two JSON values differ, by JSON Pointer."""
+    if isinstance(stored, dict) and isinstance(now, dict):
+        pairs = [(key, stored.get(key), now.get(key)) for key in {**stored, **now}]
+    elif isinstance(stored, list) and isinstance(now, list) and len(stored) == len(now):
+        pairs = [(str(at), a, b) for at, (a, b) in enumerate(zip(stored, now, strict=True))]
+    else:
+        return [] if stored == now else [{"pointer": pointer, "stored": stored, "recomputed": now}]
+    return [found for key, a, b in pairs for found in _differences(a, b, f"{pointer}/{_escaped(key)}")]
+
+
+def _escaped(key: str) -> str:
+    return key.replace("~", "~0").replace("/", "~1")

@@ -1,0 +1,24 @@
+"""The floor: a FastAPI and Pydantic route that takes and returns the service's bodies and computes nothing."""
+
+import gc
+
+from fastapi import FastAPI
+
+from faultloop.exchange.answers import Assessment
+from faultloop.exchange.examples import EXAMPLE_REQUEST
+from faultloop.exchange.render import assess_requests
+from faultloop.exchange.requests import AssessmentRequest
+
+ANSWER = Assessment.model_validate(assess_requests([AssessmentRequest.model_validate(EXAMPLE_REQUEST)])[0])
+
+app = FastAPI()
+
+
+@app.post("/bare", response_model_exclude_none=True)
+async def bare(body: AssessmentRequest) -> Assessment:  # noqa: ARG001
+    """Validate the request, answer a ready answer through its model."""
+    return ANSWER
+
+
+gc.collect()
+gc.freeze()
