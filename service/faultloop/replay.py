@@ -29,7 +29,11 @@ def replay(request: bytes, answer: bytes, rules: str, input_digest: str) -> Repl
     again = assess_requests([AssessmentRequest.model_validate(body)], [input_digest])[0]
     if json_bytes(again) == answer:
         return Replay(True, again, [])
-    return Replay(False, again, list(_differences(json.loads(answer), json.loads(json_bytes(again)), ""))[:MOST_DIFFERENCES])
+    return Replay(
+        False,
+        again,
+        list(_differences(json.loads(answer), json.loads(json_bytes(again)), ""))[:MOST_DIFFERENCES],
+    )
 
 
 def _differences(stored: Any, now: Any, pointer: str) -> list[dict[str, Any]]:

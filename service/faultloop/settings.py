@@ -17,6 +17,4 @@ class Settings(BaseSettings):
     writer_capacity: int = Field(
         default=2048, ge=1, description="Assessments that may wait to be stored before 503 is answered"
     )
-    writer_group: int = Field(
-        default=256, ge=1, le=1000, description="Most assessments stored in one transaction"
-    )
+    writer_group: int = Field(default=256, ge=1, le=1000, description="Most assessments stored in one transaction")

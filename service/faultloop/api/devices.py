@@ -20,7 +20,7 @@ from faultloop.protection.designations import (
     parse_device,
 )
 from faultloop.protection.fuses import fuse_families
-from faultloop.protection.residual import residual_band, residual_table
+from faultloop.protection.residual import residual_table
 from faultloop.rules.loader import LoadedRules, resolve
 
 router = APIRouter(prefix="/v1", tags=["devices"])
@@ -98,7 +98,7 @@ async def get_device_curve(
 
 def _band(device: OvercurrentDevice | ResidualDevice, rules: LoadedRules) -> tuple[Band, float]:
     if isinstance(device, ResidualDevice):
-        return residual_band(device.delay), device.rated_ma / 1000.0
+        return catalogue().residual_bands[device.delay], device.rated_ma / 1000.0
     return device_band(device, rules.rules), 1.0
 
 

@@ -20,7 +20,11 @@ def document(app: FastAPI) -> dict[str, Any]:
     """Write the document once; it is then kept on the app."""
     if app.openapi_schema is None:
         schema = get_openapi(
-            title=app.title, version=app.version, description=DESCRIPTION, routes=app.routes, openapi_version="3.1.0"
+            title=app.title,
+            version=app.version,
+            description=DESCRIPTION,
+            routes=app.routes,
+            openapi_version="3.1.0",
         )
         schema["servers"] = [{"url": "/", "description": "This service"}]
         for path in schema["paths"].values():

@@ -17,7 +17,7 @@ Refused
 import logging
 import uuid
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from difflib import get_close_matches
 from typing import Any
 
@@ -29,39 +29,90 @@ from starlette.routing import Match
 
 from faultloop.digests import json_bytes
 from faultloop.exchange import fields, requests
-from faultloop.records.errors import RecordRefused, RecordsError, StorageFailed, WriterBusy, WriterClosed
+from faultloop.records.errors import RecordRefused, RecordsError, WriterBusy, WriterClosed
 
 MEDIA_TYPE = "application/problem+json"
 _log = logging.getLogger(__name__)
 
 KINDS: dict[str, tuple[int, str, str]] = {
-    "invalid-body": (422, "A field cannot be used", "See errors: each names the field by JSON Pointer and says what is expected. Nothing was judged or stored."),
-    "invalid-query": (422, "A query or path parameter cannot be used", "See errors: each names the parameter and says what is expected."),
-    "unreadable-body": (400, "The body is not readable JSON", "Send one JSON object in UTF-8. NaN, Infinity and trailing commas are not JSON."),
+    "invalid-body": (
+        422,
+        "A field cannot be used",
+        "See errors: each names the field by JSON Pointer and says what is expected. Nothing was judged or stored.",
+    ),
+    "invalid-query": (
+        422,
+        "A query or path parameter cannot be used",
+        "See errors: each names the parameter and says what is expected.",
+    ),
+    "unreadable-body": (
+        400,
+        "The body is not readable JSON",
+        "Send one JSON object in UTF-8. NaN, Infinity and trailing commas are not JSON.",
+    ),
     "not-found": (404, "Nothing is here", "Check the address and the id."),
-    "method-not-allowed": (405, "This method is not offered here", "The Allow header lists the methods of this address."),
-    "conflict": (409, "This id stands for another input", "Assessments are not changed: use a new id for another reading, or read the stored one."),
-    "precondition-failed": (412, "The id is taken", "If-None-Match asked for a new assessment only, and this id stands for another input."),
-    "body-too-large": (413, "The body is too large", "One measured point is a few kilobytes; send many points one by one."),
+    "method-not-allowed": (
+        405,
+        "This method is not offered here",
+        "The Allow header lists the methods of this address.",
+    ),
+    "conflict": (
+        409,
+        "This id stands for another input",
+        "Assessments are not changed: use a new id for another reading, or read the stored one.",
+    ),
+    "precondition-failed": (
+        412,
+        "The id is taken",
+        "If-None-Match asked for a new assessment only, and this id stands for another input.",
+    ),
+    "body-too-large": (
+        413,
+        "The body is too large",
+        "One measured point is a few kilobytes; send many points one by one.",
+    ),
     "unsupported-media-type": (415, "This kind of body is not read", "Send application/json."),
-    "busy": (503, "Too much waits to be stored", "Try again after the seconds in Retry-After; the same id and body are safe to repeat."),
-    "storage-failed": (503, "The database did not confirm", "Take it as not stored and try again; the same id and body are safe to repeat."),
-    "internal": (500, "The service failed", "The fault is logged with this instance. Nothing was decided: take the point as not judged."),
+    "busy": (
+        503,
+        "Too much waits to be stored",
+        "Try again after the seconds in Retry-After; the same id and body are safe to repeat.",
+    ),
+    "storage-failed": (
+        503,
+        "The database did not confirm",
+        "Take it as not stored and try again; the same id and body are safe to repeat.",
+    ),
+    "internal": (
+        500,
+        "The service failed",
+        "The fault is logged with this instance. Nothing was decided: take the point as not judged.",
+    ),
     "refused": (400, "The request is refused", "See detail."),
-}  # fmt: skip
-_BY_STATUS = {400: "unreadable-body", 404: "not-found", 405: "method-not-allowed", 413: "body-too-large", 415: "unsupported-media-type"}  # fmt: skip
+}
+_BY_STATUS = {
+    400: "unreadable-body",
+    404: "not-found",
+    405: "method-not-allowed",
+    413: "body-too-large",
+    415: "unsupported-media-type",
+}
 
 
-@dataclass(slots=True)
+@dataclass
 class Refused(Exception):
     """A refusal by kind, with a detail of its own where the kind's does not say enough."""
 
     kind: str
     detail: str | None = None
-    headers: dict[str, str] = field(default_factory=dict)
 
 
-def problem(kind: str, *, detail: str | None = None, errors: Sequence[dict[str, str]] = (), **headers: str) -> Response:
+def problem(
+    kind: str,
+    *,
+    detail: str | None = None,
+    errors: Sequence[dict[str, str]] = (),
+    headers: dict[str, str] | None = None,
+) -> Response:
     """The response of one problem."""
     status, title, usual = KINDS[kind]
     body: dict[str, Any] = {
@@ -73,13 +124,13 @@ def problem(kind: str, *, detail: str | None = None, errors: Sequence[dict[str, 
     }
     if errors:
         body["errors"] = list(errors)
-    named = {name.replace("_", "-"): value for name, value in headers.items()}
-    return Response(json_bytes(body), status, media_type=MEDIA_TYPE, headers=named)
+    return Response(json_bytes(body), status, media_type=MEDIA_TYPE, headers=headers)
 
 
 _WORDS = {
     "missing": "this field is required",
-    "float_type": "a plain number is expected: decimal point, no unit, no quotes; for an over-range display send an object with value and bound",
+    "float_type": "a plain number is expected: decimal point, no unit, no quotes; "
+    "for an over-range display send an object with value and bound",
     "finite_number": "a finite number is expected; for an over-range display send an object with value and bound",
     "bool_type": "true or false is expected",
     "string_type": "text in quotes is expected",
@@ -89,7 +140,7 @@ _WORDS = {
     "list_type": "a list is expected",
     "union_tag_not_found": "state which kind it is",
     "string_pattern_mismatch": "this text is not of the expected form",
-}  # fmt: skip
+}
 
 
 def _known_fields() -> list[str]:
@@ -102,7 +153,9 @@ def _detail(error: dict[str, Any]) -> str:
     kind, context = error["type"], error.get("ctx", {})
     if kind == "extra_forbidden":
         near = get_close_matches(str(error["loc"][-1]), _known_fields(), n=1, cutoff=0.75)
-        return "no such field here" + (f"; did you mean {near[0]}?" if near else "; check the spelling and the unit in its name")
+        return "no such field here" + (
+            f"; did you mean {near[0]}?" if near else "; check the spelling and the unit in its name"
+        )
     if kind == "union_tag_invalid":
         return f"expected one of {context.get('expected_tags', '')}"
     if kind == "value_error":
@@ -118,7 +171,9 @@ def _pointer(location: Iterable[Any], body: Any) -> str:
     parts, here = list(location), body
     kept: list[str] = []
     for at, part in enumerate(parts):
-        if (isinstance(here, dict) and part in here) or (isinstance(here, list) and isinstance(part, int) and part < len(here)):
+        if (isinstance(here, dict) and part in here) or (
+            isinstance(here, list) and isinstance(part, int) and part < len(here)
+        ):
             here = here[part]
         elif at < len(parts) - 1 or not isinstance(here, dict):
             continue
@@ -132,7 +187,11 @@ def _invalid(error: RequestValidationError) -> Response:
         return problem("unreadable-body")
     in_body = all(fault["loc"][:1] == ("body",) for fault in faults)
     told = [
-        {"pointer": _pointer(fault["loc"][1:], error.body if in_body else {}), "code": fault["type"], "detail": _detail(fault)}
+        {
+            "pointer": _pointer(fault["loc"][1:], error.body if in_body else {}),
+            "code": fault["type"],
+            "detail": _detail(fault),
+        }
         for fault in faults[:50]
     ]
     return problem("invalid-body" if in_body else "invalid-query", errors=told)
@@ -153,7 +212,7 @@ def install(app: FastAPI) -> None:
 
     @app.exception_handler(Refused)
     async def refused(_: Request, error: Refused) -> Response:
-        return problem(error.kind, detail=error.detail, **error.headers)
+        return problem(error.kind, detail=error.detail)
 
     @app.exception_handler(RequestValidationError)
     async def invalid(_: Request, error: RequestValidationError) -> Response:
@@ -162,19 +221,20 @@ def install(app: FastAPI) -> None:
     @app.exception_handler(HTTPException)
     async def http(request: Request, error: HTTPException) -> Response:
         kind = _BY_STATUS.get(error.status_code, "refused" if error.status_code < 500 else "internal")
-        return problem(kind, Allow=_allowed(request)) if error.status_code == 405 else problem(kind)
+        return problem(kind, headers={"Allow": _allowed(request)}) if error.status_code == 405 else problem(kind)
 
     @app.exception_handler(RecordsError)
     async def records(_: Request, error: RecordsError) -> Response:
         if isinstance(error, WriterBusy | WriterClosed):
-            return problem("busy", Retry_After="1")
+            return problem("busy", headers={"Retry-After": "1"})
         _log.error("storage failed: %s", error)
-        return problem("internal") if isinstance(error, RecordRefused) else problem("storage-failed", Retry_After="5")
+        return (
+            problem("internal")
+            if isinstance(error, RecordRefused)
+            else problem("storage-failed", headers={"Retry-After": "5"})
+        )
 
     @app.exception_handler(Exception)
     async def internal(_: Request, error: Exception) -> Response:
         _log.error("unexpected failure", exc_info=error)
         return problem("internal")
-
-
-__all__ = ["KINDS", "Refused", "StorageFailed", "install", "problem"]

@@ -61,18 +61,14 @@ class Explainer:
         points, found = self._points, self._outcome.findings
         policy = _POLICIES[int(points.choices[Choice.TEMPERATURE_POLICY, at])]
         basis = _BASES[int(self._outcome.quantities.loops.basis[at])]
-        template, said = _template(
-            self._language, CHECKS[check].id, CHECKS[check].reasons[reason], policy, basis
-        )
+        template, said = _template(self._language, CHECKS[check].id, CHECKS[check].reasons[reason], policy, basis)
         values["nominal"], values["limit"] = float(found.nominal[check, at]), float(found.limit[check, at])
         values["value_least"], values["value_greatest"] = (
             float(found.least[check, at]),
             float(found.greatest[check, at]),
         )
         values["z_or_value"] = values["nominal"]
-        values["side"] = self._phrases[
-            "below" if found.nominal[check, at] <= found.limit[check, at] else "above"
-        ]
+        values["side"] = self._phrases["below" if found.nominal[check, at] <= found.limit[check, at] else "above"]
         if CHECKS[check].id == "residual-disconnection":
             self._tell_residual_limit(values)
         question = None if said.settled_by is None else said.settled_by.format_map(values)
@@ -165,9 +161,7 @@ def _tell(values: Values, q: Quantities, at: int, phrase: dict[str, str]) -> Non
     values["marginal_question"] = phrase["marginal-question" if external else "marginal-question-external"]
 
 
-def cautions_of(
-    points: Points, outcome: Outcome, at: int, named: set[str], language: str = "en"
-) -> list[str]:
+def cautions_of(points: Points, outcome: Outcome, at: int, named: set[str], language: str = "en") -> list[str]:
     """Cautions that an answer carries: the standing ones, those of its state, and those its findings name."""
     earthing = int(points.choices[Choice.EARTHING, at])
     if earthing == Earthing.TT:

@@ -32,9 +32,7 @@ def given(points: Points) -> Given:
     rows, rules = np.arange(READINGS)[:, None], points.choice(Choice.RULES)[None, :]
     table = rule.table
     percent = np.where(np.isnan(points.percent), table.percent[rules, rows, points.method], points.percent)
-    constant = np.where(
-        np.isnan(points.constant), table.constant[rules, rows, points.method], points.constant
-    )
+    constant = np.where(np.isnan(points.constant), table.constant[rules, rows, points.method], points.constant)
     u = expanded_uncertainty(points.value, percent, constant) * points.coverage
     least = np.where(points.bound == Bound.BELOW, 0.0, np.maximum(points.value - u, 0.0))
     greatest = np.where(points.bound == Bound.ABOVE, np.inf, points.value + u)

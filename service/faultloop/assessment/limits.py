@@ -29,7 +29,13 @@ def loop_limit(
         return _residual_limit(device, rules, time_s, voltage_v)
     row = np.array([catalogue().rows[rules.key, device]])
     current = float(catalogue().overcurrent.operating_current(row, np.array([time_s]))[0])
-    values = {"device": device.designation, "required": time_s, "rules": rules.title, "ia": current, "u0": voltage_v}
+    values = {
+        "device": device.designation,
+        "required": time_s,
+        "rules": rules.title,
+        "ia": current,
+        "u0": voltage_v,
+    }
     clause = rules.clauses["overcurrent-disconnection"]
     if np.isinf(current):
         told = texts().shared["no-guaranteed-current"].explanation
@@ -55,7 +61,11 @@ def _residual_limit(device: ResidualDevice, rules: RuleSet, time_s: float, volta
     by_time = _loop(rules.voltage_factor.least.value, voltage_v, multiple * rated)
     by_touch = rules.disconnection.touch_voltage_ac.value / rated
     values |= {"c_min": rules.voltage_factor.least.value, "u0": voltage_v, "needed": multiple}
-    values |= {"by_time": by_time, "by_touch": by_touch, "touch_limit": rules.disconnection.touch_voltage_ac.value}
+    values |= {
+        "by_time": by_time,
+        "by_touch": by_touch,
+        "touch_limit": rules.disconnection.touch_voltage_ac.value,
+    }
     values["limit"] = min(by_time, by_touch)
     told = texts().sentences["limit.residual"].format_map(values)
     return Limit(min(by_time, by_touch), multiple * rated, told, clause)

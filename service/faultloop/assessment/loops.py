@@ -47,6 +47,7 @@ class Loops:
     basis: Ints
     fault: Ints
     dead_resistance: Array
+    heated_known: Array
     external: Array
     external_u: Array
     expected: Expected
@@ -68,9 +69,7 @@ def loops(g: Given) -> Loops:
     live, dead_resistance = _live(g, no_trip), _dead_resistance(g)
     expected = _expected(g, dead_resistance)
     excess = points.value[Reading.LOOP] - expected.value
-    slack = combined(g.uncertainty[Reading.LOOP], expected.uncertainty) + np.where(
-        no_trip, g.rule["uplift"], 0.0
-    )
+    slack = combined(g.uncertainty[Reading.LOOP], expected.uncertainty) + np.where(no_trip, g.rule["uplift"], 0.0)
     beyond = known_live & (excess > slack)
     outranked = expected.by_dead_test & no_trip & ~beyond & (points.bound[Reading.LOOP] != Bound.ABOVE)
     loop, basis = _chosen(g, live, expected, outranked | (expected.by_dead_test & ~known_live), no_trip)
@@ -80,7 +79,9 @@ def loops(g: Given) -> Loops:
         live=live,
         basis=basis,
         fault=_fault(g, basis),
-        dead_resistance=np.where(basis == Basis.ELECTRODE, 0.0, dead_resistance),
+        dead_resistance=dead_resistance,
+        # An electrode is not a conductor that warms in service.
+        heated_known=np.where(basis == Basis.ELECTRODE, 0.0, dead_resistance),
         external=external,
         external_u=external_u,
         expected=expected,
@@ -96,18 +97,14 @@ def _live(g: Given, no_trip: Flags) -> Interval:
     plain = g.reading(Reading.LOOP)
     external = np.where(g.known[Reading.EXTERNAL], g.points.value[Reading.EXTERNAL], 0.0)
     lower = np.maximum(plain.least - g.rule["uplift"], np.minimum(external, plain.nominal))
-    return Interval(
-        np.where(no_trip, np.fmin(lower, plain.least), plain.least), plain.greatest, plain.nominal
-    )
+    return Interval(np.where(no_trip, np.fmin(lower, plain.least), plain.least), plain.greatest, plain.nominal)
 
 
 def _dead_resistance(g: Given) -> Array:
     """R1 + R2 where a dead test measured it; a value computed from the loop itself proves nothing."""
     reading = Reading.LINE_PLUS_PROTECTIVE
     method = g.points.method[reading]
-    tested = (
-        (g.points.bound[reading] == Bound.EXACT) & (method != Method.CALCULATED) & (method != Method.DECLARED)
-    )
+    tested = (g.points.bound[reading] == Bound.EXACT) & (method != Method.CALCULATED) & (method != Method.DECLARED)
     return np.where(tested, g.points.value[reading], np.nan)
 
 
@@ -127,9 +124,7 @@ def _expected(g: Given, dead_resistance: Array) -> Expected:
     return Expected(external + part, combined(g.uncertainty[at], part_u), by_dead_test)
 
 
-def _chosen(
-    g: Given, live: Interval, expected: Expected, outranked: Flags, no_trip: Flags
-) -> tuple[Interval, Ints]:
+def _chosen(g: Given, live: Interval, expected: Expected, outranked: Flags, no_trip: Flags) -> tuple[Interval, Ints]:
     dead, dead_u = expected.value, expected.uncertainty
     # On TT without a loop reading the loop is R_A and an allowance for the source's earth.
     electrode, allowance = g.reading(Reading.ELECTRODE), g.rule["source_allowance"]
@@ -161,8 +156,10 @@ def _external(g: Given) -> tuple[Array, Array]:
 
 
 def _fault(g: Given, basis: Ints) -> Ints:
-    value, bound = g.points.value, g.points.bound
-    implausible = (bound[Reading.LOOP] == Bound.EXACT) & (value[Reading.LOOP] < g.rule["least_plausible"])
+    value, least = g.points.value, g.rule["least_plausible"]
+    parts = [Reading.LOOP, Reading.EXTERNAL, Reading.LINE_PLUS_PROTECTIVE]
+    exact = g.points.bound[parts] == Bound.EXACT
+    implausible: Flags = np.logical_or.reduce(exact & (value[parts] < least), axis=0)
     u = combined(g.uncertainty[Reading.LOOP], g.uncertainty[Reading.EXTERNAL])
     below = value[Reading.EXTERNAL] - value[Reading.LOOP] > u
     fault = np.where(below, Fault.BELOW_EXTERNAL, np.where(basis == Basis.NONE, Fault.MISSING, Fault.NONE))

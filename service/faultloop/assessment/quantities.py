@@ -5,8 +5,10 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.given import Given, given
+from faultloop.assessment.line_neutral import LineNeutral, line_neutral
 from faultloop.assessment.loops import Loops, loops
 from faultloop.assessment.points import (
+    Bound,
     Choice,
     Codes,
     Current,
@@ -69,6 +71,7 @@ class Quantities:
     current: Interval
     overcurrent_s: Interval
     residual: ResidualTimes
+    line_neutral: LineNeutral
     touch_v: Array
     touch_known: Flags
 
@@ -88,7 +91,7 @@ def shared(points: Points) -> Quantities:
     rule, voltage, device = g.rule, points.number(Number.VOLTAGE), points.choice(Choice.DEVICE)
     found, required = loops(g), required_time(points, rule)
     factor = temperature_factor(points.number(Number.SERVICE_C), points.number(Number.TEST_C), rule["alpha"])
-    hot = heated_loop(found.loop, found.dead_resistance, found.external, found.external_u, factor)
+    hot = heated_loop(found.loop, found.heated_known, found.external, found.external_u, factor)
     band = catalogue().overcurrent
     operating = band.operating_current(device, required)
     limit, compared = _loop_limit(g, operating), _compared(points, hot, found.loop)
@@ -116,6 +119,7 @@ def shared(points: Points) -> Quantities:
             band.greatest_time(device, current.nominal),
         ),
         residual=_residual(g, current),
+        line_neutral=line_neutral(g, found, hot, factor),
         touch_v=touch,
         touch_known=touch_known,
     )
@@ -137,11 +141,9 @@ def _wanting(g: Given, required: Array) -> Ints:
 def _loop_limit(g: Given, operating: Array) -> Array:
     policy, voltage = g.points.choice(Choice.TEMPERATURE_POLICY), g.points.number(Number.VOLTAGE)
     two_thirds = g.rule["two_thirds"]
-    factor = np.where(
-        policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"]
-    )
+    factor = np.where(policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"])
     factor = np.where(policy == TemperaturePolicy.TWO_THIRDS, two_thirds, factor)
-    return prospective_current(factor, voltage, operating)
+    return np.where(np.isinf(operating), np.nan, prospective_current(factor, voltage, operating))
 
 
 def _compared(points: Points, hot: Interval, cold: Interval) -> Interval:
@@ -168,15 +170,24 @@ def _residual(g: Given, current: Interval) -> ResidualTimes:
         measured = np.where(m >= 5.0, five, np.where(m >= 2.0, two, np.where(m >= 1.0, one, np.nan)))
         return np.fmax(band.greatest_time(row, m), measured)
 
-    over = np.zeros(points.count, dtype=np.bool_)
-    for reading, at in ((Reading.TIME_1, 1.0), (Reading.TIME_2, 2.0), (Reading.TIME_5, 5.0)):
-        limit_ms = 1000.0 * band.greatest_time(row, np.full(points.count, at))
-        above = points.bound[reading] == 2
-        over |= (points.value[reading] > limit_ms) | (above & (points.value[reading] >= limit_ms))
-    bound = points.bound[Reading.TIME_1]
-    tested = ((bound == 1) | (bound == 3)) & (points.value[Reading.TIME_1] >= 1.0)
+    over, tested = _tests(g)
     times = Interval(band.least_time(row, current.greatest / rated), slow(multiple), slow(nominal))
     return ResidualTimes(multiple, nominal, times, over, tested)
+
+
+def _tests(g: Given) -> tuple[Flags, Flags]:
+    """Where a test result is over the standard's time, and where a usable time at IΔn is there."""
+    points, row, band = g.points, g.points.choice(Choice.RESIDUAL), catalogue().residual
+    over, tested = np.zeros(points.count, dtype=np.bool_), np.zeros(points.count, dtype=np.bool_)
+    for reading, at in ((Reading.TIME_1, 1.0), (Reading.TIME_2, 2.0), (Reading.TIME_5, 5.0)):
+        limit_ms = 1000.0 * band.greatest_time(row, np.full(points.count, at))
+        value, bound = points.value[reading], points.bound[reading]
+        over |= ((bound == Bound.EXACT) & (value > limit_ms)) | ((bound == Bound.ABOVE) & (value >= limit_ms))
+        if reading == Reading.TIME_1:
+            within = (bound == Bound.EXACT) | ((bound == Bound.BELOW) & (value <= limit_ms))
+            # Under a millisecond the unit must be wrong.
+            tested = within & (value >= 1.0)
+    return over, tested
 
 
 def _touch(g: Given, found: Loops, hot: Interval, factor: Array) -> tuple[Array, Flags]:

@@ -116,13 +116,7 @@ def _instruments(rules: RuleSet) -> tuple[Array, Array]:
     percent, constant = np.zeros((READINGS, len(Method.codes()))), np.zeros((READINGS, len(Method.codes())))
     loop = (Reading.LOOP, Reading.EXTERNAL, Reading.LINE_NEUTRAL, Reading.ORIGIN_LINE_NEUTRAL)
     for reading in Reading.codes().values():
-        default = (
-            i.high_current
-            if reading in loop
-            else i.electrode
-            if reading == Reading.ELECTRODE
-            else i.continuity
-        )
+        default = i.high_current if reading in loop else i.electrode if reading == Reading.ELECTRODE else i.continuity
         percent[reading, :], constant[reading, :] = default.percent.value, default.constant.value
     for reading in loop:
         percent[reading, Method.NO_TRIP] = i.no_trip.percent.value
@@ -145,10 +139,7 @@ def rule_table() -> RuleTable:
     bands = [_bands(rules) for rules in sets.values()]
     instruments = [_instruments(rules) for rules in sets.values()]
     marks = ("designated-equipment", "instructed", "skilled")
-    exempt = [
-        sum(1 << at for at, m in enumerate(marks) if m in r.additional_protection.exempt)
-        for r in sets.values()
-    ]
+    exempt = [sum(1 << at for at, m in enumerate(marks) if m in r.additional_protection.exempt) for r in sets.values()]
     return RuleTable(
         keys=tuple(sets),
         names={name: at for at, name in enumerate(values[0])},

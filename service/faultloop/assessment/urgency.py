@@ -38,9 +38,7 @@ def severity(points: Points, q: Quantities) -> Severity:
     body = np.where(outdoors, q.rule("body_wet"), q.rule("body_dry"))
     credited = ~np.isnan(points.number(Number.RESIDUAL_MA)) & ~q.residual.over_limit
     # A person who touches the part closes the path, so a device that sees no metallic return still sees them.
-    touched = np.fmax(
-        q.residual.multiple_nominal, q.touch_v / body / (points.number(Number.RESIDUAL_MA) / 1000.0)
-    )
+    touched = np.fmax(q.residual.multiple_nominal, q.touch_v / body / (points.number(Number.RESIDUAL_MA) / 1000.0))
     quick = np.where(touched > q.residual.multiple_nominal, 0.04, q.residual.time_s.nominal)
     residual = np.where(credited, quick, np.inf)
     time = faster(q.overcurrent_s.nominal, residual)

@@ -83,7 +83,8 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
         counts=counts,
     )
     held = np.bitwise_or.reduce(np.where(counts, findings.conditions, 0), axis=0)
-    defect: Flags = np.logical_or.reduce(findings.defect & counts, axis=0)
+    # A defect orders work even where another member of an any-of group decides.
+    defect: Flags = np.logical_or.reduce(findings.defect, axis=0)
     level, severity = urgency(points, quantities, overall, defect)
     return Outcome(findings, quantities, overall, level, severity, held)
 

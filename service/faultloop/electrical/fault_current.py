@@ -31,9 +31,7 @@ def prospective_current(voltage_factor: Array, voltage_v: Array, impedance_ohm: 
         return voltage_factor * voltage_v / np.maximum(impedance_ohm, 0.0)
 
 
-def heated_loop(
-    loop: Interval, heated_known: Array, external: Array, external_u: Array, factor: Array
-) -> Interval:
+def heated_loop(loop: Interval, heated_known: Array, external: Array, external_u: Array, factor: Array) -> Interval:
     """Loop impedance with its installation part at operating temperature.
 
     Parameters

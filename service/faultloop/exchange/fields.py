@@ -64,8 +64,7 @@ class Reading(Closed):
         Annotated[float, Field(ge=-40, le=90, strict=True, allow_inf_nan=False, description="[Cel]")] | None
     ) = None
     taken_at: (
-        Annotated[str, Field(max_length=40, pattern=r"^\d{4}-\d{2}-\d{2}(T[0-9:.]+(Z|[+-]\d{2}:\d{2}))?$")]
-        | None
+        Annotated[str, Field(max_length=40, pattern=r"^\d{4}-\d{2}-\d{2}(T[0-9:.]+(Z|[+-]\d{2}:\d{2}))?$")] | None
     ) = Field(default=None, description="Date, or date and time with offset")
 
 

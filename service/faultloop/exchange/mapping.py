@@ -1,5 +1,6 @@
 """A request in words -> one row of points, with the assumptions that had to be made."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -40,7 +41,6 @@ _FEEDS = {
 }
 _USERS, _POLICY, _DECISION, _CURRENT = (c.codes() for c in (Users, TemperaturePolicy, Decision, Current))
 NO_DEVICE = -1
-TEST_DEFAULT = "test-temperature"
 
 
 @dataclass(slots=True)
@@ -115,9 +115,7 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.RESIDUAL_MA] = relied.rated_residual_operating_current_ma
         numbers[Number.RESIDUAL_GREATEST_MA], numbers[Number.RESIDUAL_LEAST_MA] = max(rated), min(rated)
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
-        told = ds.ResidualDevice(
-            relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay
-        )
+        told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
         point.residual = told.designation
 
 
@@ -141,9 +139,7 @@ def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
     _put_conductor(numbers, line, Number.LINE_MM2, Number.LINE_OHM_PER_KM)
     _put_conductor(numbers, protective, Number.PROTECTIVE_MM2, Number.PROTECTIVE_OHM_PER_KM)
     _put_conductor(numbers, neutral, Number.NEUTRAL_MM2, None)
-    same = (
-        neutral is not None and protective is not None and neutral.material == protective.material != "steel"
-    )
+    same = neutral is not None and protective is not None and neutral.material == protective.material != "steel"
     choices[Choice.INFERABLE] = int(same)
     if line is not None and (k := adiabatic_k(line.material, line.insulation)) is not None:
         numbers[Number.ADIABATIC_K] = k
@@ -182,8 +178,20 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
         _put(row, Reading.ORIGIN_LINE_NEUTRAL, board.line_neutral_loop_impedance_ohm)
         stated = board.prospective_current_ka
         row.numbers[Number.BOARD_CURRENT_KA] = _exact(stated)
-    _put_method(point, request)
-    _put_test_temperature(point, readings.earth_fault_loop_impedance_ohm)
+    _put_method(point)
+    heated = (
+        readings.earth_fault_loop_impedance_ohm,
+        readings.line_plus_protective_resistance_ohm,
+        readings.line_neutral_loop_impedance_ohm,
+    )
+    _put_test_temperature(point, heated)
+    used = (
+        *heated,
+        readings.external_earth_fault_loop_impedance_ohm,
+        readings.earth_electrode_resistance_ohm,
+    )
+    if any(stated is not None and not _states_instrument(stated) for stated in used):
+        point.assumptions.append("instrument")
 
 
 def _exact(stated: float | ReadingBody | None) -> float:
@@ -207,21 +215,24 @@ def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
         )
 
 
-def _put_method(point: Mapped, request: rq.AssessmentRequest) -> None:
+def _put_method(point: Mapped) -> None:
     """A loop reading whose method is not stated: no-trip if a residual device is fitted; said."""
     row = point.row
     if row.bound[Reading.LOOP] and row.method[Reading.LOOP] == Method.UNSTATED:
         no_trip = point.residual is not None
         row.method[Reading.LOOP] = Method.NO_TRIP if no_trip else Method.HIGH_CURRENT
         point.assumptions.append("method-no-trip" if no_trip else "method-high-current")
-    stated = request.readings.earth_fault_loop_impedance_ohm
-    if stated is not None and not (isinstance(stated, ReadingBody) and stated.instrument):
-        point.assumptions.append("instrument")
 
 
-def _put_test_temperature(point: Mapped, stated: float | ReadingBody | None) -> None:
-    told = stated.conductor_temperature_c if isinstance(stated, ReadingBody) else None
-    if told is None:
-        point.assumptions.append(TEST_DEFAULT)
-        told = point.rules.rules.temperature.test_default.value
-    point.row.numbers[Number.TEST_C] = told
+def _states_instrument(stated: float | ReadingBody) -> bool:
+    return isinstance(stated, ReadingBody) and stated.instrument is not None
+
+
+def _put_test_temperature(point: Mapped, heated: Sequence[float | ReadingBody | None]) -> None:
+    """The coldest stated temperature of the readings that are heated: it gives the greatest correction."""
+    told = [r.conductor_temperature_c for r in heated if isinstance(r, ReadingBody)]
+    known = [temperature for temperature in told if temperature is not None]
+    if not known:
+        point.assumptions.append("test-temperature")
+    default = point.rules.rules.temperature.test_default.value
+    point.row.numbers[Number.TEST_C] = min(known, default=default)

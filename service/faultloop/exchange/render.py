@@ -34,9 +34,7 @@ def request_bytes(request: AssessmentRequest) -> bytes:
     return canonical_bytes(request.model_dump(mode="json", by_alias=True, exclude_unset=True))
 
 
-def assess_requests(
-    requests: Sequence[AssessmentRequest], digests: Sequence[str] | None = None
-) -> list[Body]:
+def assess_requests(requests: Sequence[AssessmentRequest], digests: Sequence[str] | None = None) -> list[Body]:
     """Judge requests and put the outcomes in words; one request and many take the same path."""
     if not requests:
         return []
@@ -45,9 +43,7 @@ def assess_requests(
     points = from_rows([point.row for point in given])
     outcome = decide(points)
     renderer = Renderer(points, outcome)
-    return [
-        renderer.answer(at, point, told) for at, (point, told) in enumerate(zip(given, known, strict=True))
-    ]
+    return [renderer.answer(at, point, told) for at, (point, told) in enumerate(zip(given, known, strict=True))]
 
 
 @lru_cache(maxsize=8)
@@ -81,6 +77,8 @@ class Renderer:
         senses = np.array([check.sense for check in CHECKS])[:, None]
         with np.errstate(invalid="ignore", divide="ignore"):
             u = np.where(senses > 0, found.greatest - found.nominal, found.nominal - found.least)
+            # Probability belongs to the reading (k = 2), whatever coverage the decision asked for.
+            u = np.where(np.isinf(u), np.nan, u / points.coverage)
             probability = conformance_probability(found.nominal, u, found.limit, senses)
             worst = np.where(senses > 0, found.greatest, found.least)
             margin = senses * (found.limit - worst) / found.limit * 100.0
@@ -154,9 +152,7 @@ class Renderer:
 
     def _quantities_of(self, at: int) -> Body:
         columns = self._quantities
-        body: Body = {
-            name: interval(least[at], greatest[at]) for name, (least, greatest) in columns.ends.items()
-        }
+        body: Body = {name: interval(least[at], greatest[at]) for name, (least, greatest) in columns.ends.items()}
         time = interval(columns.time[0][at], columns.time[1][at])
         body["disconnection_time_s"] = None if time is None else {**time, "by": columns.by[at]}
         body.update({name: rounded(column[at]) for name, column in columns.plain.items()})
@@ -205,13 +201,12 @@ class _QuantityColumns:
 
 def _quantity_columns(points: Points, outcome: Outcome) -> _QuantityColumns:
     q, found, columns = outcome.quantities, outcome.findings, _QuantityColumns()
-    row = ROWS["line-neutral-disconnection"]
-    given = found.verdict[row] < Verdict.NOT_EXAMINED
-    voltage = points.number(Number.VOLTAGE)
+    given = found.verdict[ROWS["line-neutral-disconnection"]] < Verdict.NOT_EXAMINED
+    voltage, loop = points.number(Number.VOLTAGE), q.line_neutral
     with np.errstate(divide="ignore", invalid="ignore"):
         short = [
-            np.where(given, prospective_current(q.rule(c), voltage, z), np.nan)
-            for c, z in (("c_min", found.greatest[row]), ("c_max", found.least[row]))
+            np.where(given, prospective_current(q.rule(factor), voltage, z), np.nan)
+            for factor, z in (("c_min", loop.hot.greatest), ("c_max", loop.cold_least))
         ]
     touch_least = np.where(q.touch_known, q.touch_v, np.where(np.isnan(q.touch_v), np.nan, -np.inf))
     ends = {
@@ -229,9 +224,7 @@ def _quantity_columns(points: Points, outcome: Outcome) -> _QuantityColumns:
     known = ~np.isnan(q.current.least)
     columns.time = (np.where(known, least, np.nan).tolist(), np.where(known, greatest, np.nan).tolist())
     quicker = residual < np.where(np.isnan(q.overcurrent_s.greatest), np.inf, q.overcurrent_s.greatest)
-    by = np.where(
-        np.isinf(greatest), "none", np.where(quicker, "residual-current-device", "overcurrent-device")
-    )
+    by = np.where(np.isinf(greatest), "none", np.where(quicker, "residual-current-device", "overcurrent-device"))
     columns.by = by.tolist()
     columns.plain = {
         "required_disconnection_time_s": np.where(q.wanting == 0, q.required_s, np.nan).tolist(),

@@ -60,9 +60,7 @@ class Circuit(Closed):
 
     role: Literal["final", "distribution"] | None = None
     feeds: Literal["socket-outlets", "fixed-equipment", "mobile-equipment-outdoors"] | None = None
-    rated_current_a: (
-        Annotated[float, number("A", most=6300, positive=True, description="Rated current")] | None
-    ) = None
+    rated_current_a: Annotated[float, number("A", most=6300, positive=True, description="Rated current")] | None = None
     arrangement: Literal["radial", "ring"] = "radial"
     users: Literal["ordinary", "instructed", "skilled"] = "ordinary"
     designated_equipment: Annotated[bool, Field(strict=True)] = False
@@ -81,9 +79,7 @@ class Board(Closed):
     line_neutral_loop_impedance_ohm: Measured | None = None
     earth_fault_loop_impedance_ohm: Measured | None = None
     prospective_current_ka: Measured | None = None
-    assembly_conditional_rating_ka: Annotated[float, number("kA", most=1000, description="Rating")] | None = (
-        None
-    )
+    assembly_conditional_rating_ka: Annotated[float, number("kA", most=1000, description="Rating")] | None = None
 
 
 def _breaker_rated(value: float) -> float:
@@ -143,9 +139,7 @@ class Fuse(Closed):
             json_schema_extra=lambda schema: schema.update(enum=_fuse_ratings()),
         ),
     ]
-    breaking_capacity_ka: (
-        Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None
-    ) = None
+    breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None = None
     poles: Literal[1, 2, 3, 4] | None = None
 
 
@@ -163,9 +157,7 @@ class ResidualCurrentDevice(Closed):
             strict=True,
             allow_inf_nan=False,
             description="Rated residual operating current IΔn [mA]",
-            json_schema_extra=lambda schema: schema.update(
-                enum=residual_table().rated_residual_operating_currents_ma
-            ),
+            json_schema_extra=lambda schema: schema.update(enum=residual_table().rated_residual_operating_currents_ma),
         ),
     ]
     delay: Literal["general", "selective", "time-delayed"] = "general"
@@ -206,9 +198,7 @@ class Policy(Closed):
 
     temperature: Literal["split", "two-thirds", "four-fifths", "none"] | None = None
     decision: Literal["guarded", "simple"] | None = None
-    coverage: (
-        Annotated[float, number("1", least=0.5, most=0.9999, description="Coverage probability")] | None
-    ) = None
+    coverage: Annotated[float, number("1", least=0.5, most=0.9999, description="Coverage probability")] | None = None
 
 
 def _known_rules(name: str) -> str:

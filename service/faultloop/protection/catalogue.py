@@ -11,7 +11,7 @@ from faultloop.protection.band import Band, BandTable, compile_bands
 from faultloop.protection.breakers import breaker_band, breaker_table
 from faultloop.protection.designations import Breaker, Characteristic, Fuse, OvercurrentDevice
 from faultloop.protection.fuses import fuse_band, fuse_families
-from faultloop.protection.residual import DELAYS, residual_band, residual_table
+from faultloop.protection.residual import residual_band, residual_table
 from faultloop.rules.loader import shipped
 from faultloop.rules.sheets import RuleSet
 
@@ -25,6 +25,7 @@ class Catalogue:
     rows: dict[tuple[str, OvercurrentDevice], int]
     bands: dict[tuple[str, OvercurrentDevice], Band]
     residual_rows: dict[str, int]
+    residual_bands: dict[str, Band]
     digest: str
 
 
@@ -65,13 +66,16 @@ def catalogue() -> Catalogue:
         for key, loaded in shipped().items()
         for device in listed_devices()
     }
+    # A time-delayed device has no band in the standards.
+    residual = {"general": residual_band("general"), "selective": residual_band("selective"), "time-delayed": Band(())}
     told = [breaker_table(), *fuse_families().values(), residual_table()]
     return Catalogue(
         overcurrent=compile_bands(list(bands.values())),
-        residual=compile_bands([residual_band("general"), residual_band("selective"), Band(())]),
+        residual=compile_bands(list(residual.values())),
         rows={key: row for row, key in enumerate(bands)},
         bands=bands,
-        residual_rows={delay: row for row, delay in enumerate(DELAYS)},
+        residual_rows={delay: row for row, delay in enumerate(residual)},
+        residual_bands=residual,
         digest=digest([sheet.model_dump(mode="json") for sheet in told]),
     )
 

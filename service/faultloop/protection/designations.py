@@ -91,9 +91,7 @@ def parse_overcurrent(text: str) -> OvercurrentDevice:
     elif match := _FUSE.fullmatch(told):
         device = Fuse("bs-88-2" if match[1] else "iec-60269", float(match[2]))
     else:
-        raise UnknownDesignation(
-            "expected a breaker such as B32, C16 or D10, or a fuse such as gG 63 or BS 88-2 gG 63"
-        )
+        raise UnknownDesignation("expected a breaker such as B32, C16 or D10, or a fuse such as gG 63 or BS 88-2 gG 63")
     refuse_unknown(device)
     return device
 
@@ -103,9 +101,7 @@ def parse_residual(text: str) -> ResidualDevice:
     match = _RESIDUAL.fullmatch(" ".join(text.split()))
     if not match or float(match[1]) not in residual_table().rated_residual_operating_currents_ma:
         listed = ", ".join(f"{ma:g}" for ma in residual_table().rated_residual_operating_currents_ma)
-        raise UnknownDesignation(
-            f"expected a residual device such as 30 mA, 30 mA A or 300 mA S; held for {listed} mA"
-        )
+        raise UnknownDesignation(f"expected a residual device such as 30 mA, 30 mA A or 300 mA S; held for {listed} mA")
     kind = cast(ResidualType, match[2].upper()) if match[2] else None
     return ResidualDevice(float(match[1]), kind, "selective" if match[3] else "general")
 

@@ -7,8 +7,6 @@ from typing import Literal
 from faultloop.protection.band import Band
 from faultloop.rules.strict import Parameter, Sheet, Text, read_sheet, read_table
 
-DELAYS = ("general", "selective", "time-delayed")
-
 
 class Step(Sheet):
     """Times at one multiple of the rated residual operating current."""

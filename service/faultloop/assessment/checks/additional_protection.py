@@ -7,6 +7,7 @@ from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged
 from faultloop.assessment.points import Choice, Feeds, Flags, Ints, Number, Points, Role, Users
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
+from faultloop.protection.catalogue import catalogue
 
 REASONS = (
     *COMPARISON,
@@ -16,6 +17,7 @@ REASONS = (
     "use-missing",
     "rated-current-missing",
     "device-over-time",
+    "device-delayed",
     "operating-time-missing",
 )
 _DESIGNATED, _INSTRUCTED, _SKILLED = 1, 2, 4
@@ -23,9 +25,7 @@ _DESIGNATED, _INSTRUCTED, _SKILLED = 1, 2, 4
 
 def _applies(points: Points, q: Quantities) -> Flags:
     feeds, rated = points.choice(Choice.FEEDS), points.number(Number.RATED_CURRENT)
-    sockets = ((feeds == Feeds.SOCKET_OUTLETS) | (feeds == Feeds.UNKNOWN)) & ~(
-        rated > q.rule("additional_sockets")
-    )
+    sockets = ((feeds == Feeds.SOCKET_OUTLETS) | (feeds == Feeds.UNKNOWN)) & ~(rated > q.rule("additional_sockets"))
     mobile = (feeds == Feeds.MOBILE_OUTDOORS) & ~(rated > q.rule("additional_mobile"))
     concerned: Flags = (points.choice(Choice.ROLE) != Role.DISTRIBUTION) & (sockets | mobile)
     return concerned
@@ -49,20 +49,20 @@ def _judge(points: Points, q: Quantities) -> Judged:
     rated, limit = points.number(Number.RESIDUAL_LEAST_MA), q.rule("additional_ma")
     sensitive = rated <= limit
     own = points.number(Number.RESIDUAL_MA) == rated
-    bits = np.where(sensitive, 0, _exemption(points, q)).astype(np.int64)
+    quick = points.choice(Choice.RESIDUAL) == catalogue().residual_rows["general"]
+    proven = sensitive & own & quick & q.residual.tested & ~q.residual.over_limit
+    bits = np.where(proven, 0, _exemption(points, q))
     cases = Cases(REASONS)
     prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)
     cases.when(bits > 0, Standing.MET, "exempt")
+    cases.when(sensitive & own & q.residual.over_limit, Standing.UNMET, "device-over-time", defect=True)
+    cases.when(sensitive & own & ~quick, Standing.UNMET, "device-delayed")
     unknown_use = points.choice(Choice.FEEDS) == Feeds.UNKNOWN
     cases.when(~sensitive & unknown_use, Standing.UNDETERMINED, "use-missing")
-    cases.when(
-        ~sensitive & np.isnan(points.number(Number.RATED_CURRENT)),
-        Standing.UNDETERMINED,
-        "rated-current-missing",
-    )
+    unrated = np.isnan(points.number(Number.RATED_CURRENT))
+    cases.when(~sensitive & unrated, Standing.UNDETERMINED, "rated-current-missing")
     cases.when(np.isnan(rated), Standing.UNMET, "absent")
-    cases.when(sensitive & own & q.residual.over_limit, Standing.UNMET, "device-over-time", defect=True)
-    cases.when(sensitive & ~(own & q.residual.tested), Standing.UNDETERMINED, "operating-time-missing")
+    cases.when(sensitive & ~proven, Standing.UNDETERMINED, "operating-time-missing")
     return cases.settle(Interval(rated, rated, rated), limit, bits)
 
 

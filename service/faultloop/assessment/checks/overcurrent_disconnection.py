@@ -34,9 +34,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     loop_is_wanting(cases, q)
     unguaranteed = np.isinf(q.operating_current)
-    cases.when(
-        unguaranteed & (q.overcurrent_s.least > q.required_s), Standing.UNMET, "cannot-operate-in-time"
-    )
+    cases.when(unguaranteed & (q.overcurrent_s.least > q.required_s), Standing.UNMET, "cannot-operate-in-time")
     cases.when(unguaranteed, Standing.UNDETERMINED, "no-guaranteed-current")
     open_end = np.isinf(q.compared.greatest) & (q.compared.least <= q.loop_limit)
     cases.when(open_end, Standing.UNDETERMINED, "reading-over-range")

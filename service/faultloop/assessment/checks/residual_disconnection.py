@@ -38,6 +38,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     multiple = catalogue().residual.operating_current(row, q.required_s)
     current = multiple * points.number(Number.RESIDUAL_MA) / 1000.0
     limit = prospective_current(q.rule("c_min"), points.number(Number.VOLTAGE), current)
+    limit = np.where(np.isinf(multiple), np.nan, limit)
     touch = q.rule("touch_voltage") / (points.number(Number.RESIDUAL_MA) / 1000.0)
     limit = np.where(~q.tt & (q.rule("touch_limit_on_tn") > 0), np.minimum(limit, touch), limit)
     relied_on = ~q.tt & (q.overcurrent != Verdict.PASS)

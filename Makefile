@@ -1,0 +1,43 @@
+# All set-up needs Python >= 3.11, make and the package registries; everything is made in .venv.
+PYTHON ?= python3
+VENV := .venv
+BIN := $(VENV)/bin
+READY := $(VENV)/.ready
+
+.PHONY: demo test lint unit trials benchmark openapi lock clean
+
+$(READY): requirements.txt pyproject.toml
+	test -x $(BIN)/python || $(PYTHON) -m venv $(VENV)
+	$(BIN)/python -m pip install --quiet --disable-pip-version-check --require-hashes -r requirements.txt
+	$(BIN)/python -m pip install --quiet --disable-pip-version-check --no-deps --no-build-isolation --editable .
+	touch $(READY)
+
+demo: $(READY)
+	$(BIN)/python fixtures/workshop/demo.py
+
+test: lint unit
+
+lint: $(READY)
+	$(BIN)/ruff check service tests fixtures
+	$(BIN)/mypy
+	$(BIN)/lint-imports --no-cache
+
+unit: $(READY)
+	$(BIN)/python -m pytest
+
+trials: $(READY)
+	$(BIN)/python -m tests.trials
+
+benchmark: $(READY)
+	$(BIN)/python -m tests.benchmarks.http_speed
+
+openapi: $(READY)
+	$(BIN)/faultloop openapi > openapi/openapi.json
+
+# Needs uv; the file names no registry.
+lock:
+	uv pip compile --universal --python-version 3.11 --generate-hashes --no-header --no-annotate --no-emit-index-url \
+		--no-emit-find-links --extra dev --extra build --output-file requirements.txt pyproject.toml
+
+clean:
+	rm -rf $(VENV) .hypothesis

@@ -1,0 +1,142 @@
+"""The command: serve, migrate, assess a file, print the OpenAPI document."""
+
+import argparse
+import json
+import sys
+from collections.abc import Sequence
+from pathlib import Path
+
+from faultloop import __version__
+
+
+def _serve(options: argparse.Namespace) -> int:
+    """Start the service; an empty database is migrated, one that is behind is refused."""
+    import uvicorn
+
+    from faultloop.api.app import create_app
+
+    settings = _settings(options)
+    if (fault := _prepared(settings.database_url)) is not None:
+        print(fault, file=sys.stderr)
+        return 1
+    uvicorn.run(
+        create_app(settings),
+        host=options.host,
+        port=options.port,
+        log_level="warning",
+        access_log=False,
+        timeout_graceful_shutdown=10,
+    )
+    return 0
+
+
+def _prepared(url: str) -> str | None:
+    """Make the database ready, or say why it is not."""
+    from faultloop.records.database import open_engine
+    from faultloop.records.errors import RecordsError
+    from faultloop.records.migrate import migrate, state
+
+    try:
+        engine = open_engine(url)
+        try:
+            found = state(engine)
+            if found == "empty":
+                migrate(engine)
+        finally:
+            engine.dispose()
+    except RecordsError as error:
+        return f"faultloop: {error}"
+    return {
+        "behind": "faultloop: the database holds older tables: make a copy of it, then run `faultloop migrate`",
+        "unknown": "faultloop: the database was written by a newer version; use that version",
+    }.get(found)
+
+
+def _migrate(options: argparse.Namespace) -> int:
+    from faultloop.records.database import open_engine
+    from faultloop.records.errors import RecordsError
+    from faultloop.records.migrate import migrate
+
+    try:
+        engine = open_engine(_settings(options).database_url)
+        migrate(engine)
+        engine.dispose()
+    except RecordsError as error:
+        print(f"faultloop: {error}", file=sys.stderr)
+        return 1
+    print("The database holds the tables of this version.")
+    return 0
+
+
+def _settings(options: argparse.Namespace):  # type: ignore[no-untyped-def]
+    from faultloop.settings import Settings
+
+    return Settings() if options.database_url is None else Settings(database_url=options.database_url)
+
+
+def _assess(options: argparse.Namespace) -> int:
+    """Judge a CSV file of points; exit status 1 when the file cannot be read at all."""
+    from faultloop.exchange.columns import FileRefused, judge_rows, read_rows, write_csv
+    from faultloop.exchange.listing import table
+
+    try:
+        text = sys.stdin.read() if options.file == "-" else Path(options.file).read_text(encoding="utf-8-sig")
+        rows = read_rows(text, dict(options.default))
+    except (OSError, UnicodeDecodeError, FileRefused) as error:
+        print(f"faultloop: {options.file}: {error}", file=sys.stderr)
+        return 1
+    judge_rows(rows)
+    for name, value in options.default:
+        print(f"Default: {name} = {value}", file=sys.stderr)
+    sys.stdout.write(write_csv(rows) if options.output == "csv" else table(rows) + "\n")
+    if options.output == "table":
+        print("An aid to a competent person; it gives no permission, and local rules and licensed persons decide.")
+    return 0
+
+
+def _openapi(_: argparse.Namespace) -> int:
+    from faultloop.api.app import create_app
+    from faultloop.settings import Settings
+
+    print(json.dumps(create_app(Settings()).openapi(), indent=1, ensure_ascii=False))
+    return 0
+
+
+def _default(text: str) -> tuple[str, str]:
+    name, equals, value = text.partition("=")
+    if not equals or not name:
+        raise argparse.ArgumentTypeError("write column=value, for instance earthing=TN-S")
+    return name, value
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(prog="faultloop", description=__doc__)
+    parser.add_argument("--version", action="version", version=__version__)
+    commands = parser.add_subparsers(required=True, metavar="COMMAND")
+    serve = commands.add_parser("serve", help="start the service")
+    serve.add_argument("--host", default="127.0.0.1", help="address to listen on (default %(default)s)")
+    serve.add_argument("--port", type=int, default=8080, help="port to listen on (default %(default)s)")
+    serve.set_defaults(run=_serve)
+    migrate = commands.add_parser("migrate", help="bring the database to the tables of this version")
+    migrate.set_defaults(run=_migrate)
+    for command in (serve, migrate):
+        command.add_argument("--database-url", help="sqlite:///FILE or postgresql://...; else FAULTLOOP_DATABASE_URL")
+    assess = commands.add_parser("assess", help="judge a CSV file of points, one row a point")
+    assess.add_argument("file", metavar="FILE", help="CSV file, or - for standard input")
+    assess.add_argument("--output", choices=("table", "csv"), default="table")
+    assess.add_argument("--default", type=_default, action="append", default=[], metavar="COLUMN=VALUE")
+    assess.set_defaults(run=_assess)
+    openapi = commands.add_parser("openapi", help="print the OpenAPI document")
+    openapi.set_defaults(run=_openapi)
+    return parser
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run the command."""
+    options = _parser().parse_args(arguments)
+    status: int = options.run(options)
+    return status
+
+
+if __name__ == "__main__":
+    sys.exit(main())
