@@ -17,6 +17,17 @@ from faultloop.electrical.measurement import Array
 from faultloop.protection.catalogue import catalogue
 
 Values = dict[str, float | str]
+
+
+class _Open(float):
+    """An end without a bound: it prints as words, whatever number format the sentence asks for."""
+
+    words = ""
+
+    def __format__(self, spec: str) -> str:
+        return self.words
+
+
 _POLICIES = {code: word for word, code in TemperaturePolicy.codes().items()}
 _BASES = {code: word for word, code in Basis.codes().items()}
 
@@ -45,11 +56,16 @@ class Explainer:
         with np.errstate(divide="ignore", invalid="ignore"):
             self._columns = _columns(points, outcome)
         self._phrases = texts(language).phrases
+        self._open = _Open("inf")
+        self._open.words = self._phrases["open-end"]
 
     def values(self, at: int, names: Names) -> Values:
         """Everything that a sentence about one point may quote."""
         values: Values = {name: column[at] for name, column in self._columns.items()}
         phrase = self._phrases
+        for name in ("hot_greatest", "i_greatest"):
+            if math.isinf(float(values[name])):
+                values[name] = self._open
         values["device"] = names.device or phrase["no-device"]
         values["residual"] = names.residual or phrase["no-residual"]
         values["rules"] = names.rules
@@ -67,6 +83,8 @@ class Explainer:
             float(found.least[check, at]),
             float(found.greatest[check, at]),
         )
+        if math.isinf(found.greatest[check, at]):
+            values["value_greatest"] = self._open
         values["z_or_value"] = values["nominal"]
         values["side"] = self._phrases["below" if found.nominal[check, at] <= found.limit[check, at] else "above"]
         if CHECKS[check].id == "residual-disconnection":
@@ -107,7 +125,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "ra": value[Reading.ELECTRODE],
         "ra_or_loop": electrode.nominal,
         "heated": np.where(q.factor == 1.0, 0.0, (q.hot.nominal - q.loops.loop.nominal) / (q.factor - 1.0)),
-        "cold": q.loops.loop.nominal,
+        "z_least": q.loops.live.least,
         "cold_least": q.loops.loop.least,
         "factor": q.factor,
         "test": number(Number.TEST_C),

@@ -197,9 +197,11 @@ def _touch(g: Given, found: Loops, hot: Interval, factor: Array) -> tuple[Array,
     share = found.dead_resistance * line / (line + protective)
     measured = np.where(g.known[Reading.PROTECTIVE], points.value[Reading.PROTECTIVE], share)
     most = np.where(np.isnan(found.external), hot.nominal, hot.nominal - found.external)
-    path = np.where(np.isnan(measured), np.maximum(most, 0.0), measured * factor)
+    # An excess that nothing explains is taken to lie in the protective path.
+    unknown = np.isnan(measured) | found.beyond
+    path = np.where(unknown, np.maximum(most, 0.0), measured * factor)
     path = np.where(g.tt, np.where(np.isnan(electrode), hot.nominal, electrode), path)
-    known = np.where(g.tt, g.known[Reading.ELECTRODE], ~np.isnan(measured))
+    known = np.where(g.tt, g.known[Reading.ELECTRODE], ~unknown)
     return touch_voltage(points.number(Number.VOLTAGE), path, hot.nominal), known
 
 

@@ -22,6 +22,7 @@ class Cell:
     value: float | None = None
     bound: str = "exact"
     question: str | None = None
+    over_range: bool = False
 
 
 def read_cell(text: str, column: str) -> Cell:
@@ -31,7 +32,8 @@ def read_cell(text: str, column: str) -> Cell:
         return Cell()
     if told.lower() in OVER_RANGE:
         return Cell(
-            question="over range: above which value? write it as >1999; treat the point as having no earth until then"
+            question="over range: above which value? write it as >1999; treat the point as having no earth until then",
+            over_range=True,
         )
     if "," in told:
         return Cell(question="a comma: is it a decimal or a thousands mark? write the number with a decimal point")

@@ -65,6 +65,12 @@ class FileRow:
     questions: list[str] = field(default_factory=list)
     faults: list[str] = field(default_factory=list)
     answer: Body | None = None
+    over_range: bool = False
+
+    @property
+    def urgency(self) -> str:
+        """Urgency of a row that could not be judged: an over-range reading may mean that there is no earth."""
+        return "stop-use" if self.over_range else "planned"
 
     @property
     def status(self) -> Literal["judged", "held", "refused"]:
@@ -192,6 +198,7 @@ def _put_readings(body: Body, filled: dict[str, str], row: FileRow) -> None:
         cell = read_cell(filled.get(column, ""), column)
         if cell.question:
             row.questions.append(f"{column}: {cell.question}")
+            row.over_range |= cell.over_range
         if cell.value is None:
             continue
         reading: Body = {"value": cell.value, "bound": cell.bound}
@@ -224,12 +231,8 @@ def judge_rows(rows: Sequence[FileRow]) -> None:
 
 def answer_cells(row: FileRow) -> dict[str, str]:
     """The answer of one row as cells: verdict, urgency, and each check's verdict, value, limit and reason."""
-    cells = {
-        "status": row.status,
-        "verdict": "",
-        "urgency": "",
-        "questions": "; ".join(row.questions + row.faults),
-    }
+    asked = "; ".join(row.questions + row.faults)
+    cells = {"status": row.status, "verdict": "undetermined", "urgency": row.urgency, "questions": asked}
     if row.answer is None:
         return cells
     cells |= {"verdict": row.answer["verdict"], "urgency": row.answer["urgency"]}

@@ -5,10 +5,11 @@ from collections.abc import Sequence
 from textwrap import fill
 from typing import Any
 
+from faultloop.assessment.standing import Verdict
 from faultloop.assessment.urgency import Urgency
 from faultloop.exchange.columns import FileRow
 
-_ORDER = Urgency.codes()
+_URGENCIES, _VERDICTS = Urgency.codes(), Verdict.codes()
 
 
 def table(rows: Sequence[FileRow]) -> str:
@@ -18,7 +19,7 @@ def table(rows: Sequence[FileRow]) -> str:
     for row in rows:
         name = (row.raw.get("point_id") or f"row {row.number}")[:10]
         label = (row.raw.get("label") or "")[:30]
-        verdict, urgency = (row.answer["verdict"], row.answer["urgency"]) if row.answer else (row.status, "-")
+        verdict, urgency = (row.answer["verdict"], row.answer["urgency"]) if row.answer else (row.status, row.urgency)
         lines.append(f"{name:<10} {label:<30} {verdict:<21} {urgency:<9} {_decides(row)}")
     return "\n".join([*lines, "", reconciled(rows)])
 
@@ -50,7 +51,7 @@ def deciding(answer: dict[str, Any]) -> dict[str, Any] | None:
 def most_urgent(rows: Sequence[FileRow], count: int = 3) -> str:
     """The most urgent points, each with its arithmetic, the question that would settle it and its conditions."""
     judged = [row for row in rows if row.answer]
-    judged.sort(key=lambda row: _ORDER[row.answer["urgency"]] if row.answer else 9)
+    judged.sort(key=lambda row: _rank(row.answer or {}))
     told = []
     for row in judged[:count]:
         answer = row.answer or {}
@@ -59,6 +60,10 @@ def most_urgent(rows: Sequence[FileRow], count: int = 3) -> str:
         told.append(f"{name}: {answer['verdict']}, {answer['urgency']}")
         told += [fill(text, 108, initial_indent="  ", subsequent_indent="  ") for text in _sentences(finding)]
     return "\n".join(told)
+
+
+def _rank(answer: dict[str, Any]) -> tuple[int, int]:
+    return _URGENCIES[answer["urgency"]], _VERDICTS[answer["verdict"]]
 
 
 def _sentences(finding: dict[str, Any]) -> list[str]:

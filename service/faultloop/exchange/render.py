@@ -126,6 +126,9 @@ class Renderer:
         self, row: int, at: int, point: Mapped, explanation: str, question: str | None, named: list[str]
     ) -> Body:
         check, verdict = CHECKS[row], self._verdict[row][at]
+        if verdict == Verdict.FAIL and question is not None:
+            # Nothing read can settle a failure: what would be asked is what is to be done.
+            explanation, question = f"{explanation} {question}", None
         tt = check.id + "-tt"
         clauses = point.rules.rules.clauses
         is_tt = int(self._points.choices[Choice.EARTHING, at]) == Earthing.TT

@@ -19,6 +19,7 @@ REASONS = (
     *LOOP,
     "device-missing",
     "reading-over-range",
+    "over-range-over-limit",
     "no-guaranteed-current",
     "cannot-operate-in-time",
 )
@@ -38,6 +39,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(unguaranteed, Standing.UNDETERMINED, "no-guaranteed-current")
     open_end = np.isinf(q.compared.greatest) & (q.compared.least <= q.loop_limit)
     cases.when(open_end, Standing.UNDETERMINED, "reading-over-range")
+    cases.when(np.isinf(q.compared.greatest), Standing.UNMET, "over-range-over-limit")
     return cases.settle(q.compared, q.loop_limit)
 
 
