@@ -77,5 +77,7 @@ async def run(port: int, requests: Callable[[], bytes], *, connections: int, sec
 
 def http(method: str, path: str, body: bytes) -> bytes:
     """The bytes of one request."""
-    head = f"{method} {path} HTTP/1.1\r\nHost: loopback\r\nContent-Type: application/json\r\nContent-Length: {len(body)}"
+    head = (
+        f"{method} {path} HTTP/1.1\r\nHost: loopback\r\nContent-Type: application/json\r\nContent-Length: {len(body)}"
+    )
     return f"{head}\r\n\r\n".encode() + body

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 
 MISSING = {"", "-", "--", "---", "n/a", "na", "n.a.", "nt", "n.t.", "not tested", "lim"}
 OVER_RANGE = {"ol", "ofl", "o.l", "over", "overrange", "over-range"}
-_NUMBER = re.compile(r"([<>]?)\s*(\d+(?:\.\d+)?)\s*(.*)")
+_NUMBER = re.compile(r"([<>]?)\s*(\d+(?:\.\d+)?)\s*(.*)", re.ASCII)
 _UNITS = {
     "ohm": {"ohm", "ohms", "Ω"},
     "ms": {"ms"},

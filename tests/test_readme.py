@@ -1,0 +1,37 @@
+"""The README's request is answered as the README says."""
+
+import json
+import re
+from pathlib import Path
+from typing import Any
+
+from faultloop import assess
+
+README = (Path(__file__).parent.parent / "README.md").read_text(encoding="utf-8")
+
+
+def _block(name: str) -> dict[str, Any]:
+    found = re.search(rf"<!-- {name} -->\n```json\n(.*?)```", README, re.S)
+    assert found is not None, f"the README has no block named {name}"
+    block: dict[str, Any] = json.loads(found[1])
+    return block
+
+
+def _hold(shown: Any, given: Any, where: str) -> None:
+    """What is shown stands in what is given; a shown list item stands somewhere in the given list."""
+    if isinstance(shown, dict):
+        for key, value in shown.items():
+            assert key in given, f"{where}/{key} is not in the answer"
+            _hold(value, given[key], f"{where}/{key}")
+    elif isinstance(shown, list):
+        for at, item in enumerate(shown):
+            name = next(iter(item))
+            match = [other for other in given if other.get(name) == item[name]]
+            assert match, f"{where}/{at} is not in the answer"
+            _hold(item, match[0], f"{where}/{at}")
+    else:
+        assert shown == given, where
+
+
+def test_request_is_answered_as_shown() -> None:
+    _hold(_block("answer"), assess(_block("request")), "")
