@@ -141,7 +141,7 @@ def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
     _put_conductor(numbers, neutral, Number.NEUTRAL_MM2, None)
     same = neutral is not None and protective is not None and neutral.material == protective.material != "steel"
     choices[Choice.INFERABLE] = int(same)
-    if line is not None and (k := adiabatic_k(line.material, line.insulation)) is not None:
+    if line is not None and (k := adiabatic_k(line.material, line.insulation, line.area_mm2)) is not None:
         numbers[Number.ADIABATIC_K] = k
     _put_service_temperature(point, [c for c in (line, protective) if c is not None])
 

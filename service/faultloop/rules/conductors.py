@@ -32,8 +32,15 @@ class AdiabaticRow(Sourced):
 
     material: Material
     insulation: Insulation
+    above_mm2: float = 0.0
+    to_mm2: float | None = None
     value: float
     unit: Literal["A*s^0.5/mm2"]
+
+    def holds(self, material: str, insulation: str, area_mm2: float) -> bool:
+        """Whether the row is for this conductor."""
+        inside = self.above_mm2 < area_mm2 and (self.to_mm2 is None or area_mm2 <= self.to_mm2)
+        return inside and (self.material, self.insulation) == (material, insulation)
 
 
 class ConductorTables(Sheet):
@@ -51,7 +58,7 @@ def conductor_tables() -> ConductorTables:
     tables = read_sheet(ConductorTables, read_table(file), file.name)
     refuse_duplicates(file.name, "resistance", [(r.material, r.area_mm2) for r in tables.resistance])
     refuse_duplicates(file.name, "service_temperature", [(r.insulation,) for r in tables.service_temperature])
-    refuse_duplicates(file.name, "adiabatic", [(r.material, r.insulation) for r in tables.adiabatic])
+    refuse_duplicates(file.name, "adiabatic", [(r.material, r.insulation, r.above_mm2) for r in tables.adiabatic])
     return tables
 
 
@@ -68,8 +75,8 @@ def service_temperature(insulation: str) -> float | None:
     return next((r.value for r in conductor_tables().service_temperature if r.insulation == insulation), None)
 
 
-@lru_cache(maxsize=64)
-def adiabatic_k(material: str, insulation: str) -> float | None:
+@lru_cache(maxsize=4096)
+def adiabatic_k(material: str, insulation: str, area_mm2: float) -> float | None:
     """Adiabatic factor k of a core in a cable [A·s^½/mm²]; None where the table has none."""
     rows = conductor_tables().adiabatic
-    return next((r.value for r in rows if (r.material, r.insulation) == (material, insulation)), None)
+    return next((r.value for r in rows if r.holds(material, insulation, area_mm2)), None)

@@ -28,7 +28,11 @@ def load(files: Iterable[Traversable | Path]) -> dict[str, LoadedRules]:
     names: dict[str, str] = {}
     for file in files:
         table = read_table(file)
-        key = f"{table.get('id')}:{table.get('edition')}"
+        for name in ("id", "edition"):
+            # Said before extending, or a file without them would call itself by its base's name.
+            if name not in table:
+                raise DataFileError(f"{file.name}: {name}: missing")
+        key = f"{table['id']}:{table['edition']}"
         if key in tables:
             raise DataFileError(f"{file.name}: id and edition {key} stand already in {names[key]}")
         tables[key], names[key] = table, file.name
@@ -52,7 +56,7 @@ def _overlaid(base: Table, over: Table) -> Table:
     for key, value in over.items():
         below = merged.get(key)
         # A parameter is replaced whole: half of an old source under a new value would be a lie.
-        deeper = isinstance(value, dict) and isinstance(below, dict) and "value" not in below
+        deeper = isinstance(value, dict) and isinstance(below, dict) and "source" not in below
         merged[key] = _overlaid(below, value) if deeper else value  # type: ignore[arg-type]
     return merged
 
