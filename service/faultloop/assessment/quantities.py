@@ -100,6 +100,7 @@ def shared(points: Points) -> Quantities:
         prospective_current(rule["c_max"], voltage, found.loop.least),
         prospective_current(rule["c_min"], voltage, hot.nominal),
     )
+    slow = band.greatest_time(device, np.array([current.least, current.nominal]))
     touch, touch_known = _touch(g, found, hot, factor)
     return Quantities(
         given=g,
@@ -113,11 +114,7 @@ def shared(points: Points) -> Quantities:
         loop_limit=limit,
         overcurrent=compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)),
         current=current,
-        overcurrent_s=Interval(
-            band.least_time(device, current.greatest),
-            band.greatest_time(device, current.least),
-            band.greatest_time(device, current.nominal),
-        ),
+        overcurrent_s=Interval(band.least_time(device, current.greatest), slow[0], slow[1]),
         residual=_residual(g, current),
         line_neutral=line_neutral(g, found, hot, factor),
         touch_v=touch,
@@ -163,31 +160,30 @@ def _residual(g: Given, current: Interval) -> ResidualTimes:
     """
     points, row = g.points, g.points.choice(Choice.RESIDUAL)
     rated, band = points.number(Number.RESIDUAL_MA) / 1000.0, catalogue().residual
-    multiple, nominal = current.least / rated, current.nominal / rated
-    one, two, five = (points.value[r] / 1000.0 for r in (Reading.TIME_1, Reading.TIME_2, Reading.TIME_5))
-
-    def slow(m: Array) -> Array:
-        measured = np.where(m >= 5.0, five, np.where(m >= 2.0, two, np.where(m >= 1.0, one, np.nan)))
-        return np.fmax(band.greatest_time(row, m), measured)
-
+    multiples = np.array([current.least, current.nominal]) / rated
+    one, two, five = points.value[[Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]] / 1000.0
+    measured = np.where(
+        multiples >= 5.0, five, np.where(multiples >= 2.0, two, np.where(multiples >= 1.0, one, np.nan))
+    )
+    slow = np.fmax(band.greatest_time(row, multiples), measured)
     over, tested = _tests(g)
-    times = Interval(band.least_time(row, current.greatest / rated), slow(multiple), slow(nominal))
-    return ResidualTimes(multiple, nominal, times, over, tested)
+    times = Interval(band.least_time(row, current.greatest / rated), slow[0], slow[1])
+    return ResidualTimes(multiples[0], multiples[1], times, over, tested)
 
 
 def _tests(g: Given) -> tuple[Flags, Flags]:
     """Where a test result is over the standard's time, and where a usable time at IΔn is there."""
-    points, row, band = g.points, g.points.choice(Choice.RESIDUAL), catalogue().residual
-    over, tested = np.zeros(points.count, dtype=np.bool_), np.zeros(points.count, dtype=np.bool_)
-    for reading, at in ((Reading.TIME_1, 1.0), (Reading.TIME_2, 2.0), (Reading.TIME_5, 5.0)):
-        limit_ms = 1000.0 * band.greatest_time(row, np.full(points.count, at))
-        value, bound = points.value[reading], points.bound[reading]
-        over |= ((bound == Bound.EXACT) & (value > limit_ms)) | ((bound == Bound.ABOVE) & (value >= limit_ms))
-        if reading == Reading.TIME_1:
-            within = (bound == Bound.EXACT) | ((bound == Bound.BELOW) & (value <= limit_ms))
-            # Under a millisecond the unit must be wrong.
-            tested = within & (value >= 1.0)
-    return over, tested
+    points, row = g.points, g.points.choice(Choice.RESIDUAL)
+    tests = [Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]
+    multiples = np.broadcast_to(np.array([[1.0], [2.0], [5.0]]), (3, points.count))
+    limit_ms = 1000.0 * catalogue().residual.greatest_time(row, multiples)
+    value, bound = points.value[tests], points.bound[tests]
+    exact = bound == Bound.EXACT
+    late = (exact & (value > limit_ms)) | ((bound == Bound.ABOVE) & (value >= limit_ms))
+    over: Flags = np.logical_or.reduce(late, axis=0)
+    within = exact[0] | ((bound[0] == Bound.BELOW) & (value[0] <= limit_ms[0]))
+    # Under a millisecond the unit must be wrong.
+    return over, within & (value[0] >= 1.0)
 
 
 def _touch(g: Given, found: Loops, hot: Interval, factor: Array) -> tuple[Array, Flags]:

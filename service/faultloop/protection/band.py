@@ -60,16 +60,16 @@ class BandTable:
         ----------
         row : (n,) array of int
             Device rows.
-        current_a : (n,) array
-            Prospective current, r.m.s. [A].
+        current_a : (..., n) array
+            Prospective current, r.m.s. [A]; leading axes are further currents of the same devices.
 
         Returns
         -------
-        (n,) array
+        (..., n) array
             Time [s] of the last tested point at or below the current (the standard promises nothing
             between its points); inf below the first point; nan where the current is unknown.
         """
-        passed = (current_a[:, None] >= self.slow_current[row]).sum(axis=1)
+        passed = (current_a[..., None] >= self.slow_current[row]).sum(axis=-1)
         time = self.slow_time[row, passed]
         return np.where(np.isnan(current_a), np.nan, time)
 
@@ -80,16 +80,16 @@ class BandTable:
         ----------
         row : (n,) array of int
             Device rows.
-        current_a : (n,) array
-            Prospective current, r.m.s. [A].
+        current_a : (..., n) array
+            Prospective current, r.m.s. [A]; leading axes are further currents of the same devices.
 
         Returns
         -------
-        (n,) array
+        (..., n) array
             Time [s] of the first tested point at or above the current; 0 above the last point; nan where
             the current is unknown.
         """
-        passed = (current_a[:, None] > self.fast_current[row]).sum(axis=1)
+        passed = (current_a[..., None] > self.fast_current[row]).sum(axis=-1)
         time = self.fast_time[row, passed]
         return np.where(np.isnan(current_a), np.nan, time)
 

@@ -8,7 +8,6 @@ from faultloop.assessment.points import Choice, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.conductors import withstand_time
 from faultloop.electrical.fault_current import prospective_current
-from faultloop.electrical.measurement import Array
 from faultloop.protection.catalogue import catalogue
 
 REASONS = (
@@ -71,16 +70,12 @@ def _withstands(points: Points, q: Quantities) -> Flags:
     k, area = points.number(Number.ADIABATIC_K), points.number(Number.LINE_MM2)
     least = prospective_current(q.rule("c_min"), voltage, q.line_neutral.hot.greatest)
     greatest = prospective_current(q.rule("c_max"), voltage, q.line_neutral.cold_least)
-
-    def bears(current: Array) -> Flags:
-        time = band.greatest_time(row, current)
-        borne: Flags = (time <= SHORTEST_ADIABATIC_S) | (time <= withstand_time(k, area, current))
-        return borne
-
-    everywhere = bears(least) & bears(greatest)
-    for step in range(band.slow_current.shape[1]):
-        edge = band.slow_current[row, step]
-        everywhere &= ~((edge > least) & (edge < greatest)) | bears(np.nextafter(edge, 0.0))
+    edges = np.nextafter(band.slow_current[row].T, 0.0)
+    inside = (edges > least) & (edges < greatest)
+    tried = np.concatenate([least[None], greatest[None], np.where(inside, edges, least)])
+    time = band.greatest_time(row, tried)
+    borne = (time <= SHORTEST_ADIABATIC_S) | (time <= withstand_time(k, area, tried))
+    everywhere: Flags = np.logical_and.reduce(borne, axis=0)
     return everywhere & ~np.isnan(k * area)
 
 
