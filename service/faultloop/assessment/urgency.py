@@ -10,6 +10,7 @@ from faultloop.assessment.standing import Verdict
 from faultloop.electrical.body import severity_ratio
 from faultloop.electrical.measurement import Array
 from faultloop.protection.band import faster
+from faultloop.protection.catalogue import catalogue
 
 
 class Urgency(Codes):
@@ -20,6 +21,10 @@ class Urgency(Codes):
     PLANNED = 2
     NOTE = 3
     NONE = 4
+
+
+# Where the current-time curve that orders the work ends.
+LONGEST_ORDERED_S = 3.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,7 +44,8 @@ def severity(points: Points, q: Quantities) -> Severity:
     credited = ~np.isnan(points.number(Number.RESIDUAL_MA)) & ~q.residual.over_limit
     # A person who touches the part closes the path, so a device that sees no metallic return still sees them.
     touched = np.fmax(q.residual.multiple_nominal, q.touch_v / body / (points.number(Number.RESIDUAL_MA) / 1000.0))
-    quick = np.where(touched > q.residual.multiple_nominal, 0.04, q.residual.time_s.nominal)
+    by_band = catalogue().residual.greatest_time(points.choice(Choice.RESIDUAL), touched)
+    quick = np.where(touched > q.residual.multiple_nominal, by_band, q.residual.time_s.nominal)
     residual = np.where(credited, quick, np.inf)
     time = faster(q.overcurrent_s.nominal, residual)
     return Severity(
@@ -56,7 +62,7 @@ def urgency(points: Points, q: Quantities, verdict: Ints, defect: Flags) -> tupl
     level = np.full(points.count, Urgency.PLANNED, dtype=np.int64)
     level[defect & (found.barrier_failed >= 1.0)] = Urgency.URGENT
     level[found.as_is >= 1.0] = Urgency.STOP_USE
-    sustained = (found.body_ma > q.rule("sustained_ma")) & (found.time_s > 3.0)
+    sustained = (found.body_ma > q.rule("sustained_ma")) & (found.time_s > LONGEST_ORDERED_S)
     level = np.where(sustained, np.maximum(level - 1, Urgency.STOP_USE), level)
     level = np.where(verdict == Verdict.PASS_WITH_CONDITIONS, Urgency.NOTE, level)
     return np.where(verdict == Verdict.PASS, Urgency.NONE, level).astype(np.int64), found
