@@ -1,0 +1,189 @@
+"""Whole requests as a practitioner, or a careless one, might send them."""
+
+from typing import Any
+
+from hypothesis import strategies as st
+
+from faultloop.protection.catalogue import listed_devices
+from faultloop.protection.designations import Breaker
+
+Body = dict[str, Any]
+
+RULES = ("bs-7671", "bs-7671:2008", "bs-7671:2011", "iec-60364")
+LOOP = "earth_fault_loop_impedance_ohm"
+EXTERNAL = "external_earth_fault_loop_impedance_ohm"
+LINE_NEUTRAL = "line_neutral_loop_impedance_ohm"
+DEAD = "line_plus_protective_resistance_ohm"
+PROTECTIVE = "protective_conductor_resistance_ohm"
+ELECTRODE = "earth_electrode_resistance_ohm"
+TIMES = "residual_operating_time_ms"
+
+
+def between(least: float, greatest: float) -> st.SearchStrategy[float]:
+    """Numbers as instruments show them, four figures at most, and some with all their bits."""
+    shown = st.floats(least, greatest, allow_nan=False).map(lambda value: float(f"{value:.4g}"))
+    return st.one_of(shown, st.floats(least, greatest, allow_nan=False)).map(lambda v: min(max(v, least), greatest))
+
+
+ohms = st.one_of(between(0.0, 0.01), between(0.05, 3.0), between(0.3, 30.0), between(10.0, 3000.0))
+instruments = st.fixed_dictionaries(
+    {
+        "percent": between(0, 30),
+        "digits": st.sampled_from([0.0, 3.0, 5.0]),
+        "resolution": st.sampled_from([0.001, 0.01]),
+    }
+)
+
+
+def measured(
+    values: st.SearchStrategy[float],
+    methods: tuple[str, ...] = ("no-trip", "high-current", "dead", "calculated", "declared"),
+    bounds: tuple[str, ...] = ("exact", "exact", "exact", "above", "below"),
+) -> st.SearchStrategy[Any]:
+    """A plain number, or a reading with what is known about it."""
+    told = st.fixed_dictionaries(
+        {"value": values},
+        optional={
+            "bound": st.sampled_from(bounds),
+            "method": st.sampled_from(methods),
+            "instrument": instruments,
+            "conductor_temperature_c": between(-40, 90),
+        },
+    )
+    return st.one_of(values, told)
+
+
+@st.composite
+def devices(draw: st.DrawFn) -> Body:
+    """Any overcurrent device held."""
+    device = draw(st.sampled_from(listed_devices()))
+    body: Body = {"rated_current_a": device.rated_current_a}
+    if isinstance(device, Breaker):
+        body |= {"kind": "miniature-circuit-breaker", "characteristic": device.characteristic}
+    else:
+        body |= {"kind": "fuse", "fuse_system": device.fuse_system, "utilisation_category": "gG"}
+    return body | draw(st.fixed_dictionaries({}, optional={"breaking_capacity_ka": between(0, 80)}))
+
+
+residual_devices = st.fixed_dictionaries(
+    {"rated_residual_operating_current_ma": st.sampled_from([6.0, 10.0, 30.0, 100.0, 300.0, 500.0, 1000.0])},
+    optional={
+        "residual_type": st.sampled_from(["AC", "A", "F", "B"]),
+        "delay": st.sampled_from(["general", "selective", "time-delayed"]),
+    },
+)
+conductors = st.fixed_dictionaries(
+    {
+        "material": st.sampled_from(["copper", "copper", "aluminium", "steel"]),
+        "insulation": st.sampled_from(["pvc", "xlpe", "epr", "rubber", "mineral", "bare"]),
+        "area_mm2": st.sampled_from([0.75, 1.0, 1.5, 2.5, 4.0, 6.0, 10.0, 16.0, 3.3]),
+    }
+)
+circuits = st.fixed_dictionaries(
+    {},
+    optional={
+        "role": st.sampled_from(["final", "final", "distribution"]),
+        "feeds": st.sampled_from(["socket-outlets", "fixed-equipment", "mobile-equipment-outdoors"]),
+        "rated_current_a": between(1, 100),
+        "arrangement": st.sampled_from(["radial", "ring"]),
+        "users": st.sampled_from(["ordinary", "instructed", "skilled"]),
+        "designated_equipment": st.booleans(),
+        "line_conductor": conductors,
+        "neutral_conductor": conductors,
+        "protective_conductor": conductors,
+        "length_m": between(0, 300),
+        "current_carrying_capacity_a": between(0, 100),
+    },
+)
+supplies = st.fixed_dictionaries(
+    {},
+    optional={
+        "earthing": st.sampled_from(["TN-S", "TN-C-S", "TT", "TT", "TN-S", "TN-C", "IT", "separated"]),
+        "nominal_voltage_to_earth_v": st.sampled_from([230.0, 230.0, 230.0, 120.0, 277.0, 400.0, 240.0, 50.0, 1e-9]),
+        "current": st.sampled_from(["ac", "ac", "ac", "dc"]),
+        "phases": st.sampled_from([1, 3]),
+    },
+)
+milliseconds = st.one_of(between(5, 60), between(1, 600), between(0, 1))
+times = st.fixed_dictionaries({}, optional={multiple: measured(milliseconds) for multiple in ("0.5", "1", "2", "5")})
+policies = st.fixed_dictionaries(
+    {},
+    optional={
+        "temperature": st.sampled_from(["split", "two-thirds", "four-fifths", "none"]),
+        "decision": st.sampled_from(["guarded", "simple"]),
+        "coverage": between(0.5, 0.9999),
+    },
+)
+all_readings = st.fixed_dictionaries(
+    {},
+    optional={
+        **{name: measured(ohms) for name in (LOOP, EXTERNAL, LINE_NEUTRAL, DEAD, PROTECTIVE, ELECTRODE)},
+        TIMES: times,
+    },
+)
+boards = st.fixed_dictionaries(
+    {}, optional={"line_neutral_loop_impedance_ohm": measured(ohms), "prospective_current_ka": between(0, 30)}
+)
+requests = st.fixed_dictionaries(
+    {"point": st.fixed_dictionaries({"label": st.text("abc äΩ", min_size=1, max_size=8)})},
+    optional={
+        "supply": supplies,
+        "circuit": circuits,
+        "board": boards,
+        "overcurrent_device": devices(),
+        "residual_current_device": residual_devices,
+        "upstream_residual_current_devices": st.lists(residual_devices, max_size=2),
+        "readings": all_readings,
+        "rules": st.sampled_from(RULES),
+        "policy": policies,
+    },
+)
+
+
+@st.composite
+def judgeable(draw: st.DrawFn, earthing: tuple[str, ...] = ("TN-S", "TN-C-S", "TT")) -> Body:
+    """Requests with everything that a verdict needs and readings that do not contradict each other.
+
+    One loop reading, or Ze with R1 + R2, or on TT an electrode; exact, plausible, by measuring methods.
+    """
+    supply = {"earthing": draw(st.sampled_from(earthing)), "nominal_voltage_to_earth_v": 230.0}
+    methods = ("no-trip", "high-current")
+    exact = ("exact",)
+    read: Body = draw(loop_readings(supply["earthing"] == "TT"))
+    if draw(st.booleans()):
+        read[LINE_NEUTRAL] = draw(measured(between(0.05, 4.0), ("high-current",), exact))
+    request: Body = {
+        "point": {"label": "any"},
+        "supply": supply,
+        "circuit": {
+            "role": draw(st.sampled_from(["final", "final", "distribution"])),
+            "feeds": draw(st.sampled_from(["socket-outlets", "fixed-equipment", "mobile-equipment-outdoors"])),
+            "users": draw(st.sampled_from(["ordinary", "skilled"])),
+        },
+        "overcurrent_device": draw(devices()),
+        "readings": read,
+        "rules": draw(st.sampled_from(RULES)),
+        "policy": draw(policies),
+    }
+    if draw(st.integers(0, 3)):
+        request["residual_current_device"] = draw(residual_devices)
+        read[TIMES] = {"1": draw(measured(between(5, 400), methods, exact))}
+        if draw(st.booleans()):
+            request["upstream_residual_current_devices"] = [draw(residual_devices)]
+    return request
+
+
+@st.composite
+def loop_readings(draw: st.DrawFn, tt: bool) -> Body:
+    """Readings of one loop in one of the ways in which it is found."""
+    way = draw(st.sampled_from(["loop", "sum", "electrode"] if tt else ["loop", "sum"]))
+    exact = ("exact",)
+    if way == "electrode":
+        return {ELECTRODE: draw(measured(between(5, 2000), ("dead",), exact))}
+    if way == "sum" and not tt:
+        return {
+            EXTERNAL: draw(measured(between(0.05, 0.8), ("high-current",), exact)),
+            DEAD: draw(measured(between(0.05, 3.0), ("dead",), exact)),
+        }
+    values = between(5, 2000) if tt else between(0.1, 5.0)
+    return {LOOP: draw(measured(values, ("no-trip", "high-current"), exact))}
