@@ -7,6 +7,7 @@ here and nowhere else; decisions are made on the unrounded values.
 import hashlib
 import json
 import math
+from collections.abc import Iterable
 from typing import Any
 
 from pydantic_core import to_json
@@ -19,6 +20,11 @@ def rounded(value: float) -> float | None:
     if not math.isfinite(value):
         return None
     return float(f"{value:.6g}")
+
+
+def rounded_all(values: Iterable[float]) -> list[float | None]:
+    """Round a column by the same rule; written out, because answers print hundreds of numbers."""
+    return [float(f"{value:.6g}") if value - value == 0.0 else None for value in values]
 
 
 def canonical_bytes(value: Any) -> bytes:

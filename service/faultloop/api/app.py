@@ -71,6 +71,7 @@ def create_app(settings: Settings) -> FastAPI:
         # What lives as long as the service need not be walked by every collection.
         gc.collect()
         gc.freeze()
+        gc.set_threshold(20_000, 50, 100)
         try:
             yield
         finally:

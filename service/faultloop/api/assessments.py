@@ -3,6 +3,7 @@
 import base64
 import binascii
 import json
+from dataclasses import dataclass
 from datetime import UTC
 from typing import Annotated, Any
 from uuid import UUID
@@ -10,6 +11,7 @@ from uuid import UUID
 from fastapi import APIRouter, Header, Query, Request, Response
 
 from faultloop import __version__
+from faultloop.api.bodies import POINT_BODY, read_point, refuse_duplicates
 from faultloop.api.problems import Refused
 from faultloop.digests import digest, json_bytes, sha256
 from faultloop.exchange.answers import Assessment
@@ -25,50 +27,71 @@ JSON = "application/json"
 MOST_PER_PAGE = 200
 
 
-@router.post("/preview", response_model=Assessment, summary="Judge one measured point; store nothing")
-async def preview_assessment(body: AssessmentRequest, request: Request) -> Response:
+@router.post(
+    "/preview",
+    response_model=Assessment,
+    openapi_extra=POINT_BODY,
+    summary="Judge one measured point; store nothing",
+)
+async def preview_assessment(request: Request) -> Response:
     """Give the verdict on one point with its arithmetic; nothing is stored."""
-    answer = await request.app.state.gather.assess(body, sha256(request_bytes(body)))
-    return Response(json_bytes(answer), media_type=JSON, headers={"Cache-Control": "no-store"})
+    judged = await _judged(request)
+    return Response(json_bytes(judged.answer), media_type=JSON, headers={"Cache-Control": "no-store"})
+
+
+@dataclass(frozen=True, slots=True)
+class _Judged:
+    """A point with its canonical bytes, their digest, and the answer."""
+
+    body: AssessmentRequest
+    canonical: bytes
+    input_digest: str
+    answer: dict[str, Any]
+
+
+async def _judged(request: Request) -> _Judged:
+    body, raw = await read_point(request)
+    canonical = request_bytes(body)
+    refuse_duplicates(raw, canonical)
+    input_digest = sha256(canonical)
+    answer = await request.app.state.gather.assess(body, input_digest)
+    return _Judged(body, canonical, input_digest, answer)
 
 
 @router.put(
     "/{id}",
     response_model=Assessment,
+    openapi_extra=POINT_BODY,
     summary="Judge one measured point and store the answer",
     responses={201: {"model": Assessment, "description": "Judged and stored"}},
 )
 async def put_assessment(
     id: UUID,  # noqa: A002
-    body: AssessmentRequest,
     request: Request,
     if_none_match: Annotated[str | None, Header(max_length=200, description="* asks for a new one only")] = None,
 ) -> Response:
     """Judge and store under the caller's id; the same body again answers what is stored, another is refused."""
-    raw = request_bytes(body)
-    input_digest = sha256(raw)
-    answer = await request.app.state.gather.assess(body, input_digest)
-    record = _record(id, body, raw, input_digest, answer)
-    stored, created = await request.app.state.writer.put(record)
-    if stored.record.input_digest != input_digest:
+    judged = await _judged(request)
+    stored, created = await request.app.state.writer.put(_record(id, judged))
+    if stored.record.input_digest != judged.input_digest:
         raise Refused("precondition-failed" if if_none_match is not None else "conflict")
     return _stored_answer(stored, 201 if created else 200)
 
 
-def _record(id: UUID, body: AssessmentRequest, raw: bytes, input_digest: str, answer: dict[str, Any]) -> Record:  # noqa: A002
-    provenance = answer["provenance"]
+def _record(id: UUID, judged: _Judged) -> Record:  # noqa: A002
+    provenance = judged.answer["provenance"]
     return Record(
         id=str(id),
-        input_digest=input_digest,
-        verdict=answer["verdict"],
-        urgency=answer["urgency"],
+        input_digest=judged.input_digest,
+        verdict=judged.answer["verdict"],
+        urgency=judged.answer["urgency"],
         rules=provenance["rules"],
-        label=body.point.label,
+        label=judged.body.point.label,
         engine=__version__,
         rules_digest=provenance["rules_digest"],
         devices_digest=provenance["devices_digest"],
-        request=raw,
-        answer=json_bytes(answer),
+        request=judged.canonical,
+        answer=json_bytes(judged.answer),
     )
 
 

@@ -1,6 +1,6 @@
-"""Rows of requests that arrive in one turn of the event loop, run together as one table of points.
+"""Rows of requests that arrive in the same turns of the event loop, run together as one table of points.
 
-A judgement costs little more for sixteen rows than for one, so waiting for the end of the turn (and no
+A judgement costs little more for sixteen rows than for one, so waiting for a turn that brings none (and no
 longer) makes a busy service several times faster and an idle one no slower.
 """
 
@@ -16,27 +16,30 @@ Body = dict[str, Any]
 
 
 class Gather:
-    """Collects requests of one event-loop turn; a failing table is repeated row by row."""
+    """Collects requests until a turn of the event loop brings no more; a failing table is repeated row by row."""
 
     def __init__(self, most: int = 256) -> None:
         self._most = most
         self._waiting: list[tuple[AssessmentRequest, str, asyncio.Future[Body]]] = []
 
     async def assess(self, request: AssessmentRequest, input_digest: str) -> Body:
-        """Judge one request together with whatever else arrives in this turn."""
+        """Judge one request together with whatever else arrives in these turns."""
         loop = asyncio.get_running_loop()
         future: asyncio.Future[Body] = loop.create_future()
         self._waiting.append((request, input_digest, future))
         if len(self._waiting) == 1:
-            loop.call_soon(self._flush)
-        elif len(self._waiting) >= self._most:
-            self._flush()
+            loop.call_soon(self._turn, loop, 0)
         return await future
+
+    def _turn(self, loop: asyncio.AbstractEventLoop, seen: int) -> None:
+        """Wait another turn while the last one brought requests; an idle service waits for nothing."""
+        if seen < len(self._waiting) < self._most:
+            loop.call_soon(self._turn, loop, len(self._waiting))
+        else:
+            self._flush()
 
     def _flush(self) -> None:
         waiting, self._waiting = self._waiting, []
-        if not waiting:
-            return
         try:
             bodies = assess_requests([r for r, _, _ in waiting], [d for _, d, _ in waiting])
         except Exception:

@@ -26,6 +26,7 @@ def document(app: FastAPI) -> dict[str, Any]:
             routes=app.routes,
             openapi_version="3.1.0",
         )
+        _put_request_schemas(schema)
         schema["servers"] = [{"url": "/", "description": "This service"}]
         for path in schema["paths"].values():
             for operation in path.values():
@@ -33,6 +34,14 @@ def document(app: FastAPI) -> dict[str, Any]:
         _put_examples(schema)
         app.openapi_schema = schema
     return app.openapi_schema
+
+
+def _put_request_schemas(schema: dict[str, Any]) -> None:
+    """The body is read from its bytes, so the framework does not know its schema."""
+    body = AssessmentRequest.model_json_schema(ref_template="#/components/schemas/{model}")
+    components = schema["components"]["schemas"]
+    components |= body.pop("$defs") | {"AssessmentRequest": body}
+    schema["components"]["schemas"] = dict(sorted(components.items()))
 
 
 def _mend(operation: dict[str, Any]) -> None:

@@ -1,6 +1,7 @@
 """Explanations, questions, conditions and cautions of one point, by reason; no sentence stands in code."""
 
 import math
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 from functools import lru_cache
 
@@ -9,24 +10,12 @@ import numpy as np
 from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.loops import Basis
 from faultloop.assessment.points import Choice, Earthing, Method, Number, Points, Reading, TemperaturePolicy
-from faultloop.assessment.quantities import Quantities, electrode_interval
+from faultloop.assessment.quantities import electrode_interval
 from faultloop.assessment.texts import Said, texts
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.electrical.measurement import Array
 from faultloop.protection.catalogue import catalogue
-
-Values = dict[str, float | str]
-
-
-class _Open(float):
-    """An end without a bound: it prints as words, whatever number format the sentence asks for."""
-
-    words = ""
-
-    def __format__(self, spec: str) -> str:
-        return self.words
-
 
 _POLICIES = {code: word for word, code in TemperaturePolicy.codes().items()}
 _BASES = {code: word for word, code in Basis.codes().items()}
@@ -41,6 +30,83 @@ class Names:
     rules: str
 
 
+class Quoted(dict[str, float | str]):
+    """What sentences about one point may quote: its numbers, and phrases made only when one is quoted."""
+
+    def __init__(self, numbers: Iterable[tuple[str, float | str]], phrases: dict[str, str]) -> None:
+        super().__init__(numbers)
+        self.phrases = phrases
+
+    def __missing__(self, name: str) -> float | str:
+        """Make the phrase of that name."""
+        self[name] = found = _PHRASES[name](self)
+        return found
+
+    def number(self, name: str) -> float:
+        """A number for arithmetic: an open end counts as infinite."""
+        found = self[name]
+        return math.inf if isinstance(found, str) else found
+
+
+class _Open(str):
+    """An end without a bound: it prints as words, whatever number format the sentence asks for."""
+
+    __slots__ = ()
+
+    def __format__(self, spec: str) -> str:
+        return str(self)
+
+
+def _opened(column: list[float], words: str) -> list[float | str]:
+    """A column with its open ends in words."""
+    return [_Open(words) if value == math.inf else value for value in column]
+
+
+def _withstand(q: Quoted) -> float:
+    current = q.number("i_ln")
+    return (q.number("k") * q.number("area") / current) ** 2 if current else math.nan
+
+
+def _withstand_told(q: Quoted) -> str:
+    return "" if math.isnan(q.number("withstand")) else q.phrases["withstand"].format_map(q)
+
+
+def _overcurrent_time(q: Quoted) -> str:
+    nominal = q.number("overcurrent_nominal")
+    return f"{nominal:g} s" if math.isfinite(nominal) else q.phrases["no-time"]
+
+
+def _times_told(q: Quoted) -> str:
+    times = [(m, q.number(f"time_{m}")) for m in (1, 2, 5)]
+    return ", ".join(q.phrases["time"].format(time=t, multiple=m) for m, t in times if not math.isnan(t))
+
+
+def _residual_limit(q: Quoted) -> str:
+    touch = q.number("touch_limit") / q.number("idn_a")
+    return q.phrases["residual-limit-touch" if q["limit"] == touch else "residual-limit-time"].format_map(q)
+
+
+# Phrases that depend on what is known of the point.
+_PHRASES: dict[str, Callable[[Quoted], float | str]] = {
+    "withstand": _withstand,
+    "withstand_told": _withstand_told,
+    "multiple_in": lambda q: q.number("i_ln") / q.number("in_device"),
+    "overcurrent_time": _overcurrent_time,
+    "time_told": _times_told,
+    "residual_limit": _residual_limit,
+    "electrode_told": lambda q: q.phrases["electrode-bounded" if math.isnan(q.number("ra")) else "electrode-read"],
+    "marginal_question": lambda q: q.phrases[
+        "marginal-question-external" if math.isnan(q.number("ze")) else "marginal-question"
+    ],
+    "side": lambda q: q.phrases["below" if q.number("nominal") <= q.number("limit") else "above"],
+    "z_or_value": lambda q: q["nominal"],
+}
+
+
+# Phrases that speak of one finding's own numbers.
+_OWN_PHRASES = ("side", "residual_limit", "z_or_value")
+
+
 @lru_cache(maxsize=4096)
 def _template(language: str, check: str, reason: str, policy: str, basis: str) -> tuple[str, Said]:
     told = texts(language)
@@ -49,54 +115,41 @@ def _template(language: str, check: str, reason: str, policy: str, basis: str) -
 
 
 class Explainer:
-    """Explains the points of one outcome; the columns are turned to plain lists once."""
+    """Explains the points of one outcome; the columns are turned to plain rows once."""
 
     def __init__(self, points: Points, outcome: Outcome, language: str = "en") -> None:
-        self._points, self._outcome, self._language = points, outcome, language
-        with np.errstate(divide="ignore", invalid="ignore"):
-            self._columns = _columns(points, outcome)
-        self._phrases = texts(language).phrases
-        self._open = _Open("inf")
-        self._open.words = self._phrases["open-end"]
+        self._language, self._phrases = language, texts(language).phrases
+        words, found = self._phrases["open-end"], outcome.findings
+        with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+            columns = _columns(points, outcome)
+        self._names = tuple(columns)
+        self._rows = list(zip(*(_opened(column, words) for column in columns.values()), strict=True))
+        self._policies = points.choices[Choice.TEMPERATURE_POLICY].tolist()
+        self._bases = outcome.quantities.loops.basis.tolist()
+        own = (found.nominal.tolist(), found.limit.tolist(), found.least.tolist(), found.greatest.tolist())
+        self._own = [
+            list(zip(nominal, limit, least, _opened(greatest, words), strict=True))
+            for nominal, limit, least, greatest in zip(*own, strict=True)
+        ]
 
-    def values(self, at: int, names: Names) -> Values:
+    def quoted(self, at: int, names: Names) -> Quoted:
         """Everything that a sentence about one point may quote."""
-        values: Values = {name: column[at] for name, column in self._columns.items()}
-        phrase = self._phrases
-        for name in ("hot_greatest", "i_greatest"):
-            if math.isinf(float(values[name])):
-                values[name] = self._open
-        values["device"] = names.device or phrase["no-device"]
-        values["residual"] = names.residual or phrase["no-residual"]
-        values["rules"] = names.rules
-        _tell(values, self._outcome.quantities, at, phrase)
-        return values
+        quoted = Quoted(zip(self._names, self._rows[at], strict=True), self._phrases)
+        quoted["device"] = names.device or self._phrases["no-device"]
+        quoted["residual"] = names.residual or self._phrases["no-residual"]
+        quoted["rules"] = names.rules
+        return quoted
 
-    def said(self, check: int, reason: int, at: int, values: Values) -> tuple[str, str | None, list[str]]:
+    def said(self, check: int, reason: int, at: int, quoted: Quoted) -> tuple[str, str | None, list[str]]:
         """Explanation, question and cautions of one finding."""
-        points, found = self._points, self._outcome.findings
-        policy = _POLICIES[int(points.choices[Choice.TEMPERATURE_POLICY, at])]
-        basis = _BASES[int(self._outcome.quantities.loops.basis[at])]
+        policy, basis = _POLICIES[self._policies[at]], _BASES[self._bases[at]]
         template, said = _template(self._language, CHECKS[check].id, CHECKS[check].reasons[reason], policy, basis)
-        values["nominal"], values["limit"] = float(found.nominal[check, at]), float(found.limit[check, at])
-        values["value_least"], values["value_greatest"] = (
-            float(found.least[check, at]),
-            float(found.greatest[check, at]),
-        )
-        if math.isinf(found.greatest[check, at]):
-            values["value_greatest"] = self._open
-        values["z_or_value"] = values["nominal"]
-        values["side"] = self._phrases["below" if found.nominal[check, at] <= found.limit[check, at] else "above"]
-        if CHECKS[check].id == "residual-disconnection":
-            self._tell_residual_limit(values)
-        question = None if said.settled_by is None else said.settled_by.format_map(values)
-        return template.format_map(values), question, said.cautions
-
-    def _tell_residual_limit(self, values: Values) -> None:
-        """Say which of the two limits of a residual device is the lower one."""
-        touch = float(values["touch_limit"]) / float(values["idn_a"])
-        name = "residual-limit-touch" if values["limit"] == touch else "residual-limit-time"
-        values["residual_limit"] = self._phrases[name].format_map(values)
+        own = self._own[check][at]
+        quoted["nominal"], quoted["limit"], quoted["value_least"], quoted["value_greatest"] = own
+        for phrase in _OWN_PHRASES:
+            quoted.pop(phrase, None)
+        question = None if said.settled_by is None else said.settled_by.format_map(quoted)
+        return template.format_map(quoted), question, said.cautions
 
 
 def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
@@ -159,24 +212,6 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "i_ln": line_neutral,
     }
     return {name: column.tolist() for name, column in columns.items()}
-
-
-def _tell(values: Values, q: Quantities, at: int, phrase: dict[str, str]) -> None:
-    """Short phrases that depend on what is known."""
-    k, area, i_ln = float(values["k"]), float(values["area"]), float(values["i_ln"])
-    withstand = (k * area / i_ln) ** 2 if i_ln else math.nan
-    values["withstand"] = withstand
-    values["withstand_told"] = "" if math.isnan(withstand) else phrase["withstand"].format_map(values)
-    values["multiple_in"] = i_ln / float(values["in_device"])
-    nominal = float(values["overcurrent_nominal"])
-    values["overcurrent_time"] = f"{nominal:g} s" if math.isfinite(nominal) else phrase["no-time"]
-    electrode = bool(q.given.known[Reading.ELECTRODE, at])
-    values["electrode_told"] = phrase["electrode-read" if electrode else "electrode-bounded"]
-    times = [(m, float(values[f"time_{m}"])) for m in (1, 2, 5)]
-    told = [phrase["time"].format(time=time, multiple=m) for m, time in times if not math.isnan(time)]
-    values["time_told"] = ", ".join(told)
-    external = bool(q.given.known[Reading.EXTERNAL, at])
-    values["marginal_question"] = phrase["marginal-question" if external else "marginal-question-external"]
 
 
 def cautions_of(points: Points, outcome: Outcome, at: int, named: set[str], language: str = "en") -> list[str]:

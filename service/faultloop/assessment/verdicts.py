@@ -19,6 +19,7 @@ ANY_OF: dict[str, tuple[str, ...]] = {
 
 
 ROWS = {check.id: row for row, check in enumerate(CHECKS)}
+CONDITIONS = Condition.codes()
 REPORTS = np.array([check.report for check in CHECKS])[:, None]
 SENSES = np.array([check.sense for check in CHECKS])[:, None]
 # Reason of a comparison by verdict: fail, undetermined, marginal, pass-with-conditions, pass; two never compared.
@@ -54,7 +55,7 @@ class Outcome:
 
 def decide(points: Points) -> Outcome:
     """Judge n points by every check and draw the verdicts; the one path for one point and for a million."""
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         quantities = shared(points)
         judged = [check.judge(points, quantities) for check in CHECKS]
         applies = [check.applies(points, quantities) for check in CHECKS]
@@ -116,4 +117,4 @@ def _grouped(verdict: Ints) -> tuple[Flags, Ints]:
 
 def conditions_of(bits: int) -> list[str]:
     """Words of the conditions held in a field of bits."""
-    return [word for word, bit in Condition.codes().items() if bits >> bit & 1]
+    return [word for word, bit in CONDITIONS.items() if bits >> bit & 1] if bits else []

@@ -1,6 +1,5 @@
 """Outcomes -> answers in words, and the one path from requests to answers."""
 
-import math
 from collections.abc import Sequence
 from functools import lru_cache
 from typing import Any
@@ -9,19 +8,18 @@ import numpy as np
 
 from faultloop import __version__
 from faultloop.assessment.checks import CHECKS
-from faultloop.assessment.explain import Explainer, Names, cautions_of
+from faultloop.assessment.explain import Explainer, Names, Quoted, cautions_of
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import Choice, Earthing, Number, Points, Reading, from_rows
+from faultloop.assessment.points import Points, Reading, from_rows
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.texts import Texts, texts
 from faultloop.assessment.urgency import Urgency
-from faultloop.assessment.verdicts import ROWS, Outcome, conditions_of, decide
-from faultloop.digests import canonical_bytes, digest, rounded, sha256
-from faultloop.electrical.fault_current import prospective_current
+from faultloop.assessment.verdicts import ROWS, SENSES, Outcome, conditions_of, decide
+from faultloop.digests import canonical_bytes, digest, rounded_all, sha256
 from faultloop.electrical.measurement import conformance_probability
 from faultloop.exchange.mapping import Mapped, mapped
+from faultloop.exchange.quantities import interval, quantity_columns
 from faultloop.exchange.requests import AssessmentRequest
-from faultloop.protection.band import faster
 from faultloop.protection.catalogue import catalogue
 
 Body = dict[str, Any]
@@ -51,15 +49,22 @@ def _texts_digest(language: str) -> str:
     return digest(texts(language).model_dump(mode="json"))
 
 
-def interval(least: float, greatest: float) -> Body | None:
-    """An interval in words: unknown is absent, an open end null."""
-    if math.isnan(least) and math.isnan(greatest):
-        return None
-    body: Body = {"least": rounded(least), "greatest": rounded(greatest)}
-    if body["least"] is None or body["greatest"] is None:
-        both = body["least"] is None and body["greatest"] is None
-        body["open"] = "both" if both else "least" if body["least"] is None else "greatest"
-    return body
+class _Values:
+    """Values of the findings, (K, n), as lists: plain and rounded."""
+
+    def __init__(self, points: Points, outcome: Outcome) -> None:
+        found = outcome.findings
+        with np.errstate(invalid="ignore", divide="ignore", over="ignore"):
+            u = np.where(SENSES > 0, found.greatest - found.nominal, found.nominal - found.least)
+            # Probability belongs to the reading (k = 2), whatever coverage the decision asked for.
+            u = np.where(np.isinf(u), np.nan, u / points.coverage)
+            probability = conformance_probability(found.nominal, u, found.limit, SENSES)
+            worst = np.where(SENSES > 0, found.greatest, found.least)
+            margin = SENSES * (found.limit - worst) / found.limit * 100.0
+        self.least, self.greatest = found.least.tolist(), found.greatest.tolist()
+        printed = (found.nominal, found.least, found.greatest, found.limit, margin, probability)
+        # (K, 6) lists of n rounded numbers
+        self.rounded = [[rounded_all(of[row].tolist()) for of in printed] for row in range(len(CHECKS))]
 
 
 class Renderer:
@@ -71,24 +76,13 @@ class Renderer:
         self._explainer = Explainer(points, outcome, language)
         found = outcome.findings
         self._verdict, self._reason = found.verdict.tolist(), found.reason.tolist()
-        self._least, self._greatest = found.least.tolist(), found.greatest.tolist()
-        self._nominal, self._limit = found.nominal.tolist(), found.limit.tolist()
-        self._counts = found.counts.tolist()
-        senses = np.array([check.sense for check in CHECKS])[:, None]
-        with np.errstate(invalid="ignore", divide="ignore"):
-            u = np.where(senses > 0, found.greatest - found.nominal, found.nominal - found.least)
-            # Probability belongs to the reading (k = 2), whatever coverage the decision asked for.
-            u = np.where(np.isinf(u), np.nan, u / points.coverage)
-            probability = conformance_probability(found.nominal, u, found.limit, senses)
-            worst = np.where(senses > 0, found.greatest, found.least)
-            margin = senses * (found.limit - worst) / found.limit * 100.0
-        self._probability, self._margin = probability.tolist(), margin.tolist()
-        self._quantities = _quantity_columns(points, outcome)
+        self._counts, self._tt = found.counts.tolist(), outcome.quantities.tt.tolist()
+        self._values = _Values(points, outcome)
+        self._quantities = quantity_columns(points, outcome)
 
     def answer(self, at: int, point: Mapped, input_digest: str) -> Body:
         """The answer for one point."""
-        names = Names(point.device, point.residual, point.rules.rules.title)
-        values = self._explainer.values(at, names)
+        quoted = self._explainer.quoted(at, Names(point.device, point.residual, point.rules.rules.title))
         cautions: set[str] = set()
         findings, not_examined, not_applicable = [], [], []
         for row, check in enumerate(CHECKS):
@@ -96,27 +90,27 @@ class Renderer:
             if verdict == Verdict.NOT_APPLICABLE:
                 not_applicable.append({"check": check.id, "text": self._texts.checks[check.id].applies_not})
                 continue
-            explanation, question, named = self._explainer.said(row, self._reason[row][at], at, values)
+            explanation, question, named = self._explainer.said(row, self._reason[row][at], at, quoted)
             if verdict == Verdict.NOT_EXAMINED:
-                not_examined.append(
-                    _not_examined(check.id, check.reasons[self._reason[row][at]], explanation, question)
-                )
+                reason = check.reasons[self._reason[row][at]]
+                not_examined.append(_not_examined(check.id, reason, explanation, question))
                 continue
             # A finding that is met and decides nothing warns of nothing.
             told = named if self._counts[row][at] or verdict < Verdict.PASS_WITH_CONDITIONS else []
             cautions.update(told)
             findings.append(self._finding(row, at, point, explanation, question, told))
-        for subject, text in self._texts.subjects.items():
-            not_examined.append({"subject": subject, "reason": "out-of-scope", "text": text})
+        not_examined += [
+            {"subject": name, "reason": "out-of-scope", "text": text} for name, text in self._texts.subjects.items()
+        ]
         return {
             "verdict": _VERDICTS[int(self._outcome.verdict[at])],
             "urgency": _URGENCIES[int(self._outcome.urgency[at])],
             "findings": findings,
-            "quantities": self._quantities_of(at),
+            "quantities": self._quantities.body(at),
             "conditions": self._conditions(at),
             "not_examined": not_examined,
             "not_applicable": not_applicable,
-            "assumptions": self._assumptions(at, point, values),
+            "assumptions": self._assumptions(at, point, quoted),
             "cautions": self._cautions(at, cautions),
             "policy": point.policy,
             "provenance": self._provenance(point, input_digest),
@@ -125,51 +119,41 @@ class Renderer:
     def _finding(
         self, row: int, at: int, point: Mapped, explanation: str, question: str | None, named: list[str]
     ) -> Body:
-        check, verdict = CHECKS[row], self._verdict[row][at]
+        check, verdict, clauses = CHECKS[row], self._verdict[row][at], point.rules.rules.clauses
         if verdict == Verdict.FAIL and question is not None:
             # Nothing read can settle a failure: what would be asked is what is to be done.
-            explanation, question = f"{explanation} {question}", None
-        tt = check.id + "-tt"
-        clauses = point.rules.rules.clauses
-        is_tt = int(self._points.choices[Choice.EARTHING, at]) == Earthing.TT
+            explanation = f"{explanation} {question}"
+        value, least, greatest, limit, margin, probability = (column[at] for column in self._values.rounded[row])
         body: Body = {
             "check": check.id,
             "title": self._texts.checks[check.id].title,
             "verdict": _VERDICTS[verdict],
             "quantity": check.quantity,
-            "value": rounded(self._nominal[row][at]),
-            "interval": interval(self._least[row][at], self._greatest[row][at]),
-            "limit": rounded(self._limit[row][at]),
+            "value": value,
+            "interval": interval(self._values.least[row][at], self._values.greatest[row][at], (least, greatest)),
+            "limit": limit,
             "unit": check.unit,
-            "margin_percent": rounded(self._margin[row][at]),
-            "conformance_probability": rounded(self._probability[row][at]),
+            "margin_percent": margin,
+            "conformance_probability": probability,
             "group": check.group,
             "counts": self._counts[row][at],
-            "clause": clauses[tt] if is_tt and tt in clauses else clauses[check.id],
+            "clause": (clauses.get(f"{check.id}-tt") if self._tt[at] else None) or clauses[check.id],
             "reason": check.reasons[self._reason[row][at]],
             "explanation": explanation,
-            "settled_by": question if verdict < Verdict.PASS_WITH_CONDITIONS else None,
+            "settled_by": question if Verdict.FAIL < verdict < Verdict.PASS_WITH_CONDITIONS else None,
             "caution": self._texts.cautions[named[0]].text if named else None,
         }
-        return {name: value for name, value in body.items() if value is not None}
-
-    def _quantities_of(self, at: int) -> Body:
-        columns = self._quantities
-        body: Body = {name: interval(least[at], greatest[at]) for name, (least, greatest) in columns.ends.items()}
-        time = interval(columns.time[0][at], columns.time[1][at])
-        body["disconnection_time_s"] = None if time is None else {**time, "by": columns.by[at]}
-        body.update({name: rounded(column[at]) for name, column in columns.plain.items()})
-        return {name: value for name, value in body.items() if value is not None}
+        return {name: told for name, told in body.items() if told is not None}
 
     def _conditions(self, at: int) -> list[Body]:
         told = self._texts.conditions
         held = conditions_of(int(self._outcome.conditions[at]))
         return [{"condition": name, "text": told[name].text, "owner": told[name].owner} for name in held]
 
-    def _assumptions(self, at: int, point: Mapped, values: dict[str, float | str]) -> list[Body]:
+    def _assumptions(self, at: int, point: Mapped, quoted: Quoted) -> list[Body]:
         names = [*point.assumptions, *_assumed(self._outcome, at)]
         told = self._texts.assumptions
-        return [{"assumption": name, "text": told[name].format_map(values)} for name in names]
+        return [{"assumption": name, "text": told[name].format_map(quoted)} for name in names]
 
     def _cautions(self, at: int, named: set[str]) -> list[Body]:
         told = self._texts.cautions
@@ -190,51 +174,6 @@ class Renderer:
 def _not_examined(subject: str, reason: str, text: str, question: str | None) -> Body:
     body: Body = {"subject": subject, "reason": reason, "text": text}
     return body if question is None else {**body, "settled_by": question}
-
-
-class _QuantityColumns:
-    """Columns of the reported quantities as lists."""
-
-    def __init__(self) -> None:
-        self.ends: dict[str, tuple[list[float], list[float]]] = {}
-        self.plain: dict[str, list[float]] = {}
-        self.time: tuple[list[float], list[float]] = ([], [])
-        self.by: list[str] = []
-
-
-def _quantity_columns(points: Points, outcome: Outcome) -> _QuantityColumns:
-    q, found, columns = outcome.quantities, outcome.findings, _QuantityColumns()
-    given = found.verdict[ROWS["line-neutral-disconnection"]] < Verdict.NOT_EXAMINED
-    voltage, loop = points.number(Number.VOLTAGE), q.line_neutral
-    with np.errstate(divide="ignore", invalid="ignore"):
-        short = [
-            np.where(given, prospective_current(q.rule(factor), voltage, z), np.nan)
-            for factor, z in (("c_min", loop.hot.greatest), ("c_max", loop.cold_least))
-        ]
-    touch_least = np.where(q.touch_known, q.touch_v, np.where(np.isnan(q.touch_v), np.nan, -np.inf))
-    ends = {
-        "prospective_earth_fault_current_a": (q.current.least, q.current.greatest),
-        "prospective_short_circuit_current_a": (short[0], short[1]),
-        "touch_voltage_v": (touch_least, q.touch_v),
-        "earth_fault_loop_impedance_ohm": (q.loops.loop.least, q.loops.loop.greatest),
-        "heated_earth_fault_loop_impedance_ohm": (q.hot.least, q.hot.greatest),
-    }
-    columns.ends = {name: (least.tolist(), greatest.tolist()) for name, (least, greatest) in ends.items()}
-    credited = q.residual.tested & ~q.residual.over_limit
-    residual = np.where(credited, q.residual.time_s.greatest, np.inf)
-    greatest = faster(q.overcurrent_s.greatest, residual)
-    least = np.fmin(q.overcurrent_s.least, np.where(credited, q.residual.time_s.least, np.inf))
-    known = ~np.isnan(q.current.least)
-    columns.time = (np.where(known, least, np.nan).tolist(), np.where(known, greatest, np.nan).tolist())
-    quicker = residual < np.where(np.isnan(q.overcurrent_s.greatest), np.inf, q.overcurrent_s.greatest)
-    by = np.where(np.isinf(greatest), "none", np.where(quicker, "residual-current-device", "overcurrent-device"))
-    columns.by = by.tolist()
-    columns.plain = {
-        "required_disconnection_time_s": np.where(q.wanting == 0, q.required_s, np.nan).tolist(),
-        "temperature_factor": q.factor.tolist(),
-        "residual_current_multiple": q.residual.multiple.tolist(),
-    }
-    return columns
 
 
 def _assumed(outcome: Outcome, at: int) -> list[str]:

@@ -1,0 +1,109 @@
+"""The reported quantities of an answer: currents, times, voltages, with everything in them."""
+
+import math
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from faultloop.assessment.points import Number, Points
+from faultloop.assessment.standing import Verdict
+from faultloop.assessment.verdicts import ROWS, Outcome
+from faultloop.digests import rounded_all
+from faultloop.electrical.fault_current import prospective_current
+from faultloop.electrical.measurement import Array
+from faultloop.protection.band import faster
+
+Body = dict[str, Any]
+Rounded = list[float | None]
+
+
+def interval(least: float, greatest: float, ends: tuple[float | None, float | None]) -> Body | None:
+    """An interval in words, from its values and the same rounded: unknown is absent, an open end null."""
+    if ends[0] is not None and ends[1] is not None:
+        return {"least": ends[0], "greatest": ends[1]}
+    if math.isnan(least) and math.isnan(greatest):
+        return None
+    both = ends[0] is None and ends[1] is None
+    return {
+        "least": ends[0],
+        "greatest": ends[1],
+        "open": "both" if both else "least" if ends[0] is None else "greatest",
+    }
+
+
+@dataclass(frozen=True, slots=True)
+class _Ends:
+    """One interval of every point as lists, plain and rounded."""
+
+    least: list[float]
+    greatest: list[float]
+    rounded: list[tuple[float | None, float | None]]
+
+    def body(self, at: int) -> Body | None:
+        """The interval of one point in words."""
+        return interval(self.least[at], self.greatest[at], self.rounded[at])
+
+
+def _ends(least: Array, greatest: Array) -> _Ends:
+    low, high = least.tolist(), greatest.tolist()
+    return _Ends(low, high, list(zip(rounded_all(low), rounded_all(high), strict=True)))
+
+
+@dataclass(frozen=True, slots=True)
+class QuantityColumns:
+    """Columns of the reported quantities as lists."""
+
+    ends: dict[str, _Ends]
+    time: _Ends
+    by: list[str]
+    plain: dict[str, Rounded]
+
+    def body(self, at: int) -> Body:
+        """The quantities of one point; what is unknown is absent."""
+        body: Body = {name: told for name, ends in self.ends.items() if (told := ends.body(at)) is not None}
+        if (time := self.time.body(at)) is not None:
+            body["disconnection_time_s"] = {**time, "by": self.by[at]}
+        for name, column in self.plain.items():
+            if (value := column[at]) is not None:
+                body[name] = value
+        return body
+
+
+def quantity_columns(points: Points, outcome: Outcome) -> QuantityColumns:
+    """Turn the quantities of one outcome to columns."""
+    q, voltage = outcome.quantities, points.number(Number.VOLTAGE)
+    given = outcome.findings.verdict[ROWS["line-neutral-disconnection"]] < Verdict.NOT_EXAMINED
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        short = [
+            np.where(given, prospective_current(q.rule(factor), voltage, z), np.nan)
+            for factor, z in (("c_min", q.line_neutral.hot.greatest), ("c_max", q.line_neutral.cold_least))
+        ]
+    touch_least = np.where(q.touch_known, q.touch_v, np.where(np.isnan(q.touch_v), np.nan, -np.inf))
+    ends = {
+        "prospective_earth_fault_current_a": _ends(q.current.least, q.current.greatest),
+        "prospective_short_circuit_current_a": _ends(short[0], short[1]),
+        "touch_voltage_v": _ends(touch_least, q.touch_v),
+        "earth_fault_loop_impedance_ohm": _ends(q.loops.loop.least, q.loops.loop.greatest),
+        "heated_earth_fault_loop_impedance_ohm": _ends(q.hot.least, q.hot.greatest),
+    }
+    time, by = _disconnection(outcome)
+    plain = {
+        "required_disconnection_time_s": rounded_all(np.where(q.wanting == 0, q.required_s, np.nan).tolist()),
+        "temperature_factor": rounded_all(q.factor.tolist()),
+        "residual_current_multiple": rounded_all(q.residual.multiple.tolist()),
+    }
+    return QuantityColumns(ends, time, by, plain)
+
+
+def _disconnection(outcome: Outcome) -> tuple[_Ends, list[str]]:
+    """Disconnection time by the quicker device; a residual one counts when it was tested and did not fail."""
+    q = outcome.quantities
+    credited = q.residual.tested & ~q.residual.over_limit
+    residual = np.where(credited, q.residual.time_s.greatest, np.inf)
+    greatest = faster(q.overcurrent_s.greatest, residual)
+    least = np.fmin(q.overcurrent_s.least, np.where(credited, q.residual.time_s.least, np.inf))
+    known = ~np.isnan(q.current.least)
+    quicker = residual < np.where(np.isnan(q.overcurrent_s.greatest), np.inf, q.overcurrent_s.greatest)
+    by = np.where(np.isinf(greatest), "none", np.where(quicker, "residual-current-device", "overcurrent-device"))
+    return _ends(np.where(known, least, np.nan), np.where(known, greatest, np.nan)), by.tolist()
