@@ -10,7 +10,7 @@ import math
 from collections.abc import Iterable
 from typing import Any
 
-from pydantic_core import to_json
+import orjson
 
 SIGNIFICANT_DIGITS = 6
 
@@ -34,8 +34,8 @@ def canonical_bytes(value: Any) -> bytes:
 
 
 def json_bytes(value: Any) -> bytes:
-    """Give the JSON text of an answer, in the order in which it was built."""
-    return to_json(value, inf_nan_mode="strings")
+    """Give the JSON text of an answer, in the order in which it was built; what is rounded is finite or absent."""
+    return orjson.dumps(value)
 
 
 def sha256(data: bytes) -> str:

@@ -47,14 +47,14 @@ def request(earthing: str, readings: dict[str, object], policy: str) -> dict[str
     }
 
 
-def explainer(basis: str, policy: str) -> tuple[Explainer, dict[str, Any]]:
+def explainer(basis: str, policy: str) -> tuple[Explainer, Names]:
     """The explainer of one point whose loop rests on that basis, and what its sentences may quote."""
     point = mapped(AssessmentRequest.model_validate(request(*BASES[basis], policy)))
     points = from_rows([point.row])
     outcome = decide(points)
     assert Basis.word(int(outcome.quantities.loops.basis[0])) == basis
     found = Explainer(points, outcome)
-    return found, found.values(0, Names(point.device, point.residual, point.rules.rules.title))
+    return found, Names(point.device, point.residual, point.rules.rules.title)
 
 
 def finished(sentence: str) -> bool:
@@ -111,10 +111,10 @@ def test_no_shared_text_is_orphaned() -> None:
 @pytest.mark.parametrize("policy", POLICIES)
 @pytest.mark.parametrize("basis", sorted(BASES))
 def test_every_placeholder_of_every_reason_is_known(basis: str, policy: str) -> None:
-    found, values = explainer(basis, policy)
+    found, names = explainer(basis, policy)
     for row, check in enumerate(CHECKS):
         for at in range(len(check.reasons)):
-            explanation, question, _ = found.said(row, at, 0, dict(values))
+            explanation, question, _ = found.said(row, at, 0, found.quoted(0, names))
             assert explanation
             assert finished(explanation), explanation
             assert question is None or finished(question), question
@@ -126,9 +126,9 @@ def test_every_basis_and_policy_is_tried() -> None:
 
 
 def test_every_assumption_can_be_said() -> None:
-    _, values = explainer("no-trip", "split")
+    found, names = explainer("no-trip", "split")
     for name, text in TEXTS.assumptions.items():
-        assert finished(text.format_map(values)), name
+        assert finished(text.format_map(found.quoted(0, names))), name
 
 
 @pytest.mark.parametrize("policy", POLICIES)

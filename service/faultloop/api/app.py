@@ -17,45 +17,22 @@ from faultloop.records.writer import Writer
 from faultloop.settings import Settings
 
 
-class Edge:
-    """The outermost wrapper: HEAD wherever GET is, and problem details for a body over the limit.
-
-    The framework refuses such a body outside of every exception handler, in plain text.
-    """
+class HeadAsGet:
+    """Answer HEAD wherever GET is answered, with the same headers and no body."""
 
     def __init__(self, app: ASGIApp) -> None:
         self._app = app
 
     async def __call__(self, scope: Scope, receive: Receive, send: Send) -> None:
-        """Pass the request on, and mend what comes back."""
-        if scope["type"] != "http":
+        """Pass a HEAD request on as GET and drop the body that comes back."""
+        if scope["type"] != "http" or scope["method"] != "HEAD":
             await self._app(scope, receive, send)
             return
-        head, replaced = scope["method"] == "HEAD", False
 
-        async def mended(message: Message) -> None:
-            nonlocal replaced
-            if message["type"] == "http.response.start" and _is_plain_413(message):
-                replaced = True
-                await problems.problem("body-too-large")(scope, receive, send)
-            elif not replaced:
-                bodiless = head and message["type"] == "http.response.body"
-                await send({**message, "body": b""} if bodiless else message)
+        async def without_body(message: Message) -> None:
+            await send({**message, "body": b""} if message["type"] == "http.response.body" else message)
 
-        await self._app({**scope, "method": "GET"} if head else scope, receive, mended)
-
-
-def _is_plain_413(message: Message) -> bool:
-    kinds = [value for name, value in message["headers"] if name.lower() == b"content-type"]
-    return message["status"] == 413 and kinds != [problems.MEDIA_TYPE.encode()]
-
-
-class Service(FastAPI):
-    """The app with its edge."""
-
-    def build_middleware_stack(self) -> ASGIApp:
-        """Wrap the framework's own stack."""
-        return Edge(super().build_middleware_stack())
+        await self._app({**scope, "method": "GET"}, receive, without_body)
 
 
 def create_app(settings: Settings) -> FastAPI:
@@ -66,6 +43,7 @@ def create_app(settings: Settings) -> FastAPI:
         catalogue()
         app.state.engine = open_engine(settings.database_url)
         app.state.gather = Gather()
+        app.state.max_body_bytes = settings.max_body_bytes
         app.state.writer = Writer(app.state.engine, settings.writer_capacity, settings.writer_group)
         app.state.writer.start()
         # What lives as long as the service need not be walked by every collection.
@@ -78,12 +56,11 @@ def create_app(settings: Settings) -> FastAPI:
             await app.state.writer.close()
             app.state.engine.dispose()
 
-    app = Service(
+    app = FastAPI(
         title="faultloop",
         version=__version__,
         lifespan=lifespan,
         redirect_slashes=False,
-        max_body_size=settings.max_body_bytes,
         generate_unique_id_function=lambda route: route.name,
         separate_input_output_schemas=False,
         responses=openapi.problem_responses(Problem),
@@ -94,5 +71,6 @@ def create_app(settings: Settings) -> FastAPI:
     for module in (assessments, devices, rule_sets, service):
         app.include_router(module.router)
     problems.install(app)
+    app.add_middleware(HeadAsGet)
     app.openapi = lambda: openapi.document(app)  # type: ignore[method-assign]
     return app

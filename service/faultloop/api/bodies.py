@@ -26,12 +26,24 @@ async def read_point(request: Request) -> tuple[AssessmentRequest, bytes]:
     kind = request.headers.get("content-type", "").split(";", 1)[0].strip().lower()
     if kind != "application/json":
         raise Refused("unsupported-media-type")
-    raw = await request.body()
+    raw = await _limited(request, request.app.state.max_body_bytes)
     try:
         return AssessmentRequest.model_validate_json(raw), raw
     except ValidationError as error:
         faults = [{**fault, "loc": ("body", *fault["loc"])} for fault in error.errors(include_url=False)]
         raise RequestValidationError(faults, body=_parsed(raw)) from None
+
+
+async def _limited(request: Request, most: int) -> bytes:
+    """The body, refused as soon as it is known to be too large."""
+    if (told := request.headers.get("content-length", "0")).isdecimal() and int(told) > most:
+        raise Refused("body-too-large")
+    read = bytearray()
+    async for chunk in request.stream():
+        read += chunk
+        if len(read) > most:
+            raise Refused("body-too-large")
+    return bytes(read)
 
 
 def _parsed(raw: bytes) -> Any:

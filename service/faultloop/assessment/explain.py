@@ -59,6 +59,8 @@ class _Open(str):
 
 def _opened(column: list[float], words: str) -> list[float | str]:
     """A column with its open ends in words."""
+    if math.inf not in column:
+        return column  # type: ignore[return-value]
     return [_Open(words) if value == math.inf else value for value in column]
 
 

@@ -49,14 +49,12 @@ def compare(value: Interval, limit: Array, sense: Ints, decision: Ints) -> Ints:
     value alone.  An end left open (inf) can never meet, and is undetermined unless the other end fails.
     Anything unknown is undetermined.
     """
+    over, under = value.greatest - limit, value.least - limit
     at_most = sense > 0
-    endangering = np.where(at_most, value.greatest - limit, limit - value.least)
-    favourable = np.where(at_most, value.least - limit, limit - value.greatest)
-    nominal = np.where(at_most, value.nominal - limit, limit - value.nominal)
-    met, unmet, nominal_met, unbounded = endangering <= 0, favourable > 0, nominal <= 0, np.isinf(endangering)
-    guarded = np.where(met, Verdict.PASS, np.where(unmet, Verdict.FAIL, Verdict.MARGINAL))
-    simple = np.where(nominal_met, Verdict.PASS, Verdict.FAIL)
+    endangering, favourable = np.where(at_most, over, -under), np.where(at_most, under, -over)
+    nominal = sense * (value.nominal - limit)
+    guarded = np.where(endangering <= 0, Verdict.PASS, np.where(favourable > 0, Verdict.FAIL, Verdict.MARGINAL))
+    simple = np.where(nominal <= 0, Verdict.PASS, Verdict.FAIL)
     verdict = np.where(decision == Decision.SIMPLE, simple, guarded)
-    verdict = np.where(unbounded & (verdict != Verdict.FAIL), Verdict.UNDETERMINED, verdict)
-    unknown = np.isnan(endangering) | np.isnan(favourable) | np.isnan(nominal)
-    return np.where(unknown, Verdict.UNDETERMINED, verdict)
+    verdict = np.where(np.isinf(endangering) & (verdict != Verdict.FAIL), Verdict.UNDETERMINED, verdict)
+    return np.where(np.isnan(endangering + favourable + nominal), Verdict.UNDETERMINED, verdict)

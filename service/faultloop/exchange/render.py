@@ -63,8 +63,11 @@ class _Values:
             margin = SENSES * (found.limit - worst) / found.limit * 100.0
         self.least, self.greatest = found.least.tolist(), found.greatest.tolist()
         printed = (found.nominal, found.least, found.greatest, found.limit, margin, probability)
-        # (K, 6) lists of n rounded numbers
-        self.rounded = [[rounded_all(of[row].tolist()) for of in printed] for row in range(len(CHECKS))]
+        # (K, 6) lists of n rounded numbers; a check that was nowhere examined prints none.
+        examined = np.any(found.verdict < Verdict.NOT_EXAMINED, axis=1).tolist()
+        self.rounded = [
+            [rounded_all(of[row].tolist()) for of in printed] if examined[row] else [] for row in range(len(CHECKS))
+        ]
 
 
 class Renderer:
