@@ -55,6 +55,10 @@ def heated_loop(loop: Interval, heated_known: Array, external: Array, external_u
     -----
     F multiplies the reading's whole uncertainty: a loop reading does not tell which part of its error
     lies in the part that is heated.
+
+    References
+    ----------
+    .. [1] IEC 60364-6:2016, Annex D (rise of conductor resistance with temperature during a fault).
     """
     whole = np.where(np.isnan(external), loop.nominal, loop.nominal - external)
     heated = np.where(np.isnan(heated_known), whole, heated_known)

@@ -35,8 +35,18 @@ class Band:
     def with_point(self, current_a: float, time_s: float) -> "Band":
         """Give the band with a published point in place of its own at that time.
 
-        A point that another one makes idle (a greater current for no shorter time) is dropped, so that
-        the edge stays a falling step.
+        Parameters
+        ----------
+        current_a : float
+            Current of the published point [A].
+        time_s : float
+            Time within which the device then operates [s].
+
+        Returns
+        -------
+        Band
+            A band whose slow edge holds the point; points that it makes idle (a greater current for no
+            shorter time) are dropped, so that the edge stays a falling step.
         """
         kept = [(i, t) for i, t in self.slow if t != time_s]
         kept = [(i, t) for i, t in kept if not (i <= current_a and t < time_s)]
@@ -114,9 +124,18 @@ class BandTable:
 
 
 def compile_bands(bands: list[Band]) -> BandTable:
-    """Lay bands out as arrays, row by row; the last row is no device, which never operates.
+    """Lay bands out as arrays, row by row.
 
-    Padding is nan in currents (nothing compares with it) and 0 in times (no time is slower).
+    Parameters
+    ----------
+    bands : list of Band
+        At least one band; all currents in one unit, all times in second.
+
+    Returns
+    -------
+    BandTable
+        One row a band and a last one for no device, which never operates.  Padding is nan in currents
+        (nothing compares with it) and 0 in times (no time is slower).
     """
     count = len(bands) + 1
     width = max(len(band.slow) for band in bands) + 1
@@ -136,5 +155,16 @@ def compile_bands(bands: list[Band]) -> BandTable:
 
 
 def faster(first: Array, second: Array) -> Array:
-    """Time of two devices of which either interrupts: the shorter one, an unknown time being no help."""
+    """Time of two devices of which either interrupts.
+
+    Parameters
+    ----------
+    first, second : (n,) array
+        Operating times [s]; nan where unknown, inf where a device never operates.
+
+    Returns
+    -------
+    (n,) array
+        The shorter time; an unknown one is no help, and two unknown ones stay nan.
+    """
     return np.fmin(first, second)

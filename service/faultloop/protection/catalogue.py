@@ -41,7 +41,25 @@ def listed_devices() -> list[OvercurrentDevice]:
 
 
 def device_band(device: OvercurrentDevice, rules: RuleSet | None = None) -> Band:
-    """Band of a device; currents that the rule set prints for a time stand in place of the standard's."""
+    """Band of a device under a rule set.
+
+    Parameters
+    ----------
+    device : OvercurrentDevice
+        A device held here.
+    rules : RuleSet, optional
+        Rule set whose own printed currents stand in place of the standard's at their times.
+
+    Returns
+    -------
+    Band
+        Currents [A] and times [s].
+
+    Raises
+    ------
+    StopIteration, KeyError
+        For a device that is not held here.
+    """
     band = _standard_band(device)
     for row in rules.operating_current if rules else ():
         if device.designation in row.devices:
@@ -81,6 +99,19 @@ def catalogue() -> Catalogue:
 
 
 def residual_multiple(delay: str, time_s: float) -> float:
-    """Least multiple of IΔn at which a residual device is sure to operate within a time; inf where none is."""
+    """Least multiple of IΔn at which a residual device is sure to operate within a time.
+
+    Parameters
+    ----------
+    delay : {"general", "selective", "time-delayed"}
+        Delay of the device.
+    time_s : float
+        Required time [s].
+
+    Returns
+    -------
+    float
+        Multiple of the rated residual operating current [1]; inf where none guarantees the time.
+    """
     row = np.array([catalogue().residual_rows[delay]])
     return float(catalogue().residual.operating_current(row, np.array([time_s]))[0])

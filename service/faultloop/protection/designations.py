@@ -67,7 +67,18 @@ OvercurrentDevice = Breaker | Fuse
 
 
 def known_ratings(device: OvercurrentDevice) -> list[float]:
-    """Rated currents held for a device's family [A]."""
+    """Rated currents held for a device's family.
+
+    Parameters
+    ----------
+    device : OvercurrentDevice
+        A breaker or fuse of any rated current.
+
+    Returns
+    -------
+    list of float
+        Rated currents [A]; empty for an unknown fuse system.
+    """
     if isinstance(device, Breaker):
         return breaker_table().ratings_a
     family = fuse_families().get(device.fuse_system)
@@ -75,7 +86,18 @@ def known_ratings(device: OvercurrentDevice) -> list[float]:
 
 
 def refuse_unknown(device: OvercurrentDevice) -> None:
-    """Raise where the standard's table holds no such rated current."""
+    """Refuse a device whose rated current the family's table does not hold.
+
+    Parameters
+    ----------
+    device : OvercurrentDevice
+        A breaker or fuse.
+
+    Raises
+    ------
+    UnknownDesignation
+        If the rated current is not held; the message lists those that are.
+    """
     ratings = known_ratings(device)
     if device.rated_current_a not in ratings:
         listed = ", ".join(f"{rating:g}" for rating in ratings)
@@ -83,7 +105,23 @@ def refuse_unknown(device: OvercurrentDevice) -> None:
 
 
 def parse_overcurrent(text: str) -> OvercurrentDevice:
-    """Read an overcurrent device's designation."""
+    """Read an overcurrent device's designation.
+
+    Parameters
+    ----------
+    text : str
+        Trade shorthand, such as "B32", "gG 63" or "BS 88-2 gG 63".
+
+    Returns
+    -------
+    OvercurrentDevice
+        The device.
+
+    Raises
+    ------
+    UnknownDesignation
+        If the text cannot be read or the rated current is not held; the message says what was expected.
+    """
     told = " ".join(text.split())
     device: OvercurrentDevice
     if match := _BREAKER.fullmatch(told):
@@ -97,7 +135,23 @@ def parse_overcurrent(text: str) -> OvercurrentDevice:
 
 
 def parse_residual(text: str) -> ResidualDevice:
-    """Read a residual device's designation."""
+    """Read a residual device's designation.
+
+    Parameters
+    ----------
+    text : str
+        Trade shorthand, such as "30 mA", "30 mA A" or "300 mA S".
+
+    Returns
+    -------
+    ResidualDevice
+        The device.
+
+    Raises
+    ------
+    UnknownDesignation
+        If the text cannot be read or the rating is not held; the message says what was expected.
+    """
     match = _RESIDUAL.fullmatch(" ".join(text.split()))
     if not match or float(match[1]) not in residual_table().rated_residual_operating_currents_ma:
         listed = ", ".join(f"{ma:g}" for ma in residual_table().rated_residual_operating_currents_ma)
@@ -107,7 +161,23 @@ def parse_residual(text: str) -> ResidualDevice:
 
 
 def parse_device(text: str) -> OvercurrentDevice | ResidualDevice:
-    """Read the designation of either kind of device; what cannot be read is refused, saying what was expected."""
+    """Read the designation of either kind of device.
+
+    Parameters
+    ----------
+    text : str
+        Trade shorthand.
+
+    Returns
+    -------
+    OvercurrentDevice or ResidualDevice
+        The device; a designation that holds "mA" is a residual device's.
+
+    Raises
+    ------
+    UnknownDesignation
+        If the text cannot be read; the message says what was expected.
+    """
     if "ma" in text.lower():
         return parse_residual(text)
     return parse_overcurrent(text)
