@@ -47,6 +47,14 @@ def test_known_r1_r2_decides_what_is_heated() -> None:
     assert hot.nominal[0] == pytest.approx(0.9 + 0.2 * 0.2)
 
 
+def test_never_more_than_the_loop_itself_is_heated() -> None:
+    # A dead R1 + R2 above the loop, and an external part above the loop: neither heats what is not there.
+    above = heated_loop(around(0.9, 0.0), column(2.0), column(np.nan), column(np.nan), column(1.2))
+    assert above.nominal[0] == pytest.approx(0.9 * 1.2)
+    below = heated_loop(around(0.9, 0.0), column(np.nan), column(1.5), column(0.0), column(1.2))
+    assert below.nominal[0] == 0.9
+
+
 def test_unknown_parts_heat_the_whole_reading() -> None:
     hot = heated_loop(around(0.9, 0.1), column(np.nan), column(np.nan), column(np.nan), column(1.2))
     assert hot.nominal[0] == pytest.approx(0.9 * 1.2)

@@ -74,6 +74,19 @@ def test_a_quicker_characteristic_is_never_slower(letter: str, rated: float, mul
     assert times == sorted(times)
 
 
+@pytest.mark.parametrize("key", sorted(shipped()))
+def test_currents_that_a_rule_set_prints_stand_in_its_rows(key: str) -> None:
+    table, devices = catalogue().overcurrent, listed_devices()
+    for printed in shipped()[key].rules.operating_current:
+        for device in devices:
+            own = device.characteristic if printed.unit == "x In" and isinstance(device, Breaker) else ""
+            if not {own, device.designation} & set(printed.devices):
+                continue
+            expected = printed.value * device.rated_current_a if printed.unit == "x In" else printed.value
+            row = at(catalogue().rows[key, device])
+            assert table.operating_current(row, np.array([printed.time_s]))[0] == expected
+
+
 def test_a_breaker_is_held_for_its_table_only() -> None:
     table = catalogue().overcurrent
     row = at(catalogue().rows["iec-60364:2017", Breaker("B", 32.0)])
