@@ -9,7 +9,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from faultloop.digests import canonical_bytes, digest, json_bytes, rounded, sha256
+from faultloop.digests import canonical_bytes, digest, json_bytes, rounded, rounded_all, sha256
 
 FINITE = st.floats(allow_nan=False, allow_infinity=False, min_value=-1e300, max_value=1e300)
 SCALARS = st.none() | st.booleans() | st.integers() | FINITE | st.text(st.characters(exclude_categories=["Cs"]))
@@ -53,6 +53,11 @@ def test_rounding_twice_changes_nothing(value: float) -> None:
 @pytest.mark.parametrize("value", [math.inf, -math.inf, math.nan])
 def test_what_is_not_finite_has_no_number(value: float) -> None:
     assert rounded(value) is None
+
+
+@given(st.lists(st.floats(), max_size=8))
+def test_a_column_is_rounded_by_the_same_rule(values: list[float]) -> None:
+    assert rounded_all(values) == [rounded(value) for value in values]
 
 
 @given(JSON)
