@@ -12,9 +12,9 @@ Characteristic = Literal["B", "C", "D"]
 ResidualType = Literal["AC", "A", "F", "B"]
 Delay = Literal["general", "selective", "time-delayed"]
 
-_BREAKER = re.compile(r"(?:MCB |RCBO )?([BCD])\s?(\d{1,4}(?:\.\d)?)(?: A)?", re.IGNORECASE)
-_FUSE = re.compile(r"(BS 88-2 )?gG ?(\d{1,4}(?:\.\d)?)(?: A)?", re.IGNORECASE)
-_RESIDUAL = re.compile(r"(\d{1,4}) ?mA(?: (AC|A|F|B))?(?: (S))?", re.IGNORECASE)
+_BREAKER = re.compile(r"(?:MCB |RCBO )?([BCD])\s?(\d{1,4}(?:\.\d)?)(?: A)?", re.IGNORECASE | re.ASCII)
+_FUSE = re.compile(r"(BS 88-2 )?gG ?(\d{1,4}(?:\.\d)?)(?: A)?", re.IGNORECASE | re.ASCII)
+_RESIDUAL = re.compile(r"(\d{1,4}) ?mA(?: (AC|A|F|B))?(?: (S))?", re.IGNORECASE | re.ASCII)
 
 
 class UnknownDesignation(ValueError):
