@@ -105,3 +105,11 @@ def test_a_use_not_stated_is_asked_for_unless_a_proven_device_is_there() -> None
     assert asked["verdict"] == "undetermined"
     assert "circuit.feeds" in finding(asked, CHECK)["settled_by"]
     assert socket({"1": 25}, feeds=None, residual=RESIDUAL_30)["verdict"] == "pass"
+
+
+@pytest.mark.parametrize(("own", "front"), [(6, 6), (10, 30)])
+def test_a_quick_device_in_front_is_not_overlooked(own: float, front: float) -> None:
+    # The delayed device gives no additional protection; the one in front may, and its test is what is missing.
+    delayed = {"rated_residual_operating_current_ma": own, "delay": "selective"}
+    answer = socket({"1": 140}, residual=delayed, upstream=[{"rated_residual_operating_current_ma": front}])
+    assert verdict_of(answer, CHECK) == "undetermined"

@@ -17,6 +17,7 @@ from tests.assessment.bodies import (
     live,
     no_trip,
     readings,
+    said,
 )
 
 ALWAYS = {"competent-person", "no-certificate", "live-testing", "reconnect-earthing"}
@@ -161,6 +162,12 @@ def test_an_unknown_quantity_is_absent_and_an_open_end_says_so() -> None:
 def test_without_a_device_there_is_no_limit_to_print() -> None:
     found = finding(judged(readings(zs=live(0.6)), device=None), "overcurrent-disconnection")
     assert not {"limit", "margin_percent", "conformance_probability"} & set(found)
+
+
+def test_where_no_current_is_guaranteed_no_number_is_invented() -> None:
+    # At 277 V a TT final circuit asks for 0.07 s; a breaker's standard promises no less than 0.1 s.
+    answer = judged(readings(zs=live(0.5), z_ln=live(0.4)), device="B16", earthing="TT", voltage=277)
+    assert not [text for text in said(answer) if re.search(r"\b(nan|inf|no bound A)\b", text)]
 
 
 def test_clauses_are_those_of_the_earthing() -> None:

@@ -7,6 +7,7 @@ import pytest
 from faultloop import assess
 from tests.assessment.bodies import (
     RESIDUAL_30,
+    Body,
     copper,
     fuse,
     judged,
@@ -95,5 +96,6 @@ def test_dropping_what_showed_a_fail_leaves_it_open() -> None:
 @pytest.mark.parametrize("value", [0.0, 5e-324, 1e-310, 1e-300, 1e7])
 def test_the_smallest_and_greatest_readings_are_answered(symbol: str, value: float) -> None:
     for earthing in ("TN-S", "TT"):
-        body = request(readings(**{"zs": live(0.5), symbol: value}), earthing=earthing, residual=RESIDUAL_30)
+        read: Body = {"zs": live(0.5), symbol: value}
+        body = request(readings(**read), earthing=earthing, residual=RESIDUAL_30)
         json.dumps(assess(body), allow_nan=False)

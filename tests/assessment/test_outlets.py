@@ -2,7 +2,6 @@
 
 import json
 from pathlib import Path
-from typing import Any
 
 import pytest
 
@@ -18,7 +17,7 @@ def outlets(name: str) -> list[Body]:
     return listed
 
 
-def each(name: str) -> Any:
+def each(name: str) -> pytest.MarkDecorator:
     """One test an outlet, named by its title."""
     return pytest.mark.parametrize("outlet", [pytest.param(o, id=o["title"]) for o in outlets(name)])
 

@@ -82,7 +82,7 @@ def test_a_point_a_little_below_its_origin_is_measurement_uncertainty() -> None:
 
 @pytest.mark.parametrize("name", ["zs", "ze", "dead"])
 def test_a_resistance_below_what_an_instrument_shows_is_asked_about(name: str) -> None:
-    read = {"zs": live(0.6), "ze": 0.2, "dead": 0.4, name: 0.00055}
+    read: Body = {"zs": live(0.6), "ze": 0.2, "dead": 0.4, name: 0.00055}
     if name != "zs":
         del read["zs"]
     assert judged(readings(**read))["verdict"] == "undetermined"
