@@ -83,6 +83,7 @@ class Number(Codes):
     BOARD_CURRENT_KA = 16
     CARRYING_CAPACITY_A = 17
     COVERAGE_SCALE = 18
+    RESIDUAL_QUICK_MA = 19
 
 
 class Choice(Codes):

@@ -114,6 +114,8 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         relied = chain[0] if own else min(chain, key=lambda d: d.rated_residual_operating_current_ma)
         numbers[Number.RESIDUAL_MA] = relied.rated_residual_operating_current_ma
         numbers[Number.RESIDUAL_GREATEST_MA], numbers[Number.RESIDUAL_LEAST_MA] = max(rated), min(rated)
+        quick = [device.rated_residual_operating_current_ma for device in chain if device.delay == "general"]
+        numbers[Number.RESIDUAL_QUICK_MA] = min(quick, default=np.nan)
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
         told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
         point.residual = told.designation

@@ -46,24 +46,25 @@ def _exemption(points: Points, q: Quantities) -> Ints:
 
 
 def _judge(points: Points, q: Quantities) -> Judged:
-    rated, limit = points.number(Number.RESIDUAL_LEAST_MA), q.rule("additional_ma")
-    sensitive = rated <= limit
-    own = points.number(Number.RESIDUAL_MA) == rated
-    quick = points.choice(Choice.RESIDUAL) == catalogue().residual_rows["general"]
-    proven = sensitive & own & quick & q.residual.tested & ~q.residual.over_limit
+    least, quick = points.number(Number.RESIDUAL_LEAST_MA), points.number(Number.RESIDUAL_QUICK_MA)
+    limit, general = q.rule("additional_ma"), catalogue().residual_rows["general"]
+    sensitive = quick <= limit
+    own = (points.number(Number.RESIDUAL_MA) == quick) & (points.choice(Choice.RESIDUAL) == general)
+    proven = sensitive & own & q.residual.tested & ~q.residual.over_limit
     bits = np.where(proven, 0, _exemption(points, q))
     cases = Cases(REASONS)
     prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)
     cases.when(bits > 0, Standing.MET, "exempt")
     cases.when(sensitive & own & q.residual.over_limit, Standing.UNMET, "device-over-time", defect=True)
-    cases.when(sensitive & own & ~quick, Standing.UNMET, "device-delayed")
+    cases.when(sensitive & ~proven, Standing.UNDETERMINED, "operating-time-missing")
+    cases.when(~sensitive & (least <= limit), Standing.UNMET, "device-delayed")
     unknown_use = points.choice(Choice.FEEDS) == Feeds.UNKNOWN
     cases.when(~sensitive & unknown_use, Standing.UNDETERMINED, "use-missing")
     unrated = np.isnan(points.number(Number.RATED_CURRENT))
     cases.when(~sensitive & unrated, Standing.UNDETERMINED, "rated-current-missing")
-    cases.when(np.isnan(rated), Standing.UNMET, "absent")
-    cases.when(sensitive & ~proven, Standing.UNDETERMINED, "operating-time-missing")
-    return cases.settle(Interval(rated, rated, rated), limit, bits)
+    cases.when(np.isnan(least), Standing.UNMET, "absent")
+    value = np.where(sensitive, quick, least)
+    return cases.settle(Interval(value, value, value), limit, bits)
 
 
 CHECK = Check(

@@ -22,6 +22,7 @@ REASONS = (
     "conductor-rating",
     "not-cleared-at-once",
     "reading-over-range",
+    "no-guaranteed-current",
 )
 
 
@@ -52,6 +53,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(np.isinf(loop.greatest) & measured, Standing.UNDETERMINED, "reading-over-range")
     cases.when(withstands, Standing.MET, "conductor-withstands")
     cases.when(rated, Standing.MET, "conductor-rating")
+    cases.when(np.isinf(q.operating_current), Standing.UNDETERMINED, "no-guaranteed-current")
     cases.when(inferred, Standing.UNDETERMINED, "inferred-not-decided")
     cases.when(measured, Standing.UNDETERMINED, "not-cleared-at-once")
     carried = rated & ~withstands & ~met & (measured | inferred) & ~np.isinf(loop.greatest) & ~implausible
