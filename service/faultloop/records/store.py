@@ -33,7 +33,7 @@ class Store:
         with self._transaction() as connection:
             # in one order everywhere, or two services that store the same ids could wait for each other
             rows = [_row(first[key], stored_at) for key in sorted(first)]
-            sequences: dict[str, int] = dict(connection.execute(self._insert, rows).tuples().all())
+            sequences: dict[str, int] = dict(connection.execute(self._insert, rows).all())
             found = _existing(connection, first.keys() - sequences.keys())
         made = {key: Stored(first[key], sequence, stored_at) for key, sequence in sequences.items()}
         rows_now = made | found
