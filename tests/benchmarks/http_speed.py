@@ -94,7 +94,7 @@ def told(found: dict[str, list[Result]]) -> None:
         rate = median(r.rate / b.rate for r, b in zip(results, bare, strict=True))
         tail = median(r.quantile(0.99) / b.quantile(0.99) for r, b in zip(results, bare, strict=True))
         absolute = median(r.rate for r in results)
-        print(f"{name}: {rate:.2f} of the bare route, p99 {tail:.2f} times the bare one's, {absolute:.0f}/s", flush=True)
+        print(f"{name}: {rate:.2f} of the bare route, p99 {tail:.2f} times the bare one's, {absolute:.0f}/s")
 
 
 def main() -> None:

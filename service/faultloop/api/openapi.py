@@ -46,11 +46,12 @@ def _put_request_schemas(schema: dict[str, Any]) -> None:
 
 def _mend(operation: dict[str, Any]) -> None:
     """Errors are problem details, whatever the framework wrote of them."""
+    problem = {MEDIA_TYPE: {"schema": {"$ref": "#/components/schemas/Problem"}}}
     for status, response in operation["responses"].items():
-        content = response.get("content", {})
-        schema = content.get("application/json", {}).get("schema", {})
-        if status[0] in "45" and schema.get("$ref", "").endswith("/Problem"):
-            response["content"] = {MEDIA_TYPE: content["application/json"]}
+        refs = [content.get("schema", {}).get("$ref", "") for content in response.get("content", {}).values()]
+        own = any(ref and not ref.endswith("/Problem") for ref in refs)
+        if status[0] in "45" and not own:
+            response["content"] = problem
 
 
 def _put_examples(schema: dict[str, Any]) -> None:

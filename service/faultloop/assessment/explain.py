@@ -113,7 +113,9 @@ _OWN_PHRASES = ("side", "residual_limit", "z_or_value")
 def _template(language: str, check: str, reason: str, policy: str, basis: str) -> tuple[str, Said]:
     told = texts(language)
     said = told.said(check, reason)
-    return told.expanded(said.explanation, {"limit": policy, "heating": policy, "loop": basis}), said
+    return told.expanded(
+        said.explanation, {"limit": policy, "heating": policy, "line-neutral": policy, "loop": basis}
+    ), said
 
 
 class Explainer:

@@ -16,7 +16,7 @@ class LineNeutral:
     """The line-neutral loop: hot, its cold least, and whether it was measured or inferred."""
 
     hot: Interval
-    cold_least: Array
+    cold: Interval
     measured: Flags
     inferred: Flags
 
@@ -35,19 +35,26 @@ def line_neutral(g: Given, found: Loops, hot_loop: Interval, factor: Array) -> L
     no_larger = points.number(Number.PROTECTIVE_MM2) <= points.number(Number.NEUTRAL_MM2)
     same = (points.choice(Choice.INFERABLE) == 1) & no_larger
     inferred = ~measured & ~g.tt & same & (found.fault == Fault.NONE)
-    bound = _bound(found, hot_loop, factor)
-    loop = Interval(*(np.where(inferred, b, m) for b, m in zip(_ends(bound), _ends(hot), strict=True)))
-    return LineNeutral(loop, np.where(inferred, 0.0, cold.least), measured, inferred)
+    bound_hot, bound_cold = _bound(found, hot_loop, factor)
+    return LineNeutral(_either(inferred, bound_hot, hot), _either(inferred, bound_cold, cold), measured, inferred)
 
 
-def _bound(found: Loops, hot_loop: Interval, factor: Array) -> Interval:
-    """What the line-neutral loop cannot exceed, hot: Ze + (R1 + R2) where tested, else the earth fault loop."""
+def _either(first: Flags, one: Interval, other: Interval) -> Interval:
+    return Interval(*(np.where(first, a, b) for a, b in zip(_ends(one), _ends(other), strict=True)))
+
+
+def _bound(found: Loops, hot_loop: Interval, factor: Array) -> tuple[Interval, Interval]:
+    """What the line-neutral loop cannot exceed, hot and cold: Ze + (R1 + R2) where tested, else Zs."""
     dead, dead_u = found.expected.value, found.expected.uncertainty
     tested = found.expected.by_dead_test
     sum_ = Interval(np.maximum(dead - dead_u, 0.0), dead + dead_u, dead)
     hot = heated_loop(sum_, found.dead_resistance, found.external, found.external_u, factor)
-    greatest = np.where(tested, hot.greatest, hot_loop.greatest)
-    return Interval(np.zeros_like(greatest), greatest, np.where(tested, hot.nominal, hot_loop.nominal))
+    return _from_zero(_either(tested, hot, hot_loop)), _from_zero(_either(tested, sum_, found.loop))
+
+
+def _from_zero(bound: Interval) -> Interval:
+    """A bound says nothing of how small the value may be."""
+    return Interval(np.zeros_like(bound.greatest), bound.greatest, bound.nominal)
 
 
 def _cold(g: Given, found: Loops) -> tuple[Interval, Array, Array]:

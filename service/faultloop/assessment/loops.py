@@ -149,7 +149,8 @@ def _external(g: Given) -> tuple[Array, Array]:
     """The part of the loop outside the installation, which is not heated: Ze, on TT else R_A."""
     points, ze, ra = g.points, Reading.EXTERNAL, Reading.ELECTRODE
     measured = points.method[ze] <= Method.HIGH_CURRENT
-    use = g.known[ze] & (points.bound[ze] != Bound.ABOVE) & measured
+    # An under-range Ze may be anything smaller, and a smaller one leaves more to be heated.
+    use = (points.bound[ze] == Bound.EXACT) & measured
     electrode = g.tt & (points.bound[ra] == Bound.EXACT)
     value = np.where(use, points.value[ze], np.where(electrode, points.value[ra], np.nan))
     return value, np.where(use, g.uncertainty[ze], np.where(electrode, g.uncertainty[ra], np.nan))

@@ -94,7 +94,7 @@ def shared(points: Points) -> Quantities:
     hot = heated_loop(found.loop, found.heated_known, found.external, found.external_u, factor)
     band = catalogue().overcurrent
     operating = band.operating_current(device, required)
-    limit, compared = _loop_limit(g, operating), _compared(points, hot, found.loop)
+    limit, compared = _loop_limit(g, operating), by_policy(points, hot, found.loop)
     current = Interval(
         prospective_current(rule["c_min"], voltage, hot.greatest),
         prospective_current(rule["c_max"], voltage, found.loop.least),
@@ -143,7 +143,8 @@ def _loop_limit(g: Given, operating: Array) -> Array:
     return np.where(np.isinf(operating), np.nan, prospective_current(factor, voltage, operating))
 
 
-def _compared(points: Points, hot: Interval, cold: Interval) -> Interval:
+def by_policy(points: Points, hot: Interval, cold: Interval) -> Interval:
+    """The loop that the temperature policy sets against its limit: hot under `split`, else as read."""
     split = points.choice(Choice.TEMPERATURE_POLICY) == TemperaturePolicy.SPLIT
     return Interval(
         np.where(split, hot.least, cold.least),

@@ -47,10 +47,12 @@ def severity(points: Points, q: Quantities) -> Severity:
     by_band = catalogue().residual.greatest_time(points.choice(Choice.RESIDUAL), touched)
     quick = np.where(touched > q.residual.multiple_nominal, by_band, q.residual.time_s.nominal)
     residual = np.where(credited, quick, np.inf)
-    time = faster(q.overcurrent_s.nominal, residual)
+    # A device that nobody named is unknown, not absent: it shortens nothing and raises nothing.
+    overcurrent = np.where(points.choice(Choice.DEVICE) < 0, np.nan, q.overcurrent_s.nominal)
+    time = faster(overcurrent, np.where(np.isnan(overcurrent) & np.isinf(residual), np.nan, residual))
     return Severity(
         as_is=severity_ratio(q.touch_v, body, time),
-        barrier_failed=severity_ratio(q.touch_v, body, q.overcurrent_s.nominal),
+        barrier_failed=severity_ratio(q.touch_v, body, overcurrent),
         time_s=time,
         body_ma=1000.0 * q.touch_v / body,
     )

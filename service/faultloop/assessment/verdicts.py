@@ -39,6 +39,7 @@ class Findings:
     defect: Flags
     conditions: Ints
     counts: Flags
+    compared: Flags
 
 
 @dataclass(frozen=True, slots=True)
@@ -82,6 +83,7 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
         defect=np.array([j.defect for j in judged]) & (verdict == Verdict.FAIL),
         conditions=np.where(verdict == Verdict.PASS_WITH_CONDITIONS, conditions, 0),
         counts=counts,
+        compared=np.array([j.standing for j in judged]) == Standing.COMPARED,
     )
     held = np.bitwise_or.reduce(np.where(counts, findings.conditions, 0), axis=0)
     # A defect orders work even where another member of an any-of group decides.

@@ -166,7 +166,7 @@ def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> N
 
 def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     readings, board, row = request.readings, request.board, point.row
-    _put(row, Reading.LOOP, readings.earth_fault_loop_impedance_ohm)
+    _put_loop(point, readings.earth_fault_loop_impedance_ohm)
     _put(row, Reading.EXTERNAL, readings.external_earth_fault_loop_impedance_ohm)
     _put(row, Reading.LINE_NEUTRAL, readings.line_neutral_loop_impedance_ohm)
     _put(row, Reading.LINE_PLUS_PROTECTIVE, readings.line_plus_protective_resistance_ohm)
@@ -194,6 +194,14 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     )
     if any(stated is not None and not _states_instrument(stated) for stated in used):
         point.assumptions.append("instrument")
+
+
+def _put_loop(point: Mapped, stated: float | ReadingBody | None) -> None:
+    """The loop at the point; a declared one was read by nobody, so it is named and not decided on."""
+    if isinstance(stated, ReadingBody) and stated.method == "declared":
+        point.assumptions.append("declared-loop-unused")
+    else:
+        _put(point.row, Reading.LOOP, stated)
 
 
 def _exact(stated: float | ReadingBody | None) -> float:

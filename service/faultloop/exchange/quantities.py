@@ -77,7 +77,7 @@ def quantity_columns(points: Points, outcome: Outcome) -> QuantityColumns:
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         short = [
             np.where(given, prospective_current(q.rule(factor), voltage, z), np.nan)
-            for factor, z in (("c_min", q.line_neutral.hot.greatest), ("c_max", q.line_neutral.cold_least))
+            for factor, z in (("c_min", q.line_neutral.hot.greatest), ("c_max", q.line_neutral.cold.least))
         ]
     touch_least = np.where(q.touch_known, q.touch_v, np.where(np.isnan(q.touch_v), np.nan, -np.inf))
     ends = {

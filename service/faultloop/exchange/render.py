@@ -61,6 +61,8 @@ class _Values:
             probability = conformance_probability(found.nominal, u, found.limit, SENSES)
             worst = np.where(SENSES > 0, found.greatest, found.least)
             margin = SENSES * (found.limit - worst) / found.limit * 100.0
+        # Where something else decided, how the number stands to its limit would only mislead.
+        probability, margin = (np.where(found.compared, of, np.nan) for of in (probability, margin))
         self.least, self.greatest = found.least.tolist(), found.greatest.tolist()
         printed = (found.nominal, found.least, found.greatest, found.limit, margin, probability)
         # (K, 6) lists of n rounded numbers; a check that was nowhere examined prints none.

@@ -5,7 +5,7 @@ import numpy as np
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
 from faultloop.assessment.points import Choice, Flags, Number, Points
-from faultloop.assessment.quantities import Quantities
+from faultloop.assessment.quantities import Quantities, by_policy
 from faultloop.electrical.conductors import withstand_time
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.protection.catalogue import catalogue
@@ -35,9 +35,8 @@ SHORTEST_ADIABATIC_S = 0.1
 
 def _judge(points: Points, q: Quantities) -> Judged:
     found = q.line_neutral
-    loop, measured, inferred = found.hot, found.measured, found.inferred
-    c_min, voltage = q.rule("c_min"), points.number(Number.VOLTAGE)
-    limit = np.where(np.isinf(q.operating_current), np.nan, prospective_current(c_min, voltage, q.operating_current))
+    loop, measured, inferred = by_policy(points, found.hot, found.cold), found.measured, found.inferred
+    limit = q.loop_limit
     met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
     withstands = _withstands(points, q)
     rated = points.number(Number.DEVICE_RATED_CURRENT) <= points.number(Number.CARRYING_CAPACITY_A)
@@ -71,7 +70,7 @@ def _withstands(points: Points, q: Quantities) -> Flags:
     row, band, voltage = points.choice(Choice.DEVICE), catalogue().overcurrent, points.number(Number.VOLTAGE)
     k, area = points.number(Number.ADIABATIC_K), points.number(Number.LINE_MM2)
     least = prospective_current(q.rule("c_min"), voltage, q.line_neutral.hot.greatest)
-    greatest = prospective_current(q.rule("c_max"), voltage, q.line_neutral.cold_least)
+    greatest = prospective_current(q.rule("c_max"), voltage, q.line_neutral.cold.least)
     edges = np.nextafter(band.slow_current[row].T, 0.0)
     inside = (edges > least) & (edges < greatest)
     tried = np.concatenate([least[None], greatest[None], np.where(inside, edges, least)])
