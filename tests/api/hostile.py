@@ -120,6 +120,8 @@ def _impossible() -> dict[str, Body]:
         "voltage text": put(("supply", "nominal_voltage_to_earth_v"), "230 V"),
         "voltage 1e6": put(("supply", "nominal_voltage_to_earth_v"), 1e6),
         "phases 4": put(("supply", "phases"), 4),
+        "phases true": put(("supply", "phases"), True),
+        "poles true": put((*device, "poles"), True),
         "phases text": put(("supply", "phases"), "1"),
         "role socket": put(("circuit", "role"), "socket"),
         "feeds kettles": put(("circuit", "feeds"), "kettles"),

@@ -81,7 +81,7 @@ def test_what_is_refused_is_not_stored(url: str, engine: Engine) -> None:
         where = address()
         problem(await client.put(where, json={**EXAMPLE_REQUEST, "raedings": {}}), 422)
         problem(await client.put(where, content=b"{", headers={"Content-Type": "application/json"}), 400)
-        problem(await client.put("/v1/assessments/not-a-uuid", json=EXAMPLE_REQUEST), 422)
+        problem(await client.put("/v1/assessments/not-a-uuid", json=EXAMPLE_REQUEST), 404)
         problem(await client.get(where), 404)
 
     served(url, work)

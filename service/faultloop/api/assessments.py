@@ -59,7 +59,7 @@ async def _judged(request: Request) -> _Judged:
 
 
 @router.put(
-    "/{id}",
+    "/{id:uuid}",
     response_model=Assessment,
     openapi_extra=POINT_BODY,
     summary="Judge one measured point and store the answer",
@@ -101,7 +101,7 @@ def _stored_answer(stored: Stored, status: int) -> Response:
     return Response(stored.record.answer, status, media_type=JSON, headers=headers)
 
 
-@router.get("/{id}", response_model=Assessment, summary="Read a stored assessment")
+@router.get("/{id:uuid}", response_model=Assessment, summary="Read a stored assessment")
 def get_assessment(
     id: UUID,  # noqa: A002
     request: Request,
@@ -154,7 +154,7 @@ def _position(cursor: str | None, filters: dict[str, Any]) -> int | None:
     return sequence
 
 
-@router.get("/{id}/replay", response_model=ReplayBody, summary="Compute a stored assessment again")
+@router.get("/{id:uuid}/replay", response_model=ReplayBody, summary="Compute a stored assessment again")
 def replay_assessment(id: UUID, request: Request) -> Response:  # noqa: A002
     """Compute the stored input again under the stored edition, and say whether the bytes are the same."""
     stored = _found(request, id).record

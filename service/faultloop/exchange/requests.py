@@ -39,7 +39,7 @@ class Supply(Closed):
         Annotated[float, number("V", most=1000, positive=True, description="Nominal between lines")] | None
     ) = None
     frequency_hz: Annotated[float, number("Hz", most=1000, description="Frequency")] | None = None
-    phases: Literal[1, 2, 3] | None = None
+    phases: Annotated[int, Field(strict=True, ge=1, le=3)] | None = None
     means_of_earthing: MeansOfEarthing | None = None
     declared_prospective_current_ka: (
         Annotated[float, number("kA", most=1000, description="Declared by the distributor")] | None
@@ -120,7 +120,7 @@ class Breaker(Closed):
         ),
     ]
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
-    poles: Literal[1, 2, 3, 4] | None = None
+    poles: Annotated[int, Field(strict=True, ge=1, le=4)] | None = None
 
 
 class Fuse(Closed):
@@ -140,7 +140,7 @@ class Fuse(Closed):
         ),
     ]
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None = None
-    poles: Literal[1, 2, 3, 4] | None = None
+    poles: Annotated[int, Field(strict=True, ge=1, le=4)] | None = None
 
 
 OvercurrentDevice = Annotated[Breaker | Fuse, Field(discriminator="kind")]

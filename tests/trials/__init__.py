@@ -1,0 +1,1 @@
+"""Long trials, each bounded: run by `make trials`, not by every change."""
