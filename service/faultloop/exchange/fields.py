@@ -3,7 +3,7 @@
 from typing import Annotated, Any, Literal
 
 from pydantic import BaseModel, ConfigDict, Discriminator, Field, Tag
-from pydantic.functional_validators import AfterValidator
+from pydantic.functional_validators import AfterValidator, BeforeValidator
 
 
 class Closed(BaseModel):
@@ -22,6 +22,12 @@ def _storable(text: str) -> str:
     return text
 
 
+def _whole(value: Any) -> Any:
+    """JSON knows one kind of number: 2.0 is the whole number 2."""
+    return int(value) if isinstance(value, float) and value.is_integer() else value
+
+
+WHOLE = BeforeValidator(_whole)
 Label = Annotated[str, Field(min_length=1, max_length=200, pattern=r"^[^\x00]*$"), AfterValidator(_storable)]
 
 

@@ -5,7 +5,7 @@ from typing import Annotated, Literal
 from pydantic import Field
 from pydantic.functional_validators import AfterValidator
 
-from faultloop.exchange.fields import Closed, Label, Measured, number
+from faultloop.exchange.fields import WHOLE, Closed, Label, Measured, number
 from faultloop.protection.breakers import breaker_table
 from faultloop.protection.fuses import fuse_families
 from faultloop.protection.residual import residual_table
@@ -39,7 +39,7 @@ class Supply(Closed):
         Annotated[float, number("V", most=1000, positive=True, description="Nominal between lines")] | None
     ) = None
     frequency_hz: Annotated[float, number("Hz", most=1000, description="Frequency")] | None = None
-    phases: Annotated[int, Field(strict=True, ge=1, le=3)] | None = None
+    phases: Annotated[int, Field(strict=True, ge=1, le=3), WHOLE] | None = None
     means_of_earthing: MeansOfEarthing | None = None
     declared_prospective_current_ka: (
         Annotated[float, number("kA", most=1000, description="Declared by the distributor")] | None
@@ -120,7 +120,7 @@ class Breaker(Closed):
         ),
     ]
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
-    poles: Annotated[int, Field(strict=True, ge=1, le=4)] | None = None
+    poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
 
 class Fuse(Closed):
@@ -140,7 +140,7 @@ class Fuse(Closed):
         ),
     ]
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None = None
-    poles: Annotated[int, Field(strict=True, ge=1, le=4)] | None = None
+    poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
 
 OvercurrentDevice = Annotated[Breaker | Fuse, Field(discriminator="kind")]
