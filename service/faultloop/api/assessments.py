@@ -96,7 +96,8 @@ def _record(id: UUID, judged: _Judged) -> Record:  # noqa: A002
 
 
 def _stored_answer(stored: Stored, status: int) -> Response:
-    headers = {"ETag": f'"{sha256(stored.record.answer)}"', "Cache-Control": "no-store"}
+    # What stands under an id never changes, so the digest of its input is a strong tag of its one representation.
+    headers = {"ETag": f'"{stored.record.input_digest}"', "Cache-Control": "no-store"}
     headers["Location"] = f"/v1/assessments/{stored.record.id}"
     return Response(stored.record.answer, status, media_type=JSON, headers=headers)
 

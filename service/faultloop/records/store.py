@@ -3,10 +3,11 @@
 from collections.abc import Iterator
 from contextlib import contextmanager
 from datetime import UTC, datetime
+from functools import lru_cache
 from typing import Any
 
 from sqlalchemy import Connection, Engine, select
-from sqlalchemy.dialects import postgresql, sqlite
+from sqlalchemy.dialects import sqlite
 from sqlalchemy.exc import DataError, DBAPIError, IntegrityError
 
 from .database import reason, write_begin
@@ -14,6 +15,7 @@ from .errors import RecordRefused, StorageFailed, StorageUnavailable
 from .tables import ASSESSMENT, RECORD_FIELDS, Record, Stored, stored
 
 Created = tuple[Stored, bool]
+_COLUMNS = (*RECORD_FIELDS, "stored_at")
 
 
 class Store:
@@ -22,8 +24,8 @@ class Store:
     def __init__(self, engine: Engine) -> None:
         self._engine = engine
         self._connection: Connection | None = None
-        insert = sqlite.insert if engine.dialect.name == "sqlite" else postgresql.insert
-        new = insert(ASSESSMENT).on_conflict_do_nothing(index_elements=["id"])
+        self._numbered = engine.dialect.name == "postgresql"
+        new = sqlite.insert(ASSESSMENT).on_conflict_do_nothing(index_elements=["id"])
         self._insert = new.returning(ASSESSMENT.c.id, ASSESSMENT.c.sequence)
 
     def add(self, records: list[Record]) -> list[Created]:
@@ -33,11 +35,26 @@ class Store:
         with self._transaction() as connection:
             # in one order everywhere, or two services that store the same ids could wait for each other
             rows = [_row(first[key], stored_at) for key in sorted(first)]
-            sequences: dict[str, int] = dict(connection.execute(self._insert, rows).all())
+            sequences = self._inserted(connection, rows)
             found = _existing(connection, first.keys() - sequences.keys())
         made = {key: Stored(first[key], sequence, stored_at) for key, sequence in sequences.items()}
         rows_now = made | found
         return [(rows_now[record.id], made.pop(record.id, None) is not None) for record in records]
+
+    def _inserted(self, connection: Connection, rows: list[dict[str, Any]]) -> dict[str, int]:
+        """Insert what is new and give its sequence numbers by id."""
+        if not self._numbered:
+            return dict(connection.execute(self._insert, rows).all())
+        # The driver reads a long statement anew each time, unless it comes with the server's own parameters.
+        import psycopg
+
+        driver: Any = connection.connection.driver_connection
+        try:
+            with psycopg.RawCursor(driver) as cursor:
+                cursor.execute(_numbered(len(rows)).encode(), [row[name] for row in rows for name in _COLUMNS])
+                return dict(cursor.fetchall())
+        except psycopg.Error as error:
+            raise DBAPIError.instance("INSERT", None, error, psycopg.Error, hide_parameters=True) from error
 
     def close(self) -> None:
         """Give the connection up for good, whatever state it is in."""
@@ -61,6 +78,16 @@ class Store:
         except Exception as error:
             self.close()
             raise _failure(error) from error
+
+
+@lru_cache(maxsize=1024)
+def _numbered(count: int) -> str:
+    """PostgreSQL's own insert of so many rows, with numbered parameters."""
+    width, numbers = len(_COLUMNS), range(1, count * len(_COLUMNS) + 1)
+    rows = (",".join(f"${n}" for n in numbers[at : at + width]) for at in range(0, len(numbers), width))
+    values = ",".join(f"({row})" for row in rows)
+    names = ",".join(_COLUMNS)
+    return f"INSERT INTO {ASSESSMENT.name} ({names}) VALUES {values} ON CONFLICT (id) DO NOTHING RETURNING id, sequence"
 
 
 def _row(record: Record, stored_at: datetime) -> dict[str, Any]:
