@@ -12,7 +12,9 @@ from hypothesis import strategies as st
 from faultloop.digests import canonical_bytes, digest, json_bytes, rounded, rounded_all, sha256
 
 FINITE = st.floats(allow_nan=False, allow_infinity=False, min_value=-1e300, max_value=1e300)
-SCALARS = st.none() | st.booleans() | st.integers() | FINITE | st.text(st.characters(exclude_categories=["Cs"]))
+# Measurements are floats; a whole number beyond 53 bits has no place in them.
+WHOLE = st.integers(-(2**53), 2**53)
+SCALARS = st.none() | st.booleans() | WHOLE | FINITE | st.text(st.characters(exclude_categories=["Cs"]))
 JSON = st.recursive(
     SCALARS,
     lambda inner: st.lists(inner, max_size=4) | st.dictionaries(st.text("abcé", max_size=3), inner, max_size=4),

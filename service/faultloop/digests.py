@@ -29,8 +29,11 @@ def rounded_all(values: Iterable[float]) -> list[float | None]:
 
 def canonical_bytes(value: Any) -> bytes:
     """Give the one JSON text of a value: sorted keys, no spaces, UTF-8, no NaN."""
-    text = json.dumps(value, sort_keys=True, separators=(",", ":"), ensure_ascii=False, allow_nan=False)
-    return text.encode()
+    data = orjson.dumps(value, option=orjson.OPT_SORT_KEYS)
+    if b"null" in data:
+        # What has no number would be written null without a word; the strict writer refuses it.
+        json.dumps(value, allow_nan=False)
+    return data
 
 
 def json_bytes(value: Any) -> bytes:

@@ -10,7 +10,6 @@ import numpy as np
 from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.loops import Basis
 from faultloop.assessment.points import Choice, Earthing, Method, Number, Points, Reading, TemperaturePolicy
-from faultloop.assessment.quantities import electrode_interval
 from faultloop.assessment.texts import Said, texts
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.electrical.fault_current import prospective_current
@@ -160,7 +159,6 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
     """Numbers that sentences quote, as lists."""
     q = outcome.quantities
     number, value, u = points.number, points.value, q.given.uncertainty
-    electrode, _ = electrode_interval(q)
     needed = catalogue().residual.operating_current(points.choice(Choice.RESIDUAL), q.required_s)
     loop = outcome.findings.greatest[ROWS["line-neutral-disconnection"]]
     line_neutral = prospective_current(q.rule("c_min"), number(Number.VOLTAGE), loop)
@@ -180,7 +178,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "r12": value[Reading.LINE_PLUS_PROTECTIVE],
         "dead": q.loops.expected.value,
         "ra": value[Reading.ELECTRODE],
-        "ra_or_loop": electrode.nominal,
+        "ra_or_loop": q.electrode.nominal,
         "heated": np.where(q.factor == 1.0, 0.0, (q.hot.nominal - q.loops.loop.nominal) / (q.factor - 1.0)),
         "z_least": q.loops.live.least,
         "cold_least": q.loops.loop.least,

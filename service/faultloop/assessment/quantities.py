@@ -72,6 +72,7 @@ class Quantities:
     overcurrent_s: Interval
     residual: ResidualTimes
     line_neutral: LineNeutral
+    electrode: Interval
     touch_v: Array
     touch_known: Flags
 
@@ -117,6 +118,7 @@ def shared(points: Points) -> Quantities:
         overcurrent_s=Interval(band.least_time(device, current.greatest), slow[0], slow[1]),
         residual=_residual(g, current),
         line_neutral=line_neutral(g, found, hot, factor),
+        electrode=_electrode(g, found),
         touch_v=touch,
         touch_known=touch_known,
     )
@@ -202,13 +204,11 @@ def _touch(g: Given, found: Loops, hot: Interval, factor: Array) -> tuple[Array,
     return touch_voltage(points.number(Number.VOLTAGE), path, hot.nominal), known
 
 
-def electrode_interval(q: Quantities) -> tuple[Interval, Flags]:
-    """Earth-electrode resistance, or the loop as its upper bound, and where it is the loop."""
-    electrode, loop = q.given.reading(Reading.ELECTRODE), q.loops.live
-    from_loop = ~q.given.known[Reading.ELECTRODE]
-    interval = Interval(
-        np.where(from_loop, np.maximum(loop.least - q.rule("source_allowance"), 0.0), electrode.least),
+def _electrode(g: Given, found: Loops) -> Interval:
+    """Earth-electrode resistance, else the loop as its upper bound."""
+    electrode, loop, from_loop = g.reading(Reading.ELECTRODE), found.live, ~g.known[Reading.ELECTRODE]
+    return Interval(
+        np.where(from_loop, np.maximum(loop.least - g.rule["source_allowance"], 0.0), electrode.least),
         np.where(from_loop, loop.greatest, electrode.greatest),
         np.where(from_loop, loop.nominal, electrode.nominal),
     )
-    return interval, from_loop

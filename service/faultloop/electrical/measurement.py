@@ -9,7 +9,6 @@ from numpy.typing import NDArray
 
 Array = NDArray[np.float64]
 
-_erfc = np.vectorize(math.erfc, otypes=[np.float64])
 
 
 @dataclass(frozen=True, slots=True)
@@ -126,4 +125,5 @@ def conformance_probability(nominal: Array, expanded: Array, limit: Array, sense
         z = sense * (limit - nominal) / (expanded / 2.0)
     exact = np.where(sense * (limit - nominal) >= 0.0, np.inf, -np.inf)
     z = np.where((expanded == 0.0) & ~np.isnan(nominal) & ~np.isnan(limit), exact, z)
-    return np.asarray(0.5 * _erfc(-z / math.sqrt(2.0)), dtype=np.float64)
+    tails = [0.5 * math.erfc(value) for value in (-z / math.sqrt(2.0)).ravel().tolist()]
+    return np.array(tails).reshape(z.shape)

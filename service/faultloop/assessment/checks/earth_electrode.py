@@ -5,7 +5,7 @@ import numpy as np
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
 from faultloop.assessment.points import Choice, Earthing, Flags, Number, Points
-from faultloop.assessment.quantities import Quantities, electrode_interval
+from faultloop.assessment.quantities import Quantities
 
 REASONS = (
     *COMPARISON,
@@ -23,7 +23,7 @@ def _applies(points: Points, _: Quantities) -> Flags:
 
 
 def _judge(points: Points, q: Quantities) -> Judged:
-    electrode, _ = electrode_interval(q)
+    electrode = q.electrode
     rated = points.number(Number.RESIDUAL_GREATEST_MA) / 1000.0
     limit = q.rule("touch_voltage") / rated
     cases = Cases(REASONS)
