@@ -31,7 +31,7 @@ def test_a_higher_dead_resistance_can_explain_a_loop() -> None:
 
 def test_a_higher_dead_resistance_can_outrank_a_no_trip_reading() -> None:
     # 1.5 - 0.65 is more than the uplift and U explain, 1.5 - 0.85 is not.
-    assert judged(readings(zs=no_trip(1.5), ze=0.25, dead=0.4), device="C16")["verdict"] == "marginal"
+    assert judged(readings(zs=no_trip(1.5), ze=0.25, dead=0.4), device="C16")["verdict"] == "fail"
     assert judged(readings(zs=no_trip(1.5), ze=0.25, dead=0.6), device="C16")["verdict"] == "pass"
 
 
@@ -75,7 +75,7 @@ def test_a_wider_uncertainty_can_dissolve_a_contradiction() -> None:
 
 def test_a_wider_uncertainty_can_let_a_dead_test_outrank_a_no_trip_reading() -> None:
     poor = {"instrument": {"percent": 30, "digits": 5, "resolution": 0.01}}
-    assert judged(readings(zs=no_trip(1.5), ze=0.25, dead=0.4), device="C16")["verdict"] == "marginal"
+    assert judged(readings(zs=no_trip(1.5), ze=0.25, dead=0.4), device="C16")["verdict"] == "fail"
     assert judged(readings(zs=no_trip(1.5, **poor), ze=0.25, dead=0.4), device="C16")["verdict"] == "pass"
 
 

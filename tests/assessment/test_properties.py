@@ -10,6 +10,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from faultloop import assess, assess_many
+from faultloop.assessment.checks import CHECKS
 from faultloop.exchange.answers import Assessment
 from tests.assessment import strategies as s
 from tests.assessment.bodies import (
@@ -111,7 +112,7 @@ def test_every_check_is_a_finding_or_listed_with_its_reason(body: Body) -> None:
     findings = [f["check"] for f in answer["findings"]]
     unexamined = [e["subject"] for e in answer["not_examined"] if e["reason"] != "out-of-scope"]
     listed = findings + unexamined + [e["check"] for e in answer["not_applicable"]]
-    assert len(listed) == len(set(listed)) == 6
+    assert len(listed) == len(set(listed)) == len(CHECKS)
     assert all(e["reason"] and e["text"] for e in answer["not_examined"])
     assert all(e.get("settled_by") for e in answer["not_examined"] if e["reason"] != "out-of-scope")
     assert "overload" in {e["subject"] for e in answer["not_examined"]} or (
@@ -253,5 +254,8 @@ def test_dropping_the_operating_time_never_upgrades(body: Body) -> None:
         return
     after = copy.deepcopy(body)
     del after["readings"][s.TIMES]
-    before = rank(assess(body)["verdict"])
-    assert rank(assess(after)["verdict"]) <= max(before, rank("undetermined"))
+    first = assess(body)
+    if any(f["check"] == "residual-device-test" and f["verdict"] == "fail" for f in first["findings"]):
+        # A failed test of a device that nothing relies on is known only from the test itself.
+        return
+    assert rank(assess(after)["verdict"]) <= max(rank(first["verdict"]), rank("undetermined"))

@@ -61,7 +61,9 @@ def test_a_dead_r1_r2_with_ze_outranks_a_no_trip_reading_and_says_so() -> None:
 def test_a_no_trip_reading_beyond_the_uplift_is_not_outranked() -> None:
     # 1.5 - 0.65 = 0.85 is more than 0.5 + 0.21.
     answer = judged(readings(zs=no_trip(1.5), ze=0.25, dead=0.4), device="C16")
-    assert answer["verdict"] == "marginal"
+    assert finding(answer, "overcurrent-disconnection")["verdict"] == "marginal"
+    assert finding(answer, "protective-conductor-condition")["reason"] == "excess-unexplained"
+    assert answer["verdict"] == "fail"
 
 
 def test_a_higher_dead_sum_is_not_undone_by_a_live_reading_through_a_parallel_path() -> None:

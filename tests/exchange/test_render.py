@@ -12,9 +12,16 @@ CHECKS = [
     "overcurrent-disconnection",
     "residual-disconnection",
     "barrier-failed-path",
+    "touch-voltage",
+    "protective-conductor-condition",
+    "means-of-earthing",
     "earth-electrode",
     "additional-protection",
+    "residual-device-test",
     "line-neutral-disconnection",
+    "breaking-capacity",
+    "polarity",
+    "insulation-resistance",
 ]
 BODIES = [
     request(readings(zs=live(0.6))),

@@ -101,11 +101,12 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     ],
     "side": lambda q: q.phrases["below" if q.number("nominal") <= q.number("limit") else "above"],
     "z_or_value": lambda q: q["nominal"],
+    "excess_told": lambda q: max(q.number("nominal"), 0.0),
 }
 
 
 # Phrases that speak of one finding's own numbers.
-_OWN_PHRASES = ("side", "residual_limit", "z_or_value")
+_OWN_PHRASES = ("side", "residual_limit", "z_or_value", "excess_told")
 
 
 @lru_cache(maxsize=4096)
@@ -172,6 +173,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "allowance": q.rule("source_allowance"),
         "tn_loop": q.rule("tn_loop"),
         "touch_limit": q.rule("touch_voltage"),
+        "fault_time": outcome.severity.time_s,
         "z": value[Reading.LOOP],
         "z_u": u[Reading.LOOP],
         "ze": value[Reading.EXTERNAL],

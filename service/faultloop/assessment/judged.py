@@ -23,6 +23,7 @@ class Condition(Codes):
     DESIGNATED_EQUIPMENT = 2
     SUPERVISION = 3
     CONDUCTOR_RATING = 4
+    BACK_UP_DOCUMENTED = 5
 
 
 @dataclass(frozen=True, slots=True)

@@ -53,6 +53,7 @@ class Loops:
     expected: Expected
     excess: Array
     slack: Array
+    uplift: Array
     explained: Flags
     beyond: Flags
 
@@ -69,7 +70,8 @@ def loops(g: Given) -> Loops:
     live, dead_resistance = _live(g, no_trip), _dead_resistance(g)
     expected = _expected(g, dead_resistance)
     excess = points.value[Reading.LOOP] - expected.value
-    slack = combined(g.uncertainty[Reading.LOOP], expected.uncertainty) + np.where(no_trip, g.rule["uplift"], 0.0)
+    uplift = np.where(no_trip, g.rule["uplift"], 0.0)
+    slack = combined(g.uncertainty[Reading.LOOP], expected.uncertainty) + uplift
     beyond = known_live & (excess > slack)
     outranked = expected.by_dead_test & no_trip & ~beyond & (points.bound[Reading.LOOP] != Bound.ABOVE)
     loop, basis = _chosen(g, live, expected, outranked | (expected.by_dead_test & ~known_live), no_trip)
@@ -87,6 +89,7 @@ def loops(g: Given) -> Loops:
         expected=expected,
         excess=excess,
         slack=slack,
+        uplift=uplift,
         explained=~np.isnan(expected.value) & ~beyond,
         beyond=beyond,
     )

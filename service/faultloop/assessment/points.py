@@ -39,6 +39,8 @@ class Reading(Codes):
     TIME_2 = 7
     TIME_5 = 8
     ORIGIN_LINE_NEUTRAL = 9
+    TIME_HALF = 10
+    INSULATION = 11
 
 
 class Bound(Codes):
@@ -84,6 +86,8 @@ class Number(Codes):
     CARRYING_CAPACITY_A = 17
     COVERAGE_SCALE = 18
     RESIDUAL_QUICK_MA = 19
+    DECLARED_CURRENT_KA = 20
+    ASSEMBLY_RATING_KA = 21
 
 
 class Choice(Codes):
@@ -102,6 +106,10 @@ class Choice(Codes):
     DESIGNATED = 10
     RING = 11
     INFERABLE = 12
+    POLARITY = 13
+    MEANS_OF_EARTHING = 14
+    LOADS_CONNECTED = 15
+    MULTIPOLE = 16
 
 
 class Earthing(Codes):
@@ -155,6 +163,23 @@ class Decision(Codes):
 
     GUARDED = 0
     SIMPLE = 1
+
+
+class Polarity(Codes):
+    """Polarity as tested."""
+
+    UNKNOWN = 0
+    CORRECT = 1
+    REVERSED = 2
+
+
+class MeansOfEarthing(Codes):
+    """What is known of the means of earthing at the origin."""
+
+    UNKNOWN = 0
+    PROVEN = 1
+    DOUBTFUL = 2
+    LOST = 3
 
 
 class Current(Codes):

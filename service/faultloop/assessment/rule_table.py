@@ -22,7 +22,7 @@ from faultloop.electrical.measurement import Array
 from faultloop.rules.loader import shipped
 from faultloop.rules.sheets import RuleSet
 
-TIME_READINGS = (Reading.TIME_1, Reading.TIME_2, Reading.TIME_5)
+TIME_READINGS = (Reading.TIME_HALF, Reading.TIME_1, Reading.TIME_2, Reading.TIME_5)
 
 
 @dataclass(frozen=True, slots=True)
@@ -95,6 +95,7 @@ def _values(rules: RuleSet) -> dict[str, float]:
         "body_dry": u.body_dry.value,
         "body_wet": u.body_wet.value,
         "sustained_ma": u.sustained_current.value,
+        "insulation": rules.insulation.value,
     }
 
 
@@ -121,6 +122,7 @@ def _instruments(rules: RuleSet) -> tuple[Array, Array]:
     for reading in loop:
         percent[reading, Method.NO_TRIP] = i.no_trip.percent.value
         constant[reading, Method.NO_TRIP] = i.no_trip.constant.value
+    percent[Reading.INSULATION, :], constant[Reading.INSULATION, :] = i.insulation.value, 0.0
     for reading in TIME_READINGS:
         percent[reading, :], constant[reading, :] = i.residual_time.value, 0.0
     return percent, constant

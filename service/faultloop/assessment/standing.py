@@ -56,5 +56,7 @@ def compare(value: Interval, limit: Array, sense: Ints, decision: Ints) -> Ints:
     guarded = np.where(endangering <= 0, Verdict.PASS, np.where(favourable > 0, Verdict.FAIL, Verdict.MARGINAL))
     simple = np.where(nominal <= 0, Verdict.PASS, Verdict.FAIL)
     verdict = np.where(decision == Decision.SIMPLE, simple, guarded)
-    verdict = np.where(np.isinf(endangering) & (verdict != Verdict.FAIL), Verdict.UNDETERMINED, verdict)
+    undecided = np.isinf(endangering) & (verdict != Verdict.FAIL)
+    undecided |= np.isinf(favourable) & (verdict == Verdict.MARGINAL)
+    verdict = np.where(undecided, Verdict.UNDETERMINED, verdict)
     return np.where(np.isnan(endangering + favourable + nominal), Verdict.UNDETERMINED, verdict)

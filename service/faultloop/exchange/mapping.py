@@ -12,8 +12,10 @@ from faultloop.assessment.points import (
     Decision,
     Earthing,
     Feeds,
+    MeansOfEarthing,
     Method,
     Number,
+    Polarity,
     Reading,
     Role,
     Row,
@@ -40,6 +42,10 @@ _FEEDS = {
     None: Feeds.UNKNOWN,
 }
 _USERS, _POLICY, _DECISION, _CURRENT = (c.codes() for c in (Users, TemperaturePolicy, Decision, Current))
+_MEANS: dict[str | None, int] = {None: 0}
+_MEANS.update(MeansOfEarthing.codes())
+_POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
+_POLARITY.update(Polarity.codes())
 NO_DEVICE = -1
 
 
@@ -85,6 +91,10 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
     choices[Choice.TEMPERATURE_POLICY] = _POLICY[str(point.policy["temperature"])]
     choices[Choice.DECISION] = _DECISION[str(point.policy["decision"])]
     numbers[Number.COVERAGE_SCALE] = coverage_scale(float(point.policy["coverage"]))
+    if supply.means_of_earthing is not None:
+        choices[Choice.MEANS_OF_EARTHING] = _MEANS[supply.means_of_earthing.state]
+    if supply.declared_prospective_current_ka is not None:
+        numbers[Number.DECLARED_CURRENT_KA] = supply.declared_prospective_current_ka
     if supply.nominal_voltage_to_earth_v is not None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
@@ -104,6 +114,7 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         point.device = device.designation
         choices[Choice.DEVICE] = table.rows.get((point.rules.rules.key, device), NO_DEVICE)
         numbers[Number.DEVICE_RATED_CURRENT] = body.rated_current_a
+        choices[Choice.MULTIPOLE] = int((body.poles or 1) > 2 or request.supply.phases == 3)
         if body.breaking_capacity_ka is not None:
             numbers[Number.BREAKING_CAPACITY_KA] = body.breaking_capacity_ka
     own = [request.residual_current_device] if request.residual_current_device else []
@@ -172,12 +183,18 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     _put(row, Reading.LINE_PLUS_PROTECTIVE, readings.line_plus_protective_resistance_ohm)
     _put(row, Reading.PROTECTIVE, readings.protective_conductor_resistance_ohm)
     _put(row, Reading.ELECTRODE, readings.earth_electrode_resistance_ohm)
+    _put(row, Reading.INSULATION, readings.insulation_resistance_megohm)
+    row.choices[Choice.POLARITY] = _POLARITY[readings.polarity]
     if (times := readings.residual_operating_time_ms) is not None:
+        row.choices[Choice.LOADS_CONNECTED] = int(times.loads_connected is True)
+        _put(row, Reading.TIME_HALF, times.half)
         _put(row, Reading.TIME_1, times.one)
         _put(row, Reading.TIME_2, times.two)
         _put(row, Reading.TIME_5, times.five)
     if board is not None:
         _put(row, Reading.ORIGIN_LINE_NEUTRAL, board.line_neutral_loop_impedance_ohm)
+        if board.assembly_conditional_rating_ka is not None:
+            row.numbers[Number.ASSEMBLY_RATING_KA] = board.assembly_conditional_rating_ka
         stated = board.prospective_current_ka
         row.numbers[Number.BOARD_CURRENT_KA] = _exact(stated)
     _put_method(point)

@@ -24,7 +24,7 @@ class MeansOfEarthing(Closed):
     """What is believed of the means of earthing, and why."""
 
     evidence: Label
-    state: Label | None = None
+    state: Literal["proven", "doubtful", "lost"] | None = None
 
 
 class Supply(Closed):

@@ -22,6 +22,7 @@ Amperes = Annotated[Parameter, _in_unit("A")]
 Milliamperes = Annotated[Parameter, _in_unit("mA")]
 Seconds = Annotated[Parameter, _in_unit("s")]
 Ohms = Annotated[Parameter, _in_unit("ohm")]
+Megohms = Annotated[Parameter, _in_unit("Mohm")]
 Percent = Annotated[Parameter, _in_unit("%")]
 PerKelvin = Annotated[Parameter, _in_unit("1/K")]
 Celsius = Annotated[Parameter, _in_unit("degC")]
@@ -97,6 +98,7 @@ class Instruments(Sheet):
     continuity: Instrument
     electrode: Instrument
     residual_time: Percent
+    insulation: Percent
     no_trip_uplift: Ohms
 
 
@@ -159,6 +161,7 @@ class RuleSet(Sheet):
     policy: Policy
     expected: Expected
     urgency: Urgency
+    insulation: Megohms
     clauses: dict[str, Text]
     operating_current: list[OperatingCurrent] = Field(default_factory=list)
 

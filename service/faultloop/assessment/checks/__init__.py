@@ -3,10 +3,17 @@
 from faultloop.assessment.checks import (
     additional_protection,
     barrier_failed_path,
+    breaking_capacity,
     earth_electrode,
+    insulation_resistance,
     line_neutral_disconnection,
+    means_of_earthing,
     overcurrent_disconnection,
+    polarity,
+    protective_conductor_condition,
+    residual_device_test,
     residual_disconnection,
+    touch_voltage,
 )
 from faultloop.assessment.judged import Check
 
@@ -14,7 +21,14 @@ CHECKS: tuple[Check, ...] = (
     overcurrent_disconnection.CHECK,
     residual_disconnection.CHECK,
     barrier_failed_path.CHECK,
+    touch_voltage.CHECK,
+    protective_conductor_condition.CHECK,
+    means_of_earthing.CHECK,
     earth_electrode.CHECK,
     additional_protection.CHECK,
+    residual_device_test.CHECK,
     line_neutral_disconnection.CHECK,
+    breaking_capacity.CHECK,
+    polarity.CHECK,
+    insulation_resistance.CHECK,
 )

@@ -1,0 +1,86 @@
+"""Can the overcurrent device break the greatest current at its board?"""
+
+import numpy as np
+
+from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
+from faultloop.assessment.points import Choice, Flags, Number, Points, Reading
+from faultloop.assessment.quantities import Quantities
+from faultloop.electrical.fault_current import prospective_current
+from faultloop.electrical.measurement import Array, Interval
+
+REASONS = (
+    *COMPARISON,
+    "capacity-missing",
+    "current-missing",
+    "three-phase-current-missing",
+    "outlet-current-over-capacity",
+    "assembly-rating",
+    "back-up-not-documented",
+    "assembly-rating-exceeded",
+)
+
+
+def _applies(points: Points, _: Quantities) -> Flags:
+    device: Flags = points.choice(Choice.DEVICE) >= 0
+    return device
+
+
+def _at_board(points: Points, q: Quantities) -> tuple[Interval, Flags]:
+    """Prospective current at the board [kA] and whether it is known.
+
+    A declared value governs where there is no reading, or where the reading's uncertainty is over half of it.
+    """
+    loop, declared = q.given.reading(Reading.ORIGIN_LINE_NEUTRAL), points.number(Number.DECLARED_CURRENT_KA)
+    stated = points.number(Number.BOARD_CURRENT_KA)
+    voltage, c_max = points.number(Number.VOLTAGE), q.rule("c_max")
+    single = points.choice(Choice.MULTIPOLE) == 0
+    vague = q.given.uncertainty[Reading.ORIGIN_LINE_NEUTRAL] > loop.nominal / 2.0
+    usable = single & ~np.isnan(loop.nominal) & ~(vague & ~np.isnan(declared))
+
+    def current(impedance: Array) -> Array:
+        return np.where(usable, prospective_current(c_max, voltage, impedance) / 1000.0, np.nan)
+
+    given = np.where(np.isnan(stated), declared, stated)
+    one = Interval(current(loop.greatest), current(loop.least), current(loop.nominal))
+    interval = Interval(*(np.where(np.isnan(given) | usable & np.isnan(stated), o, given) for o in _ends(one)))
+    return interval, ~np.isnan(interval.nominal)
+
+
+def _ends(interval: Interval) -> tuple[Array, Array, Array]:
+    return interval.least, interval.greatest, interval.nominal
+
+
+def _judge(points: Points, q: Quantities) -> Judged:
+    capacity, assembly = points.number(Number.BREAKING_CAPACITY_KA), points.number(Number.ASSEMBLY_RATING_KA)
+    current, known = _at_board(points, q)
+    outlet = (
+        np.fmax(
+            q.current.least,
+            prospective_current(q.rule("c_min"), points.number(Number.VOLTAGE), q.line_neutral.hot.greatest),
+        )
+        / 1000.0
+    )
+    over = current.greatest > capacity
+    cases = Cases(REASONS)
+    cases.when(np.isnan(capacity), Standing.NOT_EXAMINED, "capacity-missing")
+    cases.when(~known & (outlet > capacity), Standing.UNMET, "outlet-current-over-capacity")
+    cases.when(~known & (points.choice(Choice.MULTIPOLE) == 1), Standing.NOT_EXAMINED, "three-phase-current-missing")
+    cases.when(~known, Standing.NOT_EXAMINED, "current-missing")
+    cases.when(over & (assembly >= current.greatest), Standing.MET, "assembly-rating")
+    cases.when(over & (assembly < current.least), Standing.UNMET, "assembly-rating-exceeded")
+    cases.when(over, Standing.UNDETERMINED, "back-up-not-documented")
+    backed = known & over & (assembly >= current.greatest)
+    bits = np.where(backed, 1 << Condition.BACK_UP_DOCUMENTED, 0)
+    return cases.settle(current, capacity, bits)
+
+
+CHECK = Check(
+    id="breaking-capacity",
+    quantity="prospective_short_circuit_current_ka",
+    unit="kA",
+    sense=AT_MOST,
+    reasons=REASONS,
+    applies=_applies,
+    judge=_judge,
+)

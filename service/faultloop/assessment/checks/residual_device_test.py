@@ -1,0 +1,66 @@
+"""Did the residual device operate within its own standard's times when it was tested?"""
+
+import numpy as np
+
+from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
+from faultloop.assessment.points import Bound, Choice, Flags, Number, Points, Reading
+from faultloop.assessment.quantities import Quantities
+from faultloop.electrical.measurement import Interval
+from faultloop.protection.catalogue import catalogue
+
+REASONS = (
+    *COMPARISON,
+    "over-time",
+    "sooner-than-selective",
+    "trips-at-half",
+    "trips-at-half-with-loads",
+    "no-standard-times",
+    "not-tested",
+)
+_TESTS = [Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]
+_MULTIPLES = np.array([[1.0], [2.0], [5.0]])
+
+
+def _applies(points: Points, _: Quantities) -> Flags:
+    return ~np.isnan(points.number(Number.RESIDUAL_MA))
+
+
+def _judge(points: Points, q: Quantities) -> Judged:
+    row, band = points.choice(Choice.RESIDUAL), catalogue().residual
+    multiples = np.broadcast_to(_MULTIPLES, (3, points.count))
+    limit, hold = 1000.0 * band.greatest_time(row, multiples), 1000.0 * band.least_time(row, multiples)
+    bound, value = points.bound[_TESTS], points.value[_TESTS]
+    tested = bound != Bound.MISSING
+    # The result nearest to its limit, or farthest beyond, speaks for the device.
+    share = np.where(tested, value / limit, -np.inf)
+    worst, at = share.argmax(axis=0), np.arange(points.count)
+    picked = Interval(q.given.least[_TESTS][worst, at], q.given.greatest[_TESTS][worst, at], value[worst, at])
+    exact = bound == Bound.EXACT
+    half = points.bound[Reading.TIME_HALF]
+    tripped = (half == Bound.EXACT) | (half == Bound.BELOW)
+    loads = points.choice(Choice.LOADS_CONNECTED) == 1
+    any_tested = np.logical_or.reduce(tested, axis=0)
+    cases = Cases(REASONS)
+    cases.when(any_tested & np.isinf(limit[0]), Standing.NOT_EXAMINED, "no-standard-times")
+    cases.when(q.residual.over_limit, Standing.UNMET, "over-time", defect=True)
+    cases.when(tripped & loads, Standing.UNDETERMINED, "trips-at-half-with-loads")
+    cases.when(tripped, Standing.UNMET, "trips-at-half")
+    cases.when(~any_tested, Standing.NOT_EXAMINED, "not-tested")
+    # Acting sooner endangers nobody at the point; it costs the selectivity, and is told.
+    sooner = np.logical_or.reduce(exact & (value < hold), axis=0)
+    cases.when(sooner, Standing.MET, "sooner-than-selective")
+    # A result in its limits is the device's own word: the instrument's uncertainty is printed, not held against it.
+    cases.when(any_tested, Standing.MET, "within-limit")
+    return cases.settle(picked, np.where(np.isinf(limit), np.nan, limit)[worst, at])
+
+
+CHECK = Check(
+    id="residual-device-test",
+    quantity="residual_operating_time_ms",
+    unit="ms",
+    sense=AT_MOST,
+    reasons=REASONS,
+    applies=_applies,
+    judge=_judge,
+)
