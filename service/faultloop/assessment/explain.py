@@ -110,12 +110,13 @@ _OWN_PHRASES = ("side", "residual_limit", "z_or_value", "excess_told")
 
 
 @lru_cache(maxsize=4096)
-def _template(language: str, check: str, reason: str, policy: str, basis: str) -> tuple[str, Said]:
+def _template(language: str, check: str, reason: str, policy: str, basis: str) -> tuple[str, bool, Said]:
+    """The template of a reason, whether it quotes anything at all, and what else is said."""
     told = texts(language)
     said = told.said(check, reason)
-    return told.expanded(
-        said.explanation, {"limit": policy, "heating": policy, "line-neutral": policy, "loop": basis}
-    ), said
+    variants = {"limit": policy, "heating": policy, "line-neutral": policy, "loop": basis}
+    template = told.expanded(said.explanation, variants)
+    return template, "{" in template + (said.settled_by or ""), said
 
 
 class Explainer:
@@ -147,7 +148,10 @@ class Explainer:
     def said(self, check: int, reason: int, at: int, quoted: Quoted) -> tuple[str, str | None, list[str]]:
         """Explanation, question and cautions of one finding."""
         policy, basis = _POLICIES[self._policies[at]], _BASES[self._bases[at]]
-        template, said = _template(self._language, CHECKS[check].id, CHECKS[check].reasons[reason], policy, basis)
+        known = CHECKS[check]
+        template, quotes, said = _template(self._language, known.id, known.reasons[reason], policy, basis)
+        if not quotes:
+            return template, said.settled_by, said.cautions
         own = self._own[check][at]
         quoted["nominal"], quoted["limit"], quoted["value_least"], quoted["value_greatest"] = own
         for phrase in _OWN_PHRASES:
@@ -173,7 +177,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "allowance": q.rule("source_allowance"),
         "tn_loop": q.rule("tn_loop"),
         "touch_limit": q.rule("touch_voltage"),
-        "fault_time": outcome.severity.time_s,
+        "fault_time": q.severity.time_s,
         "z": value[Reading.LOOP],
         "z_u": u[Reading.LOOP],
         "ze": value[Reading.EXTERNAL],

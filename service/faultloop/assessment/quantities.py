@@ -8,7 +8,6 @@ from faultloop.assessment.given import Given, given
 from faultloop.assessment.line_neutral import LineNeutral, line_neutral
 from faultloop.assessment.loops import Loops, loops
 from faultloop.assessment.points import (
-    Bound,
     Choice,
     Codes,
     Current,
@@ -21,7 +20,9 @@ from faultloop.assessment.points import (
     Role,
     TemperaturePolicy,
 )
+from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
+from faultloop.assessment.severity import Severity, severity
 from faultloop.assessment.standing import compare
 from faultloop.electrical.body import touch_voltage
 from faultloop.electrical.conductors import temperature_factor
@@ -44,17 +45,6 @@ class Wanting(Codes):
 
 
 @dataclass(frozen=True, slots=True)
-class ResidualTimes:
-    """What the relied-on residual device does, (n,) each; nan where there is none."""
-
-    multiple: Array
-    multiple_nominal: Array
-    time_s: Interval
-    over_limit: Flags
-    tested: Flags
-
-
-@dataclass(frozen=True, slots=True)
 class Quantities:
     """Shared intervals and numbers, (n,) each; nan where unknown."""
 
@@ -71,6 +61,7 @@ class Quantities:
     current: Interval
     overcurrent_s: Interval
     residual: ResidualTimes
+    severity: Severity
     line_neutral: LineNeutral
     electrode: Interval
     touch_v: Array
@@ -102,6 +93,8 @@ def shared(points: Points) -> Quantities:
         prospective_current(rule["c_min"], voltage, hot.nominal),
     )
     slow = band.greatest_time(device, np.array([current.least, current.nominal]))
+    overcurrent_s = Interval(band.least_time(device, current.greatest), slow[0], slow[1])
+    residual = residual_times(g, current)
     touch, touch_known = _touch(g, found, hot, factor)
     return Quantities(
         given=g,
@@ -115,8 +108,9 @@ def shared(points: Points) -> Quantities:
         loop_limit=limit,
         overcurrent=compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)),
         current=current,
-        overcurrent_s=Interval(band.least_time(device, current.greatest), slow[0], slow[1]),
-        residual=_residual(g, current),
+        overcurrent_s=overcurrent_s,
+        residual=residual,
+        severity=severity(g, touch, overcurrent_s, residual),
         line_neutral=line_neutral(g, found, hot, factor),
         electrode=_electrode(g, found),
         touch_v=touch,
@@ -153,40 +147,6 @@ def by_policy(points: Points, hot: Interval, cold: Interval) -> Interval:
         np.where(split, hot.greatest, cold.greatest),
         np.where(split, hot.nominal, cold.nominal),
     )
-
-
-def _residual(g: Given, current: Interval) -> ResidualTimes:
-    """Times of the band at the least and the nominal current, and what the tests said.
-
-    A time measured at the band's own multiple stands in place of the band where it is longer; a result
-    at another multiple says nothing about this one.
-    """
-    points, row = g.points, g.points.choice(Choice.RESIDUAL)
-    rated, band = points.number(Number.RESIDUAL_MA) / 1000.0, catalogue().residual
-    multiples = np.array([current.least, current.nominal]) / rated
-    one, two, five = points.value[[Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]] / 1000.0
-    measured = np.where(
-        multiples >= 5.0, five, np.where(multiples >= 2.0, two, np.where(multiples >= 1.0, one, np.nan))
-    )
-    slow = np.fmax(band.greatest_time(row, multiples), measured)
-    over, tested = _tests(g)
-    times = Interval(band.least_time(row, current.greatest / rated), slow[0], slow[1])
-    return ResidualTimes(multiples[0], multiples[1], times, over, tested)
-
-
-def _tests(g: Given) -> tuple[Flags, Flags]:
-    """Where a test result is over the standard's time, and where a usable time at IΔn is there."""
-    points, row = g.points, g.points.choice(Choice.RESIDUAL)
-    tests = [Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]
-    multiples = np.broadcast_to(np.array([[1.0], [2.0], [5.0]]), (3, points.count))
-    limit_ms = 1000.0 * catalogue().residual.greatest_time(row, multiples)
-    value, bound = points.value[tests], points.bound[tests]
-    exact = bound == Bound.EXACT
-    late = (exact & (value > limit_ms)) | ((bound == Bound.ABOVE) & (value >= limit_ms))
-    over: Flags = np.logical_or.reduce(late, axis=0)
-    within = exact[0] | ((bound[0] == Bound.BELOW) & (value[0] <= limit_ms[0]))
-    # Under a millisecond the unit must be wrong.
-    return over, within & (value[0] >= 1.0)
 
 
 def _touch(g: Given, found: Loops, hot: Interval, factor: Array) -> tuple[Array, Flags]:

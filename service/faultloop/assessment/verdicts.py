@@ -9,7 +9,7 @@ from faultloop.assessment.judged import Condition, Judged, Standing, Verdict, co
 from faultloop.assessment.points import Choice, Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities, shared
 from faultloop.assessment.standing import STANDING_VERDICT
-from faultloop.assessment.urgency import Severity, urgency
+from faultloop.assessment.urgency import urgency
 from faultloop.electrical.measurement import Array, Interval
 
 # A requirement that any one member meets takes its best member; every other check counts by itself.
@@ -50,7 +50,6 @@ class Outcome:
     quantities: Quantities
     verdict: Ints
     urgency: Ints
-    severity: Severity
     conditions: Ints
 
 
@@ -88,8 +87,8 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
     held = np.bitwise_or.reduce(np.where(counts, findings.conditions, 0), axis=0)
     # A defect orders work even where another member of an any-of group decides.
     defect: Flags = np.logical_or.reduce(findings.defect, axis=0)
-    level, severity = urgency(points, quantities, overall, defect)
-    return Outcome(findings, quantities, overall, level, severity, held)
+    level = urgency(points, quantities, overall, defect)
+    return Outcome(findings, quantities, overall, level, held)
 
 
 def _verdicts(compared: Ints, judged: list[Judged], applies: Flags, conditions: Ints) -> tuple[Ints, Ints]:

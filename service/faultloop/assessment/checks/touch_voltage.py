@@ -6,7 +6,6 @@ from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prereq
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
 from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
-from faultloop.assessment.urgency import severity
 from faultloop.electrical.body import severity_ratio
 from faultloop.electrical.measurement import Interval
 
@@ -18,7 +17,7 @@ def _applies(points: Points, _: Quantities) -> Flags:
 
 
 def _judge(points: Points, q: Quantities) -> Judged:
-    found = severity(points, q)
+    found = q.severity
     body = q.touch_v / (found.body_ma / 1000.0)
     # The voltage at which the body current meets the current-time curve for the time that the fault lasts.
     limit = 1.0 / severity_ratio(np.ones(points.count), body, found.time_s)

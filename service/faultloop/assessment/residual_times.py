@@ -1,0 +1,55 @@
+"""What the relied-on residual device does at the prospective current, and what its tests said."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from faultloop.assessment.given import Given
+from faultloop.assessment.points import Bound, Choice, Flags, Number, Reading
+from faultloop.electrical.measurement import Array, Interval
+from faultloop.protection.catalogue import catalogue
+
+
+@dataclass(frozen=True, slots=True)
+class ResidualTimes:
+    """What the relied-on residual device does, (n,) each; nan where there is none."""
+
+    multiple: Array
+    multiple_nominal: Array
+    time_s: Interval
+    over_limit: Flags
+    tested: Flags
+
+
+def residual_times(g: Given, current: Interval) -> ResidualTimes:
+    """Times of the band at the least and the nominal current, and what the tests said.
+
+    A time measured at the band's own multiple stands in place of the band where it is longer; a result
+    at another multiple says nothing about this one.
+    """
+    points, row = g.points, g.points.choice(Choice.RESIDUAL)
+    rated, band = points.number(Number.RESIDUAL_MA) / 1000.0, catalogue().residual
+    multiples = np.array([current.least, current.nominal]) / rated
+    one, two, five = points.value[[Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]] / 1000.0
+    measured = np.where(
+        multiples >= 5.0, five, np.where(multiples >= 2.0, two, np.where(multiples >= 1.0, one, np.nan))
+    )
+    slow = np.fmax(band.greatest_time(row, multiples), measured)
+    over, tested = _tests(g)
+    times = Interval(band.least_time(row, current.greatest / rated), slow[0], slow[1])
+    return ResidualTimes(multiples[0], multiples[1], times, over, tested)
+
+
+def _tests(g: Given) -> tuple[Flags, Flags]:
+    """Where a test result is over the standard's time, and where a usable time at IΔn is there."""
+    points, row = g.points, g.points.choice(Choice.RESIDUAL)
+    tests = [Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]
+    multiples = np.broadcast_to(np.array([[1.0], [2.0], [5.0]]), (3, points.count))
+    limit_ms = 1000.0 * catalogue().residual.greatest_time(row, multiples)
+    value, bound = points.value[tests], points.bound[tests]
+    exact = bound == Bound.EXACT
+    late = (exact & (value > limit_ms)) | ((bound == Bound.ABOVE) & (value >= limit_ms))
+    over: Flags = np.logical_or.reduce(late, axis=0)
+    within = exact[0] | ((bound[0] == Bound.BELOW) & (value[0] <= limit_ms[0]))
+    # Under a millisecond the unit must be wrong.
+    return over, within & (value[0] >= 1.0)

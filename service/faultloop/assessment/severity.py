@@ -1,0 +1,45 @@
+"""How severe a fault would be: body current over the current-time curve, to order work by."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from faultloop.assessment.given import Given
+from faultloop.assessment.points import Choice, Feeds, Number
+from faultloop.assessment.residual_times import ResidualTimes
+from faultloop.electrical.body import severity_ratio
+from faultloop.electrical.measurement import Array, Interval
+from faultloop.protection.band import faster
+from faultloop.protection.catalogue import catalogue
+
+
+@dataclass(frozen=True, slots=True)
+class Severity:
+    """Body current over its limit: with the barriers as they are, and with the residual device failed."""
+
+    as_is: Array
+    barrier_failed: Array
+    time_s: Array
+    body_ma: Array
+
+
+def severity(g: Given, touch_v: Array, overcurrent_s: Interval, device: ResidualTimes) -> Severity:
+    """Severity at the nominal current; an untested residual device is taken to work, a failed one not."""
+    points = g.points
+    outdoors = points.choice(Choice.FEEDS) == Feeds.MOBILE_OUTDOORS
+    body = np.where(outdoors, g.rule["body_wet"], g.rule["body_dry"])
+    credited = ~np.isnan(points.number(Number.RESIDUAL_MA)) & ~device.over_limit
+    # A person who touches the part closes the path, so a device that sees no metallic return still sees them.
+    touched = np.fmax(device.multiple_nominal, touch_v / body / (points.number(Number.RESIDUAL_MA) / 1000.0))
+    by_band = catalogue().residual.greatest_time(points.choice(Choice.RESIDUAL), touched)
+    quick = np.where(touched > device.multiple_nominal, by_band, device.time_s.nominal)
+    residual = np.where(credited, quick, np.inf)
+    # A device that nobody named is unknown, not absent: it shortens nothing and raises nothing.
+    overcurrent = np.where(points.choice(Choice.DEVICE) < 0, np.nan, overcurrent_s.nominal)
+    time = faster(overcurrent, np.where(np.isnan(overcurrent) & np.isinf(residual), np.nan, residual))
+    return Severity(
+        as_is=severity_ratio(touch_v, body, time),
+        barrier_failed=severity_ratio(touch_v, body, overcurrent),
+        time_s=time,
+        body_ma=1000.0 * touch_v / body,
+    )
