@@ -69,12 +69,11 @@ async def list_devices() -> Response:
 
 
 def _listed(device: OvercurrentDevice) -> dict[str, Any]:
-    breaker = isinstance(device, Breaker)
-    standard = breaker_table().standard if isinstance(device, Breaker) else fuse_families()[device.fuse_system].standard
+    table = breaker_table(device.characteristic) if isinstance(device, Breaker) else fuse_families()[device.fuse_system]
     return {
         "designation": device.designation,
-        "kind": "miniature-circuit-breaker" if breaker else "fuse",
-        "standard": standard,
+        "kind": "miniature-circuit-breaker" if isinstance(device, Breaker) else "fuse",
+        "standard": table.standard,
         "rated_current_a": device.rated_current_a,
     }
 

@@ -1,7 +1,7 @@
 """Explanations, questions, conditions and cautions of one point, by reason; no sentence stands in code."""
 
 import math
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 
@@ -27,6 +27,7 @@ class Names:
     device: str | None
     residual: str | None
     rules: str
+    upstream: Sequence[str] = ()
 
 
 class Quoted(dict[str, float | str]):
@@ -77,6 +78,10 @@ def _overcurrent_time(q: Quoted) -> str:
     return f"{nominal:g} s" if math.isfinite(nominal) else q.phrases["no-time"]
 
 
+def _own_current(q: Quoted) -> str:
+    return q.phrases["own-never" if math.isinf(q.number("ia")) else "own-from"].format_map(q)
+
+
 def _times_told(q: Quoted) -> str:
     times = [(m, q.number(f"time_{m}")) for m in (1, 2, 5)]
     return ", ".join(q.phrases["time"].format(time=t, multiple=m) for m, t in times if not math.isnan(t))
@@ -91,6 +96,9 @@ def _residual_limit(q: Quoted) -> str:
 _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     "withstand": _withstand,
     "withstand_told": _withstand_told,
+    "upstream": lambda q: q.phrases["no-device"],
+    "overcurrent_left": lambda q: q["device"] if "upstream" not in q else q.phrases["series"].format_map(q),
+    "own_current": _own_current,
     "multiple_in": lambda q: q.number("i_ln") / q.number("in_device"),
     "overcurrent_time": _overcurrent_time,
     "time_told": _times_told,
@@ -114,7 +122,7 @@ def _template(language: str, check: str, reason: str, policy: str, basis: str) -
     """The template of a reason, whether it quotes anything at all, and what else is said."""
     told = texts(language)
     said = told.said(check, reason)
-    variants = {"limit": policy, "heating": policy, "line-neutral": policy, "loop": basis}
+    variants = {"limit": policy, "upstream": policy, "heating": policy, "line-neutral": policy, "loop": basis}
     template = told.expanded(said.explanation, variants)
     return template, "{" in template + (said.settled_by or ""), said
 
@@ -131,6 +139,7 @@ class Explainer:
         self._rows = list(zip(*(_opened(column, words) for column in columns.values()), strict=True))
         self._policies = points.choices[Choice.TEMPERATURE_POLICY].tolist()
         self._bases = outcome.quantities.loops.basis.tolist()
+        self._upstream = outcome.quantities.upstream.place.tolist()
         own = (found.nominal.tolist(), found.limit.tolist(), found.least.tolist(), found.greatest.tolist())
         self._own = [
             list(zip(nominal, limit, least, _opened(greatest, words), strict=True))
@@ -143,6 +152,8 @@ class Explainer:
         quoted["device"] = names.device or self._phrases["no-device"]
         quoted["residual"] = names.residual or self._phrases["no-residual"]
         quoted["rules"] = names.rules
+        if names.upstream:
+            quoted["upstream"] = names.upstream[self._upstream[at]]
         return quoted
 
     def said(self, check: int, reason: int, at: int, quoted: Quoted) -> tuple[str, str | None, list[str]]:
@@ -170,6 +181,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
     columns: dict[str, Array] = {
         "required": q.required_s,
         "ia": q.operating_current,
+        "ia_upstream": q.upstream.operating_current,
         "c_min": q.rule("c_min"),
         "u0": number(Number.VOLTAGE),
         "four_fifths": q.rule("four_fifths"),

@@ -22,13 +22,13 @@ from faultloop.assessment.points import (
 )
 from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
+from faultloop.assessment.series import Upstream, greatest_time, least_time, quickest_upstream
 from faultloop.assessment.severity import Severity, severity
-from faultloop.assessment.standing import compare
+from faultloop.assessment.standing import Verdict, compare
 from faultloop.electrical.body import touch_voltage
 from faultloop.electrical.conductors import temperature_factor
 from faultloop.electrical.fault_current import heated_loop, prospective_current
 from faultloop.electrical.measurement import Array, Interval
-from faultloop.protection.catalogue import catalogue
 
 AT_MOST = np.array(1)
 
@@ -58,6 +58,7 @@ class Quantities:
     operating_current: Array
     loop_limit: Array
     overcurrent: Ints
+    upstream: Upstream
     current: Interval
     overcurrent_s: Interval
     residual: ResidualTimes
@@ -84,16 +85,15 @@ def shared(points: Points) -> Quantities:
     found, required = loops(g), required_time(points, rule)
     factor = temperature_factor(points.number(Number.SERVICE_C), points.number(Number.TEST_C), rule["alpha"])
     hot = heated_loop(found.loop, found.heated_known, found.external, found.external_u, factor)
-    band = catalogue().overcurrent
-    operating = band.operating_current(device, required)
+    operating = points.overcurrent.operating_current(device, required)
     limit, compared = _loop_limit(g, operating), by_policy(points, hot, found.loop)
     current = Interval(
         prospective_current(rule["c_min"], voltage, hot.greatest),
         prospective_current(rule["c_max"], voltage, found.loop.least),
         prospective_current(rule["c_min"], voltage, hot.nominal),
     )
-    slow = band.greatest_time(device, np.array([current.least, current.nominal]))
-    overcurrent_s = Interval(band.least_time(device, current.greatest), slow[0], slow[1])
+    slow = greatest_time(points, np.array([current.least, current.nominal]))
+    overcurrent_s = Interval(least_time(points, current.greatest), slow[0], slow[1])
     residual = residual_times(g, current)
     touch, touch_known = _touch(g, found, hot, factor)
     return Quantities(
@@ -107,6 +107,7 @@ def shared(points: Points) -> Quantities:
         operating_current=operating,
         loop_limit=limit,
         overcurrent=compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)),
+        upstream=_upstream(g, compared, required),
         current=current,
         overcurrent_s=overcurrent_s,
         residual=residual,
@@ -137,6 +138,16 @@ def _loop_limit(g: Given, operating: Array) -> Array:
     factor = np.where(policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"])
     factor = np.where(policy == TemperaturePolicy.TWO_THIRDS, two_thirds, factor)
     return np.where(np.isinf(operating), np.nan, prospective_current(factor, voltage, operating))
+
+
+def _upstream(g: Given, compared: Interval, required: Array) -> Upstream:
+    points = g.points
+    operating, place = quickest_upstream(points, required)
+    if not len(points.upstream):
+        unknown = np.full(points.count, np.nan)
+        return Upstream(operating, place, unknown, np.full(points.count, Verdict.UNDETERMINED))
+    limit = _loop_limit(g, operating)
+    return Upstream(operating, place, limit, compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)))
 
 
 def by_policy(points: Points, hot: Interval, cold: Interval) -> Interval:

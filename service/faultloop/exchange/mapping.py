@@ -6,6 +6,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from faultloop.assessment.points import (
+    NO_DEVICE,
     Bound,
     Choice,
     Current,
@@ -27,7 +28,9 @@ from faultloop.electrical.measurement import coverage_scale
 from faultloop.exchange import requests as rq
 from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.protection import designations as ds
+from faultloop.protection.band import Band
 from faultloop.protection.catalogue import catalogue
+from faultloop.protection.curves import OwnCurve, own_band
 from faultloop.rules.conductors import adiabatic_k, ohm_per_km, service_temperature
 from faultloop.rules.loader import LoadedRules, resolve
 
@@ -46,7 +49,6 @@ _MEANS: dict[str | None, int] = {None: 0}
 _MEANS.update(MeansOfEarthing.codes())
 _POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
 _POLARITY.update(Polarity.codes())
-NO_DEVICE = -1
 
 
 @dataclass(slots=True)
@@ -58,7 +60,9 @@ class Mapped:
     policy: dict[str, str | float]
     device: str | None
     residual: str | None
+    upstream: list[str] = field(default_factory=list)
     assumptions: list[str] = field(default_factory=list)
+    cautions: list[str] = field(default_factory=list)
 
 
 def mapped(request: rq.AssessmentRequest) -> Mapped:
@@ -99,24 +103,38 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
 
-def overcurrent_device(body: rq.Breaker | rq.Fuse) -> ds.OvercurrentDevice:
+def overcurrent_device(body: rq.Breaker | rq.Fuse | rq.Curve) -> ds.OvercurrentDevice | OwnCurve:
     """The device that a body describes."""
     if isinstance(body, rq.Breaker):
         return ds.Breaker(body.characteristic, body.rated_current_a)
+    if isinstance(body, rq.Curve):
+        return OwnCurve(body.rated_current_a, body.source, own_band(body.rated_current_a, *body.points.edges()))
     return ds.Fuse(body.fuse_system, body.rated_current_a)
+
+
+def _picked(point: Mapped, device: ds.OvercurrentDevice | OwnCurve) -> int | Band:
+    """Row of a device in the compiled table, or the band that it brings along."""
+    if isinstance(device, OwnCurve):
+        if "own-curve" not in point.cautions:
+            point.cautions.append("own-curve")
+        return device.band
+    return catalogue().rows.get((point.rules.rules.key, device), NO_DEVICE)
 
 
 def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
     numbers, choices, table = point.row.numbers, point.row.choices, catalogue()
-    choices[Choice.DEVICE], choices[Choice.RESIDUAL] = NO_DEVICE, NO_DEVICE
+    choices[Choice.RESIDUAL] = NO_DEVICE
     if (body := request.overcurrent_device) is not None:
         device = overcurrent_device(body)
-        point.device = device.designation
-        choices[Choice.DEVICE] = table.rows.get((point.rules.rules.key, device), NO_DEVICE)
+        point.device, point.row.device = device.designation, _picked(point, device)
         numbers[Number.DEVICE_RATED_CURRENT] = body.rated_current_a
         choices[Choice.MULTIPOLE] = int((body.poles or 1) > 2 or request.supply.phases == 3)
         if body.breaking_capacity_ka is not None:
             numbers[Number.BREAKING_CAPACITY_KA] = body.breaking_capacity_ka
+    for body in request.upstream_overcurrent_devices:
+        device = overcurrent_device(body)
+        point.upstream.append(device.designation)
+        point.row.upstream.append(_picked(point, device))
     own = [request.residual_current_device] if request.residual_current_device else []
     chain = own + request.upstream_residual_current_devices
     if chain:

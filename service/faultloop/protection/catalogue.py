@@ -2,14 +2,13 @@
 
 from dataclasses import dataclass
 from functools import lru_cache
-from typing import cast
 
 import numpy as np
 
 from faultloop.digests import digest
 from faultloop.protection.band import Band, BandTable, compile_bands
-from faultloop.protection.breakers import breaker_band, breaker_table
-from faultloop.protection.designations import Breaker, Characteristic, Fuse, OvercurrentDevice
+from faultloop.protection.breakers import breaker_band, breaker_tables
+from faultloop.protection.designations import Breaker, Fuse, OvercurrentDevice
 from faultloop.protection.fuses import fuse_band, fuse_families
 from faultloop.protection.residual import residual_band, residual_table
 from faultloop.rules.loader import shipped
@@ -32,7 +31,7 @@ class Catalogue:
 def listed_devices() -> list[OvercurrentDevice]:
     """Every overcurrent device held here, family by family."""
     breakers: list[OvercurrentDevice] = [
-        Breaker(cast(Characteristic, c), rated) for c in "BCD" for rated in breaker_table().ratings_a
+        Breaker(letter, rated) for letter, table in breaker_tables().items() for rated in table.ratings_a
     ]
     fuses: list[OvercurrentDevice] = [
         Fuse(f.fuse_system, r.rated_current_a) for f in fuse_families().values() for r in f.rating
@@ -86,7 +85,8 @@ def catalogue() -> Catalogue:
     }
     # A time-delayed device has no band in the standards.
     residual = {"general": residual_band("general"), "selective": residual_band("selective"), "time-delayed": Band(())}
-    told = [breaker_table(), *fuse_families().values(), residual_table()]
+    breakers = {table.standard: table for table in breaker_tables().values()}
+    told = [*breakers.values(), *fuse_families().values(), residual_table()]
     return Catalogue(
         overcurrent=compile_bands(list(bands.values())),
         residual=compile_bands(list(residual.values())),

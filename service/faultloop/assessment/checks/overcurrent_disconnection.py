@@ -1,4 +1,4 @@
-"""Would the overcurrent device clear an earth fault in the required time?"""
+"""Would the overcurrent device clear an earth fault in the required time, or one upstream of it?"""
 
 import numpy as np
 
@@ -9,7 +9,7 @@ from faultloop.assessment.checks.common import (
     loop_is_wanting,
     prerequisites_are_wanting,
 )
-from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
+from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing, Verdict
 from faultloop.assessment.points import Choice, Flags, Points
 from faultloop.assessment.quantities import Quantities
 
@@ -18,6 +18,8 @@ REASONS = (
     *PREREQUISITES,
     *LOOP,
     "device-missing",
+    "cleared-upstream",
+    "upstream-inside-uncertainty",
     "reading-over-range",
     "over-range-over-limit",
     "no-guaranteed-current",
@@ -34,13 +36,19 @@ def _judge(points: Points, q: Quantities) -> Judged:
     prerequisites_are_wanting(cases, q, Standing.UNDETERMINED)
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     loop_is_wanting(cases, q)
+    # The verdict rests on the circuit's own device; where it does not clear, either device interrupts the fault.
+    aided, upstream = q.overcurrent != Verdict.PASS, q.upstream.verdict
+    cases.when(aided & (upstream == Verdict.PASS), Standing.MET, "cleared-upstream")
+    hopeless = q.overcurrent < Verdict.MARGINAL
+    cases.when(hopeless & (upstream == Verdict.MARGINAL), Standing.UNDETERMINED, "upstream-inside-uncertainty")
+    aided &= (upstream == Verdict.PASS) | (hopeless & (upstream == Verdict.MARGINAL))
     unguaranteed = np.isinf(q.operating_current)
     cases.when(unguaranteed & (q.overcurrent_s.least > q.required_s), Standing.UNMET, "cannot-operate-in-time")
     cases.when(unguaranteed, Standing.UNDETERMINED, "no-guaranteed-current")
     open_end = np.isinf(q.compared.greatest) & (q.compared.least <= q.loop_limit)
     cases.when(open_end, Standing.UNDETERMINED, "reading-over-range")
     cases.when(np.isinf(q.compared.greatest), Standing.UNMET, "over-range-over-limit")
-    return cases.settle(q.compared, q.loop_limit)
+    return cases.settle(q.compared, np.where(aided, q.upstream.limit, q.loop_limit))
 
 
 CHECK = Check(
