@@ -54,8 +54,24 @@ def measured(
 
 
 @st.composite
+def curves(draw: st.DrawFn) -> Body:
+    """A caller's own curve in order, with or without least times."""
+    rated = draw(st.sampled_from([6.0, 16.0, 32.0, 63.0]))
+    multiples = sorted(draw(st.sets(st.sampled_from([1.3, 1.6, 2.5, 4.0, 5.0, 8.0, 12.0, 20.0]), min_size=1)))
+    times = sorted(draw(st.sets(st.sampled_from([3600.0, 60.0, 5.0, 1.0, 0.4, 0.2, 0.1, 0.01]), min_size=1)))[::-1]
+    greatest = [{"current_a": m * rated, "time_s": t} for m, t in zip(multiples, times, strict=False)]
+    points: Body = {"greatest": greatest}
+    if draw(st.booleans()):
+        first = greatest[0]
+        points["least"] = [{"current_a": first["current_a"] * 0.9, "time_s": first["time_s"] * 0.5}]
+    return {"kind": "curve", "rated_current_a": rated, "source": "a maker's sheet", "points": points}
+
+
+@st.composite
 def devices(draw: st.DrawFn) -> Body:
-    """Any overcurrent device held."""
+    """Any overcurrent device held, or now and then a curve of the caller's own."""
+    if draw(st.integers(0, 4)) == 0:
+        return draw(curves())
     device = draw(st.sampled_from(listed_devices()))
     body: Body = {"rated_current_a": device.rated_current_a}
     if isinstance(device, Breaker):
@@ -131,6 +147,7 @@ requests = st.fixed_dictionaries(
         "circuit": circuits,
         "board": boards,
         "overcurrent_device": devices(),
+        "upstream_overcurrent_devices": st.lists(devices(), max_size=2),
         "residual_current_device": residual_devices,
         "upstream_residual_current_devices": st.lists(residual_devices, max_size=2),
         "readings": all_readings,
@@ -165,6 +182,8 @@ def judgeable(draw: st.DrawFn, earthing: tuple[str, ...] = ("TN-S", "TN-C-S", "T
         "rules": draw(st.sampled_from(RULES)),
         "policy": draw(policies),
     }
+    if draw(st.integers(0, 3)) == 0:
+        request["upstream_overcurrent_devices"] = draw(st.lists(devices(), min_size=1, max_size=2))
     if draw(st.integers(0, 3)):
         request["residual_current_device"] = draw(residual_devices)
         read[TIMES] = {"1": draw(measured(between(5, 400), methods, exact))}

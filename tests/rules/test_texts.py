@@ -144,7 +144,7 @@ def test_every_limit_can_be_explained(device: str, policy: str) -> None:
 def test_sentences_are_used_and_have_a_variant_for_each_case() -> None:
     named = {word[1:] for said in all_said() for word in said.explanation.split() if word.startswith("@")}
     by_policy = ("limit", "upstream", "heating", "line-neutral")
-    variants = {name: POLICIES for name in by_policy} | {"loop": sorted(Basis.codes())}
+    variants = dict.fromkeys(by_policy, POLICIES) | {"loop": sorted(Basis.codes())}
     needed = {f"{name}.{v}" for name in named if name in variants for v in variants[name]}
     needed |= {name for name in named if name not in variants}
     assert needed <= set(TEXTS.sentences)

@@ -1,0 +1,222 @@
+"""Curves of the caller's own, overcurrent devices in series, and the families beside breakers B, C and D."""
+
+import copy
+from typing import Any
+
+import pytest
+from pydantic import ValidationError
+
+from faultloop import assess, assess_many
+from faultloop.digests import json_bytes, sha256
+from faultloop.exchange.render import request_bytes
+from faultloop.exchange.requests import AssessmentRequest
+from faultloop.replay import replay
+from tests.assessment.bodies import Body, breaker, cautions, copper, finding, fuse, live, readings, request, said
+
+CHECK = "overcurrent-disconnection"
+SOURCE = "data sheet 7, figure 2"
+
+
+def curve(*greatest: tuple[float, float], rated: float = 32.0, **more: Any) -> Body:
+    """A curve of the caller's own."""
+    points = [{"current_a": current, "time_s": time} for current, time in greatest]
+    return {"kind": "curve", "rated_current_a": rated, "source": SOURCE, "points": {"greatest": points}, **more}
+
+
+def answer(zs: float, device: Body | str, upstream: list[Body] | None = None, **more: Any) -> Body:
+    """Answer for a loop read with 230 V behind a device, without heating or uncertainty in the decision."""
+    policy = {"temperature": "none", "decision": "simple"}
+    body = request(readings(zs=live(zs)), device=device, policy=policy, rules="iec-60364", **more)
+    if upstream:
+        body["upstream_overcurrent_devices"] = upstream
+    return assess(body)
+
+
+@pytest.mark.parametrize(("zs", "verdict"), [(230 / 161, "pass"), (230 / 159, "fail"), (230 / 310, "pass")])
+def test_a_curve_is_held_at_its_points_and_never_between_them(zs: float, verdict: str) -> None:
+    found = finding(answer(zs, curve((80.0, 5.0), (160.0, 0.4), (320.0, 0.1))), CHECK)
+    assert found["verdict"] == verdict
+    assert found["limit"] == 1.4375
+
+
+def test_a_curve_without_a_point_in_time_promises_nothing() -> None:
+    # Between 5 s at 80 A and 0.1 s at 320 A any line through the points would cross 0.4 s near 200 A.
+    found = finding(answer(230 / 319, curve((80.0, 5.0), (320.0, 0.1))), CHECK)
+    assert (found["verdict"], found["limit"]) == ("fail", 0.71875)
+    found = finding(answer(0.3, curve((80.0, 5.0))), CHECK)
+    assert (found["verdict"], found["reason"]) == ("undetermined", "no-guaranteed-current")
+
+
+def test_a_curve_is_named_as_the_caller_s_own_with_a_caution() -> None:
+    told = answer(1.0, curve((160.0, 0.4)))
+    assert f"the caller's own curve of 32 A (source stated: {SOURCE})" in finding(told, CHECK)["explanation"]
+    assert "own-curve" in cautions(told)
+    assert "own-curve" in cautions(answer(1.0, "B32", [curve((160.0, 0.4))]))
+    assert "own-curve" not in cautions(answer(1.0, "B32"))
+
+
+def test_a_breaker_s_own_points_as_a_curve_give_the_breaker_s_verdict() -> None:
+    own = curve((1.45 * 32, 3600.0), (2.55 * 32, 60.0), (160.0, 0.1))
+    for zs in (0.5, 1.4, 1.45, 3.0):
+        one, other = (finding(answer(zs, device), CHECK) for device in (own, breaker("B32")))
+        assert (one["verdict"], one["limit"]) == (other["verdict"], other["limit"])
+
+
+def test_curves_of_many_points_do_not_touch_each_other() -> None:
+    quick, slow = curve((100.0, 0.1)), curve((200.0, 0.4), rated=63.0)
+    plain = request(readings(zs=live(1.0)))
+    bodies = [
+        {**plain, "overcurrent_device": quick},
+        plain,
+        {**plain, "overcurrent_device": slow},
+        {**plain, "upstream_overcurrent_devices": [slow, quick]},
+        {
+            **plain,
+            "overcurrent_device": slow,
+            "upstream_overcurrent_devices": [fuse(63, "bs-3036") | {"rated_current_a": 60}],
+        },
+    ]
+    assert [json_bytes(a) for a in assess_many(bodies)] == [json_bytes(assess(body)) for body in bodies]
+
+
+@pytest.mark.parametrize(
+    ("change", "pointer"),
+    [
+        ({"points": {"greatest": []}}, ("points", "greatest")),
+        ({"points": {"greatest": [{"current_a": 160, "time_s": 0.4}, {"current_a": 100, "time_s": 0.1}]}}, ("points", "greatest")),
+        ({"points": {"greatest": [{"current_a": 160, "time_s": 0.4}, {"current_a": 200, "time_s": 0.4}]}}, ("points", "greatest")),
+        ({"points": {"greatest": [{"current_a": 160, "time_s": 0.0}]}}, ("points", "greatest", 0, "time_s")),
+        ({"points": {"greatest": [{"current_a": -1, "time_s": 1}]}}, ("points", "greatest", 0, "current_a")),
+        ({"points": {"greatest": [{"current_a": "160", "time_s": 1}]}}, ("points", "greatest", 0, "current_a")),
+        ({"points": {"greatest": [{"current_a": float("nan"), "time_s": 1}]}}, ("points", "greatest", 0, "current_a")),
+        ({"points": {"greatest": [{"current_a": 160}]}}, ("points", "greatest", 0, "time_s")),
+        ({"points": {"greatest": [{"current_a": 160, "time_s": 1, "tolerance": 1}]}}, ("points", "greatest", 0, "tolerance")),
+        ({"points": {"greatest": [{"current_a": 5, "time_s": 0.4}]}}, ()),
+        ({"points": {"greatest": [{"current_a": 100, "time_s": 1}], "least": [{"current_a": 150, "time_s": 2}]}}, ()),
+        ({"points": {"greatest": [{"current_a": 100.0 + n, "time_s": 100.0 - n} for n in range(65)]}}, ("points", "greatest")),
+        ({"source": ""}, ("source",)),
+        ({"source": None}, ("source",)),
+        ({"rated_current_a": 0}, ("rated_current_a",)),
+    ],
+)  # fmt: skip
+def test_a_bad_curve_is_refused_at_its_field(change: Body, pointer: tuple[str | int, ...]) -> None:
+    body = request(readings(zs=1.0), device={**curve((160.0, 0.4)), **change})
+    with pytest.raises(ValidationError) as refusal:
+        AssessmentRequest.model_validate(body)
+    assert [error["loc"] for error in refusal.value.errors()] == [("overcurrent_device", "curve", *pointer)]
+
+
+@pytest.mark.parametrize("missing", ["source", "points", "rated_current_a"])
+def test_a_curve_without_source_points_or_rating_is_refused(missing: str) -> None:
+    device = curve((160.0, 0.4))
+    del device[missing]
+    with pytest.raises(ValidationError, match="Field required"):
+        AssessmentRequest.model_validate(request(readings(zs=1.0), device=device))
+
+
+def test_a_stored_curve_replays_to_the_same_bytes_and_every_point_is_in_the_digest() -> None:
+    body = request(readings(zs=live(1.0)), device=curve((160.0, 0.4)))
+    body["upstream_overcurrent_devices"] = [curve((500.0, 0.3), rated=63.0), breaker("C63")]
+    asked = AssessmentRequest.model_validate(body)
+    stored, told = request_bytes(asked), json_bytes(assess(body))
+    again = replay(stored, told, assess(body)["provenance"]["rules"], sha256(stored))
+    assert again.identical, again.differences
+    other = copy.deepcopy(body)
+    other["upstream_overcurrent_devices"][0]["points"]["greatest"][0]["time_s"] = 0.2
+    assert assess(other)["provenance"]["input_digest"] != sha256(stored)
+
+
+def test_an_upstream_device_that_clears_in_time_counts_and_is_named() -> None:
+    # C32 needs 320 A; B40 in front of it 200 A: limits 0.71875 and 1.15 ohm.
+    alone, backed = answer(1.0, "C32"), answer(1.0, "C32", [breaker("B40")])
+    assert finding(alone, CHECK)["verdict"] == "fail"
+    found = finding(backed, CHECK)
+    assert (found["verdict"], found["reason"], found["limit"]) == ("pass", "cleared-upstream", 1.15)
+    assert "C32 itself is sure to operate within 0.4 s only from 320 A" in found["explanation"]
+    assert "B40" in found["explanation"]
+    assert "everything that it feeds goes off with this circuit" in found["explanation"]
+    assert "upstream-cuts-off-more" in cautions(backed)
+
+
+def test_the_circuit_s_own_device_decides_where_it_clears() -> None:
+    backed = answer(0.5, "C32", [breaker("B40")])
+    found = finding(backed, CHECK)
+    assert (found["verdict"], found["reason"], found["limit"]) == ("pass", "within-limit", 0.71875)
+    assert "upstream-cuts-off-more" not in cautions(backed)
+    assert found == finding(answer(0.5, "C32"), CHECK)
+
+
+def test_the_quickest_upstream_device_is_named_wherever_it_stands() -> None:
+    chains = [[breaker("D63"), breaker("B40")], [breaker("B40"), breaker("D63")]]
+    first, second = (finding(answer(1.0, "C32", chain), CHECK) for chain in chains)
+    assert first == second
+    assert "B40" in first["explanation"]
+    assert "D63" not in first["explanation"]
+
+
+def test_an_upstream_device_that_does_not_clear_changes_nothing() -> None:
+    alone, backed = (finding(answer(1.0, "C32", chain), CHECK) for chain in (None, [breaker("D63")]))
+    assert alone == backed
+
+
+def test_an_upstream_limit_inside_the_uncertainty_is_open() -> None:
+    body = request(readings(zs=live(1.15)), device="C32", rules="iec-60364", policy={"temperature": "none"})
+    assert finding(assess(body), CHECK)["verdict"] == "fail"
+    found = finding(assess({**body, "upstream_overcurrent_devices": [breaker("B40")]}), CHECK)
+    assert (found["verdict"], found["reason"]) == ("undetermined", "upstream-inside-uncertainty")
+    assert found["settled_by"]
+
+
+def test_times_are_those_of_the_series() -> None:
+    # With the loop hot and read low some 177 A flow: the C32 promises 60 s there, the B32 0.1 s from 160 A.
+    alone, backed = (answer(1.0, "C32", chain)["quantities"] for chain in (None, [breaker("B32")]))
+    assert alone["disconnection_time_s"]["greatest"] == 60
+    assert backed["disconnection_time_s"]["greatest"] == 0.1
+    assert backed["disconnection_time_s"]["by"] == "overcurrent-device"
+
+
+def test_conductor_is_held_against_the_time_of_the_series() -> None:
+    # 1.5 mm2 bears 230 A for (115 x 1.5 / 230)^2 = 0.56 s: not the 60 s of the C32, but the 0.1 s of the B32.
+    read = readings(zs=live(0.9), z_ln=live(1.0))
+    body = request(read, device="C32", rules="iec-60364", line_conductor=copper(1.5))
+    check = "line-neutral-disconnection"
+    assert finding(assess(body), check)["verdict"] == "undetermined"
+    backed = finding(assess({**body, "upstream_overcurrent_devices": [breaker("B32")]}), check)
+    assert (backed["verdict"], backed["reason"]) == ("pass", "conductor-withstands")
+
+
+def test_presence_upstream_is_no_documented_back_up_of_breaking_capacity() -> None:
+    weak = breaker("B32", breaking_capacity_ka=6.0)
+    strong = fuse(63, "bs-88-3") | {"breaking_capacity_ka": 33.0}
+    board = {"prospective_current_ka": 10.0}
+    alone, backed = (answer(0.5, weak, chain, board=board) for chain in (None, [strong]))
+    assert finding(backed, "breaking-capacity") == finding(alone, "breaking-capacity")
+    assert finding(backed, "breaking-capacity")["reason"] == "back-up-not-documented"
+
+
+def test_an_upstream_device_does_not_stand_in_for_an_unknown_one() -> None:
+    body = request(readings(zs=live(0.3)), device=None)
+    body["upstream_overcurrent_devices"] = [breaker("B32")]
+    found = finding(assess(body), CHECK)
+    assert (found["verdict"], found["reason"]) == ("undetermined", "device-missing")
+
+
+@pytest.mark.parametrize(
+    ("device", "limit"),
+    [
+        (breaker("K20"), 230 / 280),
+        (breaker("Z10"), 230 / 30),
+        (fuse(20, "bs-88-3"), 230 / 113),
+        ({"kind": "fuse", "fuse_system": "bs-3036", "rated_current_a": 15}, 230 / 90),
+        ({"kind": "fuse", "fuse_system": "bs-1362", "rated_current_a": 13}, 230 / 95),
+    ],
+)
+def test_the_other_families_are_judged_at_their_currents(device: Body, limit: float) -> None:
+    assert finding(answer(0.3, device), CHECK)["limit"] == pytest.approx(limit, rel=1e-5)
+    assert not [text for text in said(answer(0.3, device)) if "{" in text]
+
+
+def test_motor_fuses_are_refused_with_the_reason_and_a_way_out() -> None:
+    device = {**fuse(50), "utilisation_category": "aM"}
+    with pytest.raises(ValidationError, match=r"aM fuse-links are not held.*maker's points as a curve"):
+        AssessmentRequest.model_validate(request(readings(zs=1.0), device=device))
