@@ -17,10 +17,14 @@ CHECK = "overcurrent-disconnection"
 SOURCE = "data sheet 7, figure 2"
 
 
+def edge(*greatest: tuple[Any, Any]) -> Body:
+    """Points of a curve, whatever they are."""
+    return {"points": {"greatest": [{"current_a": current, "time_s": time} for current, time in greatest]}}
+
+
 def curve(*greatest: tuple[float, float], rated: float = 32.0, **more: Any) -> Body:
     """A curve of the caller's own."""
-    points = [{"current_a": current, "time_s": time} for current, time in greatest]
-    return {"kind": "curve", "rated_current_a": rated, "source": SOURCE, "points": {"greatest": points}, **more}
+    return {"kind": "curve", "rated_current_a": rated, "source": SOURCE, **edge(*greatest), **more}
 
 
 def answer(zs: float, device: Body | str, upstream: list[Body] | None = None, **more: Any) -> Body:
@@ -82,18 +86,18 @@ def test_curves_of_many_points_do_not_touch_each_other() -> None:
 @pytest.mark.parametrize(
     ("change", "pointer"),
     [
-        ({"points": {"greatest": []}}, ("points", "greatest")),
-        ({"points": {"greatest": [{"current_a": 160, "time_s": 0.4}, {"current_a": 100, "time_s": 0.1}]}}, ("points", "greatest")),
-        ({"points": {"greatest": [{"current_a": 160, "time_s": 0.4}, {"current_a": 200, "time_s": 0.4}]}}, ("points", "greatest")),
-        ({"points": {"greatest": [{"current_a": 160, "time_s": 0.0}]}}, ("points", "greatest", 0, "time_s")),
-        ({"points": {"greatest": [{"current_a": -1, "time_s": 1}]}}, ("points", "greatest", 0, "current_a")),
-        ({"points": {"greatest": [{"current_a": "160", "time_s": 1}]}}, ("points", "greatest", 0, "current_a")),
-        ({"points": {"greatest": [{"current_a": float("nan"), "time_s": 1}]}}, ("points", "greatest", 0, "current_a")),
+        (edge(), ("points", "greatest")),
+        (edge((160, 0.4), (100, 0.1)), ("points", "greatest")),
+        (edge((160, 0.4), (200, 0.4)), ("points", "greatest")),
+        (edge(*[(100.0 + n, 100.0 - n) for n in range(65)]), ("points", "greatest")),
+        (edge((160, 0.0)), ("points", "greatest", 0, "time_s")),
+        (edge((-1, 1)), ("points", "greatest", 0, "current_a")),
+        (edge(("160", 1)), ("points", "greatest", 0, "current_a")),
+        (edge((float("nan"), 1)), ("points", "greatest", 0, "current_a")),
         ({"points": {"greatest": [{"current_a": 160}]}}, ("points", "greatest", 0, "time_s")),
-        ({"points": {"greatest": [{"current_a": 160, "time_s": 1, "tolerance": 1}]}}, ("points", "greatest", 0, "tolerance")),
-        ({"points": {"greatest": [{"current_a": 5, "time_s": 0.4}]}}, ()),
+        ({"points": {"greatest": [{"current_a": 160, "time_s": 1}], "fastest": []}}, ("points", "fastest")),
+        (edge((5, 0.4)), ()),
         ({"points": {"greatest": [{"current_a": 100, "time_s": 1}], "least": [{"current_a": 150, "time_s": 2}]}}, ()),
-        ({"points": {"greatest": [{"current_a": 100.0 + n, "time_s": 100.0 - n} for n in range(65)]}}, ("points", "greatest")),
         ({"source": ""}, ("source",)),
         ({"source": None}, ("source",)),
         ({"rated_current_a": 0}, ("rated_current_a",)),

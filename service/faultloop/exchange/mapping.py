@@ -103,11 +103,11 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
 
-def overcurrent_device(body: rq.Breaker | rq.Fuse | rq.Curve) -> ds.OvercurrentDevice | OwnCurve:
+def overcurrent_device(body: rq.Breaker | rq.Fuse | rq.OwnCurve) -> ds.OvercurrentDevice | OwnCurve:
     """The device that a body describes."""
     if isinstance(body, rq.Breaker):
         return ds.Breaker(body.characteristic, body.rated_current_a)
-    if isinstance(body, rq.Curve):
+    if isinstance(body, rq.OwnCurve):
         return OwnCurve(body.rated_current_a, body.source, own_band(body.rated_current_a, *body.points.edges()))
     return ds.Fuse(body.fuse_system, body.rated_current_a)
 

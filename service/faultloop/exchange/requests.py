@@ -159,22 +159,22 @@ class Fuse(Closed):
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
 
-class CurvePoint(Closed):
+class OwnCurvePoint(Closed):
     """One point of the caller's own curve."""
 
     current_a: Annotated[float, number("A", most=1_000_000, positive=True, description="Current, r.m.s.")]
     time_s: Annotated[float, number("s", most=1_000_000, positive=True, description="Operating time")]
 
 
-def _in_order(points: list[CurvePoint]) -> list[CurvePoint]:
+def _in_order(points: list[OwnCurvePoint]) -> list[OwnCurvePoint]:
     refuse_disorder([(point.current_a, point.time_s) for point in points])
     return points
 
 
-CurveEdge = Annotated[list[CurvePoint], Field(max_length=64), AfterValidator(_in_order)]
+CurveEdge = Annotated[list[OwnCurvePoint], Field(max_length=64), AfterValidator(_in_order)]
 
 
-class CurvePoints(Closed):
+class OwnCurvePoints(Closed):
     """Edges of a curve: currents rise and times fall from point to point, and nothing between them is promised."""
 
     greatest: Annotated[
@@ -190,24 +190,24 @@ class CurvePoints(Closed):
         return greatest, least
 
 
-class Curve(Closed):
+class OwnCurve(Closed):
     """A device by the caller's own points, such as a maker's; the service cannot vouch for them."""
 
     kind: Literal["curve"]
     rated_current_a: Annotated[float, number("A", most=6300, positive=True, description="Rated current or setting")]
     source: Annotated[Label, Field(description="Where the points were read: document, edition, figure")]
-    points: CurvePoints
+    points: OwnCurvePoints
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
     @model_validator(mode="after")
-    def _band_holds(self) -> "Curve":
+    def _band_holds(self) -> "OwnCurve":
         """Refuse edges that contradict the rated current or each other."""
         own_band(self.rated_current_a, *self.points.edges())
         return self
 
 
-OvercurrentDevice = Annotated[Breaker | Fuse | Curve, Field(discriminator="kind")]
+OvercurrentDevice = Annotated[Breaker | Fuse | OwnCurve, Field(discriminator="kind")]
 
 
 class ResidualCurrentDevice(Closed):
