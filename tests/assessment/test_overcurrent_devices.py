@@ -53,7 +53,7 @@ def test_a_curve_without_a_point_in_time_promises_nothing() -> None:
 
 def test_a_curve_is_named_as_the_caller_s_own_with_a_caution() -> None:
     told = answer(1.0, curve((160.0, 0.4)))
-    assert f"the caller's own curve of 32 A (source stated: {SOURCE})" in finding(told, CHECK)["explanation"]
+    assert f"Caller's own curve of 32 A (source stated: “{SOURCE}”)" in finding(told, CHECK)["explanation"]
     assert "own-curve" in cautions(told)
     assert "own-curve" in cautions(answer(1.0, "B32", [curve((160.0, 0.4))]))
     assert "own-curve" not in cautions(answer(1.0, "B32"))

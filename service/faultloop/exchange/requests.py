@@ -171,18 +171,20 @@ def _in_order(points: list[OwnCurvePoint]) -> list[OwnCurvePoint]:
     return points
 
 
-CurveEdge = Annotated[list[OwnCurvePoint], Field(max_length=64), AfterValidator(_in_order)]
-
 
 class OwnCurvePoints(Closed):
     """Edges of a curve: currents rise and times fall from point to point, and nothing between them is promised."""
 
     greatest: Annotated[
-        CurveEdge, Field(min_length=1, description="At this current or above it operates within the time")
+        list[OwnCurvePoint],
+        Field(min_length=1, max_length=64, description="At this current or above it operates within the time"),
+        AfterValidator(_in_order),
     ]
-    least: Annotated[CurveEdge, Field(description="At this current or below it does not operate within the time")] = (
-        Field(default_factory=list)
-    )
+    least: Annotated[
+        list[OwnCurvePoint],
+        Field(max_length=64, description="At this current or below it does not operate within the time"),
+        AfterValidator(_in_order),
+    ] = Field(default_factory=list)
 
     def edges(self) -> tuple[list[tuple[float, float]], list[tuple[float, float]]]:
         """Greatest and least times as pairs of current and time."""
