@@ -68,10 +68,23 @@ def curves(draw: st.DrawFn) -> Body:
 
 
 @st.composite
+def moulded_cases(draw: st.DrawFn) -> Body:
+    """A moulded-case breaker with settings that fit together."""
+    rated = draw(st.sampled_from([25.0, 63.0, 160.0]))
+    overload = draw(st.sampled_from([0.5, 0.8, 1.0])) * rated
+    settings = {"overload_current_a": overload}
+    if draw(st.booleans()):
+        settings |= {"short_time_current_a": 4 * overload, "short_time_greatest_s": draw(st.sampled_from([0.1, 0.35]))}
+    if draw(st.booleans()):
+        settings["instantaneous_current_a"] = draw(st.sampled_from([5.0, 10.0])) * overload
+    return {"kind": "moulded-case-circuit-breaker", "rated_current_a": rated, "settings": settings}
+
+
+@st.composite
 def devices(draw: st.DrawFn) -> Body:
-    """Any overcurrent device held, or now and then a curve of the caller's own."""
-    if draw(st.integers(0, 4)) == 0:
-        return draw(curves())
+    """Any overcurrent device held, or now and then one that the request describes by points or settings."""
+    if (way := draw(st.integers(0, 7))) < 2:
+        return draw(curves() if way else moulded_cases())
     device = draw(st.sampled_from(listed_devices()))
     body: Body = {"rated_current_a": device.rated_current_a}
     if isinstance(device, Breaker):

@@ -10,6 +10,7 @@ from faultloop import assess, assess_many
 from faultloop.digests import json_bytes, sha256
 from faultloop.exchange.render import request_bytes
 from faultloop.exchange.requests import AssessmentRequest
+from faultloop.protection.fuses import fuse_families
 from faultloop.replay import replay
 from tests.assessment.bodies import Body, breaker, cautions, copper, finding, fuse, live, readings, request, said
 
@@ -224,3 +225,44 @@ def test_motor_fuses_are_refused_with_the_reason_and_a_way_out() -> None:
     device = {**fuse(50), "utilisation_category": "aM"}
     with pytest.raises(ValidationError, match=r"aM fuse-links are not held.*maker's points as a curve"):
         AssessmentRequest.model_validate(request(readings(zs=1.0), device=device))
+
+
+def moulded_case(rated: float = 250.0, **settings: float) -> Body:
+    """A moulded-case breaker."""
+    return {"kind": "moulded-case-circuit-breaker", "rated_current_a": rated, "settings": settings}
+
+
+def test_a_moulded_case_breaker_is_judged_at_its_settings() -> None:
+    told = answer(0.095, moulded_case(overload_current_a=200, instantaneous_current_a=2000))
+    found = finding(told, CHECK)
+    # 230 V over 1.2 times 2000 A.
+    assert (found["verdict"], found["limit"]) == ("pass", 0.0958333)
+    assert "Moulded-case breaker of 250 A (Ir 200 A, Ii 2000 A)" in found["explanation"]
+    assert "settings-as-stated" in cautions(told)
+
+
+def test_the_time_setting_of_the_overload_release_earns_no_credit() -> None:
+    told = answer(0.3, moulded_case(overload_current_a=200, overload_time_s=1))
+    assert finding(told, CHECK)["reason"] == "no-guaranteed-current"
+
+
+@pytest.mark.parametrize(
+    ("settings", "place"),
+    [
+        ({}, ("settings", "overload_current_a")),
+        ({"overload_current_a": 200, "ir_a": 200}, ("settings", "ir_a")),
+        ({"overload_current_a": 300}, ()),
+        ({"overload_current_a": 200, "instantaneous_current_a": 10}, ()),
+        ({"overload_current_a": 200, "short_time_current_a": 1000}, ()),
+    ],
+)
+def test_bad_settings_are_refused_at_their_field(settings: Body, place: tuple[str, ...]) -> None:
+    with pytest.raises(ValidationError) as refusal:
+        AssessmentRequest.model_validate(request(readings(zs=1.0), device=moulded_case(**settings)))
+    kind = "moulded-case-circuit-breaker"
+    assert [error["loc"] for error in refusal.value.errors()] == [("overcurrent_device", kind, *place)]
+
+
+def test_every_fuse_system_held_can_be_asked_for() -> None:
+    schema = AssessmentRequest.model_json_schema()["$defs"]["Fuse"]["properties"]["fuse_system"]
+    assert schema["enum"] == list(fuse_families())

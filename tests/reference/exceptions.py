@@ -62,9 +62,6 @@ UNUSED: dict[str, dict[str, str]] = {
         "DT-old41": "superseded in 2005, and IT is not judged yet",
     },
     "longest_lengths": {"LL-": "the conventional method without a loop is not offered"},
-    "operating_currents": {
-        "OC-mcb-0043": "moulded-case breakers with settings are not held",
-    },
     "residual_limits": {"RL-25-": "no shipped set has a reduced limit", "RL-24-": "no shipped set has a reduced limit"},
     "residual_times": {
         "RT-BS4293-": "delays by a superseded standard are not held",

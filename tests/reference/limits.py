@@ -13,6 +13,7 @@ from faultloop.assessment.rule_table import required_time, rule_table
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.protection.catalogue import catalogue, residual_multiple
 from faultloop.protection.designations import Breaker, Characteristic, Delay, parse_overcurrent
+from faultloop.protection.moulded_case import Settings, moulded_case_band
 from faultloop.rules.loader import shipped
 from tests.reference.published import EDITIONS, Comparison, Row, compared, oracles, rules_for, seconds
 
@@ -131,6 +132,17 @@ def industrial_breakers() -> Iterator[Comparison]:
         slow, fast = slow_and_fast(letter, 20.0)
         ends = {**rows[name], "hold": rows[name]["value"][0], "trip": rows[name]["value"][1]}
         yield compared(ends, end, end, lambda e=fast if end == "hold" else slow: at_time(e, 0.2))
+
+
+def moulded_case() -> Iterator[Comparison]:
+    """Tolerance of magnetic releases and conventional currents of breakers that are set."""
+    rows = {row["id"]: row for row in oracles("operating_currents", "OC-mcb-")}
+    band = moulded_case_band(Settings(200.0, instantaneous_a=2000.0))
+    tolerance, holds, trips = (rows[f"OC-mcb-{number:04d}"] for number in (43, 44, 45))
+    yield compared(tolerance, "above", "value", lambda: 100.0 * (band.slow[1][0] / 2000.0 - 1.0))
+    yield compared(tolerance, "below", "value", lambda: 100.0 * (1.0 - band.fast[1][0] / 2000.0))
+    yield compared(holds, "Ir", "value", lambda: band.fast[0][0] / 200.0)
+    yield compared(trips, "Ir", "value", lambda: band.slow[0][0] / 200.0)
 
 
 def plug_fuses() -> Iterator[Comparison]:
@@ -272,6 +284,6 @@ def residual_use() -> Iterator[Comparison]:
 def comparisons() -> list[Comparison]:
     """Everything of this module."""
     parts = (loops, four_fifths, fuse_currents, breaker_multiples, breaker_tests, fuse_conventions)
-    families = (industrial_breakers, plug_fuses)
+    families = (industrial_breakers, moulded_case, plug_fuses)
     more = (electrodes, residual_times, residual_use, disconnection_times)
     return [comparison for part in (*parts, *families, *more) for comparison in part()]

@@ -25,12 +25,14 @@ from faultloop.assessment.points import (
 )
 from faultloop.assessment.rule_table import rule_table
 from faultloop.electrical.measurement import coverage_scale
+from faultloop.exchange import overcurrent as oc
 from faultloop.exchange import requests as rq
 from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.protection import designations as ds
 from faultloop.protection.band import Band
 from faultloop.protection.catalogue import catalogue
 from faultloop.protection.curves import OwnCurve, own_band
+from faultloop.protection.moulded_case import MouldedCase
 from faultloop.rules.conductors import adiabatic_k, ohm_per_km, service_temperature
 from faultloop.rules.loader import LoadedRules, resolve
 
@@ -103,20 +105,21 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
 
-def overcurrent_device(body: rq.Breaker | rq.Fuse | rq.OwnCurve) -> ds.OvercurrentDevice | OwnCurve:
+def overcurrent_device(body: oc.OvercurrentDevice) -> ds.OvercurrentDevice | OwnCurve | MouldedCase:
     """The device that a body describes."""
-    if isinstance(body, rq.Breaker):
+    if isinstance(body, oc.Breaker):
         return ds.Breaker(body.characteristic, body.rated_current_a)
-    if isinstance(body, rq.OwnCurve):
+    if isinstance(body, oc.OwnCurve):
         return OwnCurve(body.rated_current_a, body.source, own_band(body.rated_current_a, *body.points.edges()))
+    if isinstance(body, oc.MouldedCase):
+        return MouldedCase(body.rated_current_a, body.settings.told())
     return ds.Fuse(body.fuse_system, body.rated_current_a)
 
 
-def _picked(point: Mapped, device: ds.OvercurrentDevice | OwnCurve) -> int | Band:
-    """Row of a device in the compiled table, or the band that it brings along."""
-    if isinstance(device, OwnCurve):
-        if "own-curve" not in point.cautions:
-            point.cautions.append("own-curve")
+def _picked(point: Mapped, device: ds.OvercurrentDevice | OwnCurve | MouldedCase) -> int | Band:
+    """Row of a device in the compiled table, or the band that it brings along, which is warned of."""
+    if isinstance(device, OwnCurve | MouldedCase):
+        point.cautions.append("own-curve" if isinstance(device, OwnCurve) else "settings-as-stated")
         return device.band
     return catalogue().rows.get((point.rules.rules.key, device), NO_DEVICE)
 

@@ -58,6 +58,7 @@ class BreakerTable(Sheet):
     kind: Literal["miniature-circuit-breaker"]
     standard: Text
     ratings_a: list[float]
+    magnetic_tolerance: Parameter | None = None
     conventional: Conventional
     thermal: Thermal | None = None
     instantaneous: Instantaneous
