@@ -188,6 +188,16 @@ def test_conductor_is_held_against_the_time_of_the_series() -> None:
     assert finding(assess(body), check)["verdict"] == "undetermined"
     backed = finding(assess({**body, "upstream_overcurrent_devices": [breaker("B32")]}), check)
     assert (backed["verdict"], backed["reason"]) == ("pass", "conductor-withstands")
+    assert "for as long as C32 with B32 upstream may take" in backed["explanation"]
+
+
+def test_the_step_of_a_device_upstream_proves_nothing_that_its_time_does_not_show() -> None:
+    # 0.75 mm2 bears 250 A for (115 x 0.75 / 400)^2 = 0.05 s: less than the 0.1 s of the B40.
+    body = request(
+        readings(zs=live(0.5), z_ln=live(0.5)), device="D63", rules="iec-60364", line_conductor=copper(0.75)
+    )
+    backed = finding(assess({**body, "upstream_overcurrent_devices": [breaker("B40")]}), "line-neutral-disconnection")
+    assert (backed["verdict"], backed["reason"]) == ("undetermined", "not-cleared-at-once")
 
 
 def test_presence_upstream_is_no_documented_back_up_of_breaking_capacity() -> None:

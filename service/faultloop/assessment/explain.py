@@ -97,7 +97,7 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     "withstand": _withstand,
     "withstand_told": _withstand_told,
     "upstream": lambda q: q.phrases["no-device"],
-    "overcurrent_left": lambda q: q["device"] if "upstream" not in q else q.phrases["series"].format_map(q),
+    "series": lambda q: q.phrases["series"].format_map(q) if "all_upstream" in q else q["device"],
     "own_current": _own_current,
     "multiple_in": lambda q: q.number("i_ln") / q.number("in_device"),
     "overcurrent_time": _overcurrent_time,
@@ -154,6 +154,7 @@ class Explainer:
         quoted["rules"] = names.rules
         if names.upstream:
             quoted["upstream"] = names.upstream[self._upstream[at]]
+            quoted["all_upstream"] = ", ".join(names.upstream)
         return quoted
 
     def said(self, check: int, reason: int, at: int, quoted: Quoted) -> tuple[str, str | None, list[str]]:

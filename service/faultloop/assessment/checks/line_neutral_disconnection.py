@@ -65,7 +65,8 @@ def _withstands(points: Points, q: Quantities) -> Flags:
 
     Within one step of the band the time is constant and the withstand falls with the current, so the
     greatest current of each step is tried: both ends, and just below every tested current between them.
-    From 0.1 s down let-through energy decides, not the step of the band, which then refutes nothing.
+    From 0.1 s down let-through energy decides, not the step of the band, which then refutes nothing; that
+    holds for the circuit's own device, while one upstream is credited only with what its step shows.
     """
     voltage, series = points.number(Number.VOLTAGE), (points.choice(Choice.DEVICE), *points.upstream)
     k, area = points.number(Number.ADIABATIC_K), points.number(Number.LINE_MM2)
@@ -74,8 +75,8 @@ def _withstands(points: Points, q: Quantities) -> Flags:
     edges = np.nextafter(np.concatenate([points.overcurrent.slow_current[row].T for row in series]), 0.0)
     inside = (edges > least) & (edges < greatest)
     tried = np.concatenate([least[None], greatest[None], np.where(inside, edges, least)])
-    time = greatest_time(points, tried)
-    borne = (time <= SHORTEST_ADIABATIC_S) | (time <= withstand_time(k, area, tried))
+    own = points.overcurrent.greatest_time(points.choice(Choice.DEVICE), tried)
+    borne = (own <= SHORTEST_ADIABATIC_S) | (greatest_time(points, tried) <= withstand_time(k, area, tried))
     everywhere: Flags = np.logical_and.reduce(borne, axis=0)
     return everywhere & ~np.isnan(k * area)
 
