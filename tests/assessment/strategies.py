@@ -90,7 +90,7 @@ def devices(draw: st.DrawFn) -> Body:
     if isinstance(device, Breaker):
         body |= {"kind": "miniature-circuit-breaker", "characteristic": device.characteristic}
     else:
-        body |= {"kind": "fuse", "fuse_system": device.fuse_system, "utilisation_category": "gG"}
+        body |= {"kind": "fuse", "fuse_system": device.fuse_system, "utilisation_category": device.utilisation_category}
     return body | draw(st.fixed_dictionaries({}, optional={"breaking_capacity_ka": between(0, 80)}))
 
 

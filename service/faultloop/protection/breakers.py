@@ -73,7 +73,18 @@ def breaker_tables() -> dict[Characteristic, BreakerTable]:
 
 
 def breaker_table(characteristic: Characteristic = "B") -> BreakerTable:
-    """The table that holds a characteristic."""
+    """Give the table that holds a characteristic.
+
+    Parameters
+    ----------
+    characteristic : {"B", "C", "D", "K", "Z"}
+        Instantaneous characteristic.
+
+    Returns
+    -------
+    BreakerTable
+        What its file says; the currents in it are multiples of the rated current.
+    """
     return breaker_tables()[characteristic]
 
 

@@ -49,6 +49,11 @@ class Fuse:
         """Trade shorthand."""
         return f"{fuse_families()[self.fuse_system].designation} {self.rated_current_a:g}"
 
+    @property
+    def utilisation_category(self) -> str | None:
+        """Utilisation category; older British fuses have none."""
+        return fuse_families()[self.fuse_system].utilisation_category
+
 
 @dataclass(frozen=True, slots=True)
 class ResidualDevice:
