@@ -109,28 +109,37 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
 _OWN_PHRASES = ("side", "residual_limit", "z_or_value", "excess_told")
 
 
-@lru_cache(maxsize=4096)
-def _template(language: str, check: str, reason: str, policy: str, basis: str) -> tuple[str, bool, Said]:
-    """The template of a reason, whether it quotes anything at all, and what else is said."""
+Template = tuple[str, bool, Said]
+
+
+@lru_cache(maxsize=256)
+def _templates(language: str, policy: str, basis: str) -> list[list[Template]]:
+    """For every reason of every check: its template, whether it quotes anything at all, and what else is said."""
     told = texts(language)
-    said = told.said(check, reason)
     variants = {"limit": policy, "heating": policy, "line-neutral": policy, "loop": basis}
-    template = told.expanded(said.explanation, variants)
-    return template, "{" in template + (said.settled_by or ""), said
+
+    def template(said: Said) -> Template:
+        text = told.expanded(said.explanation, variants)
+        return text, "{" in text + (said.settled_by or ""), said
+
+    return [[template(told.said(check.id, reason)) for reason in check.reasons] for check in CHECKS]
 
 
 class Explainer:
     """Explains the points of one outcome; the columns are turned to plain rows once."""
 
     def __init__(self, points: Points, outcome: Outcome, language: str = "en") -> None:
-        self._language, self._phrases = language, texts(language).phrases
+        self._phrases = texts(language).phrases
         words, found = self._phrases["open-end"], outcome.findings
         with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
             columns = _columns(points, outcome)
         self._names = tuple(columns)
         self._rows = list(zip(*(_opened(column, words) for column in columns.values()), strict=True))
-        self._policies = points.choices[Choice.TEMPERATURE_POLICY].tolist()
-        self._bases = outcome.quantities.loops.basis.tolist()
+        policies, bases = points.choices[Choice.TEMPERATURE_POLICY].tolist(), outcome.quantities.loops.basis.tolist()
+        self._templates = [
+            _templates(language, _POLICIES[policy], _BASES[basis])
+            for policy, basis in zip(policies, bases, strict=True)
+        ]
         own = (found.nominal.tolist(), found.limit.tolist(), found.least.tolist(), found.greatest.tolist())
         self._own = [
             list(zip(nominal, limit, least, _opened(greatest, words), strict=True))
@@ -147,9 +156,7 @@ class Explainer:
 
     def said(self, check: int, reason: int, at: int, quoted: Quoted) -> tuple[str, str | None, list[str]]:
         """Explanation, question and cautions of one finding."""
-        policy, basis = _POLICIES[self._policies[at]], _BASES[self._bases[at]]
-        known = CHECKS[check]
-        template, quotes, said = _template(self._language, known.id, known.reasons[reason], policy, basis)
+        template, quotes, said = self._templates[at][check][reason]
         if not quotes:
             return template, said.settled_by, said.cautions
         own = self._own[check][at]
@@ -222,9 +229,9 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
     return {name: column.tolist() for name, column in columns.items()}
 
 
-def cautions_of(points: Points, outcome: Outcome, at: int, named: set[str], language: str = "en") -> list[str]:
-    """Cautions that an answer carries: the standing ones, those of its state, and those its findings name."""
-    earthing = int(points.choices[Choice.EARTHING, at])
+def cautions_of(points: Points, outcome: Outcome, at: int) -> set[str]:
+    """Cautions that a point's own state asks for, beside the standing ones and those its findings name."""
+    earthing, named = int(points.choices[Choice.EARTHING, at]), set()
     if earthing == Earthing.TT:
         named.add("tt-metalwork")
     if earthing == Earthing.TN_C_S:
@@ -235,4 +242,4 @@ def cautions_of(points: Points, outcome: Outcome, at: int, named: set[str], lang
         named.add("line-neutral-unseen")
     if int(outcome.quantities.loops.basis[at]) == Basis.LIVE and earthing != Earthing.TT:
         named.add("parallel-paths")
-    return [name for name, caution in texts(language).cautions.items() if caution.always or name in named]
+    return named

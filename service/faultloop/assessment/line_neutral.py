@@ -29,12 +29,13 @@ def line_neutral(g: Given, found: Loops, hot_loop: Interval, factor: Array) -> L
     """The line-neutral loop as measured, else bounded by the earth fault loop's parts."""
     points = g.points
     cold, part, part_u = _cold(g, found)
-    unknown = np.full(points.count, np.nan)
-    hot = heated_loop(cold, unknown, part, part_u, factor)
     measured = ~np.isnan(cold.nominal)
     no_larger = points.number(Number.PROTECTIVE_MM2) <= points.number(Number.NEUTRAL_MM2)
     same = (points.choice(Choice.INFERABLE) == 1) & no_larger
     inferred = ~measured & ~g.tt & same & (found.fault == Fault.NONE)
+    if not (measured | inferred).any():
+        return LineNeutral(cold, cold, measured, inferred)
+    hot = heated_loop(cold, np.full(points.count, np.nan), part, part_u, factor)
     bound_hot, bound_cold = _bound(found, hot_loop, factor)
     return LineNeutral(_either(inferred, bound_hot, hot), _either(inferred, bound_cold, cold), measured, inferred)
 

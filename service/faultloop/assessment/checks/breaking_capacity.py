@@ -53,6 +53,10 @@ def _ends(interval: Interval) -> tuple[Array, Array, Array]:
 
 def _judge(points: Points, q: Quantities) -> Judged:
     capacity, assembly = points.number(Number.BREAKING_CAPACITY_KA), points.number(Number.ASSEMBLY_RATING_KA)
+    cases = Cases(REASONS)
+    cases.when(np.isnan(capacity), Standing.NOT_EXAMINED, "capacity-missing")
+    if cases.settle_everything():
+        return cases.settle_unvalued()
     current, known = _at_board(points, q)
     outlet = (
         np.fmax(
@@ -62,8 +66,6 @@ def _judge(points: Points, q: Quantities) -> Judged:
         / 1000.0
     )
     over = current.greatest > capacity
-    cases = Cases(REASONS)
-    cases.when(np.isnan(capacity), Standing.NOT_EXAMINED, "capacity-missing")
     cases.when(~known & (outlet > capacity), Standing.UNMET, "outlet-current-over-capacity")
     cases.when(~known & (points.choice(Choice.MULTIPOLE) == 1), Standing.NOT_EXAMINED, "three-phase-current-missing")
     cases.when(~known, Standing.NOT_EXAMINED, "current-missing")

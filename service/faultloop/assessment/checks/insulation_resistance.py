@@ -17,6 +17,8 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _judge(points: Points, q: Quantities) -> Judged:
     cases = Cases(REASONS)
     cases.when(points.bound[Reading.INSULATION] == Bound.MISSING, Standing.NOT_EXAMINED, "not-measured")
+    if cases.settle_everything():
+        return cases.settle_unvalued()
     read, limit = q.given.reading(Reading.INSULATION), q.rule("insulation")
     open_end = np.isinf(read.greatest) & (read.least < limit)
     cases.when(open_end, Standing.UNDETERMINED, "over-range-below-limit")
