@@ -9,6 +9,7 @@ from faultloop.assessment.checks import (
     line_neutral_disconnection,
     means_of_earthing,
     overcurrent_disconnection,
+    overload,
     polarity,
     protective_conductor_condition,
     residual_device_test,
@@ -29,6 +30,7 @@ CHECKS: tuple[Check, ...] = (
     residual_device_test.CHECK,
     line_neutral_disconnection.CHECK,
     breaking_capacity.CHECK,
+    overload.CHECK,
     polarity.CHECK,
     insulation_resistance.CHECK,
 )
