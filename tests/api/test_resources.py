@@ -59,9 +59,9 @@ def test_limits_as_printed(run: Callable[[Work], None]) -> None:
         for device, limit in (("K20", 230 / 280), ("Z10", 230 / 30)):
             told = (await client.get("/v1/limits", params={"device": device})).json()
             assert told["greatest_loop_impedance_ohm"] == pytest.approx(limit, rel=1e-5)
-        motor = problem(await client.get("/v1/limits", params={"device": "aM 50"}), 404)
+        motor = problem(await client.get("/v1/limits", params={"device": "aM 50"}), 422)
         assert "aM fuse-links are not held" in motor["detail"]
-        problem(await client.get("/v1/limits", params={"device": "B1000"}), 404)
+        problem(await client.get("/v1/limits", params={"device": "B1000"}), 422)
         problem(await client.get("/v1/limits", params={"device": "B16", "time_s": 0}), 422)
 
     run(work)

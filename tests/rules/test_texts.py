@@ -12,7 +12,7 @@ from faultloop.assessment.explain import Explainer, Names
 from faultloop.assessment.judged import Condition
 from faultloop.assessment.limits import loop_limit
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import TemperaturePolicy, from_rows
+from faultloop.assessment.points import Decision, TemperaturePolicy, from_rows
 from faultloop.assessment.texts import Said, texts
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.mapping import mapped
@@ -143,8 +143,14 @@ def test_every_limit_can_be_explained(device: str, policy: str) -> None:
 
 def test_sentences_are_used_and_have_a_variant_for_each_case() -> None:
     named = {word[1:] for said in all_said() for word in said.explanation.split() if word.startswith("@")}
-    by_policy = ("limit", "upstream", "heating", "line-neutral")
-    variants = dict.fromkeys(by_policy, POLICIES) | {"loop": sorted(Basis.codes())}
+    variants = {
+        "limit": POLICIES,
+        "upstream": POLICIES,
+        "heating": [*POLICIES, "electrode"],
+        "line-neutral": POLICIES,
+        "loop": sorted(Basis.codes()),
+        "within": sorted(Decision.codes()),
+    }
     needed = {f"{name}.{v}" for name in named if name in variants for v in variants[name]}
     needed |= {name for name in named if name not in variants}
     assert needed <= set(TEXTS.sentences)

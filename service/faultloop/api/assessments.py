@@ -11,7 +11,7 @@ from uuid import UUID
 from fastapi import APIRouter, Header, Query, Request, Response
 
 from faultloop import __version__
-from faultloop.api.bodies import POINT_BODY, read_point, refuse_duplicates
+from faultloop.api.bodies import POINT_BODY, DirectRoute, read_point, refuse_duplicates
 from faultloop.api.problems import Refused
 from faultloop.digests import digest, json_bytes, sha256
 from faultloop.exchange.answers import Assessment
@@ -23,11 +23,22 @@ from faultloop.records.tables import Record, Stored
 from faultloop.replay import replay
 
 router = APIRouter(prefix="/v1/assessments", tags=["assessments"])
+# Judging is the hot path: these functions read their requests themselves.
+judging = APIRouter(prefix="/v1/assessments", tags=["assessments"], route_class=DirectRoute)
+PUT_PARAMETERS: list[dict[str, Any]] = [
+    {"name": "id", "in": "path", "required": True, "schema": {"type": "string", "format": "uuid"}},
+    {
+        "name": "if-none-match",
+        "in": "header",
+        "description": "* asks for a new one only",
+        "schema": {"type": "string", "maxLength": 200},
+    },
+]
 JSON = "application/json"
 MOST_PER_PAGE = 200
 
 
-@router.post(
+@judging.post(
     "/preview",
     response_model=Assessment,
     openapi_extra=POINT_BODY,
@@ -58,23 +69,19 @@ async def _judged(request: Request) -> _Judged:
     return _Judged(body, canonical, input_digest, answer)
 
 
-@router.put(
+@judging.put(
     "/{id:uuid}",
     response_model=Assessment,
-    openapi_extra=POINT_BODY,
+    openapi_extra={**POINT_BODY, "parameters": PUT_PARAMETERS},
     summary="Judge one measured point and store the answer",
     responses={201: {"model": Assessment, "description": "Judged and stored"}},
 )
-async def put_assessment(
-    id: UUID,  # noqa: A002
-    request: Request,
-    if_none_match: Annotated[str | None, Header(max_length=200, description="* asks for a new one only")] = None,
-) -> Response:
+async def put_assessment(request: Request) -> Response:
     """Judge and store under the caller's id; the same body again answers what is stored, another is refused."""
     judged = await _judged(request)
-    stored, created = await request.app.state.writer.put(_record(id, judged))
+    stored, created = await request.app.state.writer.put(_record(request.path_params["id"], judged))
     if stored.record.input_digest != judged.input_digest:
-        raise Refused("precondition-failed" if if_none_match is not None else "conflict")
+        raise Refused("precondition-failed" if "if-none-match" in request.headers else "conflict")
     return _stored_answer(stored, 201 if created else 200)
 
 
@@ -102,7 +109,12 @@ def _stored_answer(stored: Stored, status: int) -> Response:
     return Response(stored.record.answer, status, media_type=JSON, headers=headers)
 
 
-@router.get("/{id:uuid}", response_model=Assessment, summary="Read a stored assessment")
+@router.get(
+    "/{id:uuid}",
+    response_model=Assessment,
+    summary="Read a stored assessment",
+    responses={304: {"description": "Not changed since the tag in If-None-Match"}},
+)
 def get_assessment(
     id: UUID,  # noqa: A002
     request: Request,
@@ -133,7 +145,8 @@ def list_assessments(query: Annotated[ListQuery, Query()], request: Request) -> 
     if len(rows) > size:
         cursor = _cursor(rows[size - 1].sequence, filters)
         wanted = {"page_size": size, "cursor": cursor, **{k: v for k, v in filters.items() if v}}
-        body["next"] = str(request.url.replace_query_params(**wanted))
+        following = request.url.replace_query_params(**wanted)
+        body["next"] = f"{following.path}?{following.query}"
     return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
 
 

@@ -43,6 +43,11 @@ class Reading(Codes):
     ORIGIN_LINE_NEUTRAL = 9
     TIME_HALF = 10
     INSULATION = 11
+    BOARD_LOOP = 12
+    BOARD_CURRENT = 13
+    VOLTAGE = 14
+    NEUTRAL_EARTH_VOLTAGE = 15
+    OPERATING_CURRENT = 16
 
 
 class Bound(Codes):
@@ -84,12 +89,20 @@ class Number(Codes):
     TEST_C = 13
     ADIABATIC_K = 14
     BREAKING_CAPACITY_KA = 15
-    BOARD_CURRENT_KA = 16
+    BETWEEN_LINES_V = 16
     CARRYING_CAPACITY_A = 17
     COVERAGE_SCALE = 18
     RESIDUAL_QUICK_MA = 19
     DECLARED_CURRENT_KA = 20
     ASSEMBLY_RATING_KA = 21
+    PROTECTIVE_K = 22
+    PROTECTIVE_TABLE_MM2 = 23
+    LET_THROUGH_A2S = 24
+    CLASS_ENERGY_3_KA = 25
+    CLASS_ENERGY_6_KA = 26
+    CLASS_ENERGY_10_KA = 27
+    COMBINATION_TO_KA = 28
+    ZERO_EXCESS = 29
 
 
 class Choice(Codes):
@@ -112,6 +125,8 @@ class Choice(Codes):
     MEANS_OF_EARTHING = 14
     LOADS_CONNECTED = 15
     MULTIPOLE = 16
+    LET_THROUGH = 17
+    CALIBRATION_LAPSED = 18
 
 
 class Earthing(Codes):
@@ -165,6 +180,16 @@ class Decision(Codes):
 
     GUARDED = 0
     SIMPLE = 1
+
+
+class LetThrough(Codes):
+    """What the let-through energy of the overcurrent device rests on."""
+
+    UNKNOWN = 0
+    MAKER = 1
+    CLASS_MARKED = 2
+    CLASS_USUAL = 3
+    FUSE = 4
 
 
 class Polarity(Codes):

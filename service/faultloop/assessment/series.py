@@ -32,12 +32,18 @@ def quickest_upstream(points: Points, required_s: Array) -> tuple[Array, Ints]:
     return current, place
 
 
-def greatest_time(points: Points, current_a: Array) -> Array:
-    """Greatest guaranteed time of the series at currents (..., n) [s]: either device interrupts."""
-    time = points.overcurrent.greatest_time(points.choice(Choice.DEVICE), current_a)
+def upstream_time(points: Points, current_a: Array) -> Array:
+    """Greatest guaranteed time of the devices upstream at currents (..., n) [s]; inf where there is none."""
+    time = np.where(np.isnan(current_a), np.nan, np.inf)
     for row in points.upstream:
         time = faster(time, points.overcurrent.greatest_time(row, current_a))
     return time
+
+
+def greatest_time(points: Points, current_a: Array) -> Array:
+    """Greatest guaranteed time of the series at currents (..., n) [s]: either device interrupts."""
+    time = points.overcurrent.greatest_time(points.choice(Choice.DEVICE), current_a)
+    return faster(time, upstream_time(points, current_a)) if len(points.upstream) else time
 
 
 def least_time(points: Points, current_a: Array) -> Array:

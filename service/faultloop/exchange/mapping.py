@@ -13,6 +13,7 @@ from faultloop.assessment.points import (
     Decision,
     Earthing,
     Feeds,
+    LetThrough,
     MeansOfEarthing,
     Method,
     Number,
@@ -27,13 +28,16 @@ from faultloop.assessment.rule_table import rule_table
 from faultloop.electrical.measurement import coverage_scale
 from faultloop.exchange import overcurrent as oc
 from faultloop.exchange import requests as rq
+from faultloop.exchange.fields import Instrument
 from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.protection import designations as ds
 from faultloop.protection.band import Band
 from faultloop.protection.catalogue import catalogue
 from faultloop.protection.curves import OwnCurve, own_band
+from faultloop.protection.fuses import fuse_families
+from faultloop.protection.let_through import breaker_energy, combined_to_ka
 from faultloop.protection.moulded_case import MouldedCase
-from faultloop.rules.conductors import adiabatic_k, ohm_per_km, service_temperature
+from faultloop.rules.conductors import adiabatic_k, ohm_per_km, protective_size, service_temperature
 from faultloop.rules.loader import LoadedRules, resolve
 
 _BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
@@ -51,6 +55,20 @@ _MEANS: dict[str | None, int] = {None: 0}
 _MEANS.update(MeansOfEarthing.codes())
 _POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
 _POLARITY.update(Polarity.codes())
+_READINGS = (
+    (Reading.EXTERNAL, "external_earth_fault_loop_impedance_ohm"),
+    (Reading.LINE_NEUTRAL, "line_neutral_loop_impedance_ohm"),
+    (Reading.LINE_PLUS_PROTECTIVE, "line_plus_protective_resistance_ohm"),
+    (Reading.PROTECTIVE, "protective_conductor_resistance_ohm"),
+    (Reading.ELECTRODE, "earth_electrode_resistance_ohm"),
+    (Reading.INSULATION, "insulation_resistance_megohm"),
+    (Reading.OPERATING_CURRENT, "residual_operating_current_ma"),
+    (Reading.VOLTAGE, "voltage_v"),
+    (Reading.NEUTRAL_EARTH_VOLTAGE, "voltage_neutral_to_earth_v"),
+)
+_UNUSED_READINGS = ("line_line_loop_impedance_ohm", "standing_leakage_ma")
+_UNUSED_SUPPLY = ("frequency_hz",)
+CLASS_COLUMNS_KA = (3.0, 6.0, 10.0)
 
 
 @dataclass(slots=True)
@@ -65,6 +83,7 @@ class Mapped:
     upstream: list[str] = field(default_factory=list)
     assumptions: list[str] = field(default_factory=list)
     cautions: list[str] = field(default_factory=list)
+    unused: list[str] = field(default_factory=list)
 
 
 def mapped(request: rq.AssessmentRequest) -> Mapped:
@@ -72,6 +91,8 @@ def mapped(request: rq.AssessmentRequest) -> Mapped:
     rules = resolve(request.rules)
     assert rules is not None, "the request model refuses unknown rule sets"
     point = Mapped(Row(), rules, _policy(request.policy, rules), None, None)
+    if "rules" not in request.model_fields_set:
+        point.assumptions.append("rules")
     _put_supply(point, request)
     _put_devices(point, request)
     _put_circuit(point, request)
@@ -101,6 +122,8 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
         choices[Choice.MEANS_OF_EARTHING] = _MEANS[supply.means_of_earthing.state]
     if supply.declared_prospective_current_ka is not None:
         numbers[Number.DECLARED_CURRENT_KA] = supply.declared_prospective_current_ka
+    if supply.nominal_voltage_between_lines_v is not None:
+        numbers[Number.BETWEEN_LINES_V] = supply.nominal_voltage_between_lines_v
     if supply.nominal_voltage_to_earth_v is not None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
@@ -134,6 +157,7 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         choices[Choice.MULTIPOLE] = int((body.poles or 1) > 2 or request.supply.phases == 3)
         if body.breaking_capacity_ka is not None:
             numbers[Number.BREAKING_CAPACITY_KA] = body.breaking_capacity_ka
+        _put_let_through(point, body)
     for body in request.upstream_overcurrent_devices:
         device = overcurrent_device(body)
         point.upstream.append(device.designation)
@@ -151,6 +175,22 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
         told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
         point.residual = told.designation
+
+
+def _put_let_through(point: Mapped, body: oc.OvercurrentDevice) -> None:
+    """Let-through energy: the maker's, else by the class that a breaker is marked with or usually has."""
+    numbers, choices = point.row.numbers, point.row.choices
+    if body.let_through_energy_a2s is not None:
+        numbers[Number.LET_THROUGH_A2S], choices[Choice.LET_THROUGH] = body.let_through_energy_a2s, LetThrough.MAKER
+    elif isinstance(body, oc.Breaker):
+        marked = body.energy_limiting_class
+        held = [breaker_energy(marked or 3, body.characteristic, body.rated_current_a, ka) for ka in CLASS_COLUMNS_KA]
+        for at, energy in enumerate(held):
+            if energy is not None:
+                numbers[Number.CLASS_ENERGY_3_KA + at] = energy
+                choices[Choice.LET_THROUGH] = LetThrough.CLASS_USUAL if marked is None else LetThrough.CLASS_MARKED
+    elif isinstance(body, oc.Fuse) and fuse_families()[body.fuse_system].cartridge:
+        choices[Choice.LET_THROUGH] = LetThrough.FUSE
 
 
 def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
@@ -175,8 +215,9 @@ def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
     _put_conductor(numbers, neutral, Number.NEUTRAL_MM2, None)
     same = neutral is not None and protective is not None and neutral.material == protective.material != "steel"
     choices[Choice.INFERABLE] = int(same)
-    if line is not None and (k := adiabatic_k(line.material, line.insulation, line.area_mm2)) is not None:
-        numbers[Number.ADIABATIC_K] = k
+    numbers[Number.ADIABATIC_K], numbers[Number.PROTECTIVE_K] = _k(line), _k(protective)
+    if line is not None and protective is not None:
+        _put_protective_size(numbers, request.overcurrent_device, line, protective)
     _put_service_temperature(point, [c for c in (line, protective) if c is not None])
 
 
@@ -189,6 +230,24 @@ def _put_conductor(numbers: list[float], body: rq.Conductor | None, area: int, p
         numbers[per_km] = np.nan if known is None else known
 
 
+def _put_protective_size(
+    numbers: list[float], device: oc.OvercurrentDevice | None, line: rq.Conductor, protective: rq.Conductor
+) -> None:
+    """What the table of sizes asks, and whether device and cable are a standard combination."""
+    line_k, protective_k = numbers[Number.ADIABATIC_K], numbers[Number.PROTECTIVE_K]
+    if not np.isnan(line_k + protective_k):
+        numbers[Number.PROTECTIVE_TABLE_MM2] = protective_size(line.area_mm2, line_k, protective_k)
+    if isinstance(device, oc.Breaker) and line.material == protective.material == "copper":
+        areas = (line.area_mm2, protective.area_mm2)
+        to_ka = combined_to_ka(device.characteristic, device.rated_current_a, *areas)
+        numbers[Number.COMBINATION_TO_KA] = to_ka
+
+
+def _k(body: rq.Conductor | None) -> float:
+    found = None if body is None else adiabatic_k(body.material, body.insulation, body.area_mm2)
+    return np.nan if found is None else found
+
+
 def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> None:
     known = [t for c in conductors if (t := service_temperature(c.insulation)) is not None]
     if not known:
@@ -199,12 +258,9 @@ def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> N
 def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     readings, board, row = request.readings, request.board, point.row
     _put_loop(point, readings.earth_fault_loop_impedance_ohm)
-    _put(row, Reading.EXTERNAL, readings.external_earth_fault_loop_impedance_ohm)
-    _put(row, Reading.LINE_NEUTRAL, readings.line_neutral_loop_impedance_ohm)
-    _put(row, Reading.LINE_PLUS_PROTECTIVE, readings.line_plus_protective_resistance_ohm)
-    _put(row, Reading.PROTECTIVE, readings.protective_conductor_resistance_ohm)
-    _put(row, Reading.ELECTRODE, readings.earth_electrode_resistance_ohm)
-    _put(row, Reading.INSULATION, readings.insulation_resistance_megohm)
+    for which, name in _READINGS:
+        if (stated := getattr(readings, name)) is not None:
+            _put(row, which, stated)
     row.choices[Choice.POLARITY] = _POLARITY[readings.polarity]
     if (times := readings.residual_operating_time_ms) is not None:
         row.choices[Choice.LOADS_CONNECTED] = int(times.loads_connected is True)
@@ -214,10 +270,10 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
         _put(row, Reading.TIME_5, times.five)
     if board is not None:
         _put(row, Reading.ORIGIN_LINE_NEUTRAL, board.line_neutral_loop_impedance_ohm)
+        _put(row, Reading.BOARD_LOOP, board.earth_fault_loop_impedance_ohm)
+        _put(row, Reading.BOARD_CURRENT, board.prospective_current_ka)
         if board.assembly_conditional_rating_ka is not None:
             row.numbers[Number.ASSEMBLY_RATING_KA] = board.assembly_conditional_rating_ka
-        stated = board.prospective_current_ka
-        row.numbers[Number.BOARD_CURRENT_KA] = _exact(stated)
     _put_method(point)
     heated = (
         readings.earth_fault_loop_impedance_ohm,
@@ -232,20 +288,23 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     )
     if any(stated is not None and not _states_instrument(stated) for stated in used):
         point.assumptions.append("instrument")
+    point.unused.extend(_unused(request))
+
+
+def _unused(request: rq.AssessmentRequest) -> list[str]:
+    """Values that were given and on which nothing is decided: what is ignored is said."""
+    parts = (("supply", request.supply, _UNUSED_SUPPLY), ("readings", request.readings, _UNUSED_READINGS))
+    found = [f"{part}.{name}" for part, body, names in parts for name in names if getattr(body, name) is not None]
+    device = request.residual_current_device
+    return found + (["residual_current_device.delay_ms"] if device and device.delay_ms is not None else [])
 
 
 def _put_loop(point: Mapped, stated: float | ReadingBody | None) -> None:
-    """The loop at the point; a declared one was read by nobody, so it is named and not decided on."""
-    if isinstance(stated, ReadingBody) and stated.method == "declared":
-        point.assumptions.append("declared-loop-unused")
+    """The loop at the point; one that nobody read live there is named and not decided on."""
+    if isinstance(stated, ReadingBody) and stated.method in ("declared", "calculated", "dead"):
+        point.assumptions.append("loop-not-read-unused")
     else:
         _put(point.row, Reading.LOOP, stated)
-
-
-def _exact(stated: float | ReadingBody | None) -> float:
-    if isinstance(stated, ReadingBody):
-        return stated.value if stated.bound != "above" else np.nan
-    return np.nan if stated is None else stated
 
 
 def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
@@ -261,6 +320,18 @@ def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
             instrument.percent,
             instrument.digits * instrument.resolution,
         )
+        _put_instrument(row, stated, instrument)
+
+
+def _put_instrument(row: Row, stated: ReadingBody, instrument: Instrument) -> None:
+    """Whether the calibration held on the day of the reading, and how far the joined leads were off zero."""
+    if instrument.calibration_due is not None:
+        # A reading without a date shows no valid calibration.
+        lapsed = stated.taken_at is None or stated.taken_at[:10] > instrument.calibration_due
+        row.choices[Choice.CALIBRATION_LAPSED] |= int(lapsed)
+    if instrument.zero_check is not None:
+        excess = abs(instrument.zero_check) - instrument.digits * instrument.resolution
+        row.numbers[Number.ZERO_EXCESS] = max(np.nan_to_num(row.numbers[Number.ZERO_EXCESS], nan=excess), excess)
 
 
 def _put_method(point: Mapped) -> None:

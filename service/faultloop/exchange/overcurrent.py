@@ -36,6 +36,12 @@ def _fuse_rated(value: float) -> float:
     return listed(value, _fuse_ratings())
 
 
+LetThroughEnergy = Annotated[
+    float,
+    number("A2*s", most=1e12, positive=True, description="Maker's greatest let-through energy I2t at the board"),
+]
+
+
 class Breaker(Closed):
     """A miniature circuit-breaker, or the overcurrent part of a combined device."""
 
@@ -52,6 +58,10 @@ class Breaker(Closed):
         ),
     ]
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
+    energy_limiting_class: (
+        Annotated[int, Field(strict=True, ge=1, le=3, description="Energy-limiting class as marked"), WHOLE] | None
+    ) = None
+    let_through_energy_a2s: LetThroughEnergy | None = None
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
 
@@ -82,6 +92,7 @@ class Fuse(Closed):
         ),
     ]
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None = None
+    let_through_energy_a2s: LetThroughEnergy | None = None
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
 
@@ -111,6 +122,7 @@ class MouldedCase(Closed):
     rated_current_a: Annotated[float, number("A", most=6300, positive=True, description="Rated current In")]
     settings: MouldedCaseSettings
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
+    let_through_energy_a2s: LetThroughEnergy | None = None
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
     @model_validator(mode="after")
@@ -160,6 +172,7 @@ class OwnCurve(Closed):
     source: Annotated[Label, Field(description="Where the points were read: document, edition, figure")]
     points: OwnCurvePoints
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
+    let_through_energy_a2s: LetThroughEnergy | None = None
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
     @model_validator(mode="after")

@@ -28,12 +28,13 @@ class Rating(Sheet):
 
 
 class Family(Sheet):
-    """One fuse system."""
+    """One fuse system; the energy that a cartridge lets through does not rise with the current."""
 
     fuse_system: Text
     designation: Text
     also_written: list[Text] = Field(default_factory=list)
     utilisation_category: Literal["gG"] | None = None
+    cartridge: bool = True
     standard: Text
     rating: list[Rating]
 

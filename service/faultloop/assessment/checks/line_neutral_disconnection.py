@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
-from faultloop.assessment.points import Choice, Flags, Number, Points
+from faultloop.assessment.points import Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities, by_policy
 from faultloop.assessment.series import greatest_time
 from faultloop.electrical.conductors import withstand_time
@@ -35,16 +35,19 @@ SHORTEST_ADIABATIC_S = 0.1
 
 def _judge(points: Points, q: Quantities) -> Judged:
     found = q.line_neutral
-    loop, measured, inferred = by_policy(points, found.hot, found.cold), found.measured, found.inferred
+    measured, inferred = found.measured, found.inferred
     limit = q.loop_limit
-    met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
-    withstands = _withstands(points, q)
-    rated = points.number(Number.DEVICE_RATED_CURRENT) <= points.number(Number.CARRYING_CAPACITY_A)
-    rated &= points.number(Number.BREAKING_CAPACITY_KA) >= points.number(Number.BOARD_CURRENT_KA)
     cases = Cases(REASONS)
     prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     cases.when(~measured & ~inferred, Standing.NOT_EXAMINED, "not-measured")
+    if cases.settle_everything():
+        return cases.settle_unvalued()
+    loop = by_policy(points, found.hot, found.cold)
+    met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
+    withstands = _withstands(points, q)
+    rated = points.number(Number.DEVICE_RATED_CURRENT) <= points.number(Number.CARRYING_CAPACITY_A)
+    rated &= points.number(Number.BREAKING_CAPACITY_KA) >= q.given.reading(Reading.BOARD_CURRENT).greatest
     implausible = measured & (loop.nominal < q.rule("least_plausible"))
     cases.when(implausible, Standing.UNDETERMINED, "reading-implausible")
     cases.when(inferred & met, Standing.MET, "inferred-within-limit")
