@@ -209,6 +209,49 @@ def test_presence_upstream_is_no_documented_back_up_of_breaking_capacity() -> No
     assert finding(backed, "breaking-capacity")["reason"] == "back-up-not-documented"
 
 
+def test_what_is_stated_of_a_device_upstream_and_not_used_is_said() -> None:
+    strong = fuse(63, "bs-88-2") | {"breaking_capacity_ka": 33.0}
+    told = {entry["subject"] for entry in answer(0.5, "B32", [strong, strong])["not_examined"]}
+    assert "upstream_overcurrent_devices.breaking_capacity_ka" in told
+
+
+HEATING = "protective-conductor-heating"
+
+
+def heated(device: Body | str, upstream: list[Body] | None = None, zs: float = 1.0, area: float = 1.5) -> Body:
+    """Heating of a small protective conductor behind a larger line conductor."""
+    sizes = {"line_conductor": copper(6.0), "protective_conductor": copper(area)}
+    read = readings(zs=live(zs), ze=live(0.8))
+    return finding(answer_of(read, device, upstream, **sizes), HEATING)
+
+
+def answer_of(read: Body, device: Body | str, upstream: list[Body] | None, **more: Any) -> Body:
+    """Answer with the default policy."""
+    body = request(read, device=device, rules="iec-60364", **more)
+    return assess({**body, "upstream_overcurrent_devices": upstream} if upstream else body)
+
+
+def test_the_protective_conductor_is_held_against_the_time_of_the_series() -> None:
+    # Up to 350 A flow (Ze read low): the own curve lets them flow for 3 s, the one upstream for 0.12 s; 1.5 mm2 of
+    # copper bears 115^2 x 1.5^2 = 29756 A2s, which is 0.24 s of 350 A.
+    slow, quick = curve((100.0, 3.0)), curve((150.0, 0.12), rated=63.0)
+    alone, backed = heated(slow), heated(slow, [quick])
+    assert (alone["verdict"], alone["reason"]) == ("undetermined", "time-too-long-by-band")
+    assert (backed["verdict"], backed["reason"]) == ("pass", "within-limit")
+
+
+def test_a_curve_gives_no_let_through_energy_unless_the_caller_states_it() -> None:
+    quick = curve((100.0, 0.01))
+    assert heated(quick)["reason"] == "let-through-missing"
+    assert heated({**quick, "let_through_energy_a2s": 5000.0})["verdict"] == "pass"
+    assert heated({**quick, "let_through_energy_a2s": 40_000.0})["reason"] == "let-through-exceeds"
+
+
+def test_a_rewirable_fuse_earns_no_credit_of_a_cartridge() -> None:
+    assert fuse_families()["bs-3036"].cartridge is False
+    assert all(family.cartridge for system, family in fuse_families().items() if system != "bs-3036")
+
+
 def test_an_upstream_device_does_not_stand_in_for_an_unknown_one() -> None:
     body = request(readings(zs=live(0.3)), device=None)
     body["upstream_overcurrent_devices"] = [breaker("B32")]
@@ -254,6 +297,7 @@ def test_a_moulded_case_breaker_is_judged_at_its_settings() -> None:
 def test_the_time_setting_of_the_overload_release_earns_no_credit() -> None:
     told = answer(0.3, moulded_case(overload_current_a=200, overload_time_s=1))
     assert finding(told, CHECK)["reason"] == "no-guaranteed-current"
+    assert "overcurrent_device.settings.overload_time_s" in {entry["subject"] for entry in told["not_examined"]}
 
 
 @pytest.mark.parametrize(

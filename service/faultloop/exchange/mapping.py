@@ -68,6 +68,7 @@ _READINGS = (
 )
 _UNUSED_READINGS = ("line_line_loop_impedance_ohm", "standing_leakage_ma")
 _UNUSED_SUPPLY = ("frequency_hz",)
+_UNUSED_UPSTREAM = ("breaking_capacity_ka", "energy_limiting_class", "let_through_energy_a2s", "poles")
 CLASS_COLUMNS_KA = (3.0, 6.0, 10.0)
 
 
@@ -295,8 +296,17 @@ def _unused(request: rq.AssessmentRequest) -> list[str]:
     """Values that were given and on which nothing is decided: what is ignored is said."""
     parts = (("supply", request.supply, _UNUSED_SUPPLY), ("readings", request.readings, _UNUSED_READINGS))
     found = [f"{part}.{name}" for part, body, names in parts for name in names if getattr(body, name) is not None]
-    device = request.residual_current_device
-    return found + (["residual_current_device.delay_ms"] if device and device.delay_ms is not None else [])
+    device, own = request.residual_current_device, request.overcurrent_device
+    found += ["residual_current_device.delay_ms"] if device and device.delay_ms is not None else []
+    if isinstance(own, oc.MouldedCase) and own.settings.overload_time_s is not None:
+        found.append("overcurrent_device.settings.overload_time_s")
+    # Of a device upstream only its time counts: nothing is backed up by presence.
+    stated = [name for body in request.upstream_overcurrent_devices for name in _UNUSED_UPSTREAM if _states(body, name)]
+    return found + [f"upstream_overcurrent_devices.{name}" for name in dict.fromkeys(stated)]
+
+
+def _states(body: oc.OvercurrentDevice, name: str) -> bool:
+    return getattr(body, name, None) is not None
 
 
 def _put_loop(point: Mapped, stated: float | ReadingBody | None) -> None:
