@@ -70,11 +70,10 @@ async def list_devices() -> Response:
 
 def _listed(device: OvercurrentDevice) -> dict[str, Any]:
     breaker = isinstance(device, Breaker)
-    standard = breaker_table().standard if isinstance(device, Breaker) else fuse_families()[device.fuse_system].standard
     return {
         "designation": device.designation,
         "kind": "miniature-circuit-breaker" if breaker else "fuse",
-        "standard": standard,
+        "standard": device_standard(device),
         "rated_current_a": device.rated_current_a,
     }
 
