@@ -23,10 +23,17 @@ class LimitQuery(Closed):
     )
 
 
-class RulesQuery(Closed):
-    """Under which rule set a device is looked at."""
+class CurveQuery(Closed):
+    """Under which rule set a device is looked at, and in which form."""
 
     rules: RulesName = "iec-60364"
+    format: Annotated[Literal["json", "svg"], Field(description="Goes before the Accept header")] | None = None
+
+
+class DrawingQuery(Closed):
+    """In which form a stored assessment is drawn."""
+
+    format: Annotated[Literal["svg"], Field(description="Goes before the Accept header")] | None = None
 
 
 class ListQuery(Closed):

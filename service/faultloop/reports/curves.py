@@ -3,7 +3,6 @@
 from dataclasses import dataclass
 from typing import Any
 
-from faultloop import __version__
 from faultloop.digests import digest
 from faultloop.protection.catalogue import catalogue, device_standard, guaranteed
 from faultloop.protection.designations import OvercurrentDevice, ResidualDevice
@@ -17,11 +16,10 @@ Device = OvercurrentDevice | ResidualDevice
 _DIGITS = 12
 
 
-def device_drawing(device: Device, rules: LoadedRules, language: str = "en") -> bytes:
+def device_drawing(device: Device, rules: LoadedRules, provenance: dict[str, str], language: str = "en") -> bytes:
     """Draw the guaranteed band of a device held here under a rule set."""
     told, title = words(language), rules.rules.title
     region = _region(device, rules, told)
-    digests = {"engine": __version__, "rules": rules.rules.key, "devices": catalogue().digest[:_DIGITS]}
     heading = told.device_title.format(device=device.designation)
     subtitle = told.device_subtitle.format(standard=device_standard(device), rules=title)
     notes = [told.steps_only] if region else [told.band_missing.format(device=device.designation)]
@@ -36,7 +34,7 @@ def device_drawing(device: Device, rules: LoadedRules, language: str = "en") -> 
             time_axis=told.time_axis,
             regions=regions,
             notes=notes,
-            footer=[told.provenance.format_map(digests), told.caution],
+            footer=[_provenance(provenance, told.provenance), told.caution],
             description=_sentences([subtitle, *_region_words(regions), *notes, told.caution]),
         )
     )
@@ -82,7 +80,7 @@ def assessment_drawing(judged: Judged) -> bytes:
             span=span,
             deadline=deadline,
             notes=notes,
-            footer=[_provenance(provenance, told), told.caution],
+            footer=[_provenance(provenance, told.provenance_input), told.caution],
             description=_sentences([subtitle, *_region_words(regions), *marks, *notes, told.caution]),
         )
     )
@@ -156,13 +154,8 @@ def _disconnection(quantities: dict[str, Any], told: Words) -> str:
     return told.disconnection.format(least=least, greatest=second(time["greatest"]), by=told.by[time["by"]])
 
 
-def _provenance(provenance: dict[str, str], told: Words) -> str:
-    shortened = {"devices": provenance["devices_digest"], "input": provenance["input_digest"]}
-    return told.provenance_input.format(
-        engine=provenance["engine"],
-        rules=provenance["rules"],
-        **{name: value[:_DIGITS] for name, value in shortened.items()},
-    )
+def _provenance(provenance: dict[str, str], template: str) -> str:
+    return template.format_map({k: v[:_DIGITS] if k.endswith("_digest") else v for k, v in provenance.items()})
 
 
 def _sentences(parts: list[str]) -> str:

@@ -4,7 +4,6 @@ import math
 from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
 
-
 NO_BREAK = "\u00a0"
 
 

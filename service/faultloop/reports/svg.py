@@ -110,7 +110,8 @@ def svg_bytes(figure: Figure) -> bytes:
     drawing.root.set("width", _number(WIDTH))
     drawing.root.set("height", _number(height))
     indent(drawing.root, " ")
-    return tostring(drawing.root, encoding="utf-8", xml_declaration=True)
+    written: bytes = tostring(drawing.root, encoding="utf-8", xml_declaration=True)
+    return written
 
 
 def _put_grid(drawing: _Drawing, x: Axis, y: Axis) -> None:
@@ -174,8 +175,8 @@ def _put_deadline(drawing: _Drawing, x: Axis, y: Axis) -> None:
     deadline = drawing.figure.deadline
     if deadline is not None:
         place = {"x1": x.start, "x2": x.start + x.length, "y1": y.at(deadline.time_s), "y2": y.at(deadline.time_s)}
-        dashes = {"class_": "deadline", "stroke_width": 1.8, "stroke_dasharray": _DEADLINE_DASH}
-        _put(drawing.sheet, "line", stroke=_INK, **place, **dashes)
+        dashes = {"class_": "deadline", "stroke_dasharray": _DEADLINE_DASH}
+        _put(drawing.sheet, "line", stroke=_INK, stroke_width=1.8, **place, **dashes)
 
 
 def _put_key(drawing: _Drawing) -> None:
