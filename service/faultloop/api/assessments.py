@@ -14,6 +14,7 @@ from faultloop import __version__
 from faultloop.api.bodies import POINT_BODY, read_point, refuse_duplicates
 from faultloop.api.negotiation import ASKED_LANGUAGE, SVG, drawing, language, media_type, unless_held
 from faultloop.api.problems import Refused
+from faultloop.assessment.texts import LANGUAGES
 from faultloop.digests import digest, json_bytes, sha256
 from faultloop.exchange.answers import Assessment
 from faultloop.exchange.mapping import overcurrent_device, residual_device
@@ -149,8 +150,11 @@ def get_assessment_curve(
         raise Refused("not-found", "The rule set by which this was judged is not held here, so nothing can be drawn.")
     point, answer = AssessmentRequest.model_validate_json(stored.request), json.loads(stored.answer)
     device = None if point.overcurrent_device is None else overcurrent_device(point.overcurrent_device)
-    judged = Judged(stored.id, point.point.label, device, residual_device(point), rules, answer)
-    headers = {"Vary": "Accept", "Cache-Control": "no-store", "Content-Language": language_of(stored.answer)}
+    told = language_of(stored.answer)
+    # Bytes stay what they are; a drawing is made today, so it needs words that are held today.
+    spoken = told if told in LANGUAGES else LANGUAGES[0]
+    judged = Judged(stored.id, point.point.label, device, residual_device(point), rules, answer, spoken)
+    headers = {"Vary": "Accept", "Cache-Control": "no-store", "Content-Language": spoken}
     return drawing(request, assessment_drawing(judged), headers)
 
 

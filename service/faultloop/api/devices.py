@@ -96,7 +96,8 @@ async def get_device_curve(
     headers = {"Vary": "Accept, Accept-Language", "Cache-Control": "no-cache"}
     if kind == SVG:
         spoken = language(request)
-        return drawing(request, device_drawing(device, rules, _provenance(rules), spoken), {**headers, "Content-Language": spoken})
+        body = device_drawing(device, rules, _provenance(rules), spoken)
+        return drawing(request, body, {**headers, "Content-Language": spoken})
     return tagged(request, json_bytes(_steps(device, rules)), JSON, headers)
 
 

@@ -27,13 +27,13 @@ class CurveQuery(Closed):
     """Under which rule set a device is looked at, and in which form."""
 
     rules: RulesName = "iec-60364"
-    format: Annotated[Literal["json", "svg"], Field(description="Goes before the Accept header")] | None = None
+    format: Literal["json", "svg"] | None = Field(default=None, description="Goes before the Accept header")
 
 
 class DrawingQuery(Closed):
     """In which form a stored assessment is drawn."""
 
-    format: Annotated[Literal["svg"], Field(description="Goes before the Accept header")] | None = None
+    format: Literal["svg"] | None = Field(default=None, description="Goes before the Accept header")
 
 
 class ListQuery(Closed):

@@ -42,7 +42,7 @@ def device_drawing(device: Device, rules: LoadedRules, provenance: dict[str, str
 
 @dataclass(frozen=True, slots=True)
 class Judged:
-    """A stored assessment: its id, what it was judged on, and the answer."""
+    """A stored assessment: its id, what it was judged on, the answer, and the language to draw it in."""
 
     id: str
     label: str
@@ -50,12 +50,13 @@ class Judged:
     residual: ResidualDevice | None
     rules: LoadedRules
     answer: dict[str, Any]
+    language: str
 
 
 def assessment_drawing(judged: Judged) -> bytes:
-    """Draw the bands, the prospective current and the required time of a stored assessment, in its language."""
+    """Draw the bands, the prospective current and the required time of a stored assessment."""
     answer, provenance = judged.answer, judged.answer["provenance"]
-    told = words(provenance.get("language", "en"))
+    told = words(judged.language)
     quantities = answer["quantities"]
     devices = [device for device in (judged.device, judged.residual) if device is not None]
     regions = [region for device in devices if (region := _region(device, judged.rules, told)) is not None]
