@@ -150,8 +150,11 @@ def test_labels_neither_touch_each_other_nor_leave_the_sheet() -> None:
         _, _, width, height = (float(n) for n in drawn.root.get("viewBox", "").split())
         for text in drawn.all("text"):
             if text.get("transform") is None and text.get("text-anchor") is None:
-                size = float(text.get("font-size", "12"))
-                assert float(text.get("x", "")) + 0.5 * size * len(text.text or "") < width
+                size, bold = float(text.get("font-size", "12")), text.get("font-weight") == "bold"
+                # Advance widths of DejaVu Sans, the widest of the fonts named: W and the widest small letter.
+                wide, small = (1.103, 0.72) if bold else (0.989, 0.635)
+                needed = size * sum(wide if c in "WmM@%" else small for c in text.text or "" if c not in " iltfj.,")
+                assert float(text.get("x", "")) + needed < width
                 assert size < float(text.get("y", "")) < height
 
 

@@ -7,8 +7,9 @@ import unicodedata
 _UNWRITABLE = re.compile("[^\t\n\r\u0020-\ud7ff\ue000-\ufffd\U00010000-\U0010ffff]")
 # A no-break space is none of these: it keeps a number and its unit together.
 _SPACE = re.compile("[\t\n\r ]+")
-# Wider than the letters of usual fonts are on average, so that a line never runs out of its place.
-_LETTER, _WIDE = 0.58, 1.05
+# Widths in em, no less than those of the widest of the usual fonts, so that a line never runs out of its place.
+_NARROW, _PLAIN, _CAPITAL, _BROAD = 0.43, 0.645, 0.8, 1.05
+_CLASSES = dict.fromkeys("iljtf.,:;|!'()[] \u00a0·", _NARROW) | dict.fromkeys("wmWM@%×—", _BROAD)
 
 
 def clean(text: str) -> str:
@@ -16,27 +17,38 @@ def clean(text: str) -> str:
     return _SPACE.sub(" ", _UNWRITABLE.sub("\ufffd", text)).strip(" ")
 
 
+def _letter(letter: str) -> float:
+    if letter in _CLASSES:
+        return _CLASSES[letter]
+    if unicodedata.east_asian_width(letter) in "WF":
+        return _BROAD
+    return _CAPITAL if letter.isupper() else _PLAIN
+
+
 def width(text: str, size: float) -> float:
     """Length that the text may need at a font size."""
-    wide = sum(unicodedata.east_asian_width(letter) in "WF" for letter in text)
-    return size * (_LETTER * (len(text) - wide) + _WIDE * wide)
+    return size * sum(map(_letter, text))
 
 
 def wrapped(text: str, size: float, room: float) -> list[str]:
     """Lines no longer than the room; a word that alone is too long is cut."""
     lines, line = [], ""
-    for word in clean(text).split(" "):
-        rest = word
-        while width(rest, size) > room:
-            if line:
-                lines.append(line)
-                line = ""
-            cut = next(n for n in range(len(rest), 0, -1) if n == 1 or width(rest[:n], size) <= room)
-            lines.append(rest[:cut])
-            rest = rest[cut:]
-        if line and width(f"{line} {rest}", size) > room:
+    for part in (part for word in clean(text).split(" ") for part in _parts(word, size, room)):
+        longer = f"{line} {part}" if line else part
+        if line and width(longer, size) > room:
             lines.append(line)
-            line = rest
-        else:
-            line = f"{line} {rest}".strip()
+            longer = part
+        line = longer
     return [*lines, line] if line else lines
+
+
+def _parts(word: str, size: float, room: float) -> list[str]:
+    """The word, cut wherever it would be longer than a line."""
+    parts, used = [""], 0.0
+    for letter in word:
+        used += size * _letter(letter)
+        if parts[-1] and used > room:
+            parts.append("")
+            used = size * _letter(letter)
+        parts[-1] += letter
+    return parts

@@ -77,7 +77,7 @@ class _Drawing:
 
     def lines(self, text: str, size: float, left: float = MARGIN, after: float = 0.0, **style: float | str) -> None:
         """A paragraph, broken to the width of the sheet; more letters fit in none of the usual fonts."""
-        heavy = 1.12 if style.get("font_weight") == "bold" else 1.0
+        heavy = 1.15 if style.get("font_weight") == "bold" else 1.0
         for line in wrapped(text, size * heavy, WIDTH - MARGIN - left):
             self.y += size * 1.35
             self.write(line, left, self.y, font_size=size, **style)
