@@ -1,10 +1,10 @@
 """Drawings read back: marks where the tables have their points, regions where the bands promise, all of it in words."""
 
-import itertools
 import json
 import math
 import re
 from collections.abc import Iterator
+from itertools import pairwise
 from pathlib import Path
 from typing import Any
 
@@ -88,6 +88,20 @@ def test_every_device_is_marked_at_its_points(rules: str) -> None:
             assert np.allclose(drawn.marks(group, filled), expected, rtol=4e-3) or not expected, device
 
 
+@pytest.mark.parametrize("designation", ["B32", "gG 63", "BS 88-2 gG 32", "30 mA", "300 mA S"])
+def test_edges_step_down_through_their_marks(designation: str) -> None:
+    drawn = of_device(designation)
+    (band,) = drawn.all("g", "band")
+    for kind, filled in (("greatest-time", True), ("least-time", False)):
+        circles = [c for c in drawn.all("circle") if c in list(band) and (c.get("fill") != "#ffffff") == filled]
+        edges = drawn.all("path", kind)
+        assert len(edges) == int(bool(circles))
+        corners = drawn.outline(edges[0]) if edges else []
+        assert {(float(c.get("cx", "")), float(c.get("cy", ""))) for c in circles} <= set(corners)
+        for (x1, y1), (x2, y2) in pairwise(corners):
+            assert (x2 >= x1, y2 >= y1, x1 == x2 or y1 == y2) == (True, True, True)
+
+
 def grid_of_places(drawn: Drawn) -> Iterator[tuple[float, float]]:
     """Places all over the plot, off the round values on which edges lie."""
     left, top, right, bottom = drawn.frame
@@ -144,9 +158,9 @@ def test_labels_neither_touch_each_other_nor_leave_the_sheet() -> None:
     drawings += [Drawn(drawing({**outlet["request"], "point": {"label": "W" * 200}})) for outlet in OUTLETS]
     for drawn in drawings:
         across = [(float(t.get("x", "")), 0.6 * 11 * len(t.text or "")) for t in drawn.x_ticks]
-        assert all(a + wa / 2 < b - wb / 2 for (a, wa), (b, wb) in itertools.pairwise(across))
+        assert all(a + wa / 2 < b - wb / 2 for (a, wa), (b, wb) in pairwise(across))
         down = [float(t.get("y", "")) for t in drawn.y_ticks]
-        assert all(lower - upper > 11 for lower, upper in itertools.pairwise(down))
+        assert all(lower - upper > 11 for lower, upper in pairwise(down))
         _, _, width, height = (float(n) for n in drawn.root.get("viewBox", "").split())
         for text in drawn.all("text"):
             if text.get("transform") is None and text.get("text-anchor") is None:
