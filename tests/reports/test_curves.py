@@ -17,10 +17,13 @@ from faultloop import assess
 from faultloop.assessment.texts import LANGUAGES
 from faultloop.exchange.mapping import overcurrent_device, residual_device
 from faultloop.exchange.requests import AssessmentRequest
+from faultloop.protection.band import Band
 from faultloop.protection.catalogue import catalogue, guaranteed, listed_devices
 from faultloop.protection.designations import ResidualDevice, parse_device
 from faultloop.protection.residual import residual_table
 from faultloop.reports.curves import Device, Judged, assessment_drawing, device_drawing
+from faultloop.reports.figure import Figure, Region
+from faultloop.reports.svg import svg_bytes
 from faultloop.rules.loader import resolve, shipped
 from tests.assessment.bodies import Body
 from tests.reports.drawn import SVG, Drawn, inside
@@ -308,3 +311,15 @@ def test_any_current_and_time_can_be_drawn(one: float | None, two: float | None,
         assert width > 0
     assert len(drawn.all("g", "fault-current")) == int(one is not None or two is not None)
     assert len(drawn.all("line", "deadline")) == int(time is not None)
+
+
+@pytest.mark.parametrize("fast", [(), ((40.0, 0.1),)])
+def test_a_band_of_one_point_is_one_step(fast: tuple[tuple[float, float], ...]) -> None:
+    region = Region(False, Band(((100.0, 0.4),), fast), 1.0, "one", "slow", "fast")
+    drawn = Drawn(svg_bytes(Figure("key", "en", "One point", "", "Current", "Time", [region])))
+    (band,) = drawn.all("g", "band")
+    assert np.allclose(drawn.marks(band, True), [(100, 0.4)], rtol=4e-3)
+    assert np.allclose(drawn.marks(band, False), fast, rtol=4e-3) or not fast
+    _, _, right, bottom = drawn.frame
+    corners = drawn.outline(drawn.all("path", "region")[0])
+    assert inside((right - 2, bottom - 2), corners)
