@@ -54,7 +54,7 @@ def test_a_curve_without_a_point_in_time_promises_nothing() -> None:
 
 def test_a_curve_is_named_as_the_caller_s_own_with_a_caution() -> None:
     told = answer(1.0, curve((160.0, 0.4)))
-    assert f"Caller's own curve of 32 A (source stated: “{SOURCE}”)" in finding(told, CHECK)["explanation"]
+    assert f"own curve 32 A (“{SOURCE}”)" in finding(told, CHECK)["explanation"]
     assert "own-curve" in cautions(told)
     assert "own-curve" in cautions(answer(1.0, "B32", [curve((160.0, 0.4))]))
     assert "own-curve" not in cautions(answer(1.0, "B32"))
@@ -290,7 +290,7 @@ def test_a_moulded_case_breaker_is_judged_at_its_settings() -> None:
     found = finding(told, CHECK)
     # 230 V over 1.2 times 2000 A.
     assert (found["verdict"], found["limit"]) == ("pass", 0.0958333)
-    assert "Moulded-case breaker of 250 A (Ir 200 A, Ii 2000 A)" in found["explanation"]
+    assert "MCCB 250 A (Ir 200 A, Ii 2000 A)" in found["explanation"]
     assert "settings-as-stated" in cautions(told)
 
 

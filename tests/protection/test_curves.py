@@ -115,5 +115,5 @@ def test_edges_that_contradict_each_other_are_refused() -> None:
 
 def test_the_curve_is_named_as_the_caller_s_own_with_its_source() -> None:
     told = OwnCurve(32.0, "data sheet 7, figure 2", own_band(32.0, GREATEST)).designation
-    assert told.startswith("Caller's own curve of 32 A")
+    assert told.startswith("own curve 32 A")
     assert "data sheet 7, figure 2" in told

@@ -106,4 +106,4 @@ def test_settings_that_cannot_be_are_refused(settings: Settings, words: str) -> 
 
 def test_the_breaker_is_named_with_its_settings() -> None:
     told = MouldedCase(250.0, Settings(200.0, 1000.0, 0.3, 2000.0)).designation
-    assert told == "Moulded-case breaker of 250 A (Ir 200 A, Isd 1000 A at most 0.3 s, Ii 2000 A)"
+    assert told == "MCCB 250 A (Ir 200 A, Isd 1000 A ≤ 0.3 s, Ii 2000 A)"

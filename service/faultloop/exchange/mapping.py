@@ -32,7 +32,7 @@ from faultloop.exchange.fields import Instrument
 from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.protection import designations as ds
 from faultloop.protection.band import Band
-from faultloop.protection.catalogue import catalogue
+from faultloop.protection.catalogue import Described, catalogue
 from faultloop.protection.curves import OwnCurve, own_band
 from faultloop.protection.fuses import fuse_families
 from faultloop.protection.let_through import breaker_energy, combined_to_ka
@@ -129,7 +129,7 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
 
-def overcurrent_device(body: oc.OvercurrentDevice) -> ds.OvercurrentDevice | OwnCurve | MouldedCase:
+def overcurrent_device(body: oc.OvercurrentDevice) -> ds.OvercurrentDevice | Described:
     """The device that a body describes."""
     if isinstance(body, oc.Breaker):
         return ds.Breaker(body.characteristic, body.rated_current_a)
@@ -140,12 +140,22 @@ def overcurrent_device(body: oc.OvercurrentDevice) -> ds.OvercurrentDevice | Own
     return ds.Fuse(body.fuse_system, body.rated_current_a)
 
 
-def _picked(point: Mapped, device: ds.OvercurrentDevice | OwnCurve | MouldedCase) -> int | Band:
+def _picked(point: Mapped, device: ds.OvercurrentDevice | Described) -> int | Band:
     """Row of a device in the compiled table, or the band that it brings along, which is warned of."""
-    if isinstance(device, OwnCurve | MouldedCase):
+    if isinstance(device, Described):
         point.cautions.append("own-curve" if isinstance(device, OwnCurve) else "settings-as-stated")
         return device.band
     return catalogue().rows.get((point.rules.rules.key, device), NO_DEVICE)
+
+
+def residual_device(request: rq.AssessmentRequest) -> ds.ResidualDevice | None:
+    """The residual device that the circuit relies on: its own, else the most sensitive one before it."""
+    body = request.residual_current_device
+    if body is None and request.upstream_residual_current_devices:
+        body = min(request.upstream_residual_current_devices, key=lambda d: d.rated_residual_operating_current_ma)
+    if body is None:
+        return None
+    return ds.ResidualDevice(body.rated_residual_operating_current_ma, body.residual_type, body.delay)
 
 
 def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
@@ -165,17 +175,14 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         point.row.upstream.append(_picked(point, device))
     own = [request.residual_current_device] if request.residual_current_device else []
     chain = own + request.upstream_residual_current_devices
-    if chain:
+    if (relied := residual_device(request)) is not None:
         rated = [device.rated_residual_operating_current_ma for device in chain]
-        # Where the circuit has no residual device of its own, the most sensitive one before it carries it.
-        relied = chain[0] if own else min(chain, key=lambda d: d.rated_residual_operating_current_ma)
-        numbers[Number.RESIDUAL_MA] = relied.rated_residual_operating_current_ma
+        numbers[Number.RESIDUAL_MA] = relied.rated_ma
         numbers[Number.RESIDUAL_GREATEST_MA], numbers[Number.RESIDUAL_LEAST_MA] = max(rated), min(rated)
         quick = [device.rated_residual_operating_current_ma for device in chain if device.delay == "general"]
         numbers[Number.RESIDUAL_QUICK_MA] = min(quick, default=np.nan)
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
-        told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
-        point.residual = told.designation
+        point.residual = relied.designation
 
 
 def _put_let_through(point: Mapped, body: oc.OvercurrentDevice) -> None:

@@ -20,7 +20,7 @@ class OwnCurve:
     @property
     def designation(self) -> str:
         """What the device is called, which names the curve as the caller's own and its source."""
-        return f"Caller's own curve of {self.rated_current_a:g} A (source stated: “{self.source}”)"
+        return f"own curve {self.rated_current_a:g} A (“{self.source}”)"
 
 
 def refuse_disorder(steps: Steps) -> None:

@@ -30,10 +30,10 @@ class MouldedCase:
         told = self.settings
         parts = [f"Ir {told.overload_a:g} A"]
         if told.short_time_a is not None:
-            parts.append(f"Isd {told.short_time_a:g} A at most {told.short_time_s:g} s")
+            parts.append(f"Isd {told.short_time_a:g} A ≤ {told.short_time_s:g} s")
         if told.instantaneous_a is not None:
             parts.append(f"Ii {told.instantaneous_a:g} A")
-        return f"Moulded-case breaker of {self.rated_current_a:g} A ({', '.join(parts)})"
+        return f"MCCB {self.rated_current_a:g} A ({', '.join(parts)})"
 
     @property
     def band(self) -> Band:
