@@ -7,8 +7,9 @@ import pytest
 from pydantic import ValidationError
 
 from faultloop import assess, assess_many
+from faultloop.assessment.texts import LANGUAGES
 from faultloop.digests import json_bytes, sha256
-from faultloop.exchange.render import request_bytes
+from faultloop.exchange.render import assess_requests, request_bytes
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.protection.fuses import fuse_families
 from faultloop.replay import replay
@@ -250,6 +251,17 @@ def test_a_curve_gives_no_let_through_energy_unless_the_caller_states_it() -> No
 def test_a_rewirable_fuse_earns_no_credit_of_a_cartridge() -> None:
     assert fuse_families()["bs-3036"].cartridge is False
     assert all(family.cartridge for system, family in fuse_families().items() if system != "bs-3036")
+
+
+@pytest.mark.parametrize("language", LANGUAGES)
+def test_devices_in_series_are_spoken_of_in_every_language(language: str) -> None:
+    body = request(readings(zs=live(1.0)), device="C32", rules="iec-60364", policy={"temperature": "two-thirds"})
+    body["upstream_overcurrent_devices"] = [curve((150.0, 0.3)), moulded_case(overload_current_a=100)]
+    told = assess_requests([AssessmentRequest.model_validate(body)], languages=[language])[0]
+    assert finding(told, CHECK)["reason"] == "cleared-upstream"
+    assert f"own curve 32 A (“{SOURCE}”)" in finding(told, CHECK)["explanation"]
+    assert {"own-curve", "settings-as-stated", "upstream-cuts-off-more"} <= cautions(told)
+    assert not [text for text in said(told) if "{" in text or "@" in text]
 
 
 def test_an_upstream_device_does_not_stand_in_for_an_unknown_one() -> None:
