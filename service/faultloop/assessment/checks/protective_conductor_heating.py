@@ -42,7 +42,9 @@ def _energies(points: Points, q: Quantities, tried: Array) -> tuple[Array, Array
     multiple = tried / (points.number(Number.RESIDUAL_MA) / 1000.0)
     residual = catalogue().residual.greatest_time(points.choice(Choice.RESIDUAL), multiple)
     credited = q.residual.tested & ~q.residual.over_limit & ~np.isnan(residual)
-    others = faster(np.where(credited, residual, np.inf), upstream_time(points, tried))
+    others = np.where(credited, residual, np.inf)
+    if len(points.upstream):
+        others = faster(others, upstream_time(points, tried))
     # What acts at once interrupts before the current is at its full value: only a let-through energy tells.
     # The energy of a fuse-link does not rise with the current (common practice): its last tested point bounds it.
     fuse = points.choice(Choice.LET_THROUGH) == LetThrough.FUSE
