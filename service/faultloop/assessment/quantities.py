@@ -24,11 +24,12 @@ from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
 from faultloop.assessment.severity import Severity, severity
 from faultloop.assessment.standing import compare
+from faultloop.assessment.tables import Tables
 from faultloop.electrical.body import touch_voltage
 from faultloop.electrical.conductors import temperature_factor
 from faultloop.electrical.fault_current import heated_loop, prospective_current
 from faultloop.electrical.measurement import Array, Interval
-from faultloop.protection.catalogue import catalogue
+from faultloop.protection.band import BandTable
 
 AT_MOST = np.array(1)
 
@@ -72,19 +73,24 @@ class Quantities:
         """Where the supply is TT."""
         return self.given.tt
 
+    @property
+    def overcurrent_bands(self) -> BandTable:
+        """Every overcurrent device under every rule set of these points."""
+        return self.given.tables.overcurrent
+
     def rule(self, name: str) -> Array:
         """One value of each point's rule set, (n,)."""
         return self.given.rule[name]
 
 
-def shared(points: Points) -> Quantities:
+def shared(points: Points, tables: Tables) -> Quantities:
     """Compute the shared quantities of n points."""
-    g = given(points)
+    g = given(points, tables)
     rule, voltage, device = g.rule, points.number(Number.VOLTAGE), points.choice(Choice.DEVICE)
     found, required = loops(g), required_time(points, rule)
     factor = temperature_factor(points.number(Number.SERVICE_C), points.number(Number.TEST_C), rule["alpha"])
     hot = heated_loop(found.loop, found.heated_known, found.external, found.external_u, factor)
-    band = catalogue().overcurrent
+    band = tables.overcurrent
     operating = band.operating_current(device, required)
     limit, compared = _loop_limit(g, operating), by_policy(points, hot, found.loop)
     current = Interval(

@@ -22,14 +22,14 @@ from faultloop.assessment.points import (
     TemperaturePolicy,
     Users,
 )
-from faultloop.assessment.rule_table import rule_table
+from faultloop.assessment.tables import NO_DEVICE, Tables, tables
 from faultloop.electrical.measurement import coverage_scale
 from faultloop.exchange import requests as rq
 from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.protection import designations as ds
 from faultloop.protection.catalogue import catalogue
 from faultloop.rules.conductors import adiabatic_k, ohm_per_km, service_temperature
-from faultloop.rules.loader import LoadedRules, resolve
+from faultloop.rules.loader import LoadedRules, shipped
 
 _BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
 _METHOD = Method.codes()
@@ -46,7 +46,6 @@ _MEANS: dict[str | None, int] = {None: 0}
 _MEANS.update(MeansOfEarthing.codes())
 _POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
 _POLARITY.update(Polarity.codes())
-NO_DEVICE = -1
 
 
 @dataclass(slots=True)
@@ -54,6 +53,7 @@ class Mapped:
     """One point ready to be judged: its row, its rule set, the words needed to explain it."""
 
     row: Row
+    tables: Tables
     rules: LoadedRules
     policy: dict[str, str | float]
     device: str | None
@@ -61,11 +61,16 @@ class Mapped:
     assumptions: list[str] = field(default_factory=list)
 
 
-def mapped(request: rq.AssessmentRequest) -> Mapped:
-    """Turn one request into a row."""
-    rules = resolve(request.rules)
-    assert rules is not None, "the request model refuses unknown rule sets"
-    point = Mapped(Row(), rules, _policy(request.policy, rules), None, None)
+def tables_of(requests: Sequence[rq.AssessmentRequest]) -> Tables:
+    """The tables that hold every rule set of these requests, callers' own included."""
+    own = {request.rule_set for request in requests} - set(shipped().values())
+    return tables(tuple(sorted(own, key=lambda loaded: loaded.digest)))
+
+
+def mapped(request: rq.AssessmentRequest, by: Tables | None = None) -> Mapped:
+    """Turn one request into a row of the tables."""
+    rules = request.rule_set
+    point = Mapped(Row(), by or tables_of([request]), rules, _policy(request.policy, rules), None, None)
     _put_supply(point, request)
     _put_devices(point, request)
     _put_circuit(point, request)
@@ -85,7 +90,7 @@ def _policy(asked: rq.Policy, rules: LoadedRules) -> dict[str, str | float]:
 
 def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
     numbers, choices, supply = point.row.numbers, point.row.choices, request.supply
-    choices[Choice.RULES] = rule_table().row(point.rules.rules.key)
+    choices[Choice.RULES] = point.tables.rules_row(point.rules)
     choices[Choice.EARTHING] = _EARTHING[supply.earthing]
     choices[Choice.CURRENT] = _CURRENT[supply.current]
     choices[Choice.TEMPERATURE_POLICY] = _POLICY[str(point.policy["temperature"])]
@@ -112,7 +117,7 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
     if (body := request.overcurrent_device) is not None:
         device = overcurrent_device(body)
         point.device = device.designation
-        choices[Choice.DEVICE] = table.rows.get((point.rules.rules.key, device), NO_DEVICE)
+        choices[Choice.DEVICE] = point.tables.device_row(point.rules, device)
         numbers[Number.DEVICE_RATED_CURRENT] = body.rated_current_a
         choices[Choice.MULTIPOLE] = int((body.poles or 1) > 2 or request.supply.phases == 3)
         if body.breaking_capacity_ka is not None:

@@ -18,7 +18,7 @@ from faultloop.assessment.urgency import Urgency
 from faultloop.assessment.verdicts import ROWS, SENSES, Outcome, conditions_of, decide
 from faultloop.digests import canonical_bytes, digest, rounded_all, sha256
 from faultloop.electrical.measurement import conformance_probability
-from faultloop.exchange.mapping import Mapped, mapped
+from faultloop.exchange.mapping import Mapped, mapped, tables_of
 from faultloop.exchange.quantities import interval, quantity_columns
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.protection.catalogue import catalogue
@@ -38,9 +38,10 @@ def assess_requests(requests: Sequence[AssessmentRequest], digests: Sequence[str
     if not requests:
         return []
     known = digests or [sha256(request_bytes(request)) for request in requests]
-    given = [mapped(request) for request in requests]
+    by = tables_of(requests)
+    given = [mapped(request, by) for request in requests]
     points = from_rows([point.row for point in given])
-    outcome = decide(points)
+    outcome = decide(points, by)
     renderer = Renderer(points, outcome)
     return [renderer.answer(at, point, told) for at, (point, told) in enumerate(zip(given, known, strict=True))]
 
@@ -132,6 +133,7 @@ class Renderer:
             findings.append(self._finding(row, at, point, explanation, question, told))
         not_examined += self._fixed.subjects
         cautions |= cautions_of(self._points, self._outcome, at)
+        cautions.update(point.rules.rules.cautions)
         return {
             "verdict": _VERDICTS[int(self._outcome.verdict[at])],
             "urgency": _URGENCIES[int(self._outcome.urgency[at])],

@@ -12,7 +12,7 @@ from faultloop.protection.breakers import breaker_band, breaker_table
 from faultloop.protection.designations import Breaker, Characteristic, Fuse, OvercurrentDevice
 from faultloop.protection.fuses import fuse_band, fuse_families
 from faultloop.protection.residual import residual_band, residual_table
-from faultloop.rules.loader import shipped
+from faultloop.rules.loader import LoadedRules, shipped
 from faultloop.rules.sheets import RuleSet
 
 
@@ -69,6 +69,23 @@ def device_band(device: OvercurrentDevice, rules: RuleSet | None = None) -> Band
     return band
 
 
+@lru_cache(maxsize=128)
+def bands_under(loaded: LoadedRules) -> dict[OvercurrentDevice, Band]:
+    """Band of every device held here under one rule set.
+
+    Parameters
+    ----------
+    loaded : LoadedRules
+        A rule set, shipped or a caller's own.
+
+    Returns
+    -------
+    dict of OvercurrentDevice to Band
+        In the order of `listed_devices`.
+    """
+    return {device: device_band(device, loaded.rules) for device in listed_devices()}
+
+
 def _standard_band(device: OvercurrentDevice) -> Band:
     if isinstance(device, Breaker):
         return breaker_band(device.characteristic, device.rated_current_a)
@@ -80,9 +97,7 @@ def _standard_band(device: OvercurrentDevice) -> Band:
 def catalogue() -> Catalogue:
     """Compile every device under every shipped rule set; the last row of each table is no device."""
     bands = {
-        (key, device): device_band(device, loaded.rules)
-        for key, loaded in shipped().items()
-        for device in listed_devices()
+        (key, device): band for key, loaded in shipped().items() for device, band in bands_under(loaded).items()
     }
     # A time-delayed device has no band in the standards.
     residual = {"general": residual_band("general"), "selective": residual_band("selective"), "time-delayed": Band(())}

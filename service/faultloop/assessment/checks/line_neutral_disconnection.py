@@ -8,7 +8,6 @@ from faultloop.assessment.points import Choice, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities, by_policy
 from faultloop.electrical.conductors import withstand_time
 from faultloop.electrical.fault_current import prospective_current
-from faultloop.protection.catalogue import catalogue
 
 REASONS = (
     *COMPARISON,
@@ -70,7 +69,7 @@ def _withstands(points: Points, q: Quantities) -> Flags:
     greatest current of each step is tried: both ends, and just below every tested current between them.
     From 0.1 s down let-through energy decides, not the step of the band, which then refutes nothing.
     """
-    row, band, voltage = points.choice(Choice.DEVICE), catalogue().overcurrent, points.number(Number.VOLTAGE)
+    row, band, voltage = points.choice(Choice.DEVICE), q.overcurrent_bands, points.number(Number.VOLTAGE)
     k, area = points.number(Number.ADIABATIC_K), points.number(Number.LINE_MM2)
     least = prospective_current(q.rule("c_min"), voltage, q.line_neutral.hot.greatest)
     greatest = prospective_current(q.rule("c_max"), voltage, q.line_neutral.cold.least)

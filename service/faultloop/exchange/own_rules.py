@@ -1,0 +1,113 @@
+"""A caller's own set of rules: what it says is put over a shipped set and held to the contract."""
+
+from collections.abc import Iterable, Iterator
+from functools import lru_cache
+from typing import Annotated, Any
+
+from pydantic import BeforeValidator, Field, ValidationError, create_model
+from pydantic_core import InitErrorDetails, PydanticCustomError
+
+from faultloop.assessment.checks import CHECKS
+from faultloop.digests import canonical_bytes
+from faultloop.protection.catalogue import listed_devices
+from faultloop.rules.contract import Fault, faults
+from faultloop.rules.loader import LoadedRules, Table, digested, overlaid, shipped
+from faultloop.rules.sheets import RuleSet
+from faultloop.rules.strict import Sheet, Sourced
+
+LONGEST_SET = 65_536
+LONGEST_TITLE = 200
+CAUTION = "own-rules"
+CHARACTERISTICS = ("B", "C", "D")
+NEEDED_CLAUSES = frozenset(check.id for check in CHECKS)
+KNOWN_CLAUSES = NEEDED_CLAUSES | {f"{name}-tt" for name in NEEDED_CLAUSES}
+# Times the rated current: below the conventional tripping current no breaker is sure to operate at all.
+LEAST_MULTIPLE = 1.45
+
+
+def _partial(sheet: type[Sheet], **more: Any) -> Any:
+    """The tables of a sheet with every key optional: a set that extends another says only what differs.
+
+    A value that carries its source stays whole: half of an old source under a new value would be a lie.
+    """
+    fields: dict[str, Any] = {}
+    for name, known in sheet.model_fields.items():
+        kind: Any = known.annotation
+        nested = isinstance(kind, type) and issubclass(kind, Sheet) and not issubclass(kind, Sourced)
+        whole = Annotated[(kind, *known.metadata)] if known.metadata else kind
+        fields[name] = (_partial(kind) if nested else whole, Field(None, description=known.description))
+    told = {name: field for name, field in (fields | more).items() if field is not None}
+    return create_model(f"Own{sheet.__name__}", __base__=Sheet, __doc__=sheet.__doc__, **told)
+
+
+Extends = Annotated[str, Field(max_length=60, description="A shipped set, id:edition; without it every key is needed")]
+# Cautions are not the caller's to say, or to silence.
+OwnRuleSet: Any = _partial(RuleSet, extends=(Extends, None), cautions=None)
+
+
+def _read(told: Any) -> Any:
+    """Read a set by JSON's own types, wherever it comes from."""
+    if not isinstance(told, dict):
+        return told
+    text = canonical_bytes(told)
+    if len(text) > LONGEST_SET:
+        raise PydanticCustomError("rule_set", f"a rule set has at most {LONGEST_SET} bytes")
+    return OwnRuleSet.model_validate_json(text)
+
+
+OwnRules = Annotated[OwnRuleSet, BeforeValidator(_read)]
+
+
+def own_rules(said: Any) -> LoadedRules:
+    """Resolve what a caller says; one that breaks the contract is refused with every fault at its place."""
+    return _resolved(said.model_dump_json(exclude_unset=True))
+
+
+@lru_cache(maxsize=128)
+def _resolved(told: str) -> LoadedRules:
+    said: Table = OwnRuleSet.model_validate_json(told).model_dump(mode="json", exclude_unset=True)
+    _refuse(_misnamed(said))
+    base = shipped().get(str(said.pop("extends", "")))
+    below: Table = {} if base is None else base.rules.model_dump(mode="json")
+    cautions = [*(base.rules.cautions if base else []), CAUTION]
+    rules = RuleSet.model_validate_json(canonical_bytes({**overlaid(below, said), "cautions": cautions}))
+    _refuse([*_unknown(rules), *faults(rules)])
+    return digested(rules)
+
+
+def _refuse(found: Iterable[Fault]) -> None:
+    errors = [
+        InitErrorDetails(type=PydanticCustomError("rule_set", words), loc=place, input=None) for place, words in found
+    ]
+    if errors:
+        raise ValidationError.from_exception_data("rules", errors)
+
+
+def _misnamed(said: Table) -> Iterator[Fault]:
+    """A set has a name of its own, and extends one that is shipped."""
+    for name in ("id", "edition", "title"):
+        if name not in said:
+            yield Fault((name,), "a rule set needs an id, an edition and a title of its own")
+    for name in ("id", "title"):
+        if said.get(name) in {getattr(loaded.rules, name) for loaded in shipped().values()}:
+            yield Fault((name,), f"this {name} belongs to a published set: give the set one of its own")
+    if "extends" in said and said["extends"] not in shipped():
+        yield Fault(("extends",), "expected one of " + ", ".join(sorted(shipped())))
+
+
+def _unknown(rules: RuleSet) -> Iterator[Fault]:
+    """Clauses of checks, and currents of devices, that are held here; texts of a length that an answer can carry."""
+    for name in sorted(NEEDED_CLAUSES - set(rules.clauses)):
+        yield Fault(("clauses", name), "the clause of this check is needed")
+    if not set(rules.clauses) <= KNOWN_CLAUSES:
+        yield Fault(("clauses",), "only checks have clauses: " + ", ".join(sorted(KNOWN_CLAUSES)))
+    if any(len(text) > LONGEST_TITLE for text in (rules.id, rules.title, *rules.clauses.values())):
+        yield Fault(("title",), f"id, title and clauses have at most {LONGEST_TITLE} characters")
+    rated = {device.designation: device.rated_current_a for device in listed_devices()}
+    for at, row in enumerate(rules.operating_current):
+        least = dict.fromkeys(CHARACTERISTICS, LEAST_MULTIPLE) if row.unit == "x In" else rated
+        if not set(row.devices) <= set(least):
+            yield Fault(("operating_current", at, "devices"), "B, C or D with x In, or devices held here with A")
+        elif any(row.value <= least[device] for device in row.devices):
+            words = "no device is sure to operate at so small a current"
+            yield Fault(("operating_current", at, "value"), words)
