@@ -7,7 +7,7 @@ from typing import Any
 from faultloop.digests import json_bytes
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
-from faultloop.rules.loader import resolve
+from faultloop.rules.loader import from_content, resolve
 
 MOST_DIFFERENCES = 100
 
@@ -21,12 +21,16 @@ class Replay:
     differences: list[dict[str, Any]]
 
 
-def replay(request: bytes, answer: bytes, rules: str, input_digest: str) -> Replay:
-    """Compute a stored request again, under the very edition that was stored with it."""
-    if resolve(rules) is None:
+def replay(request: bytes, answer: bytes, rules: str, input_digest: str, content: bytes | None = None) -> Replay:
+    """Compute a stored request again, under the very edition that was stored with it.
+
+    A caller's own set is the content that was remembered with the assessment, whatever the request names.
+    """
+    own = None if content is None else {rules: from_content(content)}
+    if own is None and resolve(rules) is None:
         return Replay(False, None, [{"pointer": "/provenance/rules", "stored": rules}])
     body = {**json.loads(request), "rules": rules}
-    again = assess_requests([AssessmentRequest.model_validate(body)], [input_digest])[0]
+    again = assess_requests([AssessmentRequest.model_validate(body, context=own)], [input_digest])[0]
     if json_bytes(again) == answer:
         return Replay(True, again, [])
     return Replay(

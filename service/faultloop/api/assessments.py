@@ -19,6 +19,7 @@ from faultloop.exchange.render import request_bytes
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.exchange.resources import AssessmentList, ListQuery, ReplayBody
 from faultloop.records.queries import find, page
+from faultloop.records.rule_sets import content_of
 from faultloop.records.tables import Record, Stored
 from faultloop.replay import replay
 
@@ -79,6 +80,7 @@ async def _judged(request: Request) -> _Judged:
 async def put_assessment(request: Request) -> Response:
     """Judge and store under the caller's id; the same body again answers what is stored, another is refused."""
     judged = await _judged(request)
+    await request.app.state.own_rules.remember(judged.body.rule_set)
     stored, created = await request.app.state.writer.put(_record(request.path_params["id"], judged))
     if stored.record.input_digest != judged.input_digest:
         raise Refused("precondition-failed" if "if-none-match" in request.headers else "conflict")
@@ -166,7 +168,8 @@ def _position(cursor: str | None, filters: dict[str, Any]) -> int | None:
 def replay_assessment(id: UUID, request: Request) -> Response:  # noqa: A002
     """Compute the stored input again under the stored edition, and say whether the bytes are the same."""
     stored = _found(request, id).record
-    again = replay(stored.request, stored.answer, stored.rules, stored.input_digest)
+    content = content_of(request.app.state.engine, stored.rules_digest)
+    again = replay(stored.request, stored.answer, stored.rules, stored.input_digest, content)
     body: dict[str, Any] = {
         "id": stored.id,
         "identical": again.identical,

@@ -26,10 +26,11 @@ from faultloop.assessment.tables import NO_DEVICE, Tables, tables
 from faultloop.electrical.measurement import coverage_scale
 from faultloop.exchange import requests as rq
 from faultloop.exchange.fields import Reading as ReadingBody
+from faultloop.exchange.own_rules import is_own
 from faultloop.protection import designations as ds
 from faultloop.protection.catalogue import catalogue
 from faultloop.rules.conductors import adiabatic_k, ohm_per_km, service_temperature
-from faultloop.rules.loader import LoadedRules, shipped
+from faultloop.rules.loader import LoadedRules
 
 _BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
 _METHOD = Method.codes()
@@ -63,7 +64,7 @@ class Mapped:
 
 def tables_of(requests: Sequence[rq.AssessmentRequest]) -> Tables:
     """The tables that hold every rule set of these requests, callers' own included."""
-    own = {request.rule_set for request in requests} - set(shipped().values())
+    own = {request.rule_set for request in requests if is_own(request.rule_set)}
     return tables(tuple(sorted(own, key=lambda loaded: loaded.digest)))
 
 

@@ -16,6 +16,7 @@ from faultloop.rules.sheets import RuleSet
 from faultloop.rules.strict import Sheet, Sourced
 
 LONGEST_SET = 65_536
+LONGEST_ID = 48
 LONGEST_TITLE = 200
 CAUTION = "own-rules"
 CHARACTERISTICS = ("B", "C", "D")
@@ -23,6 +24,11 @@ NEEDED_CLAUSES = frozenset(check.id for check in CHECKS)
 KNOWN_CLAUSES = NEEDED_CLAUSES | {f"{name}-tt" for name in NEEDED_CLAUSES}
 # Times the rated current: below the conventional tripping current no breaker is sure to operate at all.
 LEAST_MULTIPLE = 1.45
+
+
+def _without_default(schema: dict[str, Any]) -> None:
+    """What is left out is left to the base: there is no default."""
+    schema.pop("default", None)
 
 
 def _partial(sheet: type[Sheet], **more: Any) -> Any:
@@ -35,24 +41,22 @@ def _partial(sheet: type[Sheet], **more: Any) -> Any:
         kind: Any = known.annotation
         nested = isinstance(kind, type) and issubclass(kind, Sheet) and not issubclass(kind, Sourced)
         whole = Annotated[(kind, *known.metadata)] if known.metadata else kind
-        fields[name] = (_partial(kind) if nested else whole, Field(None, description=known.description))
+        optional = Field(None, description=known.description, json_schema_extra=_without_default)
+        fields[name] = (_partial(kind) if nested else whole, optional)
     told = {name: field for name, field in (fields | more).items() if field is not None}
     return create_model(f"Own{sheet.__name__}", __base__=Sheet, __doc__=sheet.__doc__, **told)
 
 
 Extends = Annotated[str, Field(max_length=60, description="A shipped set, id:edition; without it every key is needed")]
 # Cautions are not the caller's to say, or to silence.
-OwnRuleSet: Any = _partial(RuleSet, extends=(Extends, None), cautions=None)
+OwnRuleSet: Any = _partial(RuleSet, extends=(Extends, Field(None, json_schema_extra=_without_default)), cautions=None)
 
 
 def _read(told: Any) -> Any:
     """Read a set by JSON's own types, wherever it comes from."""
     if not isinstance(told, dict):
         return told
-    text = canonical_bytes(told)
-    if len(text) > LONGEST_SET:
-        raise PydanticCustomError("rule_set", f"a rule set has at most {LONGEST_SET} bytes")
-    return OwnRuleSet.model_validate_json(text)
+    return OwnRuleSet.model_validate_json(canonical_bytes(told))
 
 
 OwnRules = Annotated[OwnRuleSet, BeforeValidator(_read)]
@@ -60,7 +64,15 @@ OwnRules = Annotated[OwnRuleSet, BeforeValidator(_read)]
 
 def own_rules(said: Any) -> LoadedRules:
     """Resolve what a caller says; one that breaks the contract is refused with every fault at its place."""
-    return _resolved(said.model_dump_json(exclude_unset=True))
+    told = said.model_dump_json(exclude_unset=True)
+    if len(told) > LONGEST_SET:
+        _refuse([Fault((), f"a rule set has at most {LONGEST_SET} characters")])
+    return _resolved(told)
+
+
+def is_own(loaded: LoadedRules) -> bool:
+    """Whether a set is a caller's own and not published by this service."""
+    return CAUTION in loaded.rules.cautions
 
 
 @lru_cache(maxsize=128)
@@ -101,8 +113,10 @@ def _unknown(rules: RuleSet) -> Iterator[Fault]:
         yield Fault(("clauses", name), "the clause of this check is needed")
     if not set(rules.clauses) <= KNOWN_CLAUSES:
         yield Fault(("clauses",), "only checks have clauses: " + ", ".join(sorted(KNOWN_CLAUSES)))
-    if any(len(text) > LONGEST_TITLE for text in (rules.id, rules.title, *rules.clauses.values())):
-        yield Fault(("title",), f"id, title and clauses have at most {LONGEST_TITLE} characters")
+    if len(rules.id) > LONGEST_ID:
+        yield Fault(("id",), f"an id has at most {LONGEST_ID} characters")
+    if any(len(text) > LONGEST_TITLE for text in (rules.title, *rules.clauses.values())):
+        yield Fault(("title",), f"title and clauses have at most {LONGEST_TITLE} characters")
     rated = {device.designation: device.rated_current_a for device in listed_devices()}
     for at, row in enumerate(rules.operating_current):
         least = dict.fromkeys(CHARACTERISTICS, LEAST_MULTIPLE) if row.unit == "x In" else rated
@@ -111,3 +125,19 @@ def _unknown(rules: RuleSet) -> Iterator[Fault]:
         elif any(row.value <= least[device] for device in row.devices):
             words = "no device is sure to operate at so small a current"
             yield Fault(("operating_current", at, "value"), words)
+
+
+def differences(base: LoadedRules, own: LoadedRules) -> list[dict[str, Any]]:
+    """The values in which a set differs from the one that it extends, by JSON Pointer."""
+    below, above = (loaded.rules.model_dump(mode="json", exclude={"id", "edition"}) for loaded in (base, own))
+    return list(_differing(below, above, ""))
+
+
+def _differing(base: Any, own: Any, pointer: str) -> Iterator[dict[str, Any]]:
+    tables = isinstance(base, dict) and isinstance(own, dict) and "source" not in base
+    if tables:
+        for key in {**base, **own}:
+            yield from _differing(base.get(key), own.get(key), f"{pointer}/{key}")
+    elif base != own:
+        told = {"base": base, "own": own}
+        yield {"pointer": pointer, **{name: value for name, value in told.items() if value is not None}}
