@@ -3,12 +3,14 @@
 import copy
 import json
 import random
+import tomllib
 from pathlib import Path
 from typing import Any
 
 import pytest
 
 from faultloop import assess, assess_many
+from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.texts import texts
 from faultloop.digests import sha256
 from faultloop.rules.contract import BOUNDS, faults
@@ -218,3 +220,8 @@ def test_as_nzs_gives_fixed_equipment_five_seconds(feeds: str, role: str, time: 
     body = outlet("as-nzs-3000")
     body["circuit"] |= {"feeds": feeds, "role": role}
     assert assess(body)["quantities"]["required_disconnection_time_s"] == time
+
+
+def test_as_nzs_never_quotes_a_clause_of_its_base() -> None:
+    own = tomllib.loads(next(f for f in SHIPPED_FILES if f.name.startswith("as-nzs")).read_text(encoding="utf-8"))
+    assert {check.id for check in CHECKS} <= set(own["clauses"])

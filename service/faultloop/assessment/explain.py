@@ -9,7 +9,7 @@ import numpy as np
 
 from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import Choice, Earthing, Method, Number, Points, Reading, TemperaturePolicy
+from faultloop.assessment.points import Choice, Earthing, LetThrough, Method, Number, Points, Reading, TemperaturePolicy
 from faultloop.assessment.texts import Said, texts
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.electrical.fault_current import prospective_current
@@ -82,6 +82,21 @@ def _times_told(q: Quoted) -> str:
     return ", ".join(q.phrases["time"].format(time=t, multiple=m) for m, t in times if not math.isnan(t))
 
 
+_LET_THROUGH = {
+    LetThrough.UNKNOWN: "let-through-unknown",
+    LetThrough.MAKER: "let-through-maker",
+    LetThrough.CLASS_MARKED: "let-through-class-marked",
+    LetThrough.CLASS_USUAL: "let-through-class-usual",
+    LetThrough.FUSE: "let-through-fuse",
+}
+
+
+def _let_through_told(q: Quoted) -> str:
+    by_class = q.number("let_through_basis") in (LetThrough.CLASS_MARKED, LetThrough.CLASS_USUAL)
+    known = not (by_class and math.isnan(q.number("let_through")))
+    return q.phrases[_LET_THROUGH[int(q.number("let_through_basis"))] if known else "let-through-unknown"].format_map(q)
+
+
 def _residual_limit(q: Quoted) -> str:
     touch = q.number("touch_limit") / q.number("idn_a")
     return q.phrases["residual-limit-touch" if q["limit"] == touch else "residual-limit-time"].format_map(q)
@@ -95,6 +110,7 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     "overcurrent_time": _overcurrent_time,
     "time_told": _times_told,
     "residual_limit": _residual_limit,
+    "let_through_told": _let_through_told,
     "electrode_told": lambda q: q.phrases["electrode-bounded" if math.isnan(q.number("ra")) else "electrode-read"],
     "marginal_question": lambda q: q.phrases[
         "marginal-question-external" if math.isnan(q.number("ze")) else "marginal-question"
@@ -215,6 +231,11 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "touch": q.touch_v,
         "k": number(Number.ADIABATIC_K),
         "area": number(Number.LINE_MM2),
+        "pe_k": number(Number.PROTECTIVE_K),
+        "pe_area": number(Number.PROTECTIVE_MM2),
+        "pe_energy": (number(Number.PROTECTIVE_K) * number(Number.PROTECTIVE_MM2)) ** 2,
+        "let_through_basis": points.choice(Choice.LET_THROUGH).astype(np.float64),
+        "let_through": q.let_through.energy_a2s,
         "in_device": number(Number.DEVICE_RATED_CURRENT),
         "iz": number(Number.CARRYING_CAPACITY_A),
         "icn": number(Number.BREAKING_CAPACITY_KA),

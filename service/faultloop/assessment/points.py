@@ -41,6 +41,7 @@ class Reading(Codes):
     ORIGIN_LINE_NEUTRAL = 9
     TIME_HALF = 10
     INSULATION = 11
+    BOARD_LOOP = 12
 
 
 class Bound(Codes):
@@ -88,6 +89,13 @@ class Number(Codes):
     RESIDUAL_QUICK_MA = 19
     DECLARED_CURRENT_KA = 20
     ASSEMBLY_RATING_KA = 21
+    PROTECTIVE_K = 22
+    PROTECTIVE_TABLE_MM2 = 23
+    LET_THROUGH_A2S = 24
+    CLASS_ENERGY_3_KA = 25
+    CLASS_ENERGY_6_KA = 26
+    CLASS_ENERGY_10_KA = 27
+    COMBINATION_TO_KA = 28
 
 
 class Choice(Codes):
@@ -110,6 +118,7 @@ class Choice(Codes):
     MEANS_OF_EARTHING = 14
     LOADS_CONNECTED = 15
     MULTIPOLE = 16
+    LET_THROUGH = 17
 
 
 class Earthing(Codes):
@@ -163,6 +172,16 @@ class Decision(Codes):
 
     GUARDED = 0
     SIMPLE = 1
+
+
+class LetThrough(Codes):
+    """What the let-through energy of the overcurrent device rests on."""
+
+    UNKNOWN = 0
+    MAKER = 1
+    CLASS_MARKED = 2
+    CLASS_USUAL = 3
+    FUSE = 4
 
 
 class Polarity(Codes):

@@ -5,6 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.given import Given, given
+from faultloop.assessment.let_through import LetThroughEnergy, let_through
 from faultloop.assessment.line_neutral import LineNeutral, line_neutral
 from faultloop.assessment.loops import Loops, loops
 from faultloop.assessment.points import (
@@ -64,6 +65,7 @@ class Quantities:
     residual: ResidualTimes
     severity: Severity
     line_neutral: LineNeutral
+    let_through: LetThroughEnergy
     electrode: Interval
     touch_v: Array
     touch_known: Flags
@@ -118,6 +120,7 @@ def shared(points: Points, tables: Tables) -> Quantities:
         residual=residual,
         severity=severity(g, touch, overcurrent_s, residual),
         line_neutral=line_neutral(g, found, hot, factor),
+        let_through=let_through(g, current),
         electrode=_electrode(g, found),
         touch_v=touch,
         touch_known=touch_known,

@@ -109,7 +109,13 @@ def _instruments(rules: RuleSet) -> tuple[Array, Array]:
     """Default percent and constant by reading and method, (R, M)."""
     i = rules.instruments
     percent, constant = np.zeros((READINGS, len(Method.codes()))), np.zeros((READINGS, len(Method.codes())))
-    loop = (Reading.LOOP, Reading.EXTERNAL, Reading.LINE_NEUTRAL, Reading.ORIGIN_LINE_NEUTRAL)
+    loop = (
+        Reading.LOOP,
+        Reading.EXTERNAL,
+        Reading.LINE_NEUTRAL,
+        Reading.ORIGIN_LINE_NEUTRAL,
+        Reading.BOARD_LOOP,
+    )
     for reading in Reading.codes().values():
         default = i.high_current if reading in loop else i.electrode if reading == Reading.ELECTRODE else i.continuity
         percent[reading, :], constant[reading, :] = default.percent.value, default.constant.value

@@ -12,6 +12,7 @@ from faultloop.assessment.points import (
     Decision,
     Earthing,
     Feeds,
+    LetThrough,
     MeansOfEarthing,
     Method,
     Number,
@@ -29,7 +30,8 @@ from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.exchange.own_rules import is_own
 from faultloop.protection import designations as ds
 from faultloop.protection.catalogue import catalogue
-from faultloop.rules.conductors import adiabatic_k, ohm_per_km, service_temperature
+from faultloop.protection.let_through import breaker_energy, combined_to_ka
+from faultloop.rules.conductors import adiabatic_k, ohm_per_km, protective_size, service_temperature
 from faultloop.rules.loader import LoadedRules
 
 _BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
@@ -47,6 +49,7 @@ _MEANS: dict[str | None, int] = {None: 0}
 _MEANS.update(MeansOfEarthing.codes())
 _POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
 _POLARITY.update(Polarity.codes())
+CLASS_COLUMNS_KA = (3.0, 6.0, 10.0)
 
 
 @dataclass(slots=True)
@@ -123,6 +126,7 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         choices[Choice.MULTIPOLE] = int((body.poles or 1) > 2 or request.supply.phases == 3)
         if body.breaking_capacity_ka is not None:
             numbers[Number.BREAKING_CAPACITY_KA] = body.breaking_capacity_ka
+        _put_let_through(point, body)
     own = [request.residual_current_device] if request.residual_current_device else []
     chain = own + request.upstream_residual_current_devices
     if chain:
@@ -136,6 +140,22 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
         told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
         point.residual = told.designation
+
+
+def _put_let_through(point: Mapped, body: rq.Breaker | rq.Fuse) -> None:
+    """Let-through energy: the maker's, else by the class that a breaker is marked with or usually has."""
+    numbers, choices = point.row.numbers, point.row.choices
+    if body.let_through_energy_a2s is not None:
+        numbers[Number.LET_THROUGH_A2S], choices[Choice.LET_THROUGH] = body.let_through_energy_a2s, LetThrough.MAKER
+    elif isinstance(body, rq.Breaker):
+        marked = body.energy_limiting_class
+        held = [breaker_energy(marked or 3, body.characteristic, body.rated_current_a, ka) for ka in CLASS_COLUMNS_KA]
+        for at, energy in enumerate(held):
+            if energy is not None:
+                numbers[Number.CLASS_ENERGY_3_KA + at] = energy
+                choices[Choice.LET_THROUGH] = LetThrough.CLASS_USUAL if marked is None else LetThrough.CLASS_MARKED
+    else:
+        choices[Choice.LET_THROUGH] = LetThrough.FUSE
 
 
 def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
@@ -160,8 +180,9 @@ def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
     _put_conductor(numbers, neutral, Number.NEUTRAL_MM2, None)
     same = neutral is not None and protective is not None and neutral.material == protective.material != "steel"
     choices[Choice.INFERABLE] = int(same)
-    if line is not None and (k := adiabatic_k(line.material, line.insulation, line.area_mm2)) is not None:
-        numbers[Number.ADIABATIC_K] = k
+    numbers[Number.ADIABATIC_K], numbers[Number.PROTECTIVE_K] = _k(line), _k(protective)
+    if line is not None and protective is not None:
+        _put_protective_size(numbers, request.overcurrent_device, line, protective)
     _put_service_temperature(point, [c for c in (line, protective) if c is not None])
 
 
@@ -172,6 +193,24 @@ def _put_conductor(numbers: list[float], body: rq.Conductor | None, area: int, p
     if per_km is not None:
         known = ohm_per_km(body.material, body.area_mm2)
         numbers[per_km] = np.nan if known is None else known
+
+
+def _put_protective_size(
+    numbers: list[float], device: rq.Breaker | rq.Fuse | None, line: rq.Conductor, protective: rq.Conductor
+) -> None:
+    """What the table of sizes asks, and whether device and cable are a standard combination."""
+    line_k, protective_k = numbers[Number.ADIABATIC_K], numbers[Number.PROTECTIVE_K]
+    if not np.isnan(line_k + protective_k):
+        numbers[Number.PROTECTIVE_TABLE_MM2] = protective_size(line.area_mm2, line_k, protective_k)
+    if isinstance(device, rq.Breaker) and line.material == protective.material == "copper":
+        areas = (line.area_mm2, protective.area_mm2)
+        to_ka = combined_to_ka(device.characteristic, device.rated_current_a, *areas)
+        numbers[Number.COMBINATION_TO_KA] = to_ka
+
+
+def _k(body: rq.Conductor | None) -> float:
+    found = None if body is None else adiabatic_k(body.material, body.insulation, body.area_mm2)
+    return np.nan if found is None else found
 
 
 def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> None:
@@ -199,6 +238,7 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
         _put(row, Reading.TIME_5, times.five)
     if board is not None:
         _put(row, Reading.ORIGIN_LINE_NEUTRAL, board.line_neutral_loop_impedance_ohm)
+        _put(row, Reading.BOARD_LOOP, board.earth_fault_loop_impedance_ohm)
         if board.assembly_conditional_rating_ka is not None:
             row.numbers[Number.ASSEMBLY_RATING_KA] = board.assembly_conditional_rating_ka
         stated = board.prospective_current_ka

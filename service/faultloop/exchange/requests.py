@@ -106,6 +106,12 @@ def _listed(value: float, values: list[float]) -> float:
     return value
 
 
+LetThroughEnergy = Annotated[
+    float,
+    number("A2*s", most=1e12, positive=True, description="Maker's greatest let-through energy I2t at the board"),
+]
+
+
 class Breaker(Closed):
     """A miniature circuit-breaker, or the overcurrent part of a combined device."""
 
@@ -122,6 +128,10 @@ class Breaker(Closed):
         ),
     ]
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
+    energy_limiting_class: (
+        Annotated[int, Field(strict=True, ge=1, le=3, description="Energy-limiting class as marked"), WHOLE] | None
+    ) = None
+    let_through_energy_a2s: LetThroughEnergy | None = None
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
 
@@ -142,6 +152,7 @@ class Fuse(Closed):
         ),
     ]
     breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None = None
+    let_through_energy_a2s: LetThroughEnergy | None = None
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
 

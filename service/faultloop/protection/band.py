@@ -83,6 +83,25 @@ class BandTable:
         time = self.slow_time[row, passed]
         return np.where(np.isnan(current_a), np.nan, time)
 
+    def tested_current(self, row: NDArray[np.intp], current_a: Array) -> Array:
+        """Greatest tested current at or below a current.
+
+        Parameters
+        ----------
+        row : (n,) array of int
+            Device rows.
+        current_a : (..., n) array
+            Prospective current, r.m.s. [A]; leading axes are further currents of the same devices.
+
+        Returns
+        -------
+        (..., n) array
+            Current [A] of the point whose time `greatest_time` gives; nan below the first one.
+        """
+        passed = (current_a[..., None] >= self.slow_current[row]).sum(axis=-1)
+        current = self.slow_current[row, np.maximum(passed - 1, 0)]
+        return np.where(passed > 0, current, np.nan)
+
     def least_time(self, row: NDArray[np.intp], current_a: Array) -> Array:
         """Least operating time at a current: the device does not operate sooner.
 

@@ -11,6 +11,7 @@ from faultloop.protection.band import Band, BandTable, compile_bands
 from faultloop.protection.breakers import breaker_band, breaker_table
 from faultloop.protection.designations import Breaker, Characteristic, Fuse, OvercurrentDevice
 from faultloop.protection.fuses import fuse_band, fuse_families
+from faultloop.protection.let_through import let_through_table
 from faultloop.protection.residual import residual_band, residual_table
 from faultloop.rules.loader import LoadedRules, shipped
 from faultloop.rules.sheets import RuleSet
@@ -101,7 +102,7 @@ def catalogue() -> Catalogue:
     }
     # A time-delayed device has no band in the standards.
     residual = {"general": residual_band("general"), "selective": residual_band("selective"), "time-delayed": Band(())}
-    told = [breaker_table(), *fuse_families().values(), residual_table()]
+    told = [breaker_table(), *fuse_families().values(), residual_table(), let_through_table()]
     return Catalogue(
         overcurrent=compile_bands(list(bands.values())),
         residual=compile_bands(list(residual.values())),
