@@ -49,7 +49,7 @@ def _energies(points: Points, q: Quantities, tried: Array) -> tuple[Array, Array
     return np.fmin(own, tried * tried * residual), np.minimum(time, residual)
 
 
-def _least_energies(points: Points, tried: Array) -> Array:
+def _least_energies(points: Points, q: Quantities, tried: Array) -> Array:
     """Energy [A²s] that flows even if the device acts as soon as its band allows, (T, n); 0 where a quicker one may."""
     least = q.overcurrent_bands.least_time(points.choice(Choice.DEVICE), tried)
     quicker = ~np.isnan(points.number(Number.RESIDUAL_MA)) | (least < AT_ONCE_S)
@@ -92,7 +92,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     needed = let_through_area(k, energy)
     over = ~(needed <= area)
     endless = ~(time <= LONGEST_ADIABATIC_S)
-    surely = let_through_area(k, _least_energies(points, tried))
+    surely = let_through_area(k, _least_energies(points, q, tried))
     cases.when(_anywhere((surely > area) & ~endless), Standing.UNMET, "over-limit")
     cases.when(_anywhere(over & endless), Standing.UNDETERMINED, "too-slow-to-judge")
     cases.when(_anywhere(over & (time > AT_ONCE_S)), Standing.UNDETERMINED, "time-too-long-by-band")
