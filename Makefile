@@ -42,7 +42,7 @@ COMPILE := uv pip compile --universal --generate-hashes --no-header --no-annotat
 
 lock:
 	$(COMPILE) --python-version 3.11 --extra dev --extra build --output-file requirements.txt pyproject.toml
-	$(COMPILE) --python-version 3.13 --extra postgresql --constraint requirements.txt \
+	$(COMPILE) --python-version 3.11 --extra postgresql --constraint requirements.txt \
 		--output-file docker/requirements.txt pyproject.toml
 
 clean:
