@@ -245,6 +245,18 @@ def test_a_set_is_stored_once_under_its_name(url: str) -> None:
     served(url, work)
 
 
+def test_a_name_of_no_possible_form_is_not_looked_for(url: str) -> None:
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        for name in ("workshop-rules:20\u00002", "'; --:2026", "Ω:2026", "a:b:2026", "workshop-rules:２０２６", ""):
+            told = problem(await client.post("/v1/assessments/preview", json={**BY_NAME, "rules": name}), 422)
+            assert "expected one of" in told["errors"][0]["detail"]
+            assert told["errors"][0]["pointer"] == "/rules"
+        for path in ("workshop-rules:20%002", "%27:2026", "%CE%A9:2026", "%FF:2026"):
+            problem(await client.get(f"/v1/rule-sets/{path}"), 404)
+
+    served(url, work)
+
+
 def test_many_storers_of_one_name_make_one_set(url: str) -> None:
     bodies = [own(voltage_factor={"least": {**LEAST, "value": 0.80 + n % 2 / 10}}) for n in range(16)]
 

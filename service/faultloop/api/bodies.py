@@ -63,7 +63,7 @@ async def read_point(request: Request) -> tuple[AssessmentRequest, bytes]:
 def _unknown_rules(error: ValidationError) -> str | None:
     """Name of the rule set that is not published: callers' stored sets are looked up by id:edition."""
     names = [fault["input"] for fault in error.errors(include_url=False) if fault["type"] == UNKNOWN_RULES]
-    return next((name for name in names if ":" in name), None)
+    return next(iter(names), None)
 
 
 async def read_rule_set(request: Request) -> tuple[LoadedRules, LoadedRules | None]:

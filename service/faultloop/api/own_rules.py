@@ -5,7 +5,7 @@ from collections import OrderedDict
 from fastapi.concurrency import run_in_threadpool
 from sqlalchemy import Engine
 
-from faultloop.exchange.own_rules import is_own
+from faultloop.exchange.own_rules import STORED_NAME, is_own
 from faultloop.records import rule_sets
 from faultloop.rules.loader import LoadedRules, content, from_content
 
@@ -22,6 +22,8 @@ class OwnRuleSets:
 
     async def find(self, name: str) -> LoadedRules | None:
         """The set stored under a name."""
+        if not STORED_NAME.fullmatch(name):
+            return None
         if name not in self.by_name:
             told = await run_in_threadpool(rule_sets.content_named, self._engine, name)
             if told is None:

@@ -8,7 +8,7 @@ from fastapi.exceptions import RequestValidationError
 from faultloop.api.bodies import OWN_RULES_BODY, read_rule_set
 from faultloop.api.problems import Refused
 from faultloop.digests import json_bytes
-from faultloop.exchange.own_rules import differences, is_own
+from faultloop.exchange.own_rules import STORED_NAME, differences, is_own
 from faultloop.exchange.resources import RuleSetDetail, RuleSetList, RuleSetListQuery, RuleSetValidation
 from faultloop.records.rule_sets import content_named, contents
 from faultloop.rules.loader import LoadedRules, from_content, resolve, shipped
@@ -98,7 +98,7 @@ def get_rule_set(rules: Name, request: Request) -> Response:
     """Give one rule set with every value, its unit, clause, source and the day it was last looked at."""
     loaded = resolve(rules)
     if loaded is None:
-        content = content_named(request.app.state.engine, rules)
+        content = content_named(request.app.state.engine, rules) if STORED_NAME.fullmatch(rules) else None
         if content is None:
             raise Refused("not-found", "No such rule set; the list of rule sets names them.")
         loaded = from_content(content)

@@ -1,5 +1,6 @@
 """A caller's own set of rules: what it says is put over a shipped set and held to the contract."""
 
+import re
 from collections.abc import Iterable, Iterator
 from functools import lru_cache
 from typing import Annotated, Any
@@ -19,6 +20,7 @@ LONGEST_SET = 65_536
 LONGEST_ID = 48
 LONGEST_TITLE = 200
 CAUTION = "own-rules"
+STORED_NAME = re.compile(r"[a-z0-9]+(-[a-z0-9]+)*:[0-9]{4}(-[0-9]{2})?", re.ASCII)
 CHARACTERISTICS = ("B", "C", "D")
 NEEDED_CLAUSES = frozenset(check.id for check in CHECKS)
 KNOWN_CLAUSES = NEEDED_CLAUSES | {f"{name}-tt" for name in NEEDED_CLAUSES}

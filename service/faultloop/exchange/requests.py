@@ -251,9 +251,10 @@ NamedRules = Annotated[
     str,
     Field(
         max_length=60,
-        pattern=r"^[a-z0-9]+(-[a-z0-9]+)*(:[0-9]{4}(-[0-9]{2})?)?$",
         description="A published set, with an edition or its newest, or a stored set of your own as id:edition",
         examples=["bs-7671", "iec-60364:2017"],
+        # Refused by naming the known ones, not by its form.
+        json_schema_extra={"pattern": r"^[a-z0-9]+(-[a-z0-9]+)*(:[0-9]{4}(-[0-9]{2})?)?$"},
     ),
 ]
 RulesChoice = Annotated[
