@@ -4,10 +4,11 @@ import json
 from dataclasses import dataclass
 from typing import Any
 
-from faultloop.digests import json_bytes
+from faultloop.digests import json_bytes, sha256
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.rules.loader import from_content, resolve
+from faultloop.rules.strict import DataFileError
 
 MOST_DIFFERENCES = 100
 
@@ -26,7 +27,10 @@ def replay(request: bytes, answer: bytes, rules: str, input_digest: str, content
 
     A caller's own set is the content that was remembered with the assessment, whatever the request names.
     """
-    own = None if content is None else {rules: from_content(content)}
+    try:
+        own = None if content is None else {rules: from_content(content)}
+    except DataFileError:
+        return Replay(False, None, [{"pointer": "/provenance/rules_digest", "stored": sha256(content or b"")}])
     if own is None and resolve(rules) is None:
         return Replay(False, None, [{"pointer": "/provenance/rules", "stored": rules}])
     body = {**json.loads(request), "rules": rules}

@@ -52,7 +52,7 @@ def test_limits_as_printed(run: Callable[[Work], None]) -> None:
         assert fifths.json()["greatest_loop_impedance_ohm"] == pytest.approx(0.8 * 0.95 * 230 / 320, rel=1e-5)
         none = (await client.get("/v1/limits", params={"device": "B16", "time_s": 0.05})).json()
         assert "greatest_loop_impedance_ohm" not in none
-        problem(await client.get("/v1/limits", params={"device": "B1000"}), 404)
+        problem(await client.get("/v1/limits", params={"device": "B1000"}), 422)
         problem(await client.get("/v1/limits", params={"device": "B16", "time_s": 0}), 422)
 
     run(work)

@@ -10,14 +10,16 @@ from typing import Any
 import httpx
 import pytest
 from fastapi import FastAPI
-from sqlalchemy import Engine
+from sqlalchemy import Engine, update
 
 from faultloop import assess, assess_many
+from faultloop.digests import canonical_bytes, sha256
 from faultloop.exchange.examples import EXAMPLE_REQUEST
 from faultloop.exchange.own_rules import KNOWN_CLAUSES
+from faultloop.records import rule_sets
 from faultloop.records.database import open_engine
 from faultloop.records.migrate import migrate
-from faultloop.records.rule_sets import content_of
+from faultloop.records.tables import RULE_SET
 from faultloop.rules.loader import content, from_content, shipped
 from tests.api.client import problem, served
 
@@ -302,7 +304,7 @@ def test_a_stored_assessment_replays_alike_in_a_later_service(url: str, engine: 
         return told
 
     stored = served(url, first)
-    told = content_of(engine, stored["provenance"]["rules_digest"])
+    told = rule_sets.content_of(engine, stored["provenance"]["rules_digest"])
     assert told is not None
     assert from_content(told).rules.voltage_factor.least.value == 0.9
 
@@ -313,6 +315,29 @@ def test_a_stored_assessment_replays_alike_in_a_later_service(url: str, engine: 
         assert (await client.put(where, json=body)).status_code == 200
 
     served(url, later)
+
+
+def test_a_set_of_another_version_is_shown_but_never_judged_by(url: str, engine: Engine) -> None:
+    told = json.loads(content(shipped()["iec-60364:2017"]))
+    told |= {"id": "old-rules", "title": "Old rules", "cautions": ["own-rules"]}
+    del told["electrode"]
+    older = canonical_bytes(told)
+    rule_sets.store(engine, sha256(older), "old-rules:2017", older)
+    where = address()
+
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        stored = (await client.put(where, json=WITH_OWN)).json()["provenance"]["rules_digest"]
+        assert (await client.get("/v1/rule-sets/old-rules:2017")).json()["values"] == told
+        assert "old-rules:2017" in (await client.get("/v1/rule-sets")).text
+        detail = problem(await client.post("/v1/assessments/preview", json={**BY_NAME, "rules": "old-rules:2017"}), 400)
+        assert "another version" in detail["detail"]
+        with engine.begin() as connection:
+            connection.execute(update(RULE_SET).where(RULE_SET.c.digest == stored).values(content=older))
+        again = (await client.get(f"{where}/replay")).json()
+        assert again["identical"] is False
+        assert [item["pointer"] for item in again["differences"]] == ["/provenance/rules_digest"]
+
+    served(url, work)
 
 
 def test_every_check_can_be_given_a_clause_of_ones_own() -> None:

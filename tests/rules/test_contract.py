@@ -4,6 +4,7 @@ import copy
 import json
 import random
 import tomllib
+from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
 
@@ -56,6 +57,19 @@ def changed(key: str, place: str, value: float) -> RuleSet:
 @pytest.mark.parametrize("key", KEYS)
 def test_every_shipped_set_keeps_the_contract(key: str) -> None:
     assert faults(shipped()[key].rules) == []
+
+
+def parameters(told: Any, above: str = "") -> Iterator[str]:
+    """Places of all values of a set that stand for themselves, not in a row of a table."""
+    if isinstance(told, dict) and "unit" in told and "value" in told:
+        yield above
+    elif isinstance(told, dict):
+        for name, below in told.items():
+            yield from parameters(below, f"{above}.{name}" if above else name)
+
+
+def test_every_value_of_a_set_has_its_bounds() -> None:
+    assert set(parameters(json.loads(content(shipped()["iec-60364:2017"])))) == set(BOUNDS)
 
 
 @pytest.mark.parametrize("name", sorted(BOUNDS))

@@ -12,7 +12,7 @@ from faultloop.assessment.explain import Explainer, Names
 from faultloop.assessment.judged import Condition
 from faultloop.assessment.limits import loop_limit
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import TemperaturePolicy, from_rows
+from faultloop.assessment.points import Decision, TemperaturePolicy, from_rows
 from faultloop.assessment.texts import Said, texts
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.mapping import mapped
@@ -143,7 +143,13 @@ def test_every_limit_can_be_explained(device: str, policy: str) -> None:
 
 def test_sentences_are_used_and_have_a_variant_for_each_case() -> None:
     named = {word[1:] for said in all_said() for word in said.explanation.split() if word.startswith("@")}
-    variants = {"limit": POLICIES, "heating": POLICIES, "line-neutral": POLICIES, "loop": sorted(Basis.codes())}
+    variants = {
+        "limit": POLICIES,
+        "heating": [*POLICIES, "electrode"],
+        "line-neutral": POLICIES,
+        "loop": sorted(Basis.codes()),
+        "within": sorted(Decision.codes()),
+    }
     needed = {f"{name}.{v}" for name in named if name in variants for v in variants[name]}
     needed |= {name for name in named if name not in variants}
     assert needed <= set(TEXTS.sentences)

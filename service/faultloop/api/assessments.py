@@ -111,7 +111,12 @@ def _stored_answer(stored: Stored, status: int) -> Response:
     return Response(stored.record.answer, status, media_type=JSON, headers=headers)
 
 
-@router.get("/{id:uuid}", response_model=Assessment, summary="Read a stored assessment")
+@router.get(
+    "/{id:uuid}",
+    response_model=Assessment,
+    summary="Read a stored assessment",
+    responses={304: {"description": "Not changed since the tag in If-None-Match"}},
+)
 def get_assessment(
     id: UUID,  # noqa: A002
     request: Request,
@@ -142,7 +147,8 @@ def list_assessments(query: Annotated[ListQuery, Query()], request: Request) -> 
     if len(rows) > size:
         cursor = _cursor(rows[size - 1].sequence, filters)
         wanted = {"page_size": size, "cursor": cursor, **{k: v for k, v in filters.items() if v}}
-        body["next"] = str(request.url.replace_query_params(**wanted))
+        following = request.url.replace_query_params(**wanted)
+        body["next"] = f"{following.path}?{following.query}"
     return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
 
 

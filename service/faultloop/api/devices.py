@@ -27,11 +27,11 @@ router = APIRouter(prefix="/v1", tags=["devices"])
 JSON = "application/json"
 
 
-def _device(designation: str) -> OvercurrentDevice | ResidualDevice:
+def _device(designation: str, otherwise: str = "not-found") -> OvercurrentDevice | ResidualDevice:
     try:
         return parse_device(designation)
     except UnknownDesignation as error:
-        raise Refused("not-found", str(error)) from None
+        raise Refused(otherwise, str(error)) from None
 
 
 def _rules(name: str) -> LoadedRules:
@@ -105,7 +105,7 @@ def _band(device: OvercurrentDevice | ResidualDevice, rules: LoadedRules) -> tup
 @router.get("/limits", response_model=LimitBody, summary="Greatest loop impedance for a device and a time")
 async def get_limit(query: Annotated[LimitQuery, Query()]) -> Response:
     """Give the loop impedance up to which a device is sure to operate within a time."""
-    device, rules = _device(query.device), _rules(query.rules)
+    device, rules = _device(query.device, "invalid-query"), _rules(query.rules)
     limit = loop_limit(device, rules.rules, query.time_s, query.policy, query.nominal_voltage_to_earth_v)
     body: dict[str, Any] = {"device": device.designation, "time_s": query.time_s}
     if limit.greatest_loop_impedance_ohm is not None and limit.least_operating_current_a is not None:

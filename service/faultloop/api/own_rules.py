@@ -5,9 +5,11 @@ from collections import OrderedDict
 from fastapi.concurrency import run_in_threadpool
 from sqlalchemy import Engine
 
+from faultloop.api.problems import Refused
 from faultloop.exchange.own_rules import STORED_NAME, is_own
 from faultloop.records import rule_sets
 from faultloop.rules.loader import LoadedRules, content, from_content
+from faultloop.rules.strict import DataFileError
 
 KEPT = 256
 
@@ -28,7 +30,11 @@ class OwnRuleSets:
             told = await run_in_threadpool(rule_sets.content_named, self._engine, name)
             if told is None:
                 return None
-            self.by_name[name] = from_content(told)
+            try:
+                self.by_name[name] = from_content(told)
+            except DataFileError:
+                detail = "This stored rule set was written for another version of the service: store it anew."
+                raise Refused("refused", detail) from None
         self.by_name.move_to_end(name)
         while len(self.by_name) > KEPT:
             self.by_name.popitem(last=False)

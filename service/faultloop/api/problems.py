@@ -51,7 +51,7 @@ KINDS: dict[str, tuple[int, str, str]] = {
         "The body is not readable JSON",
         "Send one JSON object in UTF-8. NaN, Infinity and trailing commas are not JSON.",
     ),
-    "not-found": (404, "Nothing is here", "Check the address and the id."),
+    "not-found": (404, "Nothing is here", "Check the address and the id; ids are UUIDs."),
     "method-not-allowed": (
         405,
         "This method is not offered here",
@@ -154,6 +154,8 @@ def _detail(error: dict[str, Any]) -> str:
     kind, context = error["type"], error.get("ctx", {})
     if kind == "extra_forbidden":
         near = get_close_matches(str(error["loc"][-1]), _known_fields(), n=1, cutoff=0.75)
+        if error["loc"][:1] == ("query",):
+            return "no such parameter here; the document at /openapi.json names those that there are"
         return "no such field here" + (
             f"; did you mean {near[0]}?" if near else "; check the spelling and the unit in its name"
         )

@@ -1,5 +1,6 @@
 """/v1/rule-sets: the rule sets held here with every value and source, and callers' own: tried, stored, read."""
 
+import json
 from typing import Annotated, Any
 
 from fastapi import APIRouter, Header, Path, Query, Request, Response
@@ -7,46 +8,44 @@ from fastapi.exceptions import RequestValidationError
 
 from faultloop.api.bodies import OWN_RULES_BODY, read_rule_set
 from faultloop.api.problems import Refused
-from faultloop.digests import json_bytes
-from faultloop.exchange.own_rules import STORED_NAME, differences, is_own
+from faultloop.digests import json_bytes, sha256
+from faultloop.exchange.own_rules import CAUTION, STORED_NAME, differences
 from faultloop.exchange.resources import RuleSetDetail, RuleSetList, RuleSetListQuery, RuleSetValidation
 from faultloop.records.rule_sets import content_named, contents
-from faultloop.rules.loader import LoadedRules, from_content, resolve, shipped
+from faultloop.rules.loader import content, resolve, shipped
 
 router = APIRouter(prefix="/v1/rule-sets", tags=["rule sets"])
 JSON = "application/json"
 Name = Annotated[str, Path(min_length=1, max_length=60, description="id, or id:edition")]
 
 
-def _listed(loaded: LoadedRules) -> dict[str, Any]:
-    rules = loaded.rules
+def _listed(content: bytes) -> dict[str, Any]:
+    """One set as its content tells, whichever version of the service it was written for."""
+    told, digest = json.loads(content), sha256(content)
+    newest = resolve(told["id"])
     return {
-        "rules": rules.key,
-        "id": rules.id,
-        "edition": rules.edition,
-        "title": rules.title,
-        "editions_named": rules.editions_named,
-        "newest": resolve(rules.id) is loaded,
-        "published": not is_own(loaded),
-        "digest": loaded.digest,
+        "rules": f"{told['id']}:{told['edition']}",
+        **{name: told[name] for name in ("id", "edition", "title", "editions_named")},
+        "newest": newest is not None and newest.digest == digest,
+        "published": CAUTION not in told["cautions"],
+        "digest": digest,
     }
 
 
-def _detail(loaded: LoadedRules, status: int = 200) -> Response:
-    body = {**_listed(loaded), "values": loaded.rules.model_dump(mode="json")}
-    headers = {"ETag": f'"{loaded.digest}"', "Location": f"/v1/rule-sets/{loaded.rules.key}"}
+def _detail(content: bytes, status: int = 200) -> Response:
+    body = {**_listed(content), "values": json.loads(content)}
+    headers = {"ETag": f'"{body["digest"]}"', "Location": f"/v1/rule-sets/{body['rules']}"}
     return Response(json_bytes(body), status, media_type=JSON, headers=headers)
 
 
 @router.get("", response_model=RuleSetList, summary="List the rule sets held here")
 def list_rule_sets(query: Annotated[RuleSetListQuery, Query()], request: Request) -> Response:
     """Give every published edition (old ones stay), then callers' own sets page by page; `next` leads on."""
-    told = contents(request.app.state.engine, after=query.cursor or "", size=query.page_size + 1)
-    own = [from_content(content) for content in told]
-    published = [] if query.cursor else list(shipped().values())
-    body: dict[str, Any] = {"items": [_listed(loaded) for loaded in [*published, *own[: query.page_size]]]}
+    own = contents(request.app.state.engine, after=query.cursor or "", size=query.page_size + 1)
+    published = [] if query.cursor else [content(loaded) for loaded in shipped().values()]
+    body: dict[str, Any] = {"items": [_listed(told) for told in [*published, *own[: query.page_size]]]}
     if len(own) > query.page_size:
-        last = own[query.page_size - 1].rules.key
+        last = body["items"][-1]["rules"]
         body["next"] = str(request.url.include_query_params(page_size=query.page_size, cursor=last))
     return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
 
@@ -90,16 +89,16 @@ async def put_rule_set(
     if digest != loaded.digest:
         kind = "conflict" if if_none_match is None else "precondition-failed"
         raise Refused(kind, "A stored rule set is not changed: give another content another edition.")
-    return _detail(loaded, 201 if created else 200)
+    return _detail(content(loaded), 201 if created else 200)
 
 
 @router.get("/{rules}", response_model=RuleSetDetail, summary="Read a rule set")
 def get_rule_set(rules: Name, request: Request) -> Response:
     """Give one rule set with every value, its unit, clause, source and the day it was last looked at."""
     loaded = resolve(rules)
-    if loaded is None:
-        content = content_named(request.app.state.engine, rules) if STORED_NAME.fullmatch(rules) else None
-        if content is None:
-            raise Refused("not-found", "No such rule set; the list of rule sets names them.")
-        loaded = from_content(content)
-    return _detail(loaded)
+    told = content(loaded) if loaded else None
+    if told is None and STORED_NAME.fullmatch(rules):
+        told = content_named(request.app.state.engine, rules)
+    if told is None:
+        raise Refused("not-found", "No such rule set; the list of rule sets names them.")
+    return _detail(told)

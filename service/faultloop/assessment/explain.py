@@ -9,7 +9,17 @@ import numpy as np
 
 from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import Choice, Earthing, LetThrough, Method, Number, Points, Reading, TemperaturePolicy
+from faultloop.assessment.points import (
+    Choice,
+    Decision,
+    Earthing,
+    LetThrough,
+    Method,
+    Number,
+    Points,
+    Reading,
+    TemperaturePolicy,
+)
 from faultloop.assessment.texts import Said, texts
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.electrical.fault_current import prospective_current
@@ -17,6 +27,7 @@ from faultloop.electrical.measurement import Array
 from faultloop.protection.catalogue import catalogue
 
 _POLICIES = {code: word for word, code in TemperaturePolicy.codes().items()}
+_DECISIONS = {code: word for word, code in Decision.codes().items()}
 _BASES = {code: word for word, code in Basis.codes().items()}
 
 
@@ -117,7 +128,7 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     ],
     "side": lambda q: q.phrases["below" if q.number("nominal") <= q.number("limit") else "above"],
     "z_or_value": lambda q: q["nominal"],
-    "excess_told": lambda q: max(q.number("nominal"), 0.0),
+    "excess_told": lambda q: max(round(q.number("nominal"), 9), 0.0),
 }
 
 
@@ -129,10 +140,12 @@ Template = tuple[str, bool, Said]
 
 
 @lru_cache(maxsize=256)
-def _templates(language: str, policy: str, basis: str) -> list[list[Template]]:
+def _templates(language: str, policy: str, basis: str, decision: str) -> list[list[Template]]:
     """For every reason of every check: its template, whether it quotes anything at all, and what else is said."""
     told = texts(language)
-    variants = {"limit": policy, "heating": policy, "line-neutral": policy, "loop": basis}
+    # Of a loop taken from the electrode nothing is heated.
+    heating = basis if basis == "electrode" else policy
+    variants = {"limit": policy, "heating": heating, "line-neutral": policy, "loop": basis, "within": decision}
 
     def template(said: Said) -> Template:
         text = told.expanded(said.explanation, variants)
@@ -151,10 +164,11 @@ class Explainer:
             columns = _columns(points, outcome)
         self._names = tuple(columns)
         self._rows = list(zip(*(_opened(column, words) for column in columns.values()), strict=True))
-        policies, bases = points.choices[Choice.TEMPERATURE_POLICY].tolist(), outcome.quantities.loops.basis.tolist()
+        choices = [points.choices[which].tolist() for which in (Choice.TEMPERATURE_POLICY, Choice.DECISION)]
+        chosen = zip(choices[0], outcome.quantities.loops.basis.tolist(), choices[1], strict=True)
         self._templates = [
-            _templates(language, _POLICIES[policy], _BASES[basis])
-            for policy, basis in zip(policies, bases, strict=True)
+            _templates(language, _POLICIES[policy], _BASES[basis], _DECISIONS[decision])
+            for policy, basis, decision in chosen
         ]
         own = (found.nominal.tolist(), found.limit.tolist(), found.least.tolist(), found.greatest.tolist())
         self._own = [
@@ -231,6 +245,11 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "touch": q.touch_v,
         "k": number(Number.ADIABATIC_K),
         "area": number(Number.LINE_MM2),
+        "operating_ma": value[Reading.OPERATING_CURRENT],
+        "voltage": value[Reading.VOLTAGE],
+        "dead_excess": q.loops.expected.dead_excess,
+        "excess_below": -q.loops.excess,
+        "excess_above": q.loops.excess,
         "pe_k": number(Number.PROTECTIVE_K),
         "pe_area": number(Number.PROTECTIVE_MM2),
         "pe_energy": (number(Number.PROTECTIVE_K) * number(Number.PROTECTIVE_MM2)) ** 2,
@@ -239,7 +258,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "in_device": number(Number.DEVICE_RATED_CURRENT),
         "iz": number(Number.CARRYING_CAPACITY_A),
         "icn": number(Number.BREAKING_CAPACITY_KA),
-        "pscc": number(Number.BOARD_CURRENT_KA),
+        "pscc": value[Reading.BOARD_CURRENT],
         "overcurrent_least": q.overcurrent_s.least,
         "overcurrent_nominal": q.overcurrent_s.nominal,
         "time_1": value[Reading.TIME_1],

@@ -25,6 +25,7 @@ class Condition(Codes):
     SUPERVISION = 3
     CONDUCTOR_RATING = 4
     BACK_UP_DOCUMENTED = 5
+    INSTRUMENT_CHECKED = 6
 
 
 class Cases:

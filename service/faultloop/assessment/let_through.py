@@ -38,6 +38,6 @@ def _greatest_at_board(g: Given, current: Interval) -> Array:
     number, board, external = g.points.number, g.reading(Reading.BOARD_LOOP), g.reading(Reading.EXTERNAL)
     read = np.where(np.isnan(board.least), external.least, board.least)
     by_reading = prospective_current(g.rule["c_max"], number(Number.VOLTAGE), read)
-    told = np.fmax(number(Number.BOARD_CURRENT_KA), number(Number.DECLARED_CURRENT_KA)) * 1000.0
+    told = np.fmax(g.reading(Reading.BOARD_CURRENT).greatest, number(Number.DECLARED_CURRENT_KA)) * 1000.0
     known = np.where(np.isnan(by_reading), told, by_reading)
     return np.where(np.isnan(known), np.inf, np.fmax(known, current.greatest))

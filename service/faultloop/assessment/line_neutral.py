@@ -6,7 +6,7 @@ import numpy as np
 
 from faultloop.assessment.given import Given
 from faultloop.assessment.loops import Fault, Loops
-from faultloop.assessment.points import Bound, Choice, Flags, Method, Number, Reading
+from faultloop.assessment.points import Bound, Choice, Earthing, Flags, Method, Number, Reading
 from faultloop.electrical.fault_current import heated_loop
 from faultloop.electrical.measurement import Array, Interval, combined
 
@@ -70,5 +70,7 @@ def _cold(g: Given, found: Loops) -> tuple[Interval, Array, Array]:
         np.where(use, total, read.nominal),
     )
     own = (points.bound[at] == Bound.EXACT) & (points.method[at] <= Method.HIGH_CURRENT)
-    part = np.where(own, origin, np.where(g.tt, np.nan, found.external))
-    return cold, part, np.where(own, origin_u, found.external_u)
+    # Only where neutral and earth are one conductor before the origin is Ze the line-neutral loop there too.
+    pen = points.choice(Choice.EARTHING) == Earthing.TN_C_S
+    part = np.where(own, origin, np.where(pen, found.external, np.nan))
+    return cold, part, np.where(own, origin_u, np.where(pen, found.external_u, np.nan))

@@ -42,6 +42,10 @@ class Reading(Codes):
     TIME_HALF = 10
     INSULATION = 11
     BOARD_LOOP = 12
+    BOARD_CURRENT = 13
+    VOLTAGE = 14
+    NEUTRAL_EARTH_VOLTAGE = 15
+    OPERATING_CURRENT = 16
 
 
 class Bound(Codes):
@@ -83,7 +87,7 @@ class Number(Codes):
     TEST_C = 13
     ADIABATIC_K = 14
     BREAKING_CAPACITY_KA = 15
-    BOARD_CURRENT_KA = 16
+    BETWEEN_LINES_V = 16
     CARRYING_CAPACITY_A = 17
     COVERAGE_SCALE = 18
     RESIDUAL_QUICK_MA = 19
@@ -96,6 +100,7 @@ class Number(Codes):
     CLASS_ENERGY_6_KA = 26
     CLASS_ENERGY_10_KA = 27
     COMBINATION_TO_KA = 28
+    ZERO_EXCESS = 29
 
 
 class Choice(Codes):
@@ -119,6 +124,7 @@ class Choice(Codes):
     LOADS_CONNECTED = 15
     MULTIPOLE = 16
     LET_THROUGH = 17
+    CALIBRATION_LAPSED = 18
 
 
 class Earthing(Codes):

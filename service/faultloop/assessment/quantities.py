@@ -7,7 +7,7 @@ import numpy as np
 from faultloop.assessment.given import Given, given
 from faultloop.assessment.let_through import LetThroughEnergy, let_through
 from faultloop.assessment.line_neutral import LineNeutral, line_neutral
-from faultloop.assessment.loops import Loops, loops
+from faultloop.assessment.loops import Basis, Loops, loops
 from faultloop.assessment.points import (
     Choice,
     Codes,
@@ -24,7 +24,7 @@ from faultloop.assessment.points import (
 from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
 from faultloop.assessment.severity import Severity, severity
-from faultloop.assessment.standing import compare
+from faultloop.assessment.standing import Verdict, compare
 from faultloop.assessment.tables import Tables
 from faultloop.electrical.body import touch_voltage
 from faultloop.electrical.conductors import temperature_factor
@@ -33,6 +33,8 @@ from faultloop.electrical.measurement import Array, Interval
 from faultloop.protection.band import BandTable
 
 AT_MOST = np.array(1)
+# Nominal voltages are rounded: 230/400 V is not quite the square root of three.
+SYSTEM_RATIO_TOLERANCE = 0.1
 
 
 class Wanting(Codes):
@@ -60,6 +62,7 @@ class Quantities:
     operating_current: Array
     loop_limit: Array
     overcurrent: Ints
+    no_trip_undecided: Flags
     current: Interval
     overcurrent_s: Interval
     residual: ResidualTimes
@@ -103,6 +106,9 @@ def shared(points: Points, tables: Tables) -> Quantities:
     slow = band.greatest_time(device, np.array([current.least, current.nominal]))
     overcurrent_s = Interval(band.least_time(device, current.greatest), slow[0], slow[1])
     residual = residual_times(g, current)
+    overcurrent = compare(compared, limit, AT_MOST, points.choice(Choice.DECISION))
+    # A no-trip reading never fails alone within what its method can add, whatever the decision rule.
+    undecided = (found.basis == Basis.NO_TRIP) & (overcurrent == Verdict.FAIL) & (compared.least <= limit)
     touch, touch_known = _touch(g, found, hot, factor)
     return Quantities(
         given=g,
@@ -114,7 +120,8 @@ def shared(points: Points, tables: Tables) -> Quantities:
         compared=compared,
         operating_current=operating,
         loop_limit=limit,
-        overcurrent=compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)),
+        overcurrent=np.where(undecided, Verdict.UNDETERMINED, overcurrent),
+        no_trip_undecided=undecided,
         current=current,
         overcurrent_s=overcurrent_s,
         residual=residual,
@@ -133,11 +140,19 @@ def _wanting(g: Given, required: Array) -> Ints:
     rows = g.rule.table.nominal[points.choice(Choice.RULES)]
     nominal = (points.number(Number.VOLTAGE)[:, None] == rows).any(axis=1)
     no_role = points.choice(Choice.ROLE) == Role.UNKNOWN
-    unclear = ~nominal | (np.isnan(required) & ~no_role)
+    unclear = ~nominal | ~_system_voltage(g) | (np.isnan(required) & ~no_role)
     wanting = np.where(unclear, Wanting.VOLTAGE, np.where(no_role, Wanting.ROLE, Wanting.NOTHING))
     wanting = np.where(points.choice(Choice.CURRENT) == Current.DC, Wanting.DIRECT_CURRENT, wanting)
     wanting = np.where(covered, wanting, Wanting.EARTHING_NOT_COVERED)
     return np.where(earthing == Earthing.UNKNOWN, Wanting.EARTHING, wanting)
+
+
+def _system_voltage(g: Given) -> Flags:
+    """Whether the voltage to earth can be one: by the voltage between lines, or low enough not to be asked about."""
+    voltage, between = g.points.number(Number.VOLTAGE), g.points.number(Number.BETWEEN_LINES_V)
+    three_phase, split_phase = np.abs(between / voltage - np.sqrt(3.0)), np.abs(between / voltage - 2.0)
+    belongs = np.fmin(three_phase, split_phase) <= SYSTEM_RATIO_TOLERANCE
+    return np.where(np.isnan(between), ~(voltage > g.rule["voltage_asked"]), belongs)
 
 
 def _loop_limit(g: Given, operating: Array) -> Array:

@@ -24,7 +24,8 @@ CONDITIONS = Condition.codes()
 REPORTS = np.array([check.report for check in CHECKS])[:, None]
 SENSES = np.array([check.sense for check in CHECKS])[:, None]
 # Reason of a comparison by verdict: fail, undetermined, marginal, pass-with-conditions, pass; two never compared.
-COMPARED_REASON = np.array([2, -1, 1, 0, 0, -1, -1])
+# A check settles whatever is unknown before it compares, so an undetermined comparison has no words of its own.
+COMPARED_REASON = np.array([2, 1, 1, 0, 0, 0, 0])
 
 
 @dataclass(frozen=True, slots=True)

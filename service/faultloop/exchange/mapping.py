@@ -26,6 +26,7 @@ from faultloop.assessment.points import (
 from faultloop.assessment.tables import NO_DEVICE, Tables, tables
 from faultloop.electrical.measurement import coverage_scale
 from faultloop.exchange import requests as rq
+from faultloop.exchange.fields import Instrument
 from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.exchange.own_rules import is_own
 from faultloop.protection import designations as ds
@@ -49,6 +50,19 @@ _MEANS: dict[str | None, int] = {None: 0}
 _MEANS.update(MeansOfEarthing.codes())
 _POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
 _POLARITY.update(Polarity.codes())
+_READINGS = (
+    (Reading.EXTERNAL, "external_earth_fault_loop_impedance_ohm"),
+    (Reading.LINE_NEUTRAL, "line_neutral_loop_impedance_ohm"),
+    (Reading.LINE_PLUS_PROTECTIVE, "line_plus_protective_resistance_ohm"),
+    (Reading.PROTECTIVE, "protective_conductor_resistance_ohm"),
+    (Reading.ELECTRODE, "earth_electrode_resistance_ohm"),
+    (Reading.INSULATION, "insulation_resistance_megohm"),
+    (Reading.OPERATING_CURRENT, "residual_operating_current_ma"),
+    (Reading.VOLTAGE, "voltage_v"),
+    (Reading.NEUTRAL_EARTH_VOLTAGE, "voltage_neutral_to_earth_v"),
+)
+_UNUSED_READINGS = ("line_line_loop_impedance_ohm", "standing_leakage_ma")
+_UNUSED_SUPPLY = ("frequency_hz",)
 CLASS_COLUMNS_KA = (3.0, 6.0, 10.0)
 
 
@@ -63,6 +77,7 @@ class Mapped:
     device: str | None
     residual: str | None
     assumptions: list[str] = field(default_factory=list)
+    unused: list[str] = field(default_factory=list)
 
 
 def tables_of(requests: Sequence[rq.AssessmentRequest]) -> Tables:
@@ -75,6 +90,8 @@ def mapped(request: rq.AssessmentRequest, by: Tables | None = None) -> Mapped:
     """Turn one request into a row of the tables."""
     rules = request.rule_set
     point = Mapped(Row(), by or tables_of([request]), rules, _policy(request.policy, rules), None, None)
+    if "rules" not in request.model_fields_set:
+        point.assumptions.append("rules")
     _put_supply(point, request)
     _put_devices(point, request)
     _put_circuit(point, request)
@@ -104,6 +121,8 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
         choices[Choice.MEANS_OF_EARTHING] = _MEANS[supply.means_of_earthing.state]
     if supply.declared_prospective_current_ka is not None:
         numbers[Number.DECLARED_CURRENT_KA] = supply.declared_prospective_current_ka
+    if supply.nominal_voltage_between_lines_v is not None:
+        numbers[Number.BETWEEN_LINES_V] = supply.nominal_voltage_between_lines_v
     if supply.nominal_voltage_to_earth_v is not None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
@@ -223,12 +242,9 @@ def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> N
 def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     readings, board, row = request.readings, request.board, point.row
     _put_loop(point, readings.earth_fault_loop_impedance_ohm)
-    _put(row, Reading.EXTERNAL, readings.external_earth_fault_loop_impedance_ohm)
-    _put(row, Reading.LINE_NEUTRAL, readings.line_neutral_loop_impedance_ohm)
-    _put(row, Reading.LINE_PLUS_PROTECTIVE, readings.line_plus_protective_resistance_ohm)
-    _put(row, Reading.PROTECTIVE, readings.protective_conductor_resistance_ohm)
-    _put(row, Reading.ELECTRODE, readings.earth_electrode_resistance_ohm)
-    _put(row, Reading.INSULATION, readings.insulation_resistance_megohm)
+    for which, name in _READINGS:
+        if (stated := getattr(readings, name)) is not None:
+            _put(row, which, stated)
     row.choices[Choice.POLARITY] = _POLARITY[readings.polarity]
     if (times := readings.residual_operating_time_ms) is not None:
         row.choices[Choice.LOADS_CONNECTED] = int(times.loads_connected is True)
@@ -239,10 +255,9 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     if board is not None:
         _put(row, Reading.ORIGIN_LINE_NEUTRAL, board.line_neutral_loop_impedance_ohm)
         _put(row, Reading.BOARD_LOOP, board.earth_fault_loop_impedance_ohm)
+        _put(row, Reading.BOARD_CURRENT, board.prospective_current_ka)
         if board.assembly_conditional_rating_ka is not None:
             row.numbers[Number.ASSEMBLY_RATING_KA] = board.assembly_conditional_rating_ka
-        stated = board.prospective_current_ka
-        row.numbers[Number.BOARD_CURRENT_KA] = _exact(stated)
     _put_method(point)
     heated = (
         readings.earth_fault_loop_impedance_ohm,
@@ -257,20 +272,23 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     )
     if any(stated is not None and not _states_instrument(stated) for stated in used):
         point.assumptions.append("instrument")
+    point.unused.extend(_unused(request))
+
+
+def _unused(request: rq.AssessmentRequest) -> list[str]:
+    """Values that were given and on which nothing is decided: what is ignored is said."""
+    parts = (("supply", request.supply, _UNUSED_SUPPLY), ("readings", request.readings, _UNUSED_READINGS))
+    found = [f"{part}.{name}" for part, body, names in parts for name in names if getattr(body, name) is not None]
+    device = request.residual_current_device
+    return found + (["residual_current_device.delay_ms"] if device and device.delay_ms is not None else [])
 
 
 def _put_loop(point: Mapped, stated: float | ReadingBody | None) -> None:
-    """The loop at the point; a declared one was read by nobody, so it is named and not decided on."""
-    if isinstance(stated, ReadingBody) and stated.method == "declared":
-        point.assumptions.append("declared-loop-unused")
+    """The loop at the point; one that nobody read live there is named and not decided on."""
+    if isinstance(stated, ReadingBody) and stated.method in ("declared", "calculated", "dead"):
+        point.assumptions.append("loop-not-read-unused")
     else:
         _put(point.row, Reading.LOOP, stated)
-
-
-def _exact(stated: float | ReadingBody | None) -> float:
-    if isinstance(stated, ReadingBody):
-        return stated.value if stated.bound != "above" else np.nan
-    return np.nan if stated is None else stated
 
 
 def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
@@ -286,6 +304,18 @@ def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
             instrument.percent,
             instrument.digits * instrument.resolution,
         )
+        _put_instrument(row, stated, instrument)
+
+
+def _put_instrument(row: Row, stated: ReadingBody, instrument: Instrument) -> None:
+    """Whether the calibration held on the day of the reading, and how far the joined leads were off zero."""
+    if instrument.calibration_due is not None:
+        # A reading without a date shows no valid calibration.
+        lapsed = stated.taken_at is None or stated.taken_at[:10] > instrument.calibration_due
+        row.choices[Choice.CALIBRATION_LAPSED] |= int(lapsed)
+    if instrument.zero_check is not None:
+        excess = abs(instrument.zero_check) - instrument.digits * instrument.resolution
+        row.numbers[Number.ZERO_EXCESS] = max(np.nan_to_num(row.numbers[Number.ZERO_EXCESS], nan=excess), excess)
 
 
 def _put_method(point: Mapped) -> None:

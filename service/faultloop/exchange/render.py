@@ -25,6 +25,7 @@ from faultloop.protection.catalogue import catalogue
 
 Body = dict[str, Any]
 _VERDICTS = {code: word for word, code in Verdict.codes().items()}
+LOOP_ROWS = np.array([check.quantity == "earth_fault_loop_impedance_ohm" for check in CHECKS])[:, None]
 _URGENCIES = {code: word for word, code in Urgency.codes().items()}
 
 
@@ -85,6 +86,9 @@ class _Values:
             u = np.where(np.isinf(u), np.nan, u / points.coverage)
             probability = conformance_probability(found.nominal, u, found.limit, SENSES)
             worst = np.where(SENSES > 0, found.greatest, found.least)
+            # A no-trip reading errs high by an amount that nobody knows the chance of.
+            unknowable = LOOP_ROWS & (outcome.quantities.loops.basis == Basis.NO_TRIP)
+            probability = np.where(unknowable & (found.verdict == Verdict.MARGINAL), np.nan, probability)
             margin = SENSES * (found.limit - worst) / found.limit * 100.0
         # Where something else decided, how the number stands to its limit would only mislead.
         probability, margin = (np.where(found.compared, of, np.nan) for of in (probability, margin))
@@ -132,6 +136,7 @@ class Renderer:
             cautions.update(told)
             findings.append(self._finding(row, at, point, explanation, question, told))
         not_examined += self._fixed.subjects
+        not_examined += [_not_examined(name, "not-used", self._texts.unused, None) for name in point.unused]
         cautions |= cautions_of(self._points, self._outcome, at)
         cautions.update(point.rules.rules.cautions)
         return {

@@ -7,6 +7,8 @@ from importlib import resources
 from importlib.resources.abc import Traversable
 from pathlib import Path
 
+from pydantic import ValidationError
+
 from faultloop.digests import canonical_bytes, digest
 from faultloop.rules.sheets import RuleSet
 from faultloop.rules.strict import DataFileError, read_sheet, read_table, refuse_duplicates
@@ -77,8 +79,11 @@ def content(loaded: LoadedRules) -> bytes:
 
 
 def from_content(told: bytes) -> LoadedRules:
-    """Read a set back from such bytes."""
-    return digested(RuleSet.model_validate_json(told))
+    """Read a set back from such bytes; one that was written for another shape of sheet is refused."""
+    try:
+        return digested(RuleSet.model_validate_json(told))
+    except ValidationError as error:
+        raise DataFileError("this rule set was written for another version of the service") from error
 
 
 def digested(rules: RuleSet) -> LoadedRules:

@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
-from faultloop.assessment.points import Choice, Flags, Number, Points
+from faultloop.assessment.points import Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities, by_policy
 from faultloop.electrical.conductors import withstand_time
 from faultloop.electrical.fault_current import prospective_current
@@ -46,7 +46,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
     withstands = _withstands(points, q)
     rated = points.number(Number.DEVICE_RATED_CURRENT) <= points.number(Number.CARRYING_CAPACITY_A)
-    rated &= points.number(Number.BREAKING_CAPACITY_KA) >= points.number(Number.BOARD_CURRENT_KA)
+    rated &= points.number(Number.BREAKING_CAPACITY_KA) >= q.given.reading(Reading.BOARD_CURRENT).greatest
     implausible = measured & (loop.nominal < q.rule("least_plausible"))
     cases.when(implausible, Standing.UNDETERMINED, "reading-implausible")
     cases.when(inferred & met, Standing.MET, "inferred-within-limit")

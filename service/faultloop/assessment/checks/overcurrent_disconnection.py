@@ -19,6 +19,7 @@ REASONS = (
     *LOOP,
     "device-missing",
     "reading-over-range",
+    "no-trip-undecided",
     "over-range-over-limit",
     "no-guaranteed-current",
     "cannot-operate-in-time",
@@ -40,6 +41,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     open_end = np.isinf(q.compared.greatest) & (q.compared.least <= q.loop_limit)
     cases.when(open_end, Standing.UNDETERMINED, "reading-over-range")
     cases.when(np.isinf(q.compared.greatest), Standing.UNMET, "over-range-over-limit")
+    cases.when(q.no_trip_undecided, Standing.UNDETERMINED, "no-trip-undecided")
     return cases.settle(q.compared, q.loop_limit)
 
 

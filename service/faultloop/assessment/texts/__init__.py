@@ -42,6 +42,7 @@ class Texts(Sheet):
     """Everything that is said in one language."""
 
     language: Text
+    unused: Text
     sentences: dict[str, str]
     phrases: dict[str, Text]
     shared: dict[str, Said]
