@@ -179,6 +179,23 @@ def test_size_kind_and_doubled_fields_are_bounded(url: str) -> None:
     served(url, work)
 
 
+def test_trying_a_set_has_an_address_of_its_own(url: str) -> None:
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        for method in ("GET", "PUT", "DELETE"):
+            told = await client.request(method, VALIDATE, json=OWN)
+            problem(told, 405)
+            assert told.headers["allow"] == "POST"
+        for text in (b'{"id": 1' + b"0" * 400 + b"}", b'{"clauses": ' + b"[" * 5000 + b"]" * 5000 + b"}"):
+            headers = {"Content-Type": "application/json"}
+            answer = await client.post(VALIDATE, content=text, headers=headers)
+            assert answer.status_code in (400, 422)
+            whole = b'{"point": {"label": "x"}, "rules": ' + text + b"}"
+            answer = await client.post("/v1/assessments/preview", content=whole, headers=headers)
+            assert answer.status_code in (400, 422)
+
+    served(url, work)
+
+
 def test_a_set_sent_with_a_request_decides_and_its_cautions_stand(url: str) -> None:
     async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
         plain = (await client.post("/v1/assessments/preview", json=EXAMPLE_REQUEST)).json()

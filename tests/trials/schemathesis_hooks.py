@@ -20,7 +20,10 @@ def fits(rules: Any) -> bool:
         return len(rules) <= 60 and STORED_NAME.fullmatch(f"{rules.partition(':')[0]}:2026") is not None
     try:
         OwnRuleSet.model_validate_json(json.dumps(rules))
-    except (ValidationError, ValueError):
+    except ValidationError as error:
+        # A unit that belongs to another value is beyond the schema.
+        return all(fault["type"] == "value_error" for fault in error.errors())
+    except ValueError:
         return False
     return isinstance(rules, dict)
 

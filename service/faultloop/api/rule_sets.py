@@ -5,6 +5,7 @@ from typing import Annotated, Any
 
 from fastapi import APIRouter, Header, Path, Query, Request, Response
 from fastapi.exceptions import RequestValidationError
+from starlette.convertors import Convertor, register_url_convertor
 
 from faultloop.api.bodies import OWN_RULES_BODY, read_rule_set
 from faultloop.api.problems import Refused
@@ -14,6 +15,22 @@ from faultloop.exchange.resources import RuleSetDetail, RuleSetList, RuleSetList
 from faultloop.records.rule_sets import content_named, contents
 from faultloop.rules.loader import content, resolve, shipped
 
+
+class RuleSetConvertor(Convertor[str]):
+    """A rule set in an address; `validate` is none."""
+
+    regex = "(?!validate$)[^/]+"
+
+    def convert(self, value: str) -> str:
+        """The name as it stands."""
+        return value
+
+    def to_string(self, value: str) -> str:
+        """The same the other way."""
+        return value
+
+
+register_url_convertor("ruleset", RuleSetConvertor())
 router = APIRouter(prefix="/v1/rule-sets", tags=["rule sets"])
 JSON = "application/json"
 Name = Annotated[str, Path(min_length=1, max_length=60, description="id, or id:edition")]
@@ -69,7 +86,7 @@ async def validate_rule_set(request: Request) -> Response:
 
 
 @router.put(
-    "/{rules}",
+    "/{rules:ruleset}",
     response_model=RuleSetDetail,
     openapi_extra=OWN_RULES_BODY,
     summary="Store a rule set of your own under its id:edition",
@@ -92,7 +109,7 @@ async def put_rule_set(
     return _detail(content(loaded), 201 if created else 200)
 
 
-@router.get("/{rules}", response_model=RuleSetDetail, summary="Read a rule set")
+@router.get("/{rules:ruleset}", response_model=RuleSetDetail, summary="Read a rule set")
 def get_rule_set(rules: Name, request: Request) -> Response:
     """Give one rule set with every value, its unit, clause, source and the day it was last looked at."""
     loaded = resolve(rules)

@@ -1,5 +1,6 @@
 """A caller's own set of rules: what it says is put over a shipped set and held to the contract."""
 
+import json
 import re
 from collections.abc import Iterable, Iterator
 from functools import lru_cache
@@ -58,7 +59,11 @@ def _read(told: Any) -> Any:
     """Read a set by JSON's own types, wherever it comes from."""
     if not isinstance(told, dict):
         return told
-    return OwnRuleSet.model_validate_json(canonical_bytes(told))
+    try:
+        text = json.dumps(told, allow_nan=False)
+    except (TypeError, ValueError, RecursionError):
+        raise PydanticCustomError("rule_set", "this cannot be written as JSON, or is nested too deeply") from None
+    return OwnRuleSet.model_validate_json(text)
 
 
 OwnRules = Annotated[OwnRuleSet, BeforeValidator(_read)]
