@@ -4,6 +4,9 @@ import json
 from dataclasses import dataclass
 from typing import Any
 
+import orjson
+
+from faultloop.assessment.texts import LANGUAGES
 from faultloop.digests import json_bytes, sha256
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
@@ -22,8 +25,14 @@ class Replay:
     differences: list[dict[str, Any]]
 
 
+def language_of(answer: bytes) -> str:
+    """Language that a stored answer was given in."""
+    language: str = orjson.loads(answer)["provenance"].get("language", LANGUAGES[0])
+    return language
+
+
 def replay(request: bytes, answer: bytes, rules: str, input_digest: str, content: bytes | None = None) -> Replay:
-    """Compute a stored request again, under the very edition that was stored with it.
+    """Compute a stored request again, under the very edition and in the language that were stored with it.
 
     A caller's own set is the content that was remembered with the assessment, whatever the request names.
     """
@@ -33,8 +42,11 @@ def replay(request: bytes, answer: bytes, rules: str, input_digest: str, content
         return Replay(False, None, [{"pointer": "/provenance/rules_digest", "stored": sha256(content or b"")}])
     if own is None and resolve(rules) is None:
         return Replay(False, None, [{"pointer": "/provenance/rules", "stored": rules}])
+    language = language_of(answer)
+    if language not in LANGUAGES:
+        return Replay(False, None, [{"pointer": "/provenance/language", "stored": language}])
     body = {**json.loads(request), "rules": rules}
-    again = assess_requests([AssessmentRequest.model_validate(body, context=own)], [input_digest])[0]
+    again = assess_requests([AssessmentRequest.model_validate(body, context=own)], [input_digest], [language])[0]
     if json_bytes(again) == answer:
         return Replay(True, again, [])
     return Replay(

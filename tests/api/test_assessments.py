@@ -181,11 +181,11 @@ def test_rows_of_one_turn_run_together_and_a_bad_one_alone(url: str, monkeypatch
     calls: list[int] = []
     judge = gather.assess_requests
 
-    def watched(requests: Any, digests: Any = None) -> Any:
+    def watched(requests: Any, digests: Any = None, languages: Any = None) -> Any:
         calls.append(len(requests))
         if any(request.point.label == "breaks" for request in requests):
             raise ArithmeticError("a planted fault")
-        return judge(requests, digests)
+        return judge(requests, digests, languages)
 
     monkeypatch.setattr(gather, "assess_requests", watched)
 

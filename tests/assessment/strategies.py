@@ -31,7 +31,11 @@ instruments = st.fixed_dictionaries(
         "percent": between(0, 30),
         "digits": st.sampled_from([0.0, 3.0, 5.0]),
         "resolution": st.sampled_from([0.001, 0.01]),
-    }
+    },
+    optional={
+        "calibration_due": st.sampled_from(["2026-01-31", "2030-12-31"]),
+        "zero_check": between(-0.1, 0.1),
+    },
 )
 
 
@@ -48,6 +52,7 @@ def measured(
             "method": st.sampled_from(methods),
             "instrument": instruments,
             "conductor_temperature_c": between(-40, 90),
+            "taken_at": st.sampled_from(["2026-01-30", "2026-06-01T08:00:00Z"]),
         },
     )
     return st.one_of(values, told)
@@ -60,9 +65,14 @@ def devices(draw: st.DrawFn) -> Body:
     body: Body = {"rated_current_a": device.rated_current_a}
     if isinstance(device, Breaker):
         body |= {"kind": "miniature-circuit-breaker", "characteristic": device.characteristic}
+        body |= draw(st.fixed_dictionaries({}, optional={"energy_limiting_class": st.sampled_from([1, 3])}))
     else:
         body |= {"kind": "fuse", "fuse_system": device.fuse_system, "utilisation_category": "gG"}
-    return body | draw(st.fixed_dictionaries({}, optional={"breaking_capacity_ka": between(0, 80)}))
+    return body | draw(
+        st.fixed_dictionaries(
+            {}, optional={"breaking_capacity_ka": between(0, 80), "let_through_energy_a2s": between(100, 1e6)}
+        )
+    )
 
 
 residual_devices = st.fixed_dictionaries(
@@ -102,6 +112,11 @@ supplies = st.fixed_dictionaries(
         "nominal_voltage_to_earth_v": st.sampled_from([230.0, 230.0, 230.0, 120.0, 277.0, 400.0, 240.0, 50.0, 1e-9]),
         "current": st.sampled_from(["ac", "ac", "ac", "dc"]),
         "phases": st.sampled_from([1, 3]),
+        "nominal_voltage_between_lines_v": st.sampled_from([400.0, 400.0, 240.0, 690.0, 230.0]),
+        "declared_prospective_current_ka": between(0.1, 25),
+        "means_of_earthing": st.fixed_dictionaries(
+            {"evidence": st.just("seen")}, optional={"state": st.sampled_from(["proven", "doubtful", "lost"])}
+        ),
     },
 )
 milliseconds = st.one_of(between(5, 60), between(1, 600), between(0, 1))
@@ -119,10 +134,22 @@ all_readings = st.fixed_dictionaries(
     optional={
         **{name: measured(ohms) for name in (LOOP, EXTERNAL, LINE_NEUTRAL, DEAD, PROTECTIVE, ELECTRODE)},
         TIMES: times,
+        "insulation_resistance_megohm": measured(between(0, 300_000)),
+        "residual_operating_current_ma": measured(between(1, 400)),
+        "voltage_v": measured(between(0, 300)),
+        "voltage_neutral_to_earth_v": measured(between(0, 240)),
+        "standing_leakage_ma": between(0, 30),
+        "polarity": st.sampled_from(["correct", "reversed", "not-tested"]),
     },
 )
 boards = st.fixed_dictionaries(
-    {}, optional={"line_neutral_loop_impedance_ohm": measured(ohms), "prospective_current_ka": between(0, 30)}
+    {},
+    optional={
+        "line_neutral_loop_impedance_ohm": measured(ohms),
+        "earth_fault_loop_impedance_ohm": measured(ohms),
+        "prospective_current_ka": measured(between(0, 30)),
+        "assembly_conditional_rating_ka": between(1, 25),
+    },
 )
 requests = st.fixed_dictionaries(
     {"point": st.fixed_dictionaries({"label": st.text("abc äΩ", min_size=1, max_size=8)})},

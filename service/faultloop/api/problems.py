@@ -5,6 +5,7 @@ Refused
 ├── UnreadableBody     400  the body is not JSON
 ├── NotFound           404
 ├── MethodNotAllowed   405
+├── NotAcceptable      406
 ├── Conflict           409  the id stands for another input
 ├── PreconditionFailed 412  the same, where the client asked for a new one only
 ├── BodyTooLarge       413
@@ -57,6 +58,7 @@ KINDS: dict[str, tuple[int, str, str]] = {
         "This method is not offered here",
         "The Allow header lists the methods of this address.",
     ),
+    "not-acceptable": (406, "This form of answer is not given here", "Accept one of the media types named in detail."),
     "conflict": (
         409,
         "This id stands for another input",
@@ -94,6 +96,7 @@ _BY_STATUS = {
     400: "unreadable-body",
     404: "not-found",
     405: "method-not-allowed",
+    406: "not-acceptable",
     413: "body-too-large",
     415: "unsupported-media-type",
 }

@@ -20,6 +20,8 @@ class Severity:
     as_is: Array
     barrier_failed: Array
     time_s: Array
+    touch_v: Array
+    body_ohm: Array
     body_ma: Array
 
 
@@ -45,5 +47,7 @@ def severity(g: Given, touch_v: Array, overcurrent_s: Interval, device: Residual
         as_is=severity_ratio(touch_v, body, time),
         barrier_failed=severity_ratio(touch_v, body, overcurrent),
         time_s=time,
+        touch_v=touch_v,
+        body_ohm=body,
         body_ma=1000.0 * touch_v / body,
     )

@@ -134,6 +134,16 @@ def overcurrent_device(body: rq.Breaker | rq.Fuse) -> ds.OvercurrentDevice:
     return ds.Fuse(body.fuse_system, body.rated_current_a)
 
 
+def residual_device(request: rq.AssessmentRequest) -> ds.ResidualDevice | None:
+    """The residual device that the circuit relies on: its own, else the most sensitive one before it."""
+    body = request.residual_current_device
+    if body is None and request.upstream_residual_current_devices:
+        body = min(request.upstream_residual_current_devices, key=lambda d: d.rated_residual_operating_current_ma)
+    if body is None:
+        return None
+    return ds.ResidualDevice(body.rated_residual_operating_current_ma, body.residual_type, body.delay)
+
+
 def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
     numbers, choices, table = point.row.numbers, point.row.choices, catalogue()
     choices[Choice.DEVICE], choices[Choice.RESIDUAL] = NO_DEVICE, NO_DEVICE
@@ -148,17 +158,14 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         _put_let_through(point, body)
     own = [request.residual_current_device] if request.residual_current_device else []
     chain = own + request.upstream_residual_current_devices
-    if chain:
+    if (relied := residual_device(request)) is not None:
         rated = [device.rated_residual_operating_current_ma for device in chain]
-        # Where the circuit has no residual device of its own, the most sensitive one before it carries it.
-        relied = chain[0] if own else min(chain, key=lambda d: d.rated_residual_operating_current_ma)
-        numbers[Number.RESIDUAL_MA] = relied.rated_residual_operating_current_ma
+        numbers[Number.RESIDUAL_MA] = relied.rated_ma
         numbers[Number.RESIDUAL_GREATEST_MA], numbers[Number.RESIDUAL_LEAST_MA] = max(rated), min(rated)
         quick = [device.rated_residual_operating_current_ma for device in chain if device.delay == "general"]
         numbers[Number.RESIDUAL_QUICK_MA] = min(quick, default=np.nan)
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
-        told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
-        point.residual = told.designation
+        point.residual = relied.designation
 
 
 def _put_let_through(point: Mapped, body: rq.Breaker | rq.Fuse) -> None:

@@ -13,7 +13,7 @@ from faultloop.assessment.explain import Explainer, Names, Quoted, cautions_of
 from faultloop.assessment.loops import Basis
 from faultloop.assessment.points import Points, Reading, from_rows
 from faultloop.assessment.standing import Verdict
-from faultloop.assessment.texts import Texts, texts
+from faultloop.assessment.texts import LANGUAGES, Texts, texts
 from faultloop.assessment.urgency import Urgency
 from faultloop.assessment.verdicts import ROWS, SENSES, Outcome, conditions_of, decide
 from faultloop.digests import canonical_bytes, digest, rounded_all, sha256
@@ -34,8 +34,12 @@ def request_bytes(request: AssessmentRequest) -> bytes:
     return canonical_bytes(request.model_dump(mode="json", by_alias=True, exclude_unset=True))
 
 
-def assess_requests(requests: Sequence[AssessmentRequest], digests: Sequence[str] | None = None) -> list[Body]:
-    """Judge requests and put the outcomes in words; one request and many take the same path."""
+def assess_requests(
+    requests: Sequence[AssessmentRequest],
+    digests: Sequence[str] | None = None,
+    languages: Sequence[str] | None = None,
+) -> list[Body]:
+    """Judge requests and put the outcomes in words, each in its language; one and many take the same path."""
     if not requests:
         return []
     known = digests or [sha256(request_bytes(request)) for request in requests]
@@ -43,8 +47,12 @@ def assess_requests(requests: Sequence[AssessmentRequest], digests: Sequence[str
     given = [mapped(request, by) for request in requests]
     points = from_rows([point.row for point in given])
     outcome = decide(points, by)
-    renderer = Renderer(points, outcome)
-    return [renderer.answer(at, point, told) for at, (point, told) in enumerate(zip(given, known, strict=True))]
+    spoken = languages or [LANGUAGES[0]] * len(requests)
+    renderers = {language: Renderer(points, outcome, language) for language in set(spoken)}
+    return [
+        renderers[language].answer(at, point, told)
+        for at, (point, told, language) in enumerate(zip(given, known, spoken, strict=True))
+    ]
 
 
 @dataclass(frozen=True, slots=True)
@@ -197,6 +205,7 @@ class Renderer:
             "rules": point.rules.rules.key,
             "rules_digest": point.rules.digest,
             "devices_digest": catalogue().digest,
+            "language": self._language,
             "texts_digest": self._fixed.digest,
             "input_digest": input_digest,
         }

@@ -9,7 +9,7 @@ import numpy as np
 from faultloop.digests import digest
 from faultloop.protection.band import Band, BandTable, compile_bands
 from faultloop.protection.breakers import breaker_band, breaker_table
-from faultloop.protection.designations import Breaker, Characteristic, Fuse, OvercurrentDevice
+from faultloop.protection.designations import Breaker, Characteristic, Fuse, OvercurrentDevice, ResidualDevice
 from faultloop.protection.fuses import fuse_band, fuse_families
 from faultloop.protection.let_through import let_through_table
 from faultloop.protection.residual import residual_band, residual_table
@@ -112,6 +112,48 @@ def catalogue() -> Catalogue:
         residual_bands=residual,
         digest=digest([sheet.model_dump(mode="json") for sheet in told]),
     )
+
+
+def guaranteed(device: OvercurrentDevice | ResidualDevice, rules: RuleSet) -> tuple[Band, float]:
+    """Band of either kind of device, with what its currents are counted in.
+
+    Parameters
+    ----------
+    device : OvercurrentDevice or ResidualDevice
+        Any device.
+    rules : RuleSet
+        Rule set under which it is looked at.
+
+    Returns
+    -------
+    band : Band
+        The steps; without any where no standard held here gives times.
+    scale : float
+        Ampere for one unit of the band's currents [A]: 1, or the rated residual operating current.
+    """
+    if isinstance(device, ResidualDevice):
+        return catalogue().residual_bands[device.delay], device.rated_ma / 1000.0
+    return catalogue().bands.get((rules.key, device), Band(())), 1.0
+
+
+def device_standard(device: OvercurrentDevice | ResidualDevice) -> str:
+    """Standard that a device is held by.
+
+    Parameters
+    ----------
+    device : OvercurrentDevice or ResidualDevice
+        A device of a family held here.
+
+    Returns
+    -------
+    str
+        Designation of the standard.
+    """
+    if isinstance(device, ResidualDevice):
+        return residual_table().standard
+    if isinstance(device, Breaker):
+        return breaker_table().standard
+    return fuse_families()[device.fuse_system].standard
 
 
 def residual_multiple(delay: str, time_s: float) -> float:

@@ -1,0 +1,1 @@
+"""Drawings made from answers and bands: data in, SVG bytes out."""
