@@ -2,6 +2,7 @@
 
 import asyncio
 import copy
+import html
 import json
 import uuid
 from pathlib import Path
@@ -330,8 +331,37 @@ def test_a_stored_assessment_replays_alike_in_a_later_service(url: str, engine: 
         assert again["identical"] is True, again["differences"]
         assert again["recomputed"] == stored["provenance"]
         assert (await client.put(where, json=body)).status_code == 200
+        drawn = await client.get(f"{where}/curve")
+        assert drawn.status_code == 200
+        # The band of B32 begins at 1.45 times its rated current, whoever's the rules are.
+        assert "46.4" in drawn.text
+        assert "caller's own" in html.unescape(drawn.text)
 
     served(url, later)
+
+
+def test_an_assessment_without_rules_replays_alike(url: str) -> None:
+    unnamed = {name: told for name, told in EXAMPLE_REQUEST.items() if name != "rules"}
+    where = address()
+
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        assert (await client.put(where, json=unnamed)).status_code == 201
+        again = (await client.get(f"{where}/replay")).json()
+        assert again["identical"] is True, again["differences"]
+
+    served(url, work)
+
+
+def test_limits_carry_the_cautions_of_their_set(url: str) -> None:
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        for rules, named in (("as-nzs-3000", ["mean-operating-current"]), ("bs-7671", [])):
+            body = (await client.get("/v1/limits", params={"device": "B32", "rules": rules})).json()
+            assert [caution["caution"] for caution in body["cautions"]] == named
+        assert (await client.get("/v1/limits", params={"device": "C20", "rules": "as-nzs-3000"})).json()[
+            "greatest_loop_impedance_ohm"
+        ] == pytest.approx(230 / 150, rel=1e-5)
+
+    served(url, work)
 
 
 def test_a_set_of_another_version_is_shown_but_never_judged_by(url: str, engine: Engine) -> None:
@@ -352,7 +382,7 @@ def test_a_set_of_another_version_is_shown_but_never_judged_by(url: str, engine:
             connection.execute(update(RULE_SET).where(RULE_SET.c.digest == stored).values(content=older))
         again = (await client.get(f"{where}/replay")).json()
         assert again["identical"] is False
-        assert [item["pointer"] for item in again["differences"]] == ["/provenance/rules_digest"]
+        assert [item["pointer"] for item in again["differences"]] == ["/provenance/rules"]
 
     served(url, work)
 

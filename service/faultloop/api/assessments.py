@@ -24,9 +24,8 @@ from faultloop.exchange.resources import AssessmentList, DrawingQuery, ListQuery
 from faultloop.records.queries import find, page
 from faultloop.records.rule_sets import content_of
 from faultloop.records.tables import Record, Stored
-from faultloop.replay import language_of, replay
+from faultloop.replay import asked_again, language_of, replay
 from faultloop.reports.curves import Judged, assessment_drawing
-from faultloop.rules.loader import resolve
 
 router = APIRouter(prefix="/v1/assessments", tags=["assessments"])
 # Judging is the hot path: these functions read their requests themselves.
@@ -159,15 +158,15 @@ def get_assessment_curve(
     if query.format is None:
         media_type(request, (SVG,))
     stored = _found(request, id).record
-    rules = resolve(stored.rules)
-    if rules is None:
+    content = content_of(request.app.state.engine, stored.rules_digest)
+    point, answer = asked_again(stored.request, stored.rules, content), json.loads(stored.answer)
+    if point is None:
         raise Refused("not-found", "The rule set by which this was judged is not held here, so nothing can be drawn.")
-    point, answer = AssessmentRequest.model_validate_json(stored.request), json.loads(stored.answer)
     device = None if point.overcurrent_device is None else overcurrent_device(point.overcurrent_device)
     told = language_of(stored.answer)
     # Bytes stay what they are; a drawing is made today, so it needs words that are held today.
     spoken = told if told in LANGUAGES else LANGUAGES[0]
-    judged = Judged(stored.id, point.point.label, device, residual_device(point), rules, answer, spoken)
+    judged = Judged(stored.id, point.point.label, device, residual_device(point), point.rule_set, answer, spoken)
     headers = {"Vary": "Accept", "Cache-Control": "no-store", "Content-Language": spoken}
     return drawing(request, assessment_drawing(judged), headers)
 

@@ -4,7 +4,7 @@ from typing import Annotated, Any, Literal
 
 from pydantic import BaseModel, ConfigDict, Field
 
-from faultloop.exchange.answers import Answer, Provenance, Text, UrgencyWord, VerdictWord
+from faultloop.exchange.answers import Answer, CautionBody, Provenance, Text, UrgencyWord, VerdictWord
 from faultloop.exchange.fields import Closed
 from faultloop.exchange.requests import RulesName
 
@@ -63,6 +63,7 @@ class LimitBody(Answer):
     least_operating_current_a: float | None = None
     explanation: Text
     clause: Text
+    cautions: list[CautionBody]
     provenance: DataProvenance
 
 

@@ -133,7 +133,7 @@ def guaranteed(device: OvercurrentDevice | ResidualDevice, rules: RuleSet) -> tu
     """
     if isinstance(device, ResidualDevice):
         return catalogue().residual_bands[device.delay], device.rated_ma / 1000.0
-    return catalogue().bands.get((rules.key, device), Band(())), 1.0
+    return (device_band(device, rules) if device in listed_devices() else Band(())), 1.0
 
 
 def device_standard(device: OvercurrentDevice | ResidualDevice) -> str:
