@@ -171,3 +171,20 @@ def test_an_assessment_without_a_device_gives_a_drawing_that_says_so(run: Callab
         assert "No overcurrent device is stated" in drawn.description
 
     run(work)
+
+
+def test_a_curve_of_the_caller_s_own_is_drawn_from_its_points_and_named_as_such(run: Callable[[Work], None]) -> None:
+    async def work(client: httpx.AsyncClient) -> None:
+        greatest = [{"current_a": 80, "time_s": 5}, {"current_a": 160, "time_s": 0.4}]
+        source = "sheet <7> & figure 2"
+        device = {"kind": "curve", "rated_current_a": 32, "source": source, "points": {"greatest": greatest}}
+        where = f"/v1/assessments/{uuid.uuid4()}"
+        body = {**EXAMPLE_REQUEST, "overcurrent_device": device}
+        assert (await client.put(where, json=body)).status_code == 201
+        answer = await client.get(f"{where}/curve")
+        assert answer.status_code == 200
+        told = " ".join(Drawn(answer.content).texts())
+        assert f"own curve 32 A (“{source}”)" in told
+        assert "nobody here vouches for it" in told
+
+    run(work)

@@ -52,6 +52,20 @@ def test_cells_that_are_no_plain_number_never_pass(cell: str, status: str) -> No
         assert rows[0].answer["verdict"] in ("fail", "undetermined")
 
 
+@pytest.mark.parametrize("device", ["K20", "Z10", "gG 32", "BS 88-2 gG 32", "BS 88-3 32", "BS 3036 30", "BS 1361 30"])
+def test_every_family_is_read_from_its_shorthand(device: str) -> None:
+    rows = read_rows(HEAD + GOOD.replace("B32", device))
+    judge_rows(rows)
+    assert rows[0].answer is not None, rows[0].faults
+    limit = next(f for f in rows[0].answer["findings"] if f["check"] == "overcurrent-disconnection")
+    assert limit["explanation"].startswith(f"{device} is sure to operate within 0.4 s")
+
+
+def test_a_motor_fuse_refuses_its_row_with_a_way_out() -> None:
+    rows = read_rows(HEAD + GOOD.replace("B32", "aM 32"))
+    assert "aM fuse-links are not held" in rows[0].faults[0]
+
+
 def test_an_impossible_device_refuses_its_row_only() -> None:
     rows = read_rows(HEAD + GOOD.replace("B32", "B1000") + GOOD)
     judge_rows(rows)

@@ -148,6 +148,7 @@ def test_sentences_are_used_and_have_a_variant_for_each_case() -> None:
     named = {word[1:] for said in all_said() for word in said.explanation.split() if word.startswith("@")}
     variants = {
         "limit": POLICIES,
+        "upstream": POLICIES,
         "heating": [*POLICIES, "electrode"],
         "line-neutral": POLICIES,
         "loop": sorted(Basis.codes()),

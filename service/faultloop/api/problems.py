@@ -172,8 +172,11 @@ def _detail(error: dict[str, Any]) -> str:
     return told.removeprefix("Input ").replace("should", "must", 1)
 
 
-def _pointer(location: Iterable[Any], body: Any) -> str:
-    """JSON Pointer of a fault; names that only tell which kind of a union was tried are left out."""
+def _pointer(location: Iterable[Any], body: Any, *, absent: bool) -> str:
+    """JSON Pointer of a fault; names that only tell which kind of a union was tried are left out.
+
+    The last name may be one that the body lacks only where the fault is that it is `absent`.
+    """
     parts, here = list(location), body
     kept: list[str] = []
     for at, part in enumerate(parts):
@@ -181,7 +184,7 @@ def _pointer(location: Iterable[Any], body: Any) -> str:
             isinstance(here, list) and isinstance(part, int) and part < len(here)
         ):
             here = here[part]
-        elif at < len(parts) - 1 or not isinstance(here, dict):
+        elif not absent or at < len(parts) - 1 or not isinstance(here, dict):
             continue
         kept.append(str(part).replace("~", "~0").replace("/", "~1"))
     return "".join(f"/{part}" for part in kept)
@@ -192,9 +195,10 @@ def _invalid(error: RequestValidationError) -> Response:
     if any(fault["type"] == "json_invalid" for fault in faults):
         return problem("unreadable-body")
     in_body = all(fault["loc"][:1] == ("body",) for fault in faults)
+    body = error.body if in_body else {}
     told = [
         {
-            "pointer": _pointer(fault["loc"][1:], error.body if in_body else {}),
+            "pointer": _pointer(fault["loc"][1:], body, absent=not in_body or fault["type"] == "missing"),
             "code": fault["type"],
             "detail": _detail(fault),
         }

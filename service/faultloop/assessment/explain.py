@@ -1,7 +1,7 @@
 """Explanations, questions, conditions and cautions of one point, by reason; no sentence stands in code."""
 
 import math
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 
@@ -38,6 +38,7 @@ class Names:
     device: str | None
     residual: str | None
     rules: str
+    upstream: Sequence[str] = ()
 
 
 class Quoted(dict[str, float | str]):
@@ -88,6 +89,10 @@ def _overcurrent_time(q: Quoted) -> str:
     return f"{nominal:g} s" if math.isfinite(nominal) else q.phrases["no-time"]
 
 
+def _own_current(q: Quoted) -> str:
+    return q.phrases["own-never" if math.isinf(q.number("ia")) else "own-from"].format_map(q)
+
+
 def _times_told(q: Quoted) -> str:
     times = [(m, q.number(f"time_{m}")) for m in (1, 2, 5)]
     return ", ".join(q.phrases["time"].format(time=t, multiple=m) for m, t in times if not math.isnan(t))
@@ -117,6 +122,9 @@ def _residual_limit(q: Quoted) -> str:
 _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     "withstand": _withstand,
     "withstand_told": _withstand_told,
+    "upstream": lambda q: q.phrases["no-device"],
+    "series": lambda q: q.phrases["series"].format_map(q) if "all_upstream" in q else q["device"],
+    "own_current": _own_current,
     "multiple_in": lambda q: q.number("i_ln") / q.number("in_device"),
     "overcurrent_time": _overcurrent_time,
     "time_told": _times_told,
@@ -145,7 +153,8 @@ def _templates(language: str, policy: str, basis: str, decision: str) -> list[li
     told = texts(language)
     # Of a loop taken from the electrode nothing is heated.
     heating = basis if basis == "electrode" else policy
-    variants = {"limit": policy, "heating": heating, "line-neutral": policy, "loop": basis, "within": decision}
+    variants = dict.fromkeys(("limit", "upstream", "line-neutral"), policy)
+    variants |= {"heating": heating, "loop": basis, "within": decision}
 
     def template(said: Said) -> Template:
         text = told.expanded(said.explanation, variants)
@@ -170,6 +179,7 @@ class Explainer:
             _templates(language, _POLICIES[policy], _BASES[basis], _DECISIONS[decision])
             for policy, basis, decision in chosen
         ]
+        self._upstream = outcome.quantities.upstream.place.tolist()
         own = (found.nominal.tolist(), found.limit.tolist(), found.least.tolist(), found.greatest.tolist())
         self._own = [
             list(zip(nominal, limit, least, _opened(greatest, words), strict=True))
@@ -182,6 +192,9 @@ class Explainer:
         quoted["device"] = names.device or self._phrases["no-device"]
         quoted["residual"] = names.residual or self._phrases["no-residual"]
         quoted["rules"] = names.rules
+        if names.upstream:
+            quoted["upstream"] = names.upstream[self._upstream[at]]
+            quoted["all_upstream"] = ", ".join(names.upstream)
         return quoted
 
     def said(self, check: int, reason: int, at: int, quoted: Quoted) -> tuple[str, str | None, list[str]]:
@@ -207,6 +220,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
     columns: dict[str, Array] = {
         "required": q.required_s,
         "ia": q.operating_current,
+        "ia_upstream": q.upstream.operating_current,
         "c_min": q.rule("c_min"),
         "u0": number(Number.VOLTAGE),
         "four_fifths": q.rule("four_fifths"),

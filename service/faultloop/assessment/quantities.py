@@ -23,6 +23,7 @@ from faultloop.assessment.points import (
 )
 from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
+from faultloop.assessment.series import Upstream, greatest_time, least_time, quickest_upstream
 from faultloop.assessment.severity import Severity, severity
 from faultloop.assessment.standing import Verdict, compare
 from faultloop.assessment.tables import Tables
@@ -30,7 +31,6 @@ from faultloop.electrical.body import touch_voltage
 from faultloop.electrical.conductors import temperature_factor
 from faultloop.electrical.fault_current import heated_loop, prospective_current
 from faultloop.electrical.measurement import Array, Interval
-from faultloop.protection.band import BandTable
 
 AT_MOST = np.array(1)
 # Nominal voltages are rounded: 230/400 V is not quite the square root of three.
@@ -63,6 +63,7 @@ class Quantities:
     loop_limit: Array
     overcurrent: Ints
     no_trip_undecided: Flags
+    upstream: Upstream
     current: Interval
     overcurrent_s: Interval
     residual: ResidualTimes
@@ -78,11 +79,6 @@ class Quantities:
         """Where the supply is TT."""
         return self.given.tt
 
-    @property
-    def overcurrent_bands(self) -> BandTable:
-        """Every overcurrent device under every rule set of these points."""
-        return self.given.tables.overcurrent
-
     def rule(self, name: str) -> Array:
         """One value of each point's rule set, (n,)."""
         return self.given.rule[name]
@@ -95,16 +91,15 @@ def shared(points: Points, tables: Tables) -> Quantities:
     found, required = loops(g), required_time(points, rule)
     factor = temperature_factor(points.number(Number.SERVICE_C), points.number(Number.TEST_C), rule["alpha"])
     hot = heated_loop(found.loop, found.heated_known, found.external, found.external_u, factor)
-    band = tables.overcurrent
-    operating = band.operating_current(device, required)
+    operating = points.overcurrent.operating_current(device, required)
     limit, compared = _loop_limit(g, operating), by_policy(points, hot, found.loop)
     current = Interval(
         prospective_current(rule["c_min"], voltage, hot.greatest),
         prospective_current(rule["c_max"], voltage, found.loop.least),
         prospective_current(rule["c_min"], voltage, hot.nominal),
     )
-    slow = band.greatest_time(device, np.array([current.least, current.nominal]))
-    overcurrent_s = Interval(band.least_time(device, current.greatest), slow[0], slow[1])
+    slow = greatest_time(points, np.array([current.least, current.nominal]))
+    overcurrent_s = Interval(least_time(points, current.greatest), slow[0], slow[1])
     residual = residual_times(g, current)
     overcurrent = compare(compared, limit, AT_MOST, points.choice(Choice.DECISION))
     # A no-trip reading never fails alone within what its method can add, whatever the decision rule.
@@ -122,6 +117,7 @@ def shared(points: Points, tables: Tables) -> Quantities:
         loop_limit=limit,
         overcurrent=np.where(undecided, Verdict.UNDETERMINED, overcurrent),
         no_trip_undecided=undecided,
+        upstream=_upstream(g, compared, required),
         current=current,
         overcurrent_s=overcurrent_s,
         residual=residual,
@@ -161,6 +157,16 @@ def _loop_limit(g: Given, operating: Array) -> Array:
     factor = np.where(policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"])
     factor = np.where(policy == TemperaturePolicy.TWO_THIRDS, two_thirds, factor)
     return np.where(np.isinf(operating), np.nan, prospective_current(factor, voltage, operating))
+
+
+def _upstream(g: Given, compared: Interval, required: Array) -> Upstream:
+    points = g.points
+    operating, place = quickest_upstream(points, required)
+    if not len(points.upstream):
+        unknown = np.full(points.count, np.nan)
+        return Upstream(operating, place, unknown, np.full(points.count, Verdict.UNDETERMINED))
+    limit = _loop_limit(g, operating)
+    return Upstream(operating, place, limit, compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)))
 
 
 def by_policy(points: Points, hot: Interval, cold: Interval) -> Interval:

@@ -155,7 +155,8 @@ def _put_devices(body: Body, filled: dict[str, str], row: FileRow) -> None:
         if isinstance(device, Breaker):
             kind |= {"kind": "miniature-circuit-breaker", "characteristic": device.characteristic}
         else:
-            kind |= {"kind": "fuse", "fuse_system": device.fuse_system, "utilisation_category": "gG"}
+            kind |= {"kind": "fuse", "fuse_system": device.fuse_system}
+            kind |= {"utilisation_category": device.utilisation_category} if device.utilisation_category else {}
         if (capacity := _number(filled, "breaking_capacity_ka", row)) is not None:
             kind["breaking_capacity_ka"] = capacity
         body["overcurrent_device"] = kind

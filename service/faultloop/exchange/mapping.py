@@ -6,6 +6,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from faultloop.assessment.points import (
+    NO_DEVICE,
     Bound,
     Choice,
     Current,
@@ -23,15 +24,20 @@ from faultloop.assessment.points import (
     TemperaturePolicy,
     Users,
 )
-from faultloop.assessment.tables import NO_DEVICE, Tables, tables
+from faultloop.assessment.tables import Tables, tables
 from faultloop.electrical.measurement import coverage_scale
+from faultloop.exchange import overcurrent as oc
 from faultloop.exchange import requests as rq
 from faultloop.exchange.fields import Instrument
 from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.exchange.own_rules import is_own
 from faultloop.protection import designations as ds
-from faultloop.protection.catalogue import catalogue
+from faultloop.protection.band import Band
+from faultloop.protection.catalogue import Described, bands_under, catalogue
+from faultloop.protection.curves import OwnCurve, own_band
+from faultloop.protection.fuses import fuse_families
 from faultloop.protection.let_through import breaker_energy, combined_to_ka
+from faultloop.protection.moulded_case import MouldedCase
 from faultloop.rules.conductors import adiabatic_k, ohm_per_km, protective_size, service_temperature
 from faultloop.rules.loader import LoadedRules
 
@@ -63,6 +69,7 @@ _READINGS = (
 )
 _UNUSED_READINGS = ("line_line_loop_impedance_ohm", "standing_leakage_ma")
 _UNUSED_SUPPLY = ("frequency_hz",)
+_UNUSED_UPSTREAM = ("breaking_capacity_ka", "energy_limiting_class", "let_through_energy_a2s", "poles")
 CLASS_COLUMNS_KA = (3.0, 6.0, 10.0)
 
 
@@ -76,7 +83,9 @@ class Mapped:
     policy: dict[str, str | float]
     device: str | None
     residual: str | None
+    upstream: list[str] = field(default_factory=list)
     assumptions: list[str] = field(default_factory=list)
+    cautions: list[str] = field(default_factory=list)
     unused: list[str] = field(default_factory=list)
 
 
@@ -127,11 +136,25 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
 
-def overcurrent_device(body: rq.Breaker | rq.Fuse) -> ds.OvercurrentDevice:
+def overcurrent_device(body: oc.OvercurrentDevice) -> ds.OvercurrentDevice | Described:
     """The device that a body describes."""
-    if isinstance(body, rq.Breaker):
+    if isinstance(body, oc.Breaker):
         return ds.Breaker(body.characteristic, body.rated_current_a)
+    if isinstance(body, oc.OwnCurve):
+        return OwnCurve(body.rated_current_a, body.source, own_band(body.rated_current_a, *body.points.edges()))
+    if isinstance(body, oc.MouldedCase):
+        return MouldedCase(body.rated_current_a, body.settings.told())
     return ds.Fuse(body.fuse_system, body.rated_current_a)
+
+
+def _picked(point: Mapped, device: ds.OvercurrentDevice | Described) -> int | Band:
+    """Row of a device in the compiled table, or the band that it brings along, which is warned of."""
+    if isinstance(device, Described):
+        point.cautions.append("own-curve" if isinstance(device, OwnCurve) else "settings-as-stated")
+        return device.band
+    if is_own(point.rules):
+        return bands_under(point.rules).get(device, NO_DEVICE)
+    return catalogue().rows.get((point.rules.rules.key, device), NO_DEVICE)
 
 
 def residual_device(request: rq.AssessmentRequest) -> ds.ResidualDevice | None:
@@ -146,16 +169,19 @@ def residual_device(request: rq.AssessmentRequest) -> ds.ResidualDevice | None:
 
 def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
     numbers, choices, table = point.row.numbers, point.row.choices, catalogue()
-    choices[Choice.DEVICE], choices[Choice.RESIDUAL] = NO_DEVICE, NO_DEVICE
+    choices[Choice.RESIDUAL] = NO_DEVICE
     if (body := request.overcurrent_device) is not None:
         device = overcurrent_device(body)
-        point.device = device.designation
-        choices[Choice.DEVICE] = point.tables.device_row(point.rules, device)
+        point.device, point.row.device = device.designation, _picked(point, device)
         numbers[Number.DEVICE_RATED_CURRENT] = body.rated_current_a
         choices[Choice.MULTIPOLE] = int((body.poles or 1) > 2 or request.supply.phases == 3)
         if body.breaking_capacity_ka is not None:
             numbers[Number.BREAKING_CAPACITY_KA] = body.breaking_capacity_ka
         _put_let_through(point, body)
+    for body in request.upstream_overcurrent_devices:
+        device = overcurrent_device(body)
+        point.upstream.append(device.designation)
+        point.row.upstream.append(_picked(point, device))
     own = [request.residual_current_device] if request.residual_current_device else []
     chain = own + request.upstream_residual_current_devices
     if (relied := residual_device(request)) is not None:
@@ -168,19 +194,19 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         point.residual = relied.designation
 
 
-def _put_let_through(point: Mapped, body: rq.Breaker | rq.Fuse) -> None:
+def _put_let_through(point: Mapped, body: oc.OvercurrentDevice) -> None:
     """Let-through energy: the maker's, else by the class that a breaker is marked with or usually has."""
     numbers, choices = point.row.numbers, point.row.choices
     if body.let_through_energy_a2s is not None:
         numbers[Number.LET_THROUGH_A2S], choices[Choice.LET_THROUGH] = body.let_through_energy_a2s, LetThrough.MAKER
-    elif isinstance(body, rq.Breaker):
+    elif isinstance(body, oc.Breaker):
         marked = body.energy_limiting_class
         held = [breaker_energy(marked or 3, body.characteristic, body.rated_current_a, ka) for ka in CLASS_COLUMNS_KA]
         for at, energy in enumerate(held):
             if energy is not None:
                 numbers[Number.CLASS_ENERGY_3_KA + at] = energy
                 choices[Choice.LET_THROUGH] = LetThrough.CLASS_USUAL if marked is None else LetThrough.CLASS_MARKED
-    else:
+    elif isinstance(body, oc.Fuse) and fuse_families()[body.fuse_system].cartridge:
         choices[Choice.LET_THROUGH] = LetThrough.FUSE
 
 
@@ -222,13 +248,13 @@ def _put_conductor(numbers: list[float], body: rq.Conductor | None, area: int, p
 
 
 def _put_protective_size(
-    numbers: list[float], device: rq.Breaker | rq.Fuse | None, line: rq.Conductor, protective: rq.Conductor
+    numbers: list[float], device: oc.OvercurrentDevice | None, line: rq.Conductor, protective: rq.Conductor
 ) -> None:
     """What the table of sizes asks, and whether device and cable are a standard combination."""
     line_k, protective_k = numbers[Number.ADIABATIC_K], numbers[Number.PROTECTIVE_K]
     if not np.isnan(line_k + protective_k):
         numbers[Number.PROTECTIVE_TABLE_MM2] = protective_size(line.area_mm2, line_k, protective_k)
-    if isinstance(device, rq.Breaker) and line.material == protective.material == "copper":
+    if isinstance(device, oc.Breaker) and line.material == protective.material == "copper":
         areas = (line.area_mm2, protective.area_mm2)
         to_ka = combined_to_ka(device.characteristic, device.rated_current_a, *areas)
         numbers[Number.COMBINATION_TO_KA] = to_ka
@@ -286,8 +312,17 @@ def _unused(request: rq.AssessmentRequest) -> list[str]:
     """Values that were given and on which nothing is decided: what is ignored is said."""
     parts = (("supply", request.supply, _UNUSED_SUPPLY), ("readings", request.readings, _UNUSED_READINGS))
     found = [f"{part}.{name}" for part, body, names in parts for name in names if getattr(body, name) is not None]
-    device = request.residual_current_device
-    return found + (["residual_current_device.delay_ms"] if device and device.delay_ms is not None else [])
+    device, own = request.residual_current_device, request.overcurrent_device
+    found += ["residual_current_device.delay_ms"] if device and device.delay_ms is not None else []
+    if isinstance(own, oc.MouldedCase) and own.settings.overload_time_s is not None:
+        found.append("overcurrent_device.settings.overload_time_s")
+    # Of a device upstream only its time counts: nothing is backed up by presence.
+    stated = [name for body in request.upstream_overcurrent_devices for name in _UNUSED_UPSTREAM if _states(body, name)]
+    return found + [f"upstream_overcurrent_devices.{name}" for name in dict.fromkeys(stated)]
+
+
+def _states(body: oc.OvercurrentDevice, name: str) -> bool:
+    return getattr(body, name, None) is not None
 
 
 def _put_loop(point: Mapped, stated: float | ReadingBody | None) -> None:

@@ -11,6 +11,7 @@ from pydantic_core import InitErrorDetails, PydanticCustomError
 
 from faultloop.assessment.checks import CHECKS
 from faultloop.digests import canonical_bytes
+from faultloop.protection.breakers import breaker_tables
 from faultloop.protection.catalogue import listed_devices
 from faultloop.rules.contract import Fault, faults
 from faultloop.rules.loader import LoadedRules, Table, digested, overlaid, shipped
@@ -22,7 +23,6 @@ LONGEST_ID = 48
 LONGEST_TITLE = 200
 CAUTION = "own-rules"
 STORED_NAME = re.compile(r"[a-z0-9]+(-[a-z0-9]+)*:[0-9]{4}(-[0-9]{2})?", re.ASCII)
-CHARACTERISTICS = ("B", "C", "D")
 NEEDED_CLAUSES = frozenset(check.id for check in CHECKS)
 KNOWN_CLAUSES = NEEDED_CLAUSES | {f"{name}-tt" for name in NEEDED_CLAUSES}
 # Times the rated current: below the conventional tripping current no breaker is sure to operate at all.
@@ -124,11 +124,13 @@ def _unknown(rules: RuleSet) -> Iterator[Fault]:
         yield Fault(("id",), f"an id has at most {LONGEST_ID} characters")
     if any(len(text) > LONGEST_TITLE for text in (rules.title, *rules.clauses.values())):
         yield Fault(("title",), f"title and clauses have at most {LONGEST_TITLE} characters")
+    letters: list[str] = list(breaker_tables())
     rated = {device.designation: device.rated_current_a for device in listed_devices()}
     for at, row in enumerate(rules.operating_current):
-        least = dict.fromkeys(CHARACTERISTICS, LEAST_MULTIPLE) if row.unit == "x In" else rated
+        least = dict.fromkeys(letters, LEAST_MULTIPLE) if row.unit == "x In" else rated
         if not set(row.devices) <= set(least):
-            yield Fault(("operating_current", at, "devices"), "B, C or D with x In, or devices held here with A")
+            words = "breaker characteristics with x In, or devices held here with A"
+            yield Fault(("operating_current", at, "devices"), words)
         elif any(row.value <= least[device] for device in row.devices):
             words = "no device is sure to operate at so small a current"
             yield Fault(("operating_current", at, "value"), words)

@@ -126,8 +126,9 @@ class Renderer:
 
     def answer(self, at: int, point: Mapped, input_digest: str) -> Body:
         """The answer for one point."""
-        quoted = self._explainer.quoted(at, Names(point.device, point.residual, point.rules.rules.title))
-        cautions: set[str] = set()
+        names = Names(point.device, point.residual, point.rules.rules.title, point.upstream)
+        quoted = self._explainer.quoted(at, names)
+        cautions: set[str] = set(point.cautions)
         findings, not_examined, not_applicable = [], [], []
         said, counts = self._explainer.said, self._counts[at]
         settled = zip(CHECKS, self._verdict[at], self._reason[at], strict=True)

@@ -5,7 +5,8 @@ from typing import Any
 
 from faultloop.assessment.texts import texts
 from faultloop.digests import digest
-from faultloop.protection.catalogue import catalogue, device_standard, guaranteed
+from faultloop.protection.catalogue import Described, catalogue, device_standard, guaranteed
+from faultloop.protection.curves import OwnCurve
 from faultloop.protection.designations import OvercurrentDevice, ResidualDevice
 from faultloop.reports.figure import Deadline, Figure, Region, Span
 from faultloop.reports.scale import ampere, second
@@ -48,7 +49,7 @@ class Judged:
 
     id: str
     label: str
-    device: OvercurrentDevice | None
+    device: OvercurrentDevice | Described | None
     residual: ResidualDevice | None
     rules: LoadedRules
     answer: dict[str, Any]
@@ -95,7 +96,7 @@ def _cautions(rules: LoadedRules, language: str) -> list[str]:
     return [texts(language).cautions[name].text for name in rules.rules.cautions]
 
 
-def _region(device: Device, rules: LoadedRules, told: Words) -> Region | None:
+def _region(device: Device | Described, rules: LoadedRules, told: Words) -> Region | None:
     band, scale = guaranteed(device, rules.rules)
     if not band.slow:
         return None
@@ -143,6 +144,8 @@ def _missing(
     notes = [told.steps_only] if regions else []
     if judged.device is None:
         notes.append(told.device_missing)
+    if isinstance(judged.device, OwnCurve):
+        notes.append(told.own_curve)
     for device in (judged.device, judged.residual):
         if device is not None and not guaranteed(device, judged.rules.rules)[0].slow:
             notes.append(told.band_missing.format(device=device.designation))

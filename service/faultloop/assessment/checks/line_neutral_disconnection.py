@@ -6,6 +6,7 @@ from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prereq
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
 from faultloop.assessment.points import Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities, by_policy
+from faultloop.assessment.series import greatest_time
 from faultloop.electrical.conductors import withstand_time
 from faultloop.electrical.fault_current import prospective_current
 
@@ -63,21 +64,22 @@ def _judge(points: Points, q: Quantities) -> Judged:
 
 
 def _withstands(points: Points, q: Quantities) -> Flags:
-    """Whether the conductor bears the current for as long as the device may take, over the whole interval.
+    """Whether the conductor bears the current for as long as the devices in series may take, over the whole interval.
 
     Within one step of the band the time is constant and the withstand falls with the current, so the
     greatest current of each step is tried: both ends, and just below every tested current between them.
-    From 0.1 s down let-through energy decides, not the step of the band, which then refutes nothing.
+    From 0.1 s down let-through energy decides, not the step of the band, which then refutes nothing; that
+    holds for the circuit's own device, while one upstream is credited only with what its step shows.
     """
-    row, band, voltage = points.choice(Choice.DEVICE), q.overcurrent_bands, points.number(Number.VOLTAGE)
+    voltage, series = points.number(Number.VOLTAGE), (points.choice(Choice.DEVICE), *points.upstream)
     k, area = points.number(Number.ADIABATIC_K), points.number(Number.LINE_MM2)
     least = prospective_current(q.rule("c_min"), voltage, q.line_neutral.hot.greatest)
     greatest = prospective_current(q.rule("c_max"), voltage, q.line_neutral.cold.least)
-    edges = np.nextafter(band.slow_current[row].T, 0.0)
+    edges = np.nextafter(np.concatenate([points.overcurrent.slow_current[row].T for row in series]), 0.0)
     inside = (edges > least) & (edges < greatest)
     tried = np.concatenate([least[None], greatest[None], np.where(inside, edges, least)])
-    time = band.greatest_time(row, tried)
-    borne = (time <= SHORTEST_ADIABATIC_S) | (time <= withstand_time(k, area, tried))
+    own = points.overcurrent.greatest_time(points.choice(Choice.DEVICE), tried)
+    borne = (own <= SHORTEST_ADIABATIC_S) | (greatest_time(points, tried) <= withstand_time(k, area, tried))
     everywhere: Flags = np.logical_and.reduce(borne, axis=0)
     return everywhere & ~np.isnan(k * area)
 

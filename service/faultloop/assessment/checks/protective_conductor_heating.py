@@ -7,8 +7,10 @@ from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing,
 from faultloop.assessment.loops import Fault
 from faultloop.assessment.points import Choice, Flags, LetThrough, Number, Points
 from faultloop.assessment.quantities import Quantities
+from faultloop.assessment.series import least_time, upstream_time
 from faultloop.electrical.conductors import let_through_area
 from faultloop.electrical.measurement import Array, Interval
+from faultloop.protection.band import faster
 from faultloop.protection.catalogue import catalogue
 
 REASONS = (
@@ -34,24 +36,26 @@ def _applies(_: Points, q: Quantities) -> Flags:
 
 
 def _energies(points: Points, q: Quantities, tried: Array) -> tuple[Array, Array]:
-    """Energy [A²s] and time [s] of the quicker device at tried currents, (T, n)."""
-    row, band = points.choice(Choice.DEVICE), q.overcurrent_bands
+    """Energy [A²s] and time [s] of the quickest device at tried currents, (T, n)."""
+    row, band = points.choice(Choice.DEVICE), points.overcurrent
     time = band.greatest_time(row, tried)
     multiple = tried / (points.number(Number.RESIDUAL_MA) / 1000.0)
     residual = catalogue().residual.greatest_time(points.choice(Choice.RESIDUAL), multiple)
     credited = q.residual.tested & ~q.residual.over_limit & ~np.isnan(residual)
-    residual = np.where(credited, residual, np.inf)
+    others = np.where(credited, residual, np.inf)
+    if len(points.upstream):
+        others = faster(others, upstream_time(points, tried))
     # What acts at once interrupts before the current is at its full value: only a let-through energy tells.
     # The energy of a fuse-link does not rise with the current (common practice): its last tested point bounds it.
     fuse = points.choice(Choice.LET_THROUGH) == LetThrough.FUSE
     flowing = np.where(fuse, band.tested_current(row, tried), tried)
     own = np.where((time <= AT_ONCE_S) & ~fuse, q.let_through.energy_a2s, flowing * flowing * time)
-    return np.fmin(own, tried * tried * residual), np.minimum(time, residual)
+    return np.fmin(own, tried * tried * others), np.minimum(time, others)
 
 
-def _least_energies(points: Points, q: Quantities, tried: Array) -> Array:
+def _least_energies(points: Points, tried: Array) -> Array:
     """Energy [A²s] that flows even if the device acts as soon as its band allows, (T, n); 0 where a quicker one may."""
-    least = q.overcurrent_bands.least_time(points.choice(Choice.DEVICE), tried)
+    least = least_time(points, tried)
     quicker = ~np.isnan(points.number(Number.RESIDUAL_MA)) | (least < AT_ONCE_S)
     return np.where(quicker, 0.0, tried * tried * least)
 
@@ -85,15 +89,19 @@ def _judge(points: Points, q: Quantities) -> Judged:
     # Whether the current reaches I_a is for the disconnection to say; what is in doubt there is not held twice.
     least = np.where(q.overcurrent == Verdict.MARGINAL, np.fmax(q.current.least, q.operating_current), q.current.least)
     # Time is constant within a step of the band, so the worst current of each step is its greatest.
-    edges = np.nextafter(q.overcurrent_bands.slow_current[row].T, 0.0)
+    steps = [points.overcurrent.slow_current[device].T for device in (row, *points.upstream)]
+    edges = np.nextafter(np.concatenate(steps), 0.0)
     inside = (edges > least) & (edges < greatest)
     tried = np.concatenate([least[None], greatest[None], np.where(inside, edges, least)])
     energy, time = _energies(points, q, tried)
     needed = let_through_area(k, energy)
     over = ~(needed <= area)
     endless = ~(time <= LONGEST_ADIABATIC_S)
-    surely = let_through_area(k, _least_energies(points, q, tried))
-    cases.when(_anywhere((surely > area) & ~endless), Standing.UNMET, "over-limit")
+    # What is shown to be too much is shown by the circuit's own device: one upstream can only take from it.
+    own = tried[: len(steps[0]) + 2]
+    surely = let_through_area(k, _least_energies(points, own)) > area
+    surely &= points.overcurrent.greatest_time(row, own) <= LONGEST_ADIABATIC_S
+    cases.when(_anywhere(surely), Standing.UNMET, "over-limit")
     cases.when(_anywhere(over & endless), Standing.UNDETERMINED, "too-slow-to-judge")
     cases.when(_anywhere(over & (time > AT_ONCE_S)), Standing.UNDETERMINED, "time-too-long-by-band")
     combined = points.number(Number.COMBINATION_TO_KA) >= greatest / 1000.0

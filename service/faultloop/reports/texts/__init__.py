@@ -26,6 +26,7 @@ class Words(Sheet):
     fast_step: Text
     fast_none: Text
     steps_only: Text
+    own_curve: Text
     span: Text
     span_from: Text
     span_to: Text
