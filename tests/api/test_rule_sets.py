@@ -23,6 +23,7 @@ from faultloop.records.migrate import migrate
 from faultloop.records.tables import RULE_SET
 from faultloop.rules.loader import content, from_content, shipped
 from tests.api.client import problem, served
+from tests.assessment.bodies import breaker
 
 SOURCE = {"clause": "4.2", "source": "site policy", "sourcing": "assumption", "checked": "2026-11-30"}
 LEAST = {"value": 0.9, "unit": "1", **SOURCE}
@@ -235,6 +236,32 @@ def test_own_sets_and_published_ones_are_judged_together_as_alone() -> None:
     assert limits[:5] == pytest.approx([factor * 230 / 160 for factor in volts], rel=1e-5)
     assert limits[5] == pytest.approx(0.9 * 230 / 128, rel=1e-5)
     assert len({answer["provenance"]["rules_digest"] for answer in together}) == 7
+
+
+def every_device() -> list[dict[str, Any]]:
+    """Bodies with devices of every kind: held, described, and in series."""
+    fuse = {"kind": "fuse", "utilisation_category": "gG", "rated_current_a": 63, "fuse_system": "bs-88-2"}
+    points = [{"current_a": 80, "time_s": 30}, {"current_a": 160, "time_s": 0.3}]
+    curve = {"kind": "curve", "rated_current_a": 32, "source": "a sheet", "points": {"greatest": points}}
+    held = [breaker(name) for name in ("B16", "C20", "D10", "K16", "Z16")]
+    bodies = [{**EXAMPLE_REQUEST, "overcurrent_device": device} for device in (*held, fuse, curve)]
+    return [*bodies, *({**body, "upstream_overcurrent_devices": [fuse, curve]} for body in bodies)]
+
+
+def test_a_set_that_changes_nothing_decides_as_its_base() -> None:
+    same = {name: told for name, told in OWN.items() if name != "voltage_factor"}
+    bodies = every_device()
+    own_answers = assess_many([{**body, "rules": same} for body in bodies])
+    base_answers = assess_many([{**body, "rules": OWN["extends"]} for body in bodies])
+    for told, kept in zip(own_answers, base_answers, strict=True):
+        assert told["quantities"] == kept["quantities"]
+        assert (told["verdict"], told["urgency"]) == (kept["verdict"], kept["urgency"])
+        assert cautions(told) == cautions(kept) | {"own-rules"}
+        for ours, theirs in zip(told["findings"], kept["findings"], strict=True):
+            named = {"explanation", "settled_by"}
+            assert {k: v for k, v in ours.items() if k not in named} == {
+                k: v for k, v in theirs.items() if k not in named
+            }
 
 
 def test_a_set_is_stored_once_under_its_name(url: str) -> None:
