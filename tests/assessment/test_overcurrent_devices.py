@@ -332,3 +332,16 @@ def test_bad_settings_are_refused_at_their_field(settings: Body, place: tuple[st
 def test_every_fuse_system_held_can_be_asked_for() -> None:
     schema = AssessmentRequest.model_json_schema()["$defs"]["Fuse"]["properties"]["fuse_system"]
     assert schema["enum"] == list(fuse_families())
+
+
+@pytest.mark.parametrize(
+    "device",
+    [
+        {"kind": "fuse", "fuse_system": "bs-3036", "rated_current_a": 32},
+        {"kind": "fuse", "fuse_system": "bs-88-2", "utilisation_category": "gG", "rated_current_a": 12},
+        {"kind": "miniature-circuit-breaker", "characteristic": "B", "rated_current_a": 0.5},
+    ],
+)
+def test_a_rating_that_the_family_has_not_is_refused_with_those_it_has(device: Body) -> None:
+    with pytest.raises(ValueError, match="no device has this rating; expected one of"):
+        assess(request(readings(zs=live(0.6)), device=device))

@@ -2,7 +2,7 @@
 
 from typing import Annotated, Literal
 
-from pydantic import Field, model_validator
+from pydantic import Field, ValidationInfo, model_validator
 from pydantic.functional_validators import AfterValidator, BeforeValidator
 
 from faultloop.exchange.fields import WHOLE, Closed, Label, number
@@ -28,12 +28,16 @@ def _fuse_ratings() -> list[float]:
     return sorted({rating.rated_current_a for family in fuse_families().values() for rating in family.rating})
 
 
-def _breaker_rated(value: float) -> float:
-    return listed(value, _breaker_ratings())
+def _breaker_rated(value: float, info: ValidationInfo) -> float:
+    """Refuse a rating that the characteristic's own standard does not list."""
+    table = breaker_tables().get(info.data.get("characteristic", ""))
+    return listed(value, table.ratings_a if table else _breaker_ratings())
 
 
-def _fuse_rated(value: float) -> float:
-    return listed(value, _fuse_ratings())
+def _fuse_rated(value: float, info: ValidationInfo) -> float:
+    """Refuse a rating that the fuse system has not."""
+    family = fuse_families().get(info.data.get("fuse_system", ""))
+    return listed(value, [rating.rated_current_a for rating in family.rating] if family else _fuse_ratings())
 
 
 LetThroughEnergy = Annotated[
