@@ -10,7 +10,8 @@ from faultloop.assessment.texts import LANGUAGES
 from faultloop.digests import json_bytes
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
-from faultloop.rules.loader import resolve
+from faultloop.rules.loader import from_content, resolve
+from faultloop.rules.strict import DataFileError
 
 MOST_DIFFERENCES = 100
 
@@ -30,15 +31,33 @@ def language_of(answer: bytes) -> str:
     return language
 
 
-def replay(request: bytes, answer: bytes, rules: str, input_digest: str) -> Replay:
+def asked_again(request: bytes, rules: str, content: bytes | None = None) -> AssessmentRequest | None:
+    """A stored request, pinned to the very set by which it was judged; None where that set is not held here.
+
+    A caller's own set is the content that was remembered with the assessment, whatever the request names.
+    """
+    try:
+        held = resolve(rules) if content is None else from_content(content)
+    except DataFileError:
+        return None
+    if held is None:
+        return None
+    body = json.loads(request)
+    asked = body.get("rules", AssessmentRequest.model_fields["rules"].default)
+    if isinstance(asked, dict):
+        body["rules"] = asked = rules
+    return AssessmentRequest.model_validate(body, context={asked: held})
+
+
+def replay(request: bytes, answer: bytes, rules: str, input_digest: str, content: bytes | None = None) -> Replay:
     """Compute a stored request again, under the very edition and in the language that were stored with it."""
-    if resolve(rules) is None:
+    point = asked_again(request, rules, content)
+    if point is None:
         return Replay(False, None, [{"pointer": "/provenance/rules", "stored": rules}])
     language = language_of(answer)
     if language not in LANGUAGES:
         return Replay(False, None, [{"pointer": "/provenance/language", "stored": language}])
-    body = {**json.loads(request), "rules": rules}
-    again = assess_requests([AssessmentRequest.model_validate(body)], [input_digest], [language])[0]
+    again = assess_requests([point], [input_digest], [language])[0]
     if json_bytes(again) == answer:
         return Replay(True, again, [])
     return Replay(

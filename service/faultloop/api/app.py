@@ -10,6 +10,7 @@ from starlette.types import ASGIApp, Message, Receive, Scope, Send
 from faultloop import __version__
 from faultloop.api import assessments, devices, openapi, problems, rule_sets, service
 from faultloop.api.gather import Gather
+from faultloop.api.own_rules import OwnRuleSets
 from faultloop.exchange.resources import Problem
 from faultloop.protection.catalogue import catalogue
 from faultloop.records.database import open_engine
@@ -43,6 +44,7 @@ def create_app(settings: Settings) -> FastAPI:
         catalogue()
         app.state.engine = open_engine(settings.database_url)
         app.state.gather = Gather()
+        app.state.own_rules = OwnRuleSets(app.state.engine)
         app.state.max_body_bytes = settings.max_body_bytes
         app.state.writer = Writer(app.state.engine, settings.writer_capacity, settings.writer_group)
         app.state.writer.start()

@@ -6,7 +6,7 @@ from fastapi import FastAPI
 from fastapi.openapi.utils import get_openapi
 
 from faultloop.api.problems import KINDS, MEDIA_TYPE
-from faultloop.exchange.examples import EXAMPLE_REQUEST
+from faultloop.exchange.examples import EXAMPLE_REQUEST, EXAMPLE_RULES
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
 
@@ -75,6 +75,9 @@ def _put_examples(schema: dict[str, Any]) -> None:
         body["examples"] = {"bench": {"summary": "A bench outlet", "value": EXAMPLE_REQUEST}}
         content = operation["responses"][status]["content"]["application/json"]
         content["examples"] = {"bench": {"summary": "A bench outlet", "value": answer}}
+    for path, method in (("/validate", "post"), ("/{rules}", "put")):
+        body = schema["paths"][f"/v1/rule-sets{path}"][method]["requestBody"]["content"]["application/json"]
+        body["examples"] = {"site": {"summary": "An owner's policy", "value": EXAMPLE_RULES}}
 
 
 def problem_responses(model: Any) -> dict[int | str, dict[str, Any]]:

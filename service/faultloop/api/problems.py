@@ -31,6 +31,7 @@ from starlette.routing import Match
 from faultloop.digests import json_bytes
 from faultloop.exchange import fields, requests
 from faultloop.records.errors import RecordRefused, RecordsError, WriterBusy, WriterClosed
+from faultloop.rules import sheets, strict
 
 MEDIA_TYPE = "application/problem+json"
 _log = logging.getLogger(__name__)
@@ -147,8 +148,8 @@ _WORDS = {
 
 
 def _known_fields() -> list[str]:
-    models = [m for module in (requests, fields) for m in vars(module).values()]
-    closed = [m for m in models if isinstance(m, type) and issubclass(m, fields.Closed)]
+    models = [m for module in (requests, fields, sheets) for m in vars(module).values()]
+    closed = [m for m in models if isinstance(m, type) and issubclass(m, fields.Closed | strict.Sheet)]
     return sorted({name for model in closed for name in model.model_fields})
 
 

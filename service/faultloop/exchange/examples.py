@@ -1,4 +1,4 @@
-"""One invented measured point, used in the document of the interface and answered by the engine."""
+"""An invented measured point and an invented policy, used in the document of the interface and held by tests."""
 
 from typing import Any
 
@@ -14,4 +14,19 @@ EXAMPLE_REQUEST: dict[str, Any] = {
         "residual_operating_time_ms": {"1": 24},
     },
     "rules": "bs-7671",
+}
+
+EXAMPLE_RULES: dict[str, Any] = {
+    "id": "site-rules",
+    "edition": "2026",
+    "title": "Site rules",
+    "extends": "bs-7671:2018",
+    "insulation": {
+        "value": 2,
+        "unit": "Mohm",
+        "clause": "4.2",
+        "source": "site policy of the safety officer",
+        "sourcing": "assumption",
+        "checked": "2026-11-30",
+    },
 }
