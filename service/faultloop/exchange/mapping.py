@@ -56,19 +56,19 @@ _MEANS: dict[str | None, int] = {None: 0}
 _MEANS.update(MeansOfEarthing.codes())
 _POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
 _POLARITY.update(Polarity.codes())
-_READINGS = (
-    (Reading.EXTERNAL, "external_earth_fault_loop_impedance_ohm"),
-    (Reading.LINE_NEUTRAL, "line_neutral_loop_impedance_ohm"),
-    (Reading.LINE_PLUS_PROTECTIVE, "line_plus_protective_resistance_ohm"),
-    (Reading.PROTECTIVE, "protective_conductor_resistance_ohm"),
-    (Reading.ELECTRODE, "earth_electrode_resistance_ohm"),
-    (Reading.INSULATION, "insulation_resistance_megohm"),
-    (Reading.OPERATING_CURRENT, "residual_operating_current_ma"),
-    (Reading.VOLTAGE, "voltage_v"),
-    (Reading.NEUTRAL_EARTH_VOLTAGE, "voltage_neutral_to_earth_v"),
-)
-_UNUSED_READINGS = ("line_line_loop_impedance_ohm", "standing_leakage_ma")
-_UNUSED_SUPPLY = ("frequency_hz",)
+_READINGS = {
+    "external_earth_fault_loop_impedance_ohm": Reading.EXTERNAL,
+    "line_neutral_loop_impedance_ohm": Reading.LINE_NEUTRAL,
+    "line_plus_protective_resistance_ohm": Reading.LINE_PLUS_PROTECTIVE,
+    "protective_conductor_resistance_ohm": Reading.PROTECTIVE,
+    "earth_electrode_resistance_ohm": Reading.ELECTRODE,
+    "insulation_resistance_megohm": Reading.INSULATION,
+    "residual_operating_current_ma": Reading.OPERATING_CURRENT,
+    "voltage_v": Reading.VOLTAGE,
+    "voltage_neutral_to_earth_v": Reading.NEUTRAL_EARTH_VOLTAGE,
+}
+_UNUSED_READINGS = {"line_line_loop_impedance_ohm", "standing_leakage_ma"}
+_UNUSED_SUPPLY = {"frequency_hz"}
 _UNUSED_UPSTREAM = ("breaking_capacity_ka", "energy_limiting_class", "let_through_energy_a2s", "poles")
 CLASS_COLUMNS_KA = (3.0, 6.0, 10.0)
 
@@ -275,9 +275,9 @@ def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> N
 def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     readings, board, row = request.readings, request.board, point.row
     _put_loop(point, readings.earth_fault_loop_impedance_ohm)
-    for which, name in _READINGS:
-        if (stated := getattr(readings, name)) is not None:
-            _put(row, which, stated)
+    for name in readings.model_fields_set:
+        if (which := _READINGS.get(name)) is not None:
+            _put(row, which, getattr(readings, name))
     row.choices[Choice.POLARITY] = _POLARITY[readings.polarity]
     if (times := readings.residual_operating_time_ms) is not None:
         row.choices[Choice.LOADS_CONNECTED] = int(times.loads_connected is True)
@@ -311,11 +311,14 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
 def _unused(request: rq.AssessmentRequest) -> list[str]:
     """Values that were given and on which nothing is decided: what is ignored is said."""
     parts = (("supply", request.supply, _UNUSED_SUPPLY), ("readings", request.readings, _UNUSED_READINGS))
-    found = [f"{part}.{name}" for part, body, names in parts for name in names if getattr(body, name) is not None]
+    given = [(part, body, sorted(body.model_fields_set & names)) for part, body, names in parts]
+    found = [f"{part}.{name}" for part, body, names in given for name in names if getattr(body, name) is not None]
     device, own = request.residual_current_device, request.overcurrent_device
     found += ["residual_current_device.delay_ms"] if device and device.delay_ms is not None else []
     if isinstance(own, oc.MouldedCase) and own.settings.overload_time_s is not None:
         found.append("overcurrent_device.settings.overload_time_s")
+    if not request.upstream_overcurrent_devices:
+        return found
     # Of a device upstream only its time counts: nothing is backed up by presence.
     stated = [name for body in request.upstream_overcurrent_devices for name in _UNUSED_UPSTREAM if _states(body, name)]
     return found + [f"upstream_overcurrent_devices.{name}" for name in dict.fromkeys(stated)]
