@@ -4,9 +4,14 @@ import json
 from dataclasses import dataclass
 from typing import Any
 
-from faultloop.digests import json_bytes
-from faultloop.exchange.render import assess_requests
+from faultloop import __version__
+from faultloop.digests import json_bytes, sha256
+from faultloop.exchange.batch_answers import stored_row
+from faultloop.exchange.judging import Judged, judged_alone, pinned
+from faultloop.exchange.render import assess_requests, request_bytes
 from faultloop.exchange.requests import AssessmentRequest
+from faultloop.exchange.uploads import Upload, read_upload
+from faultloop.protection.catalogue import catalogue
 from faultloop.rules.loader import resolve
 
 MOST_DIFFERENCES = 100
@@ -49,3 +54,39 @@ def _differences(stored: Any, now: Any, pointer: str) -> list[dict[str, Any]]:
 
 def _escaped(key: str) -> str:
     return key.replace("~", "~0").replace("/", "~1")
+
+
+def editions_of(stored: dict[str, Any]) -> dict[str, str]:
+    """The editions that the names of a batch's rule sets stood for when it was judged."""
+    return {told["asked"]: told["rules"] for told in stored["provenance"]["rules"]}
+
+
+def changed_since(stored: dict[str, Any]) -> list[str]:
+    """What has changed since a batch was judged."""
+    told = stored["provenance"]
+    now = {rules["rules"]: resolve(rules["rules"]) for rules in told["rules"]}
+    digests = [rules is not None and rules.digest for rules in now.values()]
+    found = {
+        "engine": told["engine"] != __version__,
+        "rules": digests != [rules["rules_digest"] for rules in told["rules"]],
+        "devices": told["devices_digest"] != catalogue().digest,
+    }
+    return [name for name, differs in found.items() if differs]
+
+
+def batch_row(upload: Upload, answer: bytes, number: int) -> dict[str, Any] | None:
+    """One row of a stored batch in full, computed again under the stored edition; None where there is no such row."""
+    rows, stored = read_upload(upload).rows, json.loads(answer)
+    if number not in rows.numbers:
+        return None
+    at, told = (place := list(rows.numbers).index(number)), rows.alone(place)
+    kept = next(row for part in ("results", "held", "refused") for row in stored[part] if row["row"] == number)
+    body = {"row": number, "status": told.status, "raw": rows.raw(at), "stored": kept}
+    now = Judged(rows, [None] * len(rows.pattern))
+    if told.request is not None and resolve(pinned(told, editions_of(stored)).rules) is not None:
+        request = pinned(told, editions_of(stored))
+        body["assessment"] = assess_requests([request], [sha256(request_bytes(told.request))])[0]
+        now.found[at] = judged_alone(request)
+    known = told.request is None or now.found[at] is not None
+    body["identical"] = known and json.loads(json_bytes(stored_row(now, at))) == kept
+    return {**body, "changed": changed_since(stored)}

@@ -26,7 +26,7 @@ async def read_point(request: Request) -> tuple[AssessmentRequest, bytes]:
     kind = request.headers.get("content-type", "").split(";", 1)[0].strip().lower()
     if kind != "application/json":
         raise Refused("unsupported-media-type")
-    raw = await _limited(request, request.app.state.max_body_bytes)
+    raw = await limited_body(request, request.app.state.max_body_bytes)
     try:
         return AssessmentRequest.model_validate_json(raw), raw
     except ValidationError as error:
@@ -34,7 +34,7 @@ async def read_point(request: Request) -> tuple[AssessmentRequest, bytes]:
         raise RequestValidationError(faults, body=_parsed(raw)) from None
 
 
-async def _limited(request: Request, most: int) -> bytes:
+async def limited_body(request: Request, most: int) -> bytes:
     """The body, refused as soon as it is known to be too large."""
     if (told := request.headers.get("content-length", "0")).isdecimal() and int(told) > most:
         raise Refused("body-too-large")

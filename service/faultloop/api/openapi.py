@@ -6,6 +6,7 @@ from fastapi import FastAPI
 from fastapi.openapi.utils import get_openapi
 
 from faultloop.api.problems import KINDS, MEDIA_TYPE
+from faultloop.exchange.batches import BatchRequest
 from faultloop.exchange.examples import EXAMPLE_REQUEST
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
@@ -38,9 +39,10 @@ def document(app: FastAPI) -> dict[str, Any]:
 
 def _put_request_schemas(schema: dict[str, Any]) -> None:
     """The body is read from its bytes, so the framework does not know its schema."""
-    body = AssessmentRequest.model_json_schema(ref_template="#/components/schemas/{model}")
     components = schema["components"]["schemas"]
-    components |= body.pop("$defs") | {"AssessmentRequest": body}
+    for model in (AssessmentRequest, BatchRequest):
+        body = model.model_json_schema(ref_template="#/components/schemas/{model}")
+        components |= body.pop("$defs", {}) | {model.__name__: body}
     schema["components"]["schemas"] = dict(sorted(components.items()))
 
 

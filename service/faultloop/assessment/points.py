@@ -1,7 +1,7 @@
 """Points: the columns of one, or of a million, measured points."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, fields
 
 import numpy as np
 from numpy.typing import NDArray
@@ -236,6 +236,10 @@ class Points:
     def coverage(self) -> Array:
         """Scale of the uncertainties to the coverage asked for, (n,)."""
         return self.number(Number.COVERAGE_SCALE)
+
+    def picked(self, at: Ints) -> "Points":
+        """The points of these positions, repeated where a position is."""
+        return Points(**{column.name: np.take(getattr(self, column.name), at, axis=1) for column in fields(self)})
 
 
 def from_rows(rows: Sequence[Row]) -> Points:

@@ -1,0 +1,180 @@
+"""/v1/batches: judge and store many points at once; read the batch, one row in full, or the workshop view."""
+
+from collections.abc import Callable
+from typing import Annotated, Any, TypeVar
+from uuid import UUID, uuid4
+
+import orjson
+from fastapi import APIRouter, Header, Path, Query, Request, Response
+
+from faultloop import __version__
+from faultloop.api.bodies import limited_body
+from faultloop.api.negotiation import CSV, JSON, preferred
+from faultloop.api.problems import Refused
+from faultloop.api.worker import Worker
+from faultloop.digests import json_bytes
+from faultloop.exchange.batch_answers import answer, answer_csv, restored
+from faultloop.exchange.batches import Batch, BatchQuery, BatchRow
+from faultloop.exchange.columns import FileRefused
+from faultloop.exchange.judging import judged
+from faultloop.exchange.uploads import NotJson, Upload, read_upload
+from faultloop.protection.catalogue import catalogue
+from faultloop.records.batches import find_batch, keep_batch
+from faultloop.records.tables import BatchRecord, KeptBatch
+from faultloop.replay import batch_row
+
+Result = TypeVar("Result")
+router = APIRouter(prefix="/v1/batches", tags=["batches"])
+_SENT: dict[str, Any] = {
+    "requestBody": {
+        "required": True,
+        "content": {
+            CSV: {"schema": {"type": "string", "description": "One row a point, columns by their contract names"}},
+            JSON: {"schema": {"$ref": "#/components/schemas/BatchRequest"}},
+        },
+    }
+}
+_CSV_ANSWER: dict[str, Any] = {CSV: {"schema": {"type": "string", "description": "The rows with their answers"}}}
+_OK: dict[int | str, dict[str, Any]] = {200: {"model": Batch, "description": "Judged", "content": _CSV_ANSWER}}
+
+
+@router.post("", response_model=Batch, openapi_extra=_SENT, responses=_OK, summary="Judge and store many points")
+async def post_batch(
+    request: Request,
+    query: Annotated[BatchQuery, Query()],
+    accept: Annotated[str | None, Header(max_length=1000)] = None,
+) -> Response:
+    """Judge a file or a list of points at once; the batch is stored under an id that is made here (Location)."""
+    kept, _ = await _kept(request, uuid4(), await _upload(request, query))
+    return await _answered(request, kept, 200, accept)
+
+
+@router.put(
+    "/{id:uuid}",
+    response_model=Batch,
+    openapi_extra=_SENT,
+    responses=_OK | {201: {**_OK[200], "description": "Judged and stored"}},
+    summary="Judge and store many points under the caller's id",
+)
+async def put_batch(
+    id: UUID,  # noqa: A002
+    request: Request,
+    query: Annotated[BatchQuery, Query()],
+    if_none_match: Annotated[str | None, Header(max_length=200, description="* asks for a new one only")] = None,
+    accept: Annotated[str | None, Header(max_length=1000)] = None,
+) -> Response:
+    """The same bytes and parameters again answer what is stored, others are refused."""
+    upload = await _upload(request, query)
+    kept, created = await _kept(request, id, upload)
+    if kept.record.input_digest != upload.input_digest:
+        raise Refused("precondition-failed" if if_none_match is not None else "conflict")
+    return await _answered(request, kept, 201 if created else 200, accept)
+
+
+async def _upload(request: Request, query: BatchQuery) -> Upload:
+    kind = request.headers.get("content-type", "").split(";", 1)[0].strip().lower()
+    if kind not in (CSV, JSON):
+        raise Refused("unsupported-media-type", "Send text/csv or application/json.")
+    if kind == JSON and query.model_fields_set:
+        raise Refused("unreadable-file", "default, decimal and ignore are for text/csv; in JSON, send defaults.")
+    content = await limited_body(request, request.app.state.max_batch_bytes)
+    return Upload("csv" if kind == CSV else "json", content, query)
+
+
+async def _kept(request: Request, id: UUID, upload: Upload) -> tuple[KeptBatch, bool]:  # noqa: A002
+    """The batch under this id: the stored one, else judged now, stored and only then answered."""
+    engine = request.app.state.engine
+
+    def work() -> tuple[KeptBatch, bool]:
+        found = find_batch(engine, str(id))
+        return (found, False) if found is not None else keep_batch(engine, _record(str(id), upload))
+
+    return await _run(request, work)
+
+
+async def _run(request: Request, work: Callable[[], Result]) -> Result:
+    worker: Worker = request.app.state.worker
+    try:
+        return await worker.run(work)
+    except FileRefused as error:
+        raise Refused("unreadable-file", str(error)) from None
+    except NotJson:
+        raise Refused("unreadable-body") from None
+
+
+def _record(id: str, upload: Upload) -> BatchRecord:  # noqa: A002
+    read, input_digest = read_upload(upload), upload.input_digest
+    body = answer(judged(read.rows), id, read.reading, input_digest)
+    return BatchRecord(
+        id=id,
+        input_digest=input_digest,
+        format=upload.format,
+        **body["counts"],
+        engine=__version__,
+        devices_digest=catalogue().digest,
+        parameters=json_bytes(upload.parameters),
+        content=upload.content,
+        answer=json_bytes(body),
+    )
+
+
+async def _answered(request: Request, kept: KeptBatch, status: int, accept: str | None) -> Response:
+    kind = preferred(accept, (JSON, CSV))
+    tag = kept.record.input_digest + ("" if kind == JSON else "-csv")
+    headers = {
+        "ETag": f'"{tag}"',
+        "Cache-Control": "no-store",
+        "Vary": "Accept",
+        "Location": f"/v1/batches/{kept.record.id}",
+    }
+    if kind == JSON:
+        return Response(kept.record.answer, status, media_type=JSON, headers=headers)
+    text = await _run(request, lambda: _csv(kept))
+    return Response(text, status, media_type=CSV, headers=headers)
+
+
+def _csv(kept: KeptBatch) -> str:
+    return answer_csv(restored(read_upload(upload_of(kept)).rows, orjson.loads(kept.record.answer)))
+
+
+def upload_of(kept: KeptBatch) -> Upload:
+    """What was sent, as it was stored."""
+    query = BatchQuery.model_validate_json(kept.record.parameters)
+    return Upload("csv" if kept.record.format == "csv" else "json", kept.record.content, query)
+
+
+@router.get("/{id:uuid}", response_model=Batch, responses=_OK, summary="Read a stored batch")
+async def get_batch(
+    id: UUID,  # noqa: A002
+    request: Request,
+    if_none_match: Annotated[str | None, Header(max_length=200)] = None,
+    accept: Annotated[str | None, Header(max_length=1000)] = None,
+) -> Response:
+    """Give the stored answer, byte for byte; as CSV, the rows as they came with their answers beside them."""
+    answered = await _answered(request, await _found(request, id), 200, accept)
+    wanted = {tag.strip().removeprefix("W/") for tag in (if_none_match or "").split(",")}
+    if answered.headers["ETag"] in wanted or "*" in wanted:
+        return Response(status_code=304, headers={"ETag": answered.headers["ETag"], "Vary": "Accept"})
+    return answered
+
+
+@router.get("/{id:uuid}/rows/{number}", response_model=BatchRow, summary="Read one row of a batch in full")
+async def get_batch_row(
+    id: UUID,  # noqa: A002
+    number: Annotated[int, Path(ge=1, le=10_000_000, description="Row as the batch's answer numbers it")],
+    request: Request,
+) -> Response:
+    """Compute the stored row again under the stored edition, with its texts; say what has changed since."""
+    kept = await _found(request, id)
+    body = await _run(request, lambda: batch_row(upload_of(kept), kept.record.answer, number))
+    if body is None:
+        raise Refused("not-found", "The batch has no row of this number.")
+    return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
+
+
+async def _found(request: Request, id: UUID) -> KeptBatch:  # noqa: A002
+    engine = request.app.state.engine
+    kept: KeptBatch | None = await _run(request, lambda: find_batch(engine, str(id)))
+    if kept is None:
+        raise Refused("not-found", "No batch is stored under this id.")
+    return kept

@@ -1,0 +1,160 @@
+"""Rows of a batch as they were read, before they are judged.
+
+Rows of a file that differ only in the plain numbers of their readings share one pattern: the words are read,
+validated and mapped once for all of them, and only the numbers are put in row by row.
+"""
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import Any, NamedTuple
+
+from faultloop.assessment.points import Number, Reading
+from faultloop.exchange.columns import COLUMNS, FileRefused, unknown
+from faultloop.exchange.rows import Body, Fault, Format, Told, read_body, read_cells
+from faultloop.exchange.tables import Table
+
+# Where the mapping puts the number of a cell, untouched; columns not named here belong to a row's pattern.
+READING_OF = {
+    "earth_fault_loop_impedance_ohm": Reading.LOOP,
+    "external_earth_fault_loop_impedance_ohm": Reading.EXTERNAL,
+    "line_neutral_loop_impedance_ohm": Reading.LINE_NEUTRAL,
+    "line_plus_protective_resistance_ohm": Reading.LINE_PLUS_PROTECTIVE,
+    "protective_conductor_resistance_ohm": Reading.PROTECTIVE,
+    "earth_electrode_resistance_ohm": Reading.ELECTRODE,
+    "insulation_resistance_megohm": Reading.INSULATION,
+    "board_line_neutral_loop_impedance_ohm": Reading.ORIGIN_LINE_NEUTRAL,
+    "residual_operating_time_ms": Reading.TIME_1,
+    "residual_operating_time_at_2_ms": Reading.TIME_2,
+    "residual_operating_time_at_5_ms": Reading.TIME_5,
+}
+NUMBER_OF = {"board_prospective_current_ka": Number.BOARD_CURRENT_KA, "length_m": Number.LENGTH_M}
+NAMES = ("point_id", "label", "location")
+_NUMBERED = {**READING_OF, **NUMBER_OF}
+# Below this no field's bound can refuse a number; what is larger is looked at row by row.
+_PLAIN_BELOW = 10_000.0
+
+
+class Named(NamedTuple):
+    """How a row names its point."""
+
+    id: str
+    label: str
+    location: str
+
+
+@dataclass(slots=True)
+class Rows:
+    """Rows read: the pattern of each, and the numbers (nan where the pattern's own stands) by column."""
+
+    numbers: Sequence[int]
+    names: list[Named]
+    told: list[Told]
+    pattern: list[int]
+    alone: Callable[[int], Told]
+    raw: Callable[[int], Any]
+    values: dict[str, list[float]] = field(default_factory=dict)
+    prefix: Callable[[int], str] = field(default=lambda _: "")
+
+    def of(self, at: int) -> Told:
+        """What holds, refuses or asks for a row."""
+        return self.told[self.pattern[at]]
+
+
+def refuse_defaults(defaults: Mapping[str, str]) -> None:
+    """Refuse a default for a column that is not known."""
+    for at, name in enumerate(defaults, start=1):
+        if name not in COLUMNS:
+            raise FileRefused(f"the column of default {at} {unknown(name)}")
+
+
+def body_rows(rows: Sequence[Any], defaults: Body) -> Rows:
+    """Rows that are request bodies; each is a pattern of its own."""
+    told = [read_body(row, defaults) for row in rows]
+    return Rows(
+        numbers=range(1, len(rows) + 1),
+        names=[_named_in(row) for row in rows],
+        told=told,
+        pattern=list(range(len(rows))),
+        alone=lambda at: told[at],
+        raw=lambda at: rows[at],
+        prefix=lambda at: f"/rows/{at}",
+    )
+
+
+def _named_in(row: Any) -> Named:
+    point = row.get("point") if isinstance(row, dict) else None
+    known = point if isinstance(point, dict) else {}
+    return Named(*(value if isinstance(value := known.get(name), str) else "" for name in ("id", "label", "location")))
+
+
+def file_rows(table: Table, defaults: Mapping[str, str]) -> Rows:
+    """Rows of a file; a column that the file lacks takes its default, a blank cell of one that it has does not."""
+    form = Format(table.decimal, table.units)
+    at_column = {name: at for at, name in enumerate(table.columns) if name is not None}
+    absent = {name: value for name, value in defaults.items() if name not in at_column}
+    columns = {name: [cells[at] for cells in table.cells] for name, at in at_column.items()}
+
+    def alone(at: int) -> Told:
+        if at in table.faults:
+            return Told(faults=[Fault("", "unreadable-row", table.faults[at])])
+        cells = {name: column[at] for name, column in columns.items()}
+        return read_cells({**absent, **cells}, table.numbers[at], form)
+
+    kinds, values = _kinds(len(table.cells), columns, form)
+    told, pattern = _patterns(len(table.cells), kinds, table.faults, alone)
+    blank = [""] * len(table.cells)
+    names = [Named(*map(str.strip, name)) for name in zip(*(columns.get(n, blank) for n in NAMES), strict=True)]
+    return Rows(table.numbers, names, told, pattern, alone, table.raw, values)
+
+
+class _Numbers(dict[str, int | str]):
+    """What kind a cell of a reading's column is: its bound where it is a plain number, else its own text."""
+
+    def __init__(self, column: str, form: Format) -> None:
+        self._column, self._form = column, form
+        self.numbers: dict[str, float] = {}
+
+    def __missing__(self, text: str) -> int | str:
+        cell = self._form.cell(text, self._column)
+        plain = cell.value is not None and cell.value < _PLAIN_BELOW
+        bounded = cell.bound != "exact" and self._column not in READING_OF
+        kind = text if not plain or bounded else ("exact", "above", "below").index(cell.bound)
+        self.numbers[text] = cell.value if plain and cell.value is not None else float("nan")
+        self[text] = kind
+        return kind
+
+
+def _kinds(
+    count: int, columns: Mapping[str, list[str]], form: Format
+) -> tuple[list[list[int | str]], dict[str, list[float]]]:
+    """For every column the kind of each cell, and the numbers of the columns of readings."""
+    kinds: list[list[int | str]] = [[0] * count]
+    values: dict[str, list[float]] = {}
+    for name, column in columns.items():
+        if name in _NUMBERED:
+            known = _Numbers(name, form)
+            kinds.append([known[text] for text in column])
+            values[name] = [known.numbers[text] for text in column]
+        elif name in NAMES:
+            kinds.append([text if len(text) > 200 or "\x00" in text else 0 for text in column])
+        else:
+            kinds.append(column)  # type: ignore[arg-type]
+    return kinds, values
+
+
+def _patterns(
+    count: int, kinds: list[list[int | str]], faults: Mapping[int, str], alone: Callable[[int], Told]
+) -> tuple[list[Told], list[int]]:
+    """Give rows of the same kinds one pattern, read from the first of them."""
+    told: list[Told] = []
+    known: dict[Any, int] = {}
+    pattern: list[int] = []
+    for at, key in zip(range(count), zip(*kinds, strict=True), strict=True):
+        which = None if at in faults else known.get(key)
+        if which is None:
+            which = len(told)
+            told.append(alone(at))
+            if at not in faults:
+                known[key] = which
+        pattern.append(which)
+    return told, pattern
