@@ -5,8 +5,13 @@ import json
 import sys
 from collections.abc import Sequence
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from faultloop import __version__
+
+if TYPE_CHECKING:
+    from faultloop.exchange.judging import Judged
+    from faultloop.exchange.uploads import Read
 
 
 def _serve(options: argparse.Namespace) -> int:
@@ -86,16 +91,35 @@ def _assess(options: argparse.Namespace) -> int:
     query = BatchQuery(default=options.default, decimal=options.decimal, ignore=options.ignore)
     try:
         content = sys.stdin.buffer.read() if options.file == "-" else Path(options.file).read_bytes()
-        read = read_upload(Upload("csv", content, query))
+        upload = Upload("csv", content, query)
+        read = read_upload(upload)
     except (OSError, FileRefused) as error:
         print(f"faultloop: {options.file}: {error}", file=sys.stderr)
         return 1
     batch = judged(read.rows)
     for name, value in read.reading["defaults"].items():
         print(f"Default: {name} = {value}", file=sys.stderr)
+    if options.output == "html":
+        return _workshop_page(read, batch, options.population, upload.input_digest)
     sys.stdout.write(answer_csv(batch) if options.output == "csv" else table(batch) + "\n")
     if options.output == "table":
         print("An aid to a competent person; it gives no permission, and local rules and licensed persons decide.")
+    return 0
+
+
+def _workshop_page(read: "Read", batch: "Judged", population: int | None, input_digest: str) -> int:
+    """Print the workshop view of a file as a page."""
+    from faultloop.exchange.workshop import PopulationTooSmall, workshop
+    from faultloop.exchange.workshop_view import Workshop
+    from faultloop.exchange.workshop_words import workshop_words
+    from faultloop.reports.workshop import workshop_page
+
+    try:
+        view = workshop(read, batch, {}, population, input_digest)
+    except PopulationTooSmall as error:
+        print(f"faultloop: population: {error}", file=sys.stderr)
+        return 1
+    sys.stdout.write(workshop_page(Workshop.model_validate(view).model_dump(), workshop_words().model_dump()))
     return 0
 
 
@@ -127,7 +151,8 @@ def _parser() -> argparse.ArgumentParser:
         command.add_argument("--database-url", help="sqlite:///FILE or postgresql://...; else FAULTLOOP_DATABASE_URL")
     assess = commands.add_parser("assess", help="judge a CSV file of points, one row a point")
     assess.add_argument("file", metavar="FILE", help="CSV file, or - for standard input")
-    assess.add_argument("--output", choices=("table", "csv"), default="table")
+    assess.add_argument("--output", choices=("table", "csv", "html"), default="table")
+    assess.add_argument("--population", type=int, help="number of points that there are, for the page of --output html")
     assess.add_argument("--default", type=_default, action="append", default=[], metavar="COLUMN=VALUE")
     assess.add_argument("--decimal", choices=("point", "comma"), help="decimal mark, where the file leaves it open")
     assess.add_argument(

@@ -7,10 +7,11 @@ from typing import Any
 from faultloop import __version__
 from faultloop.digests import json_bytes, sha256
 from faultloop.exchange.batch_answers import stored_row
-from faultloop.exchange.judging import Judged, judged_alone, pinned
+from faultloop.exchange.judging import Judged, judged, judged_alone, pinned
 from faultloop.exchange.render import assess_requests, request_bytes
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.exchange.uploads import Upload, read_upload
+from faultloop.exchange.workshop import workshop
 from faultloop.protection.catalogue import catalogue
 from faultloop.rules.loader import resolve
 
@@ -90,3 +91,11 @@ def batch_row(upload: Upload, answer: bytes, number: int) -> dict[str, Any] | No
     known = told.request is None or now.found[at] is not None
     body["identical"] = known and json.loads(json_bytes(stored_row(now, at))) == kept
     return {**body, "changed": changed_since(stored)}
+
+
+def batch_workshop(upload: Upload, answer: bytes, population: int | None) -> dict[str, Any]:
+    """The workshop view of a stored batch, computed again under the stored editions."""
+    read, stored = read_upload(upload), json.loads(answer)
+    editions = editions_of(stored)
+    view = workshop(read, judged(read.rows, editions), editions, population)
+    return view | {"provenance": stored["provenance"], "changed": changed_since(stored)}

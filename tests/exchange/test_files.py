@@ -115,12 +115,13 @@ def test_one_row_with_bad_quotes_is_refused_alone() -> None:
 
 @pytest.mark.parametrize("separator", [";", "\t"])
 def test_other_separators_take_either_decimal_mark_where_it_is_plain(separator: str) -> None:
-    text = HEAD + GOOD + GOOD.replace("0.62", "0~62") + GOOD.replace("0.62", "1.420") + GOOD.replace("0.62", "1~420")
+    good = GOOD.replace("0.2,", "0~2,")
+    text = HEAD + "".join(good.replace("0.62", cell) for cell in ("0.62", "0~62", "1.420", "1~420", "0~620"))
     batch = judge(text.replace(",", separator).replace("~", ","))
-    assert statuses(batch) == ["judged", "judged", "held", "held"]
-    assert batch.found[0] == batch.found[1]
+    assert statuses(batch) == ["judged", "judged", "held", "held", "judged"]
+    assert batch.found[0] == batch.found[1] == batch.found[4]
     told = judge(text.replace(",", separator).replace("~", ","), decimal="comma")
-    assert statuses(told) == ["held", "judged", "held", "judged"]
+    assert statuses(told) == ["held", "judged", "held", "judged", "judged"]
 
 
 def test_a_first_line_may_name_the_separator() -> None:

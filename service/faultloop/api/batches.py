@@ -1,6 +1,7 @@
 """/v1/batches: judge and store many points at once; read the batch, one row in full, or the workshop view."""
 
 from collections.abc import Callable
+from datetime import UTC
 from typing import Annotated, Any, TypeVar
 from uuid import UUID, uuid4
 
@@ -9,19 +10,23 @@ from fastapi import APIRouter, Header, Path, Query, Request, Response
 
 from faultloop import __version__
 from faultloop.api.bodies import limited_body
-from faultloop.api.negotiation import CSV, JSON, preferred
+from faultloop.api.negotiation import CSV, HTML, JSON, preferred
 from faultloop.api.problems import Refused
 from faultloop.api.worker import Worker
 from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer, answer_csv, restored
-from faultloop.exchange.batches import Batch, BatchQuery, BatchRow
+from faultloop.exchange.batches import Batch, BatchQuery, BatchRow, WorkshopQuery
 from faultloop.exchange.columns import FileRefused
 from faultloop.exchange.judging import judged
 from faultloop.exchange.uploads import NotJson, Upload, read_upload
+from faultloop.exchange.workshop import PopulationTooSmall
+from faultloop.exchange.workshop_view import Workshop
+from faultloop.exchange.workshop_words import workshop_words
 from faultloop.protection.catalogue import catalogue
 from faultloop.records.batches import find_batch, keep_batch
 from faultloop.records.tables import BatchRecord, KeptBatch
-from faultloop.replay import batch_row
+from faultloop.replay import batch_row, batch_workshop
+from faultloop.reports.workshop import workshop_page
 
 Result = TypeVar("Result")
 router = APIRouter(prefix="/v1/batches", tags=["batches"])
@@ -98,6 +103,8 @@ async def _run(request: Request, work: Callable[[], Result]) -> Result:
         return await worker.run(work)
     except FileRefused as error:
         raise Refused("unreadable-file", str(error)) from None
+    except PopulationTooSmall as error:
+        raise Refused("invalid-query", f"population: {error}.") from None
     except NotJson:
         raise Refused("unreadable-body") from None
 
@@ -170,6 +177,37 @@ async def get_batch_row(
     if body is None:
         raise Refused("not-found", "The batch has no row of this number.")
     return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
+
+
+@router.get(
+    "/{id:uuid}/workshop",
+    response_model=Workshop,
+    responses={200: {"model": Workshop, "content": {HTML: {"schema": {"type": "string", "description": "A page"}}}}},
+    summary="Read a batch as a list of work",
+)
+async def get_batch_workshop(
+    id: UUID,  # noqa: A002
+    query: Annotated[WorkshopQuery, Query()],
+    request: Request,
+    accept: Annotated[str | None, Header(max_length=1000)] = None,
+) -> Response:
+    """What to take out of use, what to put right in order of risk, what to ask, what the sample does not show."""
+    kept, kind = await _found(request, id), preferred(accept, (JSON, HTML))
+    content = await _run(request, lambda: _workshop(kept, query.population, kind))
+    headers = {"Cache-Control": "no-store", "Vary": "Accept"}
+    if kind == HTML:
+        headers["Content-Security-Policy"] = "default-src 'none'; style-src 'unsafe-inline'"
+    return Response(content, media_type=kind, headers=headers)
+
+
+def _workshop(kept: KeptBatch, population: int | None, kind: str) -> bytes:
+    view = batch_workshop(upload_of(kept), kept.record.answer, population)
+    stored_at = kept.stored_at.astimezone(UTC).isoformat(timespec="seconds").replace("+00:00", "Z")
+    view |= {"id": kept.record.id, "stored_at": stored_at}
+    if kind == JSON:
+        return json_bytes(view)
+    shown = Workshop.model_validate(view).model_dump()
+    return workshop_page(shown, workshop_words().model_dump()).encode()
 
 
 async def _found(request: Request, id: UUID) -> KeptBatch:  # noqa: A002

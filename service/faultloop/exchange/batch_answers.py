@@ -33,15 +33,20 @@ def answer(judged: Judged, id: str, reading: Body, input_digest: str) -> Body:  
         "results": [result_row(judged, at) for at in places if judged.found[at] is not None],
         "held": [held_row(judged, at) for at in places if status[at] == "held"],
         "refused": [refused_row(judged, at) for at in places if status[at] == "refused"],
-        "provenance": {
-            "engine": __version__,
-            "rules": [
-                {"asked": asked, "rules": rules.rules.key, "rules_digest": rules.digest}
-                for asked, rules in judged.rules_asked().items()
-            ],
-            "devices_digest": catalogue().digest,
-            "input_digest": input_digest,
-        },
+        "provenance": provenance(judged, input_digest),
+    }
+
+
+def provenance(judged: Judged, input_digest: str) -> Body:
+    """By what a batch was decided."""
+    return {
+        "engine": __version__,
+        "rules": [
+            {"asked": asked, "rules": rules.rules.key, "rules_digest": rules.digest}
+            for asked, rules in judged.rules_asked().items()
+        ],
+        "devices_digest": catalogue().digest,
+        "input_digest": input_digest,
     }
 
 

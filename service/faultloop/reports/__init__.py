@@ -1,0 +1,1 @@
+"""Documents and plots made from answers."""
