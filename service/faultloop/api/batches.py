@@ -1,6 +1,7 @@
 """/v1/batches: judge and store many points at once; read the batch, one row in full, or the workshop view."""
 
 from collections.abc import Callable
+from dataclasses import dataclass
 from datetime import UTC
 from typing import Annotated, Any, TypeVar
 from uuid import UUID, uuid4
@@ -17,8 +18,8 @@ from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer, answer_csv, restored
 from faultloop.exchange.batches import Batch, BatchQuery, BatchRow, WorkshopQuery
 from faultloop.exchange.columns import FileRefused
-from faultloop.exchange.judging import judged
-from faultloop.exchange.uploads import NotJson, Upload, read_upload
+from faultloop.exchange.judging import Judged, judged
+from faultloop.exchange.uploads import NotJson, Read, Upload, read_upload
 from faultloop.exchange.workshop import PopulationTooSmall
 from faultloop.exchange.workshop_view import Workshop
 from faultloop.exchange.workshop_words import workshop_words
@@ -50,8 +51,8 @@ async def post_batch(
     accept: Annotated[str | None, Header(max_length=1000)] = None,
 ) -> Response:
     """Judge a file or a list of points at once; the batch is stored under an id that is made here (Location)."""
-    kept, _ = await _kept(request, uuid4(), await _upload(request, query))
-    return await _answered(request, kept, 200, accept)
+    kept = await _keep(request, uuid4(), await _upload(request, query), preferred(accept, (JSON, CSV)))
+    return _answered(kept.batch, 200, kept.kind, kept.content)
 
 
 @router.put(
@@ -70,10 +71,10 @@ async def put_batch(
 ) -> Response:
     """The same bytes and parameters again answer what is stored, others are refused."""
     upload = await _upload(request, query)
-    kept, created = await _kept(request, id, upload)
-    if kept.record.input_digest != upload.input_digest:
+    kept = await _keep(request, id, upload, preferred(accept, (JSON, CSV)))
+    if kept.batch.record.input_digest != upload.input_digest:
         raise Refused("precondition-failed" if if_none_match is not None else "conflict")
-    return await _answered(request, kept, 201 if created else 200, accept)
+    return _answered(kept.batch, 201 if kept.created else 200, kept.kind, kept.content)
 
 
 async def _upload(request: Request, query: BatchQuery) -> Upload:
@@ -86,13 +87,29 @@ async def _upload(request: Request, query: BatchQuery) -> Upload:
     return Upload("csv" if kind == CSV else "json", content, query)
 
 
-async def _kept(request: Request, id: UUID, upload: Upload) -> tuple[KeptBatch, bool]:  # noqa: A002
+@dataclass(frozen=True, slots=True)
+class _Kept:
+    """A batch that is stored, and the representation to be answered."""
+
+    batch: KeptBatch
+    created: bool
+    kind: str
+    content: bytes
+
+
+async def _keep(request: Request, id: UUID, upload: Upload, kind: str) -> _Kept:  # noqa: A002
     """The batch under this id: the stored one, else judged now, stored and only then answered."""
     engine = request.app.state.engine
 
-    def work() -> tuple[KeptBatch, bool]:
+    def work() -> _Kept:
         found = find_batch(engine, str(id))
-        return (found, False) if found is not None else keep_batch(engine, _record(str(id), upload))
+        if found is not None:
+            return _Kept(found, False, kind, _content(found, kind))
+        read = read_upload(upload)
+        batch = judged(read.rows)
+        kept, created = keep_batch(engine, _record(str(id), upload, read, batch))
+        content = answer_csv(batch).encode() if created and kind == CSV else _content(kept, kind)
+        return _Kept(kept, created, kind, content)
 
     return await _run(request, work)
 
@@ -109,12 +126,11 @@ async def _run(request: Request, work: Callable[[], Result]) -> Result:
         raise Refused("unreadable-body") from None
 
 
-def _record(id: str, upload: Upload) -> BatchRecord:  # noqa: A002
-    read, input_digest = read_upload(upload), upload.input_digest
-    body = answer(judged(read.rows), id, read.reading, input_digest)
+def _record(id: str, upload: Upload, read: Read, batch: Judged) -> BatchRecord:  # noqa: A002
+    body = answer(batch, id, read.reading, upload.input_digest)
     return BatchRecord(
         id=id,
-        input_digest=input_digest,
+        input_digest=upload.input_digest,
         format=upload.format,
         **body["counts"],
         engine=__version__,
@@ -125,23 +141,26 @@ def _record(id: str, upload: Upload) -> BatchRecord:  # noqa: A002
     )
 
 
-async def _answered(request: Request, kept: KeptBatch, status: int, accept: str | None) -> Response:
-    kind = preferred(accept, (JSON, CSV))
-    tag = kept.record.input_digest + ("" if kind == JSON else "-csv")
+def _content(kept: KeptBatch, kind: str) -> bytes:
+    """The stored answer, byte for byte; as CSV, the rows as they came with their answers beside them."""
+    if kind == JSON:
+        return kept.record.answer
+    return answer_csv(restored(read_upload(upload_of(kept)).rows, orjson.loads(kept.record.answer))).encode()
+
+
+def _answered(kept: KeptBatch, status: int, kind: str, content: bytes) -> Response:
     headers = {
-        "ETag": f'"{tag}"',
+        "ETag": _tag(kept, kind),
         "Cache-Control": "no-store",
         "Vary": "Accept",
         "Location": f"/v1/batches/{kept.record.id}",
     }
-    if kind == JSON:
-        return Response(kept.record.answer, status, media_type=JSON, headers=headers)
-    text = await _run(request, lambda: _csv(kept))
-    return Response(text, status, media_type=CSV, headers=headers)
+    return Response(content, status, media_type=kind, headers=headers)
 
 
-def _csv(kept: KeptBatch) -> str:
-    return answer_csv(restored(read_upload(upload_of(kept)).rows, orjson.loads(kept.record.answer)))
+def _tag(kept: KeptBatch, kind: str) -> str:
+    """What stands under an id never changes, so its input's digest is a strong tag of each representation."""
+    return f'"{kept.record.input_digest}"' if kind == JSON else f'"{kept.record.input_digest}-csv"'
 
 
 def upload_of(kept: KeptBatch) -> Upload:
@@ -158,11 +177,11 @@ async def get_batch(
     accept: Annotated[str | None, Header(max_length=1000)] = None,
 ) -> Response:
     """Give the stored answer, byte for byte; as CSV, the rows as they came with their answers beside them."""
-    answered = await _answered(request, await _found(request, id), 200, accept)
+    kept, kind = await _found(request, id), preferred(accept, (JSON, CSV))
     wanted = {tag.strip().removeprefix("W/") for tag in (if_none_match or "").split(",")}
-    if answered.headers["ETag"] in wanted or "*" in wanted:
-        return Response(status_code=304, headers={"ETag": answered.headers["ETag"], "Vary": "Accept"})
-    return answered
+    if _tag(kept, kind) in wanted or "*" in wanted:
+        return Response(status_code=304, headers={"ETag": _tag(kept, kind), "Vary": "Accept"})
+    return _answered(kept, 200, kind, await _run(request, lambda: _content(kept, kind)))
 
 
 @router.get("/{id:uuid}/rows/{number}", response_model=BatchRow, summary="Read one row of a batch in full")

@@ -4,7 +4,6 @@ import csv
 import io
 from collections import Counter
 from collections.abc import Mapping, Sequence
-from itertools import chain
 from typing import Any
 
 from faultloop import __version__
@@ -126,34 +125,26 @@ def answer_header() -> list[str]:
 
 def answer_csv(judged: Judged) -> str:
     """The rows as they came with their answers beside them (RFC 4180); no cell can act as a formula."""
-    raw = [_flat(judged.rows.raw(at)) for at in range(len(judged.found))]
-    names = list(dict.fromkeys(name for row in raw for name in row))
-    own = answer_header()
+    rows, own = judged.rows, answer_header()
     # A heading of the caller's that is also one of the answer's keeps its text and is told apart.
-    shown = [_guarded(f"given_{name}" if name in own else name) for name in names]
+    shown = [_guarded(f"given_{name}" if name in own else name) for name in rows.header]
     out = io.StringIO()
     writer = csv.writer(out, lineterminator="\r\n")
     writer.writerow([*shown, *own])
-    for at, row in enumerate(raw):
-        writer.writerow([*[_guarded(row.get(name, "")) for name in names], *_answer_cells(judged, at)])
+    writer.writerows([*map(_guarded, rows.cells(at)), *_answer_cells(judged, at)] for at in range(len(judged.found)))
     return out.getvalue()
 
 
-def _flat(row: Any) -> Mapping[str, str]:
-    """The cells of a row; of a JSON row, only what names its point."""
-    if isinstance(row, dict) and all(isinstance(value, str) for value in row.values()):
-        return row
-    point = row.get("point") if isinstance(row, dict) else None
-    known = point.items() if isinstance(point, dict) else ()
-    return {f"point_{name}" if name == "id" else name: value for name, value in known if isinstance(value, str)}
-
-
 def _answer_cells(judged: Judged, at: int) -> list[Any]:
-    told, found = judged.rows.of(at), judged.found[at]
-    head = [judged.rows.numbers[at], told.status, judged.verdict(at), judged.urgency(at)]
+    found, number = judged.found[at], judged.rows.numbers[at]
     if found is None:
-        return [*head, "", _guarded(asked(told)), *_NOTHING * len(CHECK_IDS)]
-    return [*head, found.decided_by, "", *chain.from_iterable(finding or _NOTHING for finding in found.findings)]
+        told = judged.rows.of(at)
+        head = [number, told.status, "undetermined", told.urgency, "", _guarded(asked(told))]
+        return head + list(_NOTHING) * len(CHECK_IDS)
+    cells = [number, "judged", found.verdict, found.urgency, found.decided_by, ""]
+    for finding in found.findings:
+        cells += finding or _NOTHING
+    return cells
 
 
 def asked(told: Told) -> str:

@@ -52,6 +52,8 @@ class Rows:
     pattern: list[int]
     alone: Callable[[int], Told]
     raw: Callable[[int], Any]
+    header: list[str]
+    cells: Callable[[int], Sequence[str]]
     values: dict[str, list[float]] = field(default_factory=dict)
     prefix: Callable[[int], str] = field(default=lambda _: "")
 
@@ -69,14 +71,16 @@ def refuse_defaults(defaults: Mapping[str, str]) -> None:
 
 def body_rows(rows: Sequence[Any], defaults: Body) -> Rows:
     """Rows that are request bodies; each is a pattern of its own."""
-    told = [read_body(row, defaults) for row in rows]
+    told, names = [read_body(row, defaults) for row in rows], [_named_in(row) for row in rows]
     return Rows(
         numbers=range(1, len(rows) + 1),
-        names=[_named_in(row) for row in rows],
+        names=names,
         told=told,
         pattern=list(range(len(rows))),
         alone=lambda at: told[at],
         raw=lambda at: rows[at],
+        header=list(NAMES),
+        cells=lambda at: names[at],
         prefix=lambda at: f"/rows/{at}",
     )
 
@@ -104,7 +108,18 @@ def file_rows(table: Table, defaults: Mapping[str, str]) -> Rows:
     told, pattern = _patterns(len(table.cells), kinds, table.faults, alone)
     blank = [""] * len(table.cells)
     names = [Named(*map(str.strip, name)) for name in zip(*(columns.get(n, blank) for n in NAMES), strict=True)]
-    return Rows(table.numbers, names, told, pattern, alone, table.raw, values)
+    width = len(table.header)
+    return Rows(
+        numbers=table.numbers,
+        names=names,
+        told=told,
+        pattern=pattern,
+        alone=alone,
+        raw=table.raw,
+        header=table.header,
+        cells=lambda at: table.cells[at][:width],
+        values=values,
+    )
 
 
 class _Numbers(dict[str, int | str]):
