@@ -167,7 +167,8 @@ def install(app: FastAPI) -> None:
 
     @app.exception_handler(Refused)
     async def refused(_: Request, error: Refused) -> Response:
-        return problem(error.kind, detail=error.detail)
+        headers = {"Retry-After": "1"} if error.kind == "busy" else None
+        return problem(error.kind, detail=error.detail, headers=headers)
 
     @app.exception_handler(RequestValidationError)
     async def invalid(_: Request, error: RequestValidationError) -> Response:

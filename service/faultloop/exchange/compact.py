@@ -49,7 +49,9 @@ def _column(outcome: Outcome, row: int) -> list[Finding | None]:
         return [None] * count
     examined = verdict < Verdict.NOT_EXAMINED
     value, limit = (rounded_column(np.where(examined, of[row], np.nan)) for of in (found.nominal, found.limit))
-    reasons = (*CHECKS[row].reasons, None)
-    words = map(_VERDICTS.__getitem__, verdict.tolist())
+    codes, reasons = verdict.tolist(), CHECKS[row].reasons
+    words = map(_VERDICTS.__getitem__, codes)
     told = zip(words, value, limit, map(reasons.__getitem__, found.reason[row].tolist()), strict=True)
-    return [finding if finding[3] is not None else None for finding in told]
+    if int(verdict.max()) < Verdict.NOT_APPLICABLE:
+        return list(told)
+    return [finding if code != Verdict.NOT_APPLICABLE else None for finding, code in zip(told, codes, strict=True)]
