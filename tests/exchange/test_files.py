@@ -42,7 +42,7 @@ def test_an_impossible_device_refuses_its_row_only() -> None:
 
 
 def test_a_misspelt_column_is_refused_with_the_nearest_name() -> None:
-    with pytest.raises(FileRefused, match="column 10 .*did you mean earth_fault_loop_impedance_ohm"):
+    with pytest.raises(FileRefused, match=r"column 10 .*did you mean earth_fault_loop_impedance_ohm"):
         judge(HEAD.replace(LOOP, "earth_fault_loop_impedence_ohm", 1) + GOOD)
 
 
