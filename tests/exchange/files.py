@@ -27,8 +27,8 @@ def statuses(batch: Judged) -> list[str]:
     return [batch.rows.of(at).status for at in range(len(batch.found))]
 
 
-def written(header: list[str], rows: list[list[str]]) -> str:
+def written(header: list[str], rows: list[list[str]], separator: str = ",") -> str:
     """Rows as a CSV file."""
     out = io.StringIO()
-    csv.writer(out).writerows([header, *rows])
+    csv.writer(out, delimiter=separator).writerows([header, *rows])
     return out.getvalue()

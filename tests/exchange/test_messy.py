@@ -51,7 +51,7 @@ def test_the_files_are_messy() -> None:
         assert b'"Bench\nby the window"' in raw
 
 
-def test_the_script_still_writes_these_files(tmp_path: Path) -> None:
+def test_the_script_still_writes_these_files() -> None:
     script = runpy.run_path(str(MESSY / "make.py"))
     for habit, (name, separator, mark) in enumerate((("comma", ",", "."), ("semicolon", ";", ","))):
         text, rows = script["made"](separator, mark, habit)
