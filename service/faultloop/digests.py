@@ -40,14 +40,15 @@ def rounded_column(values: NDArray[np.float64]) -> list[float | None]:
         power = 10.0 ** np.abs(shift)
         scaled = np.where(shift >= 0, values * power, values / power)
         whole = np.rint(scaled)
-        near = np.where(shift >= 0, whole / power, whole * power)
-        told = (np.abs(shift) <= 22) & (np.abs(np.abs(scaled - whole) - 0.5) > 1e-6)
-    column = near.astype(object)
-    column[~np.isfinite(values)] = None
-    for at in np.flatnonzero(~told & np.isfinite(values)).tolist():
+        near = np.where(values == 0.0, values, np.where(shift >= 0, whole / power, whole * power))
+        told = (values == 0.0) | (np.abs(shift) <= 22) & (np.abs(np.abs(scaled - whole) - 0.5) > 1e-6)
+    finite = np.isfinite(values)
+    column: list[float | None] = near.tolist()
+    if not finite.all():
+        column = [value if known else None for value, known in zip(column, finite.tolist(), strict=True)]
+    for at in np.flatnonzero(~told & finite).tolist():
         column[at] = rounded(float(values[at]))
-    listed: list[float | None] = column.tolist()
-    return listed
+    return column
 
 
 def canonical_bytes(value: Any) -> bytes:

@@ -1,8 +1,7 @@
 """Cells as instruments print them -> a value, a bound, nothing, or a question; never a zero, never converted."""
 
 import re
-from dataclasses import dataclass
-from typing import Literal
+from typing import Literal, NamedTuple
 
 Decimal = Literal["point", "comma", "either"]
 MISSING = {"", "-", "--", "---", "n/a", "na", "n.a.", "nt", "n.t.", "n.m.", "not tested", "not measured", "lim"}
@@ -21,8 +20,7 @@ _UNITS = {
 }
 
 
-@dataclass(frozen=True, slots=True)
-class Cell:
+class Cell(NamedTuple):
     """What a cell says: a value with its bound, or a question that holds the row; neither when it says nothing."""
 
     value: float | None = None

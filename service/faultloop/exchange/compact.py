@@ -48,6 +48,8 @@ def _column(outcome: Outcome, row: int) -> list[Finding | None]:
     if (verdict == Verdict.NOT_APPLICABLE).all():
         return [None] * count
     examined = verdict < Verdict.NOT_EXAMINED
+    if not examined.any() and (verdict == verdict[0]).all() and (found.reason[row] == found.reason[row][0]).all():
+        return [(None, None, None, CHECKS[row].reasons[found.reason[row][0]])] * count
     value, limit = (rounded_column(np.where(examined, of[row], np.nan)) for of in (found.nominal, found.limit))
     codes, reasons = verdict.tolist(), CHECKS[row].reasons
     words = map(_VERDICTS.__getitem__, codes)

@@ -96,7 +96,8 @@ def file_rows(table: Table, defaults: Mapping[str, str]) -> Rows:
     form = Format(table.decimal, table.units)
     at_column = {name: at for at, name in enumerate(table.columns) if name is not None}
     absent = {name: value for name, value in defaults.items() if name not in at_column}
-    columns = {name: [cells[at] for cells in table.cells] for name, at in at_column.items()}
+    laid_out = list(zip(*table.cells, strict=False)) or [()] * len(table.columns)
+    columns = {name: laid_out[at] for name, at in at_column.items()}
 
     def alone(at: int) -> Told:
         if at in table.faults:
@@ -106,8 +107,8 @@ def file_rows(table: Table, defaults: Mapping[str, str]) -> Rows:
 
     kinds, values = _kinds(len(table.cells), columns, form)
     told, pattern = _patterns(len(table.cells), kinds, table.faults, alone)
-    blank = [""] * len(table.cells)
-    names = [Named(*map(str.strip, name)) for name in zip(*(columns.get(n, blank) for n in NAMES), strict=True)]
+    blank = ("",) * len(table.cells)
+    names = [Named._make(name) for name in zip(*(map(str.strip, columns.get(n, blank)) for n in NAMES), strict=True)]
     width = len(table.header)
     return Rows(
         numbers=table.numbers,
@@ -140,10 +141,10 @@ class _Numbers(dict[str, int | str]):
 
 
 def _kinds(
-    count: int, columns: Mapping[str, list[str]], form: Format
-) -> tuple[list[list[int | str]], dict[str, list[float]]]:
+    count: int, columns: Mapping[str, Sequence[str]], form: Format
+) -> tuple[list[Sequence[int | str]], dict[str, list[float]]]:
     """For every column the kind of each cell, and the numbers of the columns of readings."""
-    kinds: list[list[int | str]] = [[0] * count]
+    kinds: list[Sequence[int | str]] = [[0] * count]
     values: dict[str, list[float]] = {}
     for name, column in columns.items():
         if name in _NUMBERED:
@@ -153,12 +154,13 @@ def _kinds(
         elif name in NAMES:
             kinds.append([text if len(text) > 200 or "\x00" in text else 0 for text in column])
         else:
-            kinds.append(column)  # type: ignore[arg-type]
-    return kinds, values
+            kinds.append(column)
+    # A column that is the same all the way down parts no patterns.
+    return [kind for kind in kinds if kind is kinds[0] or kind.count(kind[0]) < count], values
 
 
 def _patterns(
-    count: int, kinds: list[list[int | str]], faults: Mapping[int, str], alone: Callable[[int], Told]
+    count: int, kinds: list[Sequence[int | str]], faults: Mapping[int, str], alone: Callable[[int], Told]
 ) -> tuple[list[Told], list[int]]:
     """Give rows of the same kinds one pattern, read from the first of them."""
     told: list[Told] = []

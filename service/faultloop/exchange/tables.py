@@ -5,10 +5,12 @@ import io
 import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
+from typing import Any
 
 from faultloop.exchange.cells import Decimal, same_unit
 from faultloop.exchange.columns import COLUMNS, FileRefused, unknown
 
+Record = list[str] | str
 MOST_ROWS = 10_000
 _SEPARATORS = (",", ";", "\t")
 _WITH_UNIT = re.compile(r"(.*?)\s*(?:\[([^\]]*)\]|\(([^)]*)\))")
@@ -61,10 +63,11 @@ def read_table(text: str, decimal: Decimal | None = None, ignore: Sequence[str] 
     separator = told[1] if told else _separator(text)
     records = _records(text[told.end() :] if told else text, separator)
     begun = 2 if told else 1
-    for number, record in enumerate(records, start=begun):
+    following = iter(records)
+    for number, record in enumerate(following, start=begun):
         if not _blank(record):
             table = _headed(record, separator, decimal, ignore)
-            _fill(table, records, number, most)
+            _fill(table, following, number, most)
             return table
     raise FileRefused("the file is empty: the first line must name the columns")
 
@@ -75,9 +78,15 @@ def _separator(text: str) -> str:
     return max(_SEPARATORS, key=lambda mark: sum(_named(name)[0] is not None for name in first.split(mark)))
 
 
-def _records(text: str, separator: str) -> Iterator[list[str] | str]:
+def _records(text: str, separator: str) -> Sequence[Record]:
     """Records of the file; one whose quotes cannot be read comes as the words for it, and the next line follows."""
-    reader = csv.reader(io.StringIO(text, newline=""), delimiter=separator, strict=True)
+    try:
+        return list(csv.reader(io.StringIO(text, newline=""), delimiter=separator, strict=True))
+    except csv.Error:
+        return list(_one_by_one(csv.reader(io.StringIO(text, newline=""), delimiter=separator, strict=True)))
+
+
+def _one_by_one(reader: Any) -> Iterator[Record]:
     while True:
         try:
             yield next(reader)
@@ -89,8 +98,8 @@ def _records(text: str, separator: str) -> Iterator[list[str] | str]:
             yield f"the quotation marks of this row cannot be read ({error})"
 
 
-def _blank(record: list[str] | str) -> bool:
-    return not isinstance(record, str) and not any(cell.strip() for cell in record)
+def _blank(record: Record) -> bool:
+    return not isinstance(record, str) and next(filter(str.strip, record), None) is None
 
 
 def _named(told: str) -> tuple[str | None, str | None]:
@@ -102,7 +111,7 @@ def _named(told: str) -> tuple[str | None, str | None]:
     return _CASELESS.get(name.casefold()), unit or None
 
 
-def _headed(header: list[str] | str, separator: str, decimal: Decimal | None, ignore: Sequence[str]) -> Table:
+def _headed(header: Record, separator: str, decimal: Decimal | None, ignore: Sequence[str]) -> Table:
     if isinstance(header, str):
         raise FileRefused(header)
     names = [name.strip() for name in header]
@@ -125,7 +134,7 @@ def _headed(header: list[str] | str, separator: str, decimal: Decimal | None, ig
     return table
 
 
-def _fill(table: Table, records: Iterator[list[str] | str], number: int, most: int) -> None:
+def _fill(table: Table, records: Iterator[Record], number: int, most: int) -> None:
     width, numbers, cells = len(table.header), table.numbers, table.cells
     for record in records:
         number += 1
