@@ -48,10 +48,11 @@ _OK: dict[int | str, dict[str, Any]] = {200: {"model": Batch, "description": "Ju
 async def post_batch(
     request: Request,
     query: Annotated[BatchQuery, Query()],
-    accept: Annotated[str | None, Header(max_length=1000)] = None,
 ) -> Response:
     """Judge a file or a list of points at once; the batch is stored under an id that is made here (Location)."""
-    kept = await _keep(request, uuid4(), await _upload(request, query), preferred(accept, (JSON, CSV)))
+    kept = await _keep(
+        request, uuid4(), await _upload(request, query), preferred(request.headers.get("accept"), (JSON, CSV))
+    )
     return _answered(kept.batch, 200, kept.kind, kept.content)
 
 
@@ -67,11 +68,10 @@ async def put_batch(
     request: Request,
     query: Annotated[BatchQuery, Query()],
     if_none_match: Annotated[str | None, Header(max_length=200, description="* asks for a new one only")] = None,
-    accept: Annotated[str | None, Header(max_length=1000)] = None,
 ) -> Response:
     """The same bytes and parameters again answer what is stored, others are refused."""
     upload = await _upload(request, query)
-    kept = await _keep(request, id, upload, preferred(accept, (JSON, CSV)))
+    kept = await _keep(request, id, upload, preferred(request.headers.get("accept"), (JSON, CSV)))
     if kept.batch.record.input_digest != upload.input_digest:
         raise Refused("precondition-failed" if if_none_match is not None else "conflict")
     return _answered(kept.batch, 201 if kept.created else 200, kept.kind, kept.content)
@@ -174,10 +174,9 @@ async def get_batch(
     id: UUID,  # noqa: A002
     request: Request,
     if_none_match: Annotated[str | None, Header(max_length=200)] = None,
-    accept: Annotated[str | None, Header(max_length=1000)] = None,
 ) -> Response:
     """Give the stored answer, byte for byte; as CSV, the rows as they came with their answers beside them."""
-    kept, kind = await _found(request, id), preferred(accept, (JSON, CSV))
+    kept, kind = await _found(request, id), preferred(request.headers.get("accept"), (JSON, CSV))
     wanted = {tag.strip().removeprefix("W/") for tag in (if_none_match or "").split(",")}
     if _tag(kept, kind) in wanted or "*" in wanted:
         return Response(status_code=304, headers={"ETag": _tag(kept, kind), "Vary": "Accept"})
@@ -208,10 +207,9 @@ async def get_batch_workshop(
     id: UUID,  # noqa: A002
     query: Annotated[WorkshopQuery, Query()],
     request: Request,
-    accept: Annotated[str | None, Header(max_length=1000)] = None,
 ) -> Response:
     """What to take out of use, what to put right in order of risk, what to ask, what the sample does not show."""
-    kept, kind = await _found(request, id), preferred(accept, (JSON, HTML))
+    kept, kind = await _found(request, id), preferred(request.headers.get("accept"), (JSON, HTML))
     content = await _run(request, lambda: _workshop(kept, query.population, kind))
     headers = {"Cache-Control": "no-store", "Vary": "Accept"}
     if kind == HTML:

@@ -121,7 +121,7 @@ class RepeatedPoint(Answer):
     governing_row: int
 
 
-class Reading(Answer):
+class ReadAs(Answer):
     """How the body was read."""
 
     format: Literal["csv", "json"]
@@ -156,7 +156,7 @@ class Batch(Answer):
     counts: Counts
     verdicts: dict[VerdictWord, int]
     urgencies: dict[UrgencyWord, int]
-    reading: Reading
+    reading: ReadAs
     repeated_points: list[RepeatedPoint]
     checks: list[Text]
     results: list[BatchResult]
