@@ -51,7 +51,7 @@ async def post_batch(
 ) -> Response:
     """Judge a file or a list of points at once; the batch is stored under an id that is made here (Location)."""
     kept = await _keep(
-        request, uuid4(), await _upload(request, query), preferred(request.headers.get("accept"), (JSON, CSV))
+        request, uuid4(), await _upload(request, query), _liked(request, CSV)
     )
     return _answered(kept.batch, 200, kept.kind, kept.content)
 
@@ -71,10 +71,15 @@ async def put_batch(
 ) -> Response:
     """The same bytes and parameters again answer what is stored, others are refused."""
     upload = await _upload(request, query)
-    kept = await _keep(request, id, upload, preferred(request.headers.get("accept"), (JSON, CSV)))
+    kept = await _keep(request, id, upload, _liked(request, CSV))
     if kept.batch.record.input_digest != upload.input_digest:
         raise Refused("precondition-failed" if if_none_match is not None else "conflict")
     return _answered(kept.batch, 201 if kept.created else 200, kept.kind, kept.content)
+
+
+def _liked(request: Request, other: str) -> str:
+    """JSON, or the other representation where the caller likes it better."""
+    return preferred(request.headers.get("accept"), (JSON, other))
 
 
 async def _upload(request: Request, query: BatchQuery) -> Upload:
@@ -176,7 +181,7 @@ async def get_batch(
     if_none_match: Annotated[str | None, Header(max_length=200)] = None,
 ) -> Response:
     """Give the stored answer, byte for byte; as CSV, the rows as they came with their answers beside them."""
-    kept, kind = await _found(request, id), preferred(request.headers.get("accept"), (JSON, CSV))
+    kept, kind = await _found(request, id), _liked(request, CSV)
     wanted = {tag.strip().removeprefix("W/") for tag in (if_none_match or "").split(",")}
     if _tag(kept, kind) in wanted or "*" in wanted:
         return Response(status_code=304, headers={"ETag": _tag(kept, kind), "Vary": "Accept"})
@@ -209,7 +214,7 @@ async def get_batch_workshop(
     request: Request,
 ) -> Response:
     """What to take out of use, what to put right in order of risk, what to ask, what the sample does not show."""
-    kept, kind = await _found(request, id), preferred(request.headers.get("accept"), (JSON, HTML))
+    kept, kind = await _found(request, id), _liked(request, HTML)
     content = await _run(request, lambda: _workshop(kept, query.population, kind))
     headers = {"Cache-Control": "no-store", "Vary": "Accept"}
     if kind == HTML:

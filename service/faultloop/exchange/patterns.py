@@ -156,7 +156,8 @@ def _kinds(
         else:
             kinds.append(column)
     # A column that is the same all the way down parts no patterns.
-    return [kind for kind in kinds if kind is kinds[0] or kind.count(kind[0]) < count], values
+    parting = [kind for kind in kinds[1:] if count and kind.count(kind[0]) < count]
+    return [kinds[0], *parting], values
 
 
 def _patterns(
