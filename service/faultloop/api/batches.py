@@ -50,9 +50,7 @@ async def post_batch(
     query: Annotated[BatchQuery, Query()],
 ) -> Response:
     """Judge a file or a list of points at once; the batch is stored under an id that is made here (Location)."""
-    kept = await _keep(
-        request, uuid4(), await _upload(request, query), _liked(request, CSV)
-    )
+    kept = await _keep(request, uuid4(), await _upload(request, query), _liked(request, CSV))
     return _answered(kept.batch, 200, kept.kind, kept.content)
 
 

@@ -7,11 +7,11 @@ from collections import Counter
 from collections.abc import Iterator, Mapping
 from typing import Any
 
-from faultloop.electrical.sampling import greatest_bad
 from faultloop.exchange.batch_answers import asked, provenance
 from faultloop.exchange.judging import Judged, requests_of
 from faultloop.exchange.listing import deciding
 from faultloop.exchange.render import assess_requests
+from faultloop.exchange.sampling import greatest_bad
 from faultloop.exchange.uploads import Read
 from faultloop.exchange.workshop_words import WorkshopWords, workshop_words
 

@@ -7,7 +7,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from faultloop.electrical.sampling import greatest_bad
+from faultloop.exchange.sampling import greatest_bad
 
 
 def test_six_of_forty_fine_leaves_fourteen() -> None:
