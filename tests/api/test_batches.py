@@ -249,6 +249,7 @@ def test_defaults_stand_for_what_a_row_leaves_out(url: str) -> None:
         ("application/json", b'{"rows": [' + b"0," * 10_000 + b"0]}", "", 422),
         ("application/json", b'{"rows": []}', "?decimal=point", 422),
         ("text/plain", b"label\nx\n", "", 415),
+        ("text/csv; charset=latin-1", b"label\nx\n", "", 415),
         ("", b"label\nx\n", "", 415),
         ("text/csv", b"label\n" + b"x" * 70_000, "", 413),
     ],

@@ -81,9 +81,9 @@ def _liked(request: Request, other: str) -> str:
 
 
 async def _upload(request: Request, query: BatchQuery) -> Upload:
-    kind = request.headers.get("content-type", "").split(";", 1)[0].strip().lower()
-    if kind not in (CSV, JSON):
-        raise Refused("unsupported-media-type", "Send text/csv or application/json.")
+    kind, _, parameters = (part.strip().lower() for part in request.headers.get("content-type", "").partition(";"))
+    if kind not in (CSV, JSON) or ("charset=" in parameters and "utf-8" not in parameters):
+        raise Refused("unsupported-media-type", "Send text/csv or application/json in UTF-8.")
     if kind == JSON and query.model_fields_set:
         raise Refused("unreadable-file", "default, decimal and ignore are for text/csv; in JSON, send defaults.")
     content = await limited_body(request, request.app.state.max_batch_bytes)
