@@ -4,6 +4,7 @@ import csv
 import io
 from typing import Any
 
+import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
@@ -84,6 +85,56 @@ def test_rows_of_a_list_equal_points_asked_alone(rows: list[dict[str, Any]]) -> 
     batch = judged(read_upload(Upload("json", json_bytes({"rows": rows}), BatchQuery())).rows)
     for at, row in enumerate(rows):
         same(batch, at, assess(row))
+
+
+@given(requests, st.lists(st.floats(0, 12_000), min_size=2, max_size=6), st.data())
+@settings(max_examples=60, deadline=None)
+def test_rows_of_a_list_that_differ_in_numbers_equal_points_asked_alone(
+    row: dict[str, Any], values: list[float], data: st.DataObject
+) -> None:
+    rows = []
+    for value in values:
+        readings = dict(row.get("readings", {}))
+        for name in data.draw(st.lists(st.sampled_from(sorted(readings) or ["none"]), max_size=2)):
+            told = readings.get(name)
+            if name == "residual_operating_time_ms":
+                readings[name] = {**told, "1": value}
+            elif told is not None:
+                readings[name] = {**told, "value": value} if isinstance(told, dict) else value
+        rows.append({**row, "readings": readings})
+    batch = judged(read_upload(Upload("json", json_bytes({"rows": rows}), BatchQuery())).rows)
+    for at, told in enumerate(rows):
+        same(batch, at, assess(told))
+
+
+def test_rows_of_a_list_share_patterns_and_keep_their_own_numbers() -> None:
+    body = workshop.body(ROWS[0])
+    loops = [0.40, 0.62, 4.9, 0.40]
+    rows = [
+        {**body, "point": {"label": f"P{at}"}, "readings": {**body["readings"], READ[1]: {"value": loop}}}
+        for at, loop in enumerate(loops)
+    ]
+    read = read_upload(Upload("json", json_bytes({"rows": rows}), BatchQuery())).rows
+    assert len(read.told) == 1
+    batch = judged(read)
+    for at, row in enumerate(rows):
+        same(batch, at, assess(row))
+    assert batch.found[0] == batch.found[3] != batch.found[1] != batch.found[2]
+
+
+@pytest.mark.parametrize("odd", [True, None, "0.4", [0.4], {"value": True}, {"value": None}, {"value": "0.4"}, -0.4])
+def test_what_stands_in_place_of_a_number_never_shares_the_pattern_of_one(odd: Any) -> None:
+    body = workshop.body(ROWS[0])
+    for good in (0.4, {"value": 0.4}):
+        rows = [{**body, "readings": {**body["readings"], READ[1]: reading}} for reading in (good, odd, good)]
+        rows += [{**body, "point": point} for point in (True, None, {"label": None}, {"label": ""}, {"id": "x"})]
+        batch = judged(read_upload(Upload("json", json_bytes({"rows": rows}), BatchQuery())).rows)
+        assert batch.found[0] == batch.found[2] is not None
+        assert batch.found[3:] == [None] * 5
+        if odd is None:
+            same(batch, 1, assess(rows[1]))
+        elif odd != "0.4":
+            assert batch.found[1] is None
 
 
 def test_the_invented_workshop_over_several_chunks_equals_its_rows_alone() -> None:

@@ -1,16 +1,17 @@
 """Rows of a batch as they were read, before they are judged.
 
-Rows of a file that differ only in the plain numbers of their readings share one pattern: the words are read,
+Rows that differ only in the plain numbers of their readings share one pattern: the words are read,
 validated and mapped once for all of them, and only the numbers are put in row by row.
 """
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Hashable, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any, NamedTuple
 
 from faultloop.assessment.points import Number, Reading
-from faultloop.exchange.columns import COLUMNS, FileRefused, unknown
-from faultloop.exchange.rows import Body, Fault, Format, Told, read_body, read_cells
+from faultloop.digests import json_bytes
+from faultloop.exchange.columns import COLUMNS, TIMES, FileRefused, unknown
+from faultloop.exchange.rows import TWICE, Body, Fault, Format, Told, named_twice, read_body, read_cells
 from faultloop.exchange.tables import Table
 
 # Where the mapping puts the number of a cell, untouched; columns not named here belong to a row's pattern.
@@ -32,6 +33,8 @@ NAMES = ("point_id", "label", "location")
 _NUMBERED = {**READING_OF, **NUMBER_OF}
 # Below this no field's bound can refuse a number; what is larger is looked at row by row.
 _PLAIN_BELOW = 10_000.0
+_NAN = float("nan")
+_TIMES = {path[-1]: column for column, path in TIMES.items()}
 
 
 class Named(NamedTuple):
@@ -69,20 +72,67 @@ def refuse_defaults(defaults: Mapping[str, str]) -> None:
             raise FileRefused(f"the column of default {at} {unknown(name)}")
 
 
-def body_rows(rows: Sequence[Any], defaults: Body) -> Rows:
-    """Rows that are request bodies; each is a pattern of its own."""
-    told, names = [read_body(row, defaults) for row in rows], [_named_in(row) for row in rows]
+def body_rows(rows: Sequence[Any], defaults: Body, *, marked: bool = False) -> Rows:
+    """Rows that are request bodies; `marked` where names that stand twice are marked."""
+
+    def alone(at: int) -> Told:
+        twice = marked and named_twice(rows[at])
+        return Told(faults=[TWICE]) if twice else read_body(rows[at], defaults)
+
+    parted = [_parted(row) for row in rows] if not marked else [(at, {}) for at in range(len(rows))]
+    told, pattern = _patterns([key for key, _ in parted], alone)
+    columns = dict.fromkeys(name for _, numbers in parted for name in numbers)
+    names = [_named_in(row) for row in rows]
     return Rows(
         numbers=range(1, len(rows) + 1),
         names=names,
         told=told,
-        pattern=list(range(len(rows))),
-        alone=lambda at: told[at],
+        pattern=pattern,
+        alone=alone,
         raw=lambda at: rows[at],
         header=list(NAMES),
         cells=lambda at: names[at],
+        values={name: [numbers.get(name, _NAN) for _, numbers in parted] for name in columns},
         prefix=lambda at: f"/rows/{at}",
     )
+
+
+def _parted(row: Any) -> tuple[Hashable, dict[str, float]]:
+    """A row without its point's names and the plain numbers of its readings, as a key, and those numbers by column."""
+    numbers: dict[str, float] = {}
+    if not isinstance(row, dict):
+        return json_bytes(row), numbers
+    rest, point = dict(row), row.get("point")
+    named = isinstance(point, dict) and "label" in point and all(_plain_name(*pair) for pair in point.items())
+    if named:
+        rest["point"] = None
+    if isinstance(readings := row.get("readings"), dict):
+        rest["readings"] = kinds = {name: _kept(name, told, numbers) for name, told in readings.items()}
+        times = readings.get("residual_operating_time_ms")
+        if isinstance(times, dict):
+            kinds["residual_operating_time_ms"] = {
+                multiple: _kept(_TIMES.get(multiple, ""), told, numbers) for multiple, told in times.items()
+            }
+    # What was taken out belongs to the key: a row that really says null or true there is another pattern.
+    return (json_bytes(rest), named, *numbers), numbers
+
+
+def _plain_name(name: str, value: Any) -> bool:
+    """Whether a name of a point is one that no bound refuses."""
+    return (
+        name in ("id", "label", "location") and isinstance(value, str) and 0 < len(value) <= 200 and "\x00" not in value
+    )
+
+
+def _kept(column: str, told: Any, numbers: dict[str, float]) -> Any:
+    """What a reading says beside its plain number, which is noted; anything else as it is."""
+    value = told.get("value") if isinstance(told, dict) else told
+    if column not in READING_OF or not isinstance(value, int | float) or isinstance(value, bool):
+        return told
+    if not 0 <= value < _PLAIN_BELOW:
+        return told
+    numbers[column] = float(value)
+    return {**told, "value": None} if isinstance(told, dict) else None
 
 
 def _named_in(row: Any) -> Named:
@@ -106,7 +156,10 @@ def file_rows(table: Table, defaults: Mapping[str, str]) -> Rows:
         return read_cells({**absent, **cells}, table.numbers[at], form)
 
     kinds, values = _kinds(len(table.cells), columns, form)
-    told, pattern = _patterns(len(table.cells), kinds, table.faults, alone)
+    keys: list[Hashable] = list(zip(*kinds, strict=True))
+    for at in table.faults:
+        keys[at] = at
+    told, pattern = _patterns(keys, alone)
     blank = ("",) * len(table.cells)
     names = [Named._make(name) for name in zip(*(map(str.strip, columns.get(n, blank)) for n in NAMES), strict=True)]
     width = len(table.header)
@@ -135,7 +188,7 @@ class _Numbers(dict[str, int | str]):
         plain = cell.value is not None and cell.value < _PLAIN_BELOW
         bounded = cell.bound != "exact" and self._column not in READING_OF
         kind = text if not plain or bounded else ("exact", "above", "below").index(cell.bound)
-        self.numbers[text] = cell.value if plain and cell.value is not None else float("nan")
+        self.numbers[text] = cell.value if plain and cell.value is not None else _NAN
         self[text] = kind
         return kind
 
@@ -160,19 +213,15 @@ def _kinds(
     return [kinds[0], *parting], values
 
 
-def _patterns(
-    count: int, kinds: list[Sequence[int | str]], faults: Mapping[int, str], alone: Callable[[int], Told]
-) -> tuple[list[Told], list[int]]:
-    """Give rows of the same kinds one pattern, read from the first of them."""
+def _patterns(keys: Sequence[Hashable], alone: Callable[[int], Told]) -> tuple[list[Told], list[int]]:
+    """Give rows of the same key one pattern, read from the first of them."""
     told: list[Told] = []
-    known: dict[Any, int] = {}
+    known: dict[Hashable, int] = {}
     pattern: list[int] = []
-    for at, key in zip(range(count), zip(*kinds, strict=True), strict=True):
-        which = None if at in faults else known.get(key)
+    for at, key in enumerate(keys):
+        which = known.get(key)
         if which is None:
-            which = len(told)
+            which = known[key] = len(told)
             told.append(alone(at))
-            if at not in faults:
-                known[key] = which
         pattern.append(which)
     return told, pattern

@@ -188,6 +188,9 @@ def _checked(told: Told, body: Any, where: Any) -> Told:
     return told
 
 
+TWICE = Fault("", "named-twice", "a field stands twice in one object: which of the two is meant?")
+
+
 class NamedTwice(dict[str, Any]):
     """An object in which a name stood twice: one of the two readings would be dropped without a word."""
 
@@ -201,8 +204,6 @@ def named_twice(value: Any) -> bool:
 def read_body(row: Any, defaults: Body) -> Told:
     """Read a row that is an assessment request, in which a reading may also be the text that an instrument printed."""
     told = Told()
-    if named_twice(row):
-        return Told(faults=[Fault("", "named-twice", "a field stands twice in one object: which of the two is meant?")])
     body = _printed(_merged(defaults, row), told) if isinstance(row, dict) else row
     return _checked(told, body, faults.pointer)
 

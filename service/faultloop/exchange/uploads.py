@@ -73,7 +73,7 @@ def _read_file(upload: Upload) -> Read:
 
 
 def _read_body(upload: Upload) -> Read:
-    body = parsed(upload.content)
+    body, marked = parsed(upload.content)
     if not isinstance(body, dict) or set(body) - {"defaults", "rows"} or not isinstance(body.get("rows"), list):
         raise FileRefused("a batch is an object with rows (a list of assessment requests) and perhaps defaults")
     defaults, rows = body.get("defaults", {}), body["rows"]
@@ -84,15 +84,15 @@ def _read_body(upload: Upload) -> Read:
     if len(rows) > MOST_ROWS:
         raise FileRefused(f"the batch has more than {MOST_ROWS} rows: send it in parts")
     reading: Body = {"format": "json", "blank_lines": 0, "ignored_columns": [], "defaults": defaults}
-    return Read(body_rows(rows, defaults), reading)
+    return Read(body_rows(rows, defaults, marked=marked), reading)
 
 
 class NotJson(ValueError):
     """The body is not JSON."""
 
 
-def parsed(content: bytes) -> Any:
-    """The JSON value of a body; an object in which a name stands twice comes marked as such.
+def parsed(content: bytes) -> tuple[Any, bool]:
+    """The JSON value of a body; whether objects in which a name stands twice had to be looked for and are marked.
 
     Both texts hold the same strings, so they hold as many colons unless a name was dropped (or a colon was
     escaped); only then the body is walked.
@@ -102,7 +102,9 @@ def parsed(content: bytes) -> Any:
         known = orjson.dumps(value)
     except (orjson.JSONDecodeError, orjson.JSONEncodeError, RecursionError):
         raise NotJson from None
-    return value if content.count(b":") == known.count(b":") else json.loads(content, object_pairs_hook=_marked)
+    if content.count(b":") == known.count(b":"):
+        return value, False
+    return json.loads(content, object_pairs_hook=_marked), True
 
 
 def _marked(pairs: list[tuple[str, Any]]) -> Body:
