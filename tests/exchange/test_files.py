@@ -2,13 +2,17 @@
 
 import csv
 import io
+import time
 from pathlib import Path
 
 import pytest
 
+from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer_csv
+from faultloop.exchange.batches import BatchQuery
 from faultloop.exchange.columns import COLUMNS, PATHS, FileRefused
 from faultloop.exchange.listing import most_urgent, reconciled, table
+from faultloop.exchange.uploads import Upload, read_upload
 from tests.exchange.files import GOOD, HEAD, judge, statuses
 
 WORKSHOP = Path(__file__).parents[2] / "fixtures" / "workshop" / "workshop.csv"
@@ -61,6 +65,20 @@ def test_a_misspelt_column_is_refused_with_the_nearest_name() -> None:
 def test_what_is_no_table_is_refused(text: str, said: str) -> None:
     with pytest.raises(FileRefused, match=said):
         judge(text)
+
+
+def test_a_heading_without_end_is_refused_at_once() -> None:
+    for heading in (" " * 1_000_000 + "x", "a " * 60_000, "a" * 60_000 + " [", "x" * 500_000):
+        began = time.process_time()
+        with pytest.raises(FileRefused):
+            judge(f"label,{heading}\nx,y\n")
+        assert time.process_time() - began < 2
+
+
+def test_a_row_of_many_faults_is_refused_in_few_words() -> None:
+    rows = [{"point": {"label": "x"}, **{f"field_{at}": 1 for at in range(5000)}}] * 20
+    read = read_upload(Upload("json", json_bytes({"rows": rows}), BatchQuery())).rows
+    assert [len(read.of(at).faults) for at in range(20)] == [10] * 20
 
 
 def test_what_is_not_utf8_names_the_line() -> None:

@@ -30,14 +30,17 @@ def _known_fields() -> list[str]:
     return sorted({name for model in closed for name in model.model_fields})
 
 
+@lru_cache(maxsize=1024)
+def _nearest(name: str) -> str:
+    near = get_close_matches(name, _known_fields(), n=1, cutoff=0.75)
+    return f"did you mean {near[0]}?" if near else "check the spelling and the unit in its name"
+
+
 def told(error: Mapping[str, Any]) -> str:
     """What is wrong with a field, and what is expected there."""
     kind, context = error["type"], error.get("ctx", {})
     if kind == "extra_forbidden":
-        near = get_close_matches(str(error["loc"][-1]), _known_fields(), n=1, cutoff=0.75)
-        return "no such field here" + (
-            f"; did you mean {near[0]}?" if near else "; check the spelling and the unit in its name"
-        )
+        return f"no such field here; {_nearest(str(error['loc'][-1]))}"
     if kind == "union_tag_invalid":
         return f"expected one of {context.get('expected_tags', '')}"
     if kind == "value_error":

@@ -17,6 +17,7 @@ NO_RESIDUAL_DEVICE = {"-", "none", "n/a"}
 
 
 _LONGEST_RAW = 200
+_MOST_FAULTS = 10
 
 
 @dataclass(frozen=True, slots=True)
@@ -183,7 +184,7 @@ def _checked(told: Told, body: Any, where: Any) -> Told:
     try:
         told.request = AssessmentRequest.model_validate(body)
     except ValidationError as error:
-        for fault in error.errors(include_url=False):
+        for fault in error.errors(include_url=False)[:_MOST_FAULTS]:
             told.faults.append(Fault(where(fault["loc"], body), fault["type"], faults.told(fault)))
     return told
 

@@ -14,6 +14,7 @@ Record = list[str] | str
 MOST_ROWS = 10_000
 _SEPARATORS = (",", ";", "\t")
 _WITH_UNIT = re.compile(r"(.*?)\s*(?:\[([^\]]*)\]|\(([^)]*)\))")
+_LONGEST_HEADING = 200
 _TOLD_SEPARATOR = re.compile(r"sep=([,;\t])\r?\n")
 _CASELESS = {name.casefold(): name for name in COLUMNS}
 
@@ -106,6 +107,8 @@ def _named(told: str) -> tuple[str | None, str | None]:
     """The column that a heading names, and the unit that it says besides."""
     name = told.strip().strip('"').strip()
     unit = None
+    if len(name) > _LONGEST_HEADING:
+        return None, None
     if match := _WITH_UNIT.fullmatch(name):
         name, unit = match[1], (match[2] or match[3] or "").strip()
     return _CASELESS.get(name.casefold()), unit or None
