@@ -21,9 +21,35 @@ class Headings(Sheet):
     provenance: Text
 
 
-class Sentences(Sheet):
-    """Sentences of the view."""
+class Columns(Sheet):
+    """Headings of the columns of the page."""
 
+    row: Text
+    point: Text
+    verdict: Text
+    found: Text
+    who: Text
+    question: Text
+    releases: Text
+    answers: Text
+    condition: Text
+    rows: Text
+    owner: Text
+    what: Text
+    why: Text
+    judged: Text
+
+
+class Sentences(Sheet):
+    """Sentences of the view and of its page."""
+
+    batch: Text
+    counts: Text
+    defaults: Text
+    touch: Text
+    raw: Text
+    of: Text
+    to: Text
     stop_use_none: Text
     fix_none: Text
     questions_none: Text
@@ -67,6 +93,7 @@ class WorkshopWords(Sheet):
 
     language: Text
     headings: Headings
+    columns: Columns
     sentences: Sentences
     sample: SampleWords
     who: Who

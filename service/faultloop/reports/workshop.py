@@ -16,7 +16,7 @@ def _template() -> Template:
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    environment.filters["ranges"] = ranges
+    environment.filters |= {"ranges": ranges, "pairs": pairs, "some": some}
     return environment.get_template("workshop.html")
 
 
@@ -25,7 +25,7 @@ def workshop_page(view: Mapping[str, Any], words: Mapping[str, Any]) -> str:
     return _template().render(view=view, words=words)
 
 
-def ranges(numbers: list[int]) -> str:
+def ranges(numbers: list[int], to: str = "{first} to {last}") -> str:
     """Numbers in order, runs of three and more drawn together: 2, 4 to 9."""
     runs: list[list[int]] = []
     for number in sorted(numbers):
@@ -33,5 +33,15 @@ def ranges(numbers: list[int]) -> str:
             runs[-1].append(number)
         else:
             runs.append([number])
-    told = [f"{run[0]} to {run[-1]}" if len(run) > 2 else ", ".join(map(str, run)) for run in runs]
+    told = [to.format(first=run[0], last=run[-1]) if len(run) > 2 else ", ".join(map(str, run)) for run in runs]
     return ", ".join(told)
+
+
+def pairs(told: Mapping[str, Any]) -> str:
+    """Names and values in one line."""
+    return ", ".join(f"{name} = {value}" for name, value in told.items())
+
+
+def some(texts: list[str], most: int = 12) -> str:
+    """The first of some texts as they came, in quotation marks; an ellipsis where there are more."""
+    return ", ".join(f"“{text}”" for text in texts[:most]) + (" …" if len(texts) > most else "")
