@@ -4,7 +4,10 @@ import json
 from dataclasses import dataclass
 from typing import Any
 
+import orjson
+
 from faultloop import __version__
+from faultloop.assessment.texts import LANGUAGES
 from faultloop.digests import json_bytes, sha256
 from faultloop.exchange.batch_answers import stored_row
 from faultloop.exchange.judging import Judged, judged, judged_alone, pinned
@@ -27,12 +30,21 @@ class Replay:
     differences: list[dict[str, Any]]
 
 
+def language_of(answer: bytes) -> str:
+    """Language that a stored answer was given in."""
+    language: str = orjson.loads(answer)["provenance"].get("language", LANGUAGES[0])
+    return language
+
+
 def replay(request: bytes, answer: bytes, rules: str, input_digest: str) -> Replay:
-    """Compute a stored request again, under the very edition that was stored with it."""
+    """Compute a stored request again, under the very edition and in the language that were stored with it."""
     if resolve(rules) is None:
         return Replay(False, None, [{"pointer": "/provenance/rules", "stored": rules}])
+    language = language_of(answer)
+    if language not in LANGUAGES:
+        return Replay(False, None, [{"pointer": "/provenance/language", "stored": language}])
     body = {**json.loads(request), "rules": rules}
-    again = assess_requests([AssessmentRequest.model_validate(body)], [input_digest])[0]
+    again = assess_requests([AssessmentRequest.model_validate(body)], [input_digest], [language])[0]
     if json_bytes(again) == answer:
         return Replay(True, again, [])
     return Replay(

@@ -43,6 +43,43 @@ def test_preview_computes_and_stores_nothing(url: str, engine: Engine) -> None:
     assert page(engine, size=5) == []
 
 
+def own_curve(*points: tuple[float, float]) -> dict[str, Any]:
+    """The example behind a curve of the caller's own."""
+    greatest = [{"current_a": current, "time_s": time} for current, time in points]
+    device = {"kind": "curve", "rated_current_a": 32, "source": "data sheet 7", "points": {"greatest": greatest}}
+    return {**EXAMPLE_REQUEST, "overcurrent_device": device, "upstream_overcurrent_devices": [device]}
+
+
+def test_a_stored_curve_is_judged_again_from_its_own_points(url: str) -> None:
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        where, body = address(), own_curve((80, 5), (160, 0.4))
+        first = await client.put(where, json=body)
+        assert first.status_code == 201
+        assert first.json()["provenance"] == assess(body)["provenance"]
+        told = (await client.get(f"{where}/replay")).json()
+        assert told["identical"], told["differences"]
+
+    served(url, work)
+
+
+@pytest.mark.parametrize(
+    ("points", "place", "words"),
+    [
+        (((160, 0.4), (80, 0.1)), "/points/greatest", "currents must rise"),
+        (((80, 0.4), (160, 0.4)), "/points/greatest", "times must fall"),
+        (((5, 5), (10, 0.4)), "", "not in multiples of the rated current"),
+    ],
+)
+def test_a_curve_that_is_none_is_refused_where_it_stands(url: str, points: Any, place: str, words: str) -> None:
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        body = problem(await client.post("/v1/assessments/preview", json=own_curve(*points)), 422)
+        pointers = {error["pointer"] for error in body["errors"]}
+        assert pointers == {f"/overcurrent_device{place}", f"/upstream_overcurrent_devices/0{place}"}
+        assert all(words in error["detail"] for error in body["errors"])
+
+    served(url, work)
+
+
 def test_put_stores_once_and_answers_the_stored_bytes(url: str) -> None:
     async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
         where = address()
@@ -181,11 +218,11 @@ def test_rows_of_one_turn_run_together_and_a_bad_one_alone(url: str, monkeypatch
     calls: list[int] = []
     judge = gather.assess_requests
 
-    def watched(requests: Any, digests: Any = None) -> Any:
+    def watched(requests: Any, digests: Any = None, languages: Any = None) -> Any:
         calls.append(len(requests))
         if any(request.point.label == "breaks" for request in requests):
             raise ArithmeticError("a planted fault")
-        return judge(requests, digests)
+        return judge(requests, digests, languages)
 
     monkeypatch.setattr(gather, "assess_requests", watched)
 

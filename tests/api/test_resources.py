@@ -38,7 +38,10 @@ def test_limits_as_printed(run: Callable[[Work], None]) -> None:
     # BS 7671 Tables 41.2, 41.3 and 41.5, two decimals and whole ohms.
     printed = {
         ("B32", "bs-7671", 0.4): "1.37", ("B32", "bs-7671:2008", 0.4): "1.44", ("C32", "bs-7671:2008", 5): "0.72",
-        ("BS 88-2 gG 16", "bs-7671:2011", 0.4): "2.56", ("30 mA", "bs-7671", 0.2): "1666.67",
+        ("BS 88-2 gG 16", "bs-7671:2011", 0.4): "2.56", ("BS 88-3 16", "bs-7671:2011", 0.4): "2.42",
+        ("BS 3036 30", "bs-7671:2011", 5): "2.64", ("BS 1361 15", "bs-7671:2008", 0.4): "3.28",
+        ("BS 1362 13", "bs-7671:2008", 0.4): "2.42", ("BS 88-3 100", "bs-7671", 5): "0.38",
+        ("30 mA", "bs-7671", 0.2): "1666.67",
     }  # fmt: skip
 
     async def work(client: httpx.AsyncClient) -> None:
@@ -52,7 +55,13 @@ def test_limits_as_printed(run: Callable[[Work], None]) -> None:
         assert fifths.json()["greatest_loop_impedance_ohm"] == pytest.approx(0.8 * 0.95 * 230 / 320, rel=1e-5)
         none = (await client.get("/v1/limits", params={"device": "B16", "time_s": 0.05})).json()
         assert "greatest_loop_impedance_ohm" not in none
-        problem(await client.get("/v1/limits", params={"device": "B1000"}), 404)
+        # Makers' types: 230 V over 14 In and 3 In.
+        for device, limit in (("K20", 230 / 280), ("Z10", 230 / 30)):
+            told = (await client.get("/v1/limits", params={"device": device})).json()
+            assert told["greatest_loop_impedance_ohm"] == pytest.approx(limit, rel=1e-5)
+        motor = problem(await client.get("/v1/limits", params={"device": "aM 50"}), 422)
+        assert "aM fuse-links are not held" in motor["detail"]
+        problem(await client.get("/v1/limits", params={"device": "B1000"}), 422)
         problem(await client.get("/v1/limits", params={"device": "B16", "time_s": 0}), 422)
 
     run(work)
@@ -66,6 +75,10 @@ def test_devices_and_their_curves(run: Callable[[Work], None]) -> None:
             assert curve.status_code == 200
             currents = [point["current_a"] for point in curve.json()["slow"]]
             assert currents == sorted(currents)
+        kinds = {(item["kind"], item["standard"].split(",")[0].split(" (")[0]) for item in items}
+        assert {("miniature-circuit-breaker", "IEC 60898-1"), ("miniature-circuit-breaker", "IEC 60947-2")} <= kinds
+        systems = ("IEC 60269-1:2006", "BS 88-2", "BS 88-3", "BS 3036", "BS 1361", "BS 1362")
+        assert {("fuse", system) for system in systems} <= kinds
         fuse = (await client.get("/v1/devices/gG 32/curve")).json()
         assert {"current_a": 275.0, "time_s": 0.4} in fuse["slow"]
         problem(await client.get("/v1/devices/E16/curve"), 404)

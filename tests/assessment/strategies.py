@@ -31,7 +31,11 @@ instruments = st.fixed_dictionaries(
         "percent": between(0, 30),
         "digits": st.sampled_from([0.0, 3.0, 5.0]),
         "resolution": st.sampled_from([0.001, 0.01]),
-    }
+    },
+    optional={
+        "calibration_due": st.sampled_from(["2026-01-31", "2030-12-31"]),
+        "zero_check": between(-0.1, 0.1),
+    },
 )
 
 
@@ -48,21 +52,56 @@ def measured(
             "method": st.sampled_from(methods),
             "instrument": instruments,
             "conductor_temperature_c": between(-40, 90),
+            "taken_at": st.sampled_from(["2026-01-30", "2026-06-01T08:00:00Z"]),
         },
     )
     return st.one_of(values, told)
 
 
 @st.composite
+def curves(draw: st.DrawFn) -> Body:
+    """A caller's own curve in order, with or without least times."""
+    rated = draw(st.sampled_from([6.0, 16.0, 32.0, 63.0]))
+    multiples = sorted(draw(st.sets(st.sampled_from([1.3, 1.6, 2.5, 4.0, 5.0, 8.0, 12.0, 20.0]), min_size=1)))
+    times = sorted(draw(st.sets(st.sampled_from([3600.0, 60.0, 5.0, 1.0, 0.4, 0.2, 0.1, 0.01]), min_size=1)))[::-1]
+    greatest = [{"current_a": m * rated, "time_s": t} for m, t in zip(multiples, times, strict=False)]
+    points: Body = {"greatest": greatest}
+    if draw(st.booleans()):
+        first = greatest[0]
+        points["least"] = [{"current_a": first["current_a"] * 0.9, "time_s": first["time_s"] * 0.5}]
+    return {"kind": "curve", "rated_current_a": rated, "source": "a maker's sheet", "points": points}
+
+
+@st.composite
+def moulded_cases(draw: st.DrawFn) -> Body:
+    """A moulded-case breaker with settings that fit together."""
+    rated = draw(st.sampled_from([25.0, 63.0, 160.0]))
+    overload = draw(st.sampled_from([0.5, 0.8, 1.0])) * rated
+    settings = {"overload_current_a": overload}
+    if draw(st.booleans()):
+        settings |= {"short_time_current_a": 4 * overload, "short_time_greatest_s": draw(st.sampled_from([0.1, 0.35]))}
+    if draw(st.booleans()):
+        settings["instantaneous_current_a"] = draw(st.sampled_from([5.0, 10.0])) * overload
+    return {"kind": "moulded-case-circuit-breaker", "rated_current_a": rated, "settings": settings}
+
+
+@st.composite
 def devices(draw: st.DrawFn) -> Body:
-    """Any overcurrent device held."""
+    """Any overcurrent device held, or now and then one that the request describes by points or settings."""
+    if (way := draw(st.integers(0, 7))) < 2:
+        return draw(curves() if way else moulded_cases())
     device = draw(st.sampled_from(listed_devices()))
     body: Body = {"rated_current_a": device.rated_current_a}
     if isinstance(device, Breaker):
         body |= {"kind": "miniature-circuit-breaker", "characteristic": device.characteristic}
+        body |= draw(st.fixed_dictionaries({}, optional={"energy_limiting_class": st.sampled_from([1, 3])}))
     else:
-        body |= {"kind": "fuse", "fuse_system": device.fuse_system, "utilisation_category": "gG"}
-    return body | draw(st.fixed_dictionaries({}, optional={"breaking_capacity_ka": between(0, 80)}))
+        body |= {"kind": "fuse", "fuse_system": device.fuse_system, "utilisation_category": device.utilisation_category}
+    return body | draw(
+        st.fixed_dictionaries(
+            {}, optional={"breaking_capacity_ka": between(0, 80), "let_through_energy_a2s": between(100, 1e6)}
+        )
+    )
 
 
 residual_devices = st.fixed_dictionaries(
@@ -102,6 +141,11 @@ supplies = st.fixed_dictionaries(
         "nominal_voltage_to_earth_v": st.sampled_from([230.0, 230.0, 230.0, 120.0, 277.0, 400.0, 240.0, 50.0, 1e-9]),
         "current": st.sampled_from(["ac", "ac", "ac", "dc"]),
         "phases": st.sampled_from([1, 3]),
+        "nominal_voltage_between_lines_v": st.sampled_from([400.0, 400.0, 240.0, 690.0, 230.0]),
+        "declared_prospective_current_ka": between(0.1, 25),
+        "means_of_earthing": st.fixed_dictionaries(
+            {"evidence": st.just("seen")}, optional={"state": st.sampled_from(["proven", "doubtful", "lost"])}
+        ),
     },
 )
 milliseconds = st.one_of(between(5, 60), between(1, 600), between(0, 1))
@@ -119,10 +163,22 @@ all_readings = st.fixed_dictionaries(
     optional={
         **{name: measured(ohms) for name in (LOOP, EXTERNAL, LINE_NEUTRAL, DEAD, PROTECTIVE, ELECTRODE)},
         TIMES: times,
+        "insulation_resistance_megohm": measured(between(0, 300_000)),
+        "residual_operating_current_ma": measured(between(1, 400)),
+        "voltage_v": measured(between(0, 300)),
+        "voltage_neutral_to_earth_v": measured(between(0, 240)),
+        "standing_leakage_ma": between(0, 30),
+        "polarity": st.sampled_from(["correct", "reversed", "not-tested"]),
     },
 )
 boards = st.fixed_dictionaries(
-    {}, optional={"line_neutral_loop_impedance_ohm": measured(ohms), "prospective_current_ka": between(0, 30)}
+    {},
+    optional={
+        "line_neutral_loop_impedance_ohm": measured(ohms),
+        "earth_fault_loop_impedance_ohm": measured(ohms),
+        "prospective_current_ka": measured(between(0, 30)),
+        "assembly_conditional_rating_ka": between(1, 25),
+    },
 )
 requests = st.fixed_dictionaries(
     {"point": st.fixed_dictionaries({"label": st.text("abc äΩ", min_size=1, max_size=8)})},
@@ -131,6 +187,7 @@ requests = st.fixed_dictionaries(
         "circuit": circuits,
         "board": boards,
         "overcurrent_device": devices(),
+        "upstream_overcurrent_devices": st.lists(devices(), max_size=2),
         "residual_current_device": residual_devices,
         "upstream_residual_current_devices": st.lists(residual_devices, max_size=2),
         "readings": all_readings,
@@ -165,6 +222,8 @@ def judgeable(draw: st.DrawFn, earthing: tuple[str, ...] = ("TN-S", "TN-C-S", "T
         "rules": draw(st.sampled_from(RULES)),
         "policy": draw(policies),
     }
+    if draw(st.integers(0, 3)) == 0:
+        request["upstream_overcurrent_devices"] = draw(st.lists(devices(), min_size=1, max_size=2))
     if draw(st.integers(0, 3)):
         request["residual_current_device"] = draw(residual_devices)
         read[TIMES] = {"1": draw(measured(between(5, 400), methods, exact))}

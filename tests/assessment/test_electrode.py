@@ -77,4 +77,5 @@ def test_all_metalwork_of_a_tt_installation_rises_together_and_that_is_said() ->
 def test_touch_voltage_on_tt_is_the_electrodes_share_of_the_loop() -> None:
     # R_A 240 of a loop of 251: only 11 ohm beyond the electrode is heated: 253.2.
     answer = on_tt(zs=live(251), electrode=240)
-    assert answer["quantities"]["touch_voltage_v"]["greatest"] == pytest.approx(230 * 240 / 253.2, rel=1e-5)
+    assert finding(answer, "touch-voltage")["value"] == pytest.approx(230 * 240 / 253.2, rel=1e-5)
+    assert 1.1 * 230 * 240 / 253.2 < answer["quantities"]["touch_voltage_v"]["greatest"] < 1.1 * 230

@@ -6,12 +6,18 @@ import math
 import re
 from typing import Any
 
+import numpy as np
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from faultloop import assess, assess_many
 from faultloop.assessment.checks import CHECKS
+from faultloop.assessment.points import from_rows
+from faultloop.assessment.standing import Verdict
+from faultloop.assessment.verdicts import decide
 from faultloop.exchange.answers import Assessment
+from faultloop.exchange.mapping import mapped
+from faultloop.exchange.requests import AssessmentRequest
 from tests.assessment import strategies as s
 from tests.assessment.bodies import (
     Body,
@@ -68,6 +74,12 @@ def worst(answer: Body, *, without: tuple[str, ...] = ()) -> int:
     return min((rank(f["verdict"]) for f in counted), default=rank("pass"))
 
 
+def rank_of(answer: Body, check: str) -> int:
+    """Rank of one finding; what was not examined or does not apply counts as open."""
+    found = [f["verdict"] for f in answer["findings"] if f["check"] == check]
+    return rank(found[0]) if found else rank("undetermined")
+
+
 @many
 @given(s.requests)
 def test_every_valid_request_gets_a_valid_answer_in_finite_numbers(body: Body) -> None:
@@ -110,11 +122,11 @@ def test_whatever_is_open_says_what_would_settle_it(body: Body) -> None:
 def test_every_check_is_a_finding_or_listed_with_its_reason(body: Body) -> None:
     answer = assess(body)
     findings = [f["check"] for f in answer["findings"]]
-    unexamined = [e["subject"] for e in answer["not_examined"] if e["reason"] != "out-of-scope"]
+    unexamined = [e["subject"] for e in answer["not_examined"] if e["reason"] not in ("out-of-scope", "not-used")]
     listed = findings + unexamined + [e["check"] for e in answer["not_applicable"]]
     assert len(listed) == len(set(listed)) == len(CHECKS)
     assert all(e["reason"] and e["text"] for e in answer["not_examined"])
-    assert all(e.get("settled_by") for e in answer["not_examined"] if e["reason"] != "out-of-scope")
+    assert all(e.get("settled_by") for e in answer["not_examined"] if e["reason"] not in ("out-of-scope", "not-used"))
     assert "overload" in {e["subject"] for e in answer["not_examined"]} or (
         "current_carrying_capacity_a" in body.get("circuit", {})
     )
@@ -211,6 +223,54 @@ def test_a_less_sensitive_device_never_improves_the_verdict(body: Body, rated: f
     assert rank(assess(after)["verdict"]) <= rank(assess(body)["verdict"])
 
 
+UPSTREAM = "upstream_overcurrent_devices"
+
+
+@many
+@given(s.judgeable(), s.devices())
+def test_a_device_upstream_never_worsens_and_its_removal_never_improves(body: Body, device: Body) -> None:
+    more = {**body, UPSTREAM: [*body.get(UPSTREAM, []), device]}
+    before, after = assess(body), assess(more)
+    assert rank(after["verdict"]) >= rank(before["verdict"])
+    for check in ("overcurrent-disconnection", LINE_NEUTRAL_CHECK, "breaking-capacity"):
+        assert rank_of(after, check) >= rank_of(before, check)
+    # Breaking capacity is not backed up by a device that merely stands there.
+    assert rank_of(after, "breaking-capacity") == rank_of(before, "breaking-capacity")
+
+
+@many
+@given(s.judgeable(), s.devices(), s.devices())
+def test_the_order_of_the_devices_upstream_is_no_matter(body: Body, first: Body, second: Body) -> None:
+    one, other = (assess({**body, UPSTREAM: chain}) for chain in ([first, second], [second, first]))
+    assert one["verdict"] == other["verdict"]
+    assert one["urgency"] == other["urgency"]
+    assert one["quantities"] == other["quantities"]
+
+
+@many
+@given(s.judgeable(), s.curves(), st.integers(0, 7))
+def test_a_curve_with_fewer_points_never_improves_the_verdict(body: Body, curve: Body, left_out: int) -> None:
+    points = {"greatest": curve["points"]["greatest"]}
+    fewer = {"greatest": [point for at, point in enumerate(points["greatest"]) if at != left_out]}
+    if not fewer["greatest"]:
+        return
+    after = assess({**body, "overcurrent_device": {**curve, "points": fewer}})
+    before = assess({**body, "overcurrent_device": {**curve, "points": points}})
+    # Without the point that shows a fail the time is open again, but never better than that.
+    assert rank(after["verdict"]) <= max(rank(before["verdict"]), rank("undetermined"))
+
+
+@many
+@given(s.judgeable(), s.curves(), st.floats(1.0, 10.0))
+def test_a_slower_curve_never_improves_the_verdict(body: Body, curve: Body, factor: float) -> None:
+    greatest = curve["points"]["greatest"]
+    slower = [{**point, "time_s": min(point["time_s"] * factor, 1e6)} for point in greatest]
+    before, after = (
+        assess({**body, "overcurrent_device": {**curve, "points": {"greatest": edge}}}) for edge in (greatest, slower)
+    )
+    assert rank(after["verdict"]) <= max(rank(before["verdict"]), rank("undetermined"))
+
+
 @many
 @given(s.judgeable(), st.floats(1.0, 5.0))
 def test_a_wider_uncertainty_never_turns_anything_into_a_pass(body: Body, factor: float) -> None:
@@ -220,7 +280,9 @@ def test_a_wider_uncertainty_never_turns_anything_into_a_pass(body: Body, factor
             continue
         told = bare(stated)
         instrument = told.get("instrument", {"percent": 5.0, "digits": 3.0, "resolution": 0.01})
-        more = {key: min(value * factor, 100.0) for key, value in instrument.items() if key != "resolution"}
+        # Leads off zero are held against the digits, so more digits excuse them: another property.
+        instrument = {key: value for key, value in instrument.items() if key != "zero_check"}
+        more = {key: min(instrument[key] * factor, 100.0) for key in ("percent", "digits")}
         before["readings"][name] = {**told, "instrument": instrument}
         wider["readings"][name] = {**told, "instrument": {**instrument, **more}}
     if assess(before)["verdict"] != "pass":
@@ -258,4 +320,15 @@ def test_dropping_the_operating_time_never_upgrades(body: Body) -> None:
     if any(f["check"] == "residual-device-test" and f["verdict"] == "fail" for f in first["findings"]):
         # A failed test of a device that nothing relies on is known only from the test itself.
         return
+    if any(f["reason"] == "calibration-lapsed" for f in first["findings"]):
+        # So is the lapsed instrument that took it.
+        return
     assert rank(assess(after)["verdict"]) <= max(rank(first["verdict"]), rank("undetermined"))
+
+
+@many
+@given(s.requests)
+def test_what_is_unknown_is_settled_before_it_is_compared(body: Body) -> None:
+    outcome = decide(from_rows([mapped(AssessmentRequest.model_validate(body)).row]))
+    found = outcome.findings
+    assert not np.any(found.compared & (found.verdict == Verdict.UNDETERMINED))

@@ -2,7 +2,7 @@
 
 import pytest
 
-from tests.assessment.bodies import RESIDUAL_30, SELECTIVE_100, Body, copper, judged, live, no_trip, readings
+from tests.assessment.bodies import RESIDUAL_30, SELECTIVE_100, Body, copper, finding, judged, live, no_trip, readings
 
 
 def test_nothing_is_ordered_for_a_pass_and_a_note_for_conditions() -> None:
@@ -14,7 +14,8 @@ def test_nothing_is_ordered_for_a_pass_and_a_note_for_conditions() -> None:
 def test_no_earth_and_no_barrier_is_stop_use() -> None:
     answer = judged(readings(zs=live(2000, bound="above")))
     assert answer["urgency"] == "stop-use"
-    assert answer["quantities"]["touch_voltage_v"]["greatest"] == 230
+    # At most c_max = 1.1 times the nominal voltage.
+    assert answer["quantities"]["touch_voltage_v"]["greatest"] == pytest.approx(253)
 
 
 @pytest.mark.parametrize("dead", [0.2, 0.5])
@@ -22,7 +23,7 @@ def test_an_old_dead_test_does_not_quieten_a_lost_earth(dead: float) -> None:
     sizes = {"line_conductor": copper(2.5), "protective_conductor": copper(1.5)}
     answer = judged(readings(zs=live(2000, bound="above"), ze=0.19, dead=dead), device="C16", **sizes)
     assert answer["urgency"] == "stop-use"
-    assert answer["quantities"]["touch_voltage_v"]["greatest"] == pytest.approx(230, rel=0.01)
+    assert answer["quantities"]["touch_voltage_v"]["greatest"] == pytest.approx(253, rel=0.01)
 
 
 def test_a_defect_behind_one_barrier_is_urgent() -> None:
@@ -69,9 +70,14 @@ def test_a_sustained_current_above_ten_milliampere_escalates_one_step(protective
 def test_touch_voltage_is_the_share_of_the_protective_conductor() -> None:
     # 230 x 0.275 x F / (0.18 + F x 0.56), F = 1.2/0.992.
     read = readings(zs=live(0.74, conductor_temperature_c=18), ze=0.18, protective=0.275)
-    touch = judged(read, device="B16")["quantities"]["touch_voltage_v"]
+    answer = judged(read, device="B16")
     factor = 1.2 / 0.992
-    assert touch["greatest"] == pytest.approx(230 * 0.275 * factor / (0.18 + factor * 0.56), rel=1e-5)
+    path, loop = 0.275 * factor, 0.18 + factor * 0.56
+    assert finding(answer, "touch-voltage")["value"] == pytest.approx(230 * path / loop, rel=1e-5)
+    # At most: c_max, and the whole uncertainty of the hot loop in the protective path.
+    u = ((factor * (0.05 * 0.74 + 0.03)) ** 2 + ((factor - 1) * (0.05 * 0.18 + 0.03)) ** 2) ** 0.5
+    greatest = answer["quantities"]["touch_voltage_v"]["greatest"]
+    assert greatest == pytest.approx(1.1 * 230 * (path + u) / (loop + u), rel=1e-4)
 
 
 @pytest.mark.parametrize(

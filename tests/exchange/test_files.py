@@ -11,7 +11,9 @@ from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer_csv
 from faultloop.exchange.batches import BatchQuery
 from faultloop.exchange.columns import COLUMNS, PATHS, FileRefused
+from faultloop.exchange.judging import requests_of
 from faultloop.exchange.listing import most_urgent, reconciled, table
+from faultloop.exchange.render import assess_requests
 from faultloop.exchange.uploads import Upload, read_upload
 from tests.exchange.files import GOOD, HEAD, judge, statuses
 
@@ -37,6 +39,20 @@ def test_cells_that_are_no_plain_number_never_pass(cell: str, status: str) -> No
     batch = judge(HEAD + GOOD.replace("0.62", f'"{cell}"'))
     assert statuses(batch) == [status]
     assert batch.verdict(0) in ("fail", "undetermined")
+
+
+@pytest.mark.parametrize("device", ["K20", "Z10", "gG 32", "BS 88-2 gG 32", "BS 88-3 32", "BS 3036 30", "BS 1361 30"])
+def test_every_family_is_read_from_its_shorthand(device: str) -> None:
+    batch = judge(HEAD + GOOD.replace("B32", device))
+    assert statuses(batch) == ["judged"], batch.rows.of(0).faults
+    (answer,) = assess_requests(requests_of(batch, [0], {}))
+    limit = next(f for f in answer["findings"] if f["check"] == "overcurrent-disconnection")
+    assert limit["explanation"].startswith(f"{device} is sure to operate within 0.4 s")
+
+
+def test_a_motor_fuse_refuses_its_row_with_a_way_out() -> None:
+    batch = judge(HEAD + GOOD.replace("B32", "aM 32"))
+    assert "aM fuse-links are not held" in batch.rows.of(0).faults[0].detail
 
 
 def test_an_impossible_device_refuses_its_row_only() -> None:

@@ -9,9 +9,9 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from faultloop.protection.band import Band, compile_bands
-from faultloop.protection.breakers import breaker_band, breaker_table
+from faultloop.protection.breakers import breaker_band, breaker_table, breaker_tables
 from faultloop.protection.catalogue import catalogue, device_band, listed_devices, residual_multiple
-from faultloop.protection.designations import Breaker, Delay, OvercurrentDevice, ResidualDevice
+from faultloop.protection.designations import Breaker, Delay, Fuse, OvercurrentDevice, ResidualDevice
 from faultloop.protection.fuses import fuse_families
 from faultloop.protection.residual import residual_band, residual_table
 from faultloop.rules.loader import shipped
@@ -35,7 +35,8 @@ def test_every_rating_of_the_tables_is_listed_once() -> None:
     devices = listed_devices()
     assert len(set(devices)) == len(devices)
     breakers = [d for d in devices if isinstance(d, Breaker)]
-    assert len(breakers) == 3 * len(breaker_table().ratings_a)
+    assert set(breaker_tables()) == set("BCDKZ")
+    assert len(breakers) == sum(len(table.ratings_a) for table in breaker_tables().values())
     assert len(devices) - len(breakers) == sum(len(f.rating) for f in fuse_families().values())
 
 
@@ -72,6 +73,30 @@ def test_a_quicker_characteristic_is_never_slower(letter: str, rated: float, mul
     current = np.full(len(order), multiple * rated)
     times = table.greatest_time(np.arange(len(order)), current).tolist()
     assert times == sorted(times)
+
+
+def test_industrial_breakers_take_the_widest_band_of_their_sources() -> None:
+    table = catalogue().overcurrent
+    for letter, rated, hold, trip in (("K", 20.0, 160.0, 280.0), ("Z", 10.0, 20.0, 30.0)):
+        row = at(catalogue().rows["iec-60364:2017", Breaker(letter, rated)])  # type: ignore[arg-type]
+        assert table.operating_current(row, np.array([0.4]))[0] == trip
+        # The industrial standard tests instantaneous tripping for 0.2 s, so nothing quicker is promised.
+        assert table.operating_current(row, np.array([0.1]))[0] == math.inf
+        assert table.greatest_time(row, np.array([math.nextafter(trip, 0.0)]))[0] == 3600.0
+        assert table.greatest_time(row, np.array([1.3 * rated]))[0] == 3600.0
+        assert table.greatest_time(row, np.array([math.nextafter(1.3 * rated, 0.0)]))[0] == math.inf
+        assert table.least_time(row, np.array([hold]))[0] == 0.2
+        assert table.least_time(row, np.array([math.nextafter(hold, math.inf)]))[0] == 0.0
+
+
+@pytest.mark.parametrize("rated", [3.0, 13.0])
+def test_plug_fuses_stay_within_the_windows_of_their_standard(rated: float) -> None:
+    windows = {3.0: [(9.0, 0.02, 80.0), (20.0, 0.0, 0.1), (30.0, 0.0, 0.03)],
+               13.0: [(30.0, 1.0, 400.0), (50.0, 0.1, 20.0), (100.0, 0.01, 0.2)]}  # fmt: skip
+    row, table = at(catalogue().rows["bs-7671:2018", Fuse("bs-1362", rated)]), catalogue().overcurrent
+    for current, least, greatest in windows[rated]:
+        assert table.least_time(row, np.array([current]))[0] == least
+        assert table.greatest_time(row, np.array([current]))[0] == greatest
 
 
 @pytest.mark.parametrize("key", sorted(shipped()))

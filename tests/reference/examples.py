@@ -178,10 +178,12 @@ def protective_share(row: Row) -> float:
     for which in ("line", "protective"):
         size = given[f"{which}_conductor_mm2"]
         body["circuit"][f"{which}_conductor"] = {"material": "copper", "insulation": "pvc", "area_mm2": size}
-    told = assess(body)["quantities"]
+    answer = assess(body)
+    told = answer["quantities"]
     # U_t = U0·R2·F/Z: what is left after U0, F and the hot loop is R2.
     hot = 0.35 + given["line_plus_protective_resistance_ohm"] * told["temperature_factor"]
-    return float(told["touch_voltage_v"]["greatest"] * hot / told["temperature_factor"] / 230.0)
+    touch = next(f["value"] for f in answer["findings"] if f["check"] == "touch-voltage")
+    return float(touch * hot / told["temperature_factor"] / 230.0)
 
 
 def circuit(device: str, **body: Any) -> dict[str, Any]:

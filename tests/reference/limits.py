@@ -13,10 +13,18 @@ from faultloop.assessment.rule_table import required_time, rule_table
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.protection.catalogue import catalogue, residual_multiple
 from faultloop.protection.designations import Breaker, Characteristic, Delay, parse_overcurrent
+from faultloop.protection.moulded_case import Settings, moulded_case_band
 from faultloop.rules.loader import shipped
 from tests.reference.published import EDITIONS, Comparison, Row, compared, oracles, rules_for, seconds
 
 DELAYS = get_args(Delay)
+# Rule set under which the currents printed beside the curves of a family hold.
+FUSES = {
+    "OC-BS_88-2.2": "bs-7671:2008",
+    "OC-BS_88-3": "bs-7671:2011",
+    "OC-BS_3036": "bs-7671:2011",
+    "OC-gG-": "iec-60364:2017",
+}
 
 
 def limit(device: str, rules: str, time_s: float, policy: str = "none", voltage_v: float = 230.0) -> float:
@@ -58,9 +66,9 @@ def four_fifths() -> Iterator[Comparison]:
 
 def fuse_currents() -> Iterator[Comparison]:
     """Currents printed beside the curves of fuses."""
-    for row in [*oracles("operating_currents", "OC-BS_88-2.2"), *oracles("operating_currents", "OC-gG-")]:
+    for row in [row for start in FUSES for row in oracles("operating_currents", start)]:
         device = str(row["device"]).replace("BS 88-2.2/-6", "BS 88-2")
-        rules = "bs-7671:2008" if device.startswith("BS") else "iec-60364:2017"
+        rules = FUSES[next(start for start in FUSES if row["id"].startswith(start))]
         for time in seconds(row):
             yield compared(row, f"{time:g}s", "current_a", lambda d=device, e=rules, t=time: operating_current(d, e, t))
 
@@ -103,6 +111,50 @@ def breaker_tests() -> Iterator[Comparison]:
         slow, fast = slow_and_fast(characteristic, 16.0)
         yield compared(rows[f"OC-mcb-{5 + 2 * at:04d}"], "hold", "value", lambda f=fast: at_time(f, 0.1))
         yield compared(rows[f"OC-mcb-{6 + 2 * at:04d}"], "trip", "value", lambda s=slow: at_time(s, 0.1))
+
+
+def industrial_breakers() -> Iterator[Comparison]:
+    """Conventional currents of the industrial standard and the instantaneous bands of types K and Z.
+
+    Two sources differ on K; the band held is the widest of both, so each is compared at its wider end.
+    """
+    rows = {row["id"]: row for row in oracles("operating_currents", "OC-mcb-")}
+    for letter in "KZ":
+        slow, fast = slow_and_fast(letter, 20.0)
+        yield compared(rows["OC-mcb-0044"], letter, "value", lambda f=fast: at_time(f, 3600.0))
+        yield compared(rows["OC-mcb-0045"], letter, "value", lambda s=slow: at_time(s, 3600.0))
+    for name, letter, end in (
+        ("OC-mcb-0046", "K", "trip"),
+        ("OC-mcb-0047", "K", "hold"),
+        ("OC-mcb-0048", "Z", "hold"),
+        ("OC-mcb-0048", "Z", "trip"),
+    ):
+        slow, fast = slow_and_fast(letter, 20.0)
+        ends = {**rows[name], "hold": rows[name]["value"][0], "trip": rows[name]["value"][1]}
+        yield compared(ends, end, end, lambda e=fast if end == "hold" else slow: at_time(e, 0.2))
+
+
+def moulded_case() -> Iterator[Comparison]:
+    """Tolerance of magnetic releases and conventional currents of breakers that are set."""
+    rows = {row["id"]: row for row in oracles("operating_currents", "OC-mcb-")}
+    band = moulded_case_band(Settings(200.0, instantaneous_a=2000.0))
+    tolerance, holds, trips = (rows[f"OC-mcb-{number:04d}"] for number in (43, 44, 45))
+    yield compared(tolerance, "above", "value", lambda: 100.0 * (band.slow[1][0] / 2000.0 - 1.0))
+    yield compared(tolerance, "below", "value", lambda: 100.0 * (1.0 - band.fast[1][0] / 2000.0))
+    yield compared(holds, "Ir", "value", lambda: band.fast[0][0] / 200.0)
+    yield compared(trips, "Ir", "value", lambda: band.slow[0][0] / 200.0)
+
+
+def plug_fuses() -> Iterator[Comparison]:
+    """Windows of operating time of plug fuses, each end that is printed."""
+    for row in oracles("operating_currents", "OC-BS1362-"):
+        which = np.array([catalogue().rows["bs-7671:2018", parse_overcurrent(row["device"])]])
+        table, current = catalogue().overcurrent, np.array([float(row["current_a"])])
+        window = str(row["time_window_s"]).removesuffix(" s")
+        least, greatest = ("0", window[1:]) if window.startswith("<") else window.split("-")
+        ends = {**row, "least": least, "greatest": greatest}
+        for end, edge in (("least", table.least_time), ("greatest", table.greatest_time)):
+            yield compared(ends, end, end, lambda e=edge, w=which, i=current: float(e(w, i)[0]), step=0.001)
 
 
 def at_time(edge: dict[float, float], time_s: float) -> float:
@@ -232,5 +284,6 @@ def residual_use() -> Iterator[Comparison]:
 def comparisons() -> list[Comparison]:
     """Everything of this module."""
     parts = (loops, four_fifths, fuse_currents, breaker_multiples, breaker_tests, fuse_conventions)
+    families = (industrial_breakers, moulded_case, plug_fuses)
     more = (electrodes, residual_times, residual_use, disconnection_times)
-    return [comparison for part in (*parts, *more) for comparison in part()]
+    return [comparison for part in (*parts, *families, *more) for comparison in part()]

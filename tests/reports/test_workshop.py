@@ -48,8 +48,9 @@ def test_the_invented_workshop_as_work() -> None:
     assert all(item["who"] for item in told["stop_use"] + told["fix"])
     assert "the person responsible" in told["stop_use"][0]["who"]
     asked = {group["question"]: group["rows"] for group in told["questions"]}
-    # W19 is marginal, W31 has no time, W26 reads OL; their rows are 20, 32 and 27
-    assert sorted(row for rows in asked.values() for row in rows) == [20, 27, 32]
+    # W19 is marginal, W31 has no time, W26 reads OL, and how long a fault at W15 (over range) heats its conductor
+    # stays open; their rows are 20, 32, 27 and 16
+    assert sorted(row for rows in asked.values() for row in rows) == [16, 20, 27, 32]
     assert [group["rows"] for group in told["conditions"]] == [[12], [39]]
     assert told["not_judged"].startswith("1 of 40")
     counts = {told["subject"]: told["rows"] for told in told["not_tested"]}

@@ -12,8 +12,8 @@ from faultloop.assessment.explain import Explainer, Names
 from faultloop.assessment.judged import Condition
 from faultloop.assessment.limits import loop_limit
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import TemperaturePolicy, from_rows
-from faultloop.assessment.texts import Said, texts
+from faultloop.assessment.points import Decision, TemperaturePolicy, from_rows
+from faultloop.assessment.texts import LANGUAGES, Said, texts
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.mapping import mapped
 from faultloop.exchange.requests import AssessmentRequest
@@ -47,13 +47,13 @@ def request(earthing: str, readings: dict[str, object], policy: str) -> dict[str
     }
 
 
-def explainer(basis: str, policy: str) -> tuple[Explainer, Names]:
+def explainer(basis: str, policy: str, language: str = "en") -> tuple[Explainer, Names]:
     """The explainer of one point whose loop rests on that basis, and what its sentences may quote."""
     point = mapped(AssessmentRequest.model_validate(request(*BASES[basis], policy)))
     points = from_rows([point.row])
     outcome = decide(points)
     assert Basis.word(int(outcome.quantities.loops.basis[0])) == basis
-    found = Explainer(points, outcome)
+    found = Explainer(points, outcome, language)
     return found, Names(point.device, point.residual, point.rules.rules.title)
 
 
@@ -108,10 +108,11 @@ def test_no_shared_text_is_orphaned() -> None:
     assert set(TEXTS.shared) == used
 
 
+@pytest.mark.parametrize("language", LANGUAGES)
 @pytest.mark.parametrize("policy", POLICIES)
 @pytest.mark.parametrize("basis", sorted(BASES))
-def test_every_placeholder_of_every_reason_is_known(basis: str, policy: str) -> None:
-    found, names = explainer(basis, policy)
+def test_every_placeholder_of_every_reason_is_known(basis: str, policy: str, language: str) -> None:
+    found, names = explainer(basis, policy, language)
     for row, check in enumerate(CHECKS):
         for at in range(len(check.reasons)):
             explanation, question, _ = found.said(row, at, 0, found.quoted(0, names))
@@ -125,25 +126,34 @@ def test_every_basis_and_policy_is_tried() -> None:
     assert set(POLICIES) == {"split", "two-thirds", "four-fifths", "none"}
 
 
-def test_every_assumption_can_be_said() -> None:
-    found, names = explainer("no-trip", "split")
-    for name, text in TEXTS.assumptions.items():
+@pytest.mark.parametrize("language", LANGUAGES)
+def test_every_assumption_can_be_said(language: str) -> None:
+    found, names = explainer("no-trip", "split", language)
+    for name, text in texts(language).assumptions.items():
         assert finished(text.format_map(found.quoted(0, names))), name
 
 
+@pytest.mark.parametrize("language", LANGUAGES)
 @pytest.mark.parametrize("policy", POLICIES)
 @pytest.mark.parametrize("device", ["B32", "gG 63", "30 mA", "300 mA S"])
-def test_every_limit_can_be_explained(device: str, policy: str) -> None:
+def test_every_limit_can_be_explained(device: str, policy: str, language: str) -> None:
     rules = resolve("bs-7671")
     assert rules is not None
-    told = loop_limit(parse_device(device), rules.rules, 0.4, policy, 230.0).explanation
+    told = loop_limit(parse_device(device), rules.rules, 0.4, policy, 230.0, language).explanation
     assert told
     assert finished(told), told
 
 
 def test_sentences_are_used_and_have_a_variant_for_each_case() -> None:
     named = {word[1:] for said in all_said() for word in said.explanation.split() if word.startswith("@")}
-    variants = {"limit": POLICIES, "heating": POLICIES, "line-neutral": POLICIES, "loop": sorted(Basis.codes())}
+    variants = {
+        "limit": POLICIES,
+        "upstream": POLICIES,
+        "heating": [*POLICIES, "electrode"],
+        "line-neutral": POLICIES,
+        "loop": sorted(Basis.codes()),
+        "within": sorted(Decision.codes()),
+    }
     needed = {f"{name}.{v}" for name in named if name in variants for v in variants[name]}
     needed |= {name for name in named if name not in variants}
     assert needed <= set(TEXTS.sentences)

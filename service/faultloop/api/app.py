@@ -71,6 +71,7 @@ def create_app(settings: Settings) -> FastAPI:
         docs_url=None,
         redoc_url=None,
     )
+    app.include_router(assessments.judging)
     for module in (assessments, batches, devices, rule_sets, service):
         app.include_router(module.router)
     problems.install(app)

@@ -11,41 +11,59 @@ from uuid import UUID
 from fastapi import APIRouter, Header, Query, Request, Response
 
 from faultloop import __version__
-from faultloop.api.bodies import POINT_BODY, read_point, refuse_duplicates
+from faultloop.api.bodies import POINT_BODY, DirectRoute, read_point, refuse_duplicates
+from faultloop.api.negotiation import ASKED_LANGUAGE, SVG, drawing, language, media_type, unless_held
 from faultloop.api.problems import Refused
+from faultloop.assessment.texts import LANGUAGES
 from faultloop.digests import digest, json_bytes, sha256
 from faultloop.exchange.answers import Assessment
+from faultloop.exchange.mapping import overcurrent_device, residual_device
 from faultloop.exchange.render import request_bytes
 from faultloop.exchange.requests import AssessmentRequest
-from faultloop.exchange.resources import AssessmentList, ListQuery, ReplayBody
+from faultloop.exchange.resources import AssessmentList, DrawingQuery, ListQuery, ReplayBody
 from faultloop.records.queries import find, page
 from faultloop.records.tables import Record, Stored
-from faultloop.replay import replay
+from faultloop.replay import language_of, replay
+from faultloop.reports.curves import Judged, assessment_drawing
+from faultloop.rules.loader import resolve
 
 router = APIRouter(prefix="/v1/assessments", tags=["assessments"])
+# Judging is the hot path: these functions read their requests themselves.
+judging = APIRouter(prefix="/v1/assessments", tags=["assessments"], route_class=DirectRoute)
+PUT_PARAMETERS: list[dict[str, Any]] = [
+    {"name": "id", "in": "path", "required": True, "schema": {"type": "string", "format": "uuid"}},
+    {
+        "name": "if-none-match",
+        "in": "header",
+        "description": "* asks for a new one only",
+        "schema": {"type": "string", "maxLength": 200},
+    },
+]
 JSON = "application/json"
 MOST_PER_PAGE = 200
 
 
-@router.post(
+@judging.post(
     "/preview",
     response_model=Assessment,
-    openapi_extra=POINT_BODY,
+    openapi_extra=POINT_BODY | ASKED_LANGUAGE,
     summary="Judge one measured point; store nothing",
 )
 async def preview_assessment(request: Request) -> Response:
     """Give the verdict on one point with its arithmetic; nothing is stored."""
     judged = await _judged(request)
-    return Response(json_bytes(judged.answer), media_type=JSON, headers={"Cache-Control": "no-store"})
+    headers = {"Cache-Control": "no-store", "Content-Language": judged.language, "Vary": "Accept-Language"}
+    return Response(json_bytes(judged.answer), media_type=JSON, headers=headers)
 
 
 @dataclass(frozen=True, slots=True)
 class _Judged:
-    """A point with its canonical bytes, their digest, and the answer."""
+    """A point with its canonical bytes, their digest, the language asked for, and the answer in it."""
 
     body: AssessmentRequest
     canonical: bytes
     input_digest: str
+    language: str
     answer: dict[str, Any]
 
 
@@ -54,28 +72,31 @@ async def _judged(request: Request) -> _Judged:
     canonical = request_bytes(body)
     refuse_duplicates(raw, canonical)
     input_digest = sha256(canonical)
-    answer = await request.app.state.gather.assess(body, input_digest)
-    return _Judged(body, canonical, input_digest, answer)
+    spoken = language(request)
+    answer = await request.app.state.gather.assess(body, input_digest, spoken)
+    return _Judged(body, canonical, input_digest, spoken, answer)
 
 
-@router.put(
+@judging.put(
     "/{id:uuid}",
     response_model=Assessment,
-    openapi_extra=POINT_BODY,
+    openapi_extra={**POINT_BODY, "parameters": [*PUT_PARAMETERS, *ASKED_LANGUAGE["parameters"]]},
     summary="Judge one measured point and store the answer",
     responses={201: {"model": Assessment, "description": "Judged and stored"}},
 )
-async def put_assessment(
-    id: UUID,  # noqa: A002
-    request: Request,
-    if_none_match: Annotated[str | None, Header(max_length=200, description="* asks for a new one only")] = None,
-) -> Response:
-    """Judge and store under the caller's id; the same body again answers what is stored, another is refused."""
+async def put_assessment(request: Request) -> Response:
+    """Judge and store under the caller's id; the same body again answers what is stored, another is refused.
+
+    The answer is stored in the language asked for and stays in it, whatever language is asked for later.
+    """
     judged = await _judged(request)
-    stored, created = await request.app.state.writer.put(_record(id, judged))
+    stored, created = await request.app.state.writer.put(_record(request.path_params["id"], judged))
     if stored.record.input_digest != judged.input_digest:
-        raise Refused("precondition-failed" if if_none_match is not None else "conflict")
-    return _stored_answer(stored, 201 if created else 200)
+        raise Refused("precondition-failed" if "if-none-match" in request.headers else "conflict")
+    answer = _stored_answer(stored, judged.language if created else language_of(stored.record.answer))
+    answer.status_code = 201 if created else 200
+    answer.headers["Vary"] = "Accept-Language"
+    return answer
 
 
 def _record(id: UUID, judged: _Judged) -> Record:  # noqa: A002
@@ -95,14 +116,19 @@ def _record(id: UUID, judged: _Judged) -> Record:  # noqa: A002
     )
 
 
-def _stored_answer(stored: Stored, status: int) -> Response:
+def _stored_answer(stored: Stored, spoken: str) -> Response:
     # What stands under an id never changes, so the digest of its input is a strong tag of its one representation.
     headers = {"ETag": f'"{stored.record.input_digest}"', "Cache-Control": "no-store"}
-    headers["Location"] = f"/v1/assessments/{stored.record.id}"
-    return Response(stored.record.answer, status, media_type=JSON, headers=headers)
+    headers |= {"Location": f"/v1/assessments/{stored.record.id}", "Content-Language": spoken}
+    return Response(stored.record.answer, media_type=JSON, headers=headers)
 
 
-@router.get("/{id:uuid}", response_model=Assessment, summary="Read a stored assessment")
+@router.get(
+    "/{id:uuid}",
+    response_model=Assessment,
+    summary="Read a stored assessment",
+    responses={304: {"description": "Not changed since the tag in If-None-Match"}},
+)
 def get_assessment(
     id: UUID,  # noqa: A002
     request: Request,
@@ -110,11 +136,38 @@ def get_assessment(
 ) -> Response:
     """Give the stored answer, byte for byte."""
     stored = _found(request, id)
-    answer = _stored_answer(stored, 200)
-    wanted = {tag.strip().removeprefix("W/") for tag in (if_none_match or "").split(",")}
-    if answer.headers["ETag"] in wanted or "*" in wanted:
-        return Response(status_code=304, headers={"ETag": answer.headers["ETag"]})
-    return answer
+    return unless_held(_stored_answer(stored, language_of(stored.record.answer)), if_none_match)
+
+
+@router.get(
+    "/{id:uuid}/curve",
+    response_class=Response,
+    summary="Draw a stored assessment",
+    responses={200: {"content": {SVG: {"schema": {"type": "string"}}}, "description": "Drawing"}},
+)
+def get_assessment_curve(
+    id: UUID,  # noqa: A002
+    query: Annotated[DrawingQuery, Query()],
+    request: Request,
+) -> Response:
+    """Draw the devices' bands, the prospective earth fault current and the required time, in the stored language.
+
+    What is not known, a missing device too, is said in words on the drawing and not drawn.
+    """
+    if query.format is None:
+        media_type(request, (SVG,))
+    stored = _found(request, id).record
+    rules = resolve(stored.rules)
+    if rules is None:
+        raise Refused("not-found", "The rule set by which this was judged is not held here, so nothing can be drawn.")
+    point, answer = AssessmentRequest.model_validate_json(stored.request), json.loads(stored.answer)
+    device = None if point.overcurrent_device is None else overcurrent_device(point.overcurrent_device)
+    told = language_of(stored.answer)
+    # Bytes stay what they are; a drawing is made today, so it needs words that are held today.
+    spoken = told if told in LANGUAGES else LANGUAGES[0]
+    judged = Judged(stored.id, point.point.label, device, residual_device(point), rules, answer, spoken)
+    headers = {"Vary": "Accept", "Cache-Control": "no-store", "Content-Language": spoken}
+    return drawing(request, assessment_drawing(judged), headers)
 
 
 @router.get("", response_model=AssessmentList, summary="List stored assessments, newest first")
@@ -133,7 +186,8 @@ def list_assessments(query: Annotated[ListQuery, Query()], request: Request) -> 
     if len(rows) > size:
         cursor = _cursor(rows[size - 1].sequence, filters)
         wanted = {"page_size": size, "cursor": cursor, **{k: v for k, v in filters.items() if v}}
-        body["next"] = str(request.url.replace_query_params(**wanted))
+        following = request.url.replace_query_params(**wanted)
+        body["next"] = f"{following.path}?{following.query}"
     return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
 
 

@@ -11,7 +11,7 @@ from fastapi import APIRouter, Header, Path, Query, Request, Response
 
 from faultloop import __version__
 from faultloop.api.bodies import limited_body
-from faultloop.api.negotiation import CSV, HTML, JSON, preferred
+from faultloop.api.negotiation import media_type, unless_held
 from faultloop.api.problems import Refused
 from faultloop.api.worker import Worker
 from faultloop.digests import json_bytes
@@ -29,6 +29,7 @@ from faultloop.records.tables import BatchRecord, KeptBatch
 from faultloop.replay import batch_row, batch_workshop
 from faultloop.reports.workshop import workshop_page
 
+CSV, HTML, JSON = "text/csv", "text/html", "application/json"
 Result = TypeVar("Result")
 router = APIRouter(prefix="/v1/batches", tags=["batches"])
 _SENT: dict[str, Any] = {
@@ -77,7 +78,7 @@ async def put_batch(
 
 def _liked(request: Request, other: str) -> str:
     """JSON, or the other representation where the caller likes it better."""
-    return preferred(request.headers.get("accept"), (JSON, other))
+    return media_type(request, (JSON, other))
 
 
 async def _upload(request: Request, query: BatchQuery) -> Upload:
@@ -180,10 +181,7 @@ async def get_batch(
 ) -> Response:
     """Give the stored answer, byte for byte; as CSV, the rows as they came with their answers beside them."""
     kept, kind = await _found(request, id), _liked(request, CSV)
-    wanted = {tag.strip().removeprefix("W/") for tag in (if_none_match or "").split(",")}
-    if _tag(kept, kind) in wanted or "*" in wanted:
-        return Response(status_code=304, headers={"ETag": _tag(kept, kind), "Vary": "Accept"})
-    return _answered(kept, 200, kind, await _run(request, lambda: _content(kept, kind)))
+    return unless_held(_answered(kept, 200, kind, await _run(request, lambda: _content(kept, kind))), if_none_match)
 
 
 @router.get("/{id:uuid}/rows/{number}", response_model=BatchRow, summary="Read one row of a batch in full")

@@ -4,14 +4,26 @@ The body is validated from its bytes: JSON's own types stay strict, and a busy s
 """
 
 import json
+from collections.abc import Callable, Coroutine
 from typing import Any
 
-from fastapi import Request
+from fastapi import Request, Response
 from fastapi.exceptions import RequestValidationError
+from fastapi.routing import APIRoute
 from pydantic import ValidationError
 
 from faultloop.api.problems import Refused
 from faultloop.exchange.requests import AssessmentRequest
+
+
+class DirectRoute(APIRoute):
+    """A route whose function reads the request itself: nothing is parsed, solved or serialised around it."""
+
+    def get_route_handler(self) -> Callable[[Request], Coroutine[Any, Any, Response]]:
+        """Give the function itself."""
+        handler: Callable[[Request], Coroutine[Any, Any, Response]] = self.endpoint
+        return handler
+
 
 POINT_BODY: dict[str, Any] = {
     "requestBody": {

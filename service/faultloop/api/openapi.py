@@ -34,6 +34,7 @@ def document(app: FastAPI) -> dict[str, Any]:
             openapi_version="3.1.0",
         )
         _put_request_schemas(schema)
+        _open_answers(schema)
         schema["servers"] = [{"url": "/", "description": "This service"}]
         for path in schema["paths"].values():
             for operation in path.values():
@@ -53,6 +54,14 @@ def _put_request_schemas(schema: dict[str, Any]) -> None:
     schema["components"]["schemas"] = dict(sorted(components.items()))
 
 
+def _open_answers(schema: dict[str, Any]) -> None:
+    """Requests are closed; an answer may gain a field, and a client must bear it."""
+    asked = {"AssessmentRequest", *AssessmentRequest.model_json_schema().get("$defs", {})}
+    for name, model in schema["components"]["schemas"].items():
+        if name not in asked:
+            model.pop("additionalProperties", None)
+
+
 def _mend(operation: dict[str, Any]) -> None:
     """Errors are problem details, whatever the framework wrote of them."""
     problem = {MEDIA_TYPE: {"schema": {"$ref": "#/components/schemas/Problem"}}}
@@ -61,6 +70,9 @@ def _mend(operation: dict[str, Any]) -> None:
         own = any(ref and not ref.endswith("/Problem") for ref in refs)
         if status[0] in "45" and not own:
             response["content"] = problem
+    if "requestBody" not in operation:
+        for status in ("409", "412", "413", "415"):
+            operation["responses"].pop(status, None)
 
 
 def _put_examples(schema: dict[str, Any]) -> None:

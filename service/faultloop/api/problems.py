@@ -6,6 +6,7 @@ Refused
 ├── UnreadableFile     422  the body is no table of points
 ├── NotFound           404
 ├── MethodNotAllowed   405
+├── NotAcceptable      406
 ├── Conflict           409  the id stands for another input
 ├── PreconditionFailed 412  the same, where the client asked for a new one only
 ├── BodyTooLarge       413
@@ -55,12 +56,13 @@ KINDS: dict[str, tuple[int, str, str]] = {
         "The body cannot be read as a table of points",
         "See detail. Nothing was judged or stored; a single bad row never does this.",
     ),
-    "not-found": (404, "Nothing is here", "Check the address and the id."),
+    "not-found": (404, "Nothing is here", "Check the address and the id; ids are UUIDs."),
     "method-not-allowed": (
         405,
         "This method is not offered here",
         "The Allow header lists the methods of this address.",
     ),
+    "not-acceptable": (406, "This form of answer is not given here", "Accept one of the media types named in detail."),
     "conflict": (
         409,
         "This id stands for another input",
@@ -102,6 +104,7 @@ _BY_STATUS = {
     400: "unreadable-body",
     404: "not-found",
     405: "method-not-allowed",
+    406: "not-acceptable",
     413: "body-too-large",
     415: "unsupported-media-type",
 }
@@ -141,9 +144,10 @@ def _invalid(error: RequestValidationError) -> Response:
     if any(fault["type"] == "json_invalid" for fault in faults):
         return problem("unreadable-body")
     in_body = all(fault["loc"][:1] == ("body",) for fault in faults)
+    body = error.body if in_body else {}
     listed = [
         {
-            "pointer": pointer(fault["loc"][1:], error.body if in_body else {}),
+            "pointer": pointer(fault["loc"][1:], body, absent=not in_body or fault["type"] == "missing"),
             "code": fault["type"],
             "detail": told(fault),
         }

@@ -1,7 +1,7 @@
 """Explanations, questions, conditions and cautions of one point, by reason; no sentence stands in code."""
 
 import math
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 
@@ -9,7 +9,17 @@ import numpy as np
 
 from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import Choice, Earthing, Method, Number, Points, Reading, TemperaturePolicy
+from faultloop.assessment.points import (
+    Choice,
+    Decision,
+    Earthing,
+    LetThrough,
+    Method,
+    Number,
+    Points,
+    Reading,
+    TemperaturePolicy,
+)
 from faultloop.assessment.texts import Said, texts
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.electrical.fault_current import prospective_current
@@ -17,6 +27,7 @@ from faultloop.electrical.measurement import Array
 from faultloop.protection.catalogue import catalogue
 
 _POLICIES = {code: word for word, code in TemperaturePolicy.codes().items()}
+_DECISIONS = {code: word for word, code in Decision.codes().items()}
 _BASES = {code: word for word, code in Basis.codes().items()}
 
 
@@ -27,6 +38,7 @@ class Names:
     device: str | None
     residual: str | None
     rules: str
+    upstream: Sequence[str] = ()
 
 
 class Quoted(dict[str, float | str]):
@@ -77,9 +89,28 @@ def _overcurrent_time(q: Quoted) -> str:
     return f"{nominal:g} s" if math.isfinite(nominal) else q.phrases["no-time"]
 
 
+def _own_current(q: Quoted) -> str:
+    return q.phrases["own-never" if math.isinf(q.number("ia")) else "own-from"].format_map(q)
+
+
 def _times_told(q: Quoted) -> str:
     times = [(m, q.number(f"time_{m}")) for m in (1, 2, 5)]
     return ", ".join(q.phrases["time"].format(time=t, multiple=m) for m, t in times if not math.isnan(t))
+
+
+_LET_THROUGH = {
+    LetThrough.UNKNOWN: "let-through-unknown",
+    LetThrough.MAKER: "let-through-maker",
+    LetThrough.CLASS_MARKED: "let-through-class-marked",
+    LetThrough.CLASS_USUAL: "let-through-class-usual",
+    LetThrough.FUSE: "let-through-fuse",
+}
+
+
+def _let_through_told(q: Quoted) -> str:
+    by_class = q.number("let_through_basis") in (LetThrough.CLASS_MARKED, LetThrough.CLASS_USUAL)
+    known = not (by_class and math.isnan(q.number("let_through")))
+    return q.phrases[_LET_THROUGH[int(q.number("let_through_basis"))] if known else "let-through-unknown"].format_map(q)
 
 
 def _residual_limit(q: Quoted) -> str:
@@ -91,17 +122,21 @@ def _residual_limit(q: Quoted) -> str:
 _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     "withstand": _withstand,
     "withstand_told": _withstand_told,
+    "upstream": lambda q: q.phrases["no-device"],
+    "series": lambda q: q.phrases["series"].format_map(q) if "all_upstream" in q else q["device"],
+    "own_current": _own_current,
     "multiple_in": lambda q: q.number("i_ln") / q.number("in_device"),
     "overcurrent_time": _overcurrent_time,
     "time_told": _times_told,
     "residual_limit": _residual_limit,
+    "let_through_told": _let_through_told,
     "electrode_told": lambda q: q.phrases["electrode-bounded" if math.isnan(q.number("ra")) else "electrode-read"],
     "marginal_question": lambda q: q.phrases[
         "marginal-question-external" if math.isnan(q.number("ze")) else "marginal-question"
     ],
     "side": lambda q: q.phrases["below" if q.number("nominal") <= q.number("limit") else "above"],
     "z_or_value": lambda q: q["nominal"],
-    "excess_told": lambda q: max(q.number("nominal"), 0.0),
+    "excess_told": lambda q: max(round(q.number("nominal"), 9), 0.0),
 }
 
 
@@ -109,28 +144,42 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
 _OWN_PHRASES = ("side", "residual_limit", "z_or_value", "excess_told")
 
 
-@lru_cache(maxsize=4096)
-def _template(language: str, check: str, reason: str, policy: str, basis: str) -> tuple[str, bool, Said]:
-    """The template of a reason, whether it quotes anything at all, and what else is said."""
+Template = tuple[str, bool, Said]
+
+
+@lru_cache(maxsize=256)
+def _templates(language: str, policy: str, basis: str, decision: str) -> list[list[Template]]:
+    """For every reason of every check: its template, whether it quotes anything at all, and what else is said."""
     told = texts(language)
-    said = told.said(check, reason)
-    variants = {"limit": policy, "heating": policy, "line-neutral": policy, "loop": basis}
-    template = told.expanded(said.explanation, variants)
-    return template, "{" in template + (said.settled_by or ""), said
+    # Of a loop taken from the electrode nothing is heated.
+    heating = basis if basis == "electrode" else policy
+    variants = dict.fromkeys(("limit", "upstream", "line-neutral"), policy)
+    variants |= {"heating": heating, "loop": basis, "within": decision}
+
+    def template(said: Said) -> Template:
+        text = told.expanded(said.explanation, variants)
+        return text, "{" in text + (said.settled_by or ""), said
+
+    return [[template(told.said(check.id, reason)) for reason in check.reasons] for check in CHECKS]
 
 
 class Explainer:
     """Explains the points of one outcome; the columns are turned to plain rows once."""
 
     def __init__(self, points: Points, outcome: Outcome, language: str = "en") -> None:
-        self._language, self._phrases = language, texts(language).phrases
+        self._phrases = texts(language).phrases
         words, found = self._phrases["open-end"], outcome.findings
         with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
             columns = _columns(points, outcome)
         self._names = tuple(columns)
         self._rows = list(zip(*(_opened(column, words) for column in columns.values()), strict=True))
-        self._policies = points.choices[Choice.TEMPERATURE_POLICY].tolist()
-        self._bases = outcome.quantities.loops.basis.tolist()
+        choices = [points.choices[which].tolist() for which in (Choice.TEMPERATURE_POLICY, Choice.DECISION)]
+        chosen = zip(choices[0], outcome.quantities.loops.basis.tolist(), choices[1], strict=True)
+        self._templates = [
+            _templates(language, _POLICIES[policy], _BASES[basis], _DECISIONS[decision])
+            for policy, basis, decision in chosen
+        ]
+        self._upstream = outcome.quantities.upstream.place.tolist()
         own = (found.nominal.tolist(), found.limit.tolist(), found.least.tolist(), found.greatest.tolist())
         self._own = [
             list(zip(nominal, limit, least, _opened(greatest, words), strict=True))
@@ -143,13 +192,14 @@ class Explainer:
         quoted["device"] = names.device or self._phrases["no-device"]
         quoted["residual"] = names.residual or self._phrases["no-residual"]
         quoted["rules"] = names.rules
+        if names.upstream:
+            quoted["upstream"] = names.upstream[self._upstream[at]]
+            quoted["all_upstream"] = ", ".join(names.upstream)
         return quoted
 
     def said(self, check: int, reason: int, at: int, quoted: Quoted) -> tuple[str, str | None, list[str]]:
         """Explanation, question and cautions of one finding."""
-        policy, basis = _POLICIES[self._policies[at]], _BASES[self._bases[at]]
-        known = CHECKS[check]
-        template, quotes, said = _template(self._language, known.id, known.reasons[reason], policy, basis)
+        template, quotes, said = self._templates[at][check][reason]
         if not quotes:
             return template, said.settled_by, said.cautions
         own = self._own[check][at]
@@ -170,6 +220,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
     columns: dict[str, Array] = {
         "required": q.required_s,
         "ia": q.operating_current,
+        "ia_upstream": q.upstream.operating_current,
         "c_min": q.rule("c_min"),
         "u0": number(Number.VOLTAGE),
         "four_fifths": q.rule("four_fifths"),
@@ -208,10 +259,20 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "touch": q.touch_v,
         "k": number(Number.ADIABATIC_K),
         "area": number(Number.LINE_MM2),
+        "operating_ma": value[Reading.OPERATING_CURRENT],
+        "voltage": value[Reading.VOLTAGE],
+        "dead_excess": q.loops.expected.dead_excess,
+        "excess_below": -q.loops.excess,
+        "excess_above": q.loops.excess,
+        "pe_k": number(Number.PROTECTIVE_K),
+        "pe_area": number(Number.PROTECTIVE_MM2),
+        "pe_energy": (number(Number.PROTECTIVE_K) * number(Number.PROTECTIVE_MM2)) ** 2,
+        "let_through_basis": points.choice(Choice.LET_THROUGH).astype(np.float64),
+        "let_through": q.let_through.energy_a2s,
         "in_device": number(Number.DEVICE_RATED_CURRENT),
         "iz": number(Number.CARRYING_CAPACITY_A),
         "icn": number(Number.BREAKING_CAPACITY_KA),
-        "pscc": number(Number.BOARD_CURRENT_KA),
+        "pscc": value[Reading.BOARD_CURRENT],
         "overcurrent_least": q.overcurrent_s.least,
         "overcurrent_nominal": q.overcurrent_s.nominal,
         "time_1": value[Reading.TIME_1],
@@ -222,9 +283,9 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
     return {name: column.tolist() for name, column in columns.items()}
 
 
-def cautions_of(points: Points, outcome: Outcome, at: int, named: set[str], language: str = "en") -> list[str]:
-    """Cautions that an answer carries: the standing ones, those of its state, and those its findings name."""
-    earthing = int(points.choices[Choice.EARTHING, at])
+def cautions_of(points: Points, outcome: Outcome, at: int) -> set[str]:
+    """Cautions that a point's own state asks for, beside the standing ones and those its findings name."""
+    earthing, named = int(points.choices[Choice.EARTHING, at]), set()
     if earthing == Earthing.TT:
         named.add("tt-metalwork")
     if earthing == Earthing.TN_C_S:
@@ -235,4 +296,4 @@ def cautions_of(points: Points, outcome: Outcome, at: int, named: set[str], lang
         named.add("line-neutral-unseen")
     if int(outcome.quantities.loops.basis[at]) == Basis.LIVE and earthing != Earthing.TT:
         named.add("parallel-paths")
-    return [name for name, caution in texts(language).cautions.items() if caution.always or name in named]
+    return named

@@ -4,7 +4,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from faultloop.assessment.points import READINGS, Bound, Choice, Earthing, Flags, Points
+from faultloop.assessment.points import READINGS, Bound, Choice, Earthing, Flags, MeansOfEarthing, Points, Reading
 from faultloop.assessment.rule_table import RuleValues, rule_table
 from faultloop.electrical.measurement import Array, Interval, expanded_uncertainty
 
@@ -20,6 +20,7 @@ class Given:
     least: Array
     greatest: Array
     tt: Flags
+    earth_lost: Flags
 
     def reading(self, which: int) -> Interval:
         """Interval of one reading; nan where it was not taken, open where it is over or under range."""
@@ -36,6 +37,7 @@ def given(points: Points) -> Given:
     u = expanded_uncertainty(points.value, percent, constant) * points.coverage
     least = np.where(points.bound == Bound.BELOW, 0.0, np.maximum(points.value - u, 0.0))
     greatest = np.where(points.bound == Bound.ABOVE, np.inf, points.value + u)
+    tt = points.choice(Choice.EARTHING) == Earthing.TT
     return Given(
         points=points,
         rule=rule,
@@ -43,5 +45,14 @@ def given(points: Points) -> Given:
         known=points.bound != Bound.MISSING,
         least=least,
         greatest=greatest,
-        tt=points.choice(Choice.EARTHING) == Earthing.TT,
+        tt=tt,
+        earth_lost=_earth_lost(points, rule, least[Reading.EXTERNAL], tt),
     )
+
+
+def _earth_lost(points: Points, rule: RuleValues, external_least: Array, tt: Flags) -> Flags:
+    """Where the means of earthing is stated as lost, or Ze shows on a TN supply that it is."""
+    read = points.bound[Reading.EXTERNAL] != Bound.MISSING
+    open_loop = ~tt & read & (external_least > rule["tn_loop"])
+    lost: Flags = (points.choice(Choice.MEANS_OF_EARTHING) == MeansOfEarthing.LOST) | open_loop
+    return lost

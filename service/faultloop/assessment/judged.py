@@ -2,6 +2,7 @@
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 
@@ -10,7 +11,7 @@ from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.standing import Standing, Verdict, compare
 from faultloop.electrical.measurement import Array, Interval
 
-__all__ = ["AT_LEAST", "AT_MOST", "Check", "Decision", "Judged", "Standing", "Verdict", "compare"]
+__all__ = ["AT_LEAST", "AT_MOST", "Check", "Decision", "Judged", "Settled", "Standing", "Verdict", "compare", "settled"]
 
 AT_MOST, AT_LEAST = 1, -1
 
@@ -24,22 +25,91 @@ class Condition(Codes):
     SUPERVISION = 3
     CONDUCTOR_RATING = 4
     BACK_UP_DOCUMENTED = 5
+    INSTRUMENT_CHECKED = 6
+
+
+class Cases:
+    """Standing and reason case by case: the first case that holds decides, else comparison does."""
+
+    def __init__(self, reasons: tuple[str, ...]) -> None:
+        self._reasons = reasons
+        self.holds: list[Flags] = []
+        self.standing: list[int] = []
+        self.reason: list[int] = []
+        self.defect: list[bool] = []
+        self.offsets: list[tuple[int, Ints]] = []
+
+    def when(
+        self, holds: Flags, standing: int, reason: str, *, defect: bool = False, offset: Ints | None = None
+    ) -> None:
+        """Add a case; with `offset` the reason is that many further on in the check's list."""
+        if offset is not None:
+            self.offsets.append((len(self.holds), offset))
+        self.holds.append(holds)
+        self.standing.append(standing)
+        self.reason.append(self._reasons.index(reason))
+        self.defect.append(defect)
+
+    def settle_everything(self) -> bool:
+        """Whether the cases so far decide every point, so that nothing further can change one."""
+        return bool(np.logical_or.reduce(self.holds).all())
+
+    def settle(self, value: Interval, limit: Array, conditions: Ints | None = None) -> "Judged":
+        """Draw the cases together with the value and limit that are compared where none holds."""
+        return Judged(value, limit, self, np.zeros(limit.shape, np.int64) if conditions is None else conditions)
+
+    def settle_unvalued(self) -> "Judged":
+        """Draw together cases that decide every point without a value."""
+        nothing = np.full(self.holds[0].shape, np.nan)
+        return self.settle(Interval(nothing, nothing, nothing), nothing)
 
 
 @dataclass(frozen=True, slots=True)
 class Judged:
-    """One check at n points, not yet a verdict.
+    """One check at n points, not yet a verdict: a value, its limit, and the cases that come before comparison."""
+
+    value: Interval
+    limit: Array
+    cases: Cases
+    conditions: Ints
+
+
+@dataclass(frozen=True, slots=True)
+class Settled:
+    """Every check's cases drawn together, (K, n) each.
 
     `standing` says whether the value is compared or why it is not; `defect` marks what is shown to be
     broken rather than merely not met; `reason` indexes the check's reasons, -1 leaving it to the verdict.
     """
 
-    value: Interval
-    limit: Array
     standing: Ints
     reason: Ints
     defect: Flags
-    conditions: Ints
+
+
+@lru_cache(maxsize=64)
+def _layout(counts: tuple[int, ...]) -> tuple[Ints, Ints]:
+    """Where each check's cases stand in one list of all: rows (K, C), the last always holding, and starts (K, 1)."""
+    starts = np.cumsum([0, *(count + 1 for count in counts[:-1])])
+    rows = np.full((len(counts), max(counts) + 1), 0, dtype=np.int64)
+    for at, (start, count) in enumerate(zip(starts.tolist(), counts, strict=True)):
+        rows[at] = np.minimum(start + np.arange(rows.shape[1]), start + count)
+    return rows, starts[:, None]
+
+
+def settled(checks: list[Cases]) -> Settled:
+    """Settle all checks at once: one look for the first case that holds, whatever the number of checks."""
+    always = np.ones_like(checks[0].holds[0])
+    holds = np.array([flags for cases in checks for flags in (*cases.holds, always)])
+    rows, starts = _layout(tuple(len(cases.holds) for cases in checks))
+    first = starts + holds[rows].argmax(axis=1)
+    standing = np.array([code for cases in checks for code in (*cases.standing, Standing.COMPARED)])[first]
+    reason = np.array([code for cases in checks for code in (*cases.reason, -1)])[first]
+    defect = np.array([flag for cases in checks for flag in (*cases.defect, False)])[first]
+    for row, cases in enumerate(checks):
+        for case, offset in cases.offsets:
+            reason[row] += np.where(first[row] == starts[row, 0] + case, offset, 0)
+    return Settled(standing, reason, defect)
 
 
 @dataclass(frozen=True, slots=True)
@@ -58,42 +128,3 @@ class Check:
     judge: Callable[[Points, Quantities], Judged]
     group: str | None = None
     report: bool = False
-
-
-class Cases:
-    """Settle standing and reason case by case: the first case that holds decides, else comparison does."""
-
-    def __init__(self, reasons: tuple[str, ...]) -> None:
-        self._reasons = reasons
-        self._holds: list[Flags] = []
-        self._standing: list[int] = []
-        self._reason: list[int] = []
-        self._defect: list[bool] = []
-        self._offsets: list[tuple[int, Ints]] = []
-
-    def when(
-        self, holds: Flags, standing: int, reason: str, *, defect: bool = False, offset: Ints | None = None
-    ) -> None:
-        """Add a case; with `offset` the reason is that many further on in the check's list."""
-        if offset is not None:
-            self._offsets.append((len(self._holds), offset))
-        self._holds.append(holds)
-        self._standing.append(standing)
-        self._reason.append(self._reasons.index(reason))
-        self._defect.append(defect)
-
-    def settle(self, value: Interval, limit: Array, conditions: Ints | None = None) -> "Judged":
-        """Draw the cases together with the value and limit that are compared where none holds."""
-        compared = np.ones_like(self._holds[0])
-        first = np.array([*self._holds, compared]).argmax(axis=0)
-        reason = np.array([*self._reason, -1])[first]
-        for case, offset in self._offsets:
-            reason = np.where(first == case, reason + offset, reason)
-        return Judged(
-            value=value,
-            limit=limit,
-            standing=np.array([*self._standing, Standing.COMPARED])[first],
-            reason=reason,
-            defect=np.array([*self._defect, False])[first],
-            conditions=np.zeros_like(first) if conditions is None else conditions,
-        )

@@ -4,7 +4,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from faultloop.assessment.texts import texts
+from faultloop.assessment.texts import Texts, texts
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.protection.catalogue import catalogue, residual_multiple
 from faultloop.protection.designations import OvercurrentDevice, ResidualDevice
@@ -22,11 +22,16 @@ class Limit:
 
 
 def loop_limit(
-    device: OvercurrentDevice | ResidualDevice, rules: RuleSet, time_s: float, policy: str, voltage_v: float
+    device: OvercurrentDevice | ResidualDevice,
+    rules: RuleSet,
+    time_s: float,
+    policy: str,
+    voltage_v: float,
+    language: str = "en",
 ) -> Limit:
     """Limit by the band's inverse at a time; a residual device is also held to its touch-voltage limit."""
     if isinstance(device, ResidualDevice):
-        return _residual_limit(device, rules, time_s, voltage_v)
+        return _residual_limit(device, rules, time_s, voltage_v, texts(language))
     row = np.array([catalogue().rows[rules.key, device]])
     current = float(catalogue().overcurrent.operating_current(row, np.array([time_s]))[0])
     values = {
@@ -38,25 +43,25 @@ def loop_limit(
     }
     clause = rules.clauses["overcurrent-disconnection"]
     if np.isinf(current):
-        told = texts().shared["no-guaranteed-current"].explanation
+        told = texts(language).shared["no-guaranteed-current"].explanation
         return Limit(None, None, told.format_map(values), clause)
     c_min, four_fifths = rules.voltage_factor.least.value, rules.temperature.four_fifths.value
     factors = {"two-thirds": rules.temperature.two_thirds.value, "four-fifths": four_fifths * c_min}
     limit = _loop(factors.get(policy, c_min), voltage_v, current)
     values |= {"c_min": c_min, "four_fifths": four_fifths, "limit": limit}
-    return Limit(limit, current, texts().sentences[f"limit.{policy}"].format_map(values), clause)
+    return Limit(limit, current, texts(language).sentences[f"limit.{policy}"].format_map(values), clause)
 
 
 def _loop(factor: float, voltage_v: float, current_a: float) -> float:
     return float(prospective_current(np.array([factor]), np.array([voltage_v]), np.array([current_a]))[0])
 
 
-def _residual_limit(device: ResidualDevice, rules: RuleSet, time_s: float, voltage_v: float) -> Limit:
+def _residual_limit(device: ResidualDevice, rules: RuleSet, time_s: float, voltage_v: float, told_in: Texts) -> Limit:
     rated, clause = device.rated_ma / 1000.0, rules.clauses["earth-electrode"]
     multiple = residual_multiple(device.delay, time_s)
     values = {"residual": device.designation, "required": time_s, "rules": rules.title, "idn_a": rated}
     if np.isinf(multiple):
-        said = texts().said("residual-disconnection", "no-standard-times").explanation
+        said = told_in.said("residual-disconnection", "no-standard-times").explanation
         return Limit(None, None, said.format_map(values), clause)
     by_time = _loop(rules.voltage_factor.least.value, voltage_v, multiple * rated)
     by_touch = rules.disconnection.touch_voltage_ac.value / rated
@@ -67,5 +72,5 @@ def _residual_limit(device: ResidualDevice, rules: RuleSet, time_s: float, volta
         "touch_limit": rules.disconnection.touch_voltage_ac.value,
     }
     values["limit"] = min(by_time, by_touch)
-    told = texts().sentences["limit.residual"].format_map(values)
+    told = told_in.sentences["limit.residual"].format_map(values)
     return Limit(min(by_time, by_touch), multiple * rated, told, clause)

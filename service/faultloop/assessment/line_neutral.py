@@ -6,7 +6,7 @@ import numpy as np
 
 from faultloop.assessment.given import Given
 from faultloop.assessment.loops import Fault, Loops
-from faultloop.assessment.points import Bound, Choice, Flags, Method, Number, Reading
+from faultloop.assessment.points import Bound, Choice, Earthing, Flags, Method, Number, Reading
 from faultloop.electrical.fault_current import heated_loop
 from faultloop.electrical.measurement import Array, Interval, combined
 
@@ -29,12 +29,13 @@ def line_neutral(g: Given, found: Loops, hot_loop: Interval, factor: Array) -> L
     """The line-neutral loop as measured, else bounded by the earth fault loop's parts."""
     points = g.points
     cold, part, part_u = _cold(g, found)
-    unknown = np.full(points.count, np.nan)
-    hot = heated_loop(cold, unknown, part, part_u, factor)
     measured = ~np.isnan(cold.nominal)
     no_larger = points.number(Number.PROTECTIVE_MM2) <= points.number(Number.NEUTRAL_MM2)
     same = (points.choice(Choice.INFERABLE) == 1) & no_larger
     inferred = ~measured & ~g.tt & same & (found.fault == Fault.NONE)
+    if not (measured | inferred).any():
+        return LineNeutral(cold, cold, measured, inferred)
+    hot = heated_loop(cold, np.full(points.count, np.nan), part, part_u, factor)
     bound_hot, bound_cold = _bound(found, hot_loop, factor)
     return LineNeutral(_either(inferred, bound_hot, hot), _either(inferred, bound_cold, cold), measured, inferred)
 
@@ -69,5 +70,7 @@ def _cold(g: Given, found: Loops) -> tuple[Interval, Array, Array]:
         np.where(use, total, read.nominal),
     )
     own = (points.bound[at] == Bound.EXACT) & (points.method[at] <= Method.HIGH_CURRENT)
-    part = np.where(own, origin, np.where(g.tt, np.nan, found.external))
-    return cold, part, np.where(own, origin_u, found.external_u)
+    # Only where neutral and earth are one conductor before the origin is Ze the line-neutral loop there too.
+    pen = points.choice(Choice.EARTHING) == Earthing.TN_C_S
+    part = np.where(own, origin, np.where(pen, found.external, np.nan))
+    return cold, part, np.where(own, origin_u, np.where(pen, found.external_u, np.nan))

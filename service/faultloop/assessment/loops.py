@@ -36,6 +36,8 @@ class Expected:
     value: Array
     uncertainty: Array
     by_dead_test: Flags
+    dead_excess: Array
+    dead_slack: Array
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,6 +58,7 @@ class Loops:
     uplift: Array
     explained: Flags
     beyond: Flags
+    dead_beyond: Flags
 
 
 def loops(g: Given) -> Loops:
@@ -72,8 +75,10 @@ def loops(g: Given) -> Loops:
     excess = points.value[Reading.LOOP] - expected.value
     uplift = np.where(no_trip, g.rule["uplift"], 0.0)
     slack = combined(g.uncertainty[Reading.LOOP], expected.uncertainty) + uplift
-    beyond = known_live & (excess > slack)
-    outranked = expected.by_dead_test & no_trip & ~beyond & (points.bound[Reading.LOOP] != Bound.ABOVE)
+    # A dead test that says more than its route can have names the fault itself, whatever it then adds up to.
+    dead_beyond = expected.dead_excess > expected.dead_slack
+    beyond = (known_live & (excess > slack)) | dead_beyond
+    outranked = expected.by_dead_test & no_trip & ~(excess > slack) & (points.bound[Reading.LOOP] != Bound.ABOVE)
     loop, basis = _chosen(g, live, expected, outranked | (expected.by_dead_test & ~known_live), no_trip)
     external, external_u = _external(g)
     return Loops(
@@ -92,6 +97,7 @@ def loops(g: Given) -> Loops:
         uplift=uplift,
         explained=~np.isnan(expected.value) & ~beyond,
         beyond=beyond,
+        dead_beyond=dead_beyond,
     )
 
 
@@ -122,9 +128,16 @@ def _expected(g: Given, dead_resistance: Array) -> Expected:
     route = np.where(g.points.choice(Choice.RING) == 1, route / 4.0, route)
     by_dead_test = ~np.isnan(external + dead_resistance) & ~g.tt
     part = np.where(by_dead_test, dead_resistance, route)
-    route_u = route * g.rule["length_uncertainty"] / 100.0
-    part_u = np.where(by_dead_test, g.uncertainty[Reading.LINE_PLUS_PROTECTIVE], route_u)
-    return Expected(external + part, combined(g.uncertainty[at], part_u), by_dead_test)
+    route_u = route * g.rule["length_uncertainty"] / 100.0 + g.rule["length_constant"]
+    dead_u = g.uncertainty[Reading.LINE_PLUS_PROTECTIVE]
+    part_u = np.where(by_dead_test, dead_u, route_u)
+    return Expected(
+        value=external + part,
+        uncertainty=combined(g.uncertainty[at], part_u),
+        by_dead_test=by_dead_test,
+        dead_excess=dead_resistance - route,
+        dead_slack=combined(dead_u, route_u),
+    )
 
 
 def _chosen(g: Given, live: Interval, expected: Expected, outranked: Flags, no_trip: Flags) -> tuple[Interval, Ints]:

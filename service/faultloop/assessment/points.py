@@ -1,12 +1,14 @@
 """Points: the columns of one, or of a million, measured points."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field, fields
+from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
 
 from faultloop.electrical.measurement import Array
+from faultloop.protection.band import Band, BandTable
+from faultloop.protection.catalogue import catalogue
 
 Ints = NDArray[np.int64]
 Flags = NDArray[np.bool_]
@@ -41,6 +43,11 @@ class Reading(Codes):
     ORIGIN_LINE_NEUTRAL = 9
     TIME_HALF = 10
     INSULATION = 11
+    BOARD_LOOP = 12
+    BOARD_CURRENT = 13
+    VOLTAGE = 14
+    NEUTRAL_EARTH_VOLTAGE = 15
+    OPERATING_CURRENT = 16
 
 
 class Bound(Codes):
@@ -82,12 +89,20 @@ class Number(Codes):
     TEST_C = 13
     ADIABATIC_K = 14
     BREAKING_CAPACITY_KA = 15
-    BOARD_CURRENT_KA = 16
+    BETWEEN_LINES_V = 16
     CARRYING_CAPACITY_A = 17
     COVERAGE_SCALE = 18
     RESIDUAL_QUICK_MA = 19
     DECLARED_CURRENT_KA = 20
     ASSEMBLY_RATING_KA = 21
+    PROTECTIVE_K = 22
+    PROTECTIVE_TABLE_MM2 = 23
+    LET_THROUGH_A2S = 24
+    CLASS_ENERGY_3_KA = 25
+    CLASS_ENERGY_6_KA = 26
+    CLASS_ENERGY_10_KA = 27
+    COMBINATION_TO_KA = 28
+    ZERO_EXCESS = 29
 
 
 class Choice(Codes):
@@ -110,6 +125,8 @@ class Choice(Codes):
     MEANS_OF_EARTHING = 14
     LOADS_CONNECTED = 15
     MULTIPOLE = 16
+    LET_THROUGH = 17
+    CALIBRATION_LAPSED = 18
 
 
 class Earthing(Codes):
@@ -165,6 +182,16 @@ class Decision(Codes):
     SIMPLE = 1
 
 
+class LetThrough(Codes):
+    """What the let-through energy of the overcurrent device rests on."""
+
+    UNKNOWN = 0
+    MAKER = 1
+    CLASS_MARKED = 2
+    CLASS_USUAL = 3
+    FUSE = 4
+
+
 class Polarity(Codes):
     """Polarity as tested."""
 
@@ -189,12 +216,17 @@ class Current(Codes):
     DC = 1
 
 
+# Row of a compiled table of devices that stands for no device: its last.
+NO_DEVICE = -1
 READINGS, NUMBERS, CHOICES = len(Reading.codes()), len(Number.codes()), len(Choice.codes())
 
 
 @dataclass(slots=True)
 class Row:
-    """One point in words already turned to numbers; unknown is nan, missing or 0 as its table says."""
+    """One point in words already turned to numbers; unknown is nan, missing or 0 as its table says.
+
+    An overcurrent device is a row of the compiled table, or the band that the request brings along.
+    """
 
     value: list[float] = field(default_factory=lambda: [np.nan] * READINGS)
     percent: list[float] = field(default_factory=lambda: [np.nan] * READINGS)
@@ -203,11 +235,20 @@ class Row:
     method: list[int] = field(default_factory=lambda: [0] * READINGS)
     numbers: list[float] = field(default_factory=lambda: [np.nan] * NUMBERS)
     choices: list[int] = field(default_factory=lambda: [0] * CHOICES)
+    device: int | Band = NO_DEVICE
+    upstream: list[int | Band] = field(default_factory=list)
+
+
+_COLUMNS = ("value", "percent", "constant", "bound", "method", "numbers", "choices", "upstream")
 
 
 @dataclass(frozen=True, slots=True)
 class Points:
-    """Columns of n points: readings (R, n), numbers (N, n) and choices (C, n)."""
+    """Columns of n points: readings (R, n), numbers (N, n) and choices (C, n).
+
+    `overcurrent` is the table that devices are rows of: the catalogue's, with bands that requests brought
+    along behind it.  `upstream` (U, n) are the rows of further devices in series, as many as any point has.
+    """
 
     value: Array
     percent: Array
@@ -216,6 +257,8 @@ class Points:
     method: Ints
     numbers: Array
     choices: Ints
+    overcurrent: BandTable
+    upstream: Ints
 
     @property
     def count(self) -> int:
@@ -239,7 +282,8 @@ class Points:
 
     def picked(self, at: Ints) -> "Points":
         """The points of these positions, repeated where a position is."""
-        return Points(**{column.name: np.take(getattr(self, column.name), at, axis=1) for column in fields(self)})
+        columns = {name: np.take(getattr(self, name), at, axis=1) for name in _COLUMNS}
+        return Points(**columns, overcurrent=self.overcurrent)
 
 
 def from_rows(rows: Sequence[Row]) -> Points:
@@ -251,6 +295,9 @@ def from_rows(rows: Sequence[Row]) -> Points:
     def whole(lists: list[list[int]]) -> Ints:
         return np.ascontiguousarray(np.array(lists, dtype=np.int64).T)
 
+    overcurrent, devices = _devices(rows)
+    choices = whole([row.choices for row in rows])
+    choices[Choice.DEVICE] = devices[0]
     return Points(
         value=floats([row.value for row in rows]),
         percent=floats([row.percent for row in rows]),
@@ -258,5 +305,26 @@ def from_rows(rows: Sequence[Row]) -> Points:
         bound=whole([row.bound for row in rows]),
         method=whole([row.method for row in rows]),
         numbers=floats([row.numbers for row in rows]),
-        choices=whole([row.choices for row in rows]),
+        choices=choices,
+        overcurrent=overcurrent,
+        upstream=devices[1:],
     )
+
+
+def _devices(rows: Sequence[Row]) -> tuple[BandTable, Ints]:
+    """The table with the bands that rows bring along, and the table's row of each device, (1 + U, n)."""
+    held = catalogue()
+    bands: list[Band] = []
+
+    def picked(device: int | Band) -> int:
+        if isinstance(device, int):
+            return device
+        bands.append(device)
+        return len(held.rows) + len(bands) - 1
+
+    most = max((len(row.upstream) for row in rows), default=0)
+    series = [
+        [*map(picked, (row.device, *row.upstream)), *[NO_DEVICE] * (most - len(row.upstream))] for row in rows
+    ]
+    devices: Ints = np.ascontiguousarray(np.array(series, dtype=np.int64).T)
+    return held.overcurrent.extended(bands), devices

@@ -5,8 +5,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.given import Given, given
+from faultloop.assessment.let_through import LetThroughEnergy, let_through
 from faultloop.assessment.line_neutral import LineNeutral, line_neutral
-from faultloop.assessment.loops import Loops, loops
+from faultloop.assessment.loops import Basis, Loops, loops
 from faultloop.assessment.points import (
     Choice,
     Codes,
@@ -22,15 +23,17 @@ from faultloop.assessment.points import (
 )
 from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
+from faultloop.assessment.series import Upstream, greatest_time, least_time, quickest_upstream
 from faultloop.assessment.severity import Severity, severity
-from faultloop.assessment.standing import compare
+from faultloop.assessment.standing import Verdict, compare
 from faultloop.electrical.body import touch_voltage
 from faultloop.electrical.conductors import temperature_factor
 from faultloop.electrical.fault_current import heated_loop, prospective_current
 from faultloop.electrical.measurement import Array, Interval
-from faultloop.protection.catalogue import catalogue
 
 AT_MOST = np.array(1)
+# Nominal voltages are rounded: 230/400 V is not quite the square root of three.
+SYSTEM_RATIO_TOLERANCE = 0.1
 
 
 class Wanting(Codes):
@@ -58,11 +61,14 @@ class Quantities:
     operating_current: Array
     loop_limit: Array
     overcurrent: Ints
+    no_trip_undecided: Flags
+    upstream: Upstream
     current: Interval
     overcurrent_s: Interval
     residual: ResidualTimes
     severity: Severity
     line_neutral: LineNeutral
+    let_through: LetThroughEnergy
     electrode: Interval
     touch_v: Array
     touch_known: Flags
@@ -84,17 +90,19 @@ def shared(points: Points) -> Quantities:
     found, required = loops(g), required_time(points, rule)
     factor = temperature_factor(points.number(Number.SERVICE_C), points.number(Number.TEST_C), rule["alpha"])
     hot = heated_loop(found.loop, found.heated_known, found.external, found.external_u, factor)
-    band = catalogue().overcurrent
-    operating = band.operating_current(device, required)
+    operating = points.overcurrent.operating_current(device, required)
     limit, compared = _loop_limit(g, operating), by_policy(points, hot, found.loop)
     current = Interval(
         prospective_current(rule["c_min"], voltage, hot.greatest),
         prospective_current(rule["c_max"], voltage, found.loop.least),
         prospective_current(rule["c_min"], voltage, hot.nominal),
     )
-    slow = band.greatest_time(device, np.array([current.least, current.nominal]))
-    overcurrent_s = Interval(band.least_time(device, current.greatest), slow[0], slow[1])
+    slow = greatest_time(points, np.array([current.least, current.nominal]))
+    overcurrent_s = Interval(least_time(points, current.greatest), slow[0], slow[1])
     residual = residual_times(g, current)
+    overcurrent = compare(compared, limit, AT_MOST, points.choice(Choice.DECISION))
+    # A no-trip reading never fails alone within what its method can add, whatever the decision rule.
+    undecided = (found.basis == Basis.NO_TRIP) & (overcurrent == Verdict.FAIL) & (compared.least <= limit)
     touch, touch_known = _touch(g, found, hot, factor)
     return Quantities(
         given=g,
@@ -106,12 +114,15 @@ def shared(points: Points) -> Quantities:
         compared=compared,
         operating_current=operating,
         loop_limit=limit,
-        overcurrent=compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)),
+        overcurrent=np.where(undecided, Verdict.UNDETERMINED, overcurrent),
+        no_trip_undecided=undecided,
+        upstream=_upstream(g, compared, required),
         current=current,
         overcurrent_s=overcurrent_s,
         residual=residual,
         severity=severity(g, touch, overcurrent_s, residual),
         line_neutral=line_neutral(g, found, hot, factor),
+        let_through=let_through(g, current),
         electrode=_electrode(g, found),
         touch_v=touch,
         touch_known=touch_known,
@@ -124,11 +135,19 @@ def _wanting(g: Given, required: Array) -> Ints:
     rows = g.rule.table.nominal[points.choice(Choice.RULES)]
     nominal = (points.number(Number.VOLTAGE)[:, None] == rows).any(axis=1)
     no_role = points.choice(Choice.ROLE) == Role.UNKNOWN
-    unclear = ~nominal | (np.isnan(required) & ~no_role)
+    unclear = ~nominal | ~_system_voltage(g) | (np.isnan(required) & ~no_role)
     wanting = np.where(unclear, Wanting.VOLTAGE, np.where(no_role, Wanting.ROLE, Wanting.NOTHING))
     wanting = np.where(points.choice(Choice.CURRENT) == Current.DC, Wanting.DIRECT_CURRENT, wanting)
     wanting = np.where(covered, wanting, Wanting.EARTHING_NOT_COVERED)
     return np.where(earthing == Earthing.UNKNOWN, Wanting.EARTHING, wanting)
+
+
+def _system_voltage(g: Given) -> Flags:
+    """Whether the voltage to earth can be one: by the voltage between lines, or low enough not to be asked about."""
+    voltage, between = g.points.number(Number.VOLTAGE), g.points.number(Number.BETWEEN_LINES_V)
+    three_phase, split_phase = np.abs(between / voltage - np.sqrt(3.0)), np.abs(between / voltage - 2.0)
+    belongs = np.fmin(three_phase, split_phase) <= SYSTEM_RATIO_TOLERANCE
+    return np.where(np.isnan(between), ~(voltage > g.rule["voltage_asked"]), belongs)
 
 
 def _loop_limit(g: Given, operating: Array) -> Array:
@@ -137,6 +156,16 @@ def _loop_limit(g: Given, operating: Array) -> Array:
     factor = np.where(policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"])
     factor = np.where(policy == TemperaturePolicy.TWO_THIRDS, two_thirds, factor)
     return np.where(np.isinf(operating), np.nan, prospective_current(factor, voltage, operating))
+
+
+def _upstream(g: Given, compared: Interval, required: Array) -> Upstream:
+    points = g.points
+    operating, place = quickest_upstream(points, required)
+    if not len(points.upstream):
+        unknown = np.full(points.count, np.nan)
+        return Upstream(operating, place, unknown, np.full(points.count, Verdict.UNDETERMINED))
+    limit = _loop_limit(g, operating)
+    return Upstream(operating, place, limit, compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)))
 
 
 def by_policy(points: Points, hot: Interval, cold: Interval) -> Interval:

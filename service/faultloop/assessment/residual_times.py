@@ -18,6 +18,7 @@ class ResidualTimes:
     multiple_nominal: Array
     time_s: Interval
     over_limit: Flags
+    over_current: Flags
     tested: Flags
 
 
@@ -35,9 +36,10 @@ def residual_times(g: Given, current: Interval) -> ResidualTimes:
         multiples >= 5.0, five, np.where(multiples >= 2.0, two, np.where(multiples >= 1.0, one, np.nan))
     )
     slow = np.fmax(band.greatest_time(row, multiples), measured)
+    over_current = _over_current(g)
     over, tested = _tests(g)
     times = Interval(band.least_time(row, current.greatest / rated), slow[0], slow[1])
-    return ResidualTimes(multiples[0], multiples[1], times, over, tested)
+    return ResidualTimes(multiples[0], multiples[1], times, over | over_current, over_current, tested)
 
 
 def _tests(g: Given) -> tuple[Flags, Flags]:
@@ -51,5 +53,12 @@ def _tests(g: Given) -> tuple[Flags, Flags]:
     late = (exact & (value > limit_ms)) | ((bound == Bound.ABOVE) & (value >= limit_ms))
     over: Flags = np.logical_or.reduce(late, axis=0)
     within = exact[0] | ((bound[0] == Bound.BELOW) & (value[0] <= limit_ms[0]))
-    # Under a millisecond the unit must be wrong.
-    return over, within & (value[0] >= 1.0)
+    return over, within & (value[0] >= 1000.0 * g.rule["least_time"])
+
+
+def _over_current(g: Given) -> Flags:
+    """Where the device needed more than its rated current to operate."""
+    value, bound = g.points.value[Reading.OPERATING_CURRENT], g.points.bound[Reading.OPERATING_CURRENT]
+    rated = g.points.number(Number.RESIDUAL_MA)
+    over: Flags = ((bound == Bound.EXACT) & (value > rated)) | ((bound == Bound.ABOVE) & (value >= rated))
+    return over

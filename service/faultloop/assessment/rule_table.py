@@ -91,7 +91,14 @@ def _values(rules: RuleSet) -> dict[str, float]:
         "four_fifths": t.four_fifths.value,
         "tn_loop": rules.expected.tn_loop.value,
         "length_uncertainty": rules.expected.length_uncertainty.value,
+        "length_constant": rules.expected.length_constant.value,
         "least_plausible": rules.expected.least_plausible.value,
+        "greatest_insulation": rules.expected.greatest_insulation.value,
+        "least_time": rules.expected.least_time.value,
+        "greatest_time": rules.expected.greatest_time.value,
+        "voltage_asked": rules.expected.voltage_to_earth_asked_above.value,
+        "voltage_tolerance": rules.expected.voltage_tolerance.value,
+        "neutral_earth_voltage": rules.expected.neutral_earth_voltage.value,
         "body_dry": u.body_dry.value,
         "body_wet": u.body_wet.value,
         "sustained_ma": u.sustained_current.value,
@@ -115,7 +122,13 @@ def _instruments(rules: RuleSet) -> tuple[Array, Array]:
     """Default percent and constant by reading and method, (R, M)."""
     i = rules.instruments
     percent, constant = np.zeros((READINGS, len(Method.codes()))), np.zeros((READINGS, len(Method.codes())))
-    loop = (Reading.LOOP, Reading.EXTERNAL, Reading.LINE_NEUTRAL, Reading.ORIGIN_LINE_NEUTRAL)
+    loop = (
+        Reading.LOOP,
+        Reading.EXTERNAL,
+        Reading.LINE_NEUTRAL,
+        Reading.ORIGIN_LINE_NEUTRAL,
+        Reading.BOARD_LOOP,
+    )
     for reading in Reading.codes().values():
         default = i.high_current if reading in loop else i.electrode if reading == Reading.ELECTRODE else i.continuity
         percent[reading, :], constant[reading, :] = default.percent.value, default.constant.value
@@ -123,6 +136,11 @@ def _instruments(rules: RuleSet) -> tuple[Array, Array]:
         percent[reading, Method.NO_TRIP] = i.no_trip.percent.value
         constant[reading, Method.NO_TRIP] = i.no_trip.constant.value
     percent[Reading.INSULATION, :], constant[Reading.INSULATION, :] = i.insulation.value, 0.0
+    for reading in (Reading.VOLTAGE, Reading.NEUTRAL_EARTH_VOLTAGE):
+        percent[reading, :], constant[reading, :] = i.voltage.value, 0.0
+    # A stated current is no reading unless its instrument is stated too.
+    percent[Reading.BOARD_CURRENT, :], constant[Reading.BOARD_CURRENT, :] = 0.0, 0.0
+    percent[Reading.OPERATING_CURRENT, :], constant[Reading.OPERATING_CURRENT, :] = i.residual_time.value, 0.0
     for reading in TIME_READINGS:
         percent[reading, :], constant[reading, :] = i.residual_time.value, 0.0
     return percent, constant

@@ -20,26 +20,34 @@ class Severity:
     as_is: Array
     barrier_failed: Array
     time_s: Array
+    touch_v: Array
+    body_ohm: Array
     body_ma: Array
 
 
 def severity(g: Given, touch_v: Array, overcurrent_s: Interval, device: ResidualTimes) -> Severity:
     """Severity at the nominal current; an untested residual device is taken to work, a failed one not."""
     points = g.points
+    # Without a means of earthing exposed parts take the whole voltage, and no overcurrent flows.
+    touch_v = np.where(g.earth_lost, points.number(Number.VOLTAGE), touch_v)
     outdoors = points.choice(Choice.FEEDS) == Feeds.MOBILE_OUTDOORS
     body = np.where(outdoors, g.rule["body_wet"], g.rule["body_dry"])
     credited = ~np.isnan(points.number(Number.RESIDUAL_MA)) & ~device.over_limit
     # A person who touches the part closes the path, so a device that sees no metallic return still sees them.
-    touched = np.fmax(device.multiple_nominal, touch_v / body / (points.number(Number.RESIDUAL_MA) / 1000.0))
+    metallic = np.where(g.earth_lost, 0.0, device.multiple_nominal)
+    touched = np.fmax(metallic, touch_v / body / (points.number(Number.RESIDUAL_MA) / 1000.0))
     by_band = catalogue().residual.greatest_time(points.choice(Choice.RESIDUAL), touched)
-    quick = np.where(touched > device.multiple_nominal, by_band, device.time_s.nominal)
+    quick = np.where((touched > device.multiple_nominal) | g.earth_lost, by_band, device.time_s.nominal)
     residual = np.where(credited, quick, np.inf)
     # A device that nobody named is unknown, not absent: it shortens nothing and raises nothing.
     overcurrent = np.where(points.choice(Choice.DEVICE) < 0, np.nan, overcurrent_s.nominal)
+    overcurrent = np.where(g.earth_lost, np.inf, overcurrent)
     time = faster(overcurrent, np.where(np.isnan(overcurrent) & np.isinf(residual), np.nan, residual))
     return Severity(
         as_is=severity_ratio(touch_v, body, time),
         barrier_failed=severity_ratio(touch_v, body, overcurrent),
         time_s=time,
+        touch_v=touch_v,
+        body_ohm=body,
         body_ma=1000.0 * touch_v / body,
     )

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.checks import CHECKS
-from faultloop.assessment.judged import Condition, Judged, Standing, Verdict, compare
+from faultloop.assessment.judged import Condition, Judged, Settled, Standing, Verdict, compare, settled
 from faultloop.assessment.points import Choice, Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities, shared
 from faultloop.assessment.standing import STANDING_VERDICT
@@ -23,7 +23,8 @@ CONDITIONS = Condition.codes()
 REPORTS = np.array([check.report for check in CHECKS])[:, None]
 SENSES = np.array([check.sense for check in CHECKS])[:, None]
 # Reason of a comparison by verdict: fail, undetermined, marginal, pass-with-conditions, pass; two never compared.
-COMPARED_REASON = np.array([2, -1, 1, 0, 0, -1, -1])
+# A check settles whatever is unknown before it compares, so an undetermined comparison has no words of its own.
+COMPARED_REASON = np.array([2, 1, 1, 0, 0, 0, 0])
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,7 +71,8 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
     )
     limit, conditions = np.array([j.limit for j in judged]), np.array([j.conditions for j in judged])
     compared = compare(value, limit, SENSES, points.choice(Choice.DECISION))
-    verdict, reason = _verdicts(compared, judged, np.array(applies), conditions)
+    drawn = settled([j.cases for j in judged])
+    verdict, reason = _verdicts(compared, drawn, np.array(applies), conditions)
     counts, overall = _grouped(verdict)
     findings = Findings(
         verdict=verdict,
@@ -79,10 +81,10 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
         greatest=value.greatest,
         nominal=value.nominal,
         limit=limit,
-        defect=np.array([j.defect for j in judged]) & (verdict == Verdict.FAIL),
+        defect=drawn.defect & (verdict == Verdict.FAIL),
         conditions=np.where(verdict == Verdict.PASS_WITH_CONDITIONS, conditions, 0),
         counts=counts,
-        compared=np.array([j.standing for j in judged]) == Standing.COMPARED,
+        compared=drawn.standing == Standing.COMPARED,
     )
     held = np.bitwise_or.reduce(np.where(counts, findings.conditions, 0), axis=0)
     # A defect orders work even where another member of an any-of group decides.
@@ -91,11 +93,10 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
     return Outcome(findings, quantities, overall, level, held)
 
 
-def _verdicts(compared: Ints, judged: list[Judged], applies: Flags, conditions: Ints) -> tuple[Ints, Ints]:
+def _verdicts(compared: Ints, drawn: Settled, applies: Flags, conditions: Ints) -> tuple[Ints, Ints]:
     """Verdicts and reasons, (K, n): compared where a check leaves it to that, conditional where it must."""
-    standing, settled = np.array([j.standing for j in judged]), np.array([j.reason for j in judged])
-    verdict = np.where(standing == Standing.COMPARED, compared, STANDING_VERDICT[standing])
-    reason = np.where(settled < 0, COMPARED_REASON[verdict], settled)
+    verdict = np.where(drawn.standing == Standing.COMPARED, compared, STANDING_VERDICT[drawn.standing])
+    reason = np.where(drawn.reason < 0, COMPARED_REASON[verdict], drawn.reason)
     conditional = (verdict == Verdict.PASS) & (conditions != 0)
     verdict = np.where(conditional, Verdict.PASS_WITH_CONDITIONS, verdict)
     return np.where(applies, verdict, Verdict.NOT_APPLICABLE), np.where(applies, reason, -1)

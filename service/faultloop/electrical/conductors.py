@@ -105,3 +105,25 @@ def adiabatic_area(k: Array, current_a: Array, time_s: Array) -> Array:
     .. [1] IEC 60364-5-54:2011, 543.1.2.
     """
     return current_a * np.sqrt(time_s) / k
+
+
+def let_through_area(k: Array, energy_a2s: Array) -> Array:
+    """Least cross-sectional area that bears a let-through energy.
+
+    Parameters
+    ----------
+    k : (n,) array
+        Material and insulation factor [A·s^½/mm²].
+    energy_a2s : (..., n) array
+        Let-through energy I²t [A²s].
+
+    Returns
+    -------
+    (..., n) array
+        S = √(I²t)/k [mm²]; inf for an unbounded energy, nan where an input is unknown.
+
+    References
+    ----------
+    .. [1] IEC 60364-5-54:2011, 543.1.2.
+    """
+    return np.sqrt(energy_a2s) / k

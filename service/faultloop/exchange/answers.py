@@ -118,6 +118,7 @@ class Provenance(Answer):
     rules: Text
     rules_digest: Text
     devices_digest: Text
+    language: Annotated[str, Field(max_length=35, description="Language of the words (BCP 47)")]
     texts_digest: Text
     input_digest: Text
 

@@ -25,6 +25,7 @@ CONDUCTORS: dict[str, Path] = {
 }
 BOARD: dict[str, Path] = {
     "board_line_neutral_loop_impedance_ohm": ("board", "line_neutral_loop_impedance_ohm"),
+    "board_earth_fault_loop_impedance_ohm": ("board", "earth_fault_loop_impedance_ohm"),
     "board_prospective_current_ka": ("board", "prospective_current_ka"),
 }
 TIMES: dict[str, Path] = {

@@ -40,6 +40,8 @@ def told(error: Mapping[str, Any]) -> str:
     """What is wrong with a field, and what is expected there."""
     kind, context = error["type"], error.get("ctx", {})
     if kind == "extra_forbidden":
+        if error["loc"][:1] == ("query",):
+            return "no such parameter here; the document at /openapi.json names those that there are"
         return f"no such field here; {_nearest(str(error['loc'][-1]))}"
     if kind == "union_tag_invalid":
         return f"expected one of {context.get('expected_tags', '')}"
@@ -51,8 +53,11 @@ def told(error: Mapping[str, Any]) -> str:
     return usual.removeprefix("Input ").replace("should", "must", 1)
 
 
-def pointer(location: Iterable[Any], body: Any) -> str:
-    """JSON Pointer of a fault; names that only tell which kind of a union was tried are left out."""
+def pointer(location: Iterable[Any], body: Any, *, absent: bool) -> str:
+    """JSON Pointer of a fault; names that only tell which kind of a union was tried are left out.
+
+    The last name may be one that the body lacks only where the fault is that it is `absent`.
+    """
     parts, here = list(location), body
     kept: list[str] = []
     for at, part in enumerate(parts):
@@ -60,7 +65,7 @@ def pointer(location: Iterable[Any], body: Any) -> str:
             isinstance(here, list) and isinstance(part, int) and part < len(here)
         ):
             here = here[part]
-        elif at < len(parts) - 1 or not isinstance(here, dict):
+        elif not absent or at < len(parts) - 1 or not isinstance(here, dict):
             continue
         kept.append(str(part).replace("~", "~0").replace("/", "~1"))
     return "".join(f"/{part}" for part in kept)

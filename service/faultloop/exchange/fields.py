@@ -44,12 +44,27 @@ def number(unit: str, *, least: float = 0.0, most: float, description: str, posi
     )
 
 
+DATE = r"^\d{4}-(0[1-9]|1[0-2])-(0[1-9]|[12]\d|3[01])$"
+
+
 class Instrument(Closed):
     """Stated uncertainty of the instrument: percent of reading, and digits of a resolution."""
 
     percent: Annotated[float, number("%", most=100, description="Part proportional to the reading")]
     digits: Annotated[float, number("1", most=1000, description="Number of digits")]
     resolution: Annotated[float, number("unit of the reading", most=1000, description="One digit")]
+    calibration_due: Annotated[str, Field(max_length=10, pattern=DATE)] | None = Field(
+        default=None, description="Date until which the calibration holds"
+    )
+    zero_check: (
+        Annotated[
+            float,
+            number(
+                "unit of the reading", least=-1000, most=1000, description="Shown with the leads joined, after nulling"
+            ),
+        ]
+        | None
+    ) = None
 
 
 MethodWord = Literal["no-trip", "high-current", "dead", "calculated", "declared"]

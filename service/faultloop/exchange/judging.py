@@ -71,7 +71,10 @@ def pinned(told: Told, editions: Mapping[str, str]) -> AssessmentRequest:
     """The request of a row under the edition that its rule set stood for when it was judged."""
     assert told.request is not None
     edition = editions.get(told.request.rules, told.request.rules)
-    return told.request.model_copy(update={"rules": edition})
+    request = told.request.model_copy(update={"rules": edition})
+    if "rules" not in told.request.model_fields_set:
+        request.model_fields_set.discard("rules")  # it is still the service that chose the rule set
+    return request
 
 
 def judged(rows: Rows, editions: Mapping[str, str] | None = None) -> Judged:

@@ -6,12 +6,14 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from faultloop.assessment.points import (
+    NO_DEVICE,
     Bound,
     Choice,
     Current,
     Decision,
     Earthing,
     Feeds,
+    LetThrough,
     MeansOfEarthing,
     Method,
     Number,
@@ -24,11 +26,18 @@ from faultloop.assessment.points import (
 )
 from faultloop.assessment.rule_table import rule_table
 from faultloop.electrical.measurement import coverage_scale
+from faultloop.exchange import overcurrent as oc
 from faultloop.exchange import requests as rq
+from faultloop.exchange.fields import Instrument
 from faultloop.exchange.fields import Reading as ReadingBody
 from faultloop.protection import designations as ds
-from faultloop.protection.catalogue import catalogue
-from faultloop.rules.conductors import adiabatic_k, ohm_per_km, service_temperature
+from faultloop.protection.band import Band
+from faultloop.protection.catalogue import Described, catalogue
+from faultloop.protection.curves import OwnCurve, own_band
+from faultloop.protection.fuses import fuse_families
+from faultloop.protection.let_through import breaker_energy, combined_to_ka
+from faultloop.protection.moulded_case import MouldedCase
+from faultloop.rules.conductors import adiabatic_k, ohm_per_km, protective_size, service_temperature
 from faultloop.rules.loader import LoadedRules, resolve
 
 _BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
@@ -46,7 +55,21 @@ _MEANS: dict[str | None, int] = {None: 0}
 _MEANS.update(MeansOfEarthing.codes())
 _POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
 _POLARITY.update(Polarity.codes())
-NO_DEVICE = -1
+_READINGS = (
+    (Reading.EXTERNAL, "external_earth_fault_loop_impedance_ohm"),
+    (Reading.LINE_NEUTRAL, "line_neutral_loop_impedance_ohm"),
+    (Reading.LINE_PLUS_PROTECTIVE, "line_plus_protective_resistance_ohm"),
+    (Reading.PROTECTIVE, "protective_conductor_resistance_ohm"),
+    (Reading.ELECTRODE, "earth_electrode_resistance_ohm"),
+    (Reading.INSULATION, "insulation_resistance_megohm"),
+    (Reading.OPERATING_CURRENT, "residual_operating_current_ma"),
+    (Reading.VOLTAGE, "voltage_v"),
+    (Reading.NEUTRAL_EARTH_VOLTAGE, "voltage_neutral_to_earth_v"),
+)
+_UNUSED_READINGS = ("line_line_loop_impedance_ohm", "standing_leakage_ma")
+_UNUSED_SUPPLY = ("frequency_hz",)
+_UNUSED_UPSTREAM = ("breaking_capacity_ka", "energy_limiting_class", "let_through_energy_a2s", "poles")
+CLASS_COLUMNS_KA = (3.0, 6.0, 10.0)
 
 
 @dataclass(slots=True)
@@ -58,7 +81,10 @@ class Mapped:
     policy: dict[str, str | float]
     device: str | None
     residual: str | None
+    upstream: list[str] = field(default_factory=list)
     assumptions: list[str] = field(default_factory=list)
+    cautions: list[str] = field(default_factory=list)
+    unused: list[str] = field(default_factory=list)
 
 
 def mapped(request: rq.AssessmentRequest) -> Mapped:
@@ -66,6 +92,8 @@ def mapped(request: rq.AssessmentRequest) -> Mapped:
     rules = resolve(request.rules)
     assert rules is not None, "the request model refuses unknown rule sets"
     point = Mapped(Row(), rules, _policy(request.policy, rules), None, None)
+    if "rules" not in request.model_fields_set:
+        point.assumptions.append("rules")
     _put_supply(point, request)
     _put_devices(point, request)
     _put_circuit(point, request)
@@ -95,41 +123,82 @@ def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
         choices[Choice.MEANS_OF_EARTHING] = _MEANS[supply.means_of_earthing.state]
     if supply.declared_prospective_current_ka is not None:
         numbers[Number.DECLARED_CURRENT_KA] = supply.declared_prospective_current_ka
+    if supply.nominal_voltage_between_lines_v is not None:
+        numbers[Number.BETWEEN_LINES_V] = supply.nominal_voltage_between_lines_v
     if supply.nominal_voltage_to_earth_v is not None:
         numbers[Number.VOLTAGE] = supply.nominal_voltage_to_earth_v
 
 
-def overcurrent_device(body: rq.Breaker | rq.Fuse) -> ds.OvercurrentDevice:
+def overcurrent_device(body: oc.OvercurrentDevice) -> ds.OvercurrentDevice | Described:
     """The device that a body describes."""
-    if isinstance(body, rq.Breaker):
+    if isinstance(body, oc.Breaker):
         return ds.Breaker(body.characteristic, body.rated_current_a)
+    if isinstance(body, oc.OwnCurve):
+        return OwnCurve(body.rated_current_a, body.source, own_band(body.rated_current_a, *body.points.edges()))
+    if isinstance(body, oc.MouldedCase):
+        return MouldedCase(body.rated_current_a, body.settings.told())
     return ds.Fuse(body.fuse_system, body.rated_current_a)
+
+
+def _picked(point: Mapped, device: ds.OvercurrentDevice | Described) -> int | Band:
+    """Row of a device in the compiled table, or the band that it brings along, which is warned of."""
+    if isinstance(device, Described):
+        point.cautions.append("own-curve" if isinstance(device, OwnCurve) else "settings-as-stated")
+        return device.band
+    return catalogue().rows.get((point.rules.rules.key, device), NO_DEVICE)
+
+
+def residual_device(request: rq.AssessmentRequest) -> ds.ResidualDevice | None:
+    """The residual device that the circuit relies on: its own, else the most sensitive one before it."""
+    body = request.residual_current_device
+    if body is None and request.upstream_residual_current_devices:
+        body = min(request.upstream_residual_current_devices, key=lambda d: d.rated_residual_operating_current_ma)
+    if body is None:
+        return None
+    return ds.ResidualDevice(body.rated_residual_operating_current_ma, body.residual_type, body.delay)
 
 
 def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
     numbers, choices, table = point.row.numbers, point.row.choices, catalogue()
-    choices[Choice.DEVICE], choices[Choice.RESIDUAL] = NO_DEVICE, NO_DEVICE
+    choices[Choice.RESIDUAL] = NO_DEVICE
     if (body := request.overcurrent_device) is not None:
         device = overcurrent_device(body)
-        point.device = device.designation
-        choices[Choice.DEVICE] = table.rows.get((point.rules.rules.key, device), NO_DEVICE)
+        point.device, point.row.device = device.designation, _picked(point, device)
         numbers[Number.DEVICE_RATED_CURRENT] = body.rated_current_a
         choices[Choice.MULTIPOLE] = int((body.poles or 1) > 2 or request.supply.phases == 3)
         if body.breaking_capacity_ka is not None:
             numbers[Number.BREAKING_CAPACITY_KA] = body.breaking_capacity_ka
+        _put_let_through(point, body)
+    for body in request.upstream_overcurrent_devices:
+        device = overcurrent_device(body)
+        point.upstream.append(device.designation)
+        point.row.upstream.append(_picked(point, device))
     own = [request.residual_current_device] if request.residual_current_device else []
     chain = own + request.upstream_residual_current_devices
-    if chain:
+    if (relied := residual_device(request)) is not None:
         rated = [device.rated_residual_operating_current_ma for device in chain]
-        # Where the circuit has no residual device of its own, the most sensitive one before it carries it.
-        relied = chain[0] if own else min(chain, key=lambda d: d.rated_residual_operating_current_ma)
-        numbers[Number.RESIDUAL_MA] = relied.rated_residual_operating_current_ma
+        numbers[Number.RESIDUAL_MA] = relied.rated_ma
         numbers[Number.RESIDUAL_GREATEST_MA], numbers[Number.RESIDUAL_LEAST_MA] = max(rated), min(rated)
         quick = [device.rated_residual_operating_current_ma for device in chain if device.delay == "general"]
         numbers[Number.RESIDUAL_QUICK_MA] = min(quick, default=np.nan)
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
-        told = ds.ResidualDevice(relied.rated_residual_operating_current_ma, relied.residual_type, relied.delay)
-        point.residual = told.designation
+        point.residual = relied.designation
+
+
+def _put_let_through(point: Mapped, body: oc.OvercurrentDevice) -> None:
+    """Let-through energy: the maker's, else by the class that a breaker is marked with or usually has."""
+    numbers, choices = point.row.numbers, point.row.choices
+    if body.let_through_energy_a2s is not None:
+        numbers[Number.LET_THROUGH_A2S], choices[Choice.LET_THROUGH] = body.let_through_energy_a2s, LetThrough.MAKER
+    elif isinstance(body, oc.Breaker):
+        marked = body.energy_limiting_class
+        held = [breaker_energy(marked or 3, body.characteristic, body.rated_current_a, ka) for ka in CLASS_COLUMNS_KA]
+        for at, energy in enumerate(held):
+            if energy is not None:
+                numbers[Number.CLASS_ENERGY_3_KA + at] = energy
+                choices[Choice.LET_THROUGH] = LetThrough.CLASS_USUAL if marked is None else LetThrough.CLASS_MARKED
+    elif isinstance(body, oc.Fuse) and fuse_families()[body.fuse_system].cartridge:
+        choices[Choice.LET_THROUGH] = LetThrough.FUSE
 
 
 def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
@@ -154,8 +223,9 @@ def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
     _put_conductor(numbers, neutral, Number.NEUTRAL_MM2, None)
     same = neutral is not None and protective is not None and neutral.material == protective.material != "steel"
     choices[Choice.INFERABLE] = int(same)
-    if line is not None and (k := adiabatic_k(line.material, line.insulation, line.area_mm2)) is not None:
-        numbers[Number.ADIABATIC_K] = k
+    numbers[Number.ADIABATIC_K], numbers[Number.PROTECTIVE_K] = _k(line), _k(protective)
+    if line is not None and protective is not None:
+        _put_protective_size(numbers, request.overcurrent_device, line, protective)
     _put_service_temperature(point, [c for c in (line, protective) if c is not None])
 
 
@@ -168,6 +238,24 @@ def _put_conductor(numbers: list[float], body: rq.Conductor | None, area: int, p
         numbers[per_km] = np.nan if known is None else known
 
 
+def _put_protective_size(
+    numbers: list[float], device: oc.OvercurrentDevice | None, line: rq.Conductor, protective: rq.Conductor
+) -> None:
+    """What the table of sizes asks, and whether device and cable are a standard combination."""
+    line_k, protective_k = numbers[Number.ADIABATIC_K], numbers[Number.PROTECTIVE_K]
+    if not np.isnan(line_k + protective_k):
+        numbers[Number.PROTECTIVE_TABLE_MM2] = protective_size(line.area_mm2, line_k, protective_k)
+    if isinstance(device, oc.Breaker) and line.material == protective.material == "copper":
+        areas = (line.area_mm2, protective.area_mm2)
+        to_ka = combined_to_ka(device.characteristic, device.rated_current_a, *areas)
+        numbers[Number.COMBINATION_TO_KA] = to_ka
+
+
+def _k(body: rq.Conductor | None) -> float:
+    found = None if body is None else adiabatic_k(body.material, body.insulation, body.area_mm2)
+    return np.nan if found is None else found
+
+
 def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> None:
     known = [t for c in conductors if (t := service_temperature(c.insulation)) is not None]
     if not known:
@@ -178,12 +266,9 @@ def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> N
 def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     readings, board, row = request.readings, request.board, point.row
     _put_loop(point, readings.earth_fault_loop_impedance_ohm)
-    _put(row, Reading.EXTERNAL, readings.external_earth_fault_loop_impedance_ohm)
-    _put(row, Reading.LINE_NEUTRAL, readings.line_neutral_loop_impedance_ohm)
-    _put(row, Reading.LINE_PLUS_PROTECTIVE, readings.line_plus_protective_resistance_ohm)
-    _put(row, Reading.PROTECTIVE, readings.protective_conductor_resistance_ohm)
-    _put(row, Reading.ELECTRODE, readings.earth_electrode_resistance_ohm)
-    _put(row, Reading.INSULATION, readings.insulation_resistance_megohm)
+    for which, name in _READINGS:
+        if (stated := getattr(readings, name)) is not None:
+            _put(row, which, stated)
     row.choices[Choice.POLARITY] = _POLARITY[readings.polarity]
     if (times := readings.residual_operating_time_ms) is not None:
         row.choices[Choice.LOADS_CONNECTED] = int(times.loads_connected is True)
@@ -193,10 +278,10 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
         _put(row, Reading.TIME_5, times.five)
     if board is not None:
         _put(row, Reading.ORIGIN_LINE_NEUTRAL, board.line_neutral_loop_impedance_ohm)
+        _put(row, Reading.BOARD_LOOP, board.earth_fault_loop_impedance_ohm)
+        _put(row, Reading.BOARD_CURRENT, board.prospective_current_ka)
         if board.assembly_conditional_rating_ka is not None:
             row.numbers[Number.ASSEMBLY_RATING_KA] = board.assembly_conditional_rating_ka
-        stated = board.prospective_current_ka
-        row.numbers[Number.BOARD_CURRENT_KA] = _exact(stated)
     _put_method(point)
     heated = (
         readings.earth_fault_loop_impedance_ohm,
@@ -211,20 +296,32 @@ def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     )
     if any(stated is not None and not _states_instrument(stated) for stated in used):
         point.assumptions.append("instrument")
+    point.unused.extend(_unused(request))
+
+
+def _unused(request: rq.AssessmentRequest) -> list[str]:
+    """Values that were given and on which nothing is decided: what is ignored is said."""
+    parts = (("supply", request.supply, _UNUSED_SUPPLY), ("readings", request.readings, _UNUSED_READINGS))
+    found = [f"{part}.{name}" for part, body, names in parts for name in names if getattr(body, name) is not None]
+    device, own = request.residual_current_device, request.overcurrent_device
+    found += ["residual_current_device.delay_ms"] if device and device.delay_ms is not None else []
+    if isinstance(own, oc.MouldedCase) and own.settings.overload_time_s is not None:
+        found.append("overcurrent_device.settings.overload_time_s")
+    # Of a device upstream only its time counts: nothing is backed up by presence.
+    stated = [name for body in request.upstream_overcurrent_devices for name in _UNUSED_UPSTREAM if _states(body, name)]
+    return found + [f"upstream_overcurrent_devices.{name}" for name in dict.fromkeys(stated)]
+
+
+def _states(body: oc.OvercurrentDevice, name: str) -> bool:
+    return getattr(body, name, None) is not None
 
 
 def _put_loop(point: Mapped, stated: float | ReadingBody | None) -> None:
-    """The loop at the point; a declared one was read by nobody, so it is named and not decided on."""
-    if isinstance(stated, ReadingBody) and stated.method == "declared":
-        point.assumptions.append("declared-loop-unused")
+    """The loop at the point; one that nobody read live there is named and not decided on."""
+    if isinstance(stated, ReadingBody) and stated.method in ("declared", "calculated", "dead"):
+        point.assumptions.append("loop-not-read-unused")
     else:
         _put(point.row, Reading.LOOP, stated)
-
-
-def _exact(stated: float | ReadingBody | None) -> float:
-    if isinstance(stated, ReadingBody):
-        return stated.value if stated.bound != "above" else np.nan
-    return np.nan if stated is None else stated
 
 
 def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
@@ -240,6 +337,18 @@ def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
             instrument.percent,
             instrument.digits * instrument.resolution,
         )
+        _put_instrument(row, stated, instrument)
+
+
+def _put_instrument(row: Row, stated: ReadingBody, instrument: Instrument) -> None:
+    """Whether the calibration held on the day of the reading, and how far the joined leads were off zero."""
+    if instrument.calibration_due is not None:
+        # A reading without a date shows no valid calibration.
+        lapsed = stated.taken_at is None or stated.taken_at[:10] > instrument.calibration_due
+        row.choices[Choice.CALIBRATION_LAPSED] |= int(lapsed)
+    if instrument.zero_check is not None:
+        excess = abs(instrument.zero_check) - instrument.digits * instrument.resolution
+        row.numbers[Number.ZERO_EXCESS] = max(np.nan_to_num(row.numbers[Number.ZERO_EXCESS], nan=excess), excess)
 
 
 def _put_method(point: Mapped) -> None:

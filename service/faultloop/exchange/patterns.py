@@ -23,12 +23,17 @@ READING_OF = {
     "protective_conductor_resistance_ohm": Reading.PROTECTIVE,
     "earth_electrode_resistance_ohm": Reading.ELECTRODE,
     "insulation_resistance_megohm": Reading.INSULATION,
+    "residual_operating_current_ma": Reading.OPERATING_CURRENT,
+    "voltage_v": Reading.VOLTAGE,
+    "voltage_neutral_to_earth_v": Reading.NEUTRAL_EARTH_VOLTAGE,
     "board_line_neutral_loop_impedance_ohm": Reading.ORIGIN_LINE_NEUTRAL,
+    "board_earth_fault_loop_impedance_ohm": Reading.BOARD_LOOP,
+    "board_prospective_current_ka": Reading.BOARD_CURRENT,
     "residual_operating_time_ms": Reading.TIME_1,
     "residual_operating_time_at_2_ms": Reading.TIME_2,
     "residual_operating_time_at_5_ms": Reading.TIME_5,
 }
-NUMBER_OF = {"board_prospective_current_ka": Number.BOARD_CURRENT_KA, "length_m": Number.LENGTH_M}
+NUMBER_OF = {"length_m": Number.LENGTH_M}
 NAMES = ("point_id", "label", "location")
 _NUMBERED = {**READING_OF, **NUMBER_OF}
 # Below this no field's bound can refuse a number; what is larger is looked at row by row.

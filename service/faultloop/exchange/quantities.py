@@ -6,7 +6,8 @@ from typing import Any
 
 import numpy as np
 
-from faultloop.assessment.points import Number, Points
+from faultloop.assessment.loops import Fault
+from faultloop.assessment.points import Flags, Number, Points
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.digests import rounded_all
@@ -79,15 +80,17 @@ def quantity_columns(points: Points, outcome: Outcome) -> QuantityColumns:
             np.where(given, prospective_current(q.rule(factor), voltage, z), np.nan)
             for factor, z in (("c_min", q.line_neutral.hot.greatest), ("c_max", q.line_neutral.cold.least))
         ]
-    touch_least = np.where(q.touch_known, q.touch_v, np.where(np.isnan(q.touch_v), np.nan, -np.inf))
+    # Nothing is reported of a current that a disbelieved loop or a lost earth leaves unknown.
+    flows = (q.loops.fault == Fault.NONE) & ~q.given.earth_lost
+    touch_least, touch_greatest = _touch_ends(outcome, voltage)
     ends = {
-        "prospective_earth_fault_current_a": _ends(q.current.least, q.current.greatest),
+        "prospective_earth_fault_current_a": _ends(_where(flows, q.current.least), _where(flows, q.current.greatest)),
         "prospective_short_circuit_current_a": _ends(short[0], short[1]),
-        "touch_voltage_v": _ends(touch_least, q.touch_v),
+        "touch_voltage_v": _ends(_where(flows, touch_least), _where(flows, touch_greatest)),
         "earth_fault_loop_impedance_ohm": _ends(q.loops.loop.least, q.loops.loop.greatest),
         "heated_earth_fault_loop_impedance_ohm": _ends(q.hot.least, q.hot.greatest),
     }
-    time, by = _disconnection(outcome)
+    time, by = _disconnection(outcome, flows)
     plain = {
         "required_disconnection_time_s": rounded_all(np.where(q.wanting == 0, q.required_s, np.nan).tolist()),
         "temperature_factor": rounded_all(q.factor.tolist()),
@@ -96,14 +99,30 @@ def quantity_columns(points: Points, outcome: Outcome) -> QuantityColumns:
     return QuantityColumns(ends, time, by, plain)
 
 
-def _disconnection(outcome: Outcome) -> tuple[_Ends, list[str]]:
+def _where(known: Flags, of: Array) -> Array:
+    return np.where(known, of, np.nan)
+
+
+@np.errstate(divide="ignore", invalid="ignore", over="ignore")
+def _touch_ends(outcome: Outcome, voltage: Array) -> tuple[Array, Array]:
+    """Touch voltage with everything in it: voltage factors, and the loop's uncertainty taken in the protective path."""
+    q, hot = outcome.quantities, outcome.quantities.hot
+    path = q.touch_v / voltage * hot.nominal
+    most = np.where(np.isinf(hot.greatest), 1.0, (path + hot.greatest - hot.nominal) / hot.greatest)
+    least = np.maximum(path - (hot.nominal - hot.least), 0.0) / hot.nominal
+    greatest = q.rule("c_max") * voltage * np.minimum(most, 1.0)
+    open_end = np.where(np.isnan(q.touch_v), np.nan, -np.inf)
+    return np.where(q.touch_known, q.rule("c_min") * voltage * least, open_end), _where(~np.isnan(q.touch_v), greatest)
+
+
+def _disconnection(outcome: Outcome, flows: Flags) -> tuple[_Ends, list[str]]:
     """Disconnection time by the quicker device; a residual one counts when it was tested and did not fail."""
     q = outcome.quantities
     credited = q.residual.tested & ~q.residual.over_limit
     residual = np.where(credited, q.residual.time_s.greatest, np.inf)
     greatest = faster(q.overcurrent_s.greatest, residual)
     least = np.fmin(q.overcurrent_s.least, np.where(credited, q.residual.time_s.least, np.inf))
-    known = ~np.isnan(q.current.least)
+    known = ~np.isnan(q.current.least) & flows
     quicker = residual < np.where(np.isnan(q.overcurrent_s.greatest), np.inf, q.overcurrent_s.greatest)
     by = np.where(np.isinf(greatest), "none", np.where(quicker, "residual-current-device", "overcurrent-device"))
     return _ends(np.where(known, least, np.nan), np.where(known, greatest, np.nan)), by.tolist()

@@ -1,6 +1,7 @@
 """Outcomes -> answers in words, and the one path from requests to answers."""
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 from functools import lru_cache
 from typing import Any
 
@@ -12,7 +13,7 @@ from faultloop.assessment.explain import Explainer, Names, Quoted, cautions_of
 from faultloop.assessment.loops import Basis
 from faultloop.assessment.points import Points, Reading, from_rows
 from faultloop.assessment.standing import Verdict
-from faultloop.assessment.texts import Texts, texts
+from faultloop.assessment.texts import LANGUAGES, Texts, texts
 from faultloop.assessment.urgency import Urgency
 from faultloop.assessment.verdicts import ROWS, SENSES, Outcome, conditions_of, decide
 from faultloop.digests import canonical_bytes, digest, rounded_all, sha256
@@ -24,6 +25,7 @@ from faultloop.protection.catalogue import catalogue
 
 Body = dict[str, Any]
 _VERDICTS = {code: word for word, code in Verdict.codes().items()}
+LOOP_ROWS = np.array([check.quantity == "earth_fault_loop_impedance_ohm" for check in CHECKS])[:, None]
 _URGENCIES = {code: word for word, code in Urgency.codes().items()}
 
 
@@ -32,21 +34,52 @@ def request_bytes(request: AssessmentRequest) -> bytes:
     return canonical_bytes(request.model_dump(mode="json", by_alias=True, exclude_unset=True))
 
 
-def assess_requests(requests: Sequence[AssessmentRequest], digests: Sequence[str] | None = None) -> list[Body]:
-    """Judge requests and put the outcomes in words; one request and many take the same path."""
+def assess_requests(
+    requests: Sequence[AssessmentRequest],
+    digests: Sequence[str] | None = None,
+    languages: Sequence[str] | None = None,
+) -> list[Body]:
+    """Judge requests and put the outcomes in words, each in its language; one and many take the same path."""
     if not requests:
         return []
     known = digests or [sha256(request_bytes(request)) for request in requests]
     given = [mapped(request) for request in requests]
     points = from_rows([point.row for point in given])
     outcome = decide(points)
-    renderer = Renderer(points, outcome)
-    return [renderer.answer(at, point, told) for at, (point, told) in enumerate(zip(given, known, strict=True))]
+    spoken = languages or [LANGUAGES[0]] * len(requests)
+    renderers = {language: Renderer(points, outcome, language) for language in set(spoken)}
+    return [
+        renderers[language].answer(at, point, told)
+        for at, (point, told, language) in enumerate(zip(given, known, spoken, strict=True))
+    ]
+
+
+@dataclass(frozen=True, slots=True)
+class _Fixed:
+    """Parts of an answer that are the same for every point, made once a language; nobody changes them."""
+
+    digest: str
+    titles: list[str]
+    not_applicable: list[Body]
+    subjects: list[Body]
 
 
 @lru_cache(maxsize=8)
-def _texts_digest(language: str) -> str:
-    return digest(texts(language).model_dump(mode="json"))
+def _fixed(language: str) -> _Fixed:
+    told = texts(language)
+    return _Fixed(
+        digest=digest(told.model_dump(mode="json")),
+        titles=[told.checks[check.id].title for check in CHECKS],
+        not_applicable=[{"check": check.id, "text": told.checks[check.id].applies_not} for check in CHECKS],
+        subjects=[_not_examined(name, "out-of-scope", text, None) for name, text in told.subjects.items()],
+    )
+
+
+@lru_cache(maxsize=1024)
+def _cautions(language: str, named: frozenset[str]) -> list[Body]:
+    told = texts(language).cautions
+    held = [name for name, caution in told.items() if caution.always or name in named]
+    return [{"caution": name, "text": told[name].text} for name in held]
 
 
 class _Values:
@@ -60,6 +93,9 @@ class _Values:
             u = np.where(np.isinf(u), np.nan, u / points.coverage)
             probability = conformance_probability(found.nominal, u, found.limit, SENSES)
             worst = np.where(SENSES > 0, found.greatest, found.least)
+            # A no-trip reading errs high by an amount that nobody knows the chance of.
+            unknowable = LOOP_ROWS & (outcome.quantities.loops.basis == Basis.NO_TRIP)
+            probability = np.where(unknowable & (found.verdict == Verdict.MARGINAL), np.nan, probability)
             margin = SENSES * (found.limit - worst) / found.limit * 100.0
         # Where something else decided, how the number stands to its limit would only mislead.
         probability, margin = (np.where(found.compared, of, np.nan) for of in (probability, margin))
@@ -78,35 +114,38 @@ class Renderer:
     def __init__(self, points: Points, outcome: Outcome, language: str = "en") -> None:
         self._points, self._outcome, self._language = points, outcome, language
         self._texts: Texts = texts(language)
+        self._fixed = _fixed(language)
         self._explainer = Explainer(points, outcome, language)
         found = outcome.findings
-        self._verdict, self._reason = found.verdict.tolist(), found.reason.tolist()
-        self._counts, self._tt = found.counts.tolist(), outcome.quantities.tt.tolist()
+        # Points first: an answer walks through the checks of one point.
+        self._verdict, self._reason = found.verdict.T.tolist(), found.reason.T.tolist()
+        self._counts, self._tt = found.counts.T.tolist(), outcome.quantities.tt.tolist()
         self._values = _Values(points, outcome)
         self._quantities = quantity_columns(points, outcome)
 
     def answer(self, at: int, point: Mapped, input_digest: str) -> Body:
         """The answer for one point."""
-        quoted = self._explainer.quoted(at, Names(point.device, point.residual, point.rules.rules.title))
-        cautions: set[str] = set()
+        names = Names(point.device, point.residual, point.rules.rules.title, point.upstream)
+        quoted = self._explainer.quoted(at, names)
+        cautions: set[str] = set(point.cautions)
         findings, not_examined, not_applicable = [], [], []
-        for row, check in enumerate(CHECKS):
-            verdict = self._verdict[row][at]
+        said, counts = self._explainer.said, self._counts[at]
+        settled = zip(CHECKS, self._verdict[at], self._reason[at], strict=True)
+        for row, (check, verdict, reason) in enumerate(settled):
             if verdict == Verdict.NOT_APPLICABLE:
-                not_applicable.append({"check": check.id, "text": self._texts.checks[check.id].applies_not})
+                not_applicable.append(self._fixed.not_applicable[row])
                 continue
-            explanation, question, named = self._explainer.said(row, self._reason[row][at], at, quoted)
+            explanation, question, named = said(row, reason, at, quoted)
             if verdict == Verdict.NOT_EXAMINED:
-                reason = check.reasons[self._reason[row][at]]
-                not_examined.append(_not_examined(check.id, reason, explanation, question))
+                not_examined.append(_not_examined(check.id, check.reasons[reason], explanation, question))
                 continue
             # A finding that is met and decides nothing warns of nothing.
-            told = named if self._counts[row][at] or verdict < Verdict.PASS_WITH_CONDITIONS else []
+            told = named if counts[row] or verdict < Verdict.PASS_WITH_CONDITIONS else []
             cautions.update(told)
             findings.append(self._finding(row, at, point, explanation, question, told))
-        not_examined += [
-            {"subject": name, "reason": "out-of-scope", "text": text} for name, text in self._texts.subjects.items()
-        ]
+        not_examined += self._fixed.subjects
+        not_examined += [_not_examined(name, "not-used", self._texts.unused, None) for name in point.unused]
+        cautions |= cautions_of(self._points, self._outcome, at)
         return {
             "verdict": _VERDICTS[int(self._outcome.verdict[at])],
             "urgency": _URGENCIES[int(self._outcome.urgency[at])],
@@ -116,7 +155,7 @@ class Renderer:
             "not_examined": not_examined,
             "not_applicable": not_applicable,
             "assumptions": self._assumptions(at, point, quoted),
-            "cautions": self._cautions(at, cautions),
+            "cautions": _cautions(self._language, frozenset(cautions)),
             "policy": point.policy,
             "provenance": self._provenance(point, input_digest),
         }
@@ -124,31 +163,30 @@ class Renderer:
     def _finding(
         self, row: int, at: int, point: Mapped, explanation: str, question: str | None, named: list[str]
     ) -> Body:
-        check, verdict, clauses = CHECKS[row], self._verdict[row][at], point.rules.rules.clauses
+        check, verdict, clauses = CHECKS[row], self._verdict[at][row], point.rules.rules.clauses
         if verdict == Verdict.FAIL and question is not None:
             # Nothing read can settle a failure: what would be asked is what is to be done.
             explanation = f"{explanation} {question}"
-        value, least, greatest, limit, margin, probability = (column[at] for column in self._values.rounded[row])
-        body: Body = {
-            "check": check.id,
-            "title": self._texts.checks[check.id].title,
-            "verdict": _VERDICTS[verdict],
-            "quantity": check.quantity,
-            "value": value,
-            "interval": interval(self._values.least[row][at], self._values.greatest[row][at], (least, greatest)),
-            "limit": limit,
-            "unit": check.unit,
-            "margin_percent": margin,
-            "conformance_probability": probability,
-            "group": check.group,
-            "counts": self._counts[row][at],
-            "clause": (clauses.get(f"{check.id}-tt") if self._tt[at] else None) or clauses[check.id],
-            "reason": check.reasons[self._reason[row][at]],
-            "explanation": explanation,
-            "settled_by": question if Verdict.FAIL < verdict < Verdict.PASS_WITH_CONDITIONS else None,
-            "caution": self._texts.cautions[named[0]].text if named else None,
-        }
-        return {name: told for name, told in body.items() if told is not None}
+        value, least, greatest, limit, margin, probability = [column[at] for column in self._values.rounded[row]]
+        body: Body = {"check": check.id, "title": self._fixed.titles[row], "verdict": _VERDICTS[verdict]}
+        body["quantity"] = check.quantity
+        _put(body, "value", value)
+        ends = (least, greatest)
+        _put(body, "interval", interval(self._values.least[row][at], self._values.greatest[row][at], ends))
+        _put(body, "limit", limit)
+        body["unit"] = check.unit
+        _put(body, "margin_percent", margin)
+        _put(body, "conformance_probability", probability)
+        _put(body, "group", check.group)
+        body["counts"] = self._counts[at][row]
+        body["clause"] = (clauses.get(f"{check.id}-tt") if self._tt[at] else None) or clauses[check.id]
+        body["reason"] = check.reasons[self._reason[at][row]]
+        body["explanation"] = explanation
+        if Verdict.FAIL < verdict < Verdict.PASS_WITH_CONDITIONS:
+            _put(body, "settled_by", question)
+        if named:
+            body["caution"] = self._texts.cautions[named[0]].text
+        return body
 
     def _conditions(self, at: int) -> list[Body]:
         told = self._texts.conditions
@@ -160,20 +198,22 @@ class Renderer:
         told = self._texts.assumptions
         return [{"assumption": name, "text": told[name].format_map(quoted)} for name in names]
 
-    def _cautions(self, at: int, named: set[str]) -> list[Body]:
-        told = self._texts.cautions
-        names = cautions_of(self._points, self._outcome, at, named, self._language)
-        return [{"caution": name, "text": told[name].text} for name in names]
-
     def _provenance(self, point: Mapped, input_digest: str) -> Body:
         return {
             "engine": __version__,
             "rules": point.rules.rules.key,
             "rules_digest": point.rules.digest,
             "devices_digest": catalogue().digest,
-            "texts_digest": _texts_digest(self._language),
+            "language": self._language,
+            "texts_digest": self._fixed.digest,
             "input_digest": input_digest,
         }
+
+
+def _put(body: Body, name: str, told: Any) -> None:
+    """What is unknown is absent."""
+    if told is not None:
+        body[name] = told
 
 
 def _not_examined(subject: str, reason: str, text: str, question: str | None) -> Body:

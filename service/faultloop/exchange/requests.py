@@ -6,8 +6,7 @@ from pydantic import Field
 from pydantic.functional_validators import AfterValidator
 
 from faultloop.exchange.fields import WHOLE, Closed, Label, Measured, number
-from faultloop.protection.breakers import breaker_table
-from faultloop.protection.fuses import fuse_families
+from faultloop.exchange.overcurrent import OvercurrentDevice, listed
 from faultloop.protection.residual import residual_table
 from faultloop.rules.loader import resolve, shipped
 
@@ -82,68 +81,8 @@ class Board(Closed):
     assembly_conditional_rating_ka: Annotated[float, number("kA", most=1000, description="Rating")] | None = None
 
 
-def _breaker_rated(value: float) -> float:
-    return _listed(value, breaker_table().ratings_a)
-
-
-def _fuse_rated(value: float) -> float:
-    return _listed(value, _fuse_ratings())
-
-
 def _residual_rated(value: float) -> float:
-    return _listed(value, residual_table().rated_residual_operating_currents_ma)
-
-
-def _fuse_ratings() -> list[float]:
-    return sorted({rating.rated_current_a for family in fuse_families().values() for rating in family.rating})
-
-
-def _listed(value: float, values: list[float]) -> float:
-    if value not in values:
-        raise ValueError("no device has this rating; expected one of " + ", ".join(f"{v:g}" for v in values))
-    return value
-
-
-class Breaker(Closed):
-    """A miniature circuit-breaker, or the overcurrent part of a combined device."""
-
-    kind: Literal["miniature-circuit-breaker"]
-    characteristic: Literal["B", "C", "D"]
-    rated_current_a: Annotated[
-        float,
-        AfterValidator(_breaker_rated),
-        Field(
-            strict=True,
-            allow_inf_nan=False,
-            description="Rated current In [A]",
-            json_schema_extra=lambda schema: schema.update(enum=breaker_table().ratings_a),
-        ),
-    ]
-    breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Icn or Icu")] | None = None
-    poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
-
-
-class Fuse(Closed):
-    """A fuse-link."""
-
-    kind: Literal["fuse"]
-    fuse_system: Literal["iec-60269", "bs-88-2"]
-    utilisation_category: Literal["gG"]
-    rated_current_a: Annotated[
-        float,
-        AfterValidator(_fuse_rated),
-        Field(
-            strict=True,
-            allow_inf_nan=False,
-            description="Rated current In [A]",
-            json_schema_extra=lambda schema: schema.update(enum=_fuse_ratings()),
-        ),
-    ]
-    breaking_capacity_ka: Annotated[float, number("kA", most=1000, description="Rated breaking capacity")] | None = None
-    poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
-
-
-OvercurrentDevice = Annotated[Breaker | Fuse, Field(discriminator="kind")]
+    return listed(value, residual_table().rated_residual_operating_currents_ma)
 
 
 class ResidualCurrentDevice(Closed):
@@ -231,6 +170,7 @@ class AssessmentRequest(Closed):
     circuit: Circuit = Field(default_factory=Circuit)
     board: Board | None = None
     overcurrent_device: OvercurrentDevice | None = None
+    upstream_overcurrent_devices: Annotated[list[OvercurrentDevice], Field(max_length=8)] = Field(default_factory=list)
     residual_current_device: ResidualCurrentDevice | None = None
     upstream_residual_current_devices: Annotated[list[ResidualCurrentDevice], Field(max_length=8)] = Field(
         default_factory=list

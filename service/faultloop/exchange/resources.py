@@ -23,10 +23,17 @@ class LimitQuery(Closed):
     )
 
 
-class RulesQuery(Closed):
-    """Under which rule set a device is looked at."""
+class CurveQuery(Closed):
+    """Under which rule set a device is looked at, and in which form."""
 
     rules: RulesName = "iec-60364"
+    format: Literal["json", "svg"] | None = Field(default=None, description="Goes before the Accept header")
+
+
+class DrawingQuery(Closed):
+    """In which form a stored assessment is drawn."""
+
+    format: Literal["svg"] | None = Field(default=None, description="Goes before the Accept header")
 
 
 class ListQuery(Closed):

@@ -136,7 +136,8 @@ def _overcurrent(text: str) -> Body:
     kind: Body = {"rated_current_a": device.rated_current_a}
     if isinstance(device, Breaker):
         return kind | {"kind": "miniature-circuit-breaker", "characteristic": device.characteristic}
-    return kind | {"kind": "fuse", "fuse_system": device.fuse_system, "utilisation_category": "gG"}
+    kind |= {"kind": "fuse", "fuse_system": device.fuse_system}
+    return kind | ({"utilisation_category": device.utilisation_category} if device.utilisation_category else {})
 
 
 def _residual(text: str) -> Body:
@@ -173,8 +174,8 @@ def _reading(cell: Cell, where: str, raw: str, told: Told) -> Body | None:
     return None if cell.value is None else {"value": cell.value, "bound": cell.bound}
 
 
-def _in_file(location: tuple[Any, ...], body: Body) -> str:
-    return column_at(tuple(str(part) for part in location)) or faults.pointer(location, body)
+def _in_file(location: tuple[Any, ...], body: Body, *, absent: bool) -> str:
+    return column_at(tuple(str(part) for part in location)) or faults.pointer(location, body, absent=absent)
 
 
 def _checked(told: Told, body: Any, where: Any) -> Told:
@@ -185,7 +186,8 @@ def _checked(told: Told, body: Any, where: Any) -> Told:
         told.request = AssessmentRequest.model_validate(body)
     except ValidationError as error:
         for fault in error.errors(include_url=False)[:_MOST_FAULTS]:
-            told.faults.append(Fault(where(fault["loc"], body), fault["type"], faults.told(fault)))
+            place = where(fault["loc"], body, absent=fault["type"] == "missing")
+            told.faults.append(Fault(place, fault["type"], faults.told(fault)))
     return told
 
 

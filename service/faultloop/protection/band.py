@@ -1,6 +1,7 @@
 """Band: the least and greatest operating time that a standard guarantees at a current."""
 
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, fields
 from itertools import pairwise
 
 import numpy as np
@@ -83,6 +84,25 @@ class BandTable:
         time = self.slow_time[row, passed]
         return np.where(np.isnan(current_a), np.nan, time)
 
+    def tested_current(self, row: NDArray[np.intp], current_a: Array) -> Array:
+        """Greatest tested current at or below a current.
+
+        Parameters
+        ----------
+        row : (n,) array of int
+            Device rows.
+        current_a : (..., n) array
+            Prospective current, r.m.s. [A]; leading axes are further currents of the same devices.
+
+        Returns
+        -------
+        (..., n) array
+            Current [A] of the point whose time `greatest_time` gives; nan below the first one.
+        """
+        passed = (current_a[..., None] >= self.slow_current[row]).sum(axis=-1)
+        current = self.slow_current[row, np.maximum(passed - 1, 0)]
+        return np.where(passed > 0, current, np.nan)
+
     def least_time(self, row: NDArray[np.intp], current_a: Array) -> Array:
         """Least operating time at a current: the device does not operate sooner.
 
@@ -122,13 +142,37 @@ class BandTable:
         current = self.slow_current[row, slower]
         return np.where(np.isnan(time_s), np.nan, np.where(np.isnan(current), np.inf, current))
 
+    def extended(self, bands: Sequence[Band]) -> "BandTable":
+        """Give a table with further bands behind its own.
 
-def compile_bands(bands: list[Band]) -> BandTable:
+        Parameters
+        ----------
+        bands : sequence of Band
+            Bands that came with what is to be judged; currents in the table's unit, times in second.
+
+        Returns
+        -------
+        BandTable
+            The rows of this table in their places, then one row a band, and again a last one for no device.
+        """
+        if not bands:
+            return self
+        more, parts = compile_bands(bands), []
+        for field in fields(self):
+            first, second = getattr(self, field.name)[:-1], getattr(more, field.name)
+            width = max(first.shape[1], second.shape[1])
+            padding = np.nan if field.name.endswith("current") else 0.0
+            padded = [np.pad(a, ((0, 0), (0, width - a.shape[1])), constant_values=padding) for a in (first, second)]
+            parts.append(np.concatenate(padded))
+        return BandTable(*parts)
+
+
+def compile_bands(bands: Sequence[Band]) -> BandTable:
     """Lay bands out as arrays, row by row.
 
     Parameters
     ----------
-    bands : list of Band
+    bands : sequence of Band
         At least one band; all currents in one unit, all times in second.
 
     Returns

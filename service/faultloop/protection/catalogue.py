@@ -2,18 +2,23 @@
 
 from dataclasses import dataclass
 from functools import lru_cache
-from typing import cast
 
 import numpy as np
 
 from faultloop.digests import digest
 from faultloop.protection.band import Band, BandTable, compile_bands
-from faultloop.protection.breakers import breaker_band, breaker_table
-from faultloop.protection.designations import Breaker, Characteristic, Fuse, OvercurrentDevice
+from faultloop.protection.breakers import breaker_band, breaker_table, breaker_tables
+from faultloop.protection.curves import OwnCurve
+from faultloop.protection.designations import Breaker, Fuse, OvercurrentDevice, ResidualDevice
 from faultloop.protection.fuses import fuse_band, fuse_families
+from faultloop.protection.let_through import let_through_table
+from faultloop.protection.moulded_case import MouldedCase
 from faultloop.protection.residual import residual_band, residual_table
 from faultloop.rules.loader import shipped
 from faultloop.rules.sheets import RuleSet
+
+# Devices that a request describes by points or settings, and that bring their band along.
+Described = OwnCurve | MouldedCase
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,7 +37,7 @@ class Catalogue:
 def listed_devices() -> list[OvercurrentDevice]:
     """Every overcurrent device held here, family by family."""
     breakers: list[OvercurrentDevice] = [
-        Breaker(cast(Characteristic, c), rated) for c in "BCD" for rated in breaker_table().ratings_a
+        Breaker(letter, rated) for letter, table in breaker_tables().items() for rated in table.ratings_a
     ]
     fuses: list[OvercurrentDevice] = [
         Fuse(f.fuse_system, r.rated_current_a) for f in fuse_families().values() for r in f.rating
@@ -86,7 +91,8 @@ def catalogue() -> Catalogue:
     }
     # A time-delayed device has no band in the standards.
     residual = {"general": residual_band("general"), "selective": residual_band("selective"), "time-delayed": Band(())}
-    told = [breaker_table(), *fuse_families().values(), residual_table()]
+    breakers = {table.standard: table for table in breaker_tables().values()}
+    told = [*breakers.values(), *fuse_families().values(), residual_table(), let_through_table()]
     return Catalogue(
         overcurrent=compile_bands(list(bands.values())),
         residual=compile_bands(list(residual.values())),
@@ -96,6 +102,50 @@ def catalogue() -> Catalogue:
         residual_bands=residual,
         digest=digest([sheet.model_dump(mode="json") for sheet in told]),
     )
+
+
+def guaranteed(device: OvercurrentDevice | ResidualDevice | Described, rules: RuleSet) -> tuple[Band, float]:
+    """Band of any device, with what its currents are counted in.
+
+    Parameters
+    ----------
+    device : OvercurrentDevice, ResidualDevice, OwnCurve or MouldedCase
+        Any device, held here or described.
+    rules : RuleSet
+        Rule set under which it is looked at.
+
+    Returns
+    -------
+    band : Band
+        The steps; without any where no standard held here gives times.
+    scale : float
+        Ampere for one unit of the band's currents [A]: 1, or the rated residual operating current.
+    """
+    if isinstance(device, ResidualDevice):
+        return catalogue().residual_bands[device.delay], device.rated_ma / 1000.0
+    if isinstance(device, Described):
+        return device.band, 1.0
+    return catalogue().bands.get((rules.key, device), Band(())), 1.0
+
+
+def device_standard(device: OvercurrentDevice | ResidualDevice) -> str:
+    """Standard that a device is held by.
+
+    Parameters
+    ----------
+    device : OvercurrentDevice or ResidualDevice
+        A device of a family held here.
+
+    Returns
+    -------
+    str
+        Designation of the standard.
+    """
+    if isinstance(device, ResidualDevice):
+        return residual_table().standard
+    if isinstance(device, Breaker):
+        return breaker_table(device.characteristic).standard
+    return fuse_families()[device.fuse_system].standard
 
 
 def residual_multiple(delay: str, time_s: float) -> float:

@@ -1,19 +1,22 @@
-"""Trade shorthand ("B32", "gG 63", "BS 88-2 gG 63", "30 mA", "300 mA S") <-> device."""
+"""Trade shorthand ("B32", "K20", "gG 63", "BS 88-2 gG 63", "BS 3036 30", "30 mA", "300 mA S") <-> device."""
 
 import re
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import Literal, cast
 
-from faultloop.protection.breakers import breaker_table
+from faultloop.protection.breakers import Characteristic, breaker_table
 from faultloop.protection.fuses import fuse_families
 from faultloop.protection.residual import residual_table
 
-Characteristic = Literal["B", "C", "D"]
 ResidualType = Literal["AC", "A", "F", "B"]
 Delay = Literal["general", "selective", "time-delayed"]
 
-_BREAKER = re.compile(r"(?:MCB |RCBO )?([BCD])\s?(\d{1,4}(?:\.\d)?)(?: A)?", re.IGNORECASE | re.ASCII)
-_FUSE = re.compile(r"(BS 88-2 )?gG ?(\d{1,4}(?:\.\d)?)(?: A)?", re.IGNORECASE | re.ASCII)
+_BREAKER = re.compile(r"(?:MCB |RCBO )?([BCDKZ])\s?(\d{1,4}(?:\.\d)?)(?: A)?", re.IGNORECASE | re.ASCII)
+_MOTOR_FUSE = re.compile(r"(?:BS 88-2 )?aM ?\d{1,4}(?:\.\d)?(?: A)?", re.IGNORECASE | re.ASCII)
+NO_MOTOR_FUSES = (
+    "aM fuse-links are not held, because no gates of IEC 60269-2 were at hand; give the maker's points as a curve"
+)
 _RESIDUAL = re.compile(r"(\d{1,4}) ?mA(?: (AC|A|F|B))?(?: (S))?", re.IGNORECASE | re.ASCII)
 
 
@@ -46,6 +49,11 @@ class Fuse:
         """Trade shorthand."""
         return f"{fuse_families()[self.fuse_system].designation} {self.rated_current_a:g}"
 
+    @property
+    def utilisation_category(self) -> str | None:
+        """Utilisation category; older British fuses have none."""
+        return fuse_families()[self.fuse_system].utilisation_category
+
 
 @dataclass(frozen=True, slots=True)
 class ResidualDevice:
@@ -66,6 +74,24 @@ class ResidualDevice:
 OvercurrentDevice = Breaker | Fuse
 
 
+@lru_cache(maxsize=1)
+def _fuse_patterns() -> list[tuple[str, re.Pattern[str]]]:
+    """How the fuses of each system are written; a name that ends in a figure needs a space before the rating."""
+    patterns = []
+    for system, family in fuse_families().items():
+        for way in (family.designation, *family.also_written):
+            name = re.escape(way).replace(r"\ ", " ?") + (" " if way[-1].isdigit() else " ?")
+            patterns.append((system, re.compile(name + r"(\d{1,4}(?:\.\d)?)(?: A)?", re.IGNORECASE | re.ASCII)))
+    return patterns
+
+
+def _fuse(told: str) -> Fuse | None:
+    for system, pattern in _fuse_patterns():
+        if match := pattern.fullmatch(told):
+            return Fuse(system, float(match[1]))
+    return None
+
+
 def known_ratings(device: OvercurrentDevice) -> list[float]:
     """Rated currents held for a device's family.
 
@@ -80,7 +106,7 @@ def known_ratings(device: OvercurrentDevice) -> list[float]:
         Rated currents [A]; empty for an unknown fuse system.
     """
     if isinstance(device, Breaker):
-        return breaker_table().ratings_a
+        return breaker_table(device.characteristic).ratings_a
     family = fuse_families().get(device.fuse_system)
     return [rating.rated_current_a for rating in family.rating] if family else []
 
@@ -110,7 +136,7 @@ def parse_overcurrent(text: str) -> OvercurrentDevice:
     Parameters
     ----------
     text : str
-        Trade shorthand, such as "B32", "gG 63" or "BS 88-2 gG 63".
+        Trade shorthand, such as "B32", "gG 63", "BS 88-2 gG 63" or "BS 3036 30".
 
     Returns
     -------
@@ -123,13 +149,14 @@ def parse_overcurrent(text: str) -> OvercurrentDevice:
         If the text cannot be read or the rated current is not held; the message says what was expected.
     """
     told = " ".join(text.split())
-    device: OvercurrentDevice
+    device: OvercurrentDevice | None = _fuse(told)
     if match := _BREAKER.fullmatch(told):
         device = Breaker(cast(Characteristic, match[1].upper()), float(match[2]))
-    elif match := _FUSE.fullmatch(told):
-        device = Fuse("bs-88-2" if match[1] else "iec-60269", float(match[2]))
-    else:
-        raise UnknownDesignation("expected a breaker such as B32, C16 or D10, or a fuse such as gG 63 or BS 88-2 gG 63")
+    if device is None:
+        motor = f"{NO_MOTOR_FUSES}; " if _MOTOR_FUSE.fullmatch(told) else ""
+        raise UnknownDesignation(
+            motor + "expected a breaker such as B32, C16 or K20, or a fuse such as gG 63, BS 88-2 gG 63 or BS 3036 30"
+        )
     refuse_unknown(device)
     return device
 

@@ -4,8 +4,12 @@ from functools import lru_cache
 from importlib import resources
 from typing import Literal
 
+from pydantic import Field
+
 from faultloop.protection.band import Band
 from faultloop.rules.strict import Sheet, Sourced, Text, read_sheet, read_table, refuse_duplicates
+
+FILES = ("fuses.toml", "fuses_british.toml")
 
 
 class Point(Sourced):
@@ -24,11 +28,13 @@ class Rating(Sheet):
 
 
 class Family(Sheet):
-    """One fuse system."""
+    """One fuse system; the energy that a cartridge lets through does not rise with the current."""
 
     fuse_system: Text
     designation: Text
-    utilisation_category: Literal["gG"]
+    also_written: list[Text] = Field(default_factory=list)
+    utilisation_category: Literal["gG"] | None = None
+    cartridge: bool = True
     standard: Text
     rating: list[Rating]
 
@@ -43,11 +49,12 @@ class FuseTable(Sheet):
 @lru_cache(maxsize=1)
 def fuse_families() -> dict[str, Family]:
     """Load the fuse systems that come with the package, by their name."""
-    file = resources.files("faultloop.protection") / "data" / "fuses.toml"
-    table = read_sheet(FuseTable, read_table(file), file.name)
-    rows = [(f.fuse_system, r.rated_current_a) for f in table.family for r in f.rating]
-    refuse_duplicates(file.name, "family.rating", list(rows))
-    return {family.fuse_system: family for family in table.family}
+    folder = resources.files("faultloop.protection") / "data"
+    tables = [read_sheet(FuseTable, read_table(folder / name), name) for name in FILES]
+    families = [family for table in tables for family in table.family]
+    rows = [(f.fuse_system, r.rated_current_a) for f in families for r in f.rating]
+    refuse_duplicates(" and ".join(FILES), "family.rating", list(rows))
+    return {family.fuse_system: family for family in families}
 
 
 def fuse_band(rating: Rating) -> Band:
@@ -66,7 +73,7 @@ def fuse_band(rating: Rating) -> Band:
 
     References
     ----------
-    .. [1] IEC 60269-1:2006, Tables 2 and 3; the source of each point stands in `data/fuses.toml`.
+    .. [1] IEC 60269-1:2006, Tables 2 and 3; BS 7671 Appendix 3; the source of each point stands in `data/fuses*.toml`.
     """
     edges: dict[str, list[tuple[float, float]]] = {"slow": [], "fast": []}
     for point in rating.points:

@@ -1,1 +1,1 @@
-"""Documents and plots made from answers."""
+"""Drawings and documents made from answers and bands: data in, SVG bytes or HTML out."""

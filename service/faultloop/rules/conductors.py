@@ -43,12 +43,26 @@ class AdiabaticRow(Sourced):
         return inside and (self.material, self.insulation) == (material, insulation)
 
 
+class ProtectiveSizeRow(Sourced):
+    """Least protective conductor by the size of the line conductor: a share of it (unit 1), or an area."""
+
+    above_mm2: float
+    to_mm2: float | None = None
+    value: float
+    unit: Literal["1", "mm2"]
+
+    def least(self, line_mm2: float) -> float:
+        """Least protective conductor of the same metal [mm²]."""
+        return self.value * line_mm2 if self.unit == "1" else self.value
+
+
 class ConductorTables(Sheet):
     """Everything that the file of conductors says."""
 
     resistance: list[ResistanceRow]
     service_temperature: list[TemperatureRow]
     adiabatic: list[AdiabaticRow]
+    protective_size: list[ProtectiveSizeRow]
 
 
 @lru_cache(maxsize=1)
@@ -80,3 +94,28 @@ def adiabatic_k(material: str, insulation: str, area_mm2: float) -> float | None
     """Adiabatic factor k of a core in a cable [A·s^½/mm²]; None where the table has none."""
     rows = conductor_tables().adiabatic
     return next((r.value for r in rows if r.holds(material, insulation, area_mm2)), None)
+
+
+@lru_cache(maxsize=4096)
+def protective_size(line_mm2: float, line_k: float, protective_k: float) -> float:
+    """Least protective conductor by the table of sizes.
+
+    Parameters
+    ----------
+    line_mm2 : float
+        Area of the line conductor [mm²].
+    line_k, protective_k : float
+        Adiabatic factors of the two [A·s^½/mm²]; alike for the same metal and insulation.
+
+    Returns
+    -------
+    float
+        S_p = S(table)·k1/k2 [mm²].
+
+    References
+    ----------
+    .. [1] IEC 60364-5-54:2011, 543.1.1 and Table 54.2.
+    """
+    rows = conductor_tables().protective_size
+    row = next(r for r in rows if r.above_mm2 < line_mm2 and (r.to_mm2 is None or line_mm2 <= r.to_mm2))
+    return row.least(line_mm2) * line_k / protective_k

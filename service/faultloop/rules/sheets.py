@@ -99,6 +99,7 @@ class Instruments(Sheet):
     electrode: Instrument
     residual_time: Percent
     insulation: Percent
+    voltage: Percent
     no_trip_uplift: Ohms
 
 
@@ -124,7 +125,14 @@ class Expected(Sheet):
 
     tn_loop: Ohms
     length_uncertainty: Percent
+    length_constant: Ohms
     least_plausible: Ohms
+    greatest_insulation: Megohms
+    least_time: Seconds
+    greatest_time: Seconds
+    voltage_tolerance: Percent
+    voltage_to_earth_asked_above: Volts
+    neutral_earth_voltage: Volts
 
 
 class Urgency(Sheet):

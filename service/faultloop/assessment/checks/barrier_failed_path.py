@@ -20,6 +20,7 @@ REASONS = (
     "device-missing",
     "no-guaranteed-current",
     "reading-over-range",
+    "no-trip-undecided",
 )
 
 
@@ -35,6 +36,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(np.isinf(q.operating_current), Standing.UNDETERMINED, "no-guaranteed-current")
     open_end = np.isinf(q.compared.greatest) & (q.compared.least <= q.loop_limit)
     cases.when(open_end, Standing.UNDETERMINED, "reading-over-range")
+    cases.when(q.no_trip_undecided, Standing.UNDETERMINED, "no-trip-undecided")
     return cases.settle(q.compared, q.loop_limit)
 
 

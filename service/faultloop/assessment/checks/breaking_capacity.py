@@ -15,6 +15,7 @@ REASONS = (
     "current-missing",
     "three-phase-current-missing",
     "outlet-current-over-capacity",
+    "current-over-range",
     "assembly-rating",
     "back-up-not-documented",
     "assembly-rating-exceeded",
@@ -29,30 +30,35 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _at_board(points: Points, q: Quantities) -> tuple[Interval, Flags]:
     """Prospective current at the board [kA] and whether it is known.
 
-    A declared value governs where there is no reading, or where the reading's uncertainty is over half of it.
+    Of a stated current and a loop at the board the greater one holds.  A declared value governs where there is
+    neither, or where the loop's uncertainty is over half of it.
     """
     loop, declared = q.given.reading(Reading.ORIGIN_LINE_NEUTRAL), points.number(Number.DECLARED_CURRENT_KA)
-    stated = points.number(Number.BOARD_CURRENT_KA)
+    stated = q.given.reading(Reading.BOARD_CURRENT)
     voltage, c_max = points.number(Number.VOLTAGE), q.rule("c_max")
     single = points.choice(Choice.MULTIPOLE) == 0
     vague = q.given.uncertainty[Reading.ORIGIN_LINE_NEUTRAL] > loop.nominal / 2.0
     usable = single & ~np.isnan(loop.nominal) & ~(vague & ~np.isnan(declared))
 
-    def current(impedance: Array) -> Array:
-        return np.where(usable, prospective_current(c_max, voltage, impedance) / 1000.0, np.nan)
+    def greater(of_stated: Array, impedance: Array) -> Array:
+        by_loop = np.where(usable, prospective_current(c_max, voltage, impedance) / 1000.0, np.nan)
+        known = np.fmax(of_stated, by_loop)
+        return np.where(np.isnan(known), declared, known)
 
-    given = np.where(np.isnan(stated), declared, stated)
-    one = Interval(current(loop.greatest), current(loop.least), current(loop.nominal))
-    interval = Interval(*(np.where(np.isnan(given) | usable & np.isnan(stated), o, given) for o in _ends(one)))
+    interval = Interval(
+        greater(stated.least, loop.greatest),
+        greater(stated.greatest, loop.least),
+        greater(stated.nominal, loop.nominal),
+    )
     return interval, ~np.isnan(interval.nominal)
-
-
-def _ends(interval: Interval) -> tuple[Array, Array, Array]:
-    return interval.least, interval.greatest, interval.nominal
 
 
 def _judge(points: Points, q: Quantities) -> Judged:
     capacity, assembly = points.number(Number.BREAKING_CAPACITY_KA), points.number(Number.ASSEMBLY_RATING_KA)
+    cases = Cases(REASONS)
+    cases.when(np.isnan(capacity), Standing.NOT_EXAMINED, "capacity-missing")
+    if cases.settle_everything():
+        return cases.settle_unvalued()
     current, known = _at_board(points, q)
     outlet = (
         np.fmax(
@@ -62,11 +68,11 @@ def _judge(points: Points, q: Quantities) -> Judged:
         / 1000.0
     )
     over = current.greatest > capacity
-    cases = Cases(REASONS)
-    cases.when(np.isnan(capacity), Standing.NOT_EXAMINED, "capacity-missing")
     cases.when(~known & (outlet > capacity), Standing.UNMET, "outlet-current-over-capacity")
     cases.when(~known & (points.choice(Choice.MULTIPOLE) == 1), Standing.NOT_EXAMINED, "three-phase-current-missing")
     cases.when(~known, Standing.NOT_EXAMINED, "current-missing")
+    open_end = np.isinf(current.greatest) & (current.least <= capacity)
+    cases.when(open_end, Standing.UNDETERMINED, "current-over-range")
     cases.when(over & (assembly >= current.greatest), Standing.MET, "assembly-rating")
     cases.when(over & (assembly < current.least), Standing.UNMET, "assembly-rating-exceeded")
     cases.when(over, Standing.UNDETERMINED, "back-up-not-documented")

@@ -7,7 +7,7 @@ from faultloop.assessment.judged import AT_LEAST, Cases, Check, Judged, Standing
 from faultloop.assessment.points import Bound, Flags, Points, Reading
 from faultloop.assessment.quantities import Quantities
 
-REASONS = (*COMPARISON, "not-measured", "over-range-below-limit")
+REASONS = (*COMPARISON, "not-measured", "beyond-instruments", "over-range-below-limit")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -17,7 +17,10 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _judge(points: Points, q: Quantities) -> Judged:
     cases = Cases(REASONS)
     cases.when(points.bound[Reading.INSULATION] == Bound.MISSING, Standing.NOT_EXAMINED, "not-measured")
+    if cases.settle_everything():
+        return cases.settle_unvalued()
     read, limit = q.given.reading(Reading.INSULATION), q.rule("insulation")
+    cases.when(read.nominal > q.rule("greatest_insulation"), Standing.UNDETERMINED, "beyond-instruments")
     open_end = np.isinf(read.greatest) & (read.least < limit)
     cases.when(open_end, Standing.UNDETERMINED, "over-range-below-limit")
     return cases.settle(read, limit)

@@ -4,11 +4,11 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
-from faultloop.assessment.points import Choice, Flags, Number, Points
+from faultloop.assessment.points import Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities, by_policy
+from faultloop.assessment.series import greatest_time
 from faultloop.electrical.conductors import withstand_time
 from faultloop.electrical.fault_current import prospective_current
-from faultloop.protection.catalogue import catalogue
 
 REASONS = (
     *COMPARISON,
@@ -35,16 +35,19 @@ SHORTEST_ADIABATIC_S = 0.1
 
 def _judge(points: Points, q: Quantities) -> Judged:
     found = q.line_neutral
-    loop, measured, inferred = by_policy(points, found.hot, found.cold), found.measured, found.inferred
+    measured, inferred = found.measured, found.inferred
     limit = q.loop_limit
-    met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
-    withstands = _withstands(points, q)
-    rated = points.number(Number.DEVICE_RATED_CURRENT) <= points.number(Number.CARRYING_CAPACITY_A)
-    rated &= points.number(Number.BREAKING_CAPACITY_KA) >= points.number(Number.BOARD_CURRENT_KA)
     cases = Cases(REASONS)
     prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     cases.when(~measured & ~inferred, Standing.NOT_EXAMINED, "not-measured")
+    if cases.settle_everything():
+        return cases.settle_unvalued()
+    loop = by_policy(points, found.hot, found.cold)
+    met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
+    withstands = _withstands(points, q)
+    rated = points.number(Number.DEVICE_RATED_CURRENT) <= points.number(Number.CARRYING_CAPACITY_A)
+    rated &= points.number(Number.BREAKING_CAPACITY_KA) >= q.given.reading(Reading.BOARD_CURRENT).greatest
     implausible = measured & (loop.nominal < q.rule("least_plausible"))
     cases.when(implausible, Standing.UNDETERMINED, "reading-implausible")
     cases.when(inferred & met, Standing.MET, "inferred-within-limit")
@@ -61,21 +64,22 @@ def _judge(points: Points, q: Quantities) -> Judged:
 
 
 def _withstands(points: Points, q: Quantities) -> Flags:
-    """Whether the conductor bears the current for as long as the device may take, over the whole interval.
+    """Whether the conductor bears the current for as long as the devices in series may take, over the whole interval.
 
     Within one step of the band the time is constant and the withstand falls with the current, so the
     greatest current of each step is tried: both ends, and just below every tested current between them.
-    From 0.1 s down let-through energy decides, not the step of the band, which then refutes nothing.
+    From 0.1 s down let-through energy decides, not the step of the band, which then refutes nothing; that
+    holds for the circuit's own device, while one upstream is credited only with what its step shows.
     """
-    row, band, voltage = points.choice(Choice.DEVICE), catalogue().overcurrent, points.number(Number.VOLTAGE)
+    voltage, series = points.number(Number.VOLTAGE), (points.choice(Choice.DEVICE), *points.upstream)
     k, area = points.number(Number.ADIABATIC_K), points.number(Number.LINE_MM2)
     least = prospective_current(q.rule("c_min"), voltage, q.line_neutral.hot.greatest)
     greatest = prospective_current(q.rule("c_max"), voltage, q.line_neutral.cold.least)
-    edges = np.nextafter(band.slow_current[row].T, 0.0)
+    edges = np.nextafter(np.concatenate([points.overcurrent.slow_current[row].T for row in series]), 0.0)
     inside = (edges > least) & (edges < greatest)
     tried = np.concatenate([least[None], greatest[None], np.where(inside, edges, least)])
-    time = band.greatest_time(row, tried)
-    borne = (time <= SHORTEST_ADIABATIC_S) | (time <= withstand_time(k, area, tried))
+    own = points.overcurrent.greatest_time(points.choice(Choice.DEVICE), tried)
+    borne = (own <= SHORTEST_ADIABATIC_S) | (greatest_time(points, tried) <= withstand_time(k, area, tried))
     everywhere: Flags = np.logical_and.reduce(borne, axis=0)
     return everywhere & ~np.isnan(k * area)
 

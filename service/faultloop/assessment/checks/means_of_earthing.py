@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import Bound, Choice, Flags, MeansOfEarthing, Points, Reading
+from faultloop.assessment.points import Choice, Flags, MeansOfEarthing, Points, Reading
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (*COMPARISON, "lost", "external-loop-open", "doubtful", "not-stated", "proven")
@@ -17,13 +17,12 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _judge(points: Points, q: Quantities) -> Judged:
     stated, external = points.choice(Choice.MEANS_OF_EARTHING), q.given.reading(Reading.EXTERNAL)
     limit = q.rule("tn_loop")
-    read = points.bound[Reading.EXTERNAL] != Bound.MISSING
     cases = Cases(REASONS)
     cases.when(stated == MeansOfEarthing.LOST, Standing.UNMET, "lost", defect=True)
-    cases.when(~q.tt & read & (external.least > limit), Standing.UNMET, "external-loop-open", defect=True)
+    cases.when(q.given.earth_lost, Standing.UNMET, "external-loop-open", defect=True)
     cases.when(stated == MeansOfEarthing.DOUBTFUL, Standing.UNDETERMINED, "doubtful")
     cases.when(stated == MeansOfEarthing.PROVEN, Standing.MET, "proven")
-    cases.when(np.ones_like(read), Standing.NOT_EXAMINED, "not-stated")
+    cases.when(np.ones_like(q.tt), Standing.NOT_EXAMINED, "not-stated")
     return cases.settle(external, np.where(q.tt, np.nan, limit))
 
 

@@ -1,4 +1,4 @@
-"""Would the overcurrent device clear an earth fault in the required time?"""
+"""Would the overcurrent device clear an earth fault in the required time, or one upstream of it?"""
 
 import numpy as np
 
@@ -9,16 +9,20 @@ from faultloop.assessment.checks.common import (
     loop_is_wanting,
     prerequisites_are_wanting,
 )
-from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
+from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing, Verdict
 from faultloop.assessment.points import Choice, Flags, Points
 from faultloop.assessment.quantities import Quantities
+from faultloop.electrical.measurement import Array
 
 REASONS = (
     *COMPARISON,
     *PREREQUISITES,
     *LOOP,
     "device-missing",
+    "cleared-upstream",
+    "upstream-inside-uncertainty",
     "reading-over-range",
+    "no-trip-undecided",
     "over-range-over-limit",
     "no-guaranteed-current",
     "cannot-operate-in-time",
@@ -34,13 +38,28 @@ def _judge(points: Points, q: Quantities) -> Judged:
     prerequisites_are_wanting(cases, q, Standing.UNDETERMINED)
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     loop_is_wanting(cases, q)
+    limit = _with_upstream(cases, q) if len(points.upstream) else q.loop_limit
     unguaranteed = np.isinf(q.operating_current)
     cases.when(unguaranteed & (q.overcurrent_s.least > q.required_s), Standing.UNMET, "cannot-operate-in-time")
     cases.when(unguaranteed, Standing.UNDETERMINED, "no-guaranteed-current")
     open_end = np.isinf(q.compared.greatest) & (q.compared.least <= q.loop_limit)
     cases.when(open_end, Standing.UNDETERMINED, "reading-over-range")
     cases.when(np.isinf(q.compared.greatest), Standing.UNMET, "over-range-over-limit")
-    return cases.settle(q.compared, q.loop_limit)
+    cases.when(q.no_trip_undecided, Standing.UNDETERMINED, "no-trip-undecided")
+    return cases.settle(q.compared, limit)
+
+
+def _with_upstream(cases: Cases, q: Quantities) -> Array:
+    """Settle the points that a device upstream clears or might clear, and give the limit that each is held against.
+
+    The verdict rests on the circuit's own device; where it does not clear, either device interrupts the fault.
+    """
+    upstream, hopeless = q.upstream.verdict, q.overcurrent < Verdict.MARGINAL
+    cleared = (q.overcurrent != Verdict.PASS) & (upstream == Verdict.PASS)
+    doubtful = hopeless & (upstream == Verdict.MARGINAL)
+    cases.when(cleared, Standing.MET, "cleared-upstream")
+    cases.when(doubtful, Standing.UNDETERMINED, "upstream-inside-uncertainty")
+    return np.where(cleared | doubtful, q.upstream.limit, q.loop_limit)
 
 
 CHECK = Check(

@@ -11,7 +11,10 @@ from faultloop.protection.catalogue import catalogue
 
 REASONS = (
     *COMPARISON,
+    "over-current",
     "over-time",
+    "time-implausible",
+    "half-unclear",
     "sooner-than-selective",
     "trips-at-half",
     "trips-at-half-with-loads",
@@ -37,13 +40,20 @@ def _judge(points: Points, q: Quantities) -> Judged:
     worst, at = share.argmax(axis=0), np.arange(points.count)
     picked = Interval(q.given.least[_TESTS][worst, at], q.given.greatest[_TESTS][worst, at], value[worst, at])
     exact = bound == Bound.EXACT
-    half = points.bound[Reading.TIME_HALF]
-    tripped = (half == Bound.EXACT) | (half == Bound.BELOW)
+    half, half_ms = points.bound[Reading.TIME_HALF], points.value[Reading.TIME_HALF]
+    told = (half == Bound.EXACT) | (half == Bound.BELOW)
+    # A tester that shows the end of its range says that the device held; written as a time it may mean either.
+    tripped = told & (half_ms < 1000.0 * q.rule("greatest_time"))
+    unclear = told & ~tripped
+    wrong_unit = np.logical_or.reduce(exact & (value < 1000.0 * q.rule("least_time")), axis=0)
     loads = points.choice(Choice.LOADS_CONNECTED) == 1
     any_tested = np.logical_or.reduce(tested, axis=0)
     cases = Cases(REASONS)
     cases.when(any_tested & np.isinf(limit[0]), Standing.NOT_EXAMINED, "no-standard-times")
+    cases.when(q.residual.over_current, Standing.UNMET, "over-current", defect=True)
     cases.when(q.residual.over_limit, Standing.UNMET, "over-time", defect=True)
+    cases.when(wrong_unit, Standing.UNDETERMINED, "time-implausible")
+    cases.when(unclear, Standing.UNDETERMINED, "half-unclear")
     cases.when(tripped & loads, Standing.UNDETERMINED, "trips-at-half-with-loads")
     cases.when(tripped, Standing.UNMET, "trips-at-half")
     cases.when(~any_tested, Standing.NOT_EXAMINED, "not-tested")

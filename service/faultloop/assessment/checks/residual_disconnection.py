@@ -22,6 +22,7 @@ REASONS = (
     "no-standard-times",
     "device-over-time",
     "path-broken",
+    "path-beyond-its-length",
     "path-beyond-expectation",
     "operating-time-missing",
     "path-unexplained",
@@ -48,6 +49,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(np.isinf(multiple), Standing.UNDETERMINED, "no-standard-times")
     cases.when(q.residual.over_limit, Standing.UNMET, "device-over-time", defect=True)
     cases.when(~q.tt & (q.loops.loop.least > q.rule("tn_loop")), Standing.UNMET, "path-broken", defect=True)
+    cases.when(relied_on & q.loops.dead_beyond, Standing.UNMET, "path-beyond-its-length", defect=True)
     cases.when(relied_on & q.loops.beyond, Standing.UNMET, "path-beyond-expectation", defect=True)
     cases.when(~q.residual.tested, Standing.UNDETERMINED, "operating-time-missing")
     unexplained = relied_on & (q.overcurrent == Verdict.FAIL) & ~q.loops.explained

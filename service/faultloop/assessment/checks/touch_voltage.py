@@ -18,13 +18,12 @@ def _applies(points: Points, _: Quantities) -> Flags:
 
 def _judge(points: Points, q: Quantities) -> Judged:
     found = q.severity
-    body = q.touch_v / (found.body_ma / 1000.0)
     # The voltage at which the body current meets the current-time curve for the time that the fault lasts.
-    limit = 1.0 / severity_ratio(np.ones(points.count), body, found.time_s)
+    limit = 1.0 / severity_ratio(np.ones(points.count), found.body_ohm, found.time_s)
     cases = Cases(REASONS)
     prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)
-    cases.when(np.isnan(q.touch_v) | np.isnan(found.time_s), Standing.NOT_EXAMINED, "unknown")
-    return cases.settle(Interval(q.touch_v, q.touch_v, q.touch_v), limit)
+    cases.when(np.isnan(found.touch_v) | np.isnan(found.time_s), Standing.NOT_EXAMINED, "unknown")
+    return cases.settle(Interval(found.touch_v, found.touch_v, found.touch_v), limit)
 
 
 CHECK = Check(

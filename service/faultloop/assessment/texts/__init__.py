@@ -7,6 +7,9 @@ from pydantic import Field
 
 from faultloop.rules.strict import DataFileError, Sheet, Text, read_sheet, read_table
 
+# Languages that answers are given in; the first is given where none of them is asked for.
+LANGUAGES = ("en", "de")
+
 
 class Said(Sheet):
     """What is said of one reason."""
@@ -42,6 +45,7 @@ class Texts(Sheet):
     """Everything that is said in one language."""
 
     language: Text
+    unused: Text
     sentences: dict[str, str]
     phrases: dict[str, Text]
     shared: dict[str, Said]
