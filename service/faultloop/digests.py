@@ -46,8 +46,11 @@ def rounded_column(values: NDArray[np.float64]) -> list[float | None]:
     column: list[float | None] = near.tolist()
     if not finite.all():
         column = [value if known else None for value, known in zip(column, finite.tolist(), strict=True)]
-    for at in np.flatnonzero(~told & finite).tolist():
-        column[at] = rounded(float(values[at]))
+    known: dict[float, float | None] = {}  # limits such as 1.365625 repeat themselves
+    for at, value in ((at, float(values[at])) for at in np.flatnonzero(~told & finite).tolist()):
+        if value not in known:
+            known[value] = rounded(value)
+        column[at] = known[value]
     return column
 
 

@@ -46,16 +46,9 @@ def read_cell(text: str, column: str, decimal: Decimal = "point", header_unit: s
     file's own heading names where it is not the column's.
     """
     told = text.strip()
-    if told.lower() in MISSING:
-        return Cell()
-    if told.lower() in OVER_RANGE:
-        return Cell(
-            question="over range: above which value? write it as >1999; treat the point as having no earth until then",
-            over_range=True,
-        )
     match = _NUMBER.fullmatch(told)
     if match is None:
-        return Cell(question="what does this cell mean? a number, >number, <number or an empty cell is expected")
+        return _word(told.lower())
     sign, whole, mark, fraction, rest = match.groups()
     if asked := _mark(mark, whole, fraction, decimal):
         return Cell(question=asked)
@@ -66,6 +59,18 @@ def read_cell(text: str, column: str, decimal: Decimal = "point", header_unit: s
         return Cell(question=f"the heading's unit is not the column's ({unit}): write the number in {unit}")
     number = float(f"{whole}.{fraction}" if fraction else whole)
     return Cell(number, {">": "above", "<": "below", "": "exact"}[sign])
+
+
+def _word(told: str) -> Cell:
+    """What a cell says that begins with no number."""
+    if told in MISSING:
+        return Cell()
+    if told in OVER_RANGE:
+        return Cell(
+            question="over range: above which value? write it as >1999; treat the point as having no earth until then",
+            over_range=True,
+        )
+    return Cell(question="what does this cell mean? a number, >number, <number or an empty cell is expected")
 
 
 def _mark(mark: str | None, whole: str, fraction: str, decimal: Decimal) -> str | None:
