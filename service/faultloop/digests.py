@@ -44,8 +44,8 @@ def rounded_column(values: NDArray[np.float64]) -> list[float | None]:
         told = (values == 0.0) | (np.abs(shift) <= 22) & (np.abs(np.abs(scaled - whole) - 0.5) > 1e-6)
     finite = np.isfinite(values)
     column: list[float | None] = near.tolist()
-    if not finite.all():
-        column = [value if known else None for value, known in zip(column, finite.tolist(), strict=True)]
+    for at in np.flatnonzero(~finite).tolist():
+        column[at] = None
     known: dict[float, float | None] = {}  # limits such as 1.365625 repeat themselves
     for at, value in ((at, float(values[at])) for at in np.flatnonzero(~told & finite).tolist()):
         if value not in known:

@@ -51,9 +51,9 @@ def _column(outcome: Outcome, row: int) -> list[Finding | None]:
     if not examined.any() and (verdict == verdict[0]).all() and (found.reason[row] == found.reason[row][0]).all():
         return [(None, None, None, CHECKS[row].reasons[found.reason[row][0]])] * count
     value, limit = (rounded_column(np.where(examined, of[row], np.nan)) for of in (found.nominal, found.limit))
-    codes, reasons = verdict.tolist(), CHECKS[row].reasons
-    words = map(_VERDICTS.__getitem__, codes)
-    told = zip(words, value, limit, map(reasons.__getitem__, found.reason[row].tolist()), strict=True)
-    if int(verdict.max()) < Verdict.NOT_APPLICABLE:
-        return list(told)
-    return [finding if code != Verdict.NOT_APPLICABLE else None for finding, code in zip(told, codes, strict=True)]
+    words = map(_VERDICTS.__getitem__, verdict.tolist())
+    reasons = map(CHECKS[row].reasons.__getitem__, found.reason[row].tolist())
+    told: list[Finding | None] = list(zip(words, value, limit, reasons, strict=True))
+    for at in np.flatnonzero(verdict == Verdict.NOT_APPLICABLE).tolist():
+        told[at] = None
+    return told
