@@ -21,6 +21,9 @@ lint: $(READY)
 	$(BIN)/ruff check service tests fixtures
 	$(BIN)/mypy
 	$(BIN)/lint-imports --no-cache
+	$(BIN)/hadolint docker/Dockerfile
+	$(BIN)/compose-lint check --quiet --no-pager --fail-on medium --strict-config --config docker/compose-lint.yaml \
+		docker/compose.yaml
 
 unit: $(READY)
 	$(BIN)/python -m pytest
@@ -35,9 +38,12 @@ openapi: $(READY)
 	$(BIN)/faultloop openapi > openapi/openapi.json
 
 # Needs uv; the file names no registry.
+COMPILE := uv pip compile --universal --generate-hashes --no-header --no-annotate --no-emit-index-url --no-emit-find-links
+
 lock:
-	uv pip compile --universal --python-version 3.11 --generate-hashes --no-header --no-annotate --no-emit-index-url \
-		--no-emit-find-links --extra dev --extra build --output-file requirements.txt pyproject.toml
+	$(COMPILE) --python-version 3.11 --extra dev --extra build --output-file requirements.txt pyproject.toml
+	$(COMPILE) --python-version 3.11 --extra postgresql --constraint requirements.txt \
+		--output-file docker/requirements.txt pyproject.toml
 
 clean:
 	rm -rf $(VENV) .hypothesis

@@ -53,3 +53,12 @@ def test_the_batch_is_answered_as_shown() -> None:
 
 def test_request_is_answered_as_shown() -> None:
     _hold(_block("answer"), assess(_block("request")), "")
+
+
+def test_own_rules_are_resolved_and_judged_by_as_said() -> None:
+    own = _block("own rules")
+    readings = {**_block("request")["readings"], "insulation_resistance_megohm": 1.5}
+    for rules, verdict in ((own, "fail"), (own["extends"], "pass")):
+        answer = assess({**_block("request"), "readings": readings, "rules": rules})
+        finding = next(f for f in answer["findings"] if f["check"] == "insulation-resistance")
+        assert finding["verdict"] == verdict

@@ -6,17 +6,17 @@ from typing import Any
 
 import orjson
 
-from faultloop import __version__
 from faultloop.assessment.texts import LANGUAGES
 from faultloop.digests import json_bytes, sha256
-from faultloop.exchange.batch_answers import stored_row
+from faultloop.exchange.batch_answers import provenance, stored_row
 from faultloop.exchange.judging import Judged, judged, judged_alone, pinned
+from faultloop.exchange.patterns import Rows
 from faultloop.exchange.render import assess_requests, request_bytes
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.exchange.uploads import Upload, read_upload
 from faultloop.exchange.workshop import workshop
-from faultloop.protection.catalogue import catalogue
-from faultloop.rules.loader import resolve
+from faultloop.rules.loader import LoadedRules, from_content, resolve
+from faultloop.rules.strict import DataFileError
 
 MOST_DIFFERENCES = 100
 
@@ -36,15 +36,33 @@ def language_of(answer: bytes) -> str:
     return language
 
 
-def replay(request: bytes, answer: bytes, rules: str, input_digest: str) -> Replay:
+def asked_again(request: bytes, rules: str, content: bytes | None = None) -> AssessmentRequest | None:
+    """A stored request, pinned to the very set by which it was judged; None where that set is not held here.
+
+    A caller's own set is the content that was remembered with the assessment, whatever the request names.
+    """
+    try:
+        held = resolve(rules) if content is None else from_content(content)
+    except DataFileError:
+        return None
+    if held is None:
+        return None
+    body = json.loads(request)
+    asked = body.get("rules", AssessmentRequest.model_fields["rules"].default)
+    if isinstance(asked, dict):
+        body["rules"] = asked = rules
+    return AssessmentRequest.model_validate(body, context={asked: held})
+
+
+def replay(request: bytes, answer: bytes, rules: str, input_digest: str, content: bytes | None = None) -> Replay:
     """Compute a stored request again, under the very edition and in the language that were stored with it."""
-    if resolve(rules) is None:
+    point = asked_again(request, rules, content)
+    if point is None:
         return Replay(False, None, [{"pointer": "/provenance/rules", "stored": rules}])
     language = language_of(answer)
     if language not in LANGUAGES:
         return Replay(False, None, [{"pointer": "/provenance/language", "stored": language}])
-    body = {**json.loads(request), "rules": rules}
-    again = assess_requests([AssessmentRequest.model_validate(body)], [input_digest], [language])[0]
+    again = assess_requests([point], [input_digest], [language])[0]
     if json_bytes(again) == answer:
         return Replay(True, again, [])
     return Replay(
@@ -69,22 +87,17 @@ def _escaped(key: str) -> str:
     return key.replace("~", "~0").replace("/", "~1")
 
 
-def editions_of(stored: dict[str, Any]) -> dict[str, str]:
+def editions_of(stored: dict[str, Any]) -> dict[str, LoadedRules]:
     """The editions that the names of a batch's rule sets stood for when it was judged."""
-    return {told["asked"]: told["rules"] for told in stored["provenance"]["rules"]}
+    held = {told["asked"]: resolve(told["rules"]) for told in stored["provenance"]["rules"]}
+    return {asked: rules for asked, rules in held.items() if rules is not None}
 
 
-def changed_since(stored: dict[str, Any]) -> list[str]:
+def changed_since(stored: dict[str, Any], rows: Rows) -> list[str]:
     """What has changed since a batch was judged."""
-    told = stored["provenance"]
-    now = {rules["rules"]: resolve(rules["rules"]) for rules in told["rules"]}
-    digests = [rules is not None and rules.digest for rules in now.values()]
-    found = {
-        "engine": told["engine"] != __version__,
-        "rules": digests != [rules["rules_digest"] for rules in told["rules"]],
-        "devices": told["devices_digest"] != catalogue().digest,
-    }
-    return [name for name, differs in found.items() if differs]
+    told, now = stored["provenance"], provenance(Judged(rows, []), "", editions_of(stored))
+    named = {"engine": "engine", "rules": "rules", "devices": "devices_digest"}
+    return [name for name, key in named.items() if told[key] != now[key]]
 
 
 def batch_row(upload: Upload, answer: bytes, number: int) -> dict[str, Any] | None:
@@ -96,13 +109,12 @@ def batch_row(upload: Upload, answer: bytes, number: int) -> dict[str, Any] | No
     kept = next(row for part in ("results", "held", "refused") for row in stored[part] if row["row"] == number)
     body = {"row": number, "status": told.status, "raw": rows.raw(at), "stored": kept}
     now = Judged(rows, [None] * len(rows.pattern))
-    if told.request is not None and resolve(pinned(told, editions_of(stored)).rules) is not None:
+    if told.request is not None:
         request = pinned(told, editions_of(stored))
         body["assessment"] = assess_requests([request], [sha256(request_bytes(told.request))])[0]
         now.found[at] = judged_alone(request)
-    known = told.request is None or now.found[at] is not None
-    body["identical"] = known and json.loads(json_bytes(stored_row(now, at))) == kept
-    return {**body, "changed": changed_since(stored)}
+    body["identical"] = json.loads(json_bytes(stored_row(now, at))) == kept
+    return {**body, "changed": changed_since(stored, rows)}
 
 
 def batch_workshop(upload: Upload, answer: bytes, population: int | None) -> dict[str, Any]:
@@ -110,4 +122,4 @@ def batch_workshop(upload: Upload, answer: bytes, population: int | None) -> dic
     read, stored = read_upload(upload), json.loads(answer)
     editions = editions_of(stored)
     view = workshop(read, judged(read.rows, editions), editions, population)
-    return view | {"provenance": stored["provenance"], "changed": changed_since(stored)}
+    return view | {"provenance": stored["provenance"], "changed": changed_since(stored, read.rows)}

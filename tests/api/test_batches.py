@@ -15,6 +15,7 @@ from fastapi import FastAPI
 from sqlalchemy import Engine, update
 
 from faultloop import assess
+from faultloop.exchange.examples import EXAMPLE_RULES
 from faultloop.records.tables import BATCH
 from tests.api.client import problem, served
 from tests.assessment import workshop
@@ -221,6 +222,21 @@ def test_defaults_stand_for_what_a_row_leaves_out(url: str) -> None:
         assert made.json()["reading"]["defaults"] == {"earthing": "TN-S", "rules": "iec-60364"}
         assert made.json()["provenance"]["rules"][0]["asked"] == "iec-60364"
         assert made.json()["results"][0]["verdict"] == "pass"
+
+    served(url, work)
+
+
+def test_rows_under_rules_of_the_callers_own(url: str) -> None:
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        own = {**POINT, "rules": EXAMPLE_RULES}
+        made = await client.post("/v1/batches", json={"rows": [POINT, own, {**POINT, "rules": "nowhere-rules:2026"}]})
+        body = made.json()
+        assert body["counts"] == {"rows": 3, "results": 2, "held": 0, "refused": 1}
+        assert [told["asked"] for told in body["provenance"]["rules"]] == ["bs-7671", "site-rules:2026"]
+        row = (await client.get(f"{made.headers['Location']}/rows/2")).json()
+        assert (row["identical"], row["changed"]) == (True, [])
+        assert row["assessment"]["findings"] == assess(own)["findings"]
+        assert row["assessment"]["provenance"]["rules"] == "site-rules:2026"
 
     served(url, work)
 

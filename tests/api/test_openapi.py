@@ -146,3 +146,14 @@ def test_rows_and_views_are_of_the_documented_form(tmp_path: Path) -> None:
             Draft202012Validator(schema).validate((await client.get(url)).json())
 
     served(migrated(tmp_path), work)
+
+
+@pytest.mark.parametrize(("path", "method"), [("/validate", "post"), ("/{rules}", "put")])
+def test_example_of_own_rules_can_be_judged_by(path: str, method: str) -> None:
+    operation = DOCUMENT["paths"][f"/v1/rule-sets{path}"][method]
+    rules = operation["requestBody"]["content"]["application/json"]["examples"]["site"]["value"]
+    schema = {"$ref": "#/components/schemas/OwnRuleSet", "components": DOCUMENT["components"]}
+    Draft202012Validator(schema).validate(rules)
+    bench = DOCUMENT["paths"]["/v1/assessments/preview"]["post"]["requestBody"]["content"]["application/json"]
+    answer = assess({**bench["examples"]["bench"]["value"], "rules": rules})
+    assert answer["provenance"]["rules"] == f"{rules['id']}:{rules['edition']}"

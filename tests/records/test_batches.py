@@ -103,7 +103,7 @@ def test_a_database_that_does_not_answer_stores_nothing(engine: Engine) -> None:
 
 
 def test_assessments_survive_the_coming_of_batches(engine: Engine) -> None:
-    command.downgrade(configuration(engine), "0001")
+    command.downgrade(configuration(engine), "0002")
     assert state(engine) == "behind"
     assert "batch" not in inspect(engine).get_table_names()
     store, made = Store(engine), record()
@@ -117,5 +117,5 @@ def test_assessments_survive_the_coming_of_batches(engine: Engine) -> None:
     keep_batch(engine, kept)
     migrate(engine)
     assert find_batch(engine, kept.id) is not None
-    command.downgrade(configuration(engine), "0001")
+    command.downgrade(configuration(engine), "0002")
     assert find(engine, made.id) is not None

@@ -9,6 +9,7 @@ from alembic.migration import MigrationContext
 from alembic.script import ScriptDirectory
 from sqlalchemy import Engine, inspect, text
 
+from faultloop.records import rule_sets
 from faultloop.records.database import open_engine
 from faultloop.records.errors import DatabaseRefused
 from faultloop.records.migrate import configuration, migrate, state
@@ -45,6 +46,38 @@ def test_rows_survive_a_second_migration(engine: Engine) -> None:
     found = find(engine, made.id)
     assert found is not None
     assert found.record == made
+
+
+def test_rows_of_the_first_revision_survive_the_second(engine: Engine) -> None:
+    command.downgrade(configuration(engine), "0001")
+    assert state(engine) == "behind"
+    made = record()
+    store = Store(engine)
+    store.add([made])
+    store.close()
+    migrate(engine)
+    assert state(engine) == "current"
+    found = find(engine, made.id)
+    assert found is not None
+    assert found.record == made
+    assert rule_sets.content_of(engine, made.rules_digest) is None
+
+
+def test_rule_sets_are_kept_by_digest_and_named_once(engine: Engine) -> None:
+    first, second = ("a" * 64, "own:2026", b"{1}"), ("b" * 64, "own:2026", b"{2}")
+    rule_sets.remember(engine, *first)
+    rule_sets.remember(engine, *first)
+    assert rule_sets.content_named(engine, "own:2026") is None
+    assert rule_sets.store(engine, *second) == ("b" * 64, True)
+    assert rule_sets.store(engine, *second) == ("b" * 64, False)
+    assert rule_sets.store(engine, *first) == ("b" * 64, False)
+    migrate(engine)
+    assert rule_sets.content_named(engine, "own:2026") == b"{2}"
+    assert rule_sets.content_of(engine, "a" * 64) == b"{1}"
+    assert rule_sets.contents(engine, size=5) == [b"{2}"]
+    command.downgrade(configuration(engine), "0001")
+    migrate(engine)
+    assert rule_sets.contents(engine, size=5) == []
 
 
 def test_two_starters_at_once(database_url: str) -> None:

@@ -9,13 +9,14 @@ from faultloop import assess
 from faultloop.assessment.limits import loop_limit
 from faultloop.assessment.points import Choice, Current, Earthing, Feeds, Number, Role, from_rows
 from faultloop.assessment.points import Row as PointRow
-from faultloop.assessment.rule_table import required_time, rule_table
+from faultloop.assessment.rule_table import required_time
+from faultloop.assessment.tables import tables
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.protection.catalogue import catalogue, residual_multiple
 from faultloop.protection.designations import Breaker, Characteristic, Delay, parse_overcurrent
 from faultloop.protection.moulded_case import Settings, moulded_case_band
 from faultloop.rules.loader import shipped
-from tests.reference.published import EDITIONS, Comparison, Row, compared, oracles, rules_for, seconds
+from tests.reference.published import EDITIONS, TABLE_41_1, Comparison, Row, compared, oracles, rules_for, seconds
 
 DELAYS = get_args(Delay)
 # Rule set under which the currents printed beside the curves of a family hold.
@@ -227,12 +228,12 @@ def time_required(rules: str, earthing: int, current: int, voltage_v: float, **p
     """Required disconnection time of a circuit under a rule set."""
     row = PointRow()
     row.numbers[Number.VOLTAGE], row.numbers[Number.RATED_CURRENT] = voltage_v, point.get("rated_current_a", 16.0)
-    row.choices[Choice.RULES] = rule_table().row(rules)
+    row.choices[Choice.RULES] = tables().rules_row(shipped()[rules])
     row.choices[Choice.EARTHING], row.choices[Choice.CURRENT] = earthing, current
     row.choices[Choice.ROLE] = int(point.get("role", Role.FINAL))
     row.choices[Choice.FEEDS] = int(point.get("feeds", Feeds.SOCKET_OUTLETS))
     points = from_rows([row])
-    return float(required_time(points, rule_table().of(points))[0])
+    return float(required_time(points, tables().rules.of(points))[0])
 
 
 SYSTEMS = {"TN": Earthing.TN_S, "TT": Earthing.TT}
@@ -243,7 +244,7 @@ def sets_of(row: Row) -> list[str]:
     """Rule sets that take a row of the table: all for alternating current, for direct current by edition."""
     if row["edition"].startswith("2018-10"):
         return ["iec-60364:2017"]
-    return sorted(shipped()) if row["current"] == "ac" else ["bs-7671:2008", "bs-7671:2011"]
+    return TABLE_41_1 if row["current"] == "ac" else ["bs-7671:2008", "bs-7671:2011"]
 
 
 def disconnection_times() -> Iterator[Comparison]:

@@ -48,3 +48,12 @@ def test_a_decade_is_a_sixth_of_six() -> None:
     axis = Axis(-2, 4, 80, 600, ampere, 50)
     assert [axis.at(10.0**n) for n in range(-2, 5)] == [80, 180, 280, 380, 480, 580, 680]
     assert axis.at(2) == pytest.approx(280 + 100 * math.log10(2), abs=0.01)
+
+
+@given(st.lists(st.floats(0.0), max_size=5))
+def test_no_value_whatever_breaks_an_axis(values: list[float]) -> None:
+    low, high = decades(values)
+    axis = Axis(low, high, 0.0, 600.0, ampere, 40.0)
+    assert list(axis.lines())
+    assert list(axis.ticks())
+    assert all(0.0 <= axis.at(value) <= 600.0 for value in values)

@@ -18,7 +18,7 @@ from faultloop.assessment.verdicts import decide
 from faultloop.exchange.mapping import mapped
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.protection.designations import parse_device
-from faultloop.rules.loader import resolve
+from faultloop.rules.loader import resolve, shipped
 
 TEXTS = texts("en")
 POLICIES = sorted(TemperaturePolicy.codes())
@@ -177,7 +177,9 @@ def test_conditions_are_those_that_checks_can_set() -> None:
 def test_cautions_exist_and_none_is_orphaned() -> None:
     named = {name for said in all_said() for name in said.cautions}
     assert named <= set(TEXTS.cautions)
-    rest = {name for name, caution in TEXTS.cautions.items() if not caution.always} - named
+    by_sets = {name for loaded in shipped().values() for name in loaded.rules.cautions}
+    assert by_sets <= set(TEXTS.cautions)
+    rest = {name for name, caution in TEXTS.cautions.items() if not caution.always} - named - by_sets
     assert [name for name in sorted(rest) if not is_called(name)] == []
 
 

@@ -10,6 +10,7 @@ from starlette.types import ASGIApp, Message, Receive, Scope, Send
 from faultloop import __version__
 from faultloop.api import assessments, batches, devices, openapi, problems, rule_sets, service
 from faultloop.api.gather import Gather
+from faultloop.api.own_rules import OwnRuleSets
 from faultloop.api.worker import Worker
 from faultloop.exchange.resources import Problem
 from faultloop.protection.catalogue import catalogue
@@ -44,6 +45,7 @@ def create_app(settings: Settings) -> FastAPI:
         catalogue()
         app.state.engine = open_engine(settings.database_url)
         app.state.gather = Gather()
+        app.state.own_rules = OwnRuleSets(app.state.engine)
         app.state.max_body_bytes = settings.max_body_bytes
         app.state.max_batch_bytes = settings.max_batch_bytes
         app.state.worker = Worker(settings.batches_waiting)

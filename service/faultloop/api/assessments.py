@@ -22,10 +22,10 @@ from faultloop.exchange.render import request_bytes
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.exchange.resources import AssessmentList, DrawingQuery, ListQuery, ReplayBody
 from faultloop.records.queries import find, page
+from faultloop.records.rule_sets import content_of
 from faultloop.records.tables import Record, Stored
-from faultloop.replay import language_of, replay
+from faultloop.replay import asked_again, language_of, replay
 from faultloop.reports.curves import Judged, assessment_drawing
-from faultloop.rules.loader import resolve
 
 router = APIRouter(prefix="/v1/assessments", tags=["assessments"])
 # Judging is the hot path: these functions read their requests themselves.
@@ -90,6 +90,7 @@ async def put_assessment(request: Request) -> Response:
     The answer is stored in the language asked for and stays in it, whatever language is asked for later.
     """
     judged = await _judged(request)
+    await request.app.state.own_rules.remember(judged.body.rule_set)
     stored, created = await request.app.state.writer.put(_record(request.path_params["id"], judged))
     if stored.record.input_digest != judged.input_digest:
         raise Refused("precondition-failed" if "if-none-match" in request.headers else "conflict")
@@ -157,15 +158,15 @@ def get_assessment_curve(
     if query.format is None:
         media_type(request, (SVG,))
     stored = _found(request, id).record
-    rules = resolve(stored.rules)
-    if rules is None:
+    content = content_of(request.app.state.engine, stored.rules_digest)
+    point, answer = asked_again(stored.request, stored.rules, content), json.loads(stored.answer)
+    if point is None:
         raise Refused("not-found", "The rule set by which this was judged is not held here, so nothing can be drawn.")
-    point, answer = AssessmentRequest.model_validate_json(stored.request), json.loads(stored.answer)
     device = None if point.overcurrent_device is None else overcurrent_device(point.overcurrent_device)
     told = language_of(stored.answer)
     # Bytes stay what they are; a drawing is made today, so it needs words that are held today.
     spoken = told if told in LANGUAGES else LANGUAGES[0]
-    judged = Judged(stored.id, point.point.label, device, residual_device(point), rules, answer, spoken)
+    judged = Judged(stored.id, point.point.label, device, residual_device(point), point.rule_set, answer, spoken)
     headers = {"Vary": "Accept", "Cache-Control": "no-store", "Content-Language": spoken}
     return drawing(request, assessment_drawing(judged), headers)
 
@@ -213,7 +214,8 @@ def _position(cursor: str | None, filters: dict[str, Any]) -> int | None:
 def replay_assessment(id: UUID, request: Request) -> Response:  # noqa: A002
     """Compute the stored input again under the stored edition, and say whether the bytes are the same."""
     stored = _found(request, id).record
-    again = replay(stored.request, stored.answer, stored.rules, stored.input_digest)
+    content = content_of(request.app.state.engine, stored.rules_digest)
+    again = replay(stored.request, stored.answer, stored.rules, stored.input_digest, content)
     body: dict[str, Any] = {
         "id": stored.id,
         "identical": again.identical,

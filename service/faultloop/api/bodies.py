@@ -1,4 +1,4 @@
-"""Reading a measured point from a request body, strictly and in one pass.
+"""Reading a measured point, or a set of rules, from a request body, strictly and in one pass.
 
 The body is validated from its bytes: JSON's own types stay strict, and a busy service spares a second walk.
 """
@@ -10,10 +10,13 @@ from typing import Any
 from fastapi import Request, Response
 from fastapi.exceptions import RequestValidationError
 from fastapi.routing import APIRoute
-from pydantic import ValidationError
+from pydantic import TypeAdapter, ValidationError
 
 from faultloop.api.problems import Refused
-from faultloop.exchange.requests import AssessmentRequest
+from faultloop.digests import canonical_bytes
+from faultloop.exchange.own_rules import LONGEST_SET, OwnRules, own_rules
+from faultloop.exchange.requests import UNKNOWN_RULES, AssessmentRequest
+from faultloop.rules.loader import LoadedRules, shipped
 
 
 class DirectRoute(APIRoute):
@@ -33,17 +36,58 @@ POINT_BODY: dict[str, Any] = {
 }
 
 
+OWN_RULES_BODY: dict[str, Any] = {
+    "requestBody": {
+        "required": True,
+        "content": {"application/json": {"schema": {"$ref": "#/components/schemas/OwnRuleSet"}}},
+    }
+}
+_OWN_RULES: TypeAdapter[Any] = TypeAdapter(OwnRules)
+
+
 async def read_point(request: Request) -> tuple[AssessmentRequest, bytes]:
     """Give the validated point and the bytes that it came in."""
+    raw, own = await _json(request, request.app.state.max_body_bytes), request.app.state.own_rules
+    try:
+        return AssessmentRequest.model_validate_json(raw, context=own.by_name), raw
+    except ValidationError as error:
+        name = _unknown_rules(error)
+        if name is None or await own.find(name) is None:
+            raise _refused(error, raw) from None
+    try:
+        return AssessmentRequest.model_validate_json(raw, context=own.by_name), raw
+    except ValidationError as error:
+        raise _refused(error, raw) from None
+
+
+def _unknown_rules(error: ValidationError) -> str | None:
+    """Name of the rule set that is not published: callers' stored sets are looked up by id:edition."""
+    names = [fault["input"] for fault in error.errors(include_url=False) if fault["type"] == UNKNOWN_RULES]
+    return next(iter(names), None)
+
+
+async def read_rule_set(request: Request) -> tuple[LoadedRules, LoadedRules | None]:
+    """Give a caller's own set, resolved and held to the contract, and the set that it extends."""
+    raw = await _json(request, LONGEST_SET)
+    try:
+        said = _OWN_RULES.validate_json(raw)
+        refuse_duplicates(raw, canonical_bytes(said.model_dump(mode="json", exclude_unset=True)))
+        return own_rules(said), shipped().get(said.extends or "")
+    except ValidationError as error:
+        raise _refused(error, raw) from None
+
+
+async def _json(request: Request, most: int) -> bytes:
+    """The bytes of a JSON body."""
     kind = request.headers.get("content-type", "").split(";", 1)[0].strip().lower()
     if kind != "application/json":
         raise Refused("unsupported-media-type")
-    raw = await limited_body(request, request.app.state.max_body_bytes)
-    try:
-        return AssessmentRequest.model_validate_json(raw), raw
-    except ValidationError as error:
-        faults = [{**fault, "loc": ("body", *fault["loc"])} for fault in error.errors(include_url=False)]
-        raise RequestValidationError(faults, body=_parsed(raw)) from None
+    return await limited_body(request, most)
+
+
+def _refused(error: ValidationError, raw: bytes) -> RequestValidationError:
+    faults = [{**fault, "loc": ("body", *fault["loc"])} for fault in error.errors(include_url=False)]
+    return RequestValidationError(faults, body=_parsed(raw))
 
 
 async def limited_body(request: Request, most: int) -> bytes:

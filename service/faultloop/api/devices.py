@@ -8,6 +8,7 @@ from faultloop import __version__
 from faultloop.api.negotiation import ASKED_LANGUAGE, SVG, drawing, language, media_type, tagged
 from faultloop.api.problems import Refused
 from faultloop.assessment.limits import loop_limit
+from faultloop.assessment.texts import texts
 from faultloop.digests import json_bytes, rounded
 from faultloop.exchange.resources import Curve, CurveQuery, Designation, DeviceList, LimitBody, LimitQuery
 from faultloop.protection.catalogue import catalogue, device_standard, guaranteed, listed_devices
@@ -127,6 +128,8 @@ async def get_limit(query: Annotated[LimitQuery, Query()], request: Request) -> 
     if limit.greatest_loop_impedance_ohm is not None and limit.least_operating_current_a is not None:
         body["greatest_loop_impedance_ohm"] = rounded(limit.greatest_loop_impedance_ohm)
         body["least_operating_current_a"] = rounded(limit.least_operating_current_a)
+    told = texts(spoken).cautions
+    body["cautions"] = [{"caution": name, "text": told[name].text} for name in rules.rules.cautions]
     body |= {"explanation": limit.explanation, "clause": limit.clause, "provenance": _provenance(rules)}
     headers = {"Content-Language": spoken, "Vary": "Accept-Language"}
     return Response(json_bytes(body), media_type=JSON, headers=headers)

@@ -10,7 +10,7 @@ from faultloop.api.problems import KINDS, MEDIA_TYPE
 from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer, answer_csv
 from faultloop.exchange.batches import BatchQuery, BatchRequest
-from faultloop.exchange.examples import EXAMPLE_BATCH, EXAMPLE_FILE, EXAMPLE_REQUEST
+from faultloop.exchange.examples import EXAMPLE_BATCH, EXAMPLE_FILE, EXAMPLE_REQUEST, EXAMPLE_RULES
 from faultloop.exchange.judging import judged
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
@@ -84,6 +84,9 @@ def _put_examples(schema: dict[str, Any]) -> None:
         body["examples"] = {"bench": {"summary": "A bench outlet", "value": EXAMPLE_REQUEST}}
         content = operation["responses"][status]["content"]["application/json"]
         content["examples"] = {"bench": {"summary": "A bench outlet", "value": answer}}
+    for path, method in (("/validate", "post"), ("/{rules}", "put")):
+        body = schema["paths"][f"/v1/rule-sets{path}"][method]["requestBody"]["content"]["application/json"]
+        body["examples"] = {"site": {"summary": "An owner's policy", "value": EXAMPLE_RULES}}
 
 
 def _put_batch_examples(schema: dict[str, Any]) -> None:

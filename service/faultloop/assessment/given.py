@@ -5,7 +5,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.points import READINGS, Bound, Choice, Earthing, Flags, MeansOfEarthing, Points, Reading
-from faultloop.assessment.rule_table import RuleValues, rule_table
+from faultloop.assessment.rule_table import RuleValues
+from faultloop.assessment.tables import Tables
 from faultloop.electrical.measurement import Array, Interval, expanded_uncertainty
 
 
@@ -14,6 +15,7 @@ class Given:
     """Readings (R, n) with their intervals, and the rule set's values."""
 
     points: Points
+    tables: Tables
     rule: RuleValues
     uncertainty: Array
     known: Flags
@@ -27,9 +29,9 @@ class Given:
         return Interval(self.least[which], self.greatest[which], self.points.value[which])
 
 
-def given(points: Points) -> Given:
+def given(points: Points, tables: Tables) -> Given:
     """Turn readings into intervals: the stated instrument's uncertainty, else the rule set's default."""
-    rule = rule_table().of(points)
+    rule = tables.rules.of(points)
     rows, rules = np.arange(READINGS)[:, None], points.choice(Choice.RULES)[None, :]
     table = rule.table
     percent = np.where(np.isnan(points.percent), table.percent[rules, rows, points.method], points.percent)
@@ -40,6 +42,7 @@ def given(points: Points) -> Given:
     tt = points.choice(Choice.EARTHING) == Earthing.TT
     return Given(
         points=points,
+        tables=tables,
         rule=rule,
         uncertainty=u,
         known=points.bound != Bound.MISSING,

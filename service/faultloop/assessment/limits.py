@@ -6,7 +6,8 @@ import numpy as np
 
 from faultloop.assessment.texts import Texts, texts
 from faultloop.electrical.fault_current import prospective_current
-from faultloop.protection.catalogue import catalogue, residual_multiple
+from faultloop.protection.band import compile_bands
+from faultloop.protection.catalogue import device_band, residual_multiple
 from faultloop.protection.designations import OvercurrentDevice, ResidualDevice
 from faultloop.rules.sheets import RuleSet
 
@@ -32,8 +33,8 @@ def loop_limit(
     """Limit by the band's inverse at a time; a residual device is also held to its touch-voltage limit."""
     if isinstance(device, ResidualDevice):
         return _residual_limit(device, rules, time_s, voltage_v, texts(language))
-    row = np.array([catalogue().rows[rules.key, device]])
-    current = float(catalogue().overcurrent.operating_current(row, np.array([time_s]))[0])
+    band = compile_bands([device_band(device, rules)])
+    current = float(band.operating_current(np.array([0]), np.array([time_s]))[0])
     values = {
         "device": device.designation,
         "required": time_s,

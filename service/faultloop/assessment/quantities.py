@@ -26,6 +26,7 @@ from faultloop.assessment.rule_table import required_time
 from faultloop.assessment.series import Upstream, greatest_time, least_time, quickest_upstream
 from faultloop.assessment.severity import Severity, severity
 from faultloop.assessment.standing import Verdict, compare
+from faultloop.assessment.tables import Tables
 from faultloop.electrical.body import touch_voltage
 from faultloop.electrical.conductors import temperature_factor
 from faultloop.electrical.fault_current import heated_loop, prospective_current
@@ -83,9 +84,9 @@ class Quantities:
         return self.given.rule[name]
 
 
-def shared(points: Points) -> Quantities:
+def shared(points: Points, tables: Tables) -> Quantities:
     """Compute the shared quantities of n points."""
-    g = given(points)
+    g = given(points, tables)
     rule, voltage, device = g.rule, points.number(Number.VOLTAGE), points.choice(Choice.DEVICE)
     found, required = loops(g), required_time(points, rule)
     factor = temperature_factor(points.number(Number.SERVICE_C), points.number(Number.TEST_C), rule["alpha"])

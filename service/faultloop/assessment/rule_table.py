@@ -1,7 +1,7 @@
 """Rule sets compiled to arrays, so that a rule set is picked by its row."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 
 import numpy as np
 
@@ -19,7 +19,6 @@ from faultloop.assessment.points import (
     Role,
 )
 from faultloop.electrical.measurement import Array
-from faultloop.rules.loader import shipped
 from faultloop.rules.sheets import RuleSet
 
 TIME_READINGS = (Reading.TIME_HALF, Reading.TIME_1, Reading.TIME_2, Reading.TIME_5)
@@ -27,9 +26,8 @@ TIME_READINGS = (Reading.TIME_HALF, Reading.TIME_1, Reading.TIME_2, Reading.TIME
 
 @dataclass(frozen=True, slots=True)
 class RuleTable:
-    """One array a value, indexed by rule set; the edition of each row is in `keys`."""
+    """One array a value, indexed by rule set."""
 
-    keys: tuple[str, ...]
     names: dict[str, int]
     values: Array
     band_above: Array
@@ -43,10 +41,6 @@ class RuleTable:
     def of(self, points: Points) -> "RuleValues":
         """Every value of each point's rule set."""
         return RuleValues(self, self.values[:, points.choice(Choice.RULES)])
-
-    def row(self, key: str) -> int:
-        """Row of a rule set by `id:edition`."""
-        return self.keys.index(key)
 
 
 @dataclass(frozen=True, slots=True)
@@ -151,17 +145,14 @@ def _padded(lists: list[list[float]]) -> Array:
     return np.array([[*values, *[np.nan] * (width - len(values))] for values in lists])
 
 
-@lru_cache(maxsize=1)
-def rule_table() -> RuleTable:
-    """Compile the shipped rule sets."""
-    sets = {key: loaded.rules for key, loaded in shipped().items()}
-    values = [_values(rules) for rules in sets.values()]
-    bands = [_bands(rules) for rules in sets.values()]
-    instruments = [_instruments(rules) for rules in sets.values()]
+def compile_rules(sets: Sequence[RuleSet]) -> RuleTable:
+    """Lay rule sets out as arrays, row by row."""
+    values = [_values(rules) for rules in sets]
+    bands = [_bands(rules) for rules in sets]
+    instruments = [_instruments(rules) for rules in sets]
     marks = ("designated-equipment", "instructed", "skilled")
-    exempt = [sum(1 << at for at, m in enumerate(marks) if m in r.additional_protection.exempt) for r in sets.values()]
+    exempt = [sum(1 << at for at, m in enumerate(marks) if m in r.additional_protection.exempt) for r in sets]
     return RuleTable(
-        keys=tuple(sets),
         names={name: at for at, name in enumerate(values[0])},
         values=np.array([list(v.values()) for v in values]).T,
         band_above=np.array([b[0] for b in bands]),
@@ -169,7 +160,7 @@ def rule_table() -> RuleTable:
         band_time=np.array([b[2] for b in bands]),
         percent=np.array([p for p, _ in instruments]),
         constant=np.array([c for _, c in instruments]),
-        nominal=_padded([r.nominal_voltage_to_earth.values for r in sets.values()]),
+        nominal=_padded([r.nominal_voltage_to_earth.values for r in sets]),
         exempt=np.array(exempt, dtype=np.int64),
     )
 

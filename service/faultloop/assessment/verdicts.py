@@ -9,6 +9,7 @@ from faultloop.assessment.judged import Condition, Judged, Settled, Standing, Ve
 from faultloop.assessment.points import Choice, Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities, shared
 from faultloop.assessment.standing import STANDING_VERDICT
+from faultloop.assessment.tables import Tables, tables
 from faultloop.assessment.urgency import urgency
 from faultloop.electrical.measurement import Array, Interval
 
@@ -54,10 +55,13 @@ class Outcome:
     conditions: Ints
 
 
-def decide(points: Points) -> Outcome:
-    """Judge n points by every check and draw the verdicts; the one path for one point and for a million."""
+def decide(points: Points, by: Tables | None = None) -> Outcome:
+    """Judge n points by every check and draw the verdicts; the one path for one point and for a million.
+
+    The points' rows are those of the tables; without any they are the shipped ones.
+    """
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        quantities = shared(points)
+        quantities = shared(points, by or tables())
         judged = [check.judge(points, quantities) for check in CHECKS]
         applies = [check.applies(points, quantities) for check in CHECKS]
         return _outcome(points, quantities, judged, applies)

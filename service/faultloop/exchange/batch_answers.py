@@ -12,6 +12,7 @@ from faultloop.exchange.judging import Judged
 from faultloop.exchange.patterns import Rows
 from faultloop.exchange.rows import Told
 from faultloop.protection.catalogue import catalogue
+from faultloop.rules.loader import LoadedRules
 
 Body = dict[str, Any]
 _NOTHING = ("", "", "", "")
@@ -36,13 +37,13 @@ def answer(judged: Judged, id: str, reading: Body, input_digest: str) -> Body:  
     }
 
 
-def provenance(judged: Judged, input_digest: str) -> Body:
+def provenance(judged: Judged, input_digest: str, editions: Mapping[str, LoadedRules] | None = None) -> Body:
     """By what a batch was decided."""
     return {
         "engine": __version__,
         "rules": [
             {"asked": asked, "rules": rules.rules.key, "rules_digest": rules.digest}
-            for asked, rules in judged.rules_asked().items()
+            for asked, rules in judged.rules_asked(editions or {}).items()
         ],
         "devices_digest": catalogue().digest,
         "input_digest": input_digest,

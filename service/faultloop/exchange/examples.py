@@ -1,4 +1,4 @@
-"""Invented measured points, used in the document of the interface and answered by the engine."""
+"""Invented measured points and an invented policy, used in the document of the interface and held by tests."""
 
 from typing import Any
 
@@ -30,4 +30,18 @@ EXAMPLE_BATCH: dict[str, Any] = {
         {"point": {"id": "B1", "label": "Bench 1"}, "readings": EXAMPLE_REQUEST["readings"]},
         {"point": {"id": "B2", "label": "Bench 2"}, "readings": {"earth_fault_loop_impedance_ohm": "OL"}},
     ],
+}
+EXAMPLE_RULES: dict[str, Any] = {
+    "id": "site-rules",
+    "edition": "2026",
+    "title": "Site rules",
+    "extends": "bs-7671:2018",
+    "insulation": {
+        "value": 2,
+        "unit": "Mohm",
+        "clause": "4.2",
+        "source": "site policy of the safety officer",
+        "sourcing": "assumption",
+        "checked": "2026-11-30",
+    },
 }

@@ -6,6 +6,7 @@ from functools import lru_cache
 from typing import Any
 
 from faultloop.exchange import fields, requests
+from faultloop.rules import sheets, strict
 
 _WORDS = {
     "missing": "this field is required",
@@ -25,8 +26,8 @@ _WORDS = {
 
 @lru_cache(maxsize=1)
 def _known_fields() -> list[str]:
-    models = [m for module in (requests, fields) for m in vars(module).values()]
-    closed = [m for m in models if isinstance(m, type) and issubclass(m, fields.Closed)]
+    models = [m for module in (requests, fields, sheets) for m in vars(module).values()]
+    closed = [m for m in models if isinstance(m, type) and issubclass(m, fields.Closed | strict.Sheet)]
     return sorted({name for model in closed for name in model.model_fields})
 
 

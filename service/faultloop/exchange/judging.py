@@ -9,11 +9,11 @@ import numpy as np
 from faultloop.assessment.points import Bound, Points, from_rows
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.compact import Compact, compact
-from faultloop.exchange.mapping import mapped
+from faultloop.exchange.mapping import mapped, tables_of
 from faultloop.exchange.patterns import NUMBER_OF, READING_OF, Rows
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.exchange.rows import Told
-from faultloop.rules.loader import LoadedRules, resolve
+from faultloop.rules.loader import LoadedRules
 
 # Points decided at once: a few thousand keep the columns in the processor's cache and the memory small.
 CHUNK = 4096
@@ -48,10 +48,11 @@ class Judged:
         found = self.found[at]
         return self.rows.of(at).urgency if found is None else found.urgency
 
-    def rules_asked(self) -> dict[str, LoadedRules]:
-        """Rule sets by the name under which rows asked for them."""
-        asked = {told.request.rules for told in self.rows.told if told.request is not None}
-        return {name: rules for name in sorted(asked) if (rules := resolve(name)) is not None}
+    def rules_asked(self, editions: Mapping[str, LoadedRules]) -> dict[str, LoadedRules]:
+        """Rule sets by the name under which rows asked for them; a caller's own set by its own name."""
+        requests = [pinned(told, editions) for told in self.rows.told if told.request is not None]
+        asked = {(r.rules if isinstance(r.rules, str) else r.rule_set.rules.key): r.rule_set for r in requests}
+        return dict(sorted(asked.items()))
 
     def repeated(self) -> list[list[int]]:
         """Positions of rows that name the same point, the least favourable first: it governs."""
@@ -67,23 +68,23 @@ class Judged:
         return _RANK[self.urgency(at)], worst.index(self.verdict(at))
 
 
-def pinned(told: Told, editions: Mapping[str, str]) -> AssessmentRequest:
-    """The request of a row under the edition that its rule set stood for when it was judged."""
+def pinned(told: Told, editions: Mapping[str, LoadedRules]) -> AssessmentRequest:
+    """The request of a row under the edition that its rule set's name stood for when it was judged."""
     assert told.request is not None
-    edition = editions.get(told.request.rules, told.request.rules)
-    request = told.request.model_copy(update={"rules": edition})
-    if "rules" not in told.request.model_fields_set:
-        request.model_fields_set.discard("rules")  # it is still the service that chose the rule set
-    return request
+    asked = told.request.rules
+    edition = editions.get(asked) if isinstance(asked, str) else None
+    return told.request if edition is None else told.request.under(edition)
 
 
-def judged(rows: Rows, editions: Mapping[str, str] | None = None) -> Judged:
+def judged(rows: Rows, editions: Mapping[str, LoadedRules] | None = None) -> Judged:
     """Judge every row that can be judged; the path is that of a single point."""
     found: list[Compact | None] = [None] * len(rows.pattern)
     ready = [at for at, told in enumerate(rows.told) if told.request is not None]
     if not ready:
         return Judged(rows, found)
-    shared = from_rows([mapped(pinned(rows.told[at], editions or {})).row for at in ready])
+    requests = [pinned(rows.told[at], editions or {}) for at in ready]
+    by = tables_of(requests)
+    shared = from_rows([mapped(request, by).row for request in requests])
     place = np.full(len(rows.told), -1)
     place[ready] = np.arange(len(ready))
     pattern = place[np.array(rows.pattern)]
@@ -92,7 +93,7 @@ def judged(rows: Rows, editions: Mapping[str, str] | None = None) -> Judged:
     for begin in range(0, len(at_row), CHUNK):
         chunk = at_row[begin : begin + CHUNK]
         points = _filled(shared.picked(pattern[chunk]), {name: column[chunk] for name, column in columns.items()})
-        for at, told in zip(chunk.tolist(), compact(decide(points)), strict=True):
+        for at, told in zip(chunk.tolist(), compact(decide(points, by)), strict=True):
             found[at] = told
     return Judged(rows, found)
 
@@ -112,9 +113,10 @@ def _filled(points: Points, columns: Mapping[str, np.ndarray[tuple[int], np.dtyp
 
 def judged_alone(request: AssessmentRequest) -> Compact:
     """The compact row of one request."""
-    return compact(decide(from_rows([mapped(request).row])))[0]
+    by = tables_of([request])
+    return compact(decide(from_rows([mapped(request, by).row]), by))[0]
 
 
-def requests_of(judged: Judged, places: Sequence[int], editions: Mapping[str, str]) -> list[AssessmentRequest]:
+def requests_of(judged: Judged, places: Sequence[int], editions: Mapping[str, LoadedRules]) -> list[AssessmentRequest]:
     """The requests of some rows, each read by itself, to be answered in full."""
     return [pinned(judged.rows.alone(at), editions) for at in places]

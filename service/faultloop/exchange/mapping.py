@@ -24,21 +24,22 @@ from faultloop.assessment.points import (
     TemperaturePolicy,
     Users,
 )
-from faultloop.assessment.rule_table import rule_table
+from faultloop.assessment.tables import Tables, tables
 from faultloop.electrical.measurement import coverage_scale
 from faultloop.exchange import overcurrent as oc
 from faultloop.exchange import requests as rq
 from faultloop.exchange.fields import Instrument
 from faultloop.exchange.fields import Reading as ReadingBody
+from faultloop.exchange.own_rules import is_own
 from faultloop.protection import designations as ds
 from faultloop.protection.band import Band
-from faultloop.protection.catalogue import Described, catalogue
+from faultloop.protection.catalogue import Described, bands_under, catalogue
 from faultloop.protection.curves import OwnCurve, own_band
 from faultloop.protection.fuses import fuse_families
 from faultloop.protection.let_through import breaker_energy, combined_to_ka
 from faultloop.protection.moulded_case import MouldedCase
 from faultloop.rules.conductors import adiabatic_k, ohm_per_km, protective_size, service_temperature
-from faultloop.rules.loader import LoadedRules, resolve
+from faultloop.rules.loader import LoadedRules
 
 _BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
 _METHOD = Method.codes()
@@ -77,6 +78,7 @@ class Mapped:
     """One point ready to be judged: its row, its rule set, the words needed to explain it."""
 
     row: Row
+    tables: Tables
     rules: LoadedRules
     policy: dict[str, str | float]
     device: str | None
@@ -87,11 +89,16 @@ class Mapped:
     unused: list[str] = field(default_factory=list)
 
 
-def mapped(request: rq.AssessmentRequest) -> Mapped:
-    """Turn one request into a row."""
-    rules = resolve(request.rules)
-    assert rules is not None, "the request model refuses unknown rule sets"
-    point = Mapped(Row(), rules, _policy(request.policy, rules), None, None)
+def tables_of(requests: Sequence[rq.AssessmentRequest]) -> Tables:
+    """The tables that hold every rule set of these requests, callers' own included."""
+    own = {request.rule_set for request in requests if is_own(request.rule_set)}
+    return tables(tuple(sorted(own, key=lambda loaded: loaded.digest)))
+
+
+def mapped(request: rq.AssessmentRequest, by: Tables | None = None) -> Mapped:
+    """Turn one request into a row of the tables."""
+    rules = request.rule_set
+    point = Mapped(Row(), by or tables_of([request]), rules, _policy(request.policy, rules), None, None)
     if "rules" not in request.model_fields_set:
         point.assumptions.append("rules")
     _put_supply(point, request)
@@ -113,7 +120,7 @@ def _policy(asked: rq.Policy, rules: LoadedRules) -> dict[str, str | float]:
 
 def _put_supply(point: Mapped, request: rq.AssessmentRequest) -> None:
     numbers, choices, supply = point.row.numbers, point.row.choices, request.supply
-    choices[Choice.RULES] = rule_table().row(point.rules.rules.key)
+    choices[Choice.RULES] = point.tables.rules_row(point.rules)
     choices[Choice.EARTHING] = _EARTHING[supply.earthing]
     choices[Choice.CURRENT] = _CURRENT[supply.current]
     choices[Choice.TEMPERATURE_POLICY] = _POLICY[str(point.policy["temperature"])]
@@ -145,6 +152,8 @@ def _picked(point: Mapped, device: ds.OvercurrentDevice | Described) -> int | Ba
     if isinstance(device, Described):
         point.cautions.append("own-curve" if isinstance(device, OwnCurve) else "settings-as-stated")
         return device.band
+    if is_own(point.rules):
+        return bands_under(point.rules).get(device, NO_DEVICE)
     return catalogue().rows.get((point.rules.rules.key, device), NO_DEVICE)
 
 

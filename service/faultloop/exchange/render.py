@@ -18,7 +18,7 @@ from faultloop.assessment.urgency import Urgency
 from faultloop.assessment.verdicts import ROWS, SENSES, Outcome, conditions_of, decide
 from faultloop.digests import canonical_bytes, digest, rounded_all, sha256
 from faultloop.electrical.measurement import conformance_probability
-from faultloop.exchange.mapping import Mapped, mapped
+from faultloop.exchange.mapping import Mapped, mapped, tables_of
 from faultloop.exchange.quantities import interval, quantity_columns
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.protection.catalogue import catalogue
@@ -43,9 +43,10 @@ def assess_requests(
     if not requests:
         return []
     known = digests or [sha256(request_bytes(request)) for request in requests]
-    given = [mapped(request) for request in requests]
+    by = tables_of(requests)
+    given = [mapped(request, by) for request in requests]
     points = from_rows([point.row for point in given])
-    outcome = decide(points)
+    outcome = decide(points, by)
     spoken = languages or [LANGUAGES[0]] * len(requests)
     renderers = {language: Renderer(points, outcome, language) for language in set(spoken)}
     return [
@@ -146,6 +147,7 @@ class Renderer:
         not_examined += self._fixed.subjects
         not_examined += [_not_examined(name, "not-used", self._texts.unused, None) for name in point.unused]
         cautions |= cautions_of(self._points, self._outcome, at)
+        cautions.update(point.rules.rules.cautions)
         return {
             "verdict": _VERDICTS[int(self._outcome.verdict[at])],
             "urgency": _URGENCIES[int(self._outcome.urgency[at])],

@@ -1,14 +1,16 @@
 """The body of one measured point, as it comes in."""
 
-from typing import Annotated, Literal
+from typing import Annotated, Any, Literal, Self
 
-from pydantic import Field
+from pydantic import Discriminator, Field, PrivateAttr, Tag, ValidationInfo, field_validator, model_validator
 from pydantic.functional_validators import AfterValidator
+from pydantic_core import PydanticCustomError
 
 from faultloop.exchange.fields import WHOLE, Closed, Label, Measured, number
 from faultloop.exchange.overcurrent import OvercurrentDevice, listed
+from faultloop.exchange.own_rules import OwnRules, own_rules
 from faultloop.protection.residual import residual_table
-from faultloop.rules.loader import resolve, shipped
+from faultloop.rules.loader import LoadedRules, resolve, shipped
 
 
 class Point(Closed):
@@ -140,9 +142,16 @@ class Policy(Closed):
     coverage: Annotated[float, number("1", least=0.5, most=0.9999, description="Coverage probability")] | None = None
 
 
+UNKNOWN_RULES = "unknown_rules"
+
+
+def _unknown_rules() -> PydanticCustomError:
+    return PydanticCustomError(UNKNOWN_RULES, "no such rule set; expected one of " + ", ".join(rule_names()))
+
+
 def _known_rules(name: str) -> str:
     if resolve(name) is None:
-        raise ValueError("no such rule set; expected one of " + ", ".join(rule_names()))
+        raise _unknown_rules()
     return name
 
 
@@ -162,6 +171,27 @@ RulesName = Annotated[
 ]
 
 
+def _kind_of_rules(told: Any) -> str:
+    return "name" if isinstance(told, str) else "set"
+
+
+NamedRules = Annotated[
+    str,
+    Field(
+        max_length=60,
+        description="A published set, with an edition or its newest, or a stored set of your own as id:edition",
+        examples=["bs-7671", "iec-60364:2017"],
+        # Refused by naming the known ones, not by its form.
+        json_schema_extra={"pattern": r"^[a-z0-9]+(-[a-z0-9]+)*(:[0-9]{4}(-[0-9]{2})?)?$"},
+    ),
+]
+RulesChoice = Annotated[
+    Annotated[NamedRules, Tag("name")] | Annotated[OwnRules, Tag("set")],
+    Discriminator(_kind_of_rules),
+    Field(description="By which rules: the name of a set, or a set of the caller's own"),
+]
+
+
 class AssessmentRequest(Closed):
     """One measured point: what protects it, what was read, by which rules it is to be judged."""
 
@@ -176,5 +206,39 @@ class AssessmentRequest(Closed):
         default_factory=list
     )
     readings: Readings = Field(default_factory=Readings)
-    rules: RulesName = "iec-60364"
+    rules: RulesChoice = "iec-60364"
     policy: Policy = Field(default_factory=Policy)
+    _rule_set: LoadedRules = PrivateAttr()
+
+    @property
+    def rule_set(self) -> LoadedRules:
+        """The rule set that was chosen, resolved."""
+        return self._rule_set
+
+    def under(self, rules: LoadedRules) -> Self:
+        """The same request, to be judged by the very set that its choice stood for before."""
+        same = self.model_copy()
+        same._rule_set = rules
+        return same
+
+    @field_validator("rules")
+    @classmethod
+    def _resolve(cls, told: Any, info: ValidationInfo) -> Any:
+        """Refuse a set that is not known or cannot be judged by, at its place."""
+        _resolved(told, info.context)
+        return told
+
+    @model_validator(mode="after")
+    def _keep(self, info: ValidationInfo) -> Self:
+        self._rule_set = _resolved(self.rules, info.context)
+        return self
+
+
+def _resolved(told: Any, stored: dict[str, LoadedRules] | None) -> LoadedRules:
+    """The set that is named, or said; the context of a validation holds callers' stored sets by name."""
+    if not isinstance(told, str):
+        return own_rules(told)
+    found = (stored or {}).get(told) or resolve(told)
+    if found is None:
+        raise _unknown_rules()
+    return found

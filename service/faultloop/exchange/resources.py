@@ -4,7 +4,7 @@ from typing import Annotated, Any, Literal
 
 from pydantic import BaseModel, ConfigDict, Field
 
-from faultloop.exchange.answers import Answer, Provenance, Text, UrgencyWord, VerdictWord
+from faultloop.exchange.answers import Answer, CautionBody, Provenance, Text, UrgencyWord, VerdictWord
 from faultloop.exchange.fields import Closed
 from faultloop.exchange.requests import RulesName
 
@@ -63,6 +63,7 @@ class LimitBody(Answer):
     least_operating_current_a: float | None = None
     explanation: Text
     clause: Text
+    cautions: list[CautionBody]
     provenance: DataProvenance
 
 
@@ -108,20 +109,51 @@ class RuleSetBody(Answer):
     edition: Text
     title: Text
     editions_named: Text
-    newest: bool
+    newest: bool = Field(description="Whether the id alone means this edition")
+    published: bool = Field(description="False for a caller's own set")
     digest: Text
 
 
+class RuleSetListQuery(Closed):
+    """Which page of rule sets is wanted."""
+
+    page_size: Annotated[int, Field(ge=1, le=200, description="Greatest number of callers' own sets")] = 50
+    cursor: Annotated[str, Field(max_length=60, pattern=r"^[a-z0-9:-]+$")] | None = None
+
+
 class RuleSetList(Answer):
-    """Rule sets held here."""
+    """Rule sets held here: published ones first, then callers' own by name."""
 
     items: list[RuleSetBody]
+    next: Text | None = Field(default=None, description="Address of the next page; absent on the last")
 
 
 class RuleSetDetail(RuleSetBody):
     """A rule set with every value, its clause and its source."""
 
     values: dict[str, Any]
+
+
+class RuleSetDifference(Answer):
+    """A value in which a set differs from its base; absent where one of them says nothing."""
+
+    pointer: Text
+    base: Any = None
+    own: Any = None
+
+
+class RuleSetValidation(Answer):
+    """A caller's set as it would be judged by."""
+
+    valid: Literal[True]
+    rules: Text
+    id: Text
+    edition: Text
+    title: Text
+    extends: Text | None = None
+    digest: Text
+    values: dict[str, Any]
+    differences: list[RuleSetDifference]
 
 
 class ListedBody(Answer):

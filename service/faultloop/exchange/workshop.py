@@ -14,6 +14,7 @@ from faultloop.exchange.render import assess_requests
 from faultloop.exchange.sampling import greatest_bad
 from faultloop.exchange.uploads import Read
 from faultloop.exchange.workshop_words import WorkshopWords, workshop_words
+from faultloop.rules.loader import LoadedRules
 
 Body = dict[str, Any]
 _CHUNK = 500
@@ -27,7 +28,7 @@ class PopulationTooSmall(ValueError):
 def workshop(
     read: Read,
     judged: Judged,
-    editions: Mapping[str, str],
+    editions: Mapping[str, LoadedRules],
     population: int | None = None,
     input_digest: str = "",
     language: str = "en",
@@ -43,11 +44,11 @@ def workshop(
             view.take_unjudged(at)
     return view.body(population) | {
         "defaults": read.reading["defaults"],
-        "provenance": provenance(judged, input_digest),
+        "provenance": provenance(judged, input_digest, editions),
     }
 
 
-def _answers(judged: Judged, editions: Mapping[str, str]) -> Iterator[tuple[int, Body]]:
+def _answers(judged: Judged, editions: Mapping[str, LoadedRules]) -> Iterator[tuple[int, Body]]:
     places = [at for at, found in enumerate(judged.found) if found is not None]
     for begin in range(0, len(places), _CHUNK):
         chunk = places[begin : begin + _CHUNK]

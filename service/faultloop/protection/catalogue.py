@@ -14,7 +14,7 @@ from faultloop.protection.fuses import fuse_band, fuse_families
 from faultloop.protection.let_through import let_through_table
 from faultloop.protection.moulded_case import MouldedCase
 from faultloop.protection.residual import residual_band, residual_table
-from faultloop.rules.loader import shipped
+from faultloop.rules.loader import LoadedRules, shipped
 from faultloop.rules.sheets import RuleSet
 
 # Devices that a request describes by points or settings, and that bring their band along.
@@ -74,6 +74,23 @@ def device_band(device: OvercurrentDevice, rules: RuleSet | None = None) -> Band
     return band
 
 
+@lru_cache(maxsize=128)
+def bands_under(loaded: LoadedRules) -> dict[OvercurrentDevice, Band]:
+    """Band of every device held here under one rule set.
+
+    Parameters
+    ----------
+    loaded : LoadedRules
+        A rule set, shipped or a caller's own.
+
+    Returns
+    -------
+    dict of OvercurrentDevice to Band
+        In the order of `listed_devices`.
+    """
+    return {device: device_band(device, loaded.rules) for device in listed_devices()}
+
+
 def _standard_band(device: OvercurrentDevice) -> Band:
     if isinstance(device, Breaker):
         return breaker_band(device.characteristic, device.rated_current_a)
@@ -85,9 +102,7 @@ def _standard_band(device: OvercurrentDevice) -> Band:
 def catalogue() -> Catalogue:
     """Compile every device under every shipped rule set; the last row of each table is no device."""
     bands = {
-        (key, device): device_band(device, loaded.rules)
-        for key, loaded in shipped().items()
-        for device in listed_devices()
+        (key, device): band for key, loaded in shipped().items() for device, band in bands_under(loaded).items()
     }
     # A time-delayed device has no band in the standards.
     residual = {"general": residual_band("general"), "selective": residual_band("selective"), "time-delayed": Band(())}
@@ -125,7 +140,7 @@ def guaranteed(device: OvercurrentDevice | ResidualDevice | Described, rules: Ru
         return catalogue().residual_bands[device.delay], device.rated_ma / 1000.0
     if isinstance(device, Described):
         return device.band, 1.0
-    return catalogue().bands.get((rules.key, device), Band(())), 1.0
+    return (device_band(device, rules) if device in listed_devices() else Band(())), 1.0
 
 
 def device_standard(device: OvercurrentDevice | ResidualDevice) -> str:

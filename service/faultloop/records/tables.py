@@ -95,6 +95,31 @@ BATCH: Table = StoredBatch.__table__  # type: ignore[attr-defined]
 ASSESSMENT: Table = StoredAssessment.__table__  # type: ignore[attr-defined]
 
 
+class RuleSetContent(Base, table=True):
+    """What a caller's set of rules says, by its digest: what was judged by it can be computed again."""
+
+    __tablename__ = "rule_set"
+
+    digest: str = Field(max_length=64, primary_key=True)
+    name: str = Field(max_length=60, index=True)
+    stored_at: datetime
+    content: bytes
+
+
+class RuleSetName(Base, table=True):
+    """The names under which callers stored their sets; a name stands for one content for good."""
+
+    __tablename__ = "rule_set_name"
+
+    name: str = Field(max_length=60, primary_key=True)
+    digest: str = Field(max_length=64, foreign_key="rule_set.digest")
+    stored_at: datetime
+
+
+RULE_SET: Table = RuleSetContent.__table__  # type: ignore[attr-defined]
+RULE_SET_NAME: Table = RuleSetName.__table__  # type: ignore[attr-defined]
+
+
 @dataclass(frozen=True, slots=True)
 class Record:
     """What there is to remember of one assessment."""

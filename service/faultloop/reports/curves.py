@@ -3,6 +3,7 @@
 from dataclasses import dataclass
 from typing import Any
 
+from faultloop.assessment.texts import texts
 from faultloop.digests import digest
 from faultloop.protection.catalogue import Described, catalogue, device_standard, guaranteed
 from faultloop.protection.curves import OwnCurve
@@ -24,6 +25,7 @@ def device_drawing(device: Device, rules: LoadedRules, provenance: dict[str, str
     heading = told.device_title.format(device=device.designation)
     subtitle = told.device_subtitle.format(standard=device_standard(device), rules=title)
     notes = [told.steps_only] if region else [told.band_missing.format(device=device.designation)]
+    notes += _cautions(rules, language)
     regions = [region] if region else []
     return svg_bytes(
         Figure(
@@ -67,6 +69,7 @@ def assessment_drawing(judged: Judged) -> bytes:
         verdict=told.verdicts[answer["verdict"]], devices=_devices_words(judged, told), rules=judged.rules.rules.title
     )
     notes = [*_missing(judged, told, regions, span, deadline), _disconnection(quantities, told)]
+    notes += _cautions(judged.rules, judged.language)
     if (judged.rules.digest, catalogue().digest) != (provenance["rules_digest"], provenance["devices_digest"]):
         notes.append(told.data_differ)
     marks = [part.words for part in (span, deadline) if part is not None]
@@ -86,6 +89,11 @@ def assessment_drawing(judged: Judged) -> bytes:
             description=_sentences([subtitle, *_region_words(regions), *marks, *notes, told.caution]),
         )
     )
+
+
+def _cautions(rules: LoadedRules, language: str) -> list[str]:
+    """What every word said under this rule set must warn of."""
+    return [texts(language).cautions[name].text for name in rules.rules.cautions]
 
 
 def _region(device: Device | Described, rules: LoadedRules, told: Words) -> Region | None:

@@ -5,6 +5,8 @@ from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
 
 NO_BREAK = "\u00a0"
+# What an axis is stretched for; whatever lies beyond, a current of a slip of the pen, is put on its end.
+LEAST_DRAWN, GREATEST_DRAWN = 1e-7, 1e10
 
 
 def quantity(value: float, small: tuple[float, str], plain: str, large: tuple[float, str] | None = None) -> str:
@@ -69,7 +71,7 @@ class Axis:
 
 def decades(values: Iterable[float], least_count: int = 2) -> tuple[int, int]:
     """Whole decades that hold all values with some room at either end."""
-    known = [math.log10(value) for value in values if 0 < value < math.inf]
+    known = [math.log10(value) for value in values if LEAST_DRAWN <= value <= GREATEST_DRAWN]
     if not known:
         return 0, 4
     low, high = math.floor(min(known) - 0.05), math.ceil(max(known) + 0.05)

@@ -1,13 +1,15 @@
 """The one loader of rule sets: strict, extending, dated, digested."""
 
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import lru_cache
 from importlib import resources
 from importlib.resources.abc import Traversable
 from pathlib import Path
 
-from faultloop.digests import digest
+from pydantic import ValidationError
+
+from faultloop.digests import canonical_bytes, digest
 from faultloop.rules.sheets import RuleSet
 from faultloop.rules.strict import DataFileError, read_sheet, read_table, refuse_duplicates
 
@@ -16,9 +18,9 @@ Table = dict[str, object]
 
 @dataclass(frozen=True, slots=True)
 class LoadedRules:
-    """A rule set with the digest of everything that it says."""
+    """A rule set with the digest of everything that it says; the digest is what it is told by."""
 
-    rules: RuleSet
+    rules: RuleSet = field(compare=False)
     digest: str
 
 
@@ -48,16 +50,17 @@ def _resolved(key: str, tables: dict[str, Table], names: dict[str, str], above: 
         raise DataFileError(f"{names[key]}: extends: no rule set {base!r} (write id:edition)")
     if base in (*above, key):
         raise DataFileError(f"{names[key]}: extends: {base} leads back to itself")
-    return _overlaid(_resolved(base, tables, names, (*above, key)), table)
+    return overlaid(_resolved(base, tables, names, (*above, key)), table)
 
 
-def _overlaid(base: Table, over: Table) -> Table:
+def overlaid(base: Table, over: Table) -> Table:
+    """Put what a set says over what its base says."""
     merged = dict(base)
     for key, value in over.items():
         below = merged.get(key)
         # A parameter is replaced whole: half of an old source under a new value would be a lie.
         deeper = isinstance(value, dict) and isinstance(below, dict) and "source" not in below
-        merged[key] = _overlaid(below, value) if deeper else value  # type: ignore[arg-type]
+        merged[key] = overlaid(below, value) if deeper else value  # type: ignore[arg-type]
     return merged
 
 
@@ -67,6 +70,24 @@ def _checked(table: Table, name: str) -> LoadedRules:
     refuse_duplicates(name, "disconnection.table", [(r.earthing, r.current, r.above_v) for r in rows])
     printed = [(device, row.time_s) for row in rules.operating_current for device in row.devices]
     refuse_duplicates(name, "operating_current", list(printed))
+    return digested(rules)
+
+
+def content(loaded: LoadedRules) -> bytes:
+    """Everything that a resolved set says, as the bytes that its digest is of."""
+    return canonical_bytes(loaded.rules.model_dump(mode="json"))
+
+
+def from_content(told: bytes) -> LoadedRules:
+    """Read a set back from such bytes; one that was written for another shape of sheet is refused."""
+    try:
+        return digested(RuleSet.model_validate_json(told))
+    except ValidationError as error:
+        raise DataFileError("this rule set was written for another version of the service") from error
+
+
+def digested(rules: RuleSet) -> LoadedRules:
+    """A rule set with its digest."""
     return LoadedRules(rules, digest(rules.model_dump(mode="json")))
 
 
@@ -77,6 +98,7 @@ def shipped() -> dict[str, LoadedRules]:
     return load(sorted((f for f in folder.iterdir() if f.name.endswith(".toml")), key=lambda f: f.name))
 
 
+@lru_cache(maxsize=256)
 def resolve(name: str) -> LoadedRules | None:
     """Find a rule set by `id:edition`, or the newest edition by `id` alone."""
     rules = shipped()

@@ -40,9 +40,9 @@ class TimeRow(Sourced):
 
     earthing: Literal["TN", "TT"]
     current: Literal["ac", "dc"]
-    above_v: float
-    to_v: float | None = None
-    value: float
+    above_v: Annotated[float, Field(description="Nominal voltage to earth above this [V]")]
+    to_v: Annotated[float, Field(description="and up to this; open above without it [V]")] | None = None
+    value: Annotated[float, Field(description="Required disconnection time [s]")]
     unit: Literal["s"]
 
 
@@ -117,7 +117,7 @@ class Policy(Sheet):
 
     temperature: Literal["split", "two-thirds", "four-fifths", "none"]
     decision: Literal["guarded", "simple"]
-    coverage: float = Field(ge=0.5, le=0.9999)
+    coverage: Annotated[float, Field(ge=0.5, le=0.9999, description="Coverage probability [1]")]
 
 
 class Expected(Sheet):
@@ -147,8 +147,8 @@ class OperatingCurrent(Sourced):
     """A current that the rule set itself prints for a device and a time."""
 
     devices: list[Text] = Field(min_length=1)
-    time_s: float = Field(gt=0)
-    value: float = Field(gt=0)
+    time_s: Annotated[float, Field(gt=0, description="Time within which the device then operates [s]")]
+    value: Annotated[float, Field(gt=0, description="Least operating current, in the unit beside it [unit]")]
     unit: Literal["A", "x In"]
 
 
@@ -159,6 +159,7 @@ class RuleSet(Sheet):
     edition: Annotated[str, Field(pattern=r"^[0-9]{4}(-[0-9]{2})?$")]
     title: Text
     editions_named: Text
+    cautions: list[Text] = Field(default_factory=list)
     voltage_factor: VoltageFactors
     nominal_voltage_to_earth: NominalVoltages
     disconnection: Disconnection

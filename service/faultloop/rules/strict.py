@@ -20,7 +20,7 @@ class DataFileError(ValueError):
 
 
 class Sheet(BaseModel):
-    """Base of every table in a data file: unknown keys are refused, nothing is coerced."""
+    """One table of a rule set: unknown keys are refused, nothing is converted."""
 
     model_config = ConfigDict(extra="forbid", strict=True, frozen=True, allow_inf_nan=False)
 
@@ -37,7 +37,7 @@ class Sourced(Sheet):
 class Parameter(Sourced):
     """One value that a standard or a rule set sets."""
 
-    value: float
+    value: Annotated[float, Field(description="In the unit that stands beside it [unit]")]
     unit: Unit
 
 
