@@ -54,6 +54,32 @@ def test_assess_writes_csv(points: Path, capsys: pytest.CaptureFixture[str]) -> 
     assert "overcurrent_disconnection_verdict" in lines[0]
 
 
+def test_assess_writes_the_workshop_page(points: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    ask = ["assess", str(points), "--default", "earthing=TN-S", "--output", "html"]
+    assert main([*ask, "--population", "12"]) == 0
+    page = capsys.readouterr().out
+    assert page.startswith("<!doctype html>")
+    assert "3 rows = 1 judged + 1 held + 1 refused" in page
+    assert "of the 12 may fail" in page
+    assert main([*ask, "--population", "2"]) == 1
+    assert "3 different points" in capsys.readouterr().err
+
+
+def test_assess_reads_a_decimal_comma_and_passes_over_a_column(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    file = tmp_path / "comma.csv"
+    text = (
+        TABLE.replace(",", ";").replace("0.62", "0,620").replace("label;", "label;Remarks;").replace("Good;", "Good;;")
+    )
+    file.write_text(text.splitlines()[0] + "\n" + text.splitlines()[1] + "\n", encoding="utf-8-sig")
+    ask = ["assess", str(file), "--default", "earthing=TN-S", "--decimal", "comma"]
+    assert main(ask) == 1
+    assert "column 2 is not known" in capsys.readouterr().err
+    assert main([*ask, "--ignore", "Remarks"]) == 0
+    assert "1 rows in = 1 judged (1 pass)" in capsys.readouterr().out
+
+
 def test_assess_refuses_what_it_cannot_read(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     wrong = tmp_path / "wrong.csv"
     wrong.write_text("lable\nx\n", encoding="utf-8")

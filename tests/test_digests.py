@@ -5,11 +5,12 @@ import json
 import math
 from decimal import ROUND_HALF_EVEN, Decimal
 
+import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import example, given
 from hypothesis import strategies as st
 
-from faultloop.digests import canonical_bytes, digest, json_bytes, rounded, rounded_all, sha256
+from faultloop.digests import canonical_bytes, digest, json_bytes, rounded, rounded_all, rounded_column, sha256
 
 FINITE = st.floats(allow_nan=False, allow_infinity=False, min_value=-1e300, max_value=1e300)
 # Measurements are floats; a whole number beyond 53 bits has no place in them.
@@ -100,3 +101,22 @@ def test_different_values_have_different_digests(one: object, other: object) -> 
 
 def test_answers_keep_their_order() -> None:
     assert json_bytes({"b": 1.0, "a": 2.0}) == b'{"b":1.0,"a":2.0}'
+
+
+@given(
+    st.lists(
+        st.one_of(
+            st.floats(),
+            st.floats(1e-6, 1e6).map(lambda value: float(f"{value:.7g}")),
+            st.integers(100_000, 999_999).flatmap(
+                lambda whole: st.integers(-30, 30).map(lambda power: float(f"{whole}.5e{power}"))
+            ),
+            st.integers(-25, 25).map(lambda power: 10.0**power),
+        ),
+        max_size=20,
+    )
+)
+@example([math.nan, math.inf, -math.inf, 0.0, -0.0, 999999.5, 99999.95, 1000.0, 1e22, 1e-22, 5e-324, 1.7e308])
+def test_an_array_is_rounded_as_its_values_are(values: list[float]) -> None:
+    told = rounded_column(np.array(values, dtype=np.float64))
+    assert [repr(value) for value in told] == [repr(rounded(value)) for value in values]

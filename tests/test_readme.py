@@ -4,8 +4,14 @@ import json
 import re
 from pathlib import Path
 from typing import Any
+from urllib.parse import parse_qsl
 
 from faultloop import assess
+from faultloop.digests import json_bytes
+from faultloop.exchange.batch_answers import answer
+from faultloop.exchange.batches import BatchQuery
+from faultloop.exchange.judging import judged
+from faultloop.exchange.uploads import Upload, read_upload
 
 README = (Path(__file__).parent.parent / "README.md").read_text(encoding="utf-8")
 
@@ -31,6 +37,18 @@ def _hold(shown: Any, given: Any, where: str) -> None:
             _hold(item, match[0], f"{where}/{at}")
     else:
         assert shown == given, where
+
+
+def test_the_batch_is_answered_as_shown() -> None:
+    found = re.search(r"<!-- batch -->\n```csv\n(.*?)```", README, re.S)
+    assert found is not None
+    query = re.search(r"/v1/batches\?(\S+)'", README)
+    assert query is not None
+    defaults = [value for name, value in parse_qsl(query[1]) if name == "default"]
+    upload = Upload("csv", found[1].encode(), BatchQuery(default=defaults))
+    read = read_upload(upload)
+    told = json.loads(json_bytes(answer(judged(read.rows), "x", read.reading, upload.input_digest)))
+    _hold(_block("batch answer"), told, "")
 
 
 def test_request_is_answered_as_shown() -> None:

@@ -5,8 +5,13 @@ import json
 import sys
 from collections.abc import Sequence
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from faultloop import __version__
+
+if TYPE_CHECKING:
+    from faultloop.exchange.judging import Judged
+    from faultloop.exchange.uploads import Read
 
 
 def _serve(options: argparse.Namespace) -> int:
@@ -76,21 +81,45 @@ def _settings(options: argparse.Namespace):  # type: ignore[no-untyped-def]
 
 def _assess(options: argparse.Namespace) -> int:
     """Judge a CSV file of points; exit status 1 when the file cannot be read at all."""
-    from faultloop.exchange.columns import FileRefused, judge_rows, read_rows, write_csv
+    from faultloop.exchange.batch_answers import answer_csv
+    from faultloop.exchange.batches import BatchQuery
+    from faultloop.exchange.columns import FileRefused
+    from faultloop.exchange.judging import judged
     from faultloop.exchange.listing import table
+    from faultloop.exchange.uploads import Upload, read_upload
 
+    query = BatchQuery(default=options.default, decimal=options.decimal, ignore=options.ignore)
     try:
-        text = sys.stdin.read() if options.file == "-" else Path(options.file).read_text(encoding="utf-8-sig")
-        rows = read_rows(text, dict(options.default))
-    except (OSError, UnicodeDecodeError, FileRefused) as error:
+        content = sys.stdin.buffer.read() if options.file == "-" else Path(options.file).read_bytes()
+        upload = Upload("csv", content, query)
+        read = read_upload(upload)
+    except (OSError, FileRefused) as error:
         print(f"faultloop: {options.file}: {error}", file=sys.stderr)
         return 1
-    judge_rows(rows)
-    for name, value in options.default:
+    batch = judged(read.rows)
+    for name, value in read.reading["defaults"].items():
         print(f"Default: {name} = {value}", file=sys.stderr)
-    sys.stdout.write(write_csv(rows) if options.output == "csv" else table(rows) + "\n")
+    if options.output == "html":
+        return _workshop_page(read, batch, options.population, upload.input_digest)
+    sys.stdout.write(answer_csv(batch) if options.output == "csv" else table(batch) + "\n")
     if options.output == "table":
         print("An aid to a competent person; it gives no permission, and local rules and licensed persons decide.")
+    return 0
+
+
+def _workshop_page(read: "Read", batch: "Judged", population: int | None, input_digest: str) -> int:
+    """Print the workshop view of a file as a page."""
+    from faultloop.exchange.workshop import PopulationTooSmall, workshop
+    from faultloop.exchange.workshop_view import Workshop
+    from faultloop.exchange.workshop_words import workshop_words
+    from faultloop.reports.workshop import workshop_page
+
+    try:
+        view = workshop(read, batch, {}, population, input_digest)
+    except PopulationTooSmall as error:
+        print(f"faultloop: population: {error}", file=sys.stderr)
+        return 1
+    sys.stdout.write(workshop_page(Workshop.model_validate(view).model_dump(), workshop_words().model_dump()))
     return 0
 
 
@@ -102,11 +131,10 @@ def _openapi(_: argparse.Namespace) -> int:
     return 0
 
 
-def _default(text: str) -> tuple[str, str]:
-    name, equals, value = text.partition("=")
-    if not equals or not name:
+def _default(text: str) -> str:
+    if not text.partition("=")[1] or text.startswith("="):
         raise argparse.ArgumentTypeError("write column=value, for instance earthing=TN-S")
-    return name, value
+    return text
 
 
 def _parser() -> argparse.ArgumentParser:
@@ -123,8 +151,13 @@ def _parser() -> argparse.ArgumentParser:
         command.add_argument("--database-url", help="sqlite:///FILE or postgresql://...; else FAULTLOOP_DATABASE_URL")
     assess = commands.add_parser("assess", help="judge a CSV file of points, one row a point")
     assess.add_argument("file", metavar="FILE", help="CSV file, or - for standard input")
-    assess.add_argument("--output", choices=("table", "csv"), default="table")
+    assess.add_argument("--output", choices=("table", "csv", "html"), default="table")
+    assess.add_argument("--population", type=int, help="number of points that there are, for the page of --output html")
     assess.add_argument("--default", type=_default, action="append", default=[], metavar="COLUMN=VALUE")
+    assess.add_argument("--decimal", choices=("point", "comma"), help="decimal mark, where the file leaves it open")
+    assess.add_argument(
+        "--ignore", action="append", default=[], metavar="HEADING", help="a column that holds nothing to be judged"
+    )
     assess.set_defaults(run=_assess)
     openapi = commands.add_parser("openapi", help="print the OpenAPI document")
     openapi.set_defaults(run=_openapi)

@@ -10,7 +10,9 @@ import math
 from collections.abc import Iterable
 from typing import Any
 
+import numpy as np
 import orjson
+from numpy.typing import NDArray
 
 SIGNIFICANT_DIGITS = 6
 
@@ -25,6 +27,31 @@ def rounded(value: float) -> float | None:
 def rounded_all(values: Iterable[float]) -> list[float | None]:
     """Round a column by the same rule; written out, because answers print hundreds of numbers."""
     return [float(f"{value:.6g}") if value - value == 0.0 else None for value in values]
+
+
+def rounded_column(values: NDArray[np.float64]) -> list[float | None]:
+    """Round an array by the same rule, to the same last bit.
+
+    A whole number of six digits over a power of ten up to 1e22 is the double nearest to that decimal; where the
+    scaled value lies too near to a half to tell, or the power is not exact, the rule is applied as it is written.
+    """
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        shift = SIGNIFICANT_DIGITS - 1 - np.floor(np.log10(np.abs(values)))
+        power = 10.0 ** np.abs(shift)
+        scaled = np.where(shift >= 0, values * power, values / power)
+        whole = np.rint(scaled)
+        near = np.where(values == 0.0, values, np.where(shift >= 0, whole / power, whole * power))
+        told = (values == 0.0) | (np.abs(shift) <= 22) & (np.abs(np.abs(scaled - whole) - 0.5) > 1e-6)
+    finite = np.isfinite(values)
+    column: list[float | None] = near.tolist()
+    for at in np.flatnonzero(~finite).tolist():
+        column[at] = None
+    known: dict[float, float | None] = {}  # limits such as 1.365625 repeat themselves
+    for at, value in ((at, float(values[at])) for at in np.flatnonzero(~told & finite).tolist()):
+        if value not in known:
+            known[value] = rounded(value)
+        column[at] = known[value]
+    return column
 
 
 def canonical_bytes(value: Any) -> bytes:

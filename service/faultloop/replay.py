@@ -7,10 +7,15 @@ from typing import Any
 import orjson
 
 from faultloop.assessment.texts import LANGUAGES
-from faultloop.digests import json_bytes
-from faultloop.exchange.render import assess_requests
+from faultloop.digests import json_bytes, sha256
+from faultloop.exchange.batch_answers import provenance, stored_row
+from faultloop.exchange.judging import Judged, judged, judged_alone, pinned
+from faultloop.exchange.patterns import Rows
+from faultloop.exchange.render import assess_requests, request_bytes
 from faultloop.exchange.requests import AssessmentRequest
-from faultloop.rules.loader import from_content, resolve
+from faultloop.exchange.uploads import Upload, read_upload
+from faultloop.exchange.workshop import workshop
+from faultloop.rules.loader import LoadedRules, from_content, resolve
 from faultloop.rules.strict import DataFileError
 
 MOST_DIFFERENCES = 100
@@ -80,3 +85,41 @@ def _differences(stored: Any, now: Any, pointer: str) -> list[dict[str, Any]]:
 
 def _escaped(key: str) -> str:
     return key.replace("~", "~0").replace("/", "~1")
+
+
+def editions_of(stored: dict[str, Any]) -> dict[str, LoadedRules]:
+    """The editions that the names of a batch's rule sets stood for when it was judged."""
+    held = {told["asked"]: resolve(told["rules"]) for told in stored["provenance"]["rules"]}
+    return {asked: rules for asked, rules in held.items() if rules is not None}
+
+
+def changed_since(stored: dict[str, Any], rows: Rows) -> list[str]:
+    """What has changed since a batch was judged."""
+    told, now = stored["provenance"], provenance(Judged(rows, []), "", editions_of(stored))
+    named = {"engine": "engine", "rules": "rules", "devices": "devices_digest"}
+    return [name for name, key in named.items() if told[key] != now[key]]
+
+
+def batch_row(upload: Upload, answer: bytes, number: int) -> dict[str, Any] | None:
+    """One row of a stored batch in full, computed again under the stored edition; None where there is no such row."""
+    rows, stored = read_upload(upload).rows, json.loads(answer)
+    if number not in rows.numbers:
+        return None
+    at, told = (place := list(rows.numbers).index(number)), rows.alone(place)
+    kept = next(row for part in ("results", "held", "refused") for row in stored[part] if row["row"] == number)
+    body = {"row": number, "status": told.status, "raw": rows.raw(at), "stored": kept}
+    now = Judged(rows, [None] * len(rows.pattern))
+    if told.request is not None:
+        request = pinned(told, editions_of(stored))
+        body["assessment"] = assess_requests([request], [sha256(request_bytes(told.request))])[0]
+        now.found[at] = judged_alone(request)
+    body["identical"] = json.loads(json_bytes(stored_row(now, at))) == kept
+    return {**body, "changed": changed_since(stored, rows)}
+
+
+def batch_workshop(upload: Upload, answer: bytes, population: int | None) -> dict[str, Any]:
+    """The workshop view of a stored batch, computed again under the stored editions."""
+    read, stored = read_upload(upload), json.loads(answer)
+    editions = editions_of(stored)
+    view = workshop(read, judged(read.rows, editions), editions, population)
+    return view | {"provenance": stored["provenance"], "changed": changed_since(stored, read.rows)}

@@ -14,6 +14,10 @@ class Settings(BaseSettings):
         description="SQLite file or PostgreSQL database in which assessments are kept",
     )
     max_body_bytes: int = Field(default=1_048_576, ge=1024, description="Largest request body read")
+    max_batch_bytes: int = Field(default=16_777_216, ge=1024, description="Largest body of a batch read")
+    batches_waiting: int = Field(
+        default=16, ge=1, description="Batches that may wait for the worker before 503 is answered"
+    )
     writer_capacity: int = Field(
         default=2048, ge=1, description="Assessments that may wait to be stored before 503 is answered"
     )

@@ -37,7 +37,14 @@ def _free_port() -> int:
 
 @contextmanager
 def server(arguments: list[str], environment: dict[str, str], path: str) -> Iterator[int]:
-    """A uvicorn worker pinned to the first core, ready to answer."""
+    """A uvicorn worker pinned to the first core, ready to answer; gives its port."""
+    with worker(arguments, environment, path) as (port, _):
+        yield port
+
+
+@contextmanager
+def worker(arguments: list[str], environment: dict[str, str], path: str) -> Iterator[tuple[int, int]]:
+    """A uvicorn worker pinned to the first core, ready to answer; gives its port and its process id."""
     port = _free_port()
     command = ["taskset", "-c", "0", sys.executable, "-m", "uvicorn", *arguments, "--port", str(port)]
     command += ["--log-level", "error", "--no-access-log"]
@@ -49,7 +56,7 @@ def server(arguments: list[str], environment: dict[str, str], path: str) -> Iter
                 break
             except OSError:
                 time.sleep(0.1)
-        yield port
+        yield port, process.pid
     finally:
         process.terminate()
         process.wait(20)

@@ -1,15 +1,16 @@
-"""Run trials by name, or all: documented, killed, crowded, mutated."""
+"""Run trials by name, or all: documented, killed, crowded, mutated, files."""
 
 import sys
 import time
 from collections.abc import Callable
 
-from tests.trials import crowded, documented, killed, mutated
+from tests.trials import crowded, documented, files, killed, mutated
 
 TRIALS: dict[str, list[Callable[[], str]]] = {
     "documented": [documented.run],
     "crowded": [lambda: crowded.run("sqlite"), lambda: crowded.run("postgresql")],
     "mutated": [mutated.run],
+    "files": [files.run],
     "killed": [lambda: killed.run("sqlite"), lambda: killed.run("postgresql")],
 }
 

@@ -8,9 +8,10 @@ from fastapi import FastAPI
 from starlette.types import ASGIApp, Message, Receive, Scope, Send
 
 from faultloop import __version__
-from faultloop.api import assessments, devices, openapi, problems, rule_sets, service
+from faultloop.api import assessments, batches, devices, openapi, problems, rule_sets, service
 from faultloop.api.gather import Gather
 from faultloop.api.own_rules import OwnRuleSets
+from faultloop.api.worker import Worker
 from faultloop.exchange.resources import Problem
 from faultloop.protection.catalogue import catalogue
 from faultloop.records.database import open_engine
@@ -46,6 +47,8 @@ def create_app(settings: Settings) -> FastAPI:
         app.state.gather = Gather()
         app.state.own_rules = OwnRuleSets(app.state.engine)
         app.state.max_body_bytes = settings.max_body_bytes
+        app.state.max_batch_bytes = settings.max_batch_bytes
+        app.state.worker = Worker(settings.batches_waiting)
         app.state.writer = Writer(app.state.engine, settings.writer_capacity, settings.writer_group)
         app.state.writer.start()
         # What lives as long as the service need not be walked by every collection.
@@ -71,7 +74,7 @@ def create_app(settings: Settings) -> FastAPI:
         redoc_url=None,
     )
     app.include_router(assessments.judging)
-    for module in (assessments, devices, rule_sets, service):
+    for module in (assessments, batches, devices, rule_sets, service):
         app.include_router(module.router)
     problems.install(app)
     app.add_middleware(HeadAsGet)

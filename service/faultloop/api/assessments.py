@@ -36,7 +36,7 @@ PUT_PARAMETERS: list[dict[str, Any]] = [
         "name": "if-none-match",
         "in": "header",
         "description": "* asks for a new one only",
-        "schema": {"type": "string", "maxLength": 200},
+        "schema": {"type": "string"},
     },
 ]
 JSON = "application/json"

@@ -82,7 +82,7 @@ async def _json(request: Request, most: int) -> bytes:
     kind = request.headers.get("content-type", "").split(";", 1)[0].strip().lower()
     if kind != "application/json":
         raise Refused("unsupported-media-type")
-    return await _limited(request, most)
+    return await limited_body(request, most)
 
 
 def _refused(error: ValidationError, raw: bytes) -> RequestValidationError:
@@ -90,7 +90,7 @@ def _refused(error: ValidationError, raw: bytes) -> RequestValidationError:
     return RequestValidationError(faults, body=_parsed(raw))
 
 
-async def _limited(request: Request, most: int) -> bytes:
+async def limited_body(request: Request, most: int) -> bytes:
     """The body, refused as soon as it is known to be too large."""
     if (told := request.headers.get("content-length", "0")).isdecimal() and int(told) > most:
         raise Refused("body-too-large")

@@ -1,15 +1,22 @@
 """The OpenAPI document: what the framework writes, mended where its word and the service's differ."""
 
+import json
 from typing import Any
 
 from fastapi import FastAPI
 from fastapi.openapi.utils import get_openapi
 
 from faultloop.api.problems import KINDS, MEDIA_TYPE
-from faultloop.exchange.examples import EXAMPLE_REQUEST, EXAMPLE_RULES
+from faultloop.digests import json_bytes
+from faultloop.exchange.batch_answers import answer, answer_csv
+from faultloop.exchange.batches import BatchQuery, BatchRequest
+from faultloop.exchange.examples import EXAMPLE_BATCH, EXAMPLE_FILE, EXAMPLE_REQUEST, EXAMPLE_RULES
+from faultloop.exchange.judging import judged
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
+from faultloop.exchange.uploads import Upload, read_upload
 
+EXAMPLE_ID = "00000000-0000-4000-8000-000000000000"
 DESCRIPTION = (
     "Measured points in; prospective fault current, disconnection time and a verdict with its arithmetic out. "
     "An aid to competent persons: it gives no permission, and local wiring rules and licensed persons decide."
@@ -33,15 +40,17 @@ def document(app: FastAPI) -> dict[str, Any]:
             for operation in path.values():
                 _mend(operation)
         _put_examples(schema)
+        _put_batch_examples(schema)
         app.openapi_schema = schema
     return app.openapi_schema
 
 
 def _put_request_schemas(schema: dict[str, Any]) -> None:
     """The body is read from its bytes, so the framework does not know its schema."""
-    body = AssessmentRequest.model_json_schema(ref_template="#/components/schemas/{model}")
     components = schema["components"]["schemas"]
-    components |= body.pop("$defs") | {"AssessmentRequest": body}
+    for model in (AssessmentRequest, BatchRequest):
+        body = model.model_json_schema(ref_template="#/components/schemas/{model}")
+        components |= body.pop("$defs", {}) | {model.__name__: body}
     schema["components"]["schemas"] = dict(sorted(components.items()))
 
 
@@ -78,6 +87,25 @@ def _put_examples(schema: dict[str, Any]) -> None:
     for path, method in (("/validate", "post"), ("/{rules}", "put")):
         body = schema["paths"][f"/v1/rule-sets{path}"][method]["requestBody"]["content"]["application/json"]
         body["examples"] = {"site": {"summary": "An owner's policy", "value": EXAMPLE_RULES}}
+
+
+def _put_batch_examples(schema: dict[str, Any]) -> None:
+    """A file and a list, each with its answer and the file also with its answer as CSV."""
+    for path, method, status in (("", "post", "200"), ("/{id}", "put", "201")):
+        operation = schema["paths"][f"/v1/batches{path}"][method]
+        body, answered = operation["requestBody"]["content"], operation["responses"][status]["content"]
+        for form, kind, sent in (("csv", "text/csv", EXAMPLE_FILE), ("json", "application/json", EXAMPLE_BATCH)):
+            content = sent.encode() if isinstance(sent, str) else json_bytes(sent)
+            upload = Upload("csv" if form == "csv" else "json", content, BatchQuery())
+            read = read_upload(upload)
+            batch = judged(read.rows)
+            told = json.loads(json_bytes(answer(batch, EXAMPLE_ID, read.reading, upload.input_digest)))
+            summary = "A file" if form == "csv" else "A list"
+            body[kind]["examples"] = {form: {"summary": summary, "value": sent}}
+            examples = answered["application/json"].setdefault("examples", {})
+            examples[form] = {"summary": f"{summary}, answered", "value": told}
+            if form == "csv":
+                answered["text/csv"]["examples"] = {form: {"summary": "The file", "value": answer_csv(batch)}}
 
 
 def problem_responses(model: Any) -> dict[int | str, dict[str, Any]]:

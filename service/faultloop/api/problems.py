@@ -3,6 +3,7 @@
 Refused
 ├── InvalidBody        422  a field is missing, misspelt, of the wrong kind or out of bounds
 ├── UnreadableBody     400  the body is not JSON
+├── UnreadableFile     422  the body is no table of points
 ├── NotFound           404
 ├── MethodNotAllowed   405
 ├── NotAcceptable      406
@@ -10,16 +11,15 @@ Refused
 ├── PreconditionFailed 412  the same, where the client asked for a new one only
 ├── BodyTooLarge       413
 ├── UnsupportedMedia   415
-├── Busy               503  too much waits to be stored
+├── Busy               503  too much waits to be judged or stored
 ├── StorageFailed      503  the database did not confirm
 └── Internal           500
 """
 
 import logging
 import uuid
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
-from difflib import get_close_matches
 from typing import Any
 
 from fastapi import FastAPI, Request
@@ -29,9 +29,8 @@ from starlette.exceptions import HTTPException
 from starlette.routing import Match
 
 from faultloop.digests import json_bytes
-from faultloop.exchange import fields, requests
+from faultloop.exchange.faults import pointer, told
 from faultloop.records.errors import RecordRefused, RecordsError, WriterBusy, WriterClosed
-from faultloop.rules import sheets, strict
 
 MEDIA_TYPE = "application/problem+json"
 _log = logging.getLogger(__name__)
@@ -52,6 +51,11 @@ KINDS: dict[str, tuple[int, str, str]] = {
         "The body is not readable JSON",
         "Send one JSON object in UTF-8. NaN, Infinity and trailing commas are not JSON.",
     ),
+    "unreadable-file": (
+        422,
+        "The body cannot be read as a table of points",
+        "See detail. Nothing was judged or stored; a single bad row never does this.",
+    ),
     "not-found": (404, "Nothing is here", "Check the address and the id; ids are UUIDs."),
     "method-not-allowed": (
         405,
@@ -62,22 +66,26 @@ KINDS: dict[str, tuple[int, str, str]] = {
     "conflict": (
         409,
         "This id stands for another input",
-        "Assessments are not changed: use a new id for another reading, or read the stored one.",
+        "What is stored is not changed: use a new id for another input, or read the stored one.",
     ),
     "precondition-failed": (
         412,
         "The id is taken",
-        "If-None-Match asked for a new assessment only, and this id stands for another input.",
+        "If-None-Match asked for a new id only, and this one stands for another input.",
     ),
     "body-too-large": (
         413,
         "The body is too large",
-        "One measured point is a few kilobytes; send many points one by one.",
+        "One measured point is a few kilobytes; send many points as a batch, and a large batch in parts.",
     ),
-    "unsupported-media-type": (415, "This kind of body is not read", "Send application/json."),
+    "unsupported-media-type": (
+        415,
+        "This kind of body is not read",
+        "Send application/json; a batch may also be text/csv.",
+    ),
     "busy": (
         503,
-        "Too much waits to be stored",
+        "Too much waits to be judged or stored",
         "Try again after the seconds in Retry-After; the same id and body are safe to repeat.",
     ),
     "storage-failed": (
@@ -131,80 +139,21 @@ def problem(
     return Response(json_bytes(body), status, media_type=MEDIA_TYPE, headers=headers)
 
 
-_WORDS = {
-    "missing": "this field is required",
-    "float_type": "a plain number is expected: decimal point, no unit, no quotes; "
-    "for an over-range display send an object with value and bound",
-    "finite_number": "a finite number is expected; for an over-range display send an object with value and bound",
-    "bool_type": "true or false is expected",
-    "string_type": "text in quotes is expected",
-    "model_type": "an object is expected",
-    "model_attributes_type": "an object is expected",
-    "dict_type": "an object is expected",
-    "list_type": "a list is expected",
-    "union_tag_not_found": "state which kind it is",
-    "string_pattern_mismatch": "this text is not of the expected form",
-}
-
-
-def _known_fields() -> list[str]:
-    models = [m for module in (requests, fields, sheets) for m in vars(module).values()]
-    closed = [m for m in models if isinstance(m, type) and issubclass(m, fields.Closed | strict.Sheet)]
-    return sorted({name for model in closed for name in model.model_fields})
-
-
-def _detail(error: dict[str, Any]) -> str:
-    kind, context = error["type"], error.get("ctx", {})
-    if kind == "extra_forbidden":
-        near = get_close_matches(str(error["loc"][-1]), _known_fields(), n=1, cutoff=0.75)
-        if error["loc"][:1] == ("query",):
-            return "no such parameter here; the document at /openapi.json names those that there are"
-        return "no such field here" + (
-            f"; did you mean {near[0]}?" if near else "; check the spelling and the unit in its name"
-        )
-    if kind == "union_tag_invalid":
-        return f"expected one of {context.get('expected_tags', '')}"
-    if kind == "value_error":
-        return str(context.get("error", "this value cannot be used"))
-    if kind in _WORDS:
-        return _WORDS[kind]
-    told: str = error["msg"]
-    return told.removeprefix("Input ").replace("should", "must", 1)
-
-
-def _pointer(location: Iterable[Any], body: Any, *, absent: bool) -> str:
-    """JSON Pointer of a fault; names that only tell which kind of a union was tried are left out.
-
-    The last name may be one that the body lacks only where the fault is that it is `absent`.
-    """
-    parts, here = list(location), body
-    kept: list[str] = []
-    for at, part in enumerate(parts):
-        if (isinstance(here, dict) and part in here) or (
-            isinstance(here, list) and isinstance(part, int) and part < len(here)
-        ):
-            here = here[part]
-        elif not absent or at < len(parts) - 1 or not isinstance(here, dict):
-            continue
-        kept.append(str(part).replace("~", "~0").replace("/", "~1"))
-    return "".join(f"/{part}" for part in kept)
-
-
 def _invalid(error: RequestValidationError) -> Response:
     faults = error.errors()
     if any(fault["type"] == "json_invalid" for fault in faults):
         return problem("unreadable-body")
     in_body = all(fault["loc"][:1] == ("body",) for fault in faults)
     body = error.body if in_body else {}
-    told = [
+    listed = [
         {
-            "pointer": _pointer(fault["loc"][1:], body, absent=not in_body or fault["type"] == "missing"),
+            "pointer": pointer(fault["loc"][1:], body, absent=not in_body or fault["type"] == "missing"),
             "code": fault["type"],
-            "detail": _detail(fault),
+            "detail": told(fault),
         }
         for fault in faults[:50]
     ]
-    return problem("invalid-body" if in_body else "invalid-query", errors=told)
+    return problem("invalid-body" if in_body else "invalid-query", errors=listed)
 
 
 def _allowed(request: Request) -> str:
@@ -222,7 +171,8 @@ def install(app: FastAPI) -> None:
 
     @app.exception_handler(Refused)
     async def refused(_: Request, error: Refused) -> Response:
-        return problem(error.kind, detail=error.detail)
+        headers = {"Retry-After": "1"} if error.kind == "busy" else None
+        return problem(error.kind, detail=error.detail, headers=headers)
 
     @app.exception_handler(RequestValidationError)
     async def invalid(_: Request, error: RequestValidationError) -> Response:

@@ -239,6 +239,9 @@ class Row:
     upstream: list[int | Band] = field(default_factory=list)
 
 
+_COLUMNS = ("value", "percent", "constant", "bound", "method", "numbers", "choices", "upstream")
+
+
 @dataclass(frozen=True, slots=True)
 class Points:
     """Columns of n points: readings (R, n), numbers (N, n) and choices (C, n).
@@ -276,6 +279,11 @@ class Points:
     def coverage(self) -> Array:
         """Scale of the uncertainties to the coverage asked for, (n,)."""
         return self.number(Number.COVERAGE_SCALE)
+
+    def picked(self, at: Ints) -> "Points":
+        """The points of these positions, repeated where a position is."""
+        columns = {name: np.take(getattr(self, name), at, axis=1) for name in _COLUMNS}
+        return Points(**columns, overcurrent=self.overcurrent)
 
 
 def from_rows(rows: Sequence[Row]) -> Points:

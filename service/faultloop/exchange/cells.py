@@ -1,22 +1,26 @@
 """Cells as instruments print them -> a value, a bound, nothing, or a question; never a zero, never converted."""
 
 import re
-from dataclasses import dataclass
+from typing import Literal, NamedTuple
 
-MISSING = {"", "-", "--", "---", "n/a", "na", "n.a.", "nt", "n.t.", "not tested", "lim"}
+Decimal = Literal["point", "comma", "either"]
+MISSING = {"", "-", "--", "---", "n/a", "na", "n.a.", "nt", "n.t.", "n.m.", "not tested", "not measured", "lim"}
 OVER_RANGE = {"ol", "ofl", "o.l", "over", "overrange", "over-range"}
-_NUMBER = re.compile(r"([<>]?)\s*(\d+(?:\.\d+)?)\s*(.*)", re.ASCII)
+_NUMBER = re.compile(r"([<>]?)\s*(\d+)(?:([.,])(\d+))?\s*(.*)", re.ASCII | re.DOTALL)
 _UNITS = {
-    "ohm": {"ohm", "ohms", "Ω"},
+    "ohm": {"ohm", "ohms", "Ohm", "Ω", "\u2126"},
     "ms": {"ms"},
     "ma": {"mA"},
-    "megohm": {"Mohm", "MΩ", "megohm"},
+    "megohm": {"Mohm", "MΩ", "M\u2126", "megohm"},
     "v": {"V"},
+    "a": {"A"},
+    "ka": {"kA"},
+    "m": {"m"},
+    "mm2": {"mm2", "mm²"},
 }
 
 
-@dataclass(frozen=True, slots=True)
-class Cell:
+class Cell(NamedTuple):
     """What a cell says: a value with its bound, or a question that holds the row; neither when it says nothing."""
 
     value: float | None = None
@@ -25,23 +29,60 @@ class Cell:
     over_range: bool = False
 
 
-def read_cell(text: str, column: str) -> Cell:
-    """Read a cell of a reading's column; whatever is not plainly a number in the column's unit is asked about."""
+def unit_of(column: str) -> str:
+    """The unit that a column's name ends in."""
+    return column.rsplit("_", 1)[-1]
+
+
+def same_unit(told: str, column: str) -> bool:
+    """Whether a unit as written is the column's own."""
+    return told in _UNITS.get(unit_of(column), set())
+
+
+def read_cell(text: str, column: str, decimal: Decimal = "point", header_unit: str | None = None) -> Cell:
+    """Read a cell of a number; whatever is not plainly a number in the column's unit is asked about.
+
+    `either` takes a comma or a point where it can only be a decimal mark; `header_unit` is the unit that the
+    file's own heading names where it is not the column's.
+    """
     told = text.strip()
-    if told.lower() in MISSING:
+    match = _NUMBER.fullmatch(told)
+    if match is None:
+        return _word(told.lower())
+    sign, whole, mark, fraction, rest = match.groups()
+    if asked := _mark(mark, whole, fraction, decimal):
+        return Cell(question=asked)
+    unit = unit_of(column)
+    if rest and not same_unit(rest, column):
+        return Cell(question=f"this unit or mark is not the column's ({unit}): write the number in {unit}")
+    if header_unit is not None and not rest:
+        return Cell(question=f"the heading's unit is not the column's ({unit}): write the number in {unit}")
+    number = float(f"{whole}.{fraction}" if fraction else whole)
+    return Cell(number, {">": "above", "<": "below", "": "exact"}[sign])
+
+
+def _word(told: str) -> Cell:
+    """What a cell says that begins with no number."""
+    if told in MISSING:
         return Cell()
-    if told.lower() in OVER_RANGE:
+    if told in OVER_RANGE:
         return Cell(
             question="over range: above which value? write it as >1999; treat the point as having no earth until then",
             over_range=True,
         )
-    if "," in told:
-        return Cell(question="a comma: is it a decimal or a thousands mark? write the number with a decimal point")
-    match = _NUMBER.fullmatch(told)
-    if match is None:
-        return Cell(question="what does this cell mean? a number, >number, <number or an empty cell is expected")
-    mark, number, rest = match.groups()
-    unit = column.rsplit("_", 1)[-1]
-    if rest and rest not in _UNITS.get(unit, set()):
-        return Cell(question=f"this unit or mark is not the column's ({unit}): write the number in {unit}")
-    return Cell(float(number), {">": "above", "<": "below", "": "exact"}[mark])
+    return Cell(question="what does this cell mean? a number, >number, <number or an empty cell is expected")
+
+
+def _mark(mark: str | None, whole: str, fraction: str, decimal: Decimal) -> str | None:
+    """What must be asked about a number's comma or point, if anything."""
+    if mark is None:
+        return None
+    if decimal == "either":
+        grouped = len(fraction) == 3 and len(whole) <= 3 and not whole.startswith("0")
+        told = f"a {'comma' if mark == ',' else 'point'} before three digits"
+        return f"{told}: is it a decimal or a thousands mark? say decimal=comma or decimal=point" if grouped else None
+    if mark == "," and decimal == "point":
+        return "a comma: is it a decimal or a thousands mark? write a decimal point, or say decimal=comma"
+    if mark == "." and decimal == "comma":
+        return "a point: is it a decimal or a thousands mark? this file's decimals are written with a comma"
+    return None

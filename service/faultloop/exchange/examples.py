@@ -1,4 +1,4 @@
-"""An invented measured point and an invented policy, used in the document of the interface and held by tests."""
+"""Invented measured points and an invented policy, used in the document of the interface and held by tests."""
 
 from typing import Any
 
@@ -16,6 +16,21 @@ EXAMPLE_REQUEST: dict[str, Any] = {
     "rules": "bs-7671",
 }
 
+EXAMPLE_FILE = (
+    "point_id,label,earthing,nominal_voltage_to_earth_v,role,feeds,rated_current_a,overcurrent_device,"
+    "residual_current_device,external_earth_fault_loop_impedance_ohm,earth_fault_loop_impedance_ohm,"
+    "residual_operating_time_ms,rules\r\n"
+    "B1,Bench 1,TN-C-S,230,final,socket-outlets,32,B32,30 mA A,0.18,0.62,24,bs-7671\r\n"
+    "B2,Bench 2,TN-C-S,230,final,socket-outlets,32,B32,30 mA A,0.18,OL,24,bs-7671\r\n"
+    "B3,Bench 3,TN-C-S,230,final,socket-outlets,32,B1000,30 mA A,0.18,0.66,24,bs-7671\r\n"
+)
+EXAMPLE_BATCH: dict[str, Any] = {
+    "defaults": {name: EXAMPLE_REQUEST[name] for name in EXAMPLE_REQUEST if name not in ("point", "readings")},
+    "rows": [
+        {"point": {"id": "B1", "label": "Bench 1"}, "readings": EXAMPLE_REQUEST["readings"]},
+        {"point": {"id": "B2", "label": "Bench 2"}, "readings": {"earth_fault_loop_impedance_ohm": "OL"}},
+    ],
+}
 EXAMPLE_RULES: dict[str, Any] = {
     "id": "site-rules",
     "edition": "2026",

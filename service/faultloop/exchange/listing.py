@@ -1,45 +1,46 @@
-"""Judged rows as a table that can be read in a terminal."""
+"""A judged batch as a table that can be read in a terminal."""
 
 from collections import Counter
-from collections.abc import Sequence
 from textwrap import fill
 from typing import Any
 
-from faultloop.assessment.standing import Verdict
-from faultloop.assessment.urgency import Urgency
-from faultloop.exchange.columns import FileRow
+from faultloop.exchange.batch_answers import asked
+from faultloop.exchange.compact import CHECK_IDS
+from faultloop.exchange.judging import Judged, requests_of
+from faultloop.exchange.render import assess_requests
 
-_URGENCIES, _VERDICTS = Urgency.codes(), Verdict.codes()
 
-
-def table(rows: Sequence[FileRow]) -> str:
+def table(judged: Judged) -> str:
     """One line a point: where it is, the verdict, the urgency, and what decides it."""
     lines = [f"{'point':<10} {'label':<30} {'verdict':<21} {'urgency':<9} what decides"]
     lines += ["-" * 110]
-    for row in rows:
-        name = (row.raw.get("point_id") or f"row {row.number}")[:10]
-        label = (row.raw.get("label") or "")[:30]
-        verdict, urgency = (row.answer["verdict"], row.answer["urgency"]) if row.answer else (row.status, row.urgency)
-        lines.append(f"{name:<10} {label:<30} {verdict:<21} {urgency:<9} {_decides(row)}")
-    return "\n".join([*lines, "", reconciled(rows)])
+    for at, found in enumerate(judged.found):
+        name = (judged.rows.names[at].id or f"row {judged.rows.numbers[at]}")[:10]
+        label = " ".join(judged.rows.names[at].label.split())[:30]
+        verdict = judged.rows.of(at).status if found is None else found.verdict
+        lines.append(f"{name:<10} {label:<30} {verdict:<21} {judged.urgency(at):<9} {_decides(judged, at)}")
+    return "\n".join([*lines, "", reconciled(judged)])
 
 
-def reconciled(rows: Sequence[FileRow]) -> str:
+def reconciled(judged: Judged) -> str:
     """Counts that add up: rows in = judged + held + refused."""
-    status = Counter(row.status for row in rows)
-    verdicts = Counter(row.answer["verdict"] for row in rows if row.answer)
+    counts = judged.counts
+    verdicts = Counter(found.verdict for found in judged.found if found is not None)
     told = ", ".join(f"{count} {verdict}" for verdict, count in sorted(verdicts.items()))
     return (
-        f"{len(rows)} rows in = {status['judged']} judged ({told}) + {status['held']} held"
-        f" + {status['refused']} refused"
+        f"{counts['rows']} rows in = {counts['results']} judged ({told}) + {counts['held']} held"
+        f" + {counts['refused']} refused"
     )
 
 
-def _decides(row: FileRow) -> str:
-    if row.answer is None:
-        return (row.questions + row.faults)[0]
-    worst = deciding(row.answer)
-    return f"{worst['check']}: {worst['reason']}" if worst and row.answer["verdict"] != "pass" else ""
+def _decides(judged: Judged, at: int) -> str:
+    found = judged.found[at]
+    if found is None:
+        return asked(judged.rows.of(at)).split("; ")[0]
+    if found.decided_by is None or found.verdict == "pass":
+        return ""
+    finding = found.findings[CHECK_IDS.index(found.decided_by)]
+    return f"{found.decided_by}: {finding[3]}" if finding else ""
 
 
 def deciding(answer: dict[str, Any]) -> dict[str, Any] | None:
@@ -48,22 +49,16 @@ def deciding(answer: dict[str, Any]) -> dict[str, Any] | None:
     return counted[0] if counted else None
 
 
-def most_urgent(rows: Sequence[FileRow], count: int = 3) -> str:
+def most_urgent(judged: Judged, count: int = 3) -> str:
     """The most urgent points, each with its arithmetic, the question that would settle it and its conditions."""
-    judged = [row for row in rows if row.answer]
-    judged.sort(key=lambda row: _rank(row.answer or {}))
+    places = sorted((at for at, found in enumerate(judged.found) if found is not None), key=judged.standing)[:count]
     told = []
-    for row in judged[:count]:
-        answer = row.answer or {}
-        finding = deciding(answer) or {}
-        name = row.raw.get("label") or row.raw.get("point_id") or f"row {row.number}"
-        told.append(f"{name}: {answer['verdict']}, {answer['urgency']}")
-        told += [fill(text, 108, initial_indent="  ", subsequent_indent="  ") for text in _sentences(finding)]
+    for at, answer in zip(places, assess_requests(requests_of(judged, places, {})), strict=True):
+        name = judged.rows.names[at]
+        told.append(f"{name.label or name.id or at}: {answer['verdict']}, {answer['urgency']}")
+        sentences = _sentences(deciding(answer) or {})
+        told += [fill(text, 108, initial_indent="  ", subsequent_indent="  ") for text in sentences]
     return "\n".join(told)
-
-
-def _rank(answer: dict[str, Any]) -> tuple[int, int]:
-    return _URGENCIES[answer["urgency"]], _VERDICTS[answer["verdict"]]
 
 
 def _sentences(finding: dict[str, Any]) -> list[str]:

@@ -217,6 +217,12 @@ class AssessmentRequest(Closed):
         kept: LoadedRules = (self.__pydantic_private__ or {})["_rule_set"]
         return kept
 
+    def under(self, rules: LoadedRules) -> Self:
+        """The same request, to be judged by the very set that its choice stood for before."""
+        same = self.model_copy()
+        same._rule_set = rules
+        return same
+
     @field_validator("rules")
     @classmethod
     def _resolve(cls, told: Any, info: ValidationInfo) -> Any:

@@ -18,12 +18,43 @@ Created = tuple[Stored, bool]
 _COLUMNS = (*RECORD_FIELDS, "stored_at")
 
 
-class Store:
-    """Add records group by group; after any failure the next group gets a fresh connection."""
+class Writing:
+    """Transactions that write, on one connection; after any failure the next one gets a fresh connection."""
 
     def __init__(self, engine: Engine) -> None:
         self._engine = engine
         self._connection: Connection | None = None
+
+    def close(self) -> None:
+        """Give the connection up for good, whatever state it is in."""
+        if self._connection is not None:
+            self._connection.invalidate()
+            self._connection.close()
+            self._connection = None
+
+    @contextmanager
+    def transaction(self) -> Iterator[Connection]:
+        """One transaction: what it did is stored when it ends without an error, and only then."""
+        try:
+            if self._connection is None:
+                self._connection = write_begin(self._engine.connect())
+            transaction = self._connection.begin()
+        except Exception as error:
+            self.close()
+            raise StorageUnavailable(f"the database cannot be written to now: {reason(error)}") from error
+        try:
+            with transaction:
+                yield self._connection
+        except Exception as error:
+            self.close()
+            raise _failure(error) from error
+
+
+class Store(Writing):
+    """Add records group by group."""
+
+    def __init__(self, engine: Engine) -> None:
+        super().__init__(engine)
         self._numbered = engine.dialect.name == "postgresql"
         new = sqlite.insert(ASSESSMENT).on_conflict_do_nothing(index_elements=["id"])
         self._insert = new.returning(ASSESSMENT.c.id, ASSESSMENT.c.sequence)
@@ -32,7 +63,7 @@ class Store:
         """Store all of them or none; each answer is the row now stored, and whether this call made it."""
         first = {record.id: record for record in reversed(records)}
         stored_at = datetime.now(UTC)
-        with self._transaction() as connection:
+        with self.transaction() as connection:
             # in one order everywhere, or two services that store the same ids could wait for each other
             rows = [_row(first[key], stored_at) for key in sorted(first)]
             sequences = self._inserted(connection, rows)
@@ -55,29 +86,6 @@ class Store:
                 return dict(cursor.fetchall())
         except psycopg.Error as error:
             raise DBAPIError.instance("INSERT", None, error, psycopg.Error, hide_parameters=True) from error
-
-    def close(self) -> None:
-        """Give the connection up for good, whatever state it is in."""
-        if self._connection is not None:
-            self._connection.invalidate()
-            self._connection.close()
-            self._connection = None
-
-    @contextmanager
-    def _transaction(self) -> Iterator[Connection]:
-        try:
-            if self._connection is None:
-                self._connection = write_begin(self._engine.connect())
-            transaction = self._connection.begin()
-        except Exception as error:
-            self.close()
-            raise StorageUnavailable(f"the database cannot be written to now: {reason(error)}") from error
-        try:
-            with transaction:
-                yield self._connection
-        except Exception as error:
-            self.close()
-            raise _failure(error) from error
 
 
 @lru_cache(maxsize=1024)

@@ -12,6 +12,7 @@ from sqlalchemy import BigInteger, CheckConstraint, Index, Integer, MetaData, Ro
 from sqlmodel import Field, SQLModel
 
 VERDICTS = ("fail", "undetermined", "marginal", "pass-with-conditions", "pass")
+FORMATS = ("csv", "json")
 URGENCIES = ("stop-use", "urgent", "planned", "note", "none")
 
 NAMING = {
@@ -48,9 +49,7 @@ class StoredAssessment(Base, table=True):
     )
 
     # SQLite numbers rows by itself only in a column declared INTEGER
-    sequence: int | None = Field(
-        default=None, primary_key=True, sa_type=BigInteger().with_variant(Integer(), "sqlite")
-    )
+    sequence: int | None = Field(default=None, primary_key=True, sa_type=BigInteger().with_variant(Integer(), "sqlite"))
     id: str = Field(max_length=36, unique=True)
     input_digest: str = Field(max_length=64)
     verdict: str = Field(max_length=20)
@@ -66,6 +65,33 @@ class StoredAssessment(Base, table=True):
     answer: bytes
 
 
+class StoredBatch(Base, table=True):
+    """One batch as it was sent and answered; rows are added and never changed. The bytes are compressed."""
+
+    __tablename__ = "batch"
+    __table_args__: ClassVar[Any] = (
+        _one_of("format", FORMATS),
+        CheckConstraint("results + held + refused = rows", name="counts"),
+        {"sqlite_autoincrement": True},
+    )
+
+    sequence: int | None = Field(default=None, primary_key=True, sa_type=BigInteger().with_variant(Integer(), "sqlite"))
+    id: str = Field(max_length=36, unique=True)
+    input_digest: str = Field(max_length=64)
+    format: str = Field(max_length=4)
+    rows: int
+    results: int
+    held: int
+    refused: int
+    engine: str
+    devices_digest: str = Field(max_length=64)
+    stored_at: datetime
+    parameters: bytes
+    content: bytes
+    answer: bytes
+
+
+BATCH: Table = StoredBatch.__table__  # type: ignore[attr-defined]
 ASSESSMENT: Table = StoredAssessment.__table__  # type: ignore[attr-defined]
 
 
@@ -146,3 +172,29 @@ class Listed:
 
 
 LISTED_FIELDS = tuple(field.name for field in fields(Listed))
+
+
+@dataclass(frozen=True, slots=True)
+class BatchRecord:
+    """What there is to remember of one batch; the bytes are as they were sent and answered."""
+
+    id: str
+    input_digest: str
+    format: str
+    rows: int
+    results: int
+    held: int
+    refused: int
+    engine: str
+    devices_digest: str
+    parameters: bytes
+    content: bytes
+    answer: bytes
+
+
+@dataclass(frozen=True, slots=True)
+class KeptBatch:
+    """A batch that the database has confirmed, and its time (UTC)."""
+
+    record: BatchRecord
+    stored_at: datetime

@@ -1,1 +1,1 @@
-"""Drawings made from answers and bands: data in, SVG bytes out."""
+"""Drawings and documents made from answers and bands: data in, SVG bytes or HTML out."""

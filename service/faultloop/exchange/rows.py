@@ -1,0 +1,247 @@
+"""One row in words -> a request, or the questions that hold it, or the faults that refuse it."""
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, field
+from typing import Any
+
+from pydantic import ValidationError
+
+from faultloop.exchange import faults
+from faultloop.exchange.cells import Cell, Decimal, read_cell
+from faultloop.exchange.columns import CONDUCTORS, NUMBERS, READINGS, WORDS, Path, column_at
+from faultloop.exchange.requests import AssessmentRequest
+from faultloop.protection.designations import Breaker, UnknownDesignation, parse_overcurrent, parse_residual
+
+Body = dict[str, Any]
+NO_RESIDUAL_DEVICE = {"-", "none", "n/a"}
+
+
+_LONGEST_RAW = 200
+_MOST_FAULTS = 10
+
+
+@dataclass(frozen=True, slots=True)
+class Question:
+    """What must be answered before a row can be judged: where it stands, the text as it came, what was expected."""
+
+    where: str
+    raw: str
+    question: str
+
+
+@dataclass(frozen=True, slots=True)
+class Fault:
+    """Why a row is refused: where, by which code, what was expected; the input is not repeated."""
+
+    where: str
+    code: str
+    detail: str
+
+
+@dataclass(slots=True)
+class Told:
+    """What one row says: the request, else what holds or refuses it."""
+
+    request: AssessmentRequest | None = None
+    questions: list[Question] = field(default_factory=list)
+    faults: list[Fault] = field(default_factory=list)
+    over_range: bool = False
+
+    @property
+    def status(self) -> str:
+        """Judged, held with a question, or refused with the fault."""
+        return "refused" if self.faults else "held" if self.questions else "judged"
+
+    @property
+    def urgency(self) -> str:
+        """Urgency of a row that could not be judged: an over-range reading may mean that there is no earth."""
+        return "stop-use" if self.over_range else "planned"
+
+
+@dataclass(frozen=True, slots=True)
+class Format:
+    """How a file writes its numbers."""
+
+    decimal: Decimal = "point"
+    units: Mapping[str, str] = field(default_factory=dict)
+
+    def cell(self, text: str, column: str) -> Cell:
+        """Read the cell of a number."""
+        return read_cell(text, column, self.decimal, self.units.get(column))
+
+
+def read_cells(cells: Mapping[str, str], number: int, form: Format) -> Told:
+    """Read a row of a file, cell by cell by contract names; a blank cell says nothing."""
+    said = {column: text.strip() for column, text in cells.items() if text.strip()}
+    told = Told()
+    body: Body = {"point": {"label": said.get("point_id") or f"row {number}"}}
+    for column, path in WORDS.items():
+        if column in said:
+            _put(body, path, said[column])
+    _put_devices(body, said, told, form)
+    for column, path in NUMBERS.items():
+        if (value := _plain(said, column, told, form)) is not None:
+            _put(body, path, int(value) if column == "phases" and value.is_integer() else value)
+    _put_conductors(body, said, told, form)
+    _put_readings(body, said, told, form)
+    return _checked(told, body, _in_file)
+
+
+def _put(body: Body, path: Path, value: Any) -> None:
+    for part in path[:-1]:
+        body = body.setdefault(part, {})
+    body[path[-1]] = value
+
+
+def _plain(said: Mapping[str, str], column: str, told: Told, form: Format) -> float | None:
+    """A plain number of a cell that is no reading; anything else holds the row."""
+    if column not in said:
+        return None
+    cell = form.cell(said[column], column)
+    if cell.question or cell.bound != "exact":
+        told.questions.append(_asked(column, said[column], cell.question or "a plain number is expected"))
+        return None
+    return cell.value
+
+
+def _asked(where: str, raw: str, question: str) -> Question:
+    shown = raw if len(raw) <= _LONGEST_RAW else raw[:_LONGEST_RAW] + " …"
+    return Question(where, shown, question)
+
+
+def _put_devices(body: Body, said: Mapping[str, str], told: Told, form: Format) -> None:
+    """The overcurrent device, and one residual device or several in series parted by " + ", the circuit's own first."""
+    try:
+        if "overcurrent_device" in said:
+            body["overcurrent_device"] = _overcurrent(said["overcurrent_device"])
+            if (capacity := _plain(said, "breaking_capacity_ka", told, form)) is not None:
+                body["overcurrent_device"]["breaking_capacity_ka"] = capacity
+    except UnknownDesignation as error:
+        told.faults.append(Fault("overcurrent_device", "unknown-designation", str(error)))
+    residual = said.get("residual_current_device", "")
+    if not residual or residual.lower() in NO_RESIDUAL_DEVICE:
+        return
+    try:
+        first, *others = [_residual(part) for part in residual.split("+")]
+    except UnknownDesignation as error:
+        told.faults.append(Fault("residual_current_device", "unknown-designation", str(error)))
+        return
+    body["residual_current_device"] = first
+    if others:
+        body["upstream_residual_current_devices"] = others
+
+
+def _overcurrent(text: str) -> Body:
+    device = parse_overcurrent(text)
+    kind: Body = {"rated_current_a": device.rated_current_a}
+    if isinstance(device, Breaker):
+        return kind | {"kind": "miniature-circuit-breaker", "characteristic": device.characteristic}
+    kind |= {"kind": "fuse", "fuse_system": device.fuse_system}
+    return kind | ({"utilisation_category": device.utilisation_category} if device.utilisation_category else {})
+
+
+def _residual(text: str) -> Body:
+    device = parse_residual(text)
+    kind: Body = {"rated_residual_operating_current_ma": device.rated_ma, "delay": device.delay}
+    return kind | ({"residual_type": device.residual_type} if device.residual_type else {})
+
+
+def _put_conductors(body: Body, said: Mapping[str, str], told: Told, form: Format) -> None:
+    """Areas; material and insulation are copper and PVC unless the columns or the defaults say otherwise."""
+    for column, path in CONDUCTORS.items():
+        if (area := _plain(said, column, told, form)) is not None:
+            material = said.get("conductor_material", "copper")
+            insulation = said.get("conductor_insulation", "pvc")
+            _put(body, path, {"material": material, "insulation": insulation, "area_mm2": area})
+
+
+def _put_readings(body: Body, said: Mapping[str, str], told: Told, form: Format) -> None:
+    for column, path in READINGS.items():
+        if column not in said:
+            continue
+        reading = _reading(form.cell(said[column], column), column, said[column], told)
+        if reading is not None:
+            if column == "earth_fault_loop_impedance_ohm" and "reading_method" in said:
+                reading["method"] = said["reading_method"]
+            _put(body, path, reading)
+
+
+def _reading(cell: Cell, where: str, raw: str, told: Told) -> Body | None:
+    """A reading's body of its cell; what must be asked is noted."""
+    if cell.question:
+        told.questions.append(_asked(where, raw, cell.question))
+        told.over_range |= cell.over_range
+    return None if cell.value is None else {"value": cell.value, "bound": cell.bound}
+
+
+def _in_file(location: tuple[Any, ...], body: Body, *, absent: bool) -> str:
+    return column_at(tuple(str(part) for part in location)) or faults.pointer(location, body, absent=absent)
+
+
+def _checked(told: Told, body: Any, where: Any) -> Told:
+    """Validate the body where nothing stands against it yet."""
+    if told.status != "judged":
+        return told
+    try:
+        told.request = AssessmentRequest.model_validate(body)
+    except ValidationError as error:
+        for fault in error.errors(include_url=False)[:_MOST_FAULTS]:
+            place = where(fault["loc"], body, absent=fault["type"] == "missing")
+            told.faults.append(Fault(place, fault["type"], faults.told(fault)))
+    return told
+
+
+TWICE = Fault("", "named-twice", "a field stands twice in one object: which of the two is meant?")
+
+
+class NamedTwice(dict[str, Any]):
+    """An object in which a name stood twice: one of the two readings would be dropped without a word."""
+
+
+def named_twice(value: Any) -> bool:
+    """Whether a name stands twice anywhere in a value."""
+    inside = value.values() if isinstance(value, dict) else value if isinstance(value, list) else ()
+    return isinstance(value, NamedTwice) or any(named_twice(item) for item in inside)
+
+
+def read_body(row: Any, defaults: Body) -> Told:
+    """Read a row that is an assessment request, in which a reading may also be the text that an instrument printed."""
+    told = Told()
+    body = _printed(_merged(defaults, row), told) if isinstance(row, dict) else row
+    return _checked(told, body, faults.pointer)
+
+
+def _merged(defaults: Body, row: Body) -> Body:
+    """The row over the defaults, object by object; of a list or a device the row's own is taken whole."""
+    both = {**defaults, **row}
+    for name in ("point", "supply", "circuit", "board", "readings", "policy"):
+        if isinstance(defaults.get(name), dict) and isinstance(row.get(name), dict):
+            both[name] = {**defaults[name], **row[name]}
+    return both
+
+
+def _printed(body: Body, told: Told) -> Body:
+    """Read the readings that are text; what says nothing is left out, what is no number is asked about."""
+    for (part, *inner), text in list(_texts(body)):
+        where = "/".join(("", part, *inner))
+        column = "residual_operating_time_ms" if len(inner) > 1 else inner[0]
+        reading = _reading(read_cell(text, column), where, text, told)
+        holder = body[part] = dict(body[part])
+        for name in inner[:-1]:
+            holder[name] = holder = dict(holder[name])
+        if reading is None:
+            del holder[inner[-1]]
+        else:
+            holder[inner[-1]] = reading
+    return body
+
+
+def _texts(body: Body) -> Iterator[tuple[tuple[str, ...], str]]:
+    """Readings that are text, by path; words such as a polarity are no readings."""
+    for part in ("readings", "board"):
+        inside = body.get(part)
+        for name, value in inside.items() if isinstance(inside, dict) else ():
+            if name == "residual_operating_time_ms" and isinstance(value, dict):
+                yield from (((part, name, multiple), text) for multiple, text in value.items() if isinstance(text, str))
+            elif isinstance(value, str) and name != "polarity":
+                yield (part, name), value
