@@ -116,7 +116,9 @@ def test_byte_order_mark_defaults_and_short_rows() -> None:
     request = batch.rows.alone(0).request
     assert request is not None
     assert request.supply.earthing == "TN-S"
-    assert statuses(judge("label,earthing\nBench\n")) == ["judged"]
+    # Which cell is missing nobody can tell: a rule set that goes missing would be another rule set.
+    assert statuses(judge("label,earthing\nBench\n")) == ["refused"]
+    assert statuses(judge("label,earthing\nBench,\n")) == ["judged"]
     assert statuses(judge("label\nBench,extra\n")) == ["refused"]
     assert statuses(judge("label\nBench,,\n")) == ["judged"]
 

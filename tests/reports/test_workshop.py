@@ -197,3 +197,11 @@ def test_ranges_are_drawn_together() -> None:
 def test_a_language_without_words_is_refused() -> None:
     with pytest.raises(DataFileError, match="'xx'"):
         workshop_words("xx")
+
+
+def test_values_that_look_written_are_named_with_their_rows_and_decide_nothing() -> None:
+    told = view(HEAD + GOOD * 12)
+    assert [(group["reason"], group["rows"]) for group in told["written"]] == [("loops-alike", list(range(2, 14)))]
+    assert list(told["verdicts"].values()) == [12]
+    assert html_escape(told["written"][0]["text"]) in page(told)
+    assert view(HEAD + GOOD)["written"] == []

@@ -4,7 +4,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from faultloop.assessment.points import Bound, Flags, Points, Reading
+from faultloop.assessment.points import Bound, Flags, Ints, Reading
+from faultloop.electrical.measurement import Array
 
 # So many points must show it before chance is a poor explanation (assumptions; no standard sets them).
 FEWEST_SUMS, FEWEST_ALIKE, LEAST_SHARE_ALIKE = 5, 8, 0.5
@@ -19,25 +20,25 @@ class Suspicion:
     places: tuple[int, ...]
 
 
-def suspicions(points: Points) -> list[Suspicion]:
-    """Look through a table of points.
+def suspicions(value: Array, bound: Ints) -> list[Suspicion]:
+    """Look through the readings (R, n) of a table of points.
 
     `sums-exact`: the loop is exactly Ze + (R1 + R2) at five points or more; real readings scatter, so R1 + R2
     or the loop was computed.  `loops-alike`: one loop value stands at eight points or more and at half of all;
     points along a run read more the farther they lie.
     """
-    found = [Suspicion("sums-exact", _places(exact))] if (exact := _sums_exact(points)).sum() >= FEWEST_SUMS else []
-    read = points.bound[Reading.LOOP] == Bound.EXACT
-    values, counts = np.unique(points.value[Reading.LOOP][read], return_counts=True)
+    exact, read = _sums_exact(value, bound), bound[Reading.LOOP] == Bound.EXACT
+    found = [Suspicion("sums-exact", _places(exact))] if exact.sum() >= FEWEST_SUMS else []
+    values, counts = np.unique(value[Reading.LOOP][read], return_counts=True)
     many = (counts >= FEWEST_ALIKE) & (counts >= LEAST_SHARE_ALIKE * read.sum())
-    alike = [read & (points.value[Reading.LOOP] == value) for value in values[many]]
+    alike = [read & (value[Reading.LOOP] == same) for same in values[many]]
     return found + [Suspicion("loops-alike", _places(places)) for places in alike]
 
 
-def _sums_exact(points: Points) -> Flags:
+def _sums_exact(value: Array, bound: Ints) -> Flags:
     parts = [Reading.LOOP, Reading.EXTERNAL, Reading.LINE_PLUS_PROTECTIVE]
-    known = np.logical_and.reduce(points.bound[parts] == Bound.EXACT, axis=0)
-    loop, external, dead = points.value[parts]
+    known = np.logical_and.reduce(bound[parts] == Bound.EXACT, axis=0)
+    loop, external, dead = value[parts]
     exact: Flags = known & (np.abs(loop - external - dead) < _LEAST_DIGIT_OHM)
     return exact
 

@@ -2,11 +2,12 @@
 
 from collections import Counter
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 
 from faultloop.assessment.points import Bound, Points, from_rows
+from faultloop.assessment.suspicions import Suspicion, suspicions
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.compact import Compact, compact
 from faultloop.exchange.mapping import mapped, tables_of
@@ -22,10 +23,11 @@ _RANK = {word: rank for rank, word in enumerate(("stop-use", "urgent", "planned"
 
 @dataclass(slots=True)
 class Judged:
-    """A batch judged: `found` has a compact row for every row that could be judged."""
+    """A batch judged: `found` has a compact row for every row that could be judged; `written` looks made up."""
 
     rows: Rows
     found: list[Compact | None]
+    written: list[Suspicion] = field(default_factory=list)
 
     @property
     def counts(self) -> dict[str, int]:
@@ -89,13 +91,16 @@ def judged(rows: Rows, editions: Mapping[str, LoadedRules] | None = None) -> Jud
     place[ready] = np.arange(len(ready))
     pattern = place[np.array(rows.pattern)]
     at_row = np.flatnonzero(pattern >= 0)
-    columns = {name: np.array(column) for name, column in rows.values.items()}
+    columns, read = {name: np.array(column) for name, column in rows.values.items()}, []
     for begin in range(0, len(at_row), CHUNK):
         chunk = at_row[begin : begin + CHUNK]
         points = _filled(shared.picked(pattern[chunk]), {name: column[chunk] for name, column in columns.items()})
         for at, told in zip(chunk.tolist(), compact(decide(points, by)), strict=True):
             found[at] = told
-    return Judged(rows, found)
+        read.append((points.value, points.bound))
+    value, bound = (np.concatenate(parts, axis=1) for parts in zip(*read, strict=True))
+    placed = [Suspicion(s.reason, tuple(at_row[list(s.places)].tolist())) for s in suspicions(value, bound)]
+    return Judged(rows, found, placed)
 
 
 def _filled(points: Points, columns: Mapping[str, np.ndarray[tuple[int], np.dtype[np.float64]]]) -> Points:

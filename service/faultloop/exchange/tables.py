@@ -150,6 +150,9 @@ def _fill(table: Table, records: Iterator[Record], number: int, most: int) -> No
                 continue
             if any(cell.strip() for cell in record[width:]):
                 table.faults[len(cells)] = "more cells than columns"
+            elif len(record) < width:
+                # Which cells are missing nobody can tell, and a rule set that goes missing is another rule set.
+                table.faults[len(cells)] = "fewer cells than columns: write the empty ones too"
         elif _blank(record):
             table.blank_lines += 1
             continue

@@ -7,6 +7,7 @@ from collections import Counter
 from collections.abc import Iterator, Mapping
 from typing import Any
 
+from faultloop.assessment.suspicions import Suspicion
 from faultloop.exchange.batch_answers import asked, provenance
 from faultloop.exchange.judging import Judged, requests_of
 from faultloop.exchange.listing import deciding
@@ -152,6 +153,7 @@ class _View:
             "fix": [item for item in work if item["urgency"] != "stop-use"],
             "questions": sorted(self._questions.values(), key=lambda group: -len(group["rows"])),
             "conditions": list(self._conditions.values()),
+            "written": [self._written(found) for found in self._judged.written],
             "not_tested": [_counted(group) for group in self._untested.values()],
             "sample": self._sample(population),
             "cautions": list(self._cautions.values()),
@@ -160,6 +162,10 @@ class _View:
         if missing := counts["held"] + counts["refused"]:
             body["not_judged"] = words.sentences.not_judged.format(count=missing, rows=counts["rows"])
         return body
+
+    def _written(self, found: Suspicion) -> Body:
+        rows = [self._judged.rows.numbers[at] for at in found.places]
+        return {"reason": found.reason, "text": self._words.written[found.reason], "rows": rows}
 
     def _sample(self, population: int | None) -> Body:
         failed, decided, words = self._decided[True], self._decided.total(), self._words.sample

@@ -44,6 +44,14 @@ class ConditionGroup(Answer):
     rows: list[int]
 
 
+class WrittenGroup(Answer):
+    """Values over several rows that look written rather than read; a note that decides nothing."""
+
+    reason: Text
+    text: Text
+    rows: list[int]
+
+
 class NotTested(Answer):
     """What was not examined, for what reason, at how many of the judged rows."""
 
@@ -78,6 +86,7 @@ class Workshop(Answer):
     fix: list[WorkItem]
     questions: list[QuestionGroup]
     conditions: list[ConditionGroup]
+    written: list[WrittenGroup]
     not_judged: Text | None = None
     not_tested: list[NotTested]
     sample: Sample

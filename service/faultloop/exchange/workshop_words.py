@@ -15,6 +15,7 @@ class Headings(Sheet):
     fix: Text
     questions: Text
     conditions: Text
+    written: Text
     not_tested: Text
     sample: Text
     cautions: Text
@@ -96,6 +97,7 @@ class WorkshopWords(Sheet):
     columns: Columns
     sentences: Sentences
     sample: SampleWords
+    written: dict[str, Text]
     who: Who
     fixes: dict[str, Text]
     default: Usual
