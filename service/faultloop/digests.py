@@ -7,7 +7,7 @@ here and nowhere else; decisions are made on the unrounded values.
 import hashlib
 import json
 import math
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from typing import Any
 
 import numpy as np
@@ -52,6 +52,13 @@ def rounded_column(values: NDArray[np.float64]) -> list[float | None]:
             known[value] = rounded(value)
         column[at] = known[value]
     return column
+
+
+def rounded_rows(rows: Sequence[NDArray[np.float64]]) -> list[list[float | None]]:
+    """Round several arrays of one length at once by the same rule; an answer prints hundreds of numbers."""
+    table = np.array(rows)
+    flat, width = rounded_column(table.ravel()), table.shape[1]
+    return [flat[begin : begin + width] for begin in range(0, len(flat), width)] if width else [[] for _ in rows]
 
 
 def canonical_bytes(value: Any) -> bytes:

@@ -2,6 +2,7 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass, field
+from functools import lru_cache
 
 import numpy as np
 
@@ -201,13 +202,19 @@ def _put_let_through(point: Mapped, body: oc.OvercurrentDevice) -> None:
         numbers[Number.LET_THROUGH_A2S], choices[Choice.LET_THROUGH] = body.let_through_energy_a2s, LetThrough.MAKER
     elif isinstance(body, oc.Breaker):
         marked = body.energy_limiting_class
-        held = [breaker_energy(marked or 3, body.characteristic, body.rated_current_a, ka) for ka in CLASS_COLUMNS_KA]
-        for at, energy in enumerate(held):
-            if energy is not None:
-                numbers[Number.CLASS_ENERGY_3_KA + at] = energy
-                choices[Choice.LET_THROUGH] = LetThrough.CLASS_USUAL if marked is None else LetThrough.CLASS_MARKED
+        held = _class_energies(marked or 3, body.characteristic, body.rated_current_a)
+        if held is not None:
+            numbers[Number.CLASS_ENERGY_3_KA : Number.CLASS_ENERGY_10_KA + 1] = held
+            choices[Choice.LET_THROUGH] = LetThrough.CLASS_USUAL if marked is None else LetThrough.CLASS_MARKED
     elif isinstance(body, oc.Fuse) and fuse_families()[body.fuse_system].cartridge:
         choices[Choice.LET_THROUGH] = LetThrough.FUSE
+
+
+@lru_cache(maxsize=1024)
+def _class_energies(energy_limiting_class: int, characteristic: str, rated_current_a: float) -> list[float] | None:
+    """Let-through energy of a class by column of the greatest current; None where the class sets none."""
+    held = [breaker_energy(energy_limiting_class, characteristic, rated_current_a, ka) for ka in CLASS_COLUMNS_KA]
+    return None if None in held else [energy for energy in held if energy is not None]
 
 
 def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:

@@ -16,7 +16,7 @@ from faultloop.assessment.standing import Verdict
 from faultloop.assessment.texts import LANGUAGES, Texts, texts
 from faultloop.assessment.urgency import Urgency
 from faultloop.assessment.verdicts import ROWS, SENSES, Outcome, conditions_of, decide
-from faultloop.digests import canonical_bytes, digest, rounded_all, sha256
+from faultloop.digests import canonical_bytes, digest, rounded_rows, sha256
 from faultloop.electrical.measurement import conformance_probability
 from faultloop.exchange.mapping import Mapped, mapped, tables_of
 from faultloop.exchange.quantities import interval, quantity_columns
@@ -102,11 +102,10 @@ class _Values:
         probability, margin = (np.where(found.compared, of, np.nan) for of in (probability, margin))
         self.least, self.greatest = found.least.tolist(), found.greatest.tolist()
         printed = (found.nominal, found.least, found.greatest, found.limit, margin, probability)
-        # (K, 6) lists of n rounded numbers; a check that was nowhere examined prints none.
-        examined = np.any(found.verdict < Verdict.NOT_EXAMINED, axis=1).tolist()
-        self.rounded = [
-            [rounded_all(of[row].tolist()) for of in printed] if examined[row] else [] for row in range(len(CHECKS))
-        ]
+        # Of each check (6, n) rounded numbers; a check that was nowhere examined prints none.
+        examined = np.flatnonzero(np.any(found.verdict < Verdict.NOT_EXAMINED, axis=1)).tolist()
+        rounded = rounded_rows([of[row] for row in examined for of in printed])
+        self.rounded = {row: rounded[6 * at : 6 * at + 6] for at, row in enumerate(examined)}
 
 
 class Renderer:
