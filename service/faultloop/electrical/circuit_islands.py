@@ -176,7 +176,7 @@ def _plain(law: Law, at: int, state: int, ratios: Iterator[Array], count: int) -
     if isinstance(law, ImpedanceLaw):
         real = zero if state == IDEAL else value
         return ImpedanceLaw(zero if state == OPEN else one, real, zero, zero.astype(np.complex128))
-    return RatioLaw(next(ratios)) if isinstance(law, RatioLaw) else law
+    return RatioLaw(next(ratios)) if isinstance(law, RatioLaw) else CurrentLaw(zero.astype(np.complex128))
 
 
 def _fix(layout: Layout, laws: Sequence[Law], reference: tuple[int, ...]) -> list[Fixing]:

@@ -48,8 +48,8 @@ def real_transformer(
     Returns
     -------
     tuple of Element
-        The primary's impedance, the magnetising branch, an ideal transformer, the secondary's impedance, and one half of
-        the capacitance between the first ends, the other between the second ends.
+        The primary's impedance, the magnetising branch, an ideal transformer, the secondary's impedance, and one half
+        of the capacitance between the first ends, the other between the second ends.
 
     Notes
     -----
@@ -122,7 +122,7 @@ def touch_current_network(name: str, touch: str, other: str, filtered: bool) -> 
     Returns
     -------
     tuple of Element
-        Touch current is U_1/500 Ω unweighted, U_2/500 Ω weighted; the current through is that of ``name.body_resistance``.
+        Touch current is U_1/500 Ω unweighted, U_2/500 Ω weighted.
 
     References
     ----------

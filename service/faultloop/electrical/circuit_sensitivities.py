@@ -47,8 +47,8 @@ def voltage_sensitivities(solution: Solution, plus: str, minus: str) -> Sensitiv
 
     Notes
     -----
-    With A·x = b and U = cᵀ·x, the adjoint Aᵀ·λ = c gives ∂U/∂p = λᵀ·(∂b/∂p - ∂A/∂p·x): two solutions give the derivative
-    by every value.
+    With A·x = b and U = cᵀ·x, the adjoint Aᵀ·λ = c gives ∂U/∂p = λᵀ·(∂b/∂p - ∂A/∂p·x): two solutions give the
+    derivative by every value.
 
     References
     ----------
@@ -87,8 +87,8 @@ def current_sensitivities(solution: Solution, branch: str) -> Sensitivities:
 
     Notes
     -----
-    As for a voltage; where the current follows from the voltage by the element's own value, or from the other winding by
-    the ratio, the derivative of that law is added.
+    As for a voltage; where the current follows from the voltage by the element's own value, or from the other winding
+    by the ratio, the derivative of that law is added.
 
     References
     ----------
@@ -183,10 +183,10 @@ def _admittance_slope(solution: Solution, element: Element) -> dict[str, Phasor]
     """Derivative of an admittance by its value."""
     if isinstance(element, Resistor):
         conductance = 1.0 / element.resistance_ohm
-        return {"resistance_ohm": -(conductance * conductance) + 0.0j}
+        return {"resistance_ohm": np.asarray(-conductance * conductance, np.complex128)}
     if isinstance(element, Capacitor):
         angular = 2.0 * np.pi * solution.equations.circuit.frequency_hz
-        return {"capacitance_nf": 1j * angular * FARADS_IN_A_NANOFARAD}
+        return {"capacitance_nf": np.asarray(1j * angular * FARADS_IN_A_NANOFARAD, np.complex128)}
     return {}
 
 
