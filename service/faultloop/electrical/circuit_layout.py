@@ -80,6 +80,12 @@ def lay_out(circuit: Circuit) -> Layout:
     ValueError
         If the circuit has no element, or two of its branches have one name.
 
+    Notes
+    -----
+    Current unknowns come before potentials.  Elimination then takes its pivots from the current balances, which are
+    plus or minus one, and sums them to those of whole islands: the nanosiemens that hold a floating bench are added to
+    each other and not to the load current.
+
     References
     ----------
     .. [1] C.-W. Ho, A. E. Ruehli, P. A. Brennan, "The modified nodal approach to network analysis",
@@ -94,17 +100,17 @@ def lay_out(circuit: Circuit) -> Layout:
         raise ValueError(f"two parts of the circuit have one name: {', '.join(twice)}")
     nodes = tuple(sorted({node for _, *ends in branches for node in ends}))
     live = [node for node in nodes if node != circuit.earth]
-    first_branch, own_unknown, unknowns = [], [], len(live)
+    first_branch, own_unknown, equations = [], [], 0
     for element in circuit.elements:
         first_branch.append(names.index(element_branches(element)[0][0]))
-        own_unknown.append(unknowns if isinstance(element, WITH_OWN_EQUATION) else -1)
-        unknowns += isinstance(element, WITH_OWN_EQUATION)
+        own_unknown.append(equations if isinstance(element, WITH_OWN_EQUATION) else -1)
+        equations += isinstance(element, WITH_OWN_EQUATION)
     return Layout(
         nodes=nodes,
         branches=tuple(names),
         terminals=tuple((nodes.index(plus), nodes.index(minus)) for _, plus, minus in branches),
         first_branch=tuple(first_branch),
-        row=tuple(live.index(node) if node in live else -1 for node in nodes),
+        row=tuple(equations + live.index(node) if node in live else -1 for node in nodes),
         own_unknown=tuple(own_unknown),
-        unknowns=unknowns,
+        unknowns=equations + len(live),
     )

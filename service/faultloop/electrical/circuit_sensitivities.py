@@ -182,7 +182,7 @@ def _by_adjoint(solution: Solution, chosen: Phasor) -> Sensitivities:
 def _admittance_slope(solution: Solution, element: Element) -> dict[str, Phasor]:
     """Derivative of an admittance by its value."""
     if isinstance(element, Resistor):
-        conductance = 1.0 / element.resistance_ohm
+        conductance = 1.0 / np.where(element.resistance_ohm == 0.0, np.nan, element.resistance_ohm)
         return {"resistance_ohm": np.asarray(-conductance * conductance, np.complex128)}
     if isinstance(element, Capacitor):
         angular = 2.0 * np.pi * solution.equations.circuit.frequency_hz
