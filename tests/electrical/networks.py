@@ -46,7 +46,7 @@ def element(rng: Rng, kind: str, name: str, plus: str, minus: str, count: int, d
     """One element of a kind; decades is how far its values reach on either side of the usual."""
     low, high = 10.0**-decades, 10.0**decades
     if kind == "resistor":
-        return Resistor(name, plus, minus, spread_over(rng, 1e2 * low, 1e2 * high, count))
+        return Resistor(name, plus, minus, spread_over(rng, 3.0, 1e2 * high, count))
     if kind == "capacitor":
         return Capacitor(name, plus, minus, spread_over(rng, 1e3 * low, 1e3 * high, count))
     if kind == "inductor":

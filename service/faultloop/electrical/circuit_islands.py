@@ -193,12 +193,16 @@ def _fix(layout: Layout, laws: Sequence[Law], reference: tuple[int, ...]) -> lis
         matrix[:, row, unknown] = 1.0
     if layout.unknowns == 0:
         return [Fixing(reference, (), (), ())] * len(matrix)
-    left, sizes, right = np.linalg.svd(matrix)
+    sizes = np.linalg.svd(matrix, compute_uv=False)
     short = sizes < NO_RANK * sizes[:, :1]
     found = []
-    for lacking, rows, columns in zip(short, left.transpose(0, 2, 1), right, strict=True):
-        conditions, taken = _reduced(rows[lacking])
-        free, unknowns = _reduced(columns[lacking])
+    for one, lacking in zip(matrix, short, strict=True):
+        conditions, free = np.zeros((2, 0, layout.unknowns))
+        if lacking.any():
+            left, _, right = np.linalg.svd(one)
+            conditions, free = left.T[lacking], right[lacking]
+        conditions, taken = _reduced(conditions)
+        free, unknowns = _reduced(free)
         found.append(
             Fixing(
                 reference,
