@@ -3,7 +3,7 @@
 import re
 import shutil
 import subprocess
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -26,8 +26,8 @@ Answers = dict[str, Any]
 def written(parts: Sequence[Element], prefix: str, frequency: float, exact: bool) -> list[str]:
     """Lines of a netlist for single-valued elements; every node and device carries the prefix.
 
-    With ``exact``, the resistance of an `Impedance` is a current-controlled voltage: ngspice adds up conductances, which
-    costs it figures where milliohms stand beside gigaohms.
+    With ``exact``, the resistance of an `Impedance` is a current-controlled voltage: ngspice adds up conductances,
+    which costs it figures where milliohms stand beside gigaohms.
     """
     lines: list[str] = []
     for part in parts:
@@ -76,7 +76,7 @@ def _polar(phasor: complex) -> str:
 
 
 def simulated(lines: Sequence[str], frequencies: Sequence[float], folder: Path) -> list[Answers]:
-    """Phasors of all nodes, and of currents through sources as ``i(v...)``, at each frequency; one process for all."""
+    """Phasors of all nodes, and of currents through sources as ``i(v...)``, at rising frequencies, by one process."""
     program = shutil.which("ngspice")
     assert program, MISSING
     deck, raw = folder / "deck.cir", folder / "deck.raw"
@@ -86,12 +86,12 @@ def simulated(lines: Sequence[str], frequencies: Sequence[float], folder: Path) 
         [program, "-b", "-n", "-r", raw, deck], capture_output=True, text=True, check=False, timeout=300
     )
     assert done.returncode == 0, done.stdout[-2000:] + done.stderr[-2000:]
-    plots = list(_plots(raw.read_bytes()))
+    plots = sorted(_plots(raw.read_bytes()), key=lambda plot: plot["frequency"].real)
     assert len(plots) == len(frequencies), done.stdout[-2000:] + done.stderr[-2000:]
     return plots
 
 
-def _plots(raw: bytes) -> Any:
+def _plots(raw: bytes) -> Iterator[Answers]:
     """Plots of a binary raw file, one point each."""
     while raw:
         head, _, raw = raw.partition(b"Binary:\n")
@@ -99,4 +99,4 @@ def _plots(raw: bytes) -> Any:
         size = 16 * len(names)
         values = np.frombuffer(raw[:size], np.complex128)
         raw = raw[size:].lstrip(b"\n")
-        yield {name: value for name, value in zip(names, values, strict=True)}
+        yield dict(zip(names, values, strict=True))
