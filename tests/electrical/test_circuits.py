@@ -169,6 +169,16 @@ def test_many_networks_equal_single_ones_to_the_last_bit(seed: int, size: int, c
         assert {i.nodes for i in together.islands if i.networks[at]} == {i.nodes for i in single.islands}
 
 
+def test_arguments_are_left_as_they_were() -> None:
+    parts = network(np.random.default_rng(8), 9, count=3)
+    before = [changed(part, lambda _, value: value.copy()) for part in parts]
+    found = answer(*parts)
+    voltage_sensitivities(found, "n01", "earth")
+    for one, other in zip(parts, before, strict=True):
+        for field in dataclasses.fields(one):
+            np.testing.assert_array_equal(getattr(one, field.name), getattr(other, field.name))
+
+
 def test_blocks_do_not_show() -> None:
     """More networks than one block holds, beside the same ones in two halves."""
     parts = network(np.random.default_rng(4), 12, count=3000)
