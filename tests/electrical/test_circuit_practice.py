@@ -82,6 +82,8 @@ def test_a_real_transformer_drops_under_load_and_magnetises_without() -> None:
     idle, loaded = answer(*bench()), answer(*bench(), Resistor("load", "pole1", "pole2", column(50.0)))
     assert 0.0 < amperes(idle, "bench.primary_winding") < 0.06
     assert amperes(idle, "bench.secondary_winding") == 0.0
+    np.testing.assert_allclose(current_through(loaded, "bench.secondary_winding"), current_through(loaded, "load"))
+    assert current_through(loaded, "load")[0].real > 0.0
     assert 0.9 * 230.0 < volts(loaded, "pole1", "pole2") < volts(idle, "pole1", "pole2") < 230.0
 
 

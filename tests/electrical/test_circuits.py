@@ -278,6 +278,7 @@ def test_a_part_floats_in_those_networks_only_where_its_link_is_open() -> None:
 def test_without_earth_among_the_nodes_all_floats() -> None:
     found = answer(Resistor("r", "a", "b", column(5.0)), CurrentSource("i", "a", "b", column(2.0)))
     assert found.islands[0].nodes == ("a", "b")
+    assert found.potential_v.tolist() == [[0.0, pytest.approx(-10.0)]]
     assert voltage_between(found, "a", "b") == pytest.approx([10.0])
 
 
@@ -345,10 +346,11 @@ def test_a_current_source_without_a_way_back_is_named() -> None:
 
 def test_what_hangs_on_a_winding_alone_is_undetermined() -> None:
     """The primary carries nothing, the secondary hangs on one end: no voltage is fixed, no current is in doubt."""
-    kind, nodes, elements, networks = only_defect(
-        IdealTransformer("t", "a", "earth", "b", "earth", column(2.0)), Resistor("r", "c", "earth", column(1.0))
-    )
-    assert (kind, nodes, elements, networks) == ("undetermined", ("a", "b"), (), [True])
+    parts = (IdealTransformer("t", "a", "earth", "b", "earth", column(2.0)), Resistor("r", "c", "earth", column(1.0)))
+    assert only_defect(*parts) == ("undetermined", ("a", "b"), (), [True])
+    found = answer(*parts)
+    assert np.isnan(voltage_between(found, "b", "earth")).all()
+    assert not found.current_a.any()
 
 
 def test_transformers_side_by_side() -> None:
@@ -403,6 +405,21 @@ def test_a_value_that_cannot_be_leaves_its_network_unknown_and_no_other(part: El
     assert np.isfinite(found.current_a[0]).all()
     assert np.isnan(found.current_a[1]).all()
     assert np.isnan(power_imbalance(found)).tolist() == [False, True]
+
+
+def test_nothing_is_said_of_a_network_with_an_unknown_value() -> None:
+    """An unknown resistance is not an open one: neither floating nor conflict is claimed."""
+    found = answer(
+        Resistor("insulation", "a", "earth", column(math.nan)),
+        CurrentSource("drive", "a", "earth", column(1.0)),
+        ideal("e", "b", "earth", 5.0),
+        ideal("unknown", "b", "earth", math.nan),
+    )
+    assert {(d.kind, d.elements) for d in found.defects} == {
+        ("impossible-value", ("insulation",)),
+        ("impossible-value", ("unknown",)),
+    }
+    assert not found.islands
 
 
 def test_an_unknown_frequency_leaves_its_network_unknown() -> None:

@@ -39,7 +39,9 @@ def floating_islands(equations: Equations) -> tuple[Island, ...]:
     layout = equations.layout
     found: dict[tuple[tuple[str, ...], str], Mask] = {}
     for at, fixing in enumerate(equations.fixings):
-        here = equations.which == at
+        here = equations.kind(at)
+        if not here.any():
+            continue
         for own in sorted({node for node in fixing.reference if layout.row[node] >= 0}):
             nodes = tuple(layout.nodes[node] for node, of in enumerate(fixing.reference) if of == own)
             key = (nodes, layout.nodes[own])
@@ -96,7 +98,7 @@ def conflicting_sources(equations: Equations, terms: Sequence[tuple[int, int, Ph
     layout = equations.layout
     found: list[tuple[Parts, Mask]] = []
     for at, fixing in enumerate(equations.fixings):
-        here = equations.which == at
+        here = equations.kind(at)
         for condition in fixing.conditions:
             shares: dict[int, Phasor] = {}
             size = np.zeros(len(here))
@@ -135,7 +137,7 @@ def undetermined_parts(equations: Equations) -> list[Defect]:
         lost = [unknown for unknown, is_lost in enumerate(fixing.lost) if is_lost]
         nodes = tuple(name for name, row in zip(layout.nodes, layout.row, strict=True) if row in lost)
         elements = {element for element, own in enumerate(layout.own_unknown) if own in lost}
-        found.append(((nodes, _names(equations, elements)), (equations.which == at) & bool(lost)))
+        found.append(((nodes, _names(equations, elements)), equations.kind(at) & bool(lost)))
     return _merged(UNDETERMINED, found)
 
 

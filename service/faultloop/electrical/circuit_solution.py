@@ -43,13 +43,33 @@ class Island:
 
 @dataclass(frozen=True, slots=True)
 class Equations:
-    """A circuit made ready: its laws, and how each of its networks is made solvable."""
+    """A circuit made ready: its laws, how each of its networks is made solvable, and whose values can all hold."""
 
     circuit: Circuit
     layout: Layout
     laws: tuple[Law, ...]
     fixings: tuple[Fixing, ...]
     which: NDArray[np.intp]
+    usable: Mask
+
+    def kind(self, at: int) -> Mask:
+        """Usable networks of one fixing.
+
+        Parameters
+        ----------
+        at : int
+            Index of the fixing.
+
+        Returns
+        -------
+        (n,) array of bool
+            Of a network with an impossible value nothing is said, for it is not known what is open in it.
+
+        References
+        ----------
+        .. [1] IEC 60050-131:2002, 131-13 (connected network).
+        """
+        return np.asarray((self.which == at) & self.usable, np.bool_)
 
 
 @dataclass(frozen=True, slots=True)

@@ -54,7 +54,7 @@ def solve(circuit: Circuit) -> Solution:
     layout = lay_out(circuit)
     circuit = spread(circuit)
     laws, good = circuit_laws(circuit)
-    equations = Equations(circuit, layout, laws, *fixings(layout, laws))
+    equations = Equations(circuit, layout, laws, *fixings(layout, laws), np.logical_and.reduce(good))
     terms = source_terms(layout, laws)
     right = np.zeros((len(equations.which), layout.unknowns), np.complex128)
     for _, row, term in terms:
