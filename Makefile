@@ -28,7 +28,7 @@ unit: $(READY) ngspice
 # The circuit simulator that tests/reference compares with; without it those tests fail and say so.
 ngspice:
 	@command -v ngspice >/dev/null || [ "$$(id -u)" != 0 ] || ! command -v apt-get >/dev/null || \
-		{ apt-get update -qq && apt-get install -y -qq --no-install-recommends ngspice; } >/dev/null || true
+		{ apt-get update -qq && apt-get install -y -qq --no-install-recommends ngspice; } >/dev/null 2>&1 || true
 
 trials: $(READY)
 	$(BIN)/python -m tests.trials

@@ -337,6 +337,12 @@ def test_links_in_a_loop_share_a_current_in_no_known_way() -> None:
     assert np.isnan(current_through(found, "one")).all()
 
 
+def test_a_link_from_a_node_to_itself_carries_what_nobody_knows() -> None:
+    for node in ("a", "earth"):
+        assert only_defect(link("loop", node, node), LOAD) == ("undetermined", (), ("loop",), [True])
+    assert only_defect(link("loop", "earth", "earth")) == ("undetermined", (), ("loop",), [True])
+
+
 def test_a_current_source_without_a_way_back_is_named() -> None:
     drive = CurrentSource("drive", "b", "earth", column(1.0, 0.0))
     part = Resistor("r", "b", "c", column(5.0))

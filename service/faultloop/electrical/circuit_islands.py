@@ -146,7 +146,7 @@ def fixings(layout: Layout, laws: Sequence[Law]) -> tuple[tuple[Fixing, ...], ND
         reference = islands(layout, laws, shape)
         turns = iter(kinds[members, len(laws) :].T)
         plain = [_plain(law, at, shape[at], turns, len(members)) for at, law in enumerate(laws)]
-        for member, fixing in zip(members, _fix(layout, plain, reference), strict=True):
+        for member, fixing in zip(members, _fix(layout, plain, reference, len(members)), strict=True):
             place[member] = found.setdefault(fixing, len(found))
     return tuple(found), place[which]
 
@@ -179,7 +179,7 @@ def _plain(law: Law, at: int, state: int, ratios: Iterator[Array], count: int) -
     return RatioLaw(next(ratios)) if isinstance(law, RatioLaw) else CurrentLaw(zero.astype(np.complex128))
 
 
-def _fix(layout: Layout, laws: Sequence[Law], reference: tuple[int, ...]) -> list[Fixing]:
+def _fix(layout: Layout, laws: Sequence[Law], reference: tuple[int, ...], count: int) -> list[Fixing]:
     """Fixings of networks that differ in ratios only."""
     floating = sorted({node for node in reference if layout.row[node] >= 0})
     pins = [(layout.row[node], layout.row[node]) for node in floating]
@@ -187,31 +187,38 @@ def _fix(layout: Layout, laws: Sequence[Law], reference: tuple[int, ...]) -> lis
     for node, own in enumerate(reference):
         if own in floating:
             sums[floating.index(own), layout.row[node]] = 1.0
+    nothing: tuple[Array, Array] = (np.zeros((0, layout.unknowns)), np.zeros((0, layout.unknowns)))
+    spaces = _null_spaces(layout, laws, pins) if _has_ideal_parts(laws) else [nothing] * count
+    found = []
+    for left, right in spaces:
+        conditions, rows = _reduced(left)
+        free, unknowns = _reduced(right)
+        found.append(
+            Fixing(
+                reference=reference,
+                pins=(*pins, *zip(rows, unknowns, strict=True)),
+                lost=tuple(bool(one) for one in (free != 0.0).any(axis=0)),
+                conditions=tuple(tuple(row) for row in np.concatenate([sums, conditions]).tolist()),
+            )
+        )
+    return found
+
+
+def _has_ideal_parts(laws: Sequence[Law]) -> bool:
+    """Whether the rank can be short: positive impedances alone, counted from a node in each island, have it all."""
+    return any(isinstance(law, RatioLaw) or (isinstance(law, ImpedanceLaw) and law.ideal.any()) for law in laws)
+
+
+def _null_spaces(layout: Layout, laws: Sequence[Law], pins: Sequence[tuple[int, int]]) -> Iterator[tuple[Array, Array]]:
+    """Of each network, the sums of equations in which all unknowns cancel, and the unknowns that nothing determines."""
     matrix = left_side(layout, laws, slice(None)).real
     for row, unknown in pins:
         matrix[:, row, :] = 0.0
         matrix[:, row, unknown] = 1.0
-    if layout.unknowns == 0:
-        return [Fixing(reference, (), (), ())] * len(matrix)
     sizes = np.linalg.svd(matrix, compute_uv=False)
-    short = sizes < NO_RANK * sizes[:, :1]
-    found = []
-    for one, lacking in zip(matrix, short, strict=True):
-        conditions, free = np.zeros((2, 0, layout.unknowns))
-        if lacking.any():
-            left, _, right = np.linalg.svd(one)
-            conditions, free = left.T[lacking], right[lacking]
-        conditions, taken = _reduced(conditions)
-        free, unknowns = _reduced(free)
-        found.append(
-            Fixing(
-                reference,
-                (*pins, *zip(taken, unknowns, strict=True)),
-                tuple(bool(one) for one in (free != 0.0).any(axis=0)),
-                tuple(tuple(row) for row in np.concatenate([sums, conditions]).tolist()),
-            )
-        )
-    return found
+    for one, lacking in zip(matrix, sizes < NO_RANK * np.maximum(sizes[:, :1], 1.0), strict=True):
+        left, _, right = np.linalg.svd(one) if lacking.any() else (one, None, one)
+        yield left.T[lacking], right[lacking]
 
 
 def _reduced(basis: Array) -> tuple[Array, list[int]]:
