@@ -4,7 +4,7 @@ VENV := .venv
 BIN := $(VENV)/bin
 READY := $(VENV)/.ready
 
-.PHONY: demo test lint unit trials benchmark openapi lock clean
+.PHONY: demo test lint unit trials benchmark openapi lock ngspice clean
 
 $(READY): requirements.txt pyproject.toml
 	test -x $(BIN)/python || $(PYTHON) -m venv $(VENV)
@@ -25,14 +25,20 @@ lint: $(READY)
 	$(BIN)/compose-lint check --quiet --no-pager --fail-on medium --strict-config --config docker/compose-lint.yaml \
 		docker/compose.yaml
 
-unit: $(READY)
+unit: $(READY) ngspice
 	$(BIN)/python -m pytest
+
+# The circuit simulator that tests/reference compares with; without it those tests fail and say so.
+ngspice:
+	@command -v ngspice >/dev/null || [ "$$(id -u)" != 0 ] || ! command -v apt-get >/dev/null || \
+		{ apt-get update -qq && apt-get install -y -qq --no-install-recommends ngspice; } >/dev/null 2>&1 || true
 
 trials: $(READY)
 	$(BIN)/python -m tests.trials
 
 benchmark: $(READY)
 	$(BIN)/python -m tests.benchmarks.http_speed
+	$(BIN)/python -m tests.benchmarks.circuits_speed
 
 openapi: $(READY)
 	$(BIN)/faultloop openapi > openapi/openapi.json

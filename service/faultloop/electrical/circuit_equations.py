@@ -1,0 +1,202 @@
+"""Laws of a circuit's elements, and its equations A·x = b by modified nodal analysis."""
+
+from collections.abc import Sequence
+from dataclasses import fields, replace
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from faultloop.electrical.circuit_elements import (
+    AdmittanceLaw,
+    CurrentLaw,
+    Element,
+    ImpedanceLaw,
+    Law,
+    Mask,
+    Phasor,
+    RatioLaw,
+    element_law,
+)
+from faultloop.electrical.circuit_layout import Circuit, Layout
+
+
+def spread(circuit: Circuit) -> Circuit:
+    """Give every value the length of the many networks.
+
+    Parameters
+    ----------
+    circuit : Circuit
+        Values (n,) or (1,).
+
+    Returns
+    -------
+    Circuit
+        Values (n,), float64 or complex128.
+
+    Raises
+    ------
+    ValueError
+        If a value is not a column, or two lengths disagree; the message names the element.
+
+    References
+    ----------
+    .. [1] IEC 60050-131:2002 (laws of ideal circuit elements).
+    """
+    lengths = {value.shape for element in circuit.elements for value in _values(element).values()}
+    lengths.add(circuit.frequency_hz.shape)
+    longer = sorted(lengths - {(1,)})
+    shape = longer[0] if longer else (1,)
+    if len(longer) > 1 or len(shape) != 1:
+        told = ", ".join(f"{e.name}: {[v.shape for v in _values(e).values()]}" for e in circuit.elements)
+        raise ValueError(f"every value must be a column of one length, or of length one; found {told}")
+    elements = tuple(
+        replace(element, **{name: _column(value, shape[0]) for name, value in _values(element).items()})
+        for element in circuit.elements
+    )
+    return replace(circuit, elements=elements, frequency_hz=_column(circuit.frequency_hz, shape[0]))
+
+
+def _values(element: Element) -> dict[str, NDArray[Any]]:
+    """The arrays of an element by field."""
+    told = {field.name: getattr(element, field.name) for field in fields(element)}
+    return {name: np.asarray(value) for name, value in told.items() if not isinstance(value, str)}
+
+
+def _column(value: NDArray[Any], count: int) -> Any:
+    """One value a network, of its own memory."""
+    dtype = np.complex128 if np.iscomplexobj(value) else np.float64
+    return np.array(np.broadcast_to(value, (count,)), dtype=dtype)
+
+
+def circuit_laws(circuit: Circuit) -> tuple[tuple[Law, ...], tuple[Mask, ...]]:
+    """Laws of all elements, and where their values can hold.
+
+    Parameters
+    ----------
+    circuit : Circuit
+        Values (n,).
+
+    Returns
+    -------
+    tuple of Law
+        One an element.
+    tuple of (n,) array of bool
+        One an element; false in every one where the frequency is unknown, negative or without end.
+
+    References
+    ----------
+    .. [1] IEC 60050-131:2002 (laws of ideal circuit elements).
+    """
+    frequency = circuit.frequency_hz
+    known = (frequency >= 0.0) & np.isfinite(frequency)
+    angular = 2.0 * np.pi * np.where(known, frequency, 0.0)
+    pairs = [element_law(element, angular) for element in circuit.elements]
+    return tuple(law for law, _ in pairs), tuple(good & known for _, good in pairs)
+
+
+def left_side(layout: Layout, laws: Sequence[Law], chosen: slice) -> Phasor:
+    """Matrices A of some networks: a row for the current balance of each node, then one for each voltage equation.
+
+    Parameters
+    ----------
+    layout : Layout
+        Places of m unknowns.
+    laws : sequence of Law
+        One an element, (n,) coefficients.
+    chosen : slice
+        Which k of the n networks.
+
+    Returns
+    -------
+    (k, m, m) array of complex
+        Earth has no row and no column.
+
+    Notes
+    -----
+    Coefficients are added one by one along (k,), never as a product of matrices, so that a network's matrix does not
+    depend on its neighbours.
+
+    References
+    ----------
+    .. [1] C.-W. Ho, A. E. Ruehli, P. A. Brennan, "The modified nodal approach to network analysis",
+       IEEE Trans. Circuits Syst. 22(6), 1975, 504-509.
+    """
+    count = len(range(*chosen.indices(_length(laws[0]))))
+    matrix = np.zeros((count, layout.unknowns, layout.unknowns), np.complex128)
+    real, imag = matrix.real, matrix.imag
+    for at, law in enumerate(laws):
+        plus, minus = _rows(layout, layout.first_branch[at])
+        own = layout.own_unknown[at]
+        if isinstance(law, AdmittanceLaw):
+            for row, column, sign in _pairs(plus, minus):
+                real[:, row, column] += sign * law.real[chosen]
+                imag[:, row, column] += sign * law.imag[chosen]
+        elif isinstance(law, ImpedanceLaw):
+            for node, sign in _live(plus, minus):
+                real[:, node, own] += sign
+                real[:, own, node] += sign * law.scale[chosen]
+            real[:, own, own] -= law.real[chosen]
+            imag[:, own, own] -= law.imag[chosen]
+        elif isinstance(law, RatioLaw):
+            for node, sign in _live(plus, minus):
+                real[:, node, own] += sign
+                real[:, own, node] += sign
+            for node, sign in _live(*_rows(layout, layout.first_branch[at] + 1)):
+                real[:, node, own] -= sign * law.ratio[chosen]
+                real[:, own, node] -= sign * law.ratio[chosen]
+    return matrix
+
+
+def source_terms(layout: Layout, laws: Sequence[Law]) -> list[tuple[int, int, Phasor]]:
+    """What each source adds to the right side b.
+
+    Parameters
+    ----------
+    layout : Layout
+        Places of m unknowns.
+    laws : sequence of Law
+        One an element, (n,) coefficients.
+
+    Returns
+    -------
+    list of (element, row, (n,) array of complex)
+        In the order of the elements.
+
+    References
+    ----------
+    .. [1] C.-W. Ho, A. E. Ruehli, P. A. Brennan, "The modified nodal approach to network analysis",
+       IEEE Trans. Circuits Syst. 22(6), 1975, 504-509.
+    """
+    terms: list[tuple[int, int, Phasor]] = []
+    for at, law in enumerate(laws):
+        if isinstance(law, ImpedanceLaw):
+            terms.append((at, layout.own_unknown[at], law.emf * law.scale))
+        elif isinstance(law, CurrentLaw):
+            live = _live(*_rows(layout, layout.first_branch[at]))
+            terms += [(at, node, sign * law.injected) for node, sign in live]
+    return terms
+
+
+def _length(law: Law) -> int:
+    """Number of networks."""
+    if isinstance(law, AdmittanceLaw | ImpedanceLaw):
+        return len(law.real)
+    return len(law.injected) if isinstance(law, CurrentLaw) else len(law.ratio)
+
+
+def _rows(layout: Layout, branch: int) -> tuple[int, int]:
+    """Unknowns of the two nodes of a branch, -1 for earth."""
+    plus, minus = layout.terminals[branch]
+    return layout.row[plus], layout.row[minus]
+
+
+def _live(plus: int, minus: int) -> list[tuple[int, float]]:
+    """The nodes that have an unknown, with the sign of the branch at them."""
+    return [(node, sign) for node, sign in ((plus, 1.0), (minus, -1.0)) if node >= 0]
+
+
+def _pairs(plus: int, minus: int) -> list[tuple[int, int, float]]:
+    """Where an admittance stands in the matrix, with its sign."""
+    live = _live(plus, minus)
+    return [(row, column, one * other) for row, one in live for column, other in live]
