@@ -6,6 +6,9 @@ from typing import Any
 
 from jinja2 import Environment, PackageLoader, StrictUndefined, Template
 
+from faultloop.assessment.texts import texts
+from faultloop.reports.texts import words as drawn
+
 
 @lru_cache(maxsize=1)
 def _template() -> Template:
@@ -16,13 +19,15 @@ def _template() -> Template:
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    environment.filters |= {"ranges": ranges, "pairs": pairs, "some": some}
+    environment.filters |= {"ranges": ranges, "pairs": pairs, "some": some, "named": named}
     return environment.get_template("workshop.html")
 
 
 def workshop_page(view: Mapping[str, Any], words: Mapping[str, Any]) -> str:
     """The page of a workshop view, with the words of its language."""
-    return _template().render(view=view, words=words)
+    language = words["language"]
+    titles = {check: told.title for check, told in texts(language).checks.items()}
+    return _template().render(view=view, words=words, verdicts=drawn(language).verdicts, titles=titles)
 
 
 def ranges(numbers: list[int], to: str = "{first} to {last}") -> str:
@@ -42,6 +47,11 @@ def pairs(told: Mapping[str, Any]) -> str:
     return ", ".join(f"{name} = {value}" for name, value in told.items())
 
 
-def some(texts: list[str], most: int = 12) -> str:
+def named(codes: list[str], names: Mapping[str, str]) -> list[str]:
+    """What codes are called."""
+    return [names[code] for code in codes]
+
+
+def some(told: list[str], quoted: str = "“{text}”", most: int = 12) -> str:
     """The first of some texts as they came, in quotation marks; an ellipsis where there are more."""
-    return ", ".join(f"“{text}”" for text in texts[:most]) + (" …" if len(texts) > most else "")
+    return ", ".join(quoted.format(text=text) for text in told[:most]) + (" …" if len(told) > most else "")
