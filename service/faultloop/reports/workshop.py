@@ -1,5 +1,6 @@
 """The workshop view as a page of HTML that reads well on a screen and on A4; no scripts, everything escaped."""
 
+import re
 from collections.abc import Mapping
 from functools import lru_cache
 from typing import Any
@@ -8,6 +9,8 @@ from jinja2 import Environment, PackageLoader, StrictUndefined, Template
 
 from faultloop.assessment.texts import texts
 from faultloop.reports.texts import words as drawn
+
+_BEFORE_UNIT = re.compile(r"(?<=\d) (?=(?:Ω|[mk]?A|V|m?s|A²s|mm²|°C|%)(?!\w))")
 
 
 @lru_cache(maxsize=1)
@@ -19,7 +22,7 @@ def _template() -> Template:
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    environment.filters |= {"ranges": ranges, "pairs": pairs, "some": some, "named": named}
+    environment.filters |= {"ranges": ranges, "pairs": pairs, "some": some, "named": named, "unparted": unparted}
     return environment.get_template("workshop.html")
 
 
@@ -55,3 +58,8 @@ def named(codes: list[str], names: Mapping[str, str]) -> list[str]:
 def some(told: list[str], quoted: str = "“{text}”", most: int = 12) -> str:
     """The first of some texts as they came, in quotation marks; an ellipsis where there are more."""
     return ", ".join(quoted.format(text=text) for text in told[:most]) + (" …" if len(told) > most else "")
+
+
+def unparted(text: str) -> str:
+    """A text whose numbers stay on one line with their units."""
+    return _BEFORE_UNIT.sub("\N{NO-BREAK SPACE}", text)
