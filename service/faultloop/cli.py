@@ -100,14 +100,14 @@ def _assess(options: argparse.Namespace) -> int:
     for name, value in read.reading["defaults"].items():
         print(f"Default: {name} = {value}", file=sys.stderr)
     if options.output == "html":
-        return _workshop_page(read, batch, options.population, upload.input_digest)
+        return _workshop_page(read, batch, options, upload.input_digest)
     sys.stdout.write(answer_csv(batch) if options.output == "csv" else table(batch) + "\n")
     if options.output == "table":
         print("An aid to a competent person; it gives no permission, and local rules and licensed persons decide.")
     return 0
 
 
-def _workshop_page(read: "Read", batch: "Judged", population: int | None, input_digest: str) -> int:
+def _workshop_page(read: "Read", batch: "Judged", options: argparse.Namespace, input_digest: str) -> int:
     """Print the workshop view of a file as a page."""
     from faultloop.exchange.workshop import PopulationTooSmall, workshop
     from faultloop.exchange.workshop_view import Workshop
@@ -115,11 +115,12 @@ def _workshop_page(read: "Read", batch: "Judged", population: int | None, input_
     from faultloop.reports.workshop import workshop_page
 
     try:
-        view = workshop(read, batch, {}, population, input_digest)
+        view = workshop(read, batch, {}, options.population, input_digest, options.language)
     except PopulationTooSmall as error:
         print(f"faultloop: population: {error}", file=sys.stderr)
         return 1
-    sys.stdout.write(workshop_page(Workshop.model_validate(view).model_dump(), workshop_words().model_dump()))
+    words = workshop_words(options.language).model_dump()
+    sys.stdout.write(workshop_page(Workshop.model_validate(view).model_dump(), words))
     return 0
 
 
@@ -138,6 +139,8 @@ def _default(text: str) -> str:
 
 
 def _parser() -> argparse.ArgumentParser:
+    from faultloop.assessment.texts import LANGUAGES
+
     parser = argparse.ArgumentParser(prog="faultloop", description=__doc__)
     parser.add_argument("--version", action="version", version=__version__)
     commands = parser.add_subparsers(required=True, metavar="COMMAND")
@@ -153,6 +156,9 @@ def _parser() -> argparse.ArgumentParser:
     assess.add_argument("file", metavar="FILE", help="CSV file, or - for standard input")
     assess.add_argument("--output", choices=("table", "csv", "html"), default="table")
     assess.add_argument("--population", type=int, help="number of points that there are, for the page of --output html")
+    assess.add_argument(
+        "--language", choices=LANGUAGES, default=LANGUAGES[0], help="of the page of --output html (default %(default)s)"
+    )
     assess.add_argument("--default", type=_default, action="append", default=[], metavar="COLUMN=VALUE")
     assess.add_argument("--decimal", choices=("point", "comma"), help="decimal mark, where the file leaves it open")
     assess.add_argument(

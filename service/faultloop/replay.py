@@ -100,8 +100,11 @@ def changed_since(stored: dict[str, Any], rows: Rows) -> list[str]:
     return [name for name, key in named.items() if told[key] != now[key]]
 
 
-def batch_row(upload: Upload, answer: bytes, number: int) -> dict[str, Any] | None:
-    """One row of a stored batch in full, computed again under the stored edition; None where there is no such row."""
+def batch_row(upload: Upload, answer: bytes, number: int, language: str) -> dict[str, Any] | None:
+    """One row of a stored batch in full, computed again under the stored edition; None where there is no such row.
+
+    A batch stores no words but those of its questions and faults, so the others are made in the language asked for.
+    """
     rows, stored = read_upload(upload).rows, json.loads(answer)
     if number not in rows.numbers:
         return None
@@ -111,15 +114,15 @@ def batch_row(upload: Upload, answer: bytes, number: int) -> dict[str, Any] | No
     now = Judged(rows, [None] * len(rows.pattern))
     if told.request is not None:
         request = pinned(told, editions_of(stored))
-        body["assessment"] = assess_requests([request], [sha256(request_bytes(told.request))])[0]
+        body["assessment"] = assess_requests([request], [sha256(request_bytes(told.request))], [language])[0]
         now.found[at] = judged_alone(request)
     body["identical"] = json.loads(json_bytes(stored_row(now, at))) == kept
     return {**body, "changed": changed_since(stored, rows)}
 
 
-def batch_workshop(upload: Upload, answer: bytes, population: int | None) -> dict[str, Any]:
+def batch_workshop(upload: Upload, answer: bytes, population: int | None, language: str) -> dict[str, Any]:
     """The workshop view of a stored batch, computed again under the stored editions."""
     read, stored = read_upload(upload), json.loads(answer)
     editions = editions_of(stored)
-    view = workshop(read, judged(read.rows, editions), editions, population)
+    view = workshop(read, judged(read.rows, editions), editions, population, language=language)
     return view | {"provenance": stored["provenance"], "changed": changed_since(stored, read.rows)}

@@ -3,14 +3,16 @@
 import json
 import re
 from pathlib import Path
-from typing import Any
+from typing import Any, get_args
 
 import pytest
 
 from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.texts import LANGUAGES, texts
+from faultloop.exchange.answers import UrgencyWord
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
+from faultloop.exchange.workshop_words import workshop_words
 from faultloop.reports.texts import words
 from tests.assessment.bodies import Body
 
@@ -36,8 +38,9 @@ def leaves(told: Any, place: str = "") -> dict[str, Any]:
 
 
 def everything(language: str) -> dict[str, Any]:
-    """All that is said in a language, in answers and in drawings."""
-    return leaves({"answers": texts(language).model_dump(), "drawings": words(language).model_dump()})
+    """All that is said in a language, in answers, in drawings and in the workshop view."""
+    workshop = workshop_words(language).model_dump()
+    return leaves({"answers": texts(language).model_dump(), "drawings": words(language).model_dump(), "view": workshop})
 
 
 def quoted(text: str) -> list[str]:
@@ -73,6 +76,19 @@ def test_a_text_is_translated_and_not_copied(language: str) -> None:
     bare = {at: re.sub(r"\{[^}]*\}|(?<!\S)@\S+", "", text) for at, text in english.items() if isinstance(text, str)}
     spoken = {at for at, text in bare.items() if len(re.findall(r"[a-z]{3,}", text)) > 1}
     assert [at for at in sorted(spoken & other.keys()) if other[at] == english[at]] == []
+
+
+@pytest.mark.parametrize("language", OTHERS)
+def test_who_acts_is_the_same_in_every_language(language: str) -> None:
+    english, other = workshop_words("en"), workshop_words(language)
+    assert (other.fixes, other.default) == (english.fixes, english.default)
+
+
+@pytest.mark.parametrize("language", LANGUAGES)
+def test_every_urgency_and_every_change_has_a_name(language: str) -> None:
+    held = workshop_words(language)
+    assert list(held.urgencies) == list(get_args(UrgencyWord))
+    assert set(held.changes) == {"engine", "rules", "devices"}
 
 
 @pytest.mark.parametrize("language", LANGUAGES)

@@ -17,7 +17,7 @@ from faultloop.exchange.uploads import Upload, read_upload
 from faultloop.exchange.workshop import PopulationTooSmall, workshop
 from faultloop.exchange.workshop_view import Workshop
 from faultloop.exchange.workshop_words import workshop_words
-from faultloop.reports.workshop import ranges, workshop_page
+from faultloop.reports.workshop import ranges, unparted, workshop_page
 from faultloop.rules.strict import DataFileError
 from tests.api.client import problem, served
 from tests.api.test_batches import migrated
@@ -25,19 +25,21 @@ from tests.assessment.workshop import FILE
 from tests.exchange.files import GOOD, HEAD
 
 
-def view(content: str | bytes, population: int | None = None, kind: str = "csv") -> dict[str, Any]:
+def view(
+    content: str | bytes, population: int | None = None, kind: str = "csv", language: str = "en"
+) -> dict[str, Any]:
     """The workshop view of a file."""
     raw = content if isinstance(content, bytes) else content.encode()
     upload = Upload("json" if kind == "json" else "csv", raw, BatchQuery())
     read = read_upload(upload)
-    told = workshop(read, judged(read.rows), {}, population, upload.input_digest)
+    told = workshop(read, judged(read.rows), {}, population, upload.input_digest, language)
     Workshop.model_validate(told)
     return told
 
 
-def page(told: dict[str, Any]) -> str:
+def page(told: dict[str, Any], language: str = "en") -> str:
     """The page of a view."""
-    return workshop_page(Workshop.model_validate(told).model_dump(), workshop_words().model_dump())
+    return workshop_page(Workshop.model_validate(told).model_dump(), workshop_words(language).model_dump())
 
 
 def test_the_invented_workshop_as_work() -> None:
@@ -110,7 +112,7 @@ class _Outline(HTMLParser):
 
     def handle_starttag(self, tag: str, attrs: list[tuple[str, str | None]]) -> None:
         self.seen.append((tag, dict(attrs)))
-        if tag not in ("meta", "link", "br"):
+        if tag not in ("meta", "link", "br", "col"):
             self.open.append(tag)
 
     def handle_endtag(self, tag: str) -> None:
@@ -192,6 +194,12 @@ def test_over_http_as_body_and_as_page(tmp_path: Path) -> None:
 def test_ranges_are_drawn_together() -> None:
     assert ranges([9, 2, 4, 5, 6, 10, 12]) == "2, 4 to 6, 9, 10, 12"
     assert ranges([]) == ""
+
+
+def test_a_number_stays_with_its_unit() -> None:
+    assert unparted("limit = 0.95 × 230 V / 160 A = 1.366 Ω.") == "limit = 0.95 × 230\xa0V / 160\xa0A = 1.366\xa0Ω."
+    assert unparted("20 to 70 °C, 5 A.") == "20 to 70\xa0°C, 5\xa0A."
+    assert unparted("2 Again, 4 Various, 1 set") == "2 Again, 4 Various, 1 set"
 
 
 def test_a_language_without_words_is_refused() -> None:

@@ -11,9 +11,10 @@ from fastapi import APIRouter, Header, Path, Query, Request, Response
 
 from faultloop import __version__
 from faultloop.api.bodies import limited_body
-from faultloop.api.negotiation import media_type, unless_held
+from faultloop.api.negotiation import ASKED_LANGUAGE, language, media_type, unless_held
 from faultloop.api.problems import Refused
 from faultloop.api.worker import Worker
+from faultloop.assessment.texts import LANGUAGES
 from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer, answer_csv, restored
 from faultloop.exchange.batches import Batch, BatchQuery, BatchRow, WorkshopQuery
@@ -184,24 +185,35 @@ async def get_batch(
     return unless_held(_answered(kept, 200, kind, await _run(request, lambda: _content(kept, kind))), if_none_match)
 
 
-@router.get("/{id:uuid}/rows/{number}", response_model=BatchRow, summary="Read one row of a batch in full")
+@router.get(
+    "/{id:uuid}/rows/{number}",
+    response_model=BatchRow,
+    openapi_extra=ASKED_LANGUAGE,
+    summary="Read one row of a batch in full",
+)
 async def get_batch_row(
     id: UUID,  # noqa: A002
     number: Annotated[int, Path(ge=1, le=10_000_000, description="Row as the batch's answer numbers it")],
     request: Request,
 ) -> Response:
-    """Compute the stored row again under the stored edition, with its texts; say what has changed since."""
-    kept = await _found(request, id)
-    body = await _run(request, lambda: batch_row(upload_of(kept), kept.record.answer, number))
+    """Compute the stored row again under the stored edition, with its texts; say what has changed since.
+
+    Questions and errors about cells are stored with the batch, in English.
+    """
+    kept, spoken = await _found(request, id), language(request)
+    body = await _run(request, lambda: batch_row(upload_of(kept), kept.record.answer, number, spoken))
     if body is None:
         raise Refused("not-found", "The batch has no row of this number.")
-    return Response(json_bytes(body), media_type=JSON, headers={"Cache-Control": "no-store"})
+    told = spoken if "assessment" in body else LANGUAGES[0]
+    headers = {"Cache-Control": "no-store", "Content-Language": told, "Vary": "Accept-Language"}
+    return Response(json_bytes(body), media_type=JSON, headers=headers)
 
 
 @router.get(
     "/{id:uuid}/workshop",
     response_model=Workshop,
     responses={200: {"model": Workshop, "content": {HTML: {"schema": {"type": "string", "description": "A page"}}}}},
+    openapi_extra=ASKED_LANGUAGE,
     summary="Read a batch as a list of work",
 )
 async def get_batch_workshop(
@@ -209,23 +221,26 @@ async def get_batch_workshop(
     query: Annotated[WorkshopQuery, Query()],
     request: Request,
 ) -> Response:
-    """What to take out of use, what to put right in order of risk, what to ask, what the sample does not show."""
-    kept, kind = await _found(request, id), _liked(request, HTML)
-    content = await _run(request, lambda: _workshop(kept, query.population, kind))
-    headers = {"Cache-Control": "no-store", "Vary": "Accept"}
+    """What to take out of use, what to put right in order of risk, what to ask, what the sample does not show.
+
+    Questions and errors about cells are in English in every language.
+    """
+    kept, kind, spoken = await _found(request, id), _liked(request, HTML), language(request)
+    content = await _run(request, lambda: _workshop(kept, query.population, kind, spoken))
+    headers = {"Cache-Control": "no-store", "Content-Language": spoken, "Vary": "Accept, Accept-Language"}
     if kind == HTML:
         headers["Content-Security-Policy"] = "default-src 'none'; style-src 'unsafe-inline'"
     return Response(content, media_type=kind, headers=headers)
 
 
-def _workshop(kept: KeptBatch, population: int | None, kind: str) -> bytes:
-    view = batch_workshop(upload_of(kept), kept.record.answer, population)
+def _workshop(kept: KeptBatch, population: int | None, kind: str, language: str) -> bytes:
+    view = batch_workshop(upload_of(kept), kept.record.answer, population, language)
     stored_at = kept.stored_at.astimezone(UTC).isoformat(timespec="seconds").replace("+00:00", "Z")
     view |= {"id": kept.record.id, "stored_at": stored_at}
     if kind == JSON:
         return json_bytes(view)
     shown = Workshop.model_validate(view).model_dump()
-    return workshop_page(shown, workshop_words().model_dump()).encode()
+    return workshop_page(shown, workshop_words(language).model_dump()).encode()
 
 
 async def _found(request: Request, id: UUID) -> KeptBatch:  # noqa: A002

@@ -38,7 +38,7 @@ def workshop(
     view = _View(judged, workshop_words(language))
     if population is not None and population < view.points:
         raise PopulationTooSmall(f"the batch holds {view.points} different points")
-    for at, answer in _answers(judged, editions):
+    for at, answer in _answers(judged, editions, language):
         view.take(at, answer)
     for at, found in enumerate(judged.found):
         if found is None:
@@ -49,11 +49,12 @@ def workshop(
     }
 
 
-def _answers(judged: Judged, editions: Mapping[str, LoadedRules]) -> Iterator[tuple[int, Body]]:
+def _answers(judged: Judged, editions: Mapping[str, LoadedRules], language: str) -> Iterator[tuple[int, Body]]:
     places = [at for at, found in enumerate(judged.found) if found is not None]
     for begin in range(0, len(places), _CHUNK):
         chunk = places[begin : begin + _CHUNK]
-        yield from zip(chunk, assess_requests(requests_of(judged, chunk, editions)), strict=True)
+        requests = requests_of(judged, chunk, editions)
+        yield from zip(chunk, assess_requests(requests, languages=[language] * len(chunk)), strict=True)
 
 
 class _Groups(dict[Any, Body]):

@@ -3,6 +3,7 @@
 from functools import lru_cache
 from importlib import resources
 
+from faultloop.exchange.answers import UrgencyWord
 from faultloop.rules.strict import DataFileError, Sheet, Text, read_sheet, read_table
 
 
@@ -49,6 +50,8 @@ class Sentences(Sheet):
     defaults: Text
     touch: Text
     raw: Text
+    quoted: Text
+    cells: Text
     of: Text
     to: Text
     stop_use_none: Text
@@ -59,6 +62,8 @@ class Sentences(Sheet):
     changed: Text
     also: Text
     limits: Text
+    devices: Text
+    input: Text
 
 
 class SampleWords(Sheet):
@@ -93,6 +98,8 @@ class WorkshopWords(Sheet):
     """Everything that the view says in one language."""
 
     language: Text
+    urgencies: dict[UrgencyWord, Text]
+    changes: dict[str, Text]
     headings: Headings
     columns: Columns
     sentences: Sentences

@@ -1,10 +1,16 @@
 """The workshop view as a page of HTML that reads well on a screen and on A4; no scripts, everything escaped."""
 
+import re
 from collections.abc import Mapping
 from functools import lru_cache
 from typing import Any
 
 from jinja2 import Environment, PackageLoader, StrictUndefined, Template
+
+from faultloop.assessment.texts import texts
+from faultloop.reports.texts import words as drawn
+
+_BEFORE_UNIT = re.compile(r"(?<=\d) (?=(?:Ω|[mk]?A|V|m?s|A²s|mm²|°C|%)(?!\w))")
 
 
 @lru_cache(maxsize=1)
@@ -16,13 +22,15 @@ def _template() -> Template:
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    environment.filters |= {"ranges": ranges, "pairs": pairs, "some": some}
+    environment.filters |= {"ranges": ranges, "pairs": pairs, "some": some, "named": named, "unparted": unparted}
     return environment.get_template("workshop.html")
 
 
 def workshop_page(view: Mapping[str, Any], words: Mapping[str, Any]) -> str:
     """The page of a workshop view, with the words of its language."""
-    return _template().render(view=view, words=words)
+    language = words["language"]
+    titles = {check: told.title for check, told in texts(language).checks.items()}
+    return _template().render(view=view, words=words, verdicts=drawn(language).verdicts, titles=titles)
 
 
 def ranges(numbers: list[int], to: str = "{first} to {last}") -> str:
@@ -42,6 +50,16 @@ def pairs(told: Mapping[str, Any]) -> str:
     return ", ".join(f"{name} = {value}" for name, value in told.items())
 
 
-def some(texts: list[str], most: int = 12) -> str:
+def named(codes: list[str], names: Mapping[str, str]) -> list[str]:
+    """What codes are called."""
+    return [names[code] for code in codes]
+
+
+def some(told: list[str], quoted: str = "“{text}”", most: int = 12) -> str:
     """The first of some texts as they came, in quotation marks; an ellipsis where there are more."""
-    return ", ".join(f"“{text}”" for text in texts[:most]) + (" …" if len(texts) > most else "")
+    return ", ".join(quoted.format(text=text) for text in told[:most]) + (" …" if len(told) > most else "")
+
+
+def unparted(text: str) -> str:
+    """A text whose numbers stay on one line with their units."""
+    return _BEFORE_UNIT.sub("\N{NO-BREAK SPACE}", text)
