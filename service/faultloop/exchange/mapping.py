@@ -1,14 +1,12 @@
-"""A request in words -> one row of points, with the assumptions that had to be made."""
+"""A request in words -> one row of points: its supply, devices, circuit, and by another file its readings."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
 from functools import lru_cache
 
 import numpy as np
 
 from faultloop.assessment.points import (
     NO_DEVICE,
-    Bound,
     Choice,
     Current,
     Decision,
@@ -16,10 +14,7 @@ from faultloop.assessment.points import (
     Feeds,
     LetThrough,
     MeansOfEarthing,
-    Method,
     Number,
-    Polarity,
-    Reading,
     Role,
     Row,
     TemperaturePolicy,
@@ -29,8 +24,8 @@ from faultloop.assessment.tables import Tables, tables
 from faultloop.electrical.measurement import coverage_scale
 from faultloop.exchange import overcurrent as oc
 from faultloop.exchange import requests as rq
-from faultloop.exchange.fields import Instrument
-from faultloop.exchange.fields import Reading as ReadingBody
+from faultloop.exchange.mapped import Mapped
+from faultloop.exchange.mapped_readings import put_readings, unused
 from faultloop.exchange.own_rules import is_own
 from faultloop.protection import designations as ds
 from faultloop.protection.band import Band
@@ -42,8 +37,6 @@ from faultloop.protection.moulded_case import MouldedCase
 from faultloop.rules.conductors import adiabatic_k, ohm_per_km, protective_size, service_temperature
 from faultloop.rules.loader import LoadedRules
 
-_BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
-_METHOD = Method.codes()
 _EARTHING = {"TN-S": 1, "TN-C-S": 2, "TN-C": 3, "TT": 4, "IT": 5, "separated": 6, None: Earthing.UNKNOWN}
 _ROLE = {"final": Role.FINAL, "distribution": Role.DISTRIBUTION, None: Role.UNKNOWN}
 _FEEDS = {
@@ -55,39 +48,7 @@ _FEEDS = {
 _USERS, _POLICY, _DECISION, _CURRENT = (c.codes() for c in (Users, TemperaturePolicy, Decision, Current))
 _MEANS: dict[str | None, int] = {None: 0}
 _MEANS.update(MeansOfEarthing.codes())
-_POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
-_POLARITY.update(Polarity.codes())
-_READINGS = {
-    "external_earth_fault_loop_impedance_ohm": Reading.EXTERNAL,
-    "line_neutral_loop_impedance_ohm": Reading.LINE_NEUTRAL,
-    "line_plus_protective_resistance_ohm": Reading.LINE_PLUS_PROTECTIVE,
-    "protective_conductor_resistance_ohm": Reading.PROTECTIVE,
-    "earth_electrode_resistance_ohm": Reading.ELECTRODE,
-    "insulation_resistance_megohm": Reading.INSULATION,
-    "residual_operating_current_ma": Reading.OPERATING_CURRENT,
-    "voltage_v": Reading.VOLTAGE,
-    "voltage_neutral_to_earth_v": Reading.NEUTRAL_EARTH_VOLTAGE,
-}
-_UNUSED_READINGS = {"line_line_loop_impedance_ohm", "standing_leakage_ma"}
-_UNUSED_SUPPLY = {"frequency_hz"}
-_UNUSED_UPSTREAM = ("breaking_capacity_ka", "energy_limiting_class", "let_through_energy_a2s", "poles")
 CLASS_COLUMNS_KA = (3.0, 6.0, 10.0)
-
-
-@dataclass(slots=True)
-class Mapped:
-    """One point ready to be judged: its row, its rule set, the words needed to explain it."""
-
-    row: Row
-    tables: Tables
-    rules: LoadedRules
-    policy: dict[str, str | float]
-    device: str | None
-    residual: str | None
-    upstream: list[str] = field(default_factory=list)
-    assumptions: list[str] = field(default_factory=list)
-    cautions: list[str] = field(default_factory=list)
-    unused: list[str] = field(default_factory=list)
 
 
 def tables_of(requests: Sequence[rq.AssessmentRequest]) -> Tables:
@@ -105,7 +66,8 @@ def mapped(request: rq.AssessmentRequest, by: Tables | None = None) -> Mapped:
     _put_supply(point, request)
     _put_devices(point, request)
     _put_circuit(point, request)
-    _put_readings(point, request)
+    put_readings(point, request)
+    point.unused.extend(unused(request))
     return point
 
 
@@ -277,117 +239,3 @@ def _put_service_temperature(point: Mapped, conductors: list[rq.Conductor]) -> N
     if not known:
         point.assumptions.append("service-temperature")
     point.row.numbers[Number.SERVICE_C] = max(known) if known else service_temperature("pvc") or np.nan
-
-
-def _put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
-    readings, board, row = request.readings, request.board, point.row
-    _put_loop(point, readings.earth_fault_loop_impedance_ohm)
-    for name in readings.model_fields_set:
-        if (which := _READINGS.get(name)) is not None:
-            _put(row, which, getattr(readings, name))
-    row.choices[Choice.POLARITY] = _POLARITY[readings.polarity]
-    if (times := readings.residual_operating_time_ms) is not None:
-        row.choices[Choice.LOADS_CONNECTED] = int(times.loads_connected is True)
-        _put(row, Reading.TIME_HALF, times.half)
-        _put(row, Reading.TIME_1, times.one)
-        _put(row, Reading.TIME_2, times.two)
-        _put(row, Reading.TIME_5, times.five)
-    if board is not None:
-        _put(row, Reading.ORIGIN_LINE_NEUTRAL, board.line_neutral_loop_impedance_ohm)
-        _put(row, Reading.BOARD_LOOP, board.earth_fault_loop_impedance_ohm)
-        _put(row, Reading.BOARD_CURRENT, board.prospective_current_ka)
-        if board.assembly_conditional_rating_ka is not None:
-            row.numbers[Number.ASSEMBLY_RATING_KA] = board.assembly_conditional_rating_ka
-    _put_method(point)
-    heated = (
-        readings.earth_fault_loop_impedance_ohm,
-        readings.line_plus_protective_resistance_ohm,
-        readings.line_neutral_loop_impedance_ohm,
-    )
-    _put_test_temperature(point, heated)
-    used = (
-        *heated,
-        readings.external_earth_fault_loop_impedance_ohm,
-        readings.earth_electrode_resistance_ohm,
-    )
-    if any(stated is not None and not _states_instrument(stated) for stated in used):
-        point.assumptions.append("instrument")
-    point.unused.extend(_unused(request))
-
-
-def _unused(request: rq.AssessmentRequest) -> list[str]:
-    """Values that were given and on which nothing is decided: what is ignored is said."""
-    parts = (("supply", request.supply, _UNUSED_SUPPLY), ("readings", request.readings, _UNUSED_READINGS))
-    given = [(part, body, sorted(body.model_fields_set & names)) for part, body, names in parts]
-    found = [f"{part}.{name}" for part, body, names in given for name in names if getattr(body, name) is not None]
-    device, own = request.residual_current_device, request.overcurrent_device
-    found += ["residual_current_device.delay_ms"] if device and device.delay_ms is not None else []
-    if isinstance(own, oc.MouldedCase) and own.settings.overload_time_s is not None:
-        found.append("overcurrent_device.settings.overload_time_s")
-    if not request.upstream_overcurrent_devices:
-        return found
-    # Of a device upstream only its time counts: nothing is backed up by presence.
-    stated = [name for body in request.upstream_overcurrent_devices for name in _UNUSED_UPSTREAM if _states(body, name)]
-    return found + [f"upstream_overcurrent_devices.{name}" for name in dict.fromkeys(stated)]
-
-
-def _states(body: oc.OvercurrentDevice, name: str) -> bool:
-    return getattr(body, name, None) is not None
-
-
-def _put_loop(point: Mapped, stated: float | ReadingBody | None) -> None:
-    """The loop at the point; one that nobody read live there is named and not decided on."""
-    if isinstance(stated, ReadingBody) and stated.method in ("declared", "calculated", "dead"):
-        point.assumptions.append("loop-not-read-unused")
-    else:
-        _put(point.row, Reading.LOOP, stated)
-
-
-def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
-    if stated is None:
-        return
-    if isinstance(stated, float | int):
-        row.value[which], row.bound[which] = stated, Bound.EXACT
-        return
-    row.value[which], row.bound[which] = stated.value, _BOUND[stated.bound]
-    row.method[which] = _METHOD[stated.method or "unstated"]
-    if (instrument := stated.instrument) is not None:
-        row.percent[which], row.constant[which] = (
-            instrument.percent,
-            instrument.digits * instrument.resolution,
-        )
-        _put_instrument(row, stated, instrument)
-
-
-def _put_instrument(row: Row, stated: ReadingBody, instrument: Instrument) -> None:
-    """Whether the calibration held on the day of the reading, and how far the joined leads were off zero."""
-    if instrument.calibration_due is not None:
-        # A reading without a date shows no valid calibration.
-        lapsed = stated.taken_at is None or stated.taken_at[:10] > instrument.calibration_due
-        row.choices[Choice.CALIBRATION_LAPSED] |= int(lapsed)
-    if instrument.zero_check is not None:
-        excess = abs(instrument.zero_check) - instrument.digits * instrument.resolution
-        row.numbers[Number.ZERO_EXCESS] = max(np.nan_to_num(row.numbers[Number.ZERO_EXCESS], nan=excess), excess)
-
-
-def _put_method(point: Mapped) -> None:
-    """A loop reading whose method is not stated: no-trip if a residual device is fitted; said."""
-    row = point.row
-    if row.bound[Reading.LOOP] and row.method[Reading.LOOP] == Method.UNSTATED:
-        no_trip = point.residual is not None
-        row.method[Reading.LOOP] = Method.NO_TRIP if no_trip else Method.HIGH_CURRENT
-        point.assumptions.append("method-no-trip" if no_trip else "method-high-current")
-
-
-def _states_instrument(stated: float | ReadingBody) -> bool:
-    return isinstance(stated, ReadingBody) and stated.instrument is not None
-
-
-def _put_test_temperature(point: Mapped, heated: Sequence[float | ReadingBody | None]) -> None:
-    """The coldest stated temperature of the readings that are heated: it gives the greatest correction."""
-    told = [r.conductor_temperature_c for r in heated if isinstance(r, ReadingBody)]
-    known = [temperature for temperature in told if temperature is not None]
-    if not known:
-        point.assumptions.append("test-temperature")
-    default = point.rules.rules.temperature.test_default.value
-    point.row.numbers[Number.TEST_C] = min(known, default=default)

@@ -18,7 +18,8 @@ from faultloop.assessment.urgency import Urgency
 from faultloop.assessment.verdicts import ROWS, SENSES, Outcome, conditions_of, decide
 from faultloop.digests import canonical_bytes, digest, rounded_rows, sha256
 from faultloop.electrical.measurement import conformance_probability
-from faultloop.exchange.mapping import Mapped, mapped, tables_of
+from faultloop.exchange.mapped import Mapped
+from faultloop.exchange.mapping import mapped, tables_of
 from faultloop.exchange.quantities import interval, quantity_columns
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.protection.catalogue import catalogue
