@@ -89,7 +89,7 @@ def test_mobile_equipment_outdoors_has_no_exemption() -> None:
     "more",
     [
         pytest.param({"feeds": "fixed-equipment"}, id="fixed equipment"),
-        pytest.param({"role": "distribution"}, id="distribution circuit"),
+        pytest.param({"role": "distribution", "feeds": None}, id="distribution circuit"),
         pytest.param({"device": "B40"}, id="socket above the rating"),
         pytest.param({"device": "B32", "rules": "bs-7671:2008"}, id="above 20 A in the older edition"),
     ],
@@ -98,6 +98,18 @@ def test_it_is_not_asked_elsewhere(more: Body) -> None:
     answer = socket(**more)
     assert verdict_of(answer, CHECK) == "not-applicable"
     assert answer["verdict"] == "pass"
+
+
+def test_a_distribution_circuit_that_feeds_outlets_is_asked_about() -> None:
+    asked = socket(role="distribution")
+    assert finding(asked, CHECK)["reason"] == "role-unclear"
+    assert asked["verdict"] == "undetermined"
+    assert socket({"1": 25}, role="distribution", residual=RESIDUAL_30)["verdict"] == "pass"
+
+
+def test_a_circuit_is_rated_no_higher_than_its_device() -> None:
+    answer = socket(rated_current_a=63)
+    assert finding(answer, CHECK)["verdict"] == "fail"
 
 
 def test_a_use_not_stated_is_asked_for_unless_a_proven_device_is_there() -> None:

@@ -27,7 +27,7 @@ FIELDS: dict[str, dict[str, Any]] = {
     "circuit": {
         "role": "distribution",
         "feeds": "socket-outlets",
-        "rated_current_a": 100,
+        "rated_current_a": 20,
         "arrangement": "ring",
         "users": "skilled",
         "designated_equipment": True,
@@ -68,6 +68,11 @@ BESIDE: dict[tuple[str, str], Body] = {
     ("supply", "phases"): {"board": {"line_neutral_loop_impedance_ohm": 0.1}},
     ("circuit", "users"): {"circuit": {"feeds": "socket-outlets"}, "rules": "iec-60364"},
     ("circuit", "designated_equipment"): {"circuit": {"feeds": "socket-outlets"}},
+    ("circuit", "rated_current_a"): {
+        "circuit": {"feeds": "socket-outlets"},
+        "overcurrent_device": {"rated_current_a": 63.0},
+    },
+    ("circuit", "line_conductor"): {"overcurrent_device": {"rated_current_a": 20.0}},
     ("circuit", "arrangement"): {"circuit": {"length_m": 20}},
     ("board", "assembly_conditional_rating_ka"): {"board": {"prospective_current_ka": 9}},
     ("readings", "earth_electrode_resistance_ohm"): {"supply": {"earthing": "TT"}},

@@ -148,3 +148,15 @@ def test_a_higher_loop_or_a_thinner_conductor_never_improves(
     here = rank(verdict_of(heated(device, line, protective, zs=zs), CHECK))
     assert rank(verdict_of(heated(device, line, protective, zs=zs * more), CHECK)) <= here
     assert rank(verdict_of(heated(device, line, protective / more, zs=zs), CHECK)) <= here
+
+
+def test_the_table_of_sizes_takes_a_suited_line_conductor_for_granted() -> None:
+    # 1 mm2 behind B32 is no circuit: the table would ask for 1 mm2, the let-through energy for 1.17.
+    assert reason(heated("B16", 1.0, 1.0)) == "size-table"
+    assert reason(heated("B32", 1.0, 1.0)) == "let-through-missing"
+
+
+def test_a_stated_current_at_the_board_is_not_outdone_by_a_loop() -> None:
+    assert finding(heated("B32", 2.5, 1.5), CHECK)["verdict"] == "pass"
+    stated = heated("B32", 2.5, 1.5, board={"prospective_current_ka": 20})
+    assert finding(stated, CHECK)["verdict"] == "undetermined"

@@ -79,7 +79,7 @@ def test_curves_of_many_points_do_not_touch_each_other() -> None:
         {
             **plain,
             "overcurrent_device": slow,
-            "upstream_overcurrent_devices": [fuse(63, "bs-3036") | {"rated_current_a": 60}],
+            "upstream_overcurrent_devices": [{"kind": "fuse", "fuse_system": "bs-3036", "rated_current_a": 60}],
         },
     ]
     assert [json_bytes(a) for a in assess_many(bodies)] == [json_bytes(assess(body)) for body in bodies]

@@ -33,3 +33,21 @@ def test_rated_current_is_set_against_the_capacity(capacity_a: float, verdict: s
 def test_without_a_device_nothing_is_compared() -> None:
     answer = judged_with(20.0, device=None)
     assert verdict_of(answer, "overload") == "not-examined"
+
+
+def test_what_a_rating_stands_for_is_held_against_the_capacity() -> None:
+    # BS 7671 433.1.202 (memory): a rewirable fuse needs Iz of In / 0.725; a moulded-case breaker overloads at Ir.
+    rewirable = {"kind": "fuse", "fuse_system": "bs-3036", "rated_current_a": 30}
+    assert finding(judged_with(41.0, device=rewirable), "overload")["verdict"] == "fail"
+    assert finding(judged_with(42.0, device=rewirable), "overload")["verdict"] == "pass"
+    moulded = {
+        "kind": "moulded-case-circuit-breaker",
+        "rated_current_a": 100,
+        "settings": {"overload_current_a": 80, "instantaneous_current_a": 400},
+    }
+    assert finding(judged_with(90.0, device=moulded), "overload")["verdict"] == "pass"
+
+
+def test_a_ring_shares_its_load() -> None:
+    answer = judged_with(20.0, device="B32", arrangement="ring")
+    assert verdict_of(answer, "overload") == "not-examined"

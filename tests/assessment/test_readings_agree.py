@@ -139,6 +139,7 @@ def test_a_calibration_that_lapsed_before_the_reading_is_a_condition(taken_at: s
     [
         (2.0, "pass", "within-limit"),
         (18.0, "pass", "raised"),
+        (35.0, "undetermined", "far-raised"),
         (50.5, "marginal", "limit-inside-uncertainty"),
         (60.0, "fail", "dangerous"),
         ({"value": 20, "bound": "above"}, "undetermined", "over-range"),
@@ -326,3 +327,49 @@ def test_breaking_capacity_takes_a_stated_current_with_its_bound_and_instrument(
     if reason is not None:
         assert found["reason"] == reason
     assert (found["verdict"] == "pass") == (reason == "within-limit")
+
+
+def test_an_outlet_shows_the_least_that_its_board_can_have() -> None:
+    rewirable = {"kind": "fuse", "fuse_system": "bs-3036", "rated_current_a": 30, "breaking_capacity_ka": 1}
+    read = readings(zs=live(0.08), z_ln=live(0.07))
+    beyond = judged(read, device=rewirable, board={"prospective_current_ka": 0.9})
+    assert finding(beyond, "breaking-capacity")["reason"] == "outlet-current-over-capacity"
+    device = {
+        "kind": "miniature-circuit-breaker",
+        "characteristic": "B",
+        "rated_current_a": 32.0,
+        "breaking_capacity_ka": 6,
+    }
+    for board in ({"prospective_current_ka": 0.9}, {"prospective_current_ka": 0}):
+        told = finding(judged(read, device=device, board=board), "breaking-capacity")
+        assert (told["verdict"], told["reason"]) == ("undetermined", "board-below-outlet")
+
+
+def test_a_single_pole_device_sees_the_loop_to_earth_at_its_board() -> None:
+    device = {
+        "kind": "miniature-circuit-breaker",
+        "characteristic": "B",
+        "rated_current_a": 32.0,
+        "breaking_capacity_ka": 6,
+    }
+    board = {"line_neutral_loop_impedance_ohm": live(0.1), "earth_fault_loop_impedance_ohm": live(0.03)}
+    assert finding(judged(readings(zs=live(0.6)), device=device, board=board), "breaking-capacity")["verdict"] != "pass"
+
+
+def test_a_standing_voltage_on_the_neutral_or_an_open_conductor_comes_first() -> None:
+    standing = judged({**readings(zs=live(0.6)), "voltage_neutral_to_earth_v": 230})
+    assert (standing["verdict"], standing["urgency"]) == ("fail", "stop-use")
+    opened = judged(readings(zs=live(0.6), ze=0.2, dead={"value": 1999, "bound": "above"}))
+    assert (opened["verdict"], opened["urgency"]) == ("fail", "stop-use")
+    behind = judged(readings(zs=live(0.6), ze=0.2, dead={"value": 1999, "bound": "above"}), residual=RESIDUAL_30)
+    assert behind["urgency"] == "urgent"
+
+
+def test_the_time_that_the_rules_give_a_distribution_circuit_stops_no_use() -> None:
+    answer = judged(
+        {**readings(zs=live(0.4), ze=0.3), "insulation_resistance_megohm": 0.5},
+        device={"kind": "fuse", "fuse_system": "bs-88-2", "utilisation_category": "gG", "rated_current_a": 63},
+        role="distribution",
+    )
+    assert finding(answer, "overcurrent-disconnection")["verdict"] == "pass"
+    assert (answer["verdict"], answer["urgency"]) == ("fail", "planned")

@@ -15,7 +15,7 @@ from faultloop.exchange.judging import requests_of
 from faultloop.exchange.listing import most_urgent, reconciled, table
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.uploads import Upload, read_upload
-from tests.exchange.files import GOOD, HEAD, judge, statuses
+from tests.exchange.files import GOOD, HEAD, judge, statuses, written
 
 WORKSHOP = Path(__file__).parents[2] / "fixtures" / "workshop" / "workshop.csv"
 LOOP = "earth_fault_loop_impedance_ohm"
@@ -210,3 +210,29 @@ def test_the_columns_of_the_interface_are_there() -> None:
         "residual_operating_current_ma standing_leakage_ma voltage_v voltage_neutral_to_earth_v polarity"
     )
     assert set(named.split()) <= set(COLUMNS)
+
+
+def test_a_blank_rule_set_beside_others_is_asked_for() -> None:
+    batch = judge(HEAD + GOOD + GOOD.replace("bs-7671", ""))
+    assert statuses(batch) == ["judged", "held"]
+    assert batch.rows.of(1).questions[0].where == "rules"
+
+
+def test_words_may_be_written_in_capitals_and_a_dash_says_nothing() -> None:
+    batch = judge(
+        HEAD + GOOD + GOOD.replace("TN-C-S", "tn-c-s").replace("final", "Final").replace("bs-7671", "BS-7671")
+    )
+    assert [batch.verdict(at) for at in (0, 1)] == ["pass", "pass"]
+    dashed = judge(HEAD + GOOD.replace("B32", "---"))
+    assert (statuses(dashed), dashed.verdict(0)) == (["judged"], "undetermined")
+
+
+@pytest.mark.parametrize(
+    ("column", "urgency"),
+    [(LOOP, "stop-use"), ("insulation_resistance_megohm", "planned"), ("voltage_v", "planned")],
+)
+def test_over_range_means_no_earth_only_where_the_path_to_earth_was_read(column: str, urgency: str) -> None:
+    head, row = HEAD.strip().split(","), GOOD.strip().split(",")
+    cells = dict(zip(head, row, strict=True)) | {column: "OL"}
+    batch = judge(written(list(cells), [list(cells.values())]))
+    assert (statuses(batch), batch.urgency(0)) == (["held"], urgency)

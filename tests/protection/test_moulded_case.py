@@ -58,7 +58,7 @@ def test_a_magnetic_release_below_the_overload_current_is_not_held_back_by_it() 
 @st.composite
 def settings_that_fit(draw: st.DrawFn) -> Settings:
     """Settings of one breaker."""
-    overload = draw(st.floats(10, 1000))
+    overload = draw(st.floats(100, 1000))
     short = draw(st.none() | st.floats(1.01, 10))
     instant = draw(st.none() | st.floats(1.01, 3))
     delayed = None if short is None else short * overload
@@ -70,7 +70,7 @@ def settings_that_fit(draw: st.DrawFn) -> Settings:
 
 @given(settings_that_fit(), st.floats(0, 20_000))
 def test_edges_never_contradict_each_other(settings: Settings, current: float) -> None:
-    refuse_settings(2000.0, settings)
+    refuse_settings(1000.0, settings)
     table = compile_bands([moulded_case_band(settings)])
     at = np.array([current])
     assert table.least_time(ROW, at)[0] <= table.greatest_time(ROW, at)[0]
@@ -107,3 +107,9 @@ def test_settings_that_cannot_be_are_refused(settings: Settings, words: str) -> 
 def test_the_breaker_is_named_with_its_settings() -> None:
     told = MouldedCase(250.0, Settings(200.0, 1000.0, 0.3, 2000.0)).designation
     assert told == "MCCB 250 A (Ir 200 A, Isd 1000 A ≤ 0.3 s, Ii 2000 A)"
+
+
+@pytest.mark.parametrize("overload", [0.8, 9.9])
+def test_multiples_in_place_of_amperes_are_refused(overload: float) -> None:
+    with pytest.raises(ValueError, match="in ampere, not in multiples"):
+        refuse_settings(100.0, Settings(overload, instantaneous_a=10.0 * overload))

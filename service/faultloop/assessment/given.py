@@ -9,10 +9,16 @@ from faultloop.assessment.rule_table import RuleValues
 from faultloop.assessment.tables import Tables
 from faultloop.electrical.measurement import Array, Interval, expanded_uncertainty
 
+# Dead tests of the protective conductor: over range they show it open.
+_DEAD_TESTS = [Reading.LINE_PLUS_PROTECTIVE, Reading.PROTECTIVE]
+
 
 @dataclass(frozen=True, slots=True)
 class Given:
-    """Readings (R, n) with their intervals, and the rule set's values."""
+    """Readings (R, n) with their intervals, and the rule set's values.
+
+    `origin_lost`: no means of earthing; `earth_lost`: none that reaches the point.
+    """
 
     points: Points
     tables: Tables
@@ -22,6 +28,7 @@ class Given:
     least: Array
     greatest: Array
     tt: Flags
+    origin_lost: Flags
     earth_lost: Flags
 
     def reading(self, which: int) -> Interval:
@@ -40,6 +47,7 @@ def given(points: Points, tables: Tables) -> Given:
     least = np.where(points.bound == Bound.BELOW, 0.0, np.maximum(points.value - u, 0.0))
     greatest = np.where(points.bound == Bound.ABOVE, np.inf, points.value + u)
     tt = points.choice(Choice.EARTHING) == Earthing.TT
+    lost = _origin_lost(points, rule, least[Reading.EXTERNAL], tt)
     return Given(
         points=points,
         tables=tables,
@@ -49,11 +57,12 @@ def given(points: Points, tables: Tables) -> Given:
         least=least,
         greatest=greatest,
         tt=tt,
-        earth_lost=_earth_lost(points, rule, least[Reading.EXTERNAL], tt),
+        origin_lost=lost,
+        earth_lost=lost | np.logical_or.reduce(points.bound[_DEAD_TESTS] == Bound.ABOVE, axis=0),
     )
 
 
-def _earth_lost(points: Points, rule: RuleValues, external_least: Array, tt: Flags) -> Flags:
+def _origin_lost(points: Points, rule: RuleValues, external_least: Array, tt: Flags) -> Flags:
     """Where the means of earthing is stated as lost, or Ze shows on a TN supply that it is."""
     read = points.bound[Reading.EXTERNAL] != Bound.MISSING
     open_loop = ~tt & read & (external_least > rule["tn_loop"])

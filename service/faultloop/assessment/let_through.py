@@ -34,10 +34,10 @@ def let_through(g: Given, current: Interval) -> LetThroughEnergy:
 
 
 def _greatest_at_board(g: Given, current: Interval) -> Array:
-    """By the loop at the board, else at the origin, which is lower still; else by a stated or declared current."""
+    """By the loop at the board, else at the origin, which is lower still, or a stated current; else as declared."""
     number, board, external = g.points.number, g.reading(Reading.BOARD_LOOP), g.reading(Reading.EXTERNAL)
     read = np.where(np.isnan(board.least), external.least, board.least)
     by_reading = prospective_current(g.rule["c_max"], number(Number.VOLTAGE), read)
-    told = np.fmax(g.reading(Reading.BOARD_CURRENT).greatest, number(Number.DECLARED_CURRENT_KA)) * 1000.0
-    known = np.where(np.isnan(by_reading), told, by_reading)
+    by_reading = np.fmax(by_reading, 1000.0 * g.reading(Reading.BOARD_CURRENT).greatest)
+    known = np.where(np.isnan(by_reading), 1000.0 * number(Number.DECLARED_CURRENT_KA), by_reading)
     return np.where(np.isnan(known), np.inf, np.fmax(known, current.greatest))

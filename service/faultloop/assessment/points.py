@@ -103,6 +103,7 @@ class Number(Codes):
     CLASS_ENERGY_10_KA = 27
     COMBINATION_TO_KA = 28
     ZERO_EXCESS = 29
+    OVERLOAD_CURRENT_A = 30
 
 
 class Choice(Codes):
@@ -323,8 +324,6 @@ def _devices(rows: Sequence[Row]) -> tuple[BandTable, Ints]:
         return len(held.rows) + len(bands) - 1
 
     most = max((len(row.upstream) for row in rows), default=0)
-    series = [
-        [*map(picked, (row.device, *row.upstream)), *[NO_DEVICE] * (most - len(row.upstream))] for row in rows
-    ]
+    series = [[*map(picked, (row.device, *row.upstream)), *[NO_DEVICE] * (most - len(row.upstream))] for row in rows]
     devices: Ints = np.ascontiguousarray(np.array(series, dtype=np.int64).T)
     return held.overcurrent.extended(bands), devices

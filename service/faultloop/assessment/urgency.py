@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from faultloop.assessment.points import Codes, Flags, Ints, Points
+from faultloop.assessment.points import Codes, Flags, Ints, Points, Reading
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.standing import Verdict
 
@@ -21,13 +21,19 @@ class Urgency(Codes):
 LONGEST_ORDERED_S = 3.0
 
 
-def urgency(points: Points, q: Quantities, verdict: Ints, defect: Flags) -> Ints:
-    """Order the work: nothing for a pass, else by severity; a sustained current escalates one step."""
+def urgency(points: Points, q: Quantities, verdict: Ints, defect: Flags, cleared: Flags) -> Ints:
+    """Order the work: nothing for a pass, else by severity; a sustained current escalates one step.
+
+    Where the rules themselves let a fault last longer than the curve runs (a distribution circuit's 5 s) and it is
+    cleared as they ask, the time is theirs and orders nothing.
+    """
     found = q.severity
+    lasting = ~(cleared & (q.required_s > LONGEST_ORDERED_S)) | q.given.earth_lost
     level = np.full(points.count, Urgency.PLANNED, dtype=np.int64)
     level[defect & (found.barrier_failed >= 1.0)] = Urgency.URGENT
-    level[found.as_is >= 1.0] = Urgency.STOP_USE
-    sustained = (found.body_ma > q.rule("sustained_ma")) & (found.time_s > LONGEST_ORDERED_S)
+    standing = q.given.reading(Reading.NEUTRAL_EARTH_VOLTAGE).least > q.rule("touch_voltage")
+    level[(lasting & (found.as_is >= 1.0)) | standing] = Urgency.STOP_USE
+    sustained = lasting & (found.body_ma > q.rule("sustained_ma")) & (found.time_s > LONGEST_ORDERED_S)
     level = np.where(sustained, np.maximum(level - 1, Urgency.STOP_USE), level)
     level = np.where(verdict == Verdict.PASS_WITH_CONDITIONS, Urgency.NOTE, level)
     return np.where(verdict == Verdict.PASS, Urgency.NONE, level)

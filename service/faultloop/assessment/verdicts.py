@@ -93,7 +93,7 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
     held = np.bitwise_or.reduce(np.where(counts, findings.conditions, 0), axis=0)
     # A defect orders work even where another member of an any-of group decides.
     defect: Flags = np.logical_or.reduce(findings.defect, axis=0)
-    level = urgency(points, quantities, overall, defect)
+    level = urgency(points, quantities, overall, defect, _cleared(verdict))
     return Outcome(findings, quantities, overall, level, held)
 
 
@@ -104,6 +104,13 @@ def _verdicts(compared: Ints, drawn: Settled, applies: Flags, conditions: Ints) 
     conditional = (verdict == Verdict.PASS) & (conditions != 0)
     verdict = np.where(conditional, Verdict.PASS_WITH_CONDITIONS, verdict)
     return np.where(applies, verdict, Verdict.NOT_APPLICABLE), np.where(applies, reason, -1)
+
+
+def _cleared(verdict: Ints) -> Flags:
+    """Where a member of fault protection is met."""
+    members = verdict[[ROWS[member] for member in ANY_OF["fault-protection"]]]
+    met: Flags = np.logical_or.reduce((members == Verdict.PASS) | (members == Verdict.PASS_WITH_CONDITIONS), axis=0)
+    return met
 
 
 def _grouped(verdict: Ints) -> tuple[Flags, Ints]:

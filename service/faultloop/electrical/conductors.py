@@ -4,6 +4,9 @@ import numpy as np
 
 from faultloop.electrical.measurement import Array
 
+# Between these times heating is adiabatic (IEC 60364-4-43, 434.5.2); below, let-through energy decides.
+ADIABATIC_FROM_S, ADIABATIC_TO_S = 0.1, 5.0
+
 
 def temperature_factor(operating_c: Array, test_c: Array, alpha_20: Array) -> Array:
     """Factor by which a conductor's resistance grows from test to operating temperature.

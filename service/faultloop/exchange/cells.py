@@ -6,6 +6,16 @@ from typing import Literal, NamedTuple
 Decimal = Literal["point", "comma", "either"]
 MISSING = {"", "-", "--", "---", "n/a", "na", "n.a.", "nt", "n.t.", "n.m.", "not tested", "not measured", "lim"}
 OVER_RANGE = {"ol", "ofl", "o.l", "over", "overrange", "over-range"}
+HELD = {"no trip", "not tripped", "nt.", "did not trip"}
+# Readings of the path to earth: over range they may mean that there is none.
+FAULT_PATH = {
+    "earth_fault_loop_impedance_ohm",
+    "external_earth_fault_loop_impedance_ohm",
+    "line_plus_protective_resistance_ohm",
+    "protective_conductor_resistance_ohm",
+    "earth_electrode_resistance_ohm",
+    "board_earth_fault_loop_impedance_ohm",
+}
 _NUMBER = re.compile(r"([<>]?)\s*(\d+)(?:([.,])(\d+))?\s*(.*)", re.ASCII | re.DOTALL)
 _UNITS = {
     "ohm": {"ohm", "ohms", "Ohm", "Ω", "\u2126"},
@@ -48,7 +58,7 @@ def read_cell(text: str, column: str, decimal: Decimal = "point", header_unit: s
     told = text.strip()
     match = _NUMBER.fullmatch(told)
     if match is None:
-        return _word(told.lower())
+        return _word(told.lower(), column)
     sign, whole, mark, fraction, rest = match.groups()
     if asked := _mark(mark, whole, fraction, decimal):
         return Cell(question=asked)
@@ -61,15 +71,19 @@ def read_cell(text: str, column: str, decimal: Decimal = "point", header_unit: s
     return Cell(number, {">": "above", "<": "below", "": "exact"}[sign])
 
 
-def _word(told: str) -> Cell:
+def _word(told: str, column: str) -> Cell:
     """What a cell says that begins with no number."""
     if told in MISSING:
         return Cell()
-    if told in OVER_RANGE:
+    if told in OVER_RANGE and column in FAULT_PATH:
         return Cell(
             question="over range: above which value? write it as >1999; treat the point as having no earth until then",
             over_range=True,
         )
+    if told in OVER_RANGE:
+        return Cell(question="over range: above which value? write it as > and the end of the range")
+    if told in HELD:
+        return Cell(question="not tripped: within which time? write it as > and the longest time of the tester")
     return Cell(question="what does this cell mean? a number, >number, <number or an empty cell is expected")
 
 

@@ -1,8 +1,13 @@
 """Columns of files by their contract names, and where each stands in a request's body."""
 
+from collections.abc import Iterator
 from difflib import get_close_matches
+from typing import Any, get_args
 
-from faultloop.exchange.requests import Readings
+from pydantic import BaseModel
+
+from faultloop.exchange.fields import MethodWord
+from faultloop.exchange.requests import AssessmentRequest, Readings, rule_names
 
 Path = tuple[str, ...]
 WORDS: dict[str, Path] = {
@@ -44,6 +49,26 @@ PATHS: dict[str, Path] = {
     **WORDS, **NUMBERS, **CONDUCTORS, **READINGS,
     "overcurrent_device": ("overcurrent_device",), "residual_current_device": ("residual_current_device",),
 }  # fmt: skip
+
+
+def _words(annotation: Any) -> Iterator[str]:
+    """The words that a field may hold."""
+    for argument in get_args(annotation):
+        yield from [argument] if isinstance(argument, str) else _words(argument)
+
+
+def _choices() -> dict[str, dict[str, str]]:
+    """Words of a column by their lower-case form: a file may write them in capitals."""
+    fields = {part: field.annotation for part, field in AssessmentRequest.model_fields.items()}
+    words = {"reading_method": set(_words(MethodWord)), "rules": set(rule_names())}
+    for column, path in WORDS.items():
+        model = fields.get(path[0])
+        if len(path) == 2 and isinstance(model, type) and issubclass(model, BaseModel):
+            words[column] = set(_words(model.model_fields[path[1]].annotation))
+    return {column: {word.casefold(): word for word in told} for column, told in words.items() if told}
+
+
+CHOICES = _choices()
 
 
 class FileRefused(ValueError):

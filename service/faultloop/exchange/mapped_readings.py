@@ -26,6 +26,16 @@ _READINGS = {
     "voltage_v": Reading.VOLTAGE,
     "voltage_neutral_to_earth_v": Reading.NEUTRAL_EARTH_VOLTAGE,
 }
+# Readings to which the leads add their own resistance.
+_THROUGH_LEADS = {
+    Reading.LOOP,
+    Reading.EXTERNAL,
+    Reading.LINE_NEUTRAL,
+    Reading.LINE_PLUS_PROTECTIVE,
+    Reading.PROTECTIVE,
+    Reading.ORIGIN_LINE_NEUTRAL,
+    Reading.BOARD_LOOP,
+}
 _UNUSED_READINGS = {"line_line_loop_impedance_ohm", "standing_leakage_ma"}
 _UNUSED_SUPPLY = {"frequency_hz"}
 _UNUSED_UPSTREAM = ("breaking_capacity_ka", "energy_limiting_class", "let_through_energy_a2s", "poles")
@@ -108,16 +118,16 @@ def _put(row: Row, which: int, stated: float | ReadingBody | None) -> None:
             instrument.percent,
             instrument.digits * instrument.resolution,
         )
-        _put_instrument(row, stated, instrument)
+        _put_instrument(row, which, stated, instrument)
 
 
-def _put_instrument(row: Row, stated: ReadingBody, instrument: Instrument) -> None:
+def _put_instrument(row: Row, which: int, stated: ReadingBody, instrument: Instrument) -> None:
     """Whether the calibration held on the day of the reading, and how far the joined leads were off zero."""
     if instrument.calibration_due is not None:
         # A reading without a date shows no valid calibration.
         lapsed = stated.taken_at is None or stated.taken_at[:10] > instrument.calibration_due
         row.choices[Choice.CALIBRATION_LAPSED] |= int(lapsed)
-    if instrument.zero_check is not None:
+    if instrument.zero_check is not None and which in _THROUGH_LEADS:
         excess = abs(instrument.zero_check) - instrument.digits * instrument.resolution
         row.numbers[Number.ZERO_EXCESS] = max(np.nan_to_num(row.numbers[Number.ZERO_EXCESS], nan=excess), excess)
 

@@ -34,7 +34,7 @@ from faultloop.protection.curves import OwnCurve, own_band
 from faultloop.protection.fuses import fuse_families
 from faultloop.protection.let_through import breaker_energy, combined_to_ka
 from faultloop.protection.moulded_case import MouldedCase
-from faultloop.rules.conductors import adiabatic_k, ohm_per_km, protective_size, service_temperature
+from faultloop.rules.conductors import adiabatic_k, greatest_loading, ohm_per_km, protective_size, service_temperature
 from faultloop.rules.loader import LoadedRules
 
 _EARTHING = {"TN-S": 1, "TN-C-S": 2, "TN-C": 3, "TT": 4, "IT": 5, "separated": 6, None: Earthing.UNKNOWN}
@@ -137,6 +137,7 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         device = overcurrent_device(body)
         point.device, point.row.device = device.designation, _picked(point, device)
         numbers[Number.DEVICE_RATED_CURRENT] = body.rated_current_a
+        numbers[Number.OVERLOAD_CURRENT_A] = _overload_current(body)
         choices[Choice.MULTIPOLE] = int((body.poles or 1) > 2 or request.supply.phases == 3)
         if body.breaking_capacity_ka is not None:
             numbers[Number.BREAKING_CAPACITY_KA] = body.breaking_capacity_ka
@@ -155,6 +156,14 @@ def _put_devices(point: Mapped, request: rq.AssessmentRequest) -> None:
         numbers[Number.RESIDUAL_QUICK_MA] = min(quick, default=np.nan)
         choices[Choice.RESIDUAL] = table.residual_rows[relied.delay]
         point.residual = relied.designation
+
+
+def _overload_current(body: oc.OvercurrentDevice) -> float:
+    """Current to be held against what the conductors carry: the setting, or the rating over its family's share."""
+    if isinstance(body, oc.MouldedCase):
+        return body.settings.overload_current_a
+    share = fuse_families()[body.fuse_system].overload_share if isinstance(body, oc.Fuse) else None
+    return body.rated_current_a if share is None else body.rated_current_a / share.value
 
 
 def _put_let_through(point: Mapped, body: oc.OvercurrentDevice) -> None:
@@ -186,7 +195,8 @@ def _put_circuit(point: Mapped, request: rq.AssessmentRequest) -> None:
     choices[Choice.DESIGNATED] = int(circuit.designated_equipment)
     choices[Choice.RING] = int(circuit.arrangement == "ring")
     rated = circuit.rated_current_a
-    numbers[Number.RATED_CURRENT] = numbers[Number.DEVICE_RATED_CURRENT] if rated is None else rated
+    # A circuit is rated no higher than its device.
+    numbers[Number.RATED_CURRENT] = np.fmin(np.nan if rated is None else rated, numbers[Number.DEVICE_RATED_CURRENT])
     if circuit.length_m is not None:
         numbers[Number.LENGTH_M] = circuit.length_m
     if circuit.current_carrying_capacity_a is not None:
@@ -221,7 +231,9 @@ def _put_protective_size(
 ) -> None:
     """What the table of sizes asks, and whether device and cable are a standard combination."""
     line_k, protective_k = numbers[Number.ADIABATIC_K], numbers[Number.PROTECTIVE_K]
-    if not np.isnan(line_k + protective_k):
+    # The table of sizes takes for granted that the line conductor suits its device.
+    suited = device is None or device.rated_current_a <= line.area_mm2 * greatest_loading(line.material)
+    if suited and not np.isnan(line_k + protective_k):
         numbers[Number.PROTECTIVE_TABLE_MM2] = protective_size(line.area_mm2, line_k, protective_k)
     if isinstance(device, oc.Breaker) and line.material == protective.material == "copper":
         areas = (line.area_mm2, protective.area_mm2)

@@ -99,6 +99,13 @@ class Fuse(Closed):
     let_through_energy_a2s: LetThroughEnergy | None = None
     poles: Annotated[int, Field(strict=True, ge=1, le=4), WHOLE] | None = None
 
+    @model_validator(mode="after")
+    def _category_fits(self) -> "Fuse":
+        """Refuse a utilisation category on a family that has none."""
+        if self.utilisation_category and fuse_families()[self.fuse_system].utilisation_category is None:
+            raise ValueError("this fuse system has no utilisation category: leave it out")
+        return self
+
 
 class MouldedCaseSettings(Closed):
     """Settings as read on the breaker, in ampere; the time setting of the overload release promises nothing."""

@@ -7,8 +7,8 @@ from typing import Any
 from pydantic import ValidationError
 
 from faultloop.exchange import faults
-from faultloop.exchange.cells import Cell, Decimal, read_cell
-from faultloop.exchange.columns import CONDUCTORS, NUMBERS, READINGS, WORDS, Path, column_at
+from faultloop.exchange.cells import MISSING, Cell, Decimal, read_cell
+from faultloop.exchange.columns import CHOICES, CONDUCTORS, NUMBERS, READINGS, WORDS, Path, column_at
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.protection.designations import Breaker, UnknownDesignation, parse_overcurrent, parse_residual
 
@@ -16,6 +16,8 @@ Body = dict[str, Any]
 NO_RESIDUAL_DEVICE = {"-", "none", "n/a"}
 
 
+# In these a dash says nothing, as a blank cell does; of a residual device it says that there is none.
+_UNMARKED = {*CHOICES, "overcurrent_device"}
 _LONGEST_RAW = 200
 _MOST_FAULTS = 10
 
@@ -73,11 +75,18 @@ class Format:
 def read_cells(cells: Mapping[str, str], number: int, form: Format) -> Told:
     """Read a row of a file, cell by cell by contract names; a blank cell says nothing."""
     said = {column: text.strip() for column, text in cells.items() if text.strip()}
+    for column in _UNMARKED & said.keys():
+        if said[column].lower() in MISSING:
+            del said[column]
     told = Told()
+    if "rules" in cells and "rules" not in said:
+        told.questions.append(
+            _asked("rules", cells["rules"], "by which rule set? the file has the column, so none is assumed")
+        )
     body: Body = {"point": {"label": said.get("point_id") or f"row {number}"}}
     for column, path in WORDS.items():
         if column in said:
-            _put(body, path, said[column])
+            _put(body, path, CHOICES.get(column, {}).get(said[column].casefold(), said[column]))
     _put_devices(body, said, told, form)
     for column, path in NUMBERS.items():
         if (value := _plain(said, column, told, form)) is not None:
@@ -162,7 +171,8 @@ def _put_readings(body: Body, said: Mapping[str, str], told: Told, form: Format)
         reading = _reading(form.cell(said[column], column), column, said[column], told)
         if reading is not None:
             if column == "earth_fault_loop_impedance_ohm" and "reading_method" in said:
-                reading["method"] = said["reading_method"]
+                method = said["reading_method"]
+                reading["method"] = CHOICES["reading_method"].get(method.casefold(), method)
             _put(body, path, reading)
 
 

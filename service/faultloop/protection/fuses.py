@@ -7,7 +7,7 @@ from typing import Literal
 from pydantic import Field
 
 from faultloop.protection.band import Band
-from faultloop.rules.strict import Sheet, Sourced, Text, read_sheet, read_table, refuse_duplicates
+from faultloop.rules.strict import Parameter, Sheet, Sourced, Text, read_sheet, read_table, refuse_duplicates
 
 FILES = ("fuses.toml", "fuses_british.toml")
 
@@ -35,6 +35,7 @@ class Family(Sheet):
     also_written: list[Text] = Field(default_factory=list)
     utilisation_category: Literal["gG"] | None = None
     cartridge: bool = True
+    overload_share: Parameter | None = None
     standard: Text
     rating: list[Rating]
 

@@ -6,6 +6,9 @@ from dataclasses import dataclass
 from faultloop.protection.band import Band
 from faultloop.protection.breakers import breaker_table
 
+# No overload release is set so far below its breaker's rating (assumption); a multiple of In would be.
+LEAST_OVERLOAD_SHARE = 0.1
+
 
 @dataclass(frozen=True, slots=True)
 class Settings:
@@ -54,11 +57,13 @@ def refuse_settings(rated_current_a: float, settings: Settings) -> None:
     Raises
     ------
     ValueError
-        If the overload setting is above the rated current, a short-circuit stage is not above the overload
-        setting, the instantaneous stage is not above the delayed one, or the delayed stage has a current
-        without a time or a time without a current.
+        If the overload setting is above the rated current or far below it (a multiple in place of amperes), a
+        short-circuit stage is not above the overload setting, the instantaneous stage is not above the delayed
+        one, or the delayed stage has a current without a time or a time without a current.
     """
     magnetic = [stage for stage in (settings.short_time_a, settings.instantaneous_a) if stage is not None]
+    if settings.overload_a < LEAST_OVERLOAD_SHARE * rated_current_a:
+        raise ValueError("Ir is far below the rated current In; settings are in ampere, not in multiples")
     if settings.overload_a > rated_current_a:
         raise ValueError("the overload setting Ir cannot be above the rated current In")
     if any(stage <= settings.overload_a for stage in magnetic):

@@ -56,6 +56,14 @@ class ProtectiveSizeRow(Sourced):
         return self.value * line_mm2 if self.unit == "1" else self.value
 
 
+class LoadingRow(Sourced):
+    """Greatest rated current of a device per area of its line conductor."""
+
+    material: Material
+    value: float
+    unit: Literal["A/mm2"]
+
+
 class ConductorTables(Sheet):
     """Everything that the file of conductors says."""
 
@@ -63,6 +71,7 @@ class ConductorTables(Sheet):
     service_temperature: list[TemperatureRow]
     adiabatic: list[AdiabaticRow]
     protective_size: list[ProtectiveSizeRow]
+    loading: list[LoadingRow]
 
 
 @lru_cache(maxsize=1)
@@ -119,3 +128,9 @@ def protective_size(line_mm2: float, line_k: float, protective_k: float) -> floa
     rows = conductor_tables().protective_size
     row = next(r for r in rows if r.above_mm2 < line_mm2 and (r.to_mm2 is None or line_mm2 <= r.to_mm2))
     return row.least(line_mm2) * line_k / protective_k
+
+
+@lru_cache(maxsize=8)
+def greatest_loading(material: str) -> float:
+    """Greatest rated current of a device per area of its line conductor [A/mm²]; 0 where the table has none."""
+    return next((row.value for row in conductor_tables().loading if row.material == material), 0.0)

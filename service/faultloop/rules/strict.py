@@ -9,7 +9,23 @@ from typing import Annotated, Literal, TypeVar
 from pydantic import BaseModel, ConfigDict, Field, ValidationError
 
 Unit = Literal[
-    "1", "V", "A", "mA", "kA", "s", "h", "ohm", "Mohm", "ohm/km", "1/K", "degC", "%", "mm2", "A*s^0.5/mm2", "A2*s"
+    "1",
+    "V",
+    "A",
+    "mA",
+    "kA",
+    "s",
+    "h",
+    "ohm",
+    "Mohm",
+    "ohm/km",
+    "1/K",
+    "degC",
+    "%",
+    "mm2",
+    "A/mm2",
+    "A*s^0.5/mm2",
+    "A2*s",
 ]
 Sourcing = Literal["seen", "memory", "common-practice", "assumption"]
 Text = Annotated[str, Field(min_length=1)]

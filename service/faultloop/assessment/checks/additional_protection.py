@@ -17,6 +17,7 @@ REASONS = (
     "use-missing",
     "rated-current-missing",
     "device-over-time",
+    "role-unclear",
     "device-delayed",
     "operating-time-missing",
 )
@@ -27,7 +28,8 @@ def _applies(points: Points, q: Quantities) -> Flags:
     feeds, rated = points.choice(Choice.FEEDS), points.number(Number.RATED_CURRENT)
     sockets = ((feeds == Feeds.SOCKET_OUTLETS) | (feeds == Feeds.UNKNOWN)) & ~(rated > q.rule("additional_sockets"))
     mobile = (feeds == Feeds.MOBILE_OUTDOORS) & ~(rated > q.rule("additional_mobile"))
-    concerned: Flags = (points.choice(Choice.ROLE) != Role.DISTRIBUTION) & (sockets | mobile)
+    # A circuit that is said to feed sockets feeds them, whatever else it is called.
+    concerned: Flags = (sockets | mobile) & ((points.choice(Choice.ROLE) != Role.DISTRIBUTION) | (feeds > 0))
     return concerned
 
 
@@ -57,6 +59,8 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(bits > 0, Standing.MET, "exempt")
     cases.when(sensitive & own & q.residual.over_limit, Standing.UNMET, "device-over-time", defect=True)
     cases.when(sensitive & ~proven, Standing.UNDETERMINED, "operating-time-missing")
+    unclear = points.choice(Choice.ROLE) == Role.DISTRIBUTION
+    cases.when(~sensitive & unclear, Standing.UNDETERMINED, "role-unclear")
     cases.when(~sensitive & (least <= limit), Standing.UNMET, "device-delayed")
     unknown_use = points.choice(Choice.FEEDS) == Feeds.UNKNOWN
     cases.when(~sensitive & unknown_use, Standing.UNDETERMINED, "use-missing")

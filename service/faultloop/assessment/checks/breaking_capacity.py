@@ -15,6 +15,7 @@ REASONS = (
     "current-missing",
     "three-phase-current-missing",
     "outlet-current-over-capacity",
+    "board-below-outlet",
     "current-over-range",
     "assembly-rating",
     "back-up-not-documented",
@@ -30,7 +31,8 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _at_board(points: Points, q: Quantities) -> tuple[Interval, Flags]:
     """Prospective current at the board [kA] and whether it is known.
 
-    Of a stated current and a loop at the board the greater one holds.  A declared value governs where there is
+    Of a stated current and the loops at the board the greater one holds; a device of one pole sees the loop to
+    earth as well.  A declared value governs where there is
     neither, or where the loop's uncertainty is over half of it.
     """
     loop, declared = q.given.reading(Reading.ORIGIN_LINE_NEUTRAL), points.number(Number.DECLARED_CURRENT_KA)
@@ -40,15 +42,18 @@ def _at_board(points: Points, q: Quantities) -> tuple[Interval, Flags]:
     vague = q.given.uncertainty[Reading.ORIGIN_LINE_NEUTRAL] > loop.nominal / 2.0
     usable = single & ~np.isnan(loop.nominal) & ~(vague & ~np.isnan(declared))
 
-    def greater(of_stated: Array, impedance: Array) -> Array:
-        by_loop = np.where(usable, prospective_current(c_max, voltage, impedance) / 1000.0, np.nan)
-        known = np.fmax(of_stated, by_loop)
+    earth = q.given.reading(Reading.BOARD_LOOP)
+
+    def greater(of_stated: Array, to_neutral: Array, to_earth: Array) -> Array:
+        by_loop = np.where(usable, prospective_current(c_max, voltage, to_neutral) / 1000.0, np.nan)
+        by_earth = np.where(single & ~q.tt, prospective_current(c_max, voltage, to_earth) / 1000.0, np.nan)
+        known = np.fmax(np.fmax(of_stated, by_loop), by_earth)
         return np.where(np.isnan(known), declared, known)
 
     interval = Interval(
-        greater(stated.least, loop.greatest),
-        greater(stated.greatest, loop.least),
-        greater(stated.nominal, loop.nominal),
+        greater(stated.least, loop.greatest, earth.greatest),
+        greater(stated.greatest, loop.least, earth.least),
+        greater(stated.nominal, loop.nominal, earth.nominal),
     )
     return interval, ~np.isnan(interval.nominal)
 
@@ -68,7 +73,10 @@ def _judge(points: Points, q: Quantities) -> Judged:
         / 1000.0
     )
     over = current.greatest > capacity
-    cases.when(~known & (outlet > capacity), Standing.UNMET, "outlet-current-over-capacity")
+    cases.when(outlet > capacity, Standing.UNMET, "outlet-current-over-capacity")
+    # The current at the board is at least that of an outlet behind it; no board has none.
+    contradicted = known & ((outlet > current.greatest) | ~(current.greatest > 0.0))
+    cases.when(contradicted, Standing.UNDETERMINED, "board-below-outlet")
     cases.when(~known & (points.choice(Choice.MULTIPOLE) == 1), Standing.NOT_EXAMINED, "three-phase-current-missing")
     cases.when(~known, Standing.NOT_EXAMINED, "current-missing")
     open_end = np.isinf(current.greatest) & (current.least <= capacity)

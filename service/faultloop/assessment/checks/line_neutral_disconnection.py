@@ -7,7 +7,7 @@ from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged
 from faultloop.assessment.points import Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities, by_policy
 from faultloop.assessment.series import greatest_time
-from faultloop.electrical.conductors import withstand_time
+from faultloop.electrical.conductors import ADIABATIC_FROM_S, withstand_time
 from faultloop.electrical.fault_current import prospective_current
 
 REASONS = (
@@ -30,9 +30,6 @@ def _applies(points: Points, _: Quantities) -> Flags:
     return np.ones(points.count, dtype=np.bool_)
 
 
-SHORTEST_ADIABATIC_S = 0.1
-
-
 def _judge(points: Points, q: Quantities) -> Judged:
     found = q.line_neutral
     measured, inferred = found.measured, found.inferred
@@ -46,7 +43,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     loop = by_policy(points, found.hot, found.cold)
     met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
     withstands = _withstands(points, q)
-    rated = points.number(Number.DEVICE_RATED_CURRENT) <= points.number(Number.CARRYING_CAPACITY_A)
+    rated = points.number(Number.OVERLOAD_CURRENT_A) <= points.number(Number.CARRYING_CAPACITY_A)
     rated &= points.number(Number.BREAKING_CAPACITY_KA) >= q.given.reading(Reading.BOARD_CURRENT).greatest
     implausible = measured & (loop.nominal < q.rule("least_plausible"))
     cases.when(implausible, Standing.UNDETERMINED, "reading-implausible")
@@ -79,7 +76,7 @@ def _withstands(points: Points, q: Quantities) -> Flags:
     inside = (edges > least) & (edges < greatest)
     tried = np.concatenate([least[None], greatest[None], np.where(inside, edges, least)])
     own = points.overcurrent.greatest_time(points.choice(Choice.DEVICE), tried)
-    borne = (own <= SHORTEST_ADIABATIC_S) | (greatest_time(points, tried) <= withstand_time(k, area, tried))
+    borne = (own <= ADIABATIC_FROM_S) | (greatest_time(points, tried) <= withstand_time(k, area, tried))
     everywhere: Flags = np.logical_and.reduce(borne, axis=0)
     return everywhere & ~np.isnan(k * area)
 

@@ -19,7 +19,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     limit = q.rule("tn_loop")
     cases = Cases(REASONS)
     cases.when(stated == MeansOfEarthing.LOST, Standing.UNMET, "lost", defect=True)
-    cases.when(q.given.earth_lost, Standing.UNMET, "external-loop-open", defect=True)
+    cases.when(q.given.origin_lost, Standing.UNMET, "external-loop-open", defect=True)
     cases.when(stated == MeansOfEarthing.DOUBTFUL, Standing.UNDETERMINED, "doubtful")
     cases.when(stated == MeansOfEarthing.PROVEN, Standing.MET, "proven")
     cases.when(np.ones_like(q.tt), Standing.NOT_EXAMINED, "not-stated")

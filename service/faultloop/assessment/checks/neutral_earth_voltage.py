@@ -7,7 +7,7 @@ from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
 from faultloop.assessment.points import Bound, Flags, Points, Reading
 from faultloop.assessment.quantities import Quantities
 
-REASONS = (*COMPARISON, "not-measured", "over-range", "raised", "dangerous")
+REASONS = (*COMPARISON, "not-measured", "over-range", "raised", "far-raised", "dangerous")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -22,7 +22,9 @@ def _judge(points: Points, q: Quantities) -> Judged:
     read, limit = q.given.reading(Reading.NEUTRAL_EARTH_VOLTAGE), q.rule("touch_voltage")
     cases.when(read.least > limit, Standing.UNMET, "dangerous", defect=True)
     cases.when(np.isinf(read.greatest), Standing.UNDETERMINED, "over-range")
-    raised = (read.nominal > q.rule("neutral_earth_voltage")) & (read.greatest <= limit)
+    below = read.greatest <= limit
+    cases.when(below & (read.greatest > limit / 2.0), Standing.UNDETERMINED, "far-raised")
+    raised = below & (read.nominal > q.rule("neutral_earth_voltage"))
     cases.when(raised, Standing.MET, "raised")
     return cases.settle(read, limit)
 

@@ -8,7 +8,7 @@ from faultloop.assessment.loops import Fault
 from faultloop.assessment.points import Choice, Flags, LetThrough, Number, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.series import least_time, upstream_time
-from faultloop.electrical.conductors import let_through_area
+from faultloop.electrical.conductors import ADIABATIC_FROM_S, ADIABATIC_TO_S, let_through_area
 from faultloop.electrical.measurement import Array, Interval
 from faultloop.protection.band import faster
 from faultloop.protection.catalogue import catalogue
@@ -27,8 +27,6 @@ REASONS = (
     "too-slow-to-judge",
     "time-too-long-by-band",
 )
-# Where an overcurrent device acts at once, and where adiabatic heating ends.
-AT_ONCE_S, LONGEST_ADIABATIC_S = 0.1, 5.0
 
 
 def _applies(_: Points, q: Quantities) -> Flags:
@@ -49,14 +47,14 @@ def _energies(points: Points, q: Quantities, tried: Array) -> tuple[Array, Array
     # The energy of a fuse-link does not rise with the current (common practice): its last tested point bounds it.
     fuse = points.choice(Choice.LET_THROUGH) == LetThrough.FUSE
     flowing = np.where(fuse, band.tested_current(row, tried), tried)
-    own = np.where((time <= AT_ONCE_S) & ~fuse, q.let_through.energy_a2s, flowing * flowing * time)
+    own = np.where((time <= ADIABATIC_FROM_S) & ~fuse, q.let_through.energy_a2s, flowing * flowing * time)
     return np.fmin(own, tried * tried * others), np.minimum(time, others)
 
 
 def _least_energies(points: Points, tried: Array) -> Array:
     """Energy [A²s] that flows even if the device acts as soon as its band allows, (T, n); 0 where a quicker one may."""
     least = least_time(points, tried)
-    quicker = ~np.isnan(points.number(Number.RESIDUAL_MA)) | (least < AT_ONCE_S)
+    quicker = ~np.isnan(points.number(Number.RESIDUAL_MA)) | (least < ADIABATIC_FROM_S)
     return np.where(quicker, 0.0, tried * tried * least)
 
 
@@ -96,19 +94,19 @@ def _judge(points: Points, q: Quantities) -> Judged:
     energy, time = _energies(points, q, tried)
     needed = let_through_area(k, energy)
     over = ~(needed <= area)
-    endless = ~(time <= LONGEST_ADIABATIC_S)
+    endless = ~(time <= ADIABATIC_TO_S)
     # What is shown to be too much is shown by the circuit's own device: one upstream can only take from it.
     own = tried[: len(steps[0]) + 2]
     surely = let_through_area(k, _least_energies(points, own)) > area
-    surely &= points.overcurrent.greatest_time(row, own) <= LONGEST_ADIABATIC_S
+    surely &= points.overcurrent.greatest_time(row, own) <= ADIABATIC_TO_S
     cases.when(_anywhere(surely), Standing.UNMET, "over-limit")
     cases.when(_anywhere(over & endless), Standing.UNDETERMINED, "too-slow-to-judge")
-    cases.when(_anywhere(over & (time > AT_ONCE_S)), Standing.UNDETERMINED, "time-too-long-by-band")
+    cases.when(_anywhere(over & (time > ADIABATIC_FROM_S)), Standing.UNDETERMINED, "time-too-long-by-band")
     combined = points.number(Number.COMBINATION_TO_KA) >= greatest / 1000.0
     # The limit of a class, like the 0.1 s step of a band, bounds the energy and refutes nothing.
     cases.when(_anywhere(over) & combined, Standing.MET, "standard-circuit")
     cases.when(_anywhere(over), Standing.UNDETERMINED, "let-through-missing")
-    usual = (basis == LetThrough.CLASS_USUAL) & _anywhere(time <= AT_ONCE_S)
+    usual = (basis == LetThrough.CLASS_USUAL) & _anywhere(time <= ADIABATIC_FROM_S)
     cases.when(usual, Standing.MET, "standard-combination")
     cases.when(np.ones_like(tabled), Standing.MET, "within-limit")
     worst = np.where(tabled | exceeded, np.where(exceeded, by_maker, table), np.fmax.reduce(needed, axis=0))
