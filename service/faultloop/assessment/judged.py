@@ -28,11 +28,17 @@ class Condition(Codes):
     INSTRUMENT_CHECKED = 6
 
 
+@lru_cache(maxsize=64)
+def _codes(reasons: tuple[str, ...]) -> dict[str, int]:
+    """Place of each reason in its check's list."""
+    return {reason: code for code, reason in enumerate(reasons)}
+
+
 class Cases:
     """Standing and reason case by case: the first case that holds decides, else comparison does."""
 
     def __init__(self, reasons: tuple[str, ...]) -> None:
-        self._reasons = reasons
+        self._codes = _codes(reasons)
         self.holds: list[Flags] = []
         self.standing: list[int] = []
         self.reason: list[int] = []
@@ -47,7 +53,7 @@ class Cases:
             self.offsets.append((len(self.holds), offset))
         self.holds.append(holds)
         self.standing.append(standing)
-        self.reason.append(self._reasons.index(reason))
+        self.reason.append(self._codes[reason])
         self.defect.append(defect)
 
     def settle_everything(self) -> bool:

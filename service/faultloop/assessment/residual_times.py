@@ -9,10 +9,17 @@ from faultloop.assessment.points import Bound, Choice, Flags, Number, Reading
 from faultloop.electrical.measurement import Array, Interval
 from faultloop.protection.catalogue import catalogue
 
+# The readings of a device's test, and the multiples of IΔn at which they were taken.
+TESTS = [Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]
+TEST_MULTIPLES = np.array([[1.0], [2.0], [5.0]])
+
 
 @dataclass(frozen=True, slots=True)
 class ResidualTimes:
-    """What the relied-on residual device does, (n,) each; nan where there is none."""
+    """What the relied-on residual device does, (n,) each; nan where there is none.
+
+    `limits_ms` are the standard's greatest times of the tests, (3, n).
+    """
 
     multiple: Array
     multiple_nominal: Array
@@ -20,6 +27,7 @@ class ResidualTimes:
     over_limit: Flags
     over_current: Flags
     tested: Flags
+    limits_ms: Array
 
 
 def residual_times(g: Given, current: Interval) -> ResidualTimes:
@@ -31,24 +39,21 @@ def residual_times(g: Given, current: Interval) -> ResidualTimes:
     points, row = g.points, g.points.choice(Choice.RESIDUAL)
     rated, band = points.number(Number.RESIDUAL_MA) / 1000.0, catalogue().residual
     multiples = np.array([current.least, current.nominal]) / rated
-    one, two, five = points.value[[Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]] / 1000.0
+    one, two, five = points.value[TESTS] / 1000.0
     measured = np.where(
         multiples >= 5.0, five, np.where(multiples >= 2.0, two, np.where(multiples >= 1.0, one, np.nan))
     )
     slow = np.fmax(band.greatest_time(row, multiples), measured)
     over_current = _over_current(g)
-    over, tested = _tests(g)
+    limits_ms = 1000.0 * band.greatest_time(row, np.broadcast_to(TEST_MULTIPLES, (3, points.count)))
+    over, tested = _tests(g, limits_ms)
     times = Interval(band.least_time(row, current.greatest / rated), slow[0], slow[1])
-    return ResidualTimes(multiples[0], multiples[1], times, over | over_current, over_current, tested)
+    return ResidualTimes(multiples[0], multiples[1], times, over | over_current, over_current, tested, limits_ms)
 
 
-def _tests(g: Given) -> tuple[Flags, Flags]:
+def _tests(g: Given, limit_ms: Array) -> tuple[Flags, Flags]:
     """Where a test result is over the standard's time, and where a usable time at IΔn is there."""
-    points, row = g.points, g.points.choice(Choice.RESIDUAL)
-    tests = [Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]
-    multiples = np.broadcast_to(np.array([[1.0], [2.0], [5.0]]), (3, points.count))
-    limit_ms = 1000.0 * catalogue().residual.greatest_time(row, multiples)
-    value, bound = points.value[tests], points.bound[tests]
+    value, bound = g.points.value[TESTS], g.points.bound[TESTS]
     exact = bound == Bound.EXACT
     late = (exact & (value > limit_ms)) | ((bound == Bound.ABOVE) & (value >= limit_ms))
     over: Flags = np.logical_or.reduce(late, axis=0)

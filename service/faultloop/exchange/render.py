@@ -63,6 +63,7 @@ class _Fixed:
     digest: str
     titles: list[str]
     not_applicable: list[Body]
+    not_examined: list[list[Body | None]]
     subjects: list[Body]
 
 
@@ -73,8 +74,16 @@ def _fixed(language: str) -> _Fixed:
         digest=digest(told.model_dump(mode="json")),
         titles=[told.checks[check.id].title for check in CHECKS],
         not_applicable=[{"check": check.id, "text": told.checks[check.id].applies_not} for check in CHECKS],
+        not_examined=[[_said_alike(told, check.id, reason) for reason in check.reasons] for check in CHECKS],
         subjects=[_not_examined(name, "out-of-scope", text, None) for name, text in told.subjects.items()],
     )
+
+
+def _said_alike(told: Texts, check: str, reason: str) -> Body | None:
+    """Entry of a check that was not examined, where it says the same of every point; else None."""
+    said = told.said(check, reason)
+    quotes = any(mark in said.explanation + (said.settled_by or "") for mark in "{@") or said.cautions
+    return None if quotes else _not_examined(check, reason, said.explanation, said.settled_by)
 
 
 @lru_cache(maxsize=1024)
@@ -135,6 +144,9 @@ class Renderer:
         for row, (check, verdict, reason) in enumerate(settled):
             if verdict == Verdict.NOT_APPLICABLE:
                 not_applicable.append(self._fixed.not_applicable[row])
+                continue
+            if verdict == Verdict.NOT_EXAMINED and (alike := self._fixed.not_examined[row][reason]) is not None:
+                not_examined.append(alike)
                 continue
             explanation, question, named = said(row, reason, at, quoted)
             if verdict == Verdict.NOT_EXAMINED:

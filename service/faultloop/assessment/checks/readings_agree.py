@@ -32,6 +32,9 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _above(points: Points, q: Quantities, one: int, other: int) -> Flags:
     """Where one reading exceeds another by more than both uncertainties; an open end only strengthens it."""
     value, u, bound = points.value, q.given.uncertainty, points.bound
+    both: Flags = q.given.known[one] & q.given.known[other]
+    if not both.any():
+        return both
     usable = (bound[one] != Bound.BELOW) & (bound[other] != Bound.ABOVE)
     above: Flags = usable & (value[one] - value[other] > combined(u[one], u[other]))
     return above
@@ -76,9 +79,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(points.number(Number.ZERO_EXCESS) > 0.0, Standing.UNDETERMINED, "leads-not-nulled")
     lapsed = points.choice(Choice.CALIBRATION_LAPSED) == 1
     cases.when(lapsed, Standing.MET, "calibration-lapsed")
-    inflated = (found.basis == Basis.DEAD) & (
-        found.excess > combined(q.given.uncertainty[loop], found.expected.uncertainty)
-    )
+    inflated = (found.basis == Basis.DEAD) & (found.excess > u)
     cases.when(inflated, Standing.MET, "no-trip-inflation")
     cases.when(lower | (q.tt & _above(points, q, Reading.ELECTRODE, loop)), Standing.MET, "parallel-path")
     cases.when(_above(points, q, Reading.LINE_NEUTRAL, loop), Standing.MET, "neutral-above-earth-loop")

@@ -6,6 +6,7 @@ from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
 from faultloop.assessment.points import Bound, Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities
+from faultloop.assessment.residual_times import TEST_MULTIPLES, TESTS
 from faultloop.electrical.measurement import Interval
 from faultloop.protection.catalogue import catalogue
 
@@ -21,8 +22,6 @@ REASONS = (
     "no-standard-times",
     "not-tested",
 )
-_TESTS = [Reading.TIME_1, Reading.TIME_2, Reading.TIME_5]
-_MULTIPLES = np.array([[1.0], [2.0], [5.0]])
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -30,15 +29,14 @@ def _applies(points: Points, _: Quantities) -> Flags:
 
 
 def _judge(points: Points, q: Quantities) -> Judged:
-    row, band = points.choice(Choice.RESIDUAL), catalogue().residual
-    multiples = np.broadcast_to(_MULTIPLES, (3, points.count))
-    limit, hold = 1000.0 * band.greatest_time(row, multiples), 1000.0 * band.least_time(row, multiples)
-    bound, value = points.bound[_TESTS], points.value[_TESTS]
+    row, limit = points.choice(Choice.RESIDUAL), q.residual.limits_ms
+    hold = 1000.0 * catalogue().residual.least_time(row, np.broadcast_to(TEST_MULTIPLES, limit.shape))
+    bound, value = points.bound[TESTS], points.value[TESTS]
     tested = bound != Bound.MISSING
     # The result nearest to its limit, or farthest beyond, speaks for the device.
     share = np.where(tested, value / limit, -np.inf)
     worst, at = share.argmax(axis=0), np.arange(points.count)
-    picked = Interval(q.given.least[_TESTS][worst, at], q.given.greatest[_TESTS][worst, at], value[worst, at])
+    picked = Interval(q.given.least[TESTS][worst, at], q.given.greatest[TESTS][worst, at], value[worst, at])
     exact = bound == Bound.EXACT
     half, half_ms = points.bound[Reading.TIME_HALF], points.value[Reading.TIME_HALF]
     told = (half == Bound.EXACT) | (half == Bound.BELOW)
