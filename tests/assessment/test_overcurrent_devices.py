@@ -13,7 +13,19 @@ from faultloop.exchange.render import assess_requests, request_bytes
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.protection.fuses import fuse_families
 from faultloop.replay import replay
-from tests.assessment.bodies import Body, breaker, cautions, copper, finding, fuse, live, readings, request, said
+from tests.assessment.bodies import (
+    RESIDUAL_30,
+    Body,
+    breaker,
+    cautions,
+    copper,
+    finding,
+    fuse,
+    live,
+    readings,
+    request,
+    said,
+)
 
 CHECK = "overcurrent-disconnection"
 SOURCE = "data sheet 7, figure 2"
@@ -194,9 +206,7 @@ def test_conductor_is_held_against_the_time_of_the_series() -> None:
 
 def test_the_step_of_a_device_upstream_proves_nothing_that_its_time_does_not_show() -> None:
     # 0.75 mm2 bears 250 A for (115 x 0.75 / 400)^2 = 0.05 s: less than the 0.1 s of the B40.
-    body = request(
-        readings(zs=live(0.5), z_ln=live(0.5)), device="D63", rules="iec-60364", line_conductor=copper(0.75)
-    )
+    body = request(readings(zs=live(0.5), z_ln=live(0.5)), device="D63", rules="iec-60364", line_conductor=copper(0.75))
     backed = finding(assess({**body, "upstream_overcurrent_devices": [breaker("B40")]}), "line-neutral-disconnection")
     assert (backed["verdict"], backed["reason"]) == ("undetermined", "not-cleared-at-once")
 
@@ -345,3 +355,16 @@ def test_every_fuse_system_held_can_be_asked_for() -> None:
 def test_a_rating_that_the_family_has_not_is_refused_with_those_it_has(device: Body) -> None:
     with pytest.raises(ValueError, match="no device has this rating; expected one of"):
         assess(request(readings(zs=live(0.6)), device=device))
+
+
+def test_what_clears_upstream_is_not_left_to_the_residual_device() -> None:
+    # D32 needs 640 A; 230/0.9 is 256 A, beyond the 80 A of the B16 in front.
+    body = request(readings(zs=live(0.7), times={"1": 24}), device="D32", residual=RESIDUAL_30, rules="iec-60364")
+    assert assess(body)["verdict"] != "pass"
+    body["upstream_overcurrent_devices"] = [breaker("B16")]
+    answer = assess(body)
+    assert finding(answer, CHECK)["reason"] == "cleared-upstream"
+    assert finding(answer, "residual-disconnection")["verdict"] == "pass"
+    report = finding(answer, "barrier-failed-path")
+    assert (report["verdict"], report["reason"]) == ("pass", "cleared-upstream")
+    assert "everything rests on the residual device" not in report["explanation"]

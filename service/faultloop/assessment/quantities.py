@@ -75,6 +75,12 @@ class Quantities:
     touch_known: Flags
 
     @property
+    def cleared_upstream(self) -> Flags:
+        """Where a device upstream clears an earth fault in time and the circuit's own does not."""
+        cleared: Flags = (self.overcurrent != Verdict.PASS) & (self.upstream.verdict == Verdict.PASS)
+        return cleared
+
+    @property
     def tt(self) -> Flags:
         """Where the supply is TT."""
         return self.given.tt

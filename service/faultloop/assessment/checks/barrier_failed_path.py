@@ -18,6 +18,7 @@ REASONS = (
     *PREREQUISITES,
     *LOOP,
     "device-missing",
+    "cleared-upstream",
     "no-guaranteed-current",
     "reading-over-range",
     "no-trip-undecided",
@@ -33,11 +34,12 @@ def _judge(points: Points, q: Quantities) -> Judged:
     prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     loop_is_wanting(cases, q)
+    cases.when(q.cleared_upstream, Standing.MET, "cleared-upstream")
     cases.when(np.isinf(q.operating_current), Standing.UNDETERMINED, "no-guaranteed-current")
     open_end = np.isinf(q.compared.greatest) & (q.compared.least <= q.loop_limit)
     cases.when(open_end, Standing.UNDETERMINED, "reading-over-range")
     cases.when(q.no_trip_undecided, Standing.UNDETERMINED, "no-trip-undecided")
-    return cases.settle(q.compared, q.loop_limit)
+    return cases.settle(q.compared, np.where(q.cleared_upstream, q.upstream.limit, q.loop_limit))
 
 
 CHECK = Check(

@@ -55,7 +55,7 @@ def _with_upstream(cases: Cases, q: Quantities) -> Array:
     The verdict rests on the circuit's own device; where it does not clear, either device interrupts the fault.
     """
     upstream, hopeless = q.upstream.verdict, q.overcurrent < Verdict.MARGINAL
-    cleared = (q.overcurrent != Verdict.PASS) & (upstream == Verdict.PASS)
+    cleared = q.cleared_upstream
     doubtful = hopeless & (upstream == Verdict.MARGINAL)
     cases.when(cleared, Standing.MET, "cleared-upstream")
     cases.when(doubtful, Standing.UNDETERMINED, "upstream-inside-uncertainty")

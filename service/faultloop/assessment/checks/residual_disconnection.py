@@ -42,7 +42,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     limit = np.where(np.isinf(multiple), np.nan, limit)
     touch = q.rule("touch_voltage") / (points.number(Number.RESIDUAL_MA) / 1000.0)
     limit = np.where(~q.tt & (q.rule("touch_limit_on_tn") > 0), np.minimum(limit, touch), limit)
-    relied_on = ~q.tt & (q.overcurrent != Verdict.PASS)
+    relied_on = ~q.tt & (q.overcurrent != Verdict.PASS) & ~q.cleared_upstream
     cases = Cases(REASONS)
     prerequisites_are_wanting(cases, q, Standing.NOT_EXAMINED)
     loop_is_wanting(cases, q)
