@@ -241,6 +241,24 @@ def test_rows_under_rules_of_the_callers_own(url: str) -> None:
     served(url, work)
 
 
+def test_rows_may_name_a_stored_set_and_are_read_back_under_it(url: str) -> None:
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        told = {"value": 2, "unit": "Mohm", "clause": "4.2", "source": "site policy", "sourcing": "assumption"}
+        own = {"id": "site-rules", "edition": "2026", "title": "Site rules", "extends": "bs-7671:2018"}
+        body = own | {"insulation": told | {"checked": "2026-11-30"}}
+        assert (await client.put("/v1/rule-sets/site-rules:2026", json=body)).status_code == 201
+        content = HEAD + GOOD.replace("bs-7671", "site-rules:2026") + GOOD.replace("bs-7671", "site-rules:2025")
+        stored = await client.post("/v1/batches", content=content, headers={"Content-Type": "text/csv"})
+        assert stored.json()["counts"] == {"rows": 2, "results": 1, "held": 0, "refused": 1}
+        row = (await client.get(f"{stored.headers['Location']}/rows/2")).json()
+        assert (row["identical"], row["assessment"]["provenance"]["rules"]) == (True, "site-rules:2026")
+        assert "own-rules" in {caution["caution"] for caution in row["assessment"]["cautions"]}
+        view = await client.get(f"{stored.headers['Location']}/workshop")
+        assert view.json()["provenance"]["rules"][0]["asked"] == "site-rules:2026"
+
+    served(url, work)
+
+
 @pytest.mark.parametrize(
     ("kind", "content", "query", "status"),
     [

@@ -8,10 +8,12 @@ from uuid import UUID, uuid4
 
 import orjson
 from fastapi import APIRouter, Header, Path, Query, Request, Response
+from sqlalchemy import Engine
 
 from faultloop import __version__
 from faultloop.api.bodies import limited_body
 from faultloop.api.negotiation import ASKED_LANGUAGE, language, media_type, unless_held
+from faultloop.api.own_rules import StoredSets
 from faultloop.api.problems import Refused
 from faultloop.api.worker import Worker
 from faultloop.assessment.texts import LANGUAGES
@@ -89,7 +91,7 @@ async def _upload(request: Request, query: BatchQuery) -> Upload:
     if kind == JSON and query.model_fields_set:
         raise Refused("unreadable-file", "default, decimal and ignore are for text/csv; in JSON, send defaults.")
     content = await limited_body(request, request.app.state.max_batch_bytes)
-    return Upload("csv" if kind == CSV else "json", content, query)
+    return Upload("csv" if kind == CSV else "json", content, query, StoredSets(request.app.state.engine))
 
 
 @dataclass(frozen=True, slots=True)
@@ -109,11 +111,11 @@ async def _keep(request: Request, id: UUID, upload: Upload, kind: str) -> _Kept:
     def work() -> _Kept:
         found = find_batch(engine, str(id))
         if found is not None:
-            return _Kept(found, False, kind, _content(found, kind))
+            return _Kept(found, False, kind, _content(found, kind, engine))
         read = read_upload(upload)
         batch = judged(read.rows)
         kept, created = keep_batch(engine, _record(str(id), upload, read, batch))
-        content = answer_csv(batch).encode() if created and kind == CSV else _content(kept, kind)
+        content = answer_csv(batch).encode() if created and kind == CSV else _content(kept, kind, engine)
         return _Kept(kept, created, kind, content)
 
     return await _run(request, work)
@@ -146,11 +148,11 @@ def _record(id: str, upload: Upload, read: Read, batch: Judged) -> BatchRecord: 
     )
 
 
-def _content(kept: KeptBatch, kind: str) -> bytes:
+def _content(kept: KeptBatch, kind: str, engine: Engine) -> bytes:
     """The stored answer, byte for byte; as CSV, the rows as they came with their answers beside them."""
     if kind == JSON:
         return kept.record.answer
-    return answer_csv(restored(read_upload(upload_of(kept)).rows, orjson.loads(kept.record.answer))).encode()
+    return answer_csv(restored(read_upload(upload_of(kept, engine)).rows, orjson.loads(kept.record.answer))).encode()
 
 
 def _answered(kept: KeptBatch, status: int, kind: str, content: bytes) -> Response:
@@ -168,10 +170,10 @@ def _tag(kept: KeptBatch, kind: str) -> str:
     return f'"{kept.record.input_digest}"' if kind == JSON else f'"{kept.record.input_digest}-csv"'
 
 
-def upload_of(kept: KeptBatch) -> Upload:
-    """What was sent, as it was stored."""
+def upload_of(kept: KeptBatch, engine: Engine) -> Upload:
+    """What was sent, as it was stored; the rule sets that it names are stored for good."""
     query = BatchQuery.model_validate_json(kept.record.parameters)
-    return Upload("csv" if kept.record.format == "csv" else "json", kept.record.content, query)
+    return Upload("csv" if kept.record.format == "csv" else "json", kept.record.content, query, StoredSets(engine))
 
 
 @router.get("/{id:uuid}", response_model=Batch, responses=_OK, summary="Read a stored batch")
@@ -182,7 +184,8 @@ async def get_batch(
 ) -> Response:
     """Give the stored answer, byte for byte; as CSV, the rows as they came with their answers beside them."""
     kept, kind = await _found(request, id), _liked(request, CSV)
-    return unless_held(_answered(kept, 200, kind, await _run(request, lambda: _content(kept, kind))), if_none_match)
+    content = await _run(request, lambda: _content(kept, kind, request.app.state.engine))
+    return unless_held(_answered(kept, 200, kind, content), if_none_match)
 
 
 @router.get(
@@ -201,7 +204,8 @@ async def get_batch_row(
     Questions and errors about cells are stored with the batch, in English.
     """
     kept, spoken = await _found(request, id), language(request)
-    body = await _run(request, lambda: batch_row(upload_of(kept), kept.record.answer, number, spoken))
+    engine = request.app.state.engine
+    body = await _run(request, lambda: batch_row(upload_of(kept, engine), kept.record.answer, number, spoken))
     if body is None:
         raise Refused("not-found", "The batch has no row of this number.")
     told = spoken if "assessment" in body else LANGUAGES[0]
@@ -226,15 +230,15 @@ async def get_batch_workshop(
     Questions and errors about cells are in English in every language.
     """
     kept, kind, spoken = await _found(request, id), _liked(request, HTML), language(request)
-    content = await _run(request, lambda: _workshop(kept, query.population, kind, spoken))
+    content = await _run(request, lambda: _workshop(kept, query.population, kind, spoken, request.app.state.engine))
     headers = {"Cache-Control": "no-store", "Content-Language": spoken, "Vary": "Accept, Accept-Language"}
     if kind == HTML:
         headers["Content-Security-Policy"] = "default-src 'none'; style-src 'unsafe-inline'"
     return Response(content, media_type=kind, headers=headers)
 
 
-def _workshop(kept: KeptBatch, population: int | None, kind: str, language: str) -> bytes:
-    view = batch_workshop(upload_of(kept), kept.record.answer, population, language)
+def _workshop(kept: KeptBatch, population: int | None, kind: str, language: str, engine: Engine) -> bytes:
+    view = batch_workshop(upload_of(kept, engine), kept.record.answer, population, language)
     stored_at = kept.stored_at.astimezone(UTC).isoformat(timespec="seconds").replace("+00:00", "Z")
     view |= {"id": kept.record.id, "stored_at": stored_at}
     if kind == JSON:

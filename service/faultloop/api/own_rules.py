@@ -1,6 +1,7 @@
 """Callers' own sets of rules as the running service knows them: looked up once, remembered with what is stored."""
 
 from collections import OrderedDict
+from collections.abc import Iterator, Mapping
 
 from fastapi.concurrency import run_in_threadpool
 from sqlalchemy import Engine
@@ -12,6 +13,34 @@ from faultloop.rules.loader import LoadedRules, content, from_content
 from faultloop.rules.strict import DataFileError
 
 KEPT = 256
+
+
+class StoredSets(Mapping[str, LoadedRules]):
+    """Stored sets by name, each looked up when it is first named: for work in a thread of its own."""
+
+    def __init__(self, engine: Engine) -> None:
+        self._engine = engine
+        self._held: dict[str, LoadedRules] = {}
+
+    def __getitem__(self, name: str) -> LoadedRules:
+        """The set of this name; one that was written for another version is as good as none."""
+        if name not in self._held:
+            told = rule_sets.content_named(self._engine, name) if STORED_NAME.fullmatch(name) else None
+            if told is None:
+                raise KeyError(name)
+            try:
+                self._held[name] = from_content(told)
+            except DataFileError:
+                raise KeyError(name) from None
+        return self._held[name]
+
+    def __iter__(self) -> Iterator[str]:
+        """Names looked up so far."""
+        return iter(self._held)
+
+    def __len__(self) -> int:
+        """How many were looked up so far."""
+        return len(self._held)
 
 
 class OwnRuleSets:

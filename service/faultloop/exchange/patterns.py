@@ -11,7 +11,7 @@ from typing import Any, NamedTuple
 from faultloop.assessment.points import Number, Reading
 from faultloop.digests import json_bytes
 from faultloop.exchange.columns import COLUMNS, TIMES, FileRefused, unknown
-from faultloop.exchange.rows import TWICE, Body, Fault, Format, Told, named_twice, read_body, read_cells
+from faultloop.exchange.rows import TWICE, Body, Fault, Format, Stored, Told, named_twice, read_body, read_cells
 from faultloop.exchange.tables import Table
 
 # Where the mapping puts the number of a cell, untouched; columns not named here belong to a row's pattern.
@@ -77,12 +77,12 @@ def refuse_defaults(defaults: Mapping[str, str]) -> None:
             raise FileRefused(f"the column of default {at} {unknown(name)}")
 
 
-def body_rows(rows: Sequence[Any], defaults: Body, *, marked: bool = False) -> Rows:
+def body_rows(rows: Sequence[Any], defaults: Body, *, marked: bool = False, stored: Stored = None) -> Rows:
     """Rows that are request bodies; `marked` where names that stand twice are marked."""
 
     def alone(at: int) -> Told:
         twice = marked and named_twice(rows[at])
-        return Told(faults=[TWICE]) if twice else read_body(rows[at], defaults)
+        return Told(faults=[TWICE]) if twice else read_body(rows[at], defaults, stored)
 
     parted = [_parted(row) for row in rows] if not marked else [(at, {}) for at in range(len(rows))]
     told, pattern = _patterns([key for key, _ in parted], alone)
@@ -146,7 +146,7 @@ def _named_in(row: Any) -> Named:
     return Named(*(value if isinstance(value := known.get(name), str) else "" for name in ("id", "label", "location")))
 
 
-def file_rows(table: Table, defaults: Mapping[str, str]) -> Rows:
+def file_rows(table: Table, defaults: Mapping[str, str], stored: Stored = None) -> Rows:
     """Rows of a file; a column that the file lacks takes its default, a blank cell of one that it has does not."""
     form = Format(table.decimal, table.units)
     at_column = {name: at for at, name in enumerate(table.columns) if name is not None}
@@ -158,7 +158,7 @@ def file_rows(table: Table, defaults: Mapping[str, str]) -> Rows:
         if at in table.faults:
             return Told(faults=[Fault("", "unreadable-row", table.faults[at])])
         cells = {name: column[at] for name, column in columns.items()}
-        return read_cells({**absent, **cells}, table.numbers[at], form)
+        return read_cells({**absent, **cells}, table.numbers[at], form, stored)
 
     kinds, values = _kinds(len(table.cells), columns, form)
     keys: list[Hashable] = list(zip(*kinds, strict=True))

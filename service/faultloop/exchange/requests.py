@@ -1,5 +1,6 @@
 """The body of one measured point, as it comes in."""
 
+from collections.abc import Mapping
 from typing import Annotated, Any, Literal, Self
 
 from pydantic import Discriminator, Field, PrivateAttr, Tag, ValidationInfo, field_validator, model_validator
@@ -236,11 +237,11 @@ class AssessmentRequest(Closed):
         return self
 
 
-def _resolved(told: Any, stored: dict[str, LoadedRules] | None) -> LoadedRules:
+def _resolved(told: Any, stored: Mapping[str, LoadedRules] | None) -> LoadedRules:
     """The set that is named, or said; the context of a validation holds callers' stored sets by name."""
     if not isinstance(told, str):
         return own_rules(told)
-    found = (stored or {}).get(told) or resolve(told)
+    found = stored[told] if stored is not None and told in stored else resolve(told)
     if found is None:
         raise _unknown_rules()
     return found

@@ -11,8 +11,11 @@ from faultloop.exchange.cells import MISSING, Cell, Decimal, read_cell
 from faultloop.exchange.columns import CHOICES, CONDUCTORS, NUMBERS, READINGS, WORDS, Path, column_at
 from faultloop.exchange.requests import AssessmentRequest
 from faultloop.protection.designations import Breaker, UnknownDesignation, parse_overcurrent, parse_residual
+from faultloop.rules.loader import LoadedRules
 
 Body = dict[str, Any]
+# Callers' stored rule sets by the name under which a row may ask for one.
+Stored = Mapping[str, LoadedRules] | None
 NO_RESIDUAL_DEVICE = {"-", "none", "n/a"}
 
 
@@ -72,7 +75,7 @@ class Format:
         return read_cell(text, column, self.decimal, self.units.get(column))
 
 
-def read_cells(cells: Mapping[str, str], number: int, form: Format) -> Told:
+def read_cells(cells: Mapping[str, str], number: int, form: Format, stored: Stored = None) -> Told:
     """Read a row of a file, cell by cell by contract names; a blank cell says nothing."""
     said = {column: text.strip() for column, text in cells.items() if text.strip()}
     for column in _UNMARKED & said.keys():
@@ -93,7 +96,7 @@ def read_cells(cells: Mapping[str, str], number: int, form: Format) -> Told:
             _put(body, path, int(value) if column == "phases" and value.is_integer() else value)
     _put_conductors(body, said, told, form)
     _put_readings(body, said, told, form)
-    return _checked(told, body, _in_file)
+    return _checked(told, body, _in_file, stored)
 
 
 def _put(body: Body, path: Path, value: Any) -> None:
@@ -188,12 +191,12 @@ def _in_file(location: tuple[Any, ...], body: Body, *, absent: bool) -> str:
     return column_at(tuple(str(part) for part in location)) or faults.pointer(location, body, absent=absent)
 
 
-def _checked(told: Told, body: Any, where: Any) -> Told:
+def _checked(told: Told, body: Any, where: Any, stored: Stored) -> Told:
     """Validate the body where nothing stands against it yet."""
     if told.status != "judged":
         return told
     try:
-        told.request = AssessmentRequest.model_validate(body)
+        told.request = AssessmentRequest.model_validate(body, context=stored)
     except ValidationError as error:
         for fault in error.errors(include_url=False)[:_MOST_FAULTS]:
             place = where(fault["loc"], body, absent=fault["type"] == "missing")
@@ -214,11 +217,11 @@ def named_twice(value: Any) -> bool:
     return isinstance(value, NamedTwice) or any(named_twice(item) for item in inside)
 
 
-def read_body(row: Any, defaults: Body) -> Told:
+def read_body(row: Any, defaults: Body, stored: Stored = None) -> Told:
     """Read a row that is an assessment request, in which a reading may also be the text that an instrument printed."""
     told = Told()
     body = _printed(_merged(defaults, row), told) if isinstance(row, dict) else row
-    return _checked(told, body, faults.pointer)
+    return _checked(told, body, faults.pointer, stored)
 
 
 def _merged(defaults: Body, row: Body) -> Body:

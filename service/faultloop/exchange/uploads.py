@@ -10,7 +10,7 @@ from faultloop.digests import digest, sha256
 from faultloop.exchange.batches import BatchQuery
 from faultloop.exchange.columns import FileRefused
 from faultloop.exchange.patterns import Rows, body_rows, file_rows, refuse_defaults
-from faultloop.exchange.rows import NamedTwice, named_twice
+from faultloop.exchange.rows import NamedTwice, Stored, named_twice
 from faultloop.exchange.tables import MOST_ROWS, decoded, read_table
 
 Body = dict[str, Any]
@@ -18,11 +18,12 @@ Body = dict[str, Any]
 
 @dataclass(frozen=True, slots=True)
 class Upload:
-    """What a caller sent, unchanged: enough to read and judge it again."""
+    """What a caller sent, unchanged: enough to read and judge it again, with the stored rule sets that it may name."""
 
     format: Literal["csv", "json"]
     content: bytes
     query: BatchQuery
+    stored: Stored = None
 
     @property
     def input_digest(self) -> str:
@@ -69,7 +70,7 @@ def _read_file(upload: Upload) -> Read:
         "ignored_columns": table.ignored,
         "defaults": defaults,
     }
-    return Read(file_rows(table, defaults), reading)
+    return Read(file_rows(table, defaults, upload.stored), reading)
 
 
 def _read_body(upload: Upload) -> Read:
@@ -84,7 +85,7 @@ def _read_body(upload: Upload) -> Read:
     if len(rows) > MOST_ROWS:
         raise FileRefused(f"the batch has more than {MOST_ROWS} rows: send it in parts")
     reading: Body = {"format": "json", "blank_lines": 0, "ignored_columns": [], "defaults": defaults}
-    return Read(body_rows(rows, defaults, marked=marked), reading)
+    return Read(body_rows(rows, defaults, marked=marked, stored=upload.stored), reading)
 
 
 class NotJson(ValueError):
