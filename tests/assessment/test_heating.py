@@ -160,3 +160,15 @@ def test_a_stated_current_at_the_board_is_not_outdone_by_a_loop() -> None:
     assert finding(heated("B32", 2.5, 1.5), CHECK)["verdict"] == "pass"
     stated = heated("B32", 2.5, 1.5, board={"prospective_current_ka": 20})
     assert finding(stated, CHECK)["verdict"] == "undetermined"
+
+
+def test_the_greatest_current_is_taken_at_the_low_end_of_what_was_read() -> None:
+    # Ze 0.09 with U = 0.0345 may be 0.0555: 1.1 x 230/0.0555 = 4.6 kA, in the column of 6 kA and not of 3 kA.
+    found = finding(heated("B32", 6, 2.5, zs=0.3, ze=0.09), CHECK)
+    assert found["value"] == pytest.approx(45_000**0.5 / 115, rel=1e-5)
+
+
+def test_the_board_has_at_least_the_current_of_its_outlet() -> None:
+    # A board loop of 0.2 gives 1.5 kA at most; 0.1 at the outlet, 0.065 at the least, gives 3.9 kA.
+    found = finding(heated("B32", 6, 2.5, zs=0.1, ze=None, board={"earth_fault_loop_impedance_ohm": live(0.2)}), CHECK)
+    assert found["value"] == pytest.approx(45_000**0.5 / 115, rel=1e-5)

@@ -166,6 +166,8 @@ def test_a_dead_test_beyond_its_length_is_a_defect_and_no_explanation() -> None:
     assert finding(answer, "protective-conductor-condition")["reason"] == "dead-test-unexplained"
     assert finding(answer, "residual-disconnection")["reason"] == "path-beyond-its-length"
     assert (answer["verdict"], answer["urgency"]) == ("fail", "urgent")
+    # What nothing explains is taken to lie in the protective path: 5.52 of 5.82 ohm hot.
+    assert finding(answer, "touch-voltage")["value"] == pytest.approx(230 * 1.2 * 4.6 / (0.3 + 1.2 * 4.6), rel=1e-5)
 
 
 def test_without_a_length_the_dead_test_explains_a_long_path() -> None:
@@ -373,3 +375,9 @@ def test_the_time_that_the_rules_give_a_distribution_circuit_stops_no_use() -> N
     )
     assert finding(answer, "overcurrent-disconnection")["verdict"] == "pass"
     assert (answer["verdict"], answer["urgency"]) == ("fail", "planned")
+
+
+@pytest.mark.parametrize(("earthing", "hot"), [("TN-S", 1.2 * 1.2), ("TN-C-S", 0.8 + 1.2 * 0.4)])
+def test_only_on_tn_c_s_is_the_external_loop_split_off_the_neutrals(earthing: str, hot: float) -> None:
+    answer = judged(readings(zs=live(1.3), ze=0.8, z_ln=live(1.2)), device="B16", earthing=earthing)
+    assert finding(answer, "line-neutral-disconnection")["value"] == pytest.approx(hot, rel=1e-5)
