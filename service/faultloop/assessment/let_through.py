@@ -24,6 +24,10 @@ class LetThroughEnergy:
 def let_through(g: Given, current: Interval) -> LetThroughEnergy:
     """Energy of an interruption at once: as stated, else by the column of the class for the greatest current."""
     number = g.points.number
+    if np.isnan(number(Number.PROTECTIVE_MM2)).all():
+        # Nobody asks for it where no protective conductor is stated.
+        unknown = np.full(g.points.count, np.nan)
+        return LetThroughEnergy(unknown, unknown)
     board, capacity = _greatest_at_board(g, current), number(Number.BREAKING_CAPACITY_KA)
     # Where nothing bounds the current the breaking capacity does: beyond it another check fails.
     bound = np.where(np.isinf(board) & ~np.isnan(capacity), capacity, board / 1000.0)

@@ -77,6 +77,9 @@ class Quantities:
     @property
     def cleared_upstream(self) -> Flags:
         """Where a device upstream clears an earth fault in time and the circuit's own does not."""
+        points = self.given.points
+        if not len(points.upstream):
+            return np.zeros(points.count, dtype=np.bool_)
         cleared: Flags = (self.overcurrent != Verdict.PASS) & (self.upstream.verdict == Verdict.PASS)
         return cleared
 

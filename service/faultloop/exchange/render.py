@@ -184,20 +184,27 @@ class Renderer:
         value, least, greatest, limit, margin, probability = [column[at] for column in self._values.rounded[row]]
         body: Body = {"check": check.id, "title": self._fixed.titles[row], "verdict": _VERDICTS[verdict]}
         body["quantity"] = check.quantity
-        _put(body, "value", value)
-        ends = (least, greatest)
-        _put(body, "interval", interval(self._values.least[row][at], self._values.greatest[row][at], ends))
-        _put(body, "limit", limit)
+        # What is unknown is absent.
+        if value is not None:
+            body["value"] = value
+        told = interval(self._values.least[row][at], self._values.greatest[row][at], (least, greatest))
+        if told is not None:
+            body["interval"] = told
+        if limit is not None:
+            body["limit"] = limit
         body["unit"] = check.unit
-        _put(body, "margin_percent", margin)
-        _put(body, "conformance_probability", probability)
-        _put(body, "group", check.group)
+        if margin is not None:
+            body["margin_percent"] = margin
+        if probability is not None:
+            body["conformance_probability"] = probability
+        if check.group is not None:
+            body["group"] = check.group
         body["counts"] = self._counts[at][row]
         body["clause"] = (clauses.get(f"{check.id}-tt") if self._tt[at] else None) or clauses[check.id]
         body["reason"] = check.reasons[self._reason[at][row]]
         body["explanation"] = explanation
-        if Verdict.FAIL < verdict < Verdict.PASS_WITH_CONDITIONS:
-            _put(body, "settled_by", question)
+        if question is not None and Verdict.FAIL < verdict < Verdict.PASS_WITH_CONDITIONS:
+            body["settled_by"] = question
         if named:
             body["caution"] = self._texts.cautions[named[0]].text
         return body
@@ -222,12 +229,6 @@ class Renderer:
             "texts_digest": self._fixed.digest,
             "input_digest": input_digest,
         }
-
-
-def _put(body: Body, name: str, told: Any) -> None:
-    """What is unknown is absent."""
-    if told is not None:
-        body[name] = told
 
 
 def _not_examined(subject: str, reason: str, text: str, question: str | None) -> Body:
