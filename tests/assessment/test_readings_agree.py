@@ -381,3 +381,30 @@ def test_the_time_that_the_rules_give_a_distribution_circuit_stops_no_use() -> N
 def test_only_on_tn_c_s_is_the_external_loop_split_off_the_neutrals(earthing: str, hot: float) -> None:
     answer = judged(readings(zs=live(1.3), ze=0.8, z_ln=live(1.2)), device="B16", earthing=earthing)
     assert finding(answer, "line-neutral-disconnection")["value"] == pytest.approx(hot, rel=1e-5)
+
+
+@pytest.mark.parametrize(
+    ("board", "verdict", "reason"),
+    [
+        # 0.95 x 230 V / (1.2 x 0.044 ohm at the most) is over 4 kA at the outlet; the device breaks 3 kA alone.
+        (
+            {"prospective_current_ka": 9, "assembly_conditional_rating_ka": 10},
+            "pass-with-conditions",
+            "assembly-rating",
+        ),
+        ({"assembly_conditional_rating_ka": 10}, "undetermined", "current-missing"),
+        ({"prospective_current_ka": 9}, "fail", "outlet-current-over-capacity"),
+        ({"prospective_current_ka": 9, "assembly_conditional_rating_ka": 3.5}, "fail", "outlet-current-over-capacity"),
+    ],
+)
+def test_a_rating_on_paper_stands_behind_an_outlet_beside_its_board(board: Body, verdict: str, reason: str) -> None:
+    device = {
+        "kind": "miniature-circuit-breaker",
+        "characteristic": "B",
+        "rated_current_a": 32.0,
+        "breaking_capacity_ka": 3,
+    }
+    instrument_ = {"percent": 5, "digits": 2, "resolution": 0.001}
+    read = readings(zs=live(0.04, instrument=instrument_), ze=0.03)
+    found = finding(judged(read, device=device, board=board), "breaking-capacity")
+    assert (found["verdict"], found["reason"]) == (verdict, reason)

@@ -15,7 +15,8 @@ _BOUND = {"exact": Bound.EXACT, "above": Bound.ABOVE, "below": Bound.BELOW}
 _METHOD = Method.codes()
 _POLARITY: dict[str | None, int] = {None: 0, "not-tested": 0}
 _POLARITY.update(Polarity.codes())
-_READINGS = {
+# Readings of the body that go into the row as they stand.
+PLAIN_READINGS = {
     "external_earth_fault_loop_impedance_ohm": Reading.EXTERNAL,
     "line_neutral_loop_impedance_ohm": Reading.LINE_NEUTRAL,
     "line_plus_protective_resistance_ohm": Reading.LINE_PLUS_PROTECTIVE,
@@ -46,7 +47,7 @@ def put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
     readings, board, row = request.readings, request.board, point.row
     _put_loop(point, readings.earth_fault_loop_impedance_ohm)
     for name in readings.model_fields_set:
-        if (which := _READINGS.get(name)) is not None:
+        if (which := PLAIN_READINGS.get(name)) is not None:
             _put(row, which, getattr(readings, name))
     row.choices[Choice.POLARITY] = _POLARITY[readings.polarity]
     if (times := readings.residual_operating_time_ms) is not None:

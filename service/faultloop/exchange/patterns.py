@@ -11,21 +11,14 @@ from typing import Any, NamedTuple
 from faultloop.assessment.points import Number, Reading
 from faultloop.digests import json_bytes
 from faultloop.exchange.columns import COLUMNS, TIMES, FileRefused, unknown
+from faultloop.exchange.mapped_readings import PLAIN_READINGS
 from faultloop.exchange.rows import TWICE, Body, Fault, Format, Stored, Told, named_twice, read_body, read_cells
 from faultloop.exchange.tables import Table
 
 # Where the mapping puts the number of a cell, untouched; columns not named here belong to a row's pattern.
 READING_OF = {
     "earth_fault_loop_impedance_ohm": Reading.LOOP,
-    "external_earth_fault_loop_impedance_ohm": Reading.EXTERNAL,
-    "line_neutral_loop_impedance_ohm": Reading.LINE_NEUTRAL,
-    "line_plus_protective_resistance_ohm": Reading.LINE_PLUS_PROTECTIVE,
-    "protective_conductor_resistance_ohm": Reading.PROTECTIVE,
-    "earth_electrode_resistance_ohm": Reading.ELECTRODE,
-    "insulation_resistance_megohm": Reading.INSULATION,
-    "residual_operating_current_ma": Reading.OPERATING_CURRENT,
-    "voltage_v": Reading.VOLTAGE,
-    "voltage_neutral_to_earth_v": Reading.NEUTRAL_EARTH_VOLTAGE,
+    **PLAIN_READINGS,
     "board_line_neutral_loop_impedance_ohm": Reading.ORIGIN_LINE_NEUTRAL,
     "board_earth_fault_loop_impedance_ohm": Reading.BOARD_LOOP,
     "board_prospective_current_ka": Reading.BOARD_CURRENT,
