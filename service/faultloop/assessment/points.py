@@ -134,6 +134,8 @@ class Number(Codes):
     CONTACT_GREATEST_MA = 49
     LINE_EARTH_NF = 50
     SET_POINT_KOHM = 51
+    SECONDARY_V = 52
+    LOAD_LOSS_W = 53
 
 
 class Choice(Codes):
