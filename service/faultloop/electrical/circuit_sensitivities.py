@@ -18,7 +18,7 @@ from faultloop.electrical.circuit_elements import (
     VoltageSource,
 )
 from faultloop.electrical.circuit_solution import Solution, current_through, voltage_between
-from faultloop.electrical.circuits import solved
+from faultloop.electrical.circuit_dense import solved
 from faultloop.electrical.measurement import Array
 
 Sensitivities = dict[tuple[str, str], Phasor]
@@ -148,7 +148,7 @@ def magnitude_sensitivities(
 def _by_adjoint(solution: Solution, chosen: Phasor) -> Sensitivities:
     """λᵀ·(∂b/∂p - ∂A/∂p·x) for every value p."""
     equations, layout = solution.equations, solution.equations.layout
-    adjoint = solved(equations, chosen, adjoint=True)
+    adjoint = solved(equations, chosen, np.arange(len(chosen)), adjoint=True)
     found: Sensitivities = {}
 
     def lift(branch: int) -> Phasor:

@@ -1,0 +1,261 @@
+"""Arithmetic written down once and done for many networks: a list of operations on rows, one entry of a row a network."""
+
+from collections.abc import Callable, Iterable, Iterator, Mapping
+from dataclasses import dataclass, field
+from typing import Any
+
+import numpy as np
+
+MULTIPLY, ADD, SUBTRACT, DIVIDE = np.multiply, np.add, np.subtract, np.divide
+ONE, ZERO, WATCHED = 0, 1, 2  # rows that every tape has; the last sums the squares of what is watched
+Value = tuple[int, int] | None  # sign and number of a row; None is zero in every network
+Step = tuple[Callable[..., Any], int, int, int]  # what is done, the rows it is done to, the row that takes the result
+
+
+@dataclass(frozen=True, slots=True)
+class Program:
+    """Steps on ``rows`` rows of complex numbers.
+
+    ``loaded`` are the rows that hold a value of an element at the start.  Row ``rows + k`` is row k as pairs of real
+    numbers; row ``2·rows + k`` is the k-th result.  ``zeros`` are the results that are zero in every network.
+    """
+
+    rows: int
+    loaded: Mapping[tuple[int, str], int]
+    steps: tuple[Step, ...]
+    zeros: tuple[int, ...]
+
+
+@dataclass(slots=True)
+class Tape:
+    """Operations as they are written down, each to a row of its own; signs are carried beside, and cost nothing."""
+
+    steps: list[Step] = field(default_factory=list)
+    loaded: dict[tuple[int, str], int] = field(default_factory=dict)
+    results: dict[int, int] = field(default_factory=dict)
+    zeros: list[int] = field(default_factory=list)
+    count: int = 3
+
+    def load(self, element: int, name: str) -> Value:
+        """Take a value of an element.
+
+        Parameters
+        ----------
+        element : int
+            Its index.
+        name : str
+            Of the value.
+
+        Returns
+        -------
+        Value
+            The same whenever it is asked for.
+
+        References
+        ----------
+        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        """
+        if (element, name) not in self.loaded:
+            self.loaded[element, name] = self._new()
+        return 1, self.loaded[element, name]
+
+    def times(self, one: Value, other: Value) -> Value:
+        """Multiply.
+
+        Parameters
+        ----------
+        one, other : Value
+            Factors.
+
+        Returns
+        -------
+        Value
+            Their product.
+
+        References
+        ----------
+        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        """
+        if one is None or other is None:
+            return None
+        sign = one[0] * other[0]
+        if ONE in (one[1], other[1]):
+            return sign, one[1] + other[1]
+        return sign, self._write(MULTIPLY, one[1], other[1])
+
+    def plus(self, one: Value, other: Value) -> Value:
+        """Add.
+
+        Parameters
+        ----------
+        one, other : Value
+            Terms.
+
+        Returns
+        -------
+        Value
+            Their sum; none where they are the same with opposite signs.
+
+        References
+        ----------
+        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        """
+        if one is None or other is None:
+            return other if one is None else one
+        if one[0] == other[0]:
+            return one[0], self._write(ADD, one[1], other[1])
+        return None if one[1] == other[1] else (one[0], self._write(SUBTRACT, one[1], other[1]))
+
+    def minus(self, one: Value, other: Value) -> Value:
+        """Subtract.
+
+        Parameters
+        ----------
+        one, other : Value
+            Terms.
+
+        Returns
+        -------
+        Value
+            The first less the second.
+
+        References
+        ----------
+        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        """
+        return self.plus(one, negative(other))
+
+    def inverse(self, value: Value) -> Value:
+        """Reciprocal.
+
+        Parameters
+        ----------
+        value : Value
+            Any but none.
+
+        Returns
+        -------
+        Value
+            One over it.
+
+        References
+        ----------
+        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        """
+        assert value is not None
+        return value if value[1] == ONE else (value[0], self._write(DIVIDE, ONE, value[1]))
+
+    def watch(self, value: Value) -> None:
+        """Add up the squares of the parts of a value.
+
+        Parameters
+        ----------
+        value : Value
+            What tells how many figures are lost.
+
+        References
+        ----------
+        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        """
+        if value is not None and value[1] != ONE:
+            self.steps.append((ADD, value[1], WATCHED, WATCHED))
+
+    def result(self, at: int, value: Value) -> Value:
+        """Give a value out.
+
+        Parameters
+        ----------
+        at : int
+            Which result it is.
+        value : Value
+            Any.
+
+        Returns
+        -------
+        Value
+            The same with its sign taken up.
+
+        References
+        ----------
+        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        """
+        if value is None:
+            self.zeros.append(at)
+            return None
+        made = self.steps[-1][3] if self.steps else WATCHED
+        row = value[1] if value[0] > 0 and value[1] == made and made not in self.results else None
+        if row is None:
+            row = self._write(ADD if value[0] > 0 else SUBTRACT, ZERO, value[1])
+        self.results[row] = at
+        return 1, row
+
+    def program(self) -> Program:
+        """Bring the rows down to few, each used again when its value is needed no more.
+
+        Returns
+        -------
+        Program
+            Ready to run.
+
+        References
+        ----------
+        .. [1] M. Poletto, V. Sarkar, "Linear scan register allocation", ACM TOPLAS 21(5), 1999, 895-913.
+        """
+        last = {row: at for at, (_, *ends, _) in enumerate(self.steps) for row in ends}
+        place = {ONE: ONE, ZERO: ZERO, WATCHED: WATCHED} | {row: 3 + at for at, row in enumerate(self.loaded.values())}
+        place |= {row: -1 - at for row, at in self.results.items()}  # below zero until the number of rows is known
+        free: list[int] = []
+        rows = 3 + len(self.loaded)
+        steps: list[Step] = []
+        for at, (action, left, right, out) in enumerate(self.steps):
+            ends = place[left], place[right]
+            free += [place[row] for row in {left, right} if row > WATCHED and place[row] >= 0 and last[row] == at]
+            if out not in place:
+                place[out] = free.pop() if free else rows
+                rows = max(rows, place[out] + 1)
+            steps.append((action, *ends, place[out]))
+        loaded = {name: place[row] for name, row in self.loaded.items()}
+        return Program(rows + 1, loaded, tuple(_settled(steps, rows)), tuple(self.zeros))
+
+    def _new(self) -> int:
+        """A row that is not used yet."""
+        self.count += 1
+        return self.count - 1
+
+    def _write(self, action: Callable[..., Any], left: int, right: int) -> int:
+        """Write a step down; its result is a new row."""
+        out = self._new()
+        self.steps.append((action, left, right, out))
+        return out
+
+
+def _settled(steps: Iterable[Step], scratch: int) -> Iterator[Step]:
+    """Steps with the places of results, and squares where something is watched."""
+    reals, results = scratch + 1, 2 * (scratch + 1)
+    for action, *ends in steps:
+        left, right, out = (row if row >= 0 else results - 1 - row for row in ends)
+        if out == WATCHED:
+            yield MULTIPLY, reals + left, reals + left, reals + scratch
+            yield ADD, reals + scratch, reals + WATCHED, reals + WATCHED
+        else:
+            yield action, left, right, out
+
+
+def negative(value: Value) -> Value:
+    """Turn the sign.
+
+    Parameters
+    ----------
+    value : Value
+        Any.
+
+    Returns
+    -------
+    Value
+        Its negative, at no cost.
+
+    References
+    ----------
+    .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+    """
+    return None if value is None else (-value[0], value[1])
