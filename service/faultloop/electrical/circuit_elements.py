@@ -116,7 +116,7 @@ class AdmittanceLaw:
     @property
     def open(self) -> Mask:
         """Where no current can flow."""
-        return np.asarray((self.real == 0.0) & (self.imag == 0.0), np.bool_)
+        return np.equal(self.real + self.imag, 0.0)  # neither is below zero
 
 
 @dataclass(frozen=True, slots=True)
@@ -224,9 +224,8 @@ def element_law(element: Element, angular_frequency: Array) -> tuple[Law, Mask]:
         return AdmittanceLaw(1.0 / _kept(good, element.resistance_ohm, np.inf), NOUGHT), good
     if isinstance(element, Capacitor):
         good = (element.capacitance_nf >= 0.0) & np.isfinite(element.capacitance_nf)
-        return AdmittanceLaw(
-            NOUGHT, angular_frequency * (_kept(good, element.capacitance_nf, 0.0) * FARADS_IN_A_NANOFARAD)
-        ), good
+        by_nanofarad = angular_frequency * FARADS_IN_A_NANOFARAD
+        return AdmittanceLaw(NOUGHT, by_nanofarad * _kept(good, element.capacitance_nf, 0.0)), good
     if isinstance(element, CurrentSource):
         good = np.isfinite(element.current_a)
         return CurrentLaw(_kept(good, element.current_a, 0.0)), good

@@ -1,18 +1,20 @@
 """Networks of one kind solved together by the program of their elimination."""
 
 from collections.abc import Sequence
+from typing import Any
 
 import numpy as np
 
 from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, ImpedanceLaw, Law, Mask, Phasor, RatioLaw
-from faultloop.electrical.circuit_tape import ONE, WATCHED, ZERO, Program
+from faultloop.electrical.circuit_tape import ERROR, LOSS, ONE, SIZE, Program
 
 BLOCK = 1024  # networks at a time, so that their rows stay in the cache
 WHOLE = 8  # rows are filled up to a multiple of this: no network stands where its arithmetic is done otherwise
 LOST = 1e3  # a pivot that has lost more than three figures of what it was made of is not trusted
+LACKING = 1e-13  # what a balance may lack, as volts beside those of the network
 
 
-def eliminated(program: Program, laws: Sequence[Law], count: int, results: int) -> tuple[Phasor, Mask]:
+def eliminated(program: Program, laws: Sequence[Law], count: int) -> tuple[Phasor, Mask]:
     """Results of a program for many networks.
 
     Parameters
@@ -23,15 +25,14 @@ def eliminated(program: Program, laws: Sequence[Law], count: int, results: int) 
         One an element, (n,) or (1,) coefficients.
     count : int
         n.
-    results : int
-        How many results the program gives.
 
     Returns
     -------
     (results, n) array of complex
         Potentials, then currents.
     (n,) array of bool
-        Where they can be trusted.
+        Where they can be trusted: no pivot has lost more than three figures, and what the balances lack would move the
+        potentials by less than a part of 1e-13.
 
     Notes
     -----
@@ -43,43 +44,46 @@ def eliminated(program: Program, laws: Sequence[Law], count: int, results: int) 
        systems of linear equations", J. ACM 17(1), 1970, 87-109.
     """
     whole = -(-count // WHOLE) * WHOLE
-    found, sound = np.empty((results, whole), np.complex128), np.empty(whole, np.bool_)
+    found, sound = np.empty((program.results, whole), np.complex128), np.empty(whole, np.bool_)
     found[list(program.zeros)] = 0.0
-    values = [(row, *_value(laws[element], name)) for (element, name), row in program.loaded.items()]
     width = min(BLOCK, whole)
     rows = np.zeros((program.rows, width), np.complex128)
-    rows[ONE], rows[ZERO] = 1.0, 0.0
+    rows[ONE] = 1.0
+    columns = _loaded(rows, program, laws)
     with np.errstate(all="ignore"):
         for start in range(0, whole, BLOCK):
-            stop = min(start + BLOCK, whole)
-            used = rows[:, : stop - start]
-            places = [*used, *used.view(np.float64), *found[:, start:stop]] if stop - start == width else [*(row for row in used), *(row.view(np.float64) for row in used), *found[:, start:stop]]
-            chosen = slice(start, min(stop, count))
-            for row, real, imag in values:
-                _load(used[row, : chosen.stop - start], real, imag, chosen)
-            used[WATCHED] = 0.0
+            block = slice(start, min(start + BLOCK, whole))
+            used, results = rows[:, : block.stop - start], found[:, block]
+            for part, column in columns:
+                some = column[block]
+                part[: len(some)] = some
+            used[[LOSS, ERROR, SIZE]] = 0.0
+            places = [*used, *results, *(row.view(np.float64) for row in used), *(row.view(np.float64) for row in results)]
             for action, left, right, out in program.steps:
                 action(places[left], places[right], places[out])
-            peak = used[WATCHED]
-            sound[start:stop] = (peak.real < LOST * LOST) & (peak.imag < LOST * LOST)
+            loss, error, size = (used[total].real + used[total].imag for total in (LOSS, ERROR, SIZE))
+            sound[block] = (loss < LOST * LOST) & (error <= LACKING * LACKING * size)
     return found[:, :count], sound[:count]
 
 
-def _value(law: Law, name: str):
-    """Real and imaginary part of a value that a program loads; no imaginary part where the first is complex."""
+def _loaded(rows: Phasor, program: Program, laws: Sequence[Law]) -> list[tuple[Any, Any]]:
+    """Put what holds for all networks into its rows; the rest, as the parts of rows and the columns that go there."""
+    rest = []
+    for (element, name), at in program.loaded.items():
+        for part, column in _parts(rows[at], laws[element], name):
+            if len(column) == 1:
+                part[:] = column
+            else:
+                rest.append((part, column))
+    return rest
+
+
+def _parts(row: Phasor, law: Law, name: str) -> Sequence[tuple[Any, Any]]:
+    """Where the columns of a law go."""
     if isinstance(law, AdmittanceLaw):
-        return law.real, law.imag
+        return (row.real, law.real), (row.imag, law.imag)
     if isinstance(law, CurrentLaw):
-        return law.injected, None
+        return ((row, law.injected),)
     if isinstance(law, RatioLaw):
-        return law.ratio, None
-    return (law.emf, None) if name == "emf" else (law.resistance, law.reactance)
-
-
-def _load(row: Phasor, real, imag, chosen: slice) -> None:
-    """Put the values of some networks into a row."""
-    if imag is None:
-        row[:] = real if len(real) == 1 else real[chosen]
-    else:
-        row.real = real if len(real) == 1 else real[chosen]
-        row.imag = imag if len(imag) == 1 else imag[chosen]
+        return ((row, law.ratio),)
+    return ((row, law.emf),) if name == "emf" else ((row.real, law.resistance), (row.imag, law.reactance))

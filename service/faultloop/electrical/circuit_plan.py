@@ -4,7 +4,7 @@ from functools import lru_cache
 
 from faultloop.electrical.circuit_islands import IDEAL, OPEN
 from faultloop.electrical.circuit_layout import ADMITTANCE, CURRENT, RATIO, SOURCE, Layout
-from faultloop.electrical.circuit_tape import ONE, Program, Tape, Value, negative
+from faultloop.electrical.circuit_tape import ERROR, LOSS, ONE, SIZE, Program, Tape, Value, negative
 
 PLANS = 256
 Pivot = tuple[int, ...]
@@ -69,6 +69,7 @@ class _Elimination:
         self.tied: set[tuple[int, int]] = set()  # currents and the nodes from whose balance they can follow
         self.done: list[tuple[int, Value, dict[int, Value]]] = []
         self.found: dict[int, Value] = {}
+        self.volts: dict[int, Value] = {}  # by which an ampere too many at a node moves its potential
         for row in layout.row:
             if row >= 0 and row not in dropped:
                 self.matrix[row] = {}
@@ -82,7 +83,7 @@ class _Elimination:
         rows = [self.layout.row[node] for node in self.layout.terminals[branch]]
         if rows[0] == rows[1]:
             return []
-        return [(row, sign) for row, sign in zip(rows, (1, -1), strict=True) if row in self.matrix]
+        return [(row, sign) for row, sign in zip(rows, (1, -1), strict=True) if row >= self.currents and row not in self.dropped]
 
     def _stamp(self, at: int, kind: str) -> None:
         """Put an element in."""
@@ -159,6 +160,7 @@ class _Elimination:
             for one in pivot:
                 self.side[row] = tape.minus(self.side.get(row), tape.times(parts[one][row], self.side.get(one)))
         for one in pivot:
+            self.volts[one] = inverse[one, one]
             start = None
             for two in pivot:
                 start = tape.plus(start, tape.times(inverse[one, two], self.side.get(two)))
@@ -179,7 +181,7 @@ class _Elimination:
             return
         self.tied.discard((row, column))
         if before is not None and after is not None:
-            self.tape.watch(self.tape.times(before, self.tape.inverse(after)))
+            self.tape.watch(self.tape.times(before, self.tape.inverse(after)), LOSS)
 
     def _inverted(self, pivot: Pivot) -> dict[tuple[int, int], Value]:
         """Inverse of the pivot, watched for what cancels in it."""
@@ -188,16 +190,16 @@ class _Elimination:
         if len(pivot) == 1:
             inverse = tape.inverse(own)
             if self.plain[first] != own:
-                tape.watch(tape.times(self.plain[first], inverse))
+                tape.watch(tape.times(self.plain[first], inverse), LOSS)
             return {(first, first): inverse}
         second = pivot[1]
         tie, other = self.matrix[first][second], self.matrix[second].get(second)
         square, product = tape.times(tie, tie), tape.times(own, other)
         inverse = tape.inverse(tape.minus(product, square))
         if product is not None:
-            tape.watch(tape.times(square, inverse))
+            tape.watch(tape.times(square, inverse), LOSS)
             if self.plain[second] != other:
-                tape.watch(tape.times(tape.times(own, self.plain[second]), inverse))
+                tape.watch(tape.times(tape.times(own, self.plain[second]), inverse), LOSS)
         across = negative(tape.times(tie, inverse))
         return {
             (first, first): tape.times(other, inverse),
@@ -213,25 +215,47 @@ class _Elimination:
                 value = self.tape.minus(value, self.tape.times(part, self.found.get(other)))
             if row >= self.currents:
                 value = self.tape.result(self.layout.row.index(row), value)
+                self.tape.watch(value, SIZE)
             self.found[row] = value
+        for node, row in enumerate(self.layout.row):
+            if row not in self.found:
+                self.tape.result(node, None)
 
     def give_out(self) -> None:
-        """Potentials that are zero, and all currents."""
+        """Give all currents out, and see what the balance of each node and of each voltage lacks, in volts."""
         tape, layout = self.tape, self.layout
-        for node, row in enumerate(layout.row):
-            if row not in self.found:
-                tape.result(node, None)
-        start = len(layout.nodes)
+        lacks: dict[int, Value] = {}
         for at, kind in enumerate(layout.kinds):
-            first = layout.first_branch[at]
-            current = self.found.get(layout.own_unknown[at])
-            if self.states[at] == OPEN:
-                current = None
-            elif kind == ADMITTANCE:
-                plus, minus = (self.found.get(layout.row[node]) for node in layout.terminals[first])
-                current = tape.times(tape.load(at, "admittance"), tape.minus(plus, minus))
+            first, own = layout.first_branch[at], layout.own_unknown[at]
+            voltage, current = self._voltage(first), self.found.get(own)
+            if kind == ADMITTANCE:
+                current = tape.times(tape.load(at, "admittance"), voltage) if self.states[at] != OPEN else None
             elif kind == CURRENT:
                 current = negative(tape.load(at, "injected"))
-            current = tape.result(start + first, current)
+            elif self.states[at] != OPEN:
+                tape.watch(self._lacking(at, kind, voltage, current), ERROR)
+            currents = [(first, current)]
             if kind == RATIO:
-                tape.result(start + first + 1, negative(tape.times(tape.load(at, "ratio"), current)))
+                currents.append((first + 1, negative(tape.times(tape.load(at, "ratio"), current))))
+            for branch, amperes in currents:
+                given = tape.result(len(layout.nodes) + branch, amperes)
+                for row, sign in self._ends(branch):
+                    lacks[row] = tape.plus(lacks.get(row), given if sign > 0 else negative(given))
+        for row, amperes in lacks.items():
+            tape.watch(tape.times(self.volts[row], amperes), ERROR)
+
+    def _voltage(self, branch: int) -> Value:
+        """Voltage of a branch."""
+        plus, minus = self.layout.terminals[branch]
+        if plus == minus:
+            return None
+        return self.tape.minus(self.found.get(self.layout.row[plus]), self.found.get(self.layout.row[minus]))
+
+    def _lacking(self, at: int, kind: str, voltage: Value, current: Value) -> Value:
+        """What is left over in the voltage equation of an element."""
+        tape = self.tape
+        if kind == RATIO:
+            return tape.minus(voltage, tape.times(tape.load(at, "ratio"), self._voltage(self.layout.first_branch[at] + 1)))
+        if self.states[at] != IDEAL:
+            voltage = tape.minus(voltage, tape.times(tape.load(at, "impedance"), current))
+        return tape.minus(voltage, tape.load(at, "emf")) if kind == SOURCE else voltage

@@ -7,20 +7,21 @@ from typing import Any
 import numpy as np
 
 MULTIPLY, ADD, SUBTRACT, DIVIDE = np.multiply, np.add, np.subtract, np.divide
-ONE, ZERO, WATCHED = 0, 1, 2  # rows that every tape has; the last sums the squares of what is watched
+ONE, ZERO, LOSS, ERROR, SIZE = range(5)  # rows that every tape has; the last three sum the squares of what is watched
 Value = tuple[int, int] | None  # sign and number of a row; None is zero in every network
 Step = tuple[Callable[..., Any], int, int, int]  # what is done, the rows it is done to, the row that takes the result
 
 
 @dataclass(frozen=True, slots=True)
 class Program:
-    """Steps on ``rows`` rows of complex numbers.
+    """Steps on ``rows`` rows of complex numbers, and on ``results`` more.
 
-    ``loaded`` are the rows that hold a value of an element at the start.  Row ``rows + k`` is row k as pairs of real
-    numbers; row ``2·rows + k`` is the k-th result.  ``zeros`` are the results that are zero in every network.
+    ``loaded`` are the rows that hold a value of an element all along.  Row ``rows + results + k`` is row k as pairs of
+    real numbers.  ``zeros`` are the results that are zero in every network.
     """
 
     rows: int
+    results: int
     loaded: Mapping[tuple[int, str], int]
     steps: tuple[Step, ...]
     zeros: tuple[int, ...]
@@ -34,7 +35,7 @@ class Tape:
     loaded: dict[tuple[int, str], int] = field(default_factory=dict)
     results: dict[int, int] = field(default_factory=dict)
     zeros: list[int] = field(default_factory=list)
-    count: int = 3
+    count: int = SIZE + 1
 
     def load(self, element: int, name: str) -> Value:
         """Take a value of an element.
@@ -145,20 +146,22 @@ class Tape:
         assert value is not None
         return value if value[1] == ONE else (value[0], self._write(DIVIDE, ONE, value[1]))
 
-    def watch(self, value: Value) -> None:
-        """Add up the squares of the parts of a value.
+    def watch(self, value: Value, total: int) -> None:
+        """Add the squares of the real and imaginary part of a value to a total.
 
         Parameters
         ----------
         value : Value
-            What tells how many figures are lost.
+            Any.
+        total : int
+            LOSS of figures, ERROR of a balance, or SIZE of the potentials.
 
         References
         ----------
         .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
         """
         if value is not None and value[1] != ONE:
-            self.steps.append((ADD, value[1], WATCHED, WATCHED))
+            self.steps.append((ADD, value[1], total, total))
 
     def result(self, at: int, value: Value) -> Value:
         """Give a value out.
@@ -182,7 +185,7 @@ class Tape:
         if value is None:
             self.zeros.append(at)
             return None
-        made = self.steps[-1][3] if self.steps else WATCHED
+        made = self.steps[-1][3] if self.steps else SIZE
         row = value[1] if value[0] > 0 and value[1] == made and made not in self.results else None
         if row is None:
             row = self._write(ADD if value[0] > 0 else SUBTRACT, ZERO, value[1])
@@ -202,20 +205,22 @@ class Tape:
         .. [1] M. Poletto, V. Sarkar, "Linear scan register allocation", ACM TOPLAS 21(5), 1999, 895-913.
         """
         last = {row: at for at, (_, *ends, _) in enumerate(self.steps) for row in ends}
-        place = {ONE: ONE, ZERO: ZERO, WATCHED: WATCHED} | {row: 3 + at for at, row in enumerate(self.loaded.values())}
+        kept = [*range(SIZE + 1), *self.loaded.values()]
+        place = {row: at for at, row in enumerate(kept)}
         place |= {row: -1 - at for row, at in self.results.items()}  # below zero until the number of rows is known
         free: list[int] = []
-        rows = 3 + len(self.loaded)
+        rows = len(kept)
         steps: list[Step] = []
         for at, (action, left, right, out) in enumerate(self.steps):
             ends = place[left], place[right]
-            free += [place[row] for row in {left, right} if row > WATCHED and place[row] >= 0 and last[row] == at]
+            free += [place[row] for row in {left, right} if place[row] >= len(kept) and last[row] == at]
             if out not in place:
                 place[out] = free.pop() if free else rows
                 rows = max(rows, place[out] + 1)
             steps.append((action, *ends, place[out]))
         loaded = {name: place[row] for name, row in self.loaded.items()}
-        return Program(rows + 1, loaded, tuple(_settled(steps, rows)), tuple(self.zeros))
+        results = len(self.results) + len(self.zeros)
+        return Program(rows + 1, results, loaded, tuple(_settled(steps, rows, results)), tuple(self.zeros))
 
     def _new(self) -> int:
         """A row that is not used yet."""
@@ -229,14 +234,15 @@ class Tape:
         return out
 
 
-def _settled(steps: Iterable[Step], scratch: int) -> Iterator[Step]:
+def _settled(steps: Iterable[Step], scratch: int, results: int) -> Iterator[Step]:
     """Steps with the places of results, and squares where something is watched."""
-    reals, results = scratch + 1, 2 * (scratch + 1)
+    first = scratch + 1
+    reals = first + results
     for action, *ends in steps:
-        left, right, out = (row if row >= 0 else results - 1 - row for row in ends)
-        if out == WATCHED:
+        left, right, out = (row if row >= 0 else first - 1 - row for row in ends)
+        if out in (LOSS, ERROR, SIZE):
             yield MULTIPLY, reals + left, reals + left, reals + scratch
-            yield ADD, reals + scratch, reals + WATCHED, reals + WATCHED
+            yield ADD, reals + scratch, reals + out, reals + out
         else:
             yield action, left, right, out
 

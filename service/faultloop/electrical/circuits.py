@@ -111,4 +111,4 @@ def _by_plan(equations, at, chosen, count, results):
         made = plan(layout, equations.kinds.states[at], frozenset(row for row, _ in fixing.pins))
     if made is None:
         return np.zeros((results, count), np.complex128), np.zeros(count, np.bool_)
-    return eliminated(made, [law_of(law, chosen) for law in equations.laws], count, results)
+    return eliminated(made, [law_of(law, chosen) for law in equations.laws], count)
