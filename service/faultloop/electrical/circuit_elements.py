@@ -108,15 +108,26 @@ Element = Resistor | Capacitor | Inductor | Impedance | VoltageSource | CurrentS
 
 @dataclass(frozen=True, slots=True)
 class AdmittanceLaw:
-    """i = y·v, with y = real + j·imag [S]."""
+    """i = y·v, with y = 1/R + j·b·c: a resistance [Ω], inf where there is none, beside c [nF] of b siemens each."""
 
-    real: Array
-    imag: Array
+    resistance: Array
+    siemens: Array
+    nanofarads: Array
+
+    @property
+    def real(self) -> Array:
+        """Conductance [S]."""
+        return 1.0 / self.resistance
+
+    @property
+    def imag(self) -> Array:
+        """Susceptance [S]."""
+        return self.siemens * self.nanofarads
 
     @property
     def open(self) -> Mask:
         """Where no current can flow."""
-        return np.equal(self.real + self.imag, 0.0)  # neither is below zero
+        return _both(self.resistance == np.inf, self.imag == 0.0)
 
 
 @dataclass(frozen=True, slots=True)
@@ -221,11 +232,11 @@ def element_law(element: Element, angular_frequency: Array) -> tuple[Law, Mask]:
     """
     if isinstance(element, Resistor):
         good = element.resistance_ohm >= LEAST_RESISTANCE_OHM
-        return AdmittanceLaw(1.0 / _kept(good, element.resistance_ohm, np.inf), NOUGHT), good
+        return AdmittanceLaw(_kept(good, element.resistance_ohm, np.inf), NOUGHT, NOUGHT), good
     if isinstance(element, Capacitor):
         good = (element.capacitance_nf >= 0.0) & np.isfinite(element.capacitance_nf)
-        by_nanofarad = angular_frequency * FARADS_IN_A_NANOFARAD
-        return AdmittanceLaw(NOUGHT, by_nanofarad * _kept(good, element.capacitance_nf, 0.0)), good
+        siemens = angular_frequency * FARADS_IN_A_NANOFARAD
+        return AdmittanceLaw(np.array([np.inf]), siemens, _kept(good, element.capacitance_nf, 0.0)), good
     if isinstance(element, CurrentSource):
         good = np.isfinite(element.current_a)
         return CurrentLaw(_kept(good, element.current_a, 0.0)), good
@@ -254,3 +265,11 @@ def _series_law(element: Inductor | Impedance | VoltageSource, angular_frequency
 def _kept(mask: Mask, column: Any, other: float) -> Any:
     """The column, with another value where the mask is false; itself where it is true throughout."""
     return column if mask.all() else np.where(mask, column, other)
+
+
+def _both(one: Mask, other: Mask) -> Mask:
+    """Where both hold, without a pass where one of length one holds for all."""
+    for mask, rest in ((one, other), (other, one)):
+        if len(mask) == 1 and mask[0]:
+            return rest
+    return np.asarray(one & other, np.bool_)

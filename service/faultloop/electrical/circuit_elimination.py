@@ -8,7 +8,8 @@ import numpy as np
 from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, ImpedanceLaw, Law, Mask, Phasor, RatioLaw
 from faultloop.electrical.circuit_tape import ERROR, LOSS, ONE, SIZE, Program
 
-BLOCK = 1024  # networks at a time, so that their rows stay in the cache
+BLOCK = 2560  # networks at a time, so that their rows stay in the cache
+UNIT = np.ones(1)
 WHOLE = 8  # rows are filled up to a multiple of this: no network stands where its arithmetic is done otherwise
 LOST = 1e3  # a pivot that has lost more than three figures of what it was made of is not trusted
 LACKING = 1e-13  # what a balance may lack, as volts beside those of the network
@@ -54,11 +55,10 @@ def eliminated(program: Program, laws: Sequence[Law], count: int) -> tuple[Phaso
         for start in range(0, whole, BLOCK):
             block = slice(start, min(start + BLOCK, whole))
             used, results = rows[:, : block.stop - start], found[:, block]
-            for part, column in columns:
-                some = column[block]
-                part[: len(some)] = some
+            for action, part, *ends in columns:
+                action(*(column if len(column) == 1 else column[block] for column in ends), part[: min(block.stop, count) - start])
             used[[LOSS, ERROR, SIZE]] = 0.0
-            places = [*used, *results, *(row.view(np.float64) for row in used), *(row.view(np.float64) for row in results)]
+            places = [*used, *results, *used.view(np.float64), *results.view(np.float64)]
             for action, left, right, out in program.steps:
                 action(places[left], places[right], places[out])
             loss, error, size = (used[total].real + used[total].imag for total in (LOSS, ERROR, SIZE))
@@ -66,24 +66,26 @@ def eliminated(program: Program, laws: Sequence[Law], count: int) -> tuple[Phaso
     return found[:, :count], sound[:count]
 
 
-def _loaded(rows: Phasor, program: Program, laws: Sequence[Law]) -> list[tuple[Any, Any]]:
-    """Put what holds for all networks into its rows; the rest, as the parts of rows and the columns that go there."""
+def _loaded(rows: Phasor, program: Program, laws: Sequence[Law]) -> list[tuple[Any, ...]]:
+    """Put what holds for all networks into its rows; the rest, as what is to be done block by block."""
     rest = []
     for (element, name), at in program.loaded.items():
-        for part, column in _parts(rows[at], laws[element], name):
-            if len(column) == 1:
-                part[:] = column
+        for action, part, *columns in _parts(rows[at], laws[element], name):
+            if all(len(column) == 1 for column in columns):
+                action(*columns, part)
             else:
-                rest.append((part, column))
+                rest.append((action, part, *columns))
     return rest
 
 
-def _parts(row: Phasor, law: Law, name: str) -> Sequence[tuple[Any, Any]]:
-    """Where the columns of a law go."""
+def _parts(row: Phasor, law: Law, name: str) -> Sequence[tuple[Any, ...]]:
+    """What is done to fill a row, where to, and the columns of a law to do it with."""
     if isinstance(law, AdmittanceLaw):
-        return (row.real, law.real), (row.imag, law.imag)
+        return (np.divide, row.real, UNIT, law.resistance), (np.multiply, row.imag, law.siemens, law.nanofarads)
     if isinstance(law, CurrentLaw):
-        return ((row, law.injected),)
+        return ((np.positive, row, law.injected),)
     if isinstance(law, RatioLaw):
-        return ((row, law.ratio),)
-    return ((row, law.emf),) if name == "emf" else ((row.real, law.resistance), (row.imag, law.reactance))
+        return ((np.positive, row, law.ratio),)
+    if name == "emf":
+        return ((np.positive, row, law.emf),)
+    return (np.positive, row.real, law.resistance), (np.positive, row.imag, law.reactance)

@@ -46,31 +46,30 @@ def columns(circuit: Circuit) -> tuple[Circuit, int]:
     ----------
     .. [1] IEC 60050-131:2002 (laws of ideal circuit elements).
     """
-    values = [_values(element) for element in circuit.elements]
-    lengths = {value.shape for told in values for value in told.values()} | {circuit.frequency_hz.shape}
-    longer = sorted(lengths - {(1,)})
+    elements = tuple(_with_columns(element) for element in circuit.elements)
+    made = Circuit(elements, _column(circuit.frequency_hz), circuit.earth)
+    shapes = {made.frequency_hz.shape}
+    for element in elements:
+        shapes |= {getattr(element, name).shape for name in _values(type(element))}
+    longer = sorted(shapes - {(1,)})
     shape = longer[0] if longer else (1,)
     if len(longer) > 1 or len(shape) != 1:
-        named = zip(circuit.elements, values, strict=True)
-        told = ", ".join(f"{e.name}: {[v.shape for v in each.values()]}" for e, each in named)
+        told = ", ".join(f"{e.name}: {[getattr(e, name).shape for name in _values(type(e))]}" for e in elements)
         raise ValueError(f"every value must be a column of one length, or of length one; found {told}")
-    elements = tuple(
-        type(element)(**{field: told.get(field, getattr(element, field)) for field in _fields(type(element))})
-        for element, told in zip(circuit.elements, values, strict=True)
-    )
-    return replace(circuit, elements=elements, frequency_hz=_column(circuit.frequency_hz)), shape[0]
+    return made, shape[0]
 
 
 @cache
-def _fields(kind: type[Any]) -> tuple[str, ...]:
-    """Names of what an element consists of."""
-    return tuple(field.name for field in fields(kind))
+def _values(kind: type[Element]) -> tuple[str, ...]:
+    """Names of the values of an element."""
+    return tuple(field.name for field in fields(kind) if field.type is not str)
 
 
-def _values(element: Element) -> dict[str, NDArray[Any]]:
-    """The columns of an element by field."""
-    told = {name: getattr(element, name) for name in _fields(type(element))}
-    return {name: _column(value) for name, value in told.items() if not isinstance(value, str)}
+def _with_columns(element: Element) -> Element:
+    """The element itself, where its values are columns of numbers already."""
+    told = {name: getattr(element, name) for name in _values(type(element))}
+    made = {name: _column(value) for name, value in told.items()}
+    return element if all(made[name] is told[name] for name in told) else replace(element, **made)
 
 
 def _column(value: Any) -> NDArray[Any]:

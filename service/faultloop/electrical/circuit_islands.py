@@ -177,7 +177,7 @@ def _plain(kind: str, at: int, state: int, ratios: Iterator[Array], count: int) 
     value = np.full(count, 1.0 + (at * 0.6180339887498949) % 1.0)
     zero, one = np.zeros(count), np.ones(count)
     if kind == ADMITTANCE:
-        return AdmittanceLaw(zero if state == OPEN else value, zero)
+        return AdmittanceLaw(one * np.inf if state == OPEN else value, zero, zero)
     if kind == RATIO:
         return RatioLaw(next(ratios))
     if kind == CURRENT:

@@ -67,6 +67,7 @@ class _Elimination:
         self.matrix: dict[int, dict[int, Value]] = {}
         self.side: dict[int, Value] = {}
         self.tied: set[tuple[int, int]] = set()  # currents and the nodes from whose balance they can follow
+        self.driven: set[int] = set()  # nodes at a source: those of the highest potentials, but for resonance
         self.done: list[tuple[int, Value, dict[int, Value]]] = []
         self.found: dict[int, Value] = {}
         self.volts: dict[int, Value] = {}  # by which an ampere too many at a node moves its potential
@@ -89,6 +90,8 @@ class _Elimination:
         """Put an element in."""
         first, own = self.layout.first_branch[at], self.layout.own_unknown[at]
         ends = self._ends(first)
+        if kind in (CURRENT, SOURCE):
+            self.driven |= {row for row, _ in ends}
         if kind == ADMITTANCE:
             admittance = self.tape.load(at, "admittance")
             for row, sign in ends:
@@ -128,7 +131,8 @@ class _Elimination:
         costs: list[tuple[int, Pivot]] = []
         for row, entries in self.matrix.items():
             if row not in tied_rows and row in entries:
-                costs.append((len(entries) * (len(entries) - 1), (row,)))
+                around = len(entries) - 1
+                costs.append((around * (around + 1 + 2 * (self.side.get(row) is not None)), (row,)))
         for pair in self.tied:
             around = len((self.matrix[pair[0]].keys() | self.matrix[pair[1]].keys()) - set(pair))
             costs.append((2 * around * (around + 1), pair))
@@ -215,7 +219,8 @@ class _Elimination:
                 value = self.tape.minus(value, self.tape.times(part, self.found.get(other)))
             if row >= self.currents:
                 value = self.tape.result(self.layout.row.index(row), value)
-                self.tape.watch(value, SIZE)
+                if row in self.driven:
+                    self.tape.watch(value, SIZE)
             self.found[row] = value
         for node, row in enumerate(self.layout.row):
             if row not in self.found:

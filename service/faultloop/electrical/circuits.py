@@ -91,7 +91,7 @@ def _answers(equations: Equations) -> tuple[Phasor, Mask]:
     layout, count = equations.layout, len(equations.usable)
     results = len(layout.nodes) + len(layout.branches)
     if len(equations.kinds.states) == 1:
-        found, sound = _by_plan(equations, 0, slice(0, count), count, results)
+        found, sound = _by_plan(equations, 0, None, count, results)
     else:
         found, sound = np.zeros((results, count), np.complex128), np.zeros(count, np.bool_)
         for at in range(len(equations.kinds.states)):
@@ -111,4 +111,5 @@ def _by_plan(equations, at, chosen, count, results):
         made = plan(layout, equations.kinds.states[at], frozenset(row for row, _ in fixing.pins))
     if made is None:
         return np.zeros((results, count), np.complex128), np.zeros(count, np.bool_)
-    return eliminated(made, [law_of(law, chosen) for law in equations.laws], count)
+    laws = equations.laws if chosen is None else [law_of(law, chosen) for law in equations.laws]
+    return eliminated(made, laws, count)
