@@ -5,6 +5,7 @@ from collections.abc import Iterable, Sequence
 import numpy as np
 
 from faultloop.electrical.circuit_elements import Mask, Phasor
+from faultloop.electrical.circuit_equations import source_terms
 from faultloop.electrical.circuit_solution import (
     CONFLICTING_SOURCES,
     IMPOSSIBLE_VALUE,
@@ -72,15 +73,13 @@ def impossible_values(equations: Equations, good: Sequence[Mask]) -> list[Defect
     return [Defect(IMPOSSIBLE_VALUE, (), (element.name,), np.broadcast_to(~mask, equations.usable.shape)) for element, mask in named if not mask.all()]
 
 
-def conflicting_sources(equations: Equations, terms: Sequence[tuple[int, int, Phasor]]) -> list[Defect]:
+def conflicting_sources(equations: Equations) -> list[Defect]:
     """Sources that contradict each other, or that drive a current that has no way back.
 
     Parameters
     ----------
     equations : Equations
         Of n networks.
-    terms : sequence of (element, row, (n,) array of complex)
-        What each source adds to the right side.
 
     Returns
     -------
@@ -97,6 +96,9 @@ def conflicting_sources(equations: Equations, terms: Sequence[tuple[int, int, Ph
     """
     layout = equations.layout
     found: list[tuple[Parts, Mask]] = []
+    if not any(fixing.conditions for fixing in equations.kinds.fixings):
+        return []
+    terms = source_terms(layout, equations.laws)
     for at, fixing in enumerate(equations.kinds.fixings):
         here = equations.kind(at)
         for condition in fixing.conditions:

@@ -43,6 +43,7 @@ def eliminated(program: Program, laws: Sequence[Law], count: int) -> tuple[Phaso
     ----------
     .. [1] F. G. Gustavson, W. Liniger, R. Willoughby, "Symbolic generation of an optimal Crout algorithm for sparse
        systems of linear equations", J. ACM 17(1), 1970, 87-109.
+    .. [2] IEEE 754-2019, 5.4.1 (arithmetic operations: the result depends on the operands alone).
     """
     whole = -(-count // WHOLE) * WHOLE
     found, sound = np.empty((program.results, whole), np.complex128), np.empty(whole, np.bool_)

@@ -3,6 +3,7 @@
 from collections.abc import Sequence
 from dataclasses import fields, replace
 from functools import cache
+from itertools import product
 from typing import Any
 
 import numpy as np
@@ -19,7 +20,7 @@ from faultloop.electrical.circuit_elements import (
     RatioLaw,
     element_law,
 )
-from faultloop.electrical.circuit_layout import Circuit, Layout
+from faultloop.electrical.circuit_layout import SOURCE, Circuit, Layout, branch_ends
 
 
 def columns(circuit: Circuit) -> tuple[Circuit, int]:
@@ -133,23 +134,23 @@ def left_side(layout: Layout, laws: Sequence[Law], count: int) -> Phasor:
     matrix = np.zeros((count, layout.unknowns, layout.unknowns), np.complex128)
     real, imag = matrix.real, matrix.imag
     for at, law in enumerate(laws):
-        plus, minus = _rows(layout, layout.first_branch[at])
-        own = layout.own_unknown[at]
+        first, own = layout.first_branch[at], layout.own_unknown[at]
+        ends = branch_ends(layout, first)
         if isinstance(law, AdmittanceLaw):
-            for row, column, sign in _pairs(plus, minus):
-                real[:, row, column] += sign * law.real
-                imag[:, row, column] += sign * law.imag
+            for (row, one), (column, other) in product(ends, ends):
+                real[:, row, column] += one * other * law.real
+                imag[:, row, column] += one * other * law.imag
         elif isinstance(law, ImpedanceLaw):
-            for node, sign in _live(plus, minus):
+            for node, sign in ends:
                 real[:, node, own] += sign
                 real[:, own, node] += sign * law.scale
             real[:, own, own] -= law.real
             imag[:, own, own] -= law.imag
         elif isinstance(law, RatioLaw):
-            for node, sign in _live(plus, minus):
+            for node, sign in ends:
                 real[:, node, own] += sign
                 real[:, own, node] += sign
-            for node, sign in _live(*_rows(layout, layout.first_branch[at] + 1)):
+            for node, sign in branch_ends(layout, first + 1):
                 real[:, node, own] -= sign * law.ratio
                 real[:, own, node] -= sign * law.ratio
     return matrix
@@ -176,27 +177,10 @@ def source_terms(layout: Layout, laws: Sequence[Law]) -> list[tuple[int, int, Ph
        IEEE Trans. Circuits Syst. 22(6), 1975, 504-509.
     """
     terms: list[tuple[int, int, Phasor]] = []
-    for at, law in enumerate(laws):
-        if isinstance(law, ImpedanceLaw):
+    for at, (kind, law) in enumerate(zip(layout.kinds, laws, strict=True)):
+        if kind == SOURCE and isinstance(law, ImpedanceLaw):
             terms.append((at, layout.own_unknown[at], law.emf * law.scale))
         elif isinstance(law, CurrentLaw):
-            live = _live(*_rows(layout, layout.first_branch[at]))
-            terms += [(at, node, sign * law.injected) for node, sign in live]
+            ends = branch_ends(layout, layout.first_branch[at])
+            terms += [(at, node, sign * law.injected) for node, sign in ends]
     return terms
-
-
-def _rows(layout: Layout, branch: int) -> tuple[int, int]:
-    """Unknowns of the two nodes of a branch, -1 for earth."""
-    plus, minus = layout.terminals[branch]
-    return layout.row[plus], layout.row[minus]
-
-
-def _live(plus: int, minus: int) -> list[tuple[int, float]]:
-    """The nodes that have an unknown, with the sign of the branch at them."""
-    return [(node, sign) for node, sign in ((plus, 1.0), (minus, -1.0)) if node >= 0]
-
-
-def _pairs(plus: int, minus: int) -> list[tuple[int, int, float]]:
-    """Where an admittance stands in the matrix, with its sign."""
-    live = _live(plus, minus)
-    return [(row, column, one * other) for row, one in live for column, other in live]

@@ -146,3 +146,26 @@ def _laid_out(shape: tuple[tuple[str, Branches], ...], earth: str) -> Layout:
         own_unknown=tuple(own_unknown),
         unknowns=equations + len(live),
     )
+
+
+def branch_ends(layout: Layout, branch: int) -> list[tuple[int, int]]:
+    """Unknowns of the nodes of a branch.
+
+    Parameters
+    ----------
+    layout : Layout
+        Places of the unknowns.
+    branch : int
+        Index of the branch.
+
+    Returns
+    -------
+    list of (unknown, sign)
+        One where the branch leaves a node and minus one where it arrives; earth has no unknown.
+
+    References
+    ----------
+    .. [1] IEC 60050-131:2002, 131-13 (branch, node).
+    """
+    rows = (layout.row[node] for node in layout.terminals[branch])
+    return [(row, sign) for row, sign in zip(rows, (1, -1), strict=True) if row >= 0]

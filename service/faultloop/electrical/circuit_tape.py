@@ -12,7 +12,7 @@ Value = tuple[int, int] | None  # sign and number of a row; None is zero in ever
 Step = tuple[Callable[..., Any], int, int, int]  # what is done, the rows it is done to, the row that takes the result
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, eq=False)
 class Program:
     """Steps on ``rows`` rows of complex numbers, and on ``results`` more.
 
@@ -54,7 +54,7 @@ class Tape:
 
         References
         ----------
-        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
         """
         if (element, name) not in self.loaded:
             self.loaded[element, name] = self._new()
@@ -75,7 +75,7 @@ class Tape:
 
         References
         ----------
-        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
         """
         if one is None or other is None:
             return None
@@ -99,7 +99,7 @@ class Tape:
 
         References
         ----------
-        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
         """
         if one is None or other is None:
             return other if one is None else one
@@ -122,9 +122,31 @@ class Tape:
 
         References
         ----------
-        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
         """
         return self.plus(one, negative(other))
+
+    def total(self, terms: Iterable[Value]) -> Value:
+        """Add up.
+
+        Parameters
+        ----------
+        terms : iterable of Value
+            Terms, in this order.
+
+        Returns
+        -------
+        Value
+            Their sum.
+
+        References
+        ----------
+        .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
+        """
+        found: Value = None
+        for term in terms:
+            found = self.plus(found, term)
+        return found
 
     def inverse(self, value: Value) -> Value:
         """Reciprocal.
@@ -141,7 +163,7 @@ class Tape:
 
         References
         ----------
-        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
         """
         assert value is not None
         return value if value[1] == ONE else (value[0], self._write(DIVIDE, ONE, value[1]))
@@ -158,7 +180,7 @@ class Tape:
 
         References
         ----------
-        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
         """
         if value is not None and value[1] != ONE:
             self.steps.append((ADD, value[1], total, total))
@@ -180,7 +202,7 @@ class Tape:
 
         References
         ----------
-        .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+        .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
         """
         if value is None:
             self.zeros.append(at)
@@ -262,6 +284,6 @@ def negative(value: Value) -> Value:
 
     References
     ----------
-    .. [1] T. A. Davis, Direct Methods for Sparse Linear Systems, SIAM, 2006.
+    .. [1] IEEE 754-2019, 5.4.1 (arithmetic operations).
     """
     return None if value is None else (-value[0], value[1])

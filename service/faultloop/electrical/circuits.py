@@ -17,11 +17,13 @@ from faultloop.electrical.circuit_defects import (
 from faultloop.electrical.circuit_dense import answered
 from faultloop.electrical.circuit_elements import Mask, Phasor, law_of
 from faultloop.electrical.circuit_elimination import eliminated
-from faultloop.electrical.circuit_equations import circuit_laws, columns, source_terms
-from faultloop.electrical.circuit_islands import fixings
+from faultloop.electrical.circuit_equations import circuit_laws, columns
+from faultloop.electrical.circuit_islands import OPEN, fixings
 from faultloop.electrical.circuit_layout import Circuit, lay_out
 from faultloop.electrical.circuit_plan import plan
 from faultloop.electrical.circuit_solution import Equations, Solution
+from faultloop.electrical.circuit_tape import Program
+
 
 def solve(circuit: Circuit) -> Solution:
     """Potentials and branch currents of many networks of one shape.
@@ -61,22 +63,56 @@ def solve(circuit: Circuit) -> Solution:
             usable &= mask
     equations = Equations(circuit, layout, laws, fixings(layout, laws, count), usable)
     found, singular = _answers(equations)
-    defects = [
-        *impossible_values(equations, good),
-        *conflicting_sources(equations, source_terms(layout, laws)),
-        *singular_networks(singular),
-    ]
+    defects = [*impossible_values(equations, good), *conflicting_sources(equations), *singular_networks(singular)]
+    nodes = len(layout.nodes)
     for defect in defects:
-        found[:, defect.networks] = np.nan
-    potential, current = found[: len(layout.nodes)], found[len(layout.nodes) :]
+        found[nodes:, defect.networks] = np.nan
+        for node, row in enumerate(layout.row):
+            if row >= 0:
+                found[node, defect.networks] = np.nan
     return Solution(
         equations=equations,
-        potential_v=potential.T,
-        current_a=current.T,
+        potential_v=found[:nodes].T,
+        current_a=found[nodes:].T,
         reference=_references(equations),
         islands=floating_islands(equations),
         defects=(*defects, *undetermined_parts(equations)),
     )
+
+
+def _answers(equations: Equations) -> tuple[Phasor, Mask]:
+    """Potentials and currents of all networks, one row each, and where the values cancel altogether."""
+    layout, count = equations.layout, len(equations.usable)
+    groups = _by_program(equations)
+    if len(groups) == 1 and None not in groups:
+        (program,) = groups
+        found, sound = eliminated(program, equations.laws, count)
+    else:
+        found = np.zeros((len(layout.nodes) + len(layout.branches), count), np.complex128)
+        sound = np.zeros(count, np.bool_)
+        for program, kinds in groups.items():
+            chosen = np.flatnonzero(np.isin(equations.kinds.which, kinds))
+            if program is not None:
+                laws = [law_of(law, chosen) for law in equations.laws]
+                found[:, chosen], sound[chosen] = eliminated(program, laws, len(chosen))
+    singular = np.zeros(count, np.bool_)
+    rest = np.flatnonzero(~sound & equations.usable)
+    if len(rest):
+        found[:, rest], singular[rest] = answered(equations, rest)
+    return found, singular
+
+
+def _by_program(equations: Equations) -> dict[Program | None, list[int]]:
+    """Kinds of networks that share a program; none for those in which something is lost or the shape shows no order."""
+    layout, kinds = equations.layout, equations.kinds
+    groups: dict[Program | None, list[int]] = {}
+    for at, (states, fixing) in enumerate(zip(kinds.states, kinds.fixings, strict=True)):
+        program = None
+        if not any(fixing.lost):
+            cut = frozenset(one for one, own in enumerate(layout.own_unknown) if own >= 0 and states[one] == OPEN)
+            program = plan(layout, cut, frozenset(row for row, _ in fixing.pins))
+        groups.setdefault(program, []).append(at)
+    return groups
 
 
 def _references(equations: Equations) -> NDArray[np.intp]:
@@ -84,32 +120,3 @@ def _references(equations: Equations) -> NDArray[np.intp]:
     shape = (len(equations.usable), len(equations.layout.nodes))
     told = np.array([fixing.reference for fixing in equations.kinds.fixings], np.intp).reshape(-1, shape[1])
     return np.broadcast_to(told, shape) if len(told) == 1 else told[equations.kinds.which]
-
-
-def _answers(equations: Equations) -> tuple[Phasor, Mask]:
-    """Potentials and currents of all networks, one row each, and where the values cancel altogether."""
-    layout, count = equations.layout, len(equations.usable)
-    results = len(layout.nodes) + len(layout.branches)
-    if len(equations.kinds.states) == 1:
-        found, sound = _by_plan(equations, 0, None, count, results)
-    else:
-        found, sound = np.zeros((results, count), np.complex128), np.zeros(count, np.bool_)
-        for at in range(len(equations.kinds.states)):
-            chosen = np.flatnonzero(equations.kinds.which == at)
-            found[:, chosen], sound[chosen] = _by_plan(equations, at, chosen, len(chosen), results)
-    singular = np.zeros(count, np.bool_)
-    if not sound.all():
-        rest = np.flatnonzero(~sound)
-        found[:, rest], singular[rest] = answered(equations, rest)
-    return found, singular
-
-
-def _by_plan(equations, at, chosen, count, results):
-    layout, fixing = equations.layout, equations.kinds.fixings[at]
-    made = None
-    if not any(fixing.lost):
-        made = plan(layout, equations.kinds.states[at], frozenset(row for row, _ in fixing.pins))
-    if made is None:
-        return np.zeros((results, count), np.complex128), np.zeros(count, np.bool_)
-    laws = equations.laws if chosen is None else [law_of(law, chosen) for law in equations.laws]
-    return eliminated(made, laws, count)
