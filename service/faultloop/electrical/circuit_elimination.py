@@ -6,13 +6,22 @@ from typing import Any
 import numpy as np
 
 from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, ImpedanceLaw, Law, Mask, Phasor, RatioLaw
-from faultloop.electrical.circuit_tape import ERROR, LOSS, ONE, SIZE, Program
+from faultloop.electrical.circuit_tape import (
+    AMPERES,
+    AMPERES_LACKING,
+    LOSS,
+    ONE,
+    VOLTS,
+    VOLTS_LACKING,
+    WATCHED,
+    Program,
+)
 
 BLOCK = 2560  # networks at a time, so that their rows stay in the cache
 UNIT = np.ones(1)
 WHOLE = 8  # rows are filled up to a multiple of this: no network stands where its arithmetic is done otherwise
 LOST = 1e3  # a pivot that has lost more than three figures of what it was made of is not trusted
-LACKING = 1e-13  # what a balance may lack, as volts beside those of the network
+LACKING = 1e-13  # what a balance may lack, as volts or amperes beside those of the network
 
 
 def eliminated(program: Program, laws: Sequence[Law], count: int) -> tuple[Phasor, Mask]:
@@ -32,8 +41,8 @@ def eliminated(program: Program, laws: Sequence[Law], count: int) -> tuple[Phaso
     (results, n) array of complex
         Potentials, then currents.
     (n,) array of bool
-        Where they can be trusted: no pivot has lost more than three figures, and what the balances lack would move the
-        potentials by less than a part of 1e-13.
+        Where they can be trusted: nothing has lost more than three figures, and what the balances lack is less than a
+        part of 1e-13, as volts beside those of the network or as amperes beside its currents.
 
     Notes
     -----
@@ -58,13 +67,20 @@ def eliminated(program: Program, laws: Sequence[Law], count: int) -> tuple[Phaso
             used, results = rows[:, : block.stop - start], found[:, block]
             for action, part, *ends in columns:
                 action(*(column if len(column) == 1 else column[block] for column in ends), part[: min(block.stop, count) - start])
-            used[[LOSS, ERROR, SIZE]] = 0.0
+            used[WATCHED.start : WATCHED.stop] = 0.0
             places = [*used, *results, *used.view(np.float64), *results.view(np.float64)]
             for action, left, right, out in program.steps:
                 action(places[left], places[right], places[out])
-            loss, error, size = (used[total].real + used[total].imag for total in (LOSS, ERROR, SIZE))
-            sound[block] = (loss < LOST * LOST) & (error <= LACKING * LACKING * size)
+            sound[block] = _sound(used)
     return found[:, :count], sound[:count]
+
+
+def _sound(rows: Phasor) -> Mask:
+    """Where what was watched is small."""
+    totals = {at: rows[at].real + rows[at].imag for at in WATCHED}
+    sound = totals[LOSS] < LOST * LOST
+    sound &= totals[VOLTS_LACKING] <= LACKING * LACKING * totals[VOLTS]
+    return sound & (totals[AMPERES_LACKING] <= LACKING * LACKING * totals[AMPERES])
 
 
 def _loaded(rows: Phasor, program: Program, laws: Sequence[Law]) -> list[tuple[Any, ...]]:

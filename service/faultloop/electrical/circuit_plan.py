@@ -3,7 +3,18 @@
 from functools import lru_cache
 
 from faultloop.electrical.circuit_layout import ADMITTANCE, CURRENT, RATIO, SOURCE, Layout, branch_ends
-from faultloop.electrical.circuit_tape import ERROR, LOSS, ONE, SIZE, Program, Tape, Value, negative
+from faultloop.electrical.circuit_tape import (
+    AMPERES,
+    AMPERES_LACKING,
+    LOSS,
+    ONE,
+    VOLTS,
+    VOLTS_LACKING,
+    Program,
+    Tape,
+    Value,
+    negative,
+)
 
 PLANS = 256
 Pivot = tuple[int, ...]
@@ -73,7 +84,11 @@ class _Elimination:
         for at, kind in enumerate(layout.kinds):
             if at not in cut:
                 self._stamp(at, kind)
+        self.first_tied = frozenset(self.tied)
+        self.alone: set[int] = set()  # nodes that were pivots of their own
         self.plain = {row: entries.get(row) for row, entries in self.matrix.items()}
+        self.opposed: dict[Value, Value] = {}
+        self.slack: Value = None
         self.done: list[tuple[int, Value, dict[int, Value]]] = []
         self.found: dict[int, Value] = {}
         self.volts: dict[int, Value] = {}  # by which an ampere too many at a node moves its potential
@@ -118,17 +133,21 @@ class _Elimination:
         nodes = {node for _, node in self.tied}
         busy = nodes | {current for current, _ in self.tied}
         alone: list[Pivot] = [(row,) for row, entries in self.matrix.items() if row not in busy and row in entries]
-        return min([*alone, *self.tied], key=lambda pivot: (self._cost(pivot), pivot), default=())
+        return min([*alone, *self.tied], key=lambda pivot: (*self._cost(pivot), pivot), default=())
 
-    def _cost(self, pivot: Pivot) -> int:
-        """Operations to eliminate, about; the right side counts as one more column."""
+    def _cost(self, pivot: Pivot) -> tuple[int, bool]:
+        """Operations to eliminate, about; the right side is one more column.
+
+        Of equal ones a node without an admittance of its own comes first: it carries ties on as they are.
+        """
         around = len(set().union(*(self.matrix[one] for one in pivot)) - set(pivot))
         driven = any(self.side.get(one) is not None for one in pivot)
-        return len(pivot) * around * (around + 1 + driven)
+        return len(pivot) * around * (around + 1 + driven), pivot[-1] in self.matrix[pivot[-1]]
 
     def eliminate(self, pivot: Pivot) -> None:
         """Take the pivot's unknowns out of all other equations."""
         tape = self.tape
+        self.opposed = {}
         inverse = self._inverted(pivot)
         rows = {one: self.matrix.pop(one) for one in pivot}
         around = sorted(set().union(*rows.values()) - set(pivot))
@@ -153,9 +172,14 @@ class _Elimination:
         """Lower an entry.
 
         Between a current and a node, a single term carries a tie on; a sum does not, and where it cancels the nodes'
-        balances have lost figures.
+        balances have lost figures.  Of two impedances side by side, what is left of the second's tie is put down without
+        a difference: 1 + 1/det = z·y/det, where det = z·y - 1.
         """
         before = self.matrix[row].get(column)
+        if terms == [self.opposed.get(before)]:
+            self.matrix[row][column] = self.matrix[column][row] = self.tape.times(before, self.slack)
+            self.tied.discard((row, column))
+            return
         for term in terms:
             self._add(row, column, negative(term))
         if not row < self.currents <= column or not terms:
@@ -173,6 +197,7 @@ class _Elimination:
         tape, first, last = self.tape, pivot[0], pivot[-1]
         own, other = self.matrix[first].get(first), self.matrix[last].get(last)
         if first == last:
+            self.alone.add(first)
             inverse = tape.inverse(own)
             if self.plain[first] != own:
                 tape.watch(tape.times(self.plain[first], inverse), LOSS)
@@ -180,6 +205,9 @@ class _Elimination:
         tie = self.matrix[first][last]
         square, product = tape.times(tie, tie), tape.times(own, other)
         inverse = tape.inverse(tape.minus(product, square))
+        if product is not None and square == (1, ONE) and inverse is not None:
+            self.slack = tape.times(product, inverse)
+            self.opposed = {(sign, ONE): (-sign * inverse[0], inverse[1]) for sign in (1, -1)}
         if product is not None:
             tape.watch(tape.times(square, inverse), LOSS)
             if self.plain[last] != other:
@@ -197,7 +225,7 @@ class _Elimination:
             if row in node_of:
                 value = self.tape.result(node_of[row], value)
                 if row in self.driven:
-                    self.tape.watch(value, SIZE)
+                    self.tape.watch(value, VOLTS)
             self.found[row] = value
         for node, row in enumerate(self.layout.row):
             if row not in self.found:
@@ -217,9 +245,15 @@ class _Elimination:
                 for row, sign in self.ends[branch]:
                     lacks[row] = tape.plus(lacks.get(row), _signed(sign, given))
             if kind not in (ADMITTANCE, CURRENT) and at not in self.cut:
-                tape.watch(self._lacking(at, kind), ERROR)
+                tape.watch(self._lacking(at, kind), VOLTS_LACKING)
+        at_currents = {row for pair in self.first_tied for row in pair}
         for row, amperes in lacks.items():
-            tape.watch(tape.times(self.volts[row], amperes), ERROR)
+            if row in self.alone and row in at_currents:
+                tape.watch(amperes, AMPERES_LACKING)
+            else:
+                tape.watch(tape.times(self.volts[row], amperes), VOLTS_LACKING)
+        for own in sorted({own for own, row in self.first_tied if row in self.alone}):
+            tape.watch(self.found[own], AMPERES)
 
     def _current(self, at: int, kind: str) -> Value:
         """Current of an element."""

@@ -7,7 +7,9 @@ from typing import Any
 import numpy as np
 
 MULTIPLY, ADD, SUBTRACT, DIVIDE = np.multiply, np.add, np.subtract, np.divide
-ONE, ZERO, LOSS, ERROR, SIZE = range(5)  # rows that every tape has; the last three sum the squares of what is watched
+# Rows that every tape has; after one and zero, those that sum the squares of what is watched.
+ONE, ZERO, LOSS, VOLTS_LACKING, VOLTS, AMPERES_LACKING, AMPERES = range(7)
+WATCHED = range(LOSS, AMPERES + 1)
 Value = tuple[int, int] | None  # sign and number of a row; None is zero in every network
 Step = tuple[Callable[..., Any], int, int, int]  # what is done, the rows it is done to, the row that takes the result
 
@@ -35,7 +37,7 @@ class Tape:
     loaded: dict[tuple[int, str], int] = field(default_factory=dict)
     results: dict[int, int] = field(default_factory=dict)
     zeros: list[int] = field(default_factory=list)
-    count: int = SIZE + 1
+    count: int = WATCHED.stop
 
     def load(self, element: int, name: str) -> Value:
         """Take a value of an element.
@@ -176,7 +178,7 @@ class Tape:
         value : Value
             Any.
         total : int
-            LOSS of figures, ERROR of a balance, or SIZE of the potentials.
+            One of WATCHED.
 
         References
         ----------
@@ -207,7 +209,7 @@ class Tape:
         if value is None:
             self.zeros.append(at)
             return None
-        made = self.steps[-1][3] if self.steps else SIZE
+        made = self.steps[-1][3] if self.steps else ONE
         row = value[1] if value[0] > 0 and value[1] == made and made not in self.results else None
         if row is None:
             row = self._write(ADD if value[0] > 0 else SUBTRACT, ZERO, value[1])
@@ -227,7 +229,7 @@ class Tape:
         .. [1] M. Poletto, V. Sarkar, "Linear scan register allocation", ACM TOPLAS 21(5), 1999, 895-913.
         """
         last = {row: at for at, (_, *ends, _) in enumerate(self.steps) for row in ends}
-        kept = [*range(SIZE + 1), *self.loaded.values()]
+        kept = [*range(WATCHED.stop), *self.loaded.values()]
         place = {row: at for at, row in enumerate(kept)}
         place |= {row: -1 - at for row, at in self.results.items()}  # below zero until the number of rows is known
         free: list[int] = []
@@ -262,7 +264,7 @@ def _settled(steps: Iterable[Step], scratch: int, results: int) -> Iterator[Step
     reals = first + results
     for action, *ends in steps:
         left, right, out = (row if row >= 0 else first - 1 - row for row in ends)
-        if out in (LOSS, ERROR, SIZE):
+        if out in WATCHED:
             yield MULTIPLY, reals + left, reals + left, reals + scratch
             yield ADD, reals + scratch, reals + out, reals + out
         else:
