@@ -85,6 +85,7 @@ class _Elimination:
             if at not in cut:
                 self._stamp(at, kind)
         self.first_tied = frozenset(self.tied)
+        self.at_currents = {row for pair in self.tied for row in pair}
         self.alone: set[int] = set()  # nodes that were pivots of their own
         self.plain = {row: entries.get(row) for row, entries in self.matrix.items()}
         self.opposed: dict[Value, Value] = {}
@@ -199,7 +200,7 @@ class _Elimination:
         if first == last:
             self.alone.add(first)
             inverse = tape.inverse(own)
-            if self.plain[first] != own:
+            if self.plain[first] != own and first in self.at_currents:
                 tape.watch(tape.times(self.plain[first], inverse), LOSS)
             return {(first, first): inverse}
         tie = self.matrix[first][last]
@@ -246,9 +247,8 @@ class _Elimination:
                     lacks[row] = tape.plus(lacks.get(row), _signed(sign, given))
             if kind not in (ADMITTANCE, CURRENT) and at not in self.cut:
                 tape.watch(self._lacking(at, kind), VOLTS_LACKING)
-        at_currents = {row for pair in self.first_tied for row in pair}
         for row, amperes in lacks.items():
-            if row in self.alone and row in at_currents:
+            if row in self.alone and row in self.at_currents:
                 tape.watch(amperes, AMPERES_LACKING)
             else:
                 tape.watch(tape.times(self.volts[row], amperes), VOLTS_LACKING)
