@@ -5,7 +5,15 @@ from typing import Any
 
 import numpy as np
 
-from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, ImpedanceLaw, Law, Mask, Phasor, RatioLaw
+from faultloop.electrical.circuit_elements import (
+    NOUGHT,
+    AdmittanceLaw,
+    CurrentLaw,
+    ImpedanceLaw,
+    Law,
+    Mask,
+    Phasor,
+)
 from faultloop.electrical.circuit_tape import (
     AMPERES,
     AMPERES_LACKING,
@@ -17,8 +25,9 @@ from faultloop.electrical.circuit_tape import (
     Program,
 )
 
-BLOCK = 2560  # networks at a time, so that their rows stay in the cache
+ENTRIES = 1 << 18  # of the rows at a time, 4 MB: so many networks that a call costs little, and few enough for the cache
 UNIT = np.ones(1)
+Load = tuple[Any, int, str, list[Any]]  # what is done, the row, its part, and the columns it is done with
 WHOLE = 8  # rows are filled up to a multiple of this: no network stands where its arithmetic is done otherwise
 LOST = 1e3  # a pivot that has lost more than three figures of what it was made of is not trusted
 LACKING = 1e-13  # what a balance may lack, as volts or amperes beside those of the network
@@ -54,19 +63,24 @@ def eliminated(program: Program, laws: Sequence[Law], count: int) -> tuple[Phaso
        systems of linear equations", J. ACM 17(1), 1970, 87-109.
     .. [2] IEEE 754-2019, 5.4.1 (arithmetic operations: the result depends on the operands alone).
     """
+    blocks = max(1, -(-count * program.rows // ENTRIES))
+    width = -(-count // (blocks * WHOLE)) * WHOLE
     whole = -(-count // WHOLE) * WHOLE
     found, sound = np.empty((program.results, whole), np.complex128), np.empty(whole, np.bool_)
     found[list(program.zeros)] = 0.0
-    width = min(BLOCK, whole)
     rows = np.zeros((program.rows, width), np.complex128)
     rows[ONE] = 1.0
-    columns = _loaded(rows, program, laws)
+    constant, varying = _loads(program, laws)
+    for action, at, part, ends in constant:
+        action(*ends, getattr(rows[at], part))
     with np.errstate(all="ignore"):
-        for start in range(0, whole, BLOCK):
-            block = slice(start, min(start + BLOCK, whole))
+        for start in range(0, whole, max(width, 1)):
+            block = slice(start, min(start + width, whole))
             used, results = rows[:, : block.stop - start], found[:, block]
-            for action, part, *ends in columns:
-                action(*(column if len(column) == 1 else column[block] for column in ends), part[: min(block.stop, count) - start])
+            for action, at, part, ends in varying:
+                row = rows[at] if at < program.rows else results[at - program.rows]
+                some = (column if len(column) == 1 else column[block] for column in ends)
+                action(*some, getattr(row[: min(block.stop, count) - start], part))
             used[WATCHED.start : WATCHED.stop] = 0.0
             places = [*used, *results, *used.view(np.float64), *results.view(np.float64)]
             for action, left, right, out in program.steps:
@@ -83,26 +97,24 @@ def _sound(rows: Phasor) -> Mask:
     return sound & (totals[AMPERES_LACKING] <= LACKING * LACKING * totals[AMPERES])
 
 
-def _loaded(rows: Phasor, program: Program, laws: Sequence[Law]) -> list[tuple[Any, ...]]:
-    """Put what holds for all networks into its rows; the rest, as what is to be done block by block."""
-    rest = []
+def _loads(program: Program, laws: Sequence[Law]) -> tuple[list[Load], list[Load]]:
+    """What is to be done to fill the rows of values: once, and again for each block."""
+    constant, varying = [], []
     for (element, name), at in program.loaded.items():
-        for action, part, *columns in _parts(rows[at], laws[element], name):
-            if all(len(column) == 1 for column in columns):
-                action(*columns, part)
-            else:
-                rest.append((action, part, *columns))
-    return rest
+        for action, part, *columns in _parts(laws[element], name):
+            once = at < program.rows and all(len(column) == 1 for column in columns)
+            (constant if once else varying).append((action, at, part, columns))
+    return constant, varying
 
 
-def _parts(row: Phasor, law: Law, name: str) -> Sequence[tuple[Any, ...]]:
-    """What is done to fill a row, where to, and the columns of a law to do it with."""
+def _parts(law: Law, name: str) -> Sequence[tuple[Any, ...]]:
+    """What is done to fill a row: to which part of it, with which columns of a law."""
     if isinstance(law, AdmittanceLaw):
-        return (np.divide, row.real, UNIT, law.resistance), (np.multiply, row.imag, law.siemens, law.nanofarads)
+        return (np.divide, "real", UNIT, law.resistance), (np.multiply, "imag", law.siemens, law.nanofarads)
+    if isinstance(law, ImpedanceLaw) and name == "impedance":
+        return (np.positive, "real", law.resistance), (np.positive, "imag", law.reactance)
+    if isinstance(law, ImpedanceLaw):
+        return (np.positive, "real", law.emf.real), (np.positive, "imag", law.emf.imag)
     if isinstance(law, CurrentLaw):
-        return ((np.positive, row, law.injected),)
-    if isinstance(law, RatioLaw):
-        return ((np.positive, row, law.ratio),)
-    if name == "emf":
-        return ((np.positive, row, law.emf),)
-    return (np.positive, row.real, law.resistance), (np.positive, row.imag, law.reactance)
+        return (np.positive, "real", law.injected.real), (np.positive, "imag", law.injected.imag)
+    return (np.positive, "real", law.ratio), (np.positive, "imag", NOUGHT)

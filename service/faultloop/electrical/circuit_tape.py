@@ -18,7 +18,8 @@ Step = tuple[Callable[..., Any], int, int, int]  # what is done, the rows it is 
 class Program:
     """Steps on ``rows`` rows of complex numbers, and on ``results`` more.
 
-    ``loaded`` are the rows that hold a value of an element all along.  Row ``rows + results + k`` is row k as pairs of
+    ``loaded`` are the rows that hold a value of an element until it is needed no more; those among the first ``rows``
+    hold it all along.  Row ``rows + results + k`` is row k as pairs of
     real numbers.  ``zeros`` are the results that are zero in every network.
     """
 
@@ -229,9 +230,15 @@ class Tape:
         .. [1] M. Poletto, V. Sarkar, "Linear scan register allocation", ACM TOPLAS 21(5), 1999, 895-913.
         """
         last = {row: at for at, (_, *ends, _) in enumerate(self.steps) for row in ends}
-        kept = [*range(WATCHED.stop), *self.loaded.values()]
-        place = {row: at for at, row in enumerate(kept)}
-        place |= {row: -1 - at for row, at in self.results.items()}  # below zero until the number of rows is known
+        place = {row: -1 - at for row, at in self.results.items()}  # below zero until the number of rows is known
+        loaded = set(self.loaded.values())
+        for at, (_, *ends, out) in enumerate(self.steps):
+            for row in ends:  # a value waits where the result will stand that it is needed for last
+                if out in self.results and row in loaded and row not in place and last[row] == at:
+                    place[row] = place[out]
+                    break
+        kept = [row for row in (*range(WATCHED.stop), *self.loaded.values()) if row not in place]
+        place |= {row: at for at, row in enumerate(kept)}
         free: list[int] = []
         rows = len(kept)
         steps: list[Step] = []
@@ -242,9 +249,9 @@ class Tape:
                 place[out] = free.pop() if free else rows
                 rows = max(rows, place[out] + 1)
             steps.append((action, *ends, place[out]))
-        loaded = {name: place[row] for name, row in self.loaded.items()}
         results = len(self.results) + len(self.zeros)
-        return Program(rows + 1, results, loaded, tuple(_settled(steps, rows, results)), tuple(self.zeros))
+        where = {name: place[row] if place[row] >= 0 else rows - place[row] for name, row in self.loaded.items()}
+        return Program(rows + 1, results, where, tuple(_settled(steps, rows, results)), tuple(self.zeros))
 
     def _new(self) -> int:
         """A row that is not used yet."""
