@@ -163,17 +163,18 @@ class _Elimination:
                 self.side[row] = tape.minus(self.side.get(row), tape.times(shares[one][row], self.side.get(one)))
             for column in around[at:]:
                 terms = [tape.times(shares[one][row], rows[one].get(column)) for one in pivot]
-                self._take_away(row, column, [term for term in terms if term is not None])
+                carried = len(pivot) == 2 and row not in rows[pivot[0]] and column not in rows[pivot[1]]
+                self._take_away(row, column, [term for term in terms if term is not None], carried)
         for one in pivot:
             start = tape.total(tape.times(inverse[one, two], self.side.get(two)) for two in pivot)
             self.done.append((one, start, shares[one]))
             self.volts[one] = inverse[one, one]
 
-    def _take_away(self, row: int, column: int, terms: list[Value]) -> None:
+    def _take_away(self, row: int, column: int, terms: list[Value], carried: bool) -> None:
         """Lower an entry.
 
-        Between a current and a node, a single term carries a tie on; a sum does not, and where it cancels the nodes'
-        balances have lost figures.  Of two impedances side by side, what is left of the second's tie is put down without
+        Between a current and a node, a tie is carried on where neither impedance nor admittance comes into it; a sum is no
+        tie, and where it cancels the nodes' balances have lost figures.  Of two impedances side by side, what is left of the second's tie is put down without
         a difference: 1 + 1/det = z·y/det, where det = z·y - 1.
         """
         before = self.matrix[row].get(column)
@@ -186,7 +187,7 @@ class _Elimination:
         if not row < self.currents <= column or not terms:
             return
         after = self.matrix[row].get(column)
-        if before is None and len(terms) == 1:
+        if before is None and carried:
             self.tied.add((row, column))
             return
         self.tied.discard((row, column))
@@ -248,11 +249,11 @@ class _Elimination:
             if kind not in (ADMITTANCE, CURRENT) and at not in self.cut:
                 tape.watch(self._lacking(at, kind), VOLTS_LACKING)
         for row, amperes in lacks.items():
-            if row in self.alone and row in self.at_currents:
+            if row in self.at_currents:
                 tape.watch(amperes, AMPERES_LACKING)
-            else:
+            if row not in self.alone or row not in self.at_currents:
                 tape.watch(tape.times(self.volts[row], amperes), VOLTS_LACKING)
-        for own in sorted({own for own, row in self.first_tied if row in self.alone}):
+        for own in sorted({own for own, _ in self.first_tied}):
             tape.watch(self.found[own], AMPERES)
 
     def _current(self, at: int, kind: str) -> Value:
