@@ -1,7 +1,6 @@
 """The elimination chosen from the shape, beside the one that sees the values."""
 
 import dataclasses
-from collections.abc import Iterator
 from typing import Any
 
 import numpy as np
@@ -30,7 +29,7 @@ NONE = column(0.0)
 
 
 @pytest.fixture
-def pivoted(monkeypatch: pytest.MonkeyPatch) -> Iterator[list[int]]:
+def pivoted(monkeypatch: pytest.MonkeyPatch) -> list[int]:
     """Networks that were sent to the elimination that sees the values."""
     seen: list[int] = []
 
@@ -39,7 +38,7 @@ def pivoted(monkeypatch: pytest.MonkeyPatch) -> Iterator[list[int]]:
         return answered(equations, chosen)
 
     monkeypatch.setattr(circuits, "answered", watched)
-    yield seen
+    return seen
 
 
 def beside_pivoted(found: Solution, part: float) -> None:

@@ -70,7 +70,12 @@ def impossible_values(equations: Equations, good: Sequence[Mask]) -> list[Defect
     .. [1] IEC 60050-131:2002 (ideal circuit elements).
     """
     named = zip(equations.circuit.elements, good, strict=True)
-    return [Defect(IMPOSSIBLE_VALUE, (), (element.name,), np.broadcast_to(~mask, equations.usable.shape)) for element, mask in named if not mask.all()]
+    shape = equations.usable.shape
+    return [
+        Defect(IMPOSSIBLE_VALUE, (), (element.name,), np.broadcast_to(~mask, shape))
+        for element, mask in named
+        if not mask.all()
+    ]
 
 
 def conflicting_sources(equations: Equations) -> list[Defect]:

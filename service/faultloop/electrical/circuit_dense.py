@@ -1,9 +1,9 @@
-"""Networks solved by their whole matrices, pivots chosen by the values of each: slower, and loses the fewest figures."""
+"""Networks solved by whole matrices, pivots chosen by the values of each: slower, and loses the fewest figures."""
 
 import numpy as np
 from numpy.typing import NDArray
 
-from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, Phasor, RatioLaw, law_of
+from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, Mask, Phasor, RatioLaw, law_of
 from faultloop.electrical.circuit_equations import left_side, source_terms
 from faultloop.electrical.circuit_solution import Equations
 
@@ -63,7 +63,7 @@ def _solved_or_nan(matrix: Phasor, side: Phasor) -> Phasor:
         return np.concatenate([_solved_or_nan(matrix[at : at + 1], side[at : at + 1]) for at in range(len(matrix))])
 
 
-def answered(equations: Equations, chosen: NDArray[np.intp]) -> tuple[Phasor, Phasor]:
+def answered(equations: Equations, chosen: NDArray[np.intp]) -> tuple[Phasor, Mask]:
     """Potentials of all nodes and currents of all branches.
 
     Parameters
@@ -94,10 +94,10 @@ def answered(equations: Equations, chosen: NDArray[np.intp]) -> tuple[Phasor, Ph
     singular = np.asarray(~np.isfinite(unknown).all(axis=1), np.bool_)
     lost = np.array([fixing.lost for fixing in equations.kinds.fixings], np.bool_).reshape(-1, layout.unknowns)
     known = np.where(lost[equations.kinds.which[chosen]], np.nan, unknown).T
-    none = np.zeros(len(chosen), np.complex128)
+    none: Phasor = np.zeros(len(chosen), np.complex128)
     # Currents are taken while a lost potential stands at zero: they do not depend on it.
     potential = [unknown[:, row] if row >= 0 else none for row in layout.row]
-    rows = [known[row] if row >= 0 else none for row in layout.row]
+    rows: list[Phasor] = [known[row] if row >= 0 else none for row in layout.row]
     for at, law in enumerate(laws):
         plus, minus = layout.terminals[layout.first_branch[at]]
         own = known[layout.own_unknown[at]]
@@ -110,4 +110,3 @@ def answered(equations: Equations, chosen: NDArray[np.intp]) -> tuple[Phasor, Ph
         else:
             rows.append(own)
     return np.stack(rows), singular
-

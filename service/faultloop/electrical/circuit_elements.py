@@ -254,7 +254,7 @@ def _series_law(element: Inductor | Impedance | VoltageSource, angular_frequency
     else:
         resistance, reactance = element.resistance_ohm, element.reactance_ohm
         good = (resistance >= 0.0) & ~np.isnan(reactance)
-    emf: Phasor = NOUGHT + 0j
+    emf: Phasor = NOUGHT.astype(np.complex128)
     if isinstance(element, VoltageSource):
         good = good & np.isfinite(element.emf_v)
         emf = _kept(good, element.emf_v, 0.0)

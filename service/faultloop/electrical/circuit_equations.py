@@ -2,7 +2,6 @@
 
 from collections.abc import Sequence
 from dataclasses import fields, replace
-from functools import cache
 from itertools import product
 from typing import Any
 
@@ -20,7 +19,9 @@ from faultloop.electrical.circuit_elements import (
     RatioLaw,
     element_law,
 )
-from faultloop.electrical.circuit_layout import SOURCE, Circuit, Layout, branch_ends
+from faultloop.electrical.circuit_layout import LETTERS, SOURCE, Circuit, Layout, branch_ends
+
+VALUES = {kind: tuple(field.name for field in fields(kind) if field.type is not str) for kind in LETTERS}
 
 
 def columns(circuit: Circuit) -> tuple[Circuit, int]:
@@ -51,25 +52,19 @@ def columns(circuit: Circuit) -> tuple[Circuit, int]:
     made = Circuit(elements, _column(circuit.frequency_hz), circuit.earth)
     shapes = {made.frequency_hz.shape}
     for element in elements:
-        shapes |= {getattr(element, name).shape for name in _values(type(element))}
+        shapes |= {getattr(element, name).shape for name in VALUES[type(element)]}
     longer = sorted(shapes - {(1,)})
     shape = longer[0] if longer else (1,)
     if len(longer) > 1 or len(shape) != 1:
-        told = ", ".join(f"{e.name}: {[getattr(e, name).shape for name in _values(type(e))]}" for e in elements)
+        told = ", ".join(f"{e.name}: {[getattr(e, name).shape for name in VALUES[type(e)]]}" for e in elements)
         raise ValueError(f"every value must be a column of one length, or of length one; found {told}")
     return made, shape[0]
 
 
-@cache
-def _values(kind: type[Element]) -> tuple[str, ...]:
-    """Names of the values of an element."""
-    return tuple(field.name for field in fields(kind) if field.type is not str)
-
-
 def _with_columns(element: Element) -> Element:
     """The element itself, where its values are columns of numbers already."""
-    told = {name: getattr(element, name) for name in _values(type(element))}
-    made = {name: _column(value) for name, value in told.items()}
+    told: dict[str, Any] = {name: getattr(element, name) for name in VALUES[type(element)]}
+    made: dict[str, Any] = {name: _column(value) for name, value in told.items()}
     return element if all(made[name] is told[name] for name in told) else replace(element, **made)
 
 

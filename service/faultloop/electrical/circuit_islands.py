@@ -132,7 +132,7 @@ def fixings(layout: Layout, laws: Sequence[Law], count: int) -> Kinds:
 
 
 def _state(law: Law) -> NDArray[np.int8]:
-    """Whether an element is OPEN, IDEAL (the voltage does not depend on the current) or ORDINARY; one where all agree."""
+    """OPEN, IDEAL where the voltage does not depend on the current, or ORDINARY; a single one where all agree."""
     if isinstance(law, AdmittanceLaw) and law.open.any():
         return np.where(law.open, OPEN, ORDINARY).astype(np.int8)
     if isinstance(law, ImpedanceLaw) and (law.open.any() or law.ideal.any()):

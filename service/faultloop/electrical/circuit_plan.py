@@ -153,33 +153,34 @@ class _Elimination:
         rows = {one: self.matrix.pop(one) for one in pivot}
         around = sorted(set().union(*rows.values()) - set(pivot))
         self.tied = {pair for pair in self.tied if not set(pair) & set(pivot)}
-        shares = {
-            one: {other: tape.total(tape.times(inverse[one, two], rows[two].get(other)) for two in pivot) for other in around}
-            for one in pivot
-        }
-        for at, row in enumerate(around):
-            for one in pivot:
-                self.matrix[row].pop(one, None)
-                self.side[row] = tape.minus(self.side.get(row), tape.times(shares[one][row], self.side.get(one)))
-            for column in around[at:]:
-                terms = [tape.times(shares[one][row], rows[one].get(column)) for one in pivot]
-                carried = len(pivot) == 2 and row not in rows[pivot[0]] and column not in rows[pivot[1]]
-                self._take_away(row, column, [term for term in terms if term is not None], carried)
         for one in pivot:
+            shares = {
+                other: tape.total(tape.times(inverse[one, two], rows[two].get(other)) for two in pivot)
+                for other in around
+            }
             start = tape.total(tape.times(inverse[one, two], self.side.get(two)) for two in pivot)
-            self.done.append((one, start, shares[one]))
+            self.done.append((one, start, shares))
             self.volts[one] = inverse[one, one]
+        for at, row in enumerate(around):
+            for one, _, shares in self.done[-len(pivot) :]:
+                self.matrix[row].pop(one, None)
+                self.side[row] = tape.minus(self.side.get(row), tape.times(shares[row], self.side.get(one)))
+            for column in around[at:]:
+                self._take_away(row, column, pivot, rows)
 
-    def _take_away(self, row: int, column: int, terms: list[Value], carried: bool) -> None:
+    def _take_away(self, row: int, column: int, pivot: Pivot, rows: dict[int, dict[int, Value]]) -> None:
         """Lower an entry.
 
-        Between a current and a node, a tie is carried on where neither impedance nor admittance comes into it; a sum is no
-        tie, and where it cancels the nodes' balances have lost figures.  Of two impedances side by side, what is left of the second's tie is put down without
-        a difference: 1 + 1/det = z·y/det, where det = z·y - 1.
+        Between a current and a node, a tie is carried on where neither impedance nor admittance comes into it; a sum is
+        no tie, and where it cancels the nodes' balances have lost figures.  Of two impedances side by side, what is
+        left of the second's tie is put down without a difference: 1 + 1/det = z·y/det, where det = z·y - 1.
         """
-        before = self.matrix[row].get(column)
+        tape, before = self.tape, self.matrix[row].get(column)
+        done = self.done[-len(pivot) :]
+        terms = [tape.times(shares[row], rows[one].get(column)) for one, _, shares in done if column in rows[one]]
+        terms = [term for term in terms if term is not None]
         if terms == [self.opposed.get(before)]:
-            self.matrix[row][column] = self.matrix[column][row] = self.tape.times(before, self.slack)
+            self.matrix[row][column] = self.matrix[column][row] = tape.times(before, self.slack)
             self.tied.discard((row, column))
             return
         for term in terms:
@@ -187,12 +188,12 @@ class _Elimination:
         if not row < self.currents <= column or not terms:
             return
         after = self.matrix[row].get(column)
-        if before is None and carried:
+        if before is None and len(pivot) == 2 and row not in rows[pivot[0]] and column not in rows[pivot[1]]:
             self.tied.add((row, column))
             return
         self.tied.discard((row, column))
         if before is not None and after is not None:
-            self.tape.watch(self.tape.times(before, self.tape.inverse(after)), LOSS)
+            tape.watch(tape.times(before, tape.inverse(after)), LOSS)
 
     def _inverted(self, pivot: Pivot) -> dict[Pivot, Value]:
         """Inverse of the pivot, watched for what cancels in it."""

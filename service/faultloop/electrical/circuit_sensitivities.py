@@ -4,6 +4,7 @@ from collections.abc import Mapping
 
 import numpy as np
 
+from faultloop.electrical.circuit_dense import solved
 from faultloop.electrical.circuit_elements import (
     FARADS_IN_A_NANOFARAD,
     AdmittanceLaw,
@@ -19,7 +20,6 @@ from faultloop.electrical.circuit_elements import (
 )
 from faultloop.electrical.circuit_layout import branch_ends
 from faultloop.electrical.circuit_solution import Solution, current_through, voltage_between
-from faultloop.electrical.circuit_dense import solved
 from faultloop.electrical.measurement import Array
 
 Sensitivities = dict[tuple[str, str], Phasor]
@@ -152,7 +152,8 @@ def _by_adjoint(solution: Solution, chosen: Phasor) -> Sensitivities:
     found: Sensitivities = {}
 
     def lift(branch: int) -> Phasor:
-        return sum((sign * adjoint[:, row] for row, sign in branch_ends(layout, branch)), np.zeros(len(adjoint)) + 0j)
+        none: Phasor = np.zeros(len(adjoint), np.complex128)
+        return sum((sign * adjoint[:, row] for row, sign in branch_ends(layout, branch)), none)
 
     for at, (element, law) in enumerate(zip(equations.circuit.elements, equations.laws, strict=True)):
         first, own = layout.first_branch[at], adjoint[:, layout.own_unknown[at]]

@@ -1,4 +1,4 @@
-"""Arithmetic written down once and done for many networks: a list of operations on rows, one entry of a row a network."""
+"""Arithmetic written down once and done for many networks: operations on rows, one entry of a row a network."""
 
 from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass, field
@@ -243,12 +243,12 @@ class Tape:
         rows = len(kept)
         steps: list[Step] = []
         for at, (action, left, right, out) in enumerate(self.steps):
-            ends = place[left], place[right]
+            step = (action, place[left], place[right])
             free += [place[row] for row in {left, right} if place[row] >= len(kept) and last[row] == at]
             if out not in place:
                 place[out] = free.pop() if free else rows
                 rows = max(rows, place[out] + 1)
-            steps.append((action, *ends, place[out]))
+            steps.append((*step, place[out]))
         results = len(self.results) + len(self.zeros)
         where = {name: place[row] if place[row] >= 0 else rows - place[row] for name, row in self.loaded.items()}
         return Program(rows + 1, results, where, tuple(_settled(steps, rows, results)), tuple(self.zeros))

@@ -84,8 +84,8 @@ def _answers(equations: Equations) -> tuple[Phasor, Mask]:
     """Potentials and currents of all networks, one row each, and where the values cancel altogether."""
     layout, count = equations.layout, len(equations.usable)
     groups = _by_program(equations)
-    if len(groups) == 1 and None not in groups:
-        (program,) = groups
+    program = next(iter(groups), None)
+    if len(groups) == 1 and program is not None:
         found, sound = eliminated(program, equations.laws, count)
     else:
         found = np.zeros((len(layout.nodes) + len(layout.branches), count), np.complex128)
