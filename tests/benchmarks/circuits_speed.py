@@ -104,9 +104,9 @@ def main() -> None:
     batch = per_network(lambda: solve(Circuit(parts, FREQUENCY)), NETWORKS)
     own = per_network(lambda: [solve(one_of(parts, at)) for at in range(LOOPED)], LOOPED)
     lean = per_network(lambda: [by_hand(plan, at) for at in range(LOOPED)], LOOPED)
-    print(f"one batch of {NETWORKS} networks of {NODES} nodes: {batch:8.1f} µs a network")
-    print(f"loop over solve():                       {own:8.1f} µs, {own / batch:6.1f} times as long")
-    print(f"loop by hand over numpy.linalg.solve:    {lean:8.1f} µs, {lean / batch:6.1f} times as long")
+    print(f"one batch of {NETWORKS} networks of {NODES} nodes: {batch:8.2f} µs a network")
+    print(f"loop over solve():                       {own:8.2f} µs, {own / batch:6.1f} times as long")
+    print(f"loop by hand over numpy.linalg.solve:    {lean:8.2f} µs, {lean / batch:6.1f} times as long")
 
 
 if __name__ == "__main__":
