@@ -165,6 +165,19 @@ def test_a_balance_that_lacks_too_much_goes_the_other_way(pivoted: list[int]) ->
     assert abs(current_through(found, "insulation"))[0] < 1e-12
 
 
+def test_a_shape_that_shows_no_order_goes_the_other_way(pivoted: list[int]) -> None:
+    """Windings of unequal ratio side by side: no voltage, i1 + i2 = J and 2·i1 + 3·i2 = 0."""
+    found = answer(
+        CurrentSource("drive", "a", "earth", column(1.0, 5.0)),
+        IdealTransformer("one", "a", "earth", "b", "earth", column(2.0)),
+        IdealTransformer("other", "a", "earth", "b", "earth", column(3.0)),
+    )
+    assert pivoted == [0, 1]
+    assert current_through(found, "one.primary") == pytest.approx([3.0, 15.0])
+    assert current_through(found, "other.primary") == pytest.approx([-2.0, -10.0])
+    assert not found.potential_v.any()
+
+
 def test_usual_networks_stay_with_the_order_of_the_shape(pivoted: list[int]) -> None:
     """The networks whose speed is measured, and milliohms beside gigaohms."""
     answer(*elements(500))

@@ -4,6 +4,9 @@ A part that no branch joins to earth floats: its potentials are counted from a n
 and anything else is unknown (nan), never invented.  What cannot be solved is named in ``Solution.defects``.
 """
 
+from itertools import accumulate
+from math import comb
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -19,8 +22,8 @@ from faultloop.electrical.circuit_elements import Mask, Phasor, law_of
 from faultloop.electrical.circuit_elimination import eliminated
 from faultloop.electrical.circuit_equations import circuit_laws, columns
 from faultloop.electrical.circuit_islands import OPEN, fixings
-from faultloop.electrical.circuit_layout import Circuit, lay_out
-from faultloop.electrical.circuit_plan import plan
+from faultloop.electrical.circuit_layout import Circuit, Layout, lay_out
+from faultloop.electrical.circuit_plan import PLANS, plan
 from faultloop.electrical.circuit_solution import Equations, Solution
 from faultloop.electrical.circuit_tape import Program
 
@@ -103,16 +106,27 @@ def _answers(equations: Equations) -> tuple[Phasor, Mask]:
 
 
 def _by_program(equations: Equations) -> dict[Program | None, list[int]]:
-    """Kinds of networks that share a program; none for those in which something is lost or the shape shows no order."""
+    """Kinds of networks that share a program; those with none are solved by whole matrices."""
     layout, kinds = equations.layout, equations.kinds
     groups: dict[Program | None, list[int]] = {}
+    most = _most_cut(layout)
     for at, (states, fixing) in enumerate(zip(kinds.states, kinds.fixings, strict=True)):
         program = None
-        if not any(fixing.lost):
-            cut = frozenset(one for one, own in enumerate(layout.own_unknown) if own >= 0 and states[one] == OPEN)
+        cut = frozenset(one for one, own in enumerate(layout.own_unknown) if own >= 0 and states[one] == OPEN)
+        if not any(fixing.lost) and len(cut) <= most:
             program = plan(layout, cut, frozenset(row for row, _ in fixing.pins))
         groups.setdefault(program, []).append(at)
     return groups
+
+
+def _most_cut(layout: Layout) -> int:
+    """How many elements may be open: so many that no more programs than are kept can be asked for one layout.
+
+    It depends on the layout alone, so that a network is solved by itself as it is among others.
+    """
+    elements = sum(own >= 0 for own in layout.own_unknown)
+    programs = accumulate(comb(elements, most) for most in range(elements + 1))
+    return sum(asked <= PLANS for asked in programs) - 1
 
 
 def _references(equations: Equations) -> NDArray[np.intp]:
