@@ -14,7 +14,7 @@ from faultloop.electrical.circuit_elements import Capacitor, CurrentSource, Elem
 from faultloop.electrical.circuit_layout import Circuit
 from faultloop.electrical.circuits import solve
 
-NETWORKS, NODES, LOOPED, REPEATS = 10_000, 20, 500, 5
+NETWORKS, NODES, LOOPED, REPEATS = 10_000, 20, 500, 15
 OMEGA = 2.0 * np.pi * 50.0
 FREQUENCY = np.array([50.0])
 
