@@ -19,8 +19,8 @@ class Program:
     """Steps on ``rows`` rows of complex numbers, and on ``results`` more.
 
     ``loaded`` are the rows that hold a value of an element until it is needed no more; those among the first ``rows``
-    hold it all along.  Row ``rows + results + k`` is row k as pairs of real numbers.  ``zeros`` are the results that are
-    zero in every network.
+    hold it all along.  Row ``rows + results + k`` is row k as pairs of real numbers.  ``zeros`` are the results that
+    are zero in every network.
     """
 
     rows: int
