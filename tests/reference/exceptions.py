@@ -54,7 +54,8 @@ UNUSED: dict[str, dict[str, str]] = {
         "CO-ze-tn": "a declared external loop is the request's to state",
         "CO-ul-dc": "direct current is not judged yet",
         "CO-ul-low": "no shipped set has a reduced limit",
-        "CO-insulation-": "insulation resistance is not judged yet",
+        "CO-insulation-0018": "extra-low voltage is not judged",
+        "CO-insulation-0020": "circuits above 500 V have the same least resistance, by a test at 1000 V",
     },
     "disconnection_times": {
         "DT-TN-dc-0": "no time is set: tested by itself",

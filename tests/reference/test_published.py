@@ -8,11 +8,11 @@ import pytest
 
 from faultloop.assessment.points import Current, Earthing
 from faultloop.digests import rounded
-from tests.reference import examples, limits, quantities, separation
+from tests.reference import examples, limits, quantities, separation, separation_figures
 from tests.reference.exceptions import CONTRADICTED, CUT, UNUSED
 from tests.reference.published import EDITIONS, Comparison, document, files, oracles, rules_for
 
-MODULES = (limits, quantities, examples, separation)
+MODULES = (limits, quantities, examples, separation, separation_figures)
 COMPARISONS: list[Comparison] = [comparison for module in MODULES for comparison in module.comparisons()]
 CONCLUDED = examples.concluded()
 GUARD = oracles("conformance", "CF-guard-")
