@@ -7,12 +7,16 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from faultloop.electrical.circuit_elements import Capacitor, Element, Impedance, Resistor, VoltageSource
+from faultloop.electrical.circuit_layout import Circuit
+from faultloop.electrical.circuit_solution import current_through
 from faultloop.electrical.circuit_supplies import (
     InsulatedSupply,
     SeparatedCircuit,
     current_to_earth,
     single_contact_currents,
 )
+from faultloop.electrical.circuits import solve
 from tests.reference.unearthed import LEAD, bench, exact, finding, insulated, item, quantity
 
 CLOSE = 1e-9
@@ -218,6 +222,33 @@ def test_two_faults_of_a_separated_supply(bonding: float, wiring: float | None, 
     current = quantity(body, "second_fault_current_a")
     assert current["least"] == pytest.approx(230.0 / (1.1 * source + factor * (cores + bonding)), rel=1e-5)
     assert current["greatest"] == pytest.approx(1.1 * 230.0 / (0.9 * source), rel=1e-5)
+
+
+@pytest.mark.parametrize("neutral", [False, True])
+@pytest.mark.parametrize("ohm", [0.05, 1.2])
+def test_two_faults_of_an_insulated_supply_by_its_network(neutral: bool, ohm: float) -> None:
+    """A fault in each of two circuits whose cases share a protective conductor, its lines held to earth by next to nothing."""
+    none, elements = np.zeros(1), list[Element]()
+    for line in range(3):
+        phasor = 400.0 / math.sqrt(3.0) * np.exp(-2j * np.pi * np.array([line]) / 3.0)
+        elements.append(VoltageSource(f"e{line}", f"l{line}", "star", phasor, none, none))
+        elements.append(Capacitor(f"c{line}", f"l{line}", "earth", np.array([0.06])))
+    # Of each circuit one half of its loop is the live conductor, the other the protective conductor.
+    half = np.array([ohm / 2.0])
+    elements.append(Impedance("first", "l0", "case_1", half, none))
+    elements.append(Impedance("second", "star" if neutral else "l1", "case_2", half, none))
+    elements += [Impedance(f"pe_{case}", f"case_{case}", "bar", half, none) for case in (1, 2)]
+    elements.append(Resistor("electrode", "bar", "earth", np.array([20.0])))
+    current = float(abs(current_through(solve(Circuit(tuple(elements), np.array([50.0]))), "first")[0]))
+    # A reading as hot as in service; U0 of the outlet is that of the star.
+    body = insulated(
+        {"earth_fault_loop_impedance_ohm": exact(ohm, method="high-current", conductor_temperature_c=70)},
+        it_supply={"neutral_distributed": neutral},
+        supply={"nominal_voltage_to_earth_v": 400.0 / math.sqrt(3.0)},
+    )
+    told = quantity(body, "second_fault_current_a")
+    assert told["least"] == pytest.approx(current, rel=1e-5)
+    assert told["greatest"] == pytest.approx(1.1 * current, rel=1e-5)
 
 
 @given(st.floats(0.5, 40.0), st.floats(0.0, 1.0))
