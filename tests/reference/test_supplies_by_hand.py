@@ -227,7 +227,7 @@ def test_two_faults_of_a_separated_supply(bonding: float, wiring: float | None, 
 @pytest.mark.parametrize("neutral", [False, True])
 @pytest.mark.parametrize("ohm", [0.05, 1.2])
 def test_two_faults_of_an_insulated_supply_by_its_network(neutral: bool, ohm: float) -> None:
-    """A fault in each of two circuits whose cases share a protective conductor, its lines held to earth by next to nothing."""
+    """A fault in each of two circuits whose cases share a protective conductor; next to nothing holds lines to earth."""
     none, elements = np.zeros(1), list[Element]()
     for line in range(3):
         phasor = 400.0 / math.sqrt(3.0) * np.exp(-2j * np.pi * np.array([line]) / 3.0)
@@ -275,3 +275,10 @@ def test_a_short_circuit_is_the_rated_current_over_the_short_circuit_voltage(pow
     assert told["least"] == pytest.approx(100.0 * rated / percent, rel=1e-5)
     # The greatest takes the voltage tolerance of 10 % (IEC 60909-0) too.
     assert told["greatest"] == pytest.approx(110.0 * rated / percent, rel=1e-5)
+
+
+@pytest.mark.parametrize(("power_va", "percent", "loss_w"), [(30.0, 3.7, 1.11), (63.0, 0.7, 0.441), (100.0, 9.0, 9.0)])
+def test_regulation_of_a_transformer_that_is_all_resistance(power_va: float, percent: float, loss_w: float) -> None:
+    """Its load loss is the whole short-circuit voltage, and so is what a load of resistance loses."""
+    plate = {"rated_power_va": power_va, "short_circuit_voltage_percent": percent, "load_loss_w": loss_w}
+    assert quantity(bench(transformer=plate), "regulation_percent") == pytest.approx(percent, rel=1e-5)
