@@ -227,7 +227,7 @@ def test_two_faults_of_a_separated_supply(bonding: float, wiring: float | None, 
 @pytest.mark.parametrize("neutral", [False, True])
 @pytest.mark.parametrize("ohm", [0.05, 1.2])
 def test_two_faults_of_an_insulated_supply_by_its_network(neutral: bool, ohm: float) -> None:
-    """A fault in each of two circuits whose cases share a protective conductor; next to nothing holds lines to earth."""
+    """A fault in each of two circuits with one protective conductor; next to nothing holds the lines to earth."""
     none, elements = np.zeros(1), list[Element]()
     for line in range(3):
         phasor = 400.0 / math.sqrt(3.0) * np.exp(-2j * np.pi * np.array([line]) / 3.0)
@@ -251,6 +251,7 @@ def test_two_faults_of_an_insulated_supply_by_its_network(neutral: bool, ohm: fl
     assert told["greatest"] == pytest.approx(1.1 * current, rel=1e-5)
 
 
+@many
 @given(st.floats(0.5, 40.0), st.floats(0.0, 1.0))
 def test_regulation_beside_the_phasors(percent: float, share: float) -> None:
     """|U0| = |U + I·Z|: the formula leaves out what the fourth order of the cross voltage adds.
