@@ -15,9 +15,16 @@ from tests.assessment.test_separated import cautions, without_digest
 
 many = settings(max_examples=120, deadline=None)
 MONITOR = {"fitted": True, "set_point_kohm": 50, "alarm_tested": True}
+
+
+def linked(ohm: float) -> Body:
+    """A live reading of the loop with the source linked to earth for it."""
+    return live(ohm, state="source linked to earth for the test")
+
+
 READ = {
     "earth_electrode_resistance_ohm": 20,
-    "earth_fault_loop_impedance_ohm": live(1.0),
+    "earth_fault_loop_impedance_ohm": linked(1.0),
     "monitored_insulation_kohm": 400,
 }
 
@@ -104,9 +111,56 @@ def test_a_second_fault_shares_the_voltage_between_two_circuits(neutral: bool | 
     assert told["limit"] == pytest.approx(limit, rel=1e-5)
 
 
+def test_a_live_reading_without_a_link_shows_a_first_fault_or_an_untold_link() -> None:
+    read = assess(island({**READ, "earth_fault_loop_impedance_ohm": live(1.0)}))
+    assert finding(read, "second-fault-disconnection")["reason"] == "loop-reads-earth"
+    nothing = {**READ, "earth_fault_loop_impedance_ohm": {"value": 2000, "bound": "above"}}
+    assert finding(assess(island(nothing)), "second-fault-disconnection")["reason"] == "loop-missing"
+
+
+def test_a_dead_test_of_the_circuit_carries_a_second_fault() -> None:
+    # By hand: 1.2 x 1.0 ohm against 0.95 x 400 V / (2 x 80 A) = 2.375 ohm.
+    read = without("earth_fault_loop_impedance_ohm") | {"line_plus_protective_resistance_ohm": 1.0}
+    told = finding(assess(island(read)), "second-fault-disconnection")
+    assert (told["verdict"], told["value"]) == ("pass", pytest.approx(1.2))
+
+
+def test_a_device_that_was_never_timed_is_not_relied_on() -> None:
+    body = island({**READ, "earth_electrode_resistance_ohm": 100}, exposed_parts="separately")
+    body["residual_current_device"] = {"rated_residual_operating_current_ma": 30}
+    assert verdict_of(assess(body), "second-fault-disconnection") == "undetermined"
+    body["readings"]["residual_operating_time_ms"] = {"1": 500}
+    assert verdict_of(assess(body), "second-fault-disconnection") == "fail"
+
+
+def test_lost_earthing_leaves_the_voltage_of_the_line() -> None:
+    lost = assess(island(supply={"means_of_earthing": {"evidence": "clamp off", "state": "lost"}}))
+    assert (lost["verdict"], lost["urgency"]) == ("fail", "stop-use")
+
+
+def test_a_half_filled_form_is_no_stop_of_use() -> None:
+    for missing in ("earth_electrode_resistance_ohm", "earth_fault_loop_impedance_ohm"):
+        assert assess(island(without(missing)))["urgency"] == "planned"
+    assert assess(island(line_capacitance_to_earth_nf=None))["urgency"] == "planned"
+
+
+@pytest.mark.parametrize("decision", ["guarded", "simple"])
+@pytest.mark.parametrize("over", ["earth_electrode_resistance_ohm", "first_fault_current_ma"])
+def test_over_range_is_never_a_pass(decision: str, over: str) -> None:
+    body = island({**READ, over: {"value": 500, "bound": "above"}})
+    assert verdict_of(assess(body | {"policy": {"decision": decision}}), "first-fault") == "undetermined"
+
+
+def test_a_standing_first_fault_orders_work() -> None:
+    read = {**READ, "monitored_insulation_kohm": 0.5}
+    assert assess(island(read))["urgency"] == "planned"
+    worse = assess(island({**read, "earth_fault_loop_impedance_ohm": linked(4.0)}))
+    assert (worse["verdict"], worse["urgency"]) == ("fail", "urgent")
+
+
 def test_a_second_fault_that_is_not_cleared_fails() -> None:
-    assert verdict_of(assess(island({**READ, "earth_fault_loop_impedance_ohm": live(4.0)})), "first-fault") == "pass"
-    told = assess(island({**READ, "earth_fault_loop_impedance_ohm": live(4.0)}))
+    assert verdict_of(assess(island({**READ, "earth_fault_loop_impedance_ohm": linked(4.0)})), "first-fault") == "pass"
+    told = assess(island({**READ, "earth_fault_loop_impedance_ohm": linked(4.0)}))
     assert (told["verdict"], verdict_of(told, "second-fault-disconnection")) == ("fail", "fail")
 
 
@@ -115,6 +169,7 @@ def test_parts_that_are_earthed_separately_are_protected_as_on_tt(electrode: flo
     # IEC 60364-4-41, 411.6.4 b): R_A x I_dn <= 50 V; 50 V / 30 mA = 1667 ohm.
     body = island({**READ, "earth_electrode_resistance_ohm": electrode}, exposed_parts="separately")
     body["residual_current_device"] = {"rated_residual_operating_current_ma": 30}
+    body["readings"]["residual_operating_time_ms"] = {"1": 24}
     assert verdict_of(assess(body), "second-fault-disconnection") == verdict
     del body["residual_current_device"]
     assert verdict_of(assess(body), "second-fault-disconnection") == "undetermined"
@@ -169,10 +224,11 @@ RAISED = ("earth_electrode_resistance_ohm", "earth_fault_loop_impedance_ohm", "f
 @many
 @given(st.sampled_from(RAISED), st.floats(1.0, 100.0), s.it_supplies, st.floats(0.1, 3.0))
 def test_a_worse_reading_never_improves_a_verdict(which: str, factor: float, it: Body, loop: float) -> None:
-    body = island({**READ, "first_fault_current_ma": 40.0, "earth_fault_loop_impedance_ohm": loop})
+    body = island({**READ, "first_fault_current_ma": 40.0, "earth_fault_loop_impedance_ohm": linked(loop)})
     body["it_supply"] = it
     worse = copy.deepcopy(body)
-    worse["readings"][which] = body["readings"][which] * factor
+    told = body["readings"][which]
+    worse["readings"][which] = {**told, "value": told["value"] * factor} if isinstance(told, dict) else told * factor
     before, after = assess_many([body, worse])
     assert rank(after["verdict"]) <= rank(before["verdict"])
 

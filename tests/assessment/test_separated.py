@@ -389,3 +389,107 @@ def without_digest(body: Body) -> Body:
     told = assess(body)
     del told["provenance"]["input_digest"]
     return told
+
+
+def test_insulation_of_nothing_is_a_pole_at_earth() -> None:
+    for megohm in (0.0, 0.001):
+        answer = assess(bench({**FLOATS, "insulation_resistance_megohm": megohm}))
+        assert (answer["verdict"], answer["urgency"]) == ("fail", "stop-use")
+
+
+def test_windings_that_are_joined_do_not_separate() -> None:
+    answer = assess(bench({**FLOATS, "winding_insulation_resistance_megohm": 0}))
+    assert (answer["verdict"], answer["urgency"]) == ("fail", "stop-use")
+
+
+def test_an_unknown_voltage_lowers_no_urgency() -> None:
+    transformer = {k: v for k, v in TRANSFORMER.items() if k != "secondary_voltage_v"}
+    assert assess(bench(volts=None, transformer=transformer, pole_earthed=True))["urgency"] == "stop-use"
+    assert assess(bench(volts=None, transformer=transformer, items=[item(), item()]))["urgency"] == "stop-use"
+
+
+@pytest.mark.parametrize("ohm", [150, {"value": 1999, "bound": "above"}])
+def test_bonding_that_reads_open_is_none(ohm: Any) -> None:
+    answer = assess(bench({**FLOATS, "bonding_resistance_ohm": ohm}, items=[item(), item()], earth_contacts="bonded"))
+    assert (verdict_of(answer, "separated-items"), answer["urgency"]) == ("fail", "stop-use")
+
+
+def test_an_outlet_better_than_its_transformer_is_asked_about() -> None:
+    answer = assess(bench({**FLOATS, "line_line_loop_impedance_ohm": 0.3}))
+    assert finding(answer, "line-line-disconnection")["reason"] == "reading-contradicts-plate"
+
+
+def test_a_worse_outlet_is_counted_in_a_second_fault() -> None:
+    read = {**FLOATS, "bonding_resistance_ohm": 0.05, "line_line_loop_impedance_ohm": 9.0}
+    assert verdict_of(
+        assess(bench(read, items=[item(), item()], earth_contacts="bonded")), "second-fault-disconnection"
+    ) == ("fail")
+
+
+def test_a_device_ahead_of_the_transformer_is_credited_with_nothing() -> None:
+    body = bench(device="C20") | {"circuit": {"line_conductor": s_copper(2.5), "length_m": 5}}
+    alone = verdict_of(assess(body), "line-line-disconnection")
+    helped = assess(body | {"upstream_overcurrent_devices": [breaker("B16")]})
+    assert verdict_of(helped, "line-line-disconnection") == alone == "undetermined"
+    assert "upstream_overcurrent_devices" in {e["subject"] for e in helped["not_examined"] if e["reason"] == "not-used"}
+
+
+def test_the_network_ahead_is_asked_for_where_the_transformer_does_not_decide() -> None:
+    large = {**TRANSFORMER, "rated_power_va": 25_000, "short_circuit_voltage_percent": 4}
+    body = bench(transformer=large, device="C63")
+    assert "line-line-disconnection" in {entry["subject"] for entry in assess(body)["not_examined"]}
+    body["board"] = {"line_neutral_loop_impedance_ohm": 0.5}
+    assert finding(assess(body), "line-line-disconnection")["value"] == pytest.approx(0.5846, rel=1e-3)
+
+
+def test_wiring_whose_length_is_told_is_never_counted_as_none() -> None:
+    body = bench(wiring_length_m=400)
+    assert "line-line-disconnection" in {entry["subject"] for entry in assess(body)["not_examined"]}
+    body["circuit"] = {"line_conductor": s_copper(1.5)}
+    # 397 m beside the lead of 3 m: 2 x 397 x 12.1 mohm x 1.2 on the source of 3.174 ohm.
+    assert finding(assess(body), "line-line-disconnection")["value"] == pytest.approx(3.174 + 11.529, rel=1e-3)
+
+
+def test_earth_contacts_that_nobody_looked_at_are_asked_about() -> None:
+    assert verdict_of(assess(bench(earth_contacts=None)), "separated-items") == "undetermined"
+
+
+@pytest.mark.parametrize("volts", [(0, 0), (30, 60)])
+def test_voltages_that_cannot_be_are_asked_about(volts: tuple[float, float]) -> None:
+    read = {**FLOATS, "voltage_l1_to_earth_v": volts[0], "voltage_l2_to_earth_v": volts[1]}
+    assert finding(assess(bench(read)), "separation")["reason"] == "pole-voltages-impossible"
+
+
+def test_a_contact_that_nothing_explains_shows_no_floating() -> None:
+    answer = assess(bench({"contact_current_l1_ma": 8, "contact_current_l2_ma": 0.1}))
+    assert finding(answer, "separation")["reason"] == "contact-unexplained"
+
+
+@pytest.mark.parametrize("method", ["declared", "calculated"])
+def test_what_nobody_read_shows_nothing(method: str) -> None:
+    answer = assess(bench({"insulation_resistance_megohm": {"value": 200, "method": method}}))
+    assert verdict_of(answer, "separation") == "undetermined"
+
+
+def test_more_than_one_phase_and_clashing_plates_are_asked_about() -> None:
+    three = bench()
+    three["supply"]["phases"] = 3
+    assert finding(assess(three), "separated-voltage")["reason"] == "three-phases-not-covered"
+    clash = bench(transformer={**TRANSFORMER, "secondary_voltage_v": 115})
+    assert finding(assess(clash), "separated-voltage")["reason"] == "voltage-contradicts-plate"
+
+
+def test_extra_low_voltage_is_not_judged_and_raises_no_alarm() -> None:
+    plate = {**TRANSFORMER, "secondary_voltage_v": 24}
+    answer = assess(bench(volts=24, transformer=plate, items=[item(), item()]))
+    assert (answer["verdict"], answer["urgency"]) == ("undetermined", "planned")
+
+
+def test_of_several_capacitors_the_dangerous_one_is_told() -> None:
+    trifle, bulk = {"capacitance_uf": 0.001, "voltage_v": 61}, {"capacitance_uf": 470, "voltage_v": 325}
+    items = [item(stored=trifle), item("II", stored={**bulk, "discharge_resistance_ohm": 10_000})]
+    assert assess(bench(items=items))["quantities"]["stored_energy_j"] == pytest.approx(24.8, rel=1e-2)
+
+
+def test_nothing_on_a_separated_bench_is_to_be_earthed_again() -> None:
+    assert "reconnect-earthing" not in cautions(assess(bench()))

@@ -101,7 +101,8 @@ def greatest_length(ask: Callable[..., Body], volts: float) -> float:
 
 def contacts() -> Iterator[Comparison]:
     """Currents at which a contact is felt, is too great, and shows that a pole stands at earth."""
-    felt, great, earth = without("contact-felt"), verdict("contact-current", *MET), verdict("separation", *MET)
+    felt, great = without("contact-felt"), verdict("contact-current", *MET)
+    earth = verdict("separation", *MET, "undetermined")
     lines = (
         ("SS-TC-startle-ac", felt, 3.0),  # a contact that fails carries no condition
         ("SS-BI-perception", felt, 3.0),

@@ -32,7 +32,8 @@ def greatest_short_circuit_voltage(policy: str) -> float:
             earth_contacts="bonded",
             transformer=plate,
         )
-        return body | {"policy": {"temperature": policy}}
+        ahead = {"line_neutral_loop_impedance_ohm": exact(0.0)}
+        return body | {"policy": {"temperature": policy}, "board": ahead}
 
     return turning_point(ask, verdict(CHECK, *MET), 1.0, 90.0)
 

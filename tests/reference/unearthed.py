@@ -40,7 +40,7 @@ def bench(
     **supply: Any,
 ) -> Body:
     """A separated outlet with one item, nothing between its windings, by cold conductors unless told otherwise."""
-    plate: Body = {"rated_power_va": 1000, "primary_voltage_v": 230, "secondary_voltage_v": 230}
+    plate: Body = {"rated_power_va": 1000, "primary_voltage_v": 230, "secondary_voltage_v": volts or 230}
     plate |= {"short_circuit_voltage_percent": 6, "short_circuit_tolerance_percent": 0}
     plate |= {"interwinding_capacitance_nf": 0, **(transformer or {})}
     told: Body = {"outlets": 1, "items": [item()], "earth_contacts": "unconnected", "wiring_length_m": 0, **supply}
@@ -61,6 +61,10 @@ def insulated(readings: Body, role: str = "final", device: Body | None = None, *
     supply = {"earthing": "IT", "nominal_voltage_to_earth_v": 230, "nominal_voltage_between_lines_v": 400}
     supply |= {"phases": 3, "frequency_hz": 50, **told.get("supply", {})}
     monitor = {"fitted": True, "set_point_kohm": 50, "alarm_tested": True}
+    # A live test of the loop takes a link from the source to earth.
+    loop = readings.get("earth_fault_loop_impedance_ohm")
+    linked = {"state": "source linked to earth"}
+    readings = readings | ({"earth_fault_loop_impedance_ohm": {**loop, **linked}} if isinstance(loop, dict) else {})
     it_supply = {"neutral_distributed": False, "exposed_parts": "together", "insulation_monitor": monitor}
     return {
         "point": {"label": "outlet"},

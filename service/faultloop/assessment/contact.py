@@ -72,10 +72,11 @@ def _capacitance(g: Given, voltage: Array) -> tuple[Array, Array, Flags]:
     """
     contacts, filters = g.points.choice(Choice.EARTH_CONTACTS), g.points.number(Number.FILTERS_NF)
     cut = (contacts == EarthContacts.UNCONNECTED) | (contacts == EarthContacts.BONDED)
+    least = np.where(cut, 0.0, np.fmax(filters, g.points.number(Number.FILTERS_LEAST_NF)))
     filters = np.where(cut, 0.0, filters)
     wiring = g.points.number(Number.WIRING_M) * g.rule["separation_wiring_capacitance"]
     complete = ~np.isnan(filters + wiring + voltage) & g.known[Reading.INSULATION]
-    stated = np.nan_to_num(filters)
+    stated = np.nan_to_num(least)
     return stated, stated + np.nan_to_num(wiring), complete
 
 
@@ -91,7 +92,7 @@ def _driven(g: Given, voltage: Array, stated: Array, pole_nf: Array) -> Driven:
     poles = (stated, stated, stated, pole_nf, pole_nf)
     between, primary = number(Number.INTERWINDING_NF), number(Number.PRIMARY_V)
     # Insulation that was not read is not counted, and then nothing above the least is known.
-    insulation = np.where(g.known[Reading.INSULATION], MEGA * g.least[Reading.INSULATION], np.inf)
+    insulation = np.where(g.known[Reading.INSULATION], np.fmax(MEGA * g.least[Reading.INSULATION], 1.0), np.inf)
     capacitance = np.concatenate([pole * scale for pole, scale in zip(poles, scales, strict=True)])
     windings = (none, none, none, between, between)
     supply = SeparatedCircuit(

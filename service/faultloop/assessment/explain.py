@@ -134,14 +134,19 @@ def _contact_told(q: Quoted) -> str:
         return q.phrases["contact-solved"].format(nominal=q.number("contact_ma"))
     if q.number("joined") and q.number("contact_ma") == 1000.0 * q.number("u_sep") / q.number("body"):
         return _begun(q.phrases["contact-joined"].format_map(q))
-    read = [(pole, q.number(f"contact_{pole.lower()}")) for pole in ("L1", "L2")]
-    told = [q.phrases["contact-pole"].format(pole=pole, ma=ma) for pole, ma in read if not math.isnan(ma)]
+    read = [(pole, q.number(f"contact_{pole.lower()}"), q.number(f"above_{pole.lower()}")) for pole in ("L1", "L2")]
+    told = [
+        q.phrases["contact-pole-above" if above else "contact-pole"].format(pole=pole, ma=ma)
+        for pole, ma, above in read
+        if not math.isnan(ma)
+    ]
     parts = [q.phrases["contact-read"].format(contact_reads=", ".join(told))] if told else []
     if q.number("every_pole_read"):
         told_too = q.number("stated_nf") > 0.0 and not math.isnan(q.number("stated_ma"))
         parts += [q.phrases["contact-stated"].format_map(q)] if told_too else []
     elif not math.isnan(q.number("driven")):
-        parts.append(q.phrases["contact-driven"].format_map(q))
+        leaks = not math.isnan(q.number("insulation_least"))
+        parts.append(q.phrases["contact-driven-leaking" if leaks else "contact-driven"].format_map(q))
     if len(parts) < 2:
         return _begun(parts[0] if parts else q.phrases["contact-nothing"])
     return q.phrases["contact-and"].format(contact_one=parts[0], contact_two=parts[1])

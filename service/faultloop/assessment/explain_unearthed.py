@@ -3,7 +3,7 @@
 import numpy as np
 
 from faultloop.assessment.insulated import Insulated
-from faultloop.assessment.points import Number, Points, Reading
+from faultloop.assessment.points import Bound, Number, Points, Reading
 from faultloop.assessment.separated import Separated
 from faultloop.assessment.verdicts import Outcome
 from faultloop.electrical.measurement import Array
@@ -47,12 +47,15 @@ def _separated(points: Points, outcome: Outcome, found: Separated) -> dict[str, 
         "second_least": found.second_fault.current.least,
         "pp_least": found.pole_to_pole.current.least,
         "contact_solved": found.contact.solved.astype(np.float64),
-        "joined": found.joined.astype(np.float64),
+        "joined": found.joined.whole.astype(np.float64),
         "body": q.rule("body_dry"),
         "contact_ma": found.contact.current_ma.nominal,
         "contact_l1": value[Reading.L1_CONTACT],
         "contact_l2": value[Reading.L2_CONTACT],
+        "above_l1": (points.bound[Reading.L1_CONTACT] == Bound.ABOVE).astype(np.float64),
+        "above_l2": (points.bound[Reading.L2_CONTACT] == Bound.ABOVE).astype(np.float64),
         "every_pole_read": found.contact.every_pole_read.astype(np.float64),
+        "primary": np.where(np.isnan(number(Number.PRIMARY_V)), found.voltage, number(Number.PRIMARY_V)),
         "stated_nf": found.contact.stated_nf,
         "stated_ma": np.fmax(*found.contact.driven.stated),
         "pole_nf": found.contact.pole_nf,
@@ -62,6 +65,9 @@ def _separated(points: Points, outcome: Outcome, found: Separated) -> dict[str, 
         "l1_v": value[Reading.L1_EARTH_VOLTAGE],
         "l2_v": value[Reading.L2_EARTH_VOLTAGE],
         "insulation": insulation.nominal,
+        "winding": value[Reading.WINDING_INSULATION],
+        "plate_v": number(Number.SECONDARY_V),
+        "most_contact": q.rule("separation_contact_most"),
         "insulation_least": insulation.least,
         "class_i": found.class_i,
         "volt_metres": found.voltage * number(Number.WIRING_M),

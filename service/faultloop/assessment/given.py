@@ -9,6 +9,8 @@ from faultloop.assessment.rule_table import RuleValues
 from faultloop.assessment.tables import Tables
 from faultloop.electrical.measurement import Array, Interval, expanded_uncertainty
 
+# Supplies whose external loop is all of metal.
+METALLIC = (Earthing.UNKNOWN, Earthing.TN_S, Earthing.TN_C_S, Earthing.TN_C)
 # Dead tests of the protective conductor: over range they show it open.
 _DEAD_TESTS = [Reading.LINE_PLUS_PROTECTIVE, Reading.PROTECTIVE]
 
@@ -47,7 +49,7 @@ def given(points: Points, tables: Tables) -> Given:
     least = np.where(points.bound == Bound.BELOW, 0.0, np.maximum(points.value - u, 0.0))
     greatest = np.where(points.bound == Bound.ABOVE, np.inf, points.value + u)
     tt = points.choice(Choice.EARTHING) == Earthing.TT
-    lost = _origin_lost(points, rule, least[Reading.EXTERNAL], tt)
+    lost = _origin_lost(points, rule, least[Reading.EXTERNAL])
     return Given(
         points=points,
         tables=tables,
@@ -62,9 +64,10 @@ def given(points: Points, tables: Tables) -> Given:
     )
 
 
-def _origin_lost(points: Points, rule: RuleValues, external_least: Array, tt: Flags) -> Flags:
+def _origin_lost(points: Points, rule: RuleValues, external_least: Array) -> Flags:
     """Where the means of earthing is stated as lost, or Ze shows on a TN supply that it is."""
     read = points.bound[Reading.EXTERNAL] != Bound.MISSING
-    open_loop = ~tt & read & (external_least > rule["tn_loop"])
+    metallic = np.isin(points.choice(Choice.EARTHING), METALLIC)
+    open_loop = metallic & read & (external_least > rule["tn_loop"])
     lost: Flags = (points.choice(Choice.MEANS_OF_EARTHING) == MeansOfEarthing.LOST) | open_loop
     return lost

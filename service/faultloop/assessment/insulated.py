@@ -5,11 +5,21 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Choice, Distributed, Earthing, ExposedParts, Flags, Number, Reading
-from faultloop.assessment.policies import limit_factor
+from faultloop.assessment.points import (
+    Bound,
+    Choice,
+    Distributed,
+    Earthing,
+    ExposedParts,
+    Flags,
+    Method,
+    Number,
+    Reading,
+)
+from faultloop.assessment.policies import by_policy, limit_factor
 from faultloop.electrical.circuit_supplies import InsulatedSupply, current_to_earth
 from faultloop.electrical.fault_current import prospective_current
-from faultloop.electrical.measurement import Array, Interval
+from faultloop.electrical.measurement import Array, Interval, higher
 
 MILLI = 1e3
 
@@ -18,32 +28,33 @@ MILLI = 1e3
 class Insulated:
     """Quantities of n IT supplies; nan where unknown.
 
-    `first_fault_ma` and the touch voltage that it makes at the electrode, current of a contact with one line, and the
-    limit of the loop of a second fault.
+    The touch voltage is that of a first fault at the electrode; a second fault has the loop of one circuit, which is
+    held against half of the voltage that drives it.
     """
 
     here: Flags
     apart: Flags
     first_fault_ma: Interval
     touch_v: Interval
+    over_range: Flags
     contact_ma: Interval
+    fault_standing: Flags
+    loop_reads_earth: Flags
+    no_trip: Flags
     second_v: Array
     second_limit: Array
+    second_compared: Interval
     second_fault_a: Interval
 
 
-def insulated(g: Given, operating: Array, hot: Interval, cold: Interval) -> Insulated:
-    """Compute what the checks of n IT supplies share."""
+def insulated(g: Given, operating: Array, live: Interval, factor: Array) -> Insulated:
+    """Compute what the checks of n IT supplies share; `live` is the loop as it was read live, cold."""
     points, number = g.points, g.points.number
     here = points.choice(Choice.EARTHING) == Earthing.IT
-    apart = here & (points.choice(Choice.EXPOSED_PARTS) == ExposedParts.SEPARATELY)
     driven, read, electrode = _driven(g, here), g.reading(Reading.FIRST_FAULT), g.reading(Reading.ELECTRODE)
     # What was read and what the capacitances drive are both believed, and the higher decides.
-    current = _higher(read, driven.fault_ma)
-    touch = _higher(_product(read, electrode), driven.touch_mv)
-    # A line that is held to earth by an electrode brings no more to it than its own voltage.
-    line = g.rule["c_max"] * number(Number.VOLTAGE)
-    ends = (np.fmin(of / MILLI, line) for of in (touch.least, touch.greatest, touch.nominal))
+    touch = higher(_product(read, electrode), driven.touch_mv)
+    cold, hot, unlinked = _second_loop(g, here, live, factor)
     # Two faults share the loop: without a neutral between two lines, with one between line and neutral.
     with_neutral = points.choice(Choice.NEUTRAL_DISTRIBUTED) != Distributed.NO
     between = np.where(points.choice(Choice.PHASES) == 1, number(Number.VOLTAGE), number(Number.BETWEEN_LINES_V))
@@ -54,14 +65,57 @@ def insulated(g: Given, operating: Array, hot: Interval, cold: Interval) -> Insu
         prospective_current(g.rule["c_max"], voltage, 2.0 * cold.least),
         prospective_current(c_min, voltage, 2.0 * hot.nominal),
     )
-    limit = np.where(np.isinf(operating), np.nan, limit)
-    return Insulated(here, apart, current, Interval(*ends), driven.contact_ma, voltage, limit, second)
-
-
-def _higher(one: Interval, other: Interval) -> Interval:
-    return Interval(
-        np.fmax(one.least, other.least), np.fmax(one.greatest, other.greatest), np.fmax(one.nominal, other.nominal)
+    return Insulated(
+        here=here,
+        apart=here & (points.choice(Choice.EXPOSED_PARTS) == ExposedParts.SEPARATELY),
+        first_fault_ma=higher(read, driven.fault_ma),
+        touch_v=_capped(touch, g.rule["c_max"] * number(Number.VOLTAGE)),
+        over_range=np.isinf(read.greatest) | np.isinf(electrode.greatest),
+        contact_ma=driven.contact_ma,
+        fault_standing=here & _below_set_point(g),
+        loop_reads_earth=unlinked,
+        no_trip=here & (points.method[Reading.LOOP] == Method.NO_TRIP),
+        second_v=voltage,
+        second_limit=np.where(np.isinf(operating), np.nan, limit),
+        second_compared=by_policy(points, hot, cold),
+        second_fault_a=second,
     )
+
+
+def _capped(touch_mv: Interval, line_v: Array) -> Interval:
+    """In volts; a line that an electrode holds to earth brings no more to it than its own voltage."""
+    ends = (touch_mv.least, touch_mv.greatest, touch_mv.nominal)
+    return Interval(*(np.where(np.isnan(of), np.nan, np.fmin(of / MILLI, line_v)) for of in ends))
+
+
+def _below_set_point(g: Given) -> Flags:
+    """Where the monitor shows less than its set point, or may."""
+    shown, known = g.reading(Reading.MONITORED), g.known[Reading.MONITORED]
+    return np.asarray(known & ~(shown.least >= g.points.number(Number.SET_POINT_KOHM)), np.bool_)
+
+
+def _second_loop(g: Given, here: Flags, live: Interval, factor: Array) -> tuple[Interval, Interval, Flags]:
+    """Loop of one circuit, cold and hot, of a dead test and of a live reading with the source linked to earth.
+
+    Where nothing links the source to earth a live test between line and earth finds nothing to read: a value then
+    shows a first fault, or a link that nobody told of.
+    """
+    points, at = g.points, Reading.LINE_PLUS_PROTECTIVE
+    method, external = points.method[at], g.reading(Reading.EXTERNAL)
+    tested = here & (points.bound[at] != Bound.MISSING) & (method != Method.CALCULATED) & (method != Method.DECLARED)
+    dead, source = g.reading(at), np.nan_to_num(external.nominal)
+    linked = points.choice(Choice.LOOP_LINKED) == 1
+    read = here & linked & (points.bound[Reading.LOOP] != Bound.MISSING)
+
+    ends = ((dead.least, live.least), (dead.greatest, live.greatest), (dead.nominal, live.nominal))
+
+    def by(heat: Array) -> Interval:
+        cores = Interval(*(np.where(tested, of * heat + source, np.nan) for of, _ in ends))
+        return higher(cores, Interval(*(np.where(read, of * heat, np.nan) for _, of in ends)))
+
+    bound = points.bound[Reading.LOOP]
+    unlinked = here & ~linked & ((bound == Bound.EXACT) | (bound == Bound.BELOW))
+    return by(np.ones_like(factor)), by(factor), unlinked
 
 
 def _product(one: Interval, other: Interval) -> Interval:

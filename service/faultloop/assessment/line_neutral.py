@@ -8,7 +8,7 @@ from faultloop.assessment.given import Given
 from faultloop.assessment.loops import Fault, Loops
 from faultloop.assessment.points import Bound, Choice, Earthing, Flags, Method, Number, Reading
 from faultloop.electrical.fault_current import heated_loop
-from faultloop.electrical.measurement import Array, Interval, combined
+from faultloop.electrical.measurement import Array, Interval, combined, either
 
 
 @dataclass(frozen=True, slots=True)
@@ -19,10 +19,6 @@ class LineNeutral:
     cold: Interval
     measured: Flags
     inferred: Flags
-
-
-def _ends(interval: Interval) -> tuple[Array, Array, Array]:
-    return interval.least, interval.greatest, interval.nominal
 
 
 def line_neutral(g: Given, found: Loops, hot_loop: Interval, factor: Array) -> LineNeutral:
@@ -37,11 +33,7 @@ def line_neutral(g: Given, found: Loops, hot_loop: Interval, factor: Array) -> L
         return LineNeutral(cold, cold, measured, inferred)
     hot = heated_loop(cold, np.full(points.count, np.nan), part, part_u, factor)
     bound_hot, bound_cold = _bound(found, hot_loop, factor)
-    return LineNeutral(_either(inferred, bound_hot, hot), _either(inferred, bound_cold, cold), measured, inferred)
-
-
-def _either(first: Flags, one: Interval, other: Interval) -> Interval:
-    return Interval(*(np.where(first, a, b) for a, b in zip(_ends(one), _ends(other), strict=True)))
+    return LineNeutral(either(inferred, bound_hot, hot), either(inferred, bound_cold, cold), measured, inferred)
 
 
 def _bound(found: Loops, hot_loop: Interval, factor: Array) -> tuple[Interval, Interval]:
@@ -50,7 +42,7 @@ def _bound(found: Loops, hot_loop: Interval, factor: Array) -> tuple[Interval, I
     tested = found.expected.by_dead_test
     sum_ = Interval(np.maximum(dead - dead_u, 0.0), dead + dead_u, dead)
     hot = heated_loop(sum_, found.dead_resistance, found.external, found.external_u, factor)
-    return _from_zero(_either(tested, hot, hot_loop)), _from_zero(_either(tested, sum_, found.loop))
+    return _from_zero(either(tested, hot, hot_loop)), _from_zero(either(tested, sum_, found.loop))
 
 
 def _from_zero(bound: Interval) -> Interval:

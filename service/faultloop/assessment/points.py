@@ -138,6 +138,7 @@ class Number(Codes):
     LOAD_LOSS_W = 53
     DIELECTRIC_ASKED_V = 54
     LEADS_LEAST_OHM = 55
+    FILTERS_LEAST_NF = 56
 
 
 class Choice(Codes):
@@ -169,6 +170,7 @@ class Choice(Codes):
     MONITOR = 23
     NEUTRAL_DISTRIBUTED = 24
     EXPOSED_PARTS = 25
+    LOOP_LINKED = 26
 
 
 class Earthing(Codes):

@@ -4,17 +4,12 @@ import numpy as np
 
 from faultloop.assessment.given import Given
 from faultloop.assessment.points import Choice, Points, TemperaturePolicy
-from faultloop.electrical.measurement import Array, Interval
+from faultloop.electrical.measurement import Array, Interval, either
 
 
 def by_policy(points: Points, hot: Interval, cold: Interval) -> Interval:
     """The loop that the temperature policy sets against its limit: hot under `split`, else as read."""
-    split = points.choice(Choice.TEMPERATURE_POLICY) == TemperaturePolicy.SPLIT
-    return Interval(
-        np.where(split, hot.least, cold.least),
-        np.where(split, hot.greatest, cold.greatest),
-        np.where(split, hot.nominal, cold.nominal),
-    )
+    return either(points.choice(Choice.TEMPERATURE_POLICY) == TemperaturePolicy.SPLIT, hot, cold)
 
 
 def limit_factor(g: Given) -> Array:

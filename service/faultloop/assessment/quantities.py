@@ -121,7 +121,7 @@ def shared(points: Points, tables: Tables) -> Quantities:
     touch, touch_known = _touch(g, found, hot, factor)
     earthing = points.choice(Choice.EARTHING)
     apart = separated(g, factor) if (earthing == Earthing.SEPARATED).any() else None
-    unearthed = insulated(g, operating, hot, found.loop) if (earthing == Earthing.IT).any() else None
+    unearthed = insulated(g, operating, found.live, factor) if (earthing == Earthing.IT).any() else None
     harm = severity(g, touch, overcurrent_s, residual)
     if apart is not None:
         harm = of_separated(harm, g, apart)

@@ -61,15 +61,21 @@ def of_separated(found: Severity, g: Given, supply: Separated) -> Severity:
     Nothing interrupts a contact; two faults behind one another leave the whole voltage.
     """
     body = g.rule["body_dry"]
-    whole = supply.joined | supply.unbonded
+    # A voltage that nobody stated may be any.
+    voltage = np.where(np.isnan(supply.voltage), np.inf, supply.voltage)
+    whole = supply.joined.shown | supply.unbonded
     felt = np.nan_to_num(supply.contact.current_ma.nominal) / 1000.0 * body
-    return _without_end(found, supply.here, np.where(whole, supply.voltage, felt), supply.voltage, body)
+    # Extra-low voltage is not ordered by what it is not judged by.
+    standing = np.where(supply.extra_low, 0.0, np.where(whole, voltage, felt))
+    return _without_end(found, supply.here, standing, voltage, body)
 
 
 def of_insulated(found: Severity, g: Given, supply: Insulated) -> Severity:
     """Severity on IT supplies: what a first fault leaves on exposed parts, and behind it the whole voltage."""
-    body = g.rule["body_dry"]
-    return _without_end(found, supply.here, supply.touch_v.nominal, g.points.number(Number.VOLTAGE), body)
+    body, voltage = g.rule["body_dry"], g.points.number(Number.VOLTAGE)
+    voltage = np.where(np.isnan(voltage), np.inf, voltage)
+    standing = np.where(g.earth_lost, voltage, np.nan_to_num(supply.touch_v.nominal))
+    return _without_end(found, supply.here, standing, voltage, body)
 
 
 def _without_end(found: Severity, here: Flags, standing_v: Array, behind_v: Array, body: Array) -> Severity:

@@ -35,5 +35,9 @@ def urgency(points: Points, q: Quantities, verdict: Ints, defect: Flags, cleared
     level[(lasting & (found.as_is >= 1.0)) | standing] = Urgency.STOP_USE
     sustained = lasting & (found.body_ma > q.rule("sustained_ma")) & (found.time_s > LONGEST_ORDERED_S)
     level = np.where(sustained, np.maximum(level - 1, Urgency.STOP_USE), level)
-    level = np.where(verdict == Verdict.PASS_WITH_CONDITIONS, Urgency.NOTE, level)
+    met = np.full(points.count, Urgency.NOTE)
+    if q.insulated is not None:
+        # One barrier is gone where a first fault stands.
+        met = np.where(q.insulated.fault_standing, Urgency.PLANNED, met)
+    level = np.where(verdict == Verdict.PASS_WITH_CONDITIONS, met, level)
     return np.where(verdict == Verdict.PASS, Urgency.NONE, level)

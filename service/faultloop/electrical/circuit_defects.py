@@ -4,7 +4,7 @@ from collections.abc import Iterable, Sequence
 
 import numpy as np
 
-from faultloop.electrical.circuit_elements import Mask, Phasor
+from faultloop.electrical.circuit_elements import Phasor
 from faultloop.electrical.circuit_equations import source_terms
 from faultloop.electrical.circuit_solution import (
     CONFLICTING_SOURCES,
@@ -15,6 +15,7 @@ from faultloop.electrical.circuit_solution import (
     Equations,
     Island,
 )
+from faultloop.electrical.measurement import Mask
 
 AGREE = 1e-9  # sources whose sum is below this part of their sizes are taken to agree
 Parts = tuple[tuple[str, ...], tuple[str, ...]]

@@ -3,9 +3,10 @@
 import numpy as np
 from numpy.typing import NDArray
 
-from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, Mask, Phasor, RatioLaw, law_of
+from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, Phasor, RatioLaw, law_of
 from faultloop.electrical.circuit_equations import left_side, source_terms
 from faultloop.electrical.circuit_solution import Equations
+from faultloop.electrical.measurement import Mask
 
 BLOCK_ENTRIES = 1 << 17  # matrix entries solved at a time: about 2 MB, so that a block stays in the cache
 

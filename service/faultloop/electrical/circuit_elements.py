@@ -15,10 +15,9 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from faultloop.electrical.measurement import Array
+from faultloop.electrical.measurement import Array, Mask
 
 Phasor = NDArray[np.complex128]
-Mask = NDArray[np.bool_]
 FARADS_IN_A_NANOFARAD = 1e-9
 LEAST_RESISTANCE_OHM = 1e-300  # its reciprocal is still a number
 NOUGHT = np.zeros(1)

@@ -5,17 +5,9 @@ from typing import Any
 
 import numpy as np
 
-from faultloop.electrical.circuit_elements import (
-    NOUGHT,
-    AdmittanceLaw,
-    CurrentLaw,
-    ImpedanceLaw,
-    Law,
-    Mask,
-    Phasor,
-)
+from faultloop.electrical.circuit_elements import NOUGHT, AdmittanceLaw, CurrentLaw, ImpedanceLaw, Law, Phasor
 from faultloop.electrical.circuit_tape import ONE, WATCHED, Program
-from faultloop.electrical.measurement import Array
+from faultloop.electrical.measurement import Array, Mask
 
 ENTRIES = 1 << 18  # of the rows at a time, 4 MB: so many networks that a call costs little, few enough for the cache
 WHOLE = 8  # rows are filled up to a multiple of this: no network stands where its arithmetic is done otherwise

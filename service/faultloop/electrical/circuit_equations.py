@@ -14,12 +14,12 @@ from faultloop.electrical.circuit_elements import (
     Element,
     ImpedanceLaw,
     Law,
-    Mask,
     Phasor,
     RatioLaw,
     element_law,
 )
 from faultloop.electrical.circuit_layout import LETTERS, SOURCE, Circuit, Layout, branch_ends
+from faultloop.electrical.measurement import Mask
 
 VALUES = {kind: tuple(field.name for field in fields(kind) if field.type is not str) for kind in LETTERS}
 

@@ -5,10 +5,10 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from faultloop.electrical.circuit_elements import Law, Mask, Phasor
+from faultloop.electrical.circuit_elements import Law, Phasor
 from faultloop.electrical.circuit_islands import Kinds
 from faultloop.electrical.circuit_layout import Circuit, Layout
-from faultloop.electrical.measurement import Array
+from faultloop.electrical.measurement import Array, Mask
 
 IMPOSSIBLE_VALUE = "impossible-value"
 CONFLICTING_SOURCES = "conflicting-sources"

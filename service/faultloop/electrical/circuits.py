@@ -18,7 +18,7 @@ from faultloop.electrical.circuit_defects import (
     undetermined_parts,
 )
 from faultloop.electrical.circuit_dense import answered
-from faultloop.electrical.circuit_elements import Mask, Phasor, law_of
+from faultloop.electrical.circuit_elements import Phasor, law_of
 from faultloop.electrical.circuit_elimination import eliminated
 from faultloop.electrical.circuit_equations import circuit_laws, columns
 from faultloop.electrical.circuit_islands import OPEN, fixings
@@ -26,6 +26,7 @@ from faultloop.electrical.circuit_layout import Circuit, Layout, lay_out
 from faultloop.electrical.circuit_plan import PLANS, plan
 from faultloop.electrical.circuit_solution import Equations, Solution
 from faultloop.electrical.circuit_tape import Program
+from faultloop.electrical.measurement import Mask
 
 
 def solve(circuit: Circuit) -> Solution:

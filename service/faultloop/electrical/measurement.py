@@ -8,6 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 Array = NDArray[np.float64]
+Mask = NDArray[np.bool_]
 
 
 
@@ -18,6 +19,54 @@ class Interval:
     least: Array
     greatest: Array
     nominal: Array
+
+
+def either(first: Mask, one: Interval, other: Interval) -> Interval:
+    """One interval where a flag holds, and another elsewhere.
+
+    Parameters
+    ----------
+    first : (n,) array of bool
+        Where the first one holds.
+    one, other : Interval
+        In one unit.
+
+    Returns
+    -------
+    Interval
+        End by end.
+
+    References
+    ----------
+    .. [1] JCGM 106:2012, 3.3.4 (coverage interval).
+    """
+    return Interval(
+        np.where(first, one.least, other.least),
+        np.where(first, one.greatest, other.greatest),
+        np.where(first, one.nominal, other.nominal),
+    )
+
+
+def higher(one: Interval, other: Interval) -> Interval:
+    """The higher of two intervals at each end, where both are believed.
+
+    Parameters
+    ----------
+    one, other : Interval
+        In one unit.
+
+    Returns
+    -------
+    Interval
+        End by end; where one is unknown (nan) the other stands.
+
+    References
+    ----------
+    .. [1] JCGM 106:2012, 3.3.4 (coverage interval).
+    """
+    return Interval(
+        np.fmax(one.least, other.least), np.fmax(one.greatest, other.greatest), np.fmax(one.nominal, other.nominal)
+    )
 
 
 def expanded_uncertainty(value: Array, percent: Array, constant: Array) -> Array:

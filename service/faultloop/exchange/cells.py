@@ -35,6 +35,9 @@ _UNITS = {
 }
 
 
+_SHOWN = {"va": "VA", "nf": "nF", "kohm": "kΩ", "hz": "Hz", "percent": "%", "ma": "mA", "v": "V", "a": "A", "ka": "kA"}
+
+
 class Cell(NamedTuple):
     """What a cell says: a value with its bound, or a question that holds the row; neither when it says nothing."""
 
@@ -47,6 +50,11 @@ class Cell(NamedTuple):
 def unit_of(column: str) -> str:
     """The unit that a column's name ends in."""
     return column.rsplit("_", 1)[-1]
+
+
+def shown_unit(column: str) -> str:
+    """The column's unit as people write it."""
+    return _SHOWN.get(unit_of(column), unit_of(column))
 
 
 def same_unit(told: str, column: str) -> bool:
@@ -67,7 +75,7 @@ def read_cell(text: str, column: str, decimal: Decimal = "point", header_unit: s
     sign, whole, mark, fraction, rest = match.groups()
     if asked := _mark(mark, whole, fraction, decimal):
         return Cell(question=asked)
-    unit = unit_of(column)
+    unit = shown_unit(column)
     if rest and not same_unit(rest, column):
         return Cell(question=f"this unit or mark is not the column's ({unit}): write the number in {unit}")
     if header_unit is not None and not rest:

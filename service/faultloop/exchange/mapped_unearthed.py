@@ -20,7 +20,9 @@ from faultloop.assessment.points import (
 from faultloop.electrical.body import discharge_time
 from faultloop.exchange import requests as rq
 from faultloop.exchange import unearthed as ue
+from faultloop.exchange.fields import Reading as Reading_
 from faultloop.exchange.mapped import Mapped
+from faultloop.exchange.mapped_readings import PLAIN_READINGS
 from faultloop.rules.conductors import ohm_per_km
 
 # Taken where none is stated: the higher of the usual two drives the greater current.
@@ -40,6 +42,8 @@ _SEPARATED_READINGS = (
 _INSULATED_READINGS = ("first_fault_current_ma", "monitored_insulation_kohm")
 # What a separated supply takes of the readings that other supplies ask for.
 _ON_SEPARATED = ("insulation_resistance_megohm", "earth_fault_loop_impedance_ohm")
+# What shows that a supply floats must have been read of it.
+_TO_BE_READ = (*_SEPARATED_READINGS, "insulation_resistance_megohm")
 
 
 def put_unearthed(point: Mapped, request: rq.AssessmentRequest) -> None:
@@ -53,8 +57,9 @@ def put_unearthed(point: Mapped, request: rq.AssessmentRequest) -> None:
         point.assumptions.append("frequency")
     if supply.earthing == "separated":
         _put_separated(point, request)
-    elif request.it_supply is not None:
-        _put_insulated(point, request.it_supply)
+    else:
+        _put_loop_linked(point, request)
+        _put_insulated(point, request.it_supply or ue.InsulatedSupply())
 
 
 def unused_unearthed(request: rq.AssessmentRequest) -> list[str]:
@@ -67,6 +72,7 @@ def unused_unearthed(request: rq.AssessmentRequest) -> list[str]:
     if earthing == "separated":
         used = (*_SEPARATED_READINGS, *_ON_SEPARATED)
         found = [f"readings.{name}" for name in stated if name not in used]
+        found += ["upstream_overcurrent_devices"] if request.upstream_overcurrent_devices else []
         found += ["residual_current_device"] if request.residual_current_device is not None else []
         found += ["upstream_residual_current_devices"] if request.upstream_residual_current_devices else []
         found += ["supply.nominal_voltage_to_earth_v"] if request.supply.nominal_voltage_to_earth_v is not None else []
@@ -78,12 +84,13 @@ def unused_unearthed(request: rq.AssessmentRequest) -> list[str]:
 
 def _put_separated(point: Mapped, request: rq.AssessmentRequest) -> None:
     body, numbers, choices = request.separated_supply or ue.SeparatedSupply(), point.row.numbers, point.row.choices
+    _leave_out_what_nobody_read(point, request)
     _put_transformer(point, body.transformer)
     if request.supply.nominal_voltage_between_lines_v is None and body.transformer.secondary_voltage_v is not None:
         numbers[Number.BETWEEN_LINES_V] = body.transformer.secondary_voltage_v
     _put_dielectric(point, body.transformer)
     if request.circuit.length_m is None:
-        point.assumptions.append("wiring-none")
+        _put_wiring(point, body)
     _put(numbers, Number.OUTLETS, body.outlets)
     _put(numbers, Number.WIRING_M, body.wiring_length_m)
     if body.earth_contacts is not None:
@@ -94,6 +101,26 @@ def _put_separated(point: Mapped, request: rq.AssessmentRequest) -> None:
         _put_bonding(point, body.bonding_conductor)
     if body.items is not None:
         _put_items(point, body.items)
+
+
+def _leave_out_what_nobody_read(point: Mapped, request: rq.AssessmentRequest) -> None:
+    """A value that was declared or calculated shows nothing of the bench as it stands; it is named as not used."""
+    for name in _TO_BE_READ:
+        told = getattr(request.readings, name)
+        if isinstance(told, Reading_) and told.method in ("declared", "calculated"):
+            point.row.value[PLAIN_READINGS[name]], point.row.bound[PLAIN_READINGS[name]] = math.nan, Bound.MISSING
+            point.unused.append(f"readings.{name}")
+
+
+def _put_wiring(point: Mapped, body: ue.SeparatedSupply) -> None:
+    """What of the whole length no lead and no bonding accounts for is wiring; none of either is taken as none."""
+    leads = [item.lead.length_m for item in body.items or [] if item.lead is not None]
+    bonding = [body.bonding_conductor.length_m] if body.bonding_conductor is not None else []
+    rest = (body.wiring_length_m or 0.0) - math.fsum([*leads, *bonding])
+    if rest > 0.0:
+        point.row.numbers[Number.LENGTH_M] = rest
+    else:
+        point.assumptions.append("wiring-none")
 
 
 def _put_transformer(point: Mapped, body: ue.Transformer) -> None:
@@ -108,6 +135,8 @@ def _put_transformer(point: Mapped, body: ue.Transformer) -> None:
     _put(numbers, Number.INTERWINDING_NF, body.interwinding_capacitance_nf)
     if body.winding_insulation is not None:
         point.row.choices[Choice.WINDINGS] = _WINDINGS[body.winding_insulation]
+    if body.rated_power_va is not None and not point.row.bound[Reading.ORIGIN_LINE_NEUTRAL]:
+        point.assumptions.append("network-ahead")
     if body.short_circuit_voltage_percent is not None and body.short_circuit_tolerance_percent is None:
         point.assumptions.append("short-circuit-tolerance")
     if body.interwinding_capacitance_nf is None:
@@ -120,7 +149,9 @@ def _put_dielectric(point: Mapped, body: ue.Transformer) -> None:
     """What the windings are asked to have been tested with, by their insulation and the higher of their voltages."""
     numbers, rows = point.row.numbers, point.rules.rules.separation.dielectric
     working = np.fmax(numbers[Number.BETWEEN_LINES_V], numbers[Number.PRIMARY_V])
-    mine = [row for row in rows if row.insulation == body.winding_insulation]
+    # Insulation of an unknown kind is held to the higher figures, as its resistance is.
+    kind = body.winding_insulation or "double-or-reinforced"
+    mine = [row for row in rows if row.insulation == kind]
     held = [row.value for row in mine if row.above_v < working <= row.to_v]
     numbers[Number.DIELECTRIC_ASKED_V] = max(held, default=math.nan)
     if body.dielectric_test_v is not None and not held:
@@ -152,19 +183,29 @@ def _put_items(point: Mapped, items: list[ue.Item]) -> None:
     numbers = point.row.numbers
     exposed = [item for item in items if item.protection_class in (None, "I")]
     numbers[Number.ITEMS], numbers[Number.CLASS_I_ITEMS] = len(items), len(exposed)
-    filters = [math.nan if item.filter_capacitance_nf is None else item.filter_capacitance_nf for item in exposed]
-    numbers[Number.FILTERS_NF] = math.fsum(filters)
+    filters = [item.filter_capacitance_nf for item in exposed if item.filter_capacitance_nf is not None]
+    numbers[Number.FILTERS_LEAST_NF] = math.fsum(filters)
+    if len(filters) == len(exposed):
+        numbers[Number.FILTERS_NF] = numbers[Number.FILTERS_LEAST_NF]
     leads = [math.nan if item.lead is None else 2.0 * _core_ohm(item.lead) for item in exposed]
     known = sorted(ohm for ohm in leads if not math.isnan(ohm))
     # Two faults may lie in the two items of the longest leads; one that is not known makes the loop no shorter.
     numbers[Number.LEADS_LEAST_OHM] = math.fsum(known[-2:])
     if len(known) == len(leads):
         numbers[Number.LEADS_OHM] = numbers[Number.LEADS_LEAST_OHM]
-    if charged := [item.stored for item in items if item.stored is not None]:
-        to_v = point.rules.rules.separation.discharged.value
-        slowest = max(charged, key=lambda stored: (_discharge(stored, to_v), stored.voltage_v, stored.capacitance_uf))
-        numbers[Number.STORED_UF], numbers[Number.STORED_V] = slowest.capacitance_uf, slowest.voltage_v
-        _put(numbers, Number.DISCHARGE_OHM, slowest.discharge_resistance_ohm)
+    _put_stored(point, [item.stored for item in items if item.stored is not None])
+
+
+def _put_stored(point: Mapped, stored: list[ue.Stored]) -> None:
+    """Of what stays charged the slowest to fall, of those alike the one of most energy; a trifle does not count."""
+    limits, numbers = point.rules.rules.separation, point.row.numbers
+    let_stand = limits.charge_let_stand.value
+    charged = [of for of in stored if of.capacitance_uf * of.voltage_v > let_stand] or stored
+    if charged:
+        to_v = limits.discharged.value
+        worst = max(charged, key=lambda of: (_discharge(of, to_v), of.capacitance_uf * of.voltage_v**2, of.voltage_v))
+        numbers[Number.STORED_UF], numbers[Number.STORED_V] = worst.capacitance_uf, worst.voltage_v
+        _put(numbers, Number.DISCHARGE_OHM, worst.discharge_resistance_ohm)
 
 
 def _discharge(stored: ue.Stored, to_v: float) -> float:
@@ -172,6 +213,12 @@ def _discharge(stored: ue.Stored, to_v: float) -> float:
     resistance = math.inf if stored.discharge_resistance_ohm is None else stored.discharge_resistance_ohm
     values = (np.array([of]) for of in (stored.capacitance_uf, stored.voltage_v, resistance, to_v))
     return float(discharge_time(*values)[0])
+
+
+def _put_loop_linked(point: Mapped, request: rq.AssessmentRequest) -> None:
+    """Whether it is told in which state the loop was read: on an IT supply the source is linked to earth for it."""
+    read = request.readings.earth_fault_loop_impedance_ohm
+    point.row.choices[Choice.LOOP_LINKED] = int(isinstance(read, Reading_) and read.state is not None)
 
 
 def _put_insulated(point: Mapped, body: ue.InsulatedSupply) -> None:

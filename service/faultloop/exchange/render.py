@@ -122,9 +122,11 @@ def _said_alike(told: Texts, check: str, reason: str) -> Body | None:
 
 
 @lru_cache(maxsize=1024)
-def _cautions(language: str, named: frozenset[str]) -> list[Body]:
+def _cautions(language: str, named: frozenset[str], earthing: int) -> list[Body]:
     told = texts(language).cautions
-    held = [name for name, caution in told.items() if caution.always or name in named]
+    # On a separated supply nothing is to be joined to earth.
+    left_out = {"reconnect-earthing"} if earthing == Earthing.SEPARATED else set()
+    held = [name for name, caution in told.items() if (caution.always or name in named) and name not in left_out]
     return [{"caution": name, "text": told[name].text} for name in held]
 
 
@@ -205,7 +207,7 @@ class Renderer:
             "not_examined": not_examined,
             "not_applicable": not_applicable,
             "assumptions": self._assumptions(at, point, quoted),
-            "cautions": _cautions(self._language, frozenset(cautions)),
+            "cautions": _cautions(self._language, frozenset(cautions), earthing),
             "policy": point.policy,
             "provenance": self._provenance(point, input_digest),
         }

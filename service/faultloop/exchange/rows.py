@@ -14,6 +14,7 @@ from faultloop.exchange.unearthed_columns import (
     ITEMS,
     MONITOR,
     MONITOR_WORDS,
+    SET_POINT,
     TRUTH,
     WHOLE,
     YES_OR_NO,
@@ -182,18 +183,33 @@ def _put_unearthed(body: Body, said: Mapping[str, str], told: Told, form: Format
     """What hangs on a separated supply, an IT supply's monitor, and what is answered by yes or no."""
     for column, path in YES_OR_NO.items():
         if column in said:
-            word = CHOICES[column].get(said[column].casefold(), said[column])
-            _put(body, path, TRUTH.get(word, word))
+            if (word := CHOICES[column].get(said[column].casefold())) is None:
+                told.questions.append(_asked(column, said[column], "yes or no is expected"))
+            else:
+                _put(body, path, TRUTH[word])
     if MONITOR in said:
-        word = CHOICES[MONITOR].get(said[MONITOR].casefold(), said[MONITOR])
-        told_of: Body = MONITOR_WORDS.get(word, {"fitted": word})
-        for name, value in told_of.items():
+        if (word := CHOICES[MONITOR].get(said[MONITOR].casefold())) is None:
+            told.questions.append(_asked(MONITOR, said[MONITOR], f"{', '.join(MONITOR_WORDS)} is expected"))
+        for name, value in MONITOR_WORDS.get(word or "", {}).items():
             _put(body, ("it_supply", MONITOR, name), value)
+    elif SET_POINT in said:
+        told.questions.append(_asked(MONITOR, "", f"a set point but no monitor: {', '.join(MONITOR_WORDS)}?"))
+    for column in WHOLE:
+        if column in said and column not in ITEMS and not _whole(said[column]):
+            told.questions.append(_asked(column, said[column], "a whole number is expected"))
     cells = {name: value for name in ITEMS if (value := _plain(said, name, told, form)) is not None}
     if asked := items_fault(cells):
-        told.questions.append(_asked("items", said.get("items", ""), asked))
+        told.questions.append(_asked(asked[0], said.get(asked[0], ""), asked[1]))
     elif (items := items_of(cells)) is not None:
         _put(body, ("separated_supply", "items"), items)
+
+
+def _whole(text: str) -> bool:
+    """Whether a cell is no number at all, which is asked about elsewhere, or a whole one."""
+    try:
+        return float(text).is_integer()
+    except ValueError:
+        return True
 
 
 def _put_readings(body: Body, said: Mapping[str, str], told: Told, form: Format) -> None:
@@ -268,10 +284,12 @@ def _merged(defaults: Body, row: Body) -> Body:
 
 def _printed(body: Body, told: Told) -> Body:
     """Read the readings that are text; what says nothing is left out, what is no number is asked about."""
+    floating = _is_separated(body)
     for (part, *inner), text in list(_texts(body)):
         where = "/".join(("", part, *inner))
         column = "residual_operating_time_ms" if len(inner) > 1 else inner[0]
-        reading = _reading(read_cell(text, column), where, text, told)
+        cell = read_cell(text, column)
+        reading = None if floating and cell.over_range else _reading(cell, where, text, told)
         holder = body[part] = dict(body[part])
         for name in inner[:-1]:
             holder[name] = holder = dict(holder[name])
@@ -280,6 +298,12 @@ def _printed(body: Body, told: Told) -> Body:
         else:
             holder[inner[-1]] = reading
     return body
+
+
+def _is_separated(body: Body) -> bool:
+    """Whether a body's supply floats: between a pole and earth there is nothing to read, which is as it should be."""
+    supply = body.get("supply")
+    return isinstance(supply, dict) and supply.get("earthing") == "separated"
 
 
 def _texts(body: Body) -> Iterator[tuple[tuple[str, ...], str]]:

@@ -21,7 +21,7 @@ class Transformer(Closed):
         Annotated[float, number("V", most=1000, positive=True, description="Rated voltage of the secondary")] | None
     ) = None
     short_circuit_voltage_percent: (
-        Annotated[float, number("%", most=100, positive=True, description="Short-circuit voltage u_k")] | None
+        Annotated[float, number("%", least=0.5, most=100, description="Short-circuit voltage u_k")] | None
     ) = None
     short_circuit_tolerance_percent: (
         Annotated[float, number("%", most=100, description="Tolerance of u_k where the maker states one")] | None

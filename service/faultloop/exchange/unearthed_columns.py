@@ -25,7 +25,8 @@ UNEARTHED_NUMBERS: dict[str, Path] = {
 }
 # Of the items a file says how many there are, how many have exposed parts, and what is alike in all of these.
 ITEMS: dict[str, Path] = dict.fromkeys(
-    ("items", "class_i_items", "filter_capacitance_nf", "lead_length_m", "lead_mm2"), ("separated_supply", "items")
+    ("items_on_supply", "class_i_items_on_supply", "filter_capacitance_nf", "lead_length_m", "lead_mm2"),
+    ("separated_supply", "items"),
 )
 YES_OR_NO: dict[str, Path] = {
     "pole_earthed": ("separated_supply", "pole_earthed"),
@@ -38,33 +39,37 @@ MONITOR_WORDS: dict[str, Body] = {
     "tested": {"fitted": True, "alarm_tested": True},
 }
 TRUTH = {"yes": True, "no": False}
-WHOLE = ("phases", "outlets", "items", "class_i_items")
+WHOLE = ("phases", "outlets", "items_on_supply", "class_i_items_on_supply")
+SET_POINT = "monitor_set_point_kohm"
 OTHERS: dict[str, Path] = {**ITEMS, **YES_OR_NO, MONITOR: ("it_supply", MONITOR)}
 MOST_ITEMS = 200
 
 
 def items_of(cells: Mapping[str, float]) -> list[Body] | None:
     """The items of a row, alike in what the row says of them; None where it does not say how many."""
-    if "items" not in cells:
+    if "items_on_supply" not in cells:
         return None
-    count, exposed = int(cells["items"]), cells.get("class_i_items")
+    count, exposed = int(cells["items_on_supply"]), cells.get("class_i_items_on_supply")
     alike: Body = {}
     if "filter_capacitance_nf" in cells:
         alike["filter_capacitance_nf"] = cells["filter_capacitance_nf"]
-    if "lead_length_m" in cells and "lead_mm2" in cells:
+    if "lead_length_m" in cells:
         alike["lead"] = {"length_m": cells["lead_length_m"], "area_mm2": cells["lead_mm2"]}
     if exposed is None:
         return [alike] * count
     return [{**alike, "protection_class": "I" if at < exposed else "II"} for at in range(count)]
 
 
-def items_fault(cells: Mapping[str, float]) -> str | None:
-    """What is wrong with the numbers of items, if anything."""
-    count, exposed = cells.get("items"), cells.get("class_i_items")
+def items_fault(cells: Mapping[str, float]) -> tuple[str, str] | None:
+    """Which column of items cannot be meant, and what is expected there."""
+    count, exposed = cells.get("items_on_supply"), cells.get("class_i_items_on_supply")
     if count is None:
-        return "how many items? the other columns of items say nothing without it" if cells else None
+        return ("items_on_supply", "how many items hang on the whole supply?") if cells else None
     if not count.is_integer() or count > MOST_ITEMS:
-        return f"a whole number to {MOST_ITEMS} is expected"
+        return "items_on_supply", f"a whole number to {MOST_ITEMS} is expected"
     if exposed is not None and (not exposed.is_integer() or exposed > count):
-        return "class_i_items must be a whole number and no more than items"
+        return "class_i_items_on_supply", "a whole number is expected, no more than items_on_supply"
+    for one, other in (("lead_length_m", "lead_mm2"), ("lead_mm2", "lead_length_m")):
+        if one in cells and other not in cells:
+            return other, f"{one} says nothing of the lead without {other}"
     return None

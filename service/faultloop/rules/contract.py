@@ -81,6 +81,8 @@ BOUNDS: dict[str, Bounds] = {
     "separation.contact_most": Bounds(0, 10, True),
     "separation.contact_referenced": Bounds(0, 30, True),
     "separation.pole_at_earth": Bounds(0, 50),
+    "separation.source_decides": Bounds(0, 1000),
+    "separation.charge_let_stand": Bounds(0, 1000),
     "separation.short_circuit_tolerance": Bounds(0, 100),
     "separation.capacitance_tolerance": Bounds(0, 100),
     "separation.interwinding": Bounds(0, 1000),

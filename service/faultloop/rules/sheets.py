@@ -19,6 +19,7 @@ def _in_unit(unit: str) -> AfterValidator:
 Ratio = Annotated[Parameter, _in_unit("1")]
 Volts = Annotated[Parameter, _in_unit("V")]
 VoltMetres = Annotated[Parameter, _in_unit("V*m")]
+Microcoulombs = Annotated[Parameter, _in_unit("uC")]
 Metres = Annotated[Parameter, _in_unit("m")]
 Nanofarads = Annotated[Parameter, _in_unit("nF")]
 NanofaradsPerMetre = Annotated[Parameter, _in_unit("nF/m")]
@@ -167,6 +168,7 @@ class Separation(Sheet):
     contact_most: Milliamperes
     contact_referenced: Milliamperes
     pole_at_earth: Percent
+    source_decides: Ohms
     short_circuit_tolerance: Percent
     capacitance_tolerance: Percent
     interwinding: Nanofarads
@@ -176,6 +178,7 @@ class Separation(Sheet):
     winding_reinforced: Megohms
     dielectric: list[DielectricRow] = Field(min_length=1)
     discharged: Volts
+    charge_let_stand: Microcoulombs
     discharge_time: Seconds
 
 

@@ -22,6 +22,7 @@ Unit = Literal[
     "ohm/km",
     "m",
     "nF",
+    "uC",
     "nF/m",
     "1/K",
     "degC",

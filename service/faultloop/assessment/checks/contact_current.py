@@ -7,7 +7,7 @@ from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged
 from faultloop.assessment.points import SEPARATED, Flags, Points
 from faultloop.assessment.quantities import Quantities
 
-REASONS = (*COMPARISON, "voltage-unknown", "not-read", "not-all-known")
+REASONS = (*COMPARISON, "extra-low-voltage", "voltage-unknown", "not-read", "not-all-known")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -19,6 +19,7 @@ def _judge(_: Points, q: Quantities) -> Judged:
     assert found is not None
     current, limit = found.contact.current_ma, q.rule("separation_contact_most")
     cases = Cases(REASONS)
+    cases.when(found.extra_low & ~found.joined.shown, Standing.NOT_EXAMINED, "extra-low-voltage")
     cases.when(np.isnan(found.voltage) & np.isnan(current.nominal), Standing.UNDETERMINED, "voltage-unknown")
     open_end = np.isinf(current.greatest) & ~(current.least > limit)
     cases.when(open_end & (found.contact.pole_nf == 0.0), Standing.UNDETERMINED, "not-read")

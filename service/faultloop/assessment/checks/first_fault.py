@@ -7,7 +7,15 @@ from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
 from faultloop.assessment.points import INSULATED, Choice, Current, Flags, Points, Reading
 from faultloop.assessment.quantities import Quantities
 
-REASONS = (*COMPARISON, "direct-current-not-covered", "electrode-missing", "current-missing", "reading-over-range")
+REASONS = (
+    *COMPARISON,
+    "direct-current-not-covered",
+    "earth-lost",
+    "electrode-missing",
+    "reading-implausible",
+    "current-missing",
+    "first-fault-over-range",
+)
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -20,9 +28,13 @@ def _judge(points: Points, q: Quantities) -> Judged:
     touch, limit = found.touch_v, q.rule("touch_voltage")
     cases = Cases(REASONS)
     cases.when(points.choice(Choice.CURRENT) == Current.DC, Standing.UNDETERMINED, "direct-current-not-covered")
+    cases.when(q.given.earth_lost, Standing.UNMET, "earth-lost", defect=True)
     cases.when(~q.given.known[Reading.ELECTRODE], Standing.UNDETERMINED, "electrode-missing")
+    implausible = q.given.reading(Reading.ELECTRODE).nominal < q.rule("least_plausible")
+    cases.when(implausible, Standing.UNDETERMINED, "reading-implausible")
     cases.when(np.isnan(found.first_fault_ma.nominal), Standing.UNDETERMINED, "current-missing")
-    cases.when(np.isinf(touch.greatest) & ~(touch.least > limit), Standing.UNDETERMINED, "reading-over-range")
+    open_end = found.over_range & ~(touch.least > limit) & ~(touch.greatest <= limit)
+    cases.when(open_end, Standing.UNDETERMINED, "first-fault-over-range")
     return cases.settle(touch, limit)
 
 

@@ -24,7 +24,8 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _judge(points: Points, q: Quantities) -> Judged:
     monitor, limit = points.choice(Choice.MONITOR), points.number(Number.SET_POINT_KOHM)
     shown, known = q.given.reading(Reading.MONITORED), q.given.known[Reading.MONITORED]
-    standing = known & ~(shown.least >= limit)
+    assert q.insulated is not None
+    standing = q.insulated.fault_standing
     untested = monitor == Monitor.UNTESTED
     cases = Cases(REASONS)
     cases.when(monitor == Monitor.ABSENT, Standing.UNMET, "absent")

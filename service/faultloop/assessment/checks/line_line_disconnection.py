@@ -2,8 +2,8 @@
 
 import numpy as np
 
-from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing, Verdict, compare
-from faultloop.assessment.points import SEPARATED, Choice, Flags, Points
+from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
+from faultloop.assessment.points import SEPARATED, Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.withstand import withstands
 
@@ -13,7 +13,10 @@ REASONS = (
     "no-required-time",
     "loop-unknown",
     "device-missing",
+    "reading-implausible",
+    "reading-contradicts-plate",
     "conductor-withstands",
+    "conductor-rating",
     "reading-over-range",
     "no-guaranteed-current",
     "not-cleared-at-once",
@@ -33,13 +36,23 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(np.isnan(found.required_s), Standing.NOT_EXAMINED, "no-required-time")
     cases.when(np.isnan(loop.nominal), Standing.NOT_EXAMINED, "loop-unknown")
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
+    read = q.given.reading(Reading.LINE_LINE)
+    cases.when(read.nominal < q.rule("least_plausible"), Standing.UNDETERMINED, "reading-implausible")
+    cases.when(found.outlet_contradicts, Standing.UNDETERMINED, "reading-contradicts-plate")
+    cases.when(np.isinf(loop.greatest) & ~q.given.known[Reading.LINE_LINE], Standing.NOT_EXAMINED, "loop-unknown")
     met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
     cases.when(met, Standing.MET, "within-limit")
-    cases.when(withstands(points, current.least, current.greatest), Standing.MET, "conductor-withstands")
+    # A device ahead of the transformer sees another current, and is credited with nothing here.
+    borne = withstands(points, current.least, current.greatest, alone=True)
+    cases.when(borne, Standing.MET, "conductor-withstands")
+    rated = points.number(Number.OVERLOAD_CURRENT_A) <= points.number(Number.CARRYING_CAPACITY_A)
+    rated &= 1000.0 * points.number(Number.BREAKING_CAPACITY_KA) >= current.greatest
+    cases.when(rated & ~np.isinf(loop.greatest), Standing.MET, "conductor-rating")
     cases.when(np.isinf(loop.greatest), Standing.UNDETERMINED, "reading-over-range")
     cases.when(np.isinf(found.operating_current), Standing.UNDETERMINED, "no-guaranteed-current")
     cases.when(np.ones(points.count, np.bool_), Standing.UNDETERMINED, "not-cleared-at-once")
-    return cases.settle(loop, limit)
+    carried = rated & ~borne & ~met
+    return cases.settle(loop, limit, np.where(carried, 1 << Condition.CONDUCTOR_RATING, 0))
 
 
 CHECK = Check(

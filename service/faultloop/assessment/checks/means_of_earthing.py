@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import Choice, Flags, MeansOfEarthing, Points, Reading
+from faultloop.assessment.points import EARTHED, INSULATED, Choice, Flags, MeansOfEarthing, Points, Reading
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (*COMPARISON, "lost", "external-loop-open", "doubtful", "not-stated", "proven")
@@ -34,4 +34,5 @@ CHECK = Check(
     reasons=REASONS,
     applies=_applies,
     judge=_judge,
+    supplies=EARTHED | INSULATED,
 )

@@ -9,7 +9,9 @@ from faultloop.electrical.measurement import Interval
 
 REASONS = (
     "earth-contacts-earthed",
+    "extra-low-voltage",
     "items-unknown",
+    "earth-contacts-unknown",
     "not-bonded",
     "bonding-unknown",
     "several-bonded",
@@ -30,11 +32,14 @@ def _judge(points: Points, q: Quantities) -> Judged:
     more, single = items > 1.0, points.number(Number.OUTLETS) <= 1.0
     bonded, unknown = contacts == EarthContacts.BONDED, contacts == EarthContacts.UNKNOWN
     cases = Cases(REASONS)
-    cases.when(contacts == EarthContacts.EARTHED, Standing.UNMET, "earth-contacts-earthed")
+    cases.when(contacts == EarthContacts.EARTHED, Standing.UNMET, "earth-contacts-earthed", defect=True)
+    cases.when(found.extra_low, Standing.NOT_EXAMINED, "extra-low-voltage")
     cases.when(np.isnan(items), Standing.UNDETERMINED, "items-unknown")
     cases.when(found.unbonded, Standing.UNMET, "not-bonded", defect=True)
     cases.when(found.several & unknown, Standing.UNDETERMINED, "bonding-unknown")
     cases.when(found.several & bonded, Standing.MET, "several-bonded")
+    # Earth contacts that nobody looked at are the usual hidden way to earth.
+    cases.when(unknown & (found.class_i > 0.0), Standing.UNDETERMINED, "earth-contacts-unknown")
     cases.when(more, Standing.MET, "several-without-exposed-parts")
     cases.when(~single, Standing.MET, "one-of-several-outlets")
     cases.when(np.ones(points.count, np.bool_), Standing.MET, "one-item")

@@ -3,11 +3,19 @@
 import numpy as np
 
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Choice, Current, Flags, Points
+from faultloop.assessment.points import SEPARATED, Choice, Current, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = ("within-limit", "over-limit", "voltage-unknown", "direct-current-not-covered")
+REASONS = (
+    "within-limit",
+    "over-limit",
+    "voltage-unknown",
+    "direct-current-not-covered",
+    "three-phases-not-covered",
+    "voltage-contradicts-plate",
+    "extra-low-voltage",
+)
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -20,7 +28,12 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases = Cases(REASONS)
     limit = q.rule("separation_voltage")
     cases.when(points.choice(Choice.CURRENT) == Current.DC, Standing.UNDETERMINED, "direct-current-not-covered")
+    cases.when(points.choice(Choice.PHASES) > 1, Standing.UNDETERMINED, "three-phases-not-covered")
     cases.when(np.isnan(found.voltage), Standing.UNDETERMINED, "voltage-unknown")
+    plate = points.number(Number.SECONDARY_V)
+    apart = np.abs(found.voltage - plate) > plate * q.rule("voltage_tolerance") / 100.0
+    cases.when(apart, Standing.UNDETERMINED, "voltage-contradicts-plate")
+    cases.when(found.extra_low, Standing.UNDETERMINED, "extra-low-voltage")
     cases.when(found.voltage <= limit, Standing.MET, "within-limit")
     cases.when(found.voltage > limit, Standing.UNMET, "over-limit")
     return cases.settle(Interval(found.voltage, found.voltage, found.voltage), limit)

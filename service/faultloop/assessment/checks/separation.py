@@ -3,17 +3,23 @@
 import numpy as np
 
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Bound, Choice, Flags, Points, Reading, Reference
+from faultloop.assessment.points import SEPARATED, Choice, Flags, Points, Reading, Reference
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (
+    "contact-shows-none",
     "pole-earthed",
     "contact-shows-earth",
     "pole-at-earth",
     "loop-reads-earth",
+    "insulation-shows-earth",
+    "windings-joined",
     "floats-by-solution",
-    "contact-shows-none",
+    "extra-low-voltage",
+    "pole-voltages-impossible",
+    "contact-unexplained",
     "insulation-shows-none",
+    "insulation-not-enough",
     "pole-voltages-alone",
     "not-shown",
 )
@@ -26,23 +32,35 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _judge(points: Points, q: Quantities) -> Judged:
     found = q.separated
     assert found is not None
-    contact, reference, known = found.contact, points.choice(Choice.REFERENCE), q.given.known
-    insulation, limit = q.given.reading(Reading.INSULATION), q.rule("separation_contact_referenced")
+    contact, reference, joined = found.contact, points.choice(Choice.REFERENCE), found.joined
+    limit, most = q.rule("separation_contact_referenced"), q.rule("separation_contact_most")
     cases = Cases(REASONS)
     cases.when(reference == Reference.EARTHED, Standing.UNMET, "pole-earthed", defect=True)
-    cases.when(found.pole_at_earth, Standing.UNMET, "pole-at-earth", defect=True)
-    # Between a pole and earth of a floating supply a loop tester finds nothing to read.
-    loop_read = points.bound[Reading.LOOP] == Bound.EXACT
-    cases.when(loop_read, Standing.UNMET, "loop-reads-earth", defect=True)
-    cases.when(contact.current_ma.least > limit, Standing.UNMET, "contact-shows-earth", defect=True)
+    cases.when(joined.pole_at_earth, Standing.UNMET, "pole-at-earth", defect=True)
+    cases.when(joined.by_loop, Standing.UNMET, "loop-reads-earth", defect=True)
+    cases.when(joined.by_insulation, Standing.UNMET, "insulation-shows-earth", defect=True)
+    cases.when(joined.by_windings, Standing.UNMET, "windings-joined", defect=True)
+    cases.when(joined.shown, Standing.UNMET, "contact-shows-earth", defect=True)
     cases.when(contact.solved & (reference == Reference.FLOATING), Standing.MET, "floats-by-solution")
-    cases.when(contact.every_pole_read & (contact.current_ma.greatest <= limit), Standing.MET, "contact-shows-none")
+    cases.when(found.extra_low, Standing.NOT_EXAMINED, "extra-low-voltage")
+    cases.when(_impossible(q), Standing.UNDETERMINED, "pole-voltages-impossible")
+    cases.when(contact.every_pole_read & (contact.current_ma.greatest <= most), Standing.MET, "contact-shows-none")
+    cases.when(contact.every_pole_read, Standing.UNDETERMINED, "contact-unexplained")
+    insulation, known = q.given.reading(Reading.INSULATION), q.given.known
     cases.when(insulation.least >= q.rule("insulation"), Standing.MET, "insulation-shows-none")
+    cases.when(known[Reading.INSULATION], Standing.UNDETERMINED, "insulation-not-enough")
     voltages = known[Reading.L1_EARTH_VOLTAGE] | known[Reading.L2_EARTH_VOLTAGE]
     cases.when(voltages, Standing.UNDETERMINED, "pole-voltages-alone")
     cases.when(np.ones(points.count, np.bool_), Standing.UNDETERMINED, "not-shown")
-    bits = np.full(points.count, 1 << Condition.BENCH_AS_IT_STANDS)
-    return cases.settle(contact.current_ma, limit, bits)
+    return cases.settle(contact.current_ma, limit, np.full(points.count, 1 << Condition.BENCH_AS_IT_STANDS))
+
+
+def _impossible(q: Quantities) -> Flags:
+    """Where two poles read less to earth than lies between them."""
+    assert q.separated is not None
+    sides = q.given.reading(Reading.L1_EARTH_VOLTAGE).greatest + q.given.reading(Reading.L2_EARTH_VOLTAGE).greatest
+    least = q.separated.voltage * (100.0 - q.rule("voltage_tolerance")) / 100.0
+    return np.asarray(sides < least, np.bool_)
 
 
 CHECK = Check(

@@ -3,18 +3,18 @@
 import numpy as np
 
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Flags, Points
+from faultloop.assessment.points import SEPARATED, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = ("quick", "discharge-unknown", "not-stated", "slow")
+REASONS = ("quick", "discharge-unknown", "not-stated", "slow", "below")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
     return np.ones(points.count, dtype=np.bool_)
 
 
-def _judge(_: Points, q: Quantities) -> Judged:
+def _judge(points: Points, q: Quantities) -> Judged:
     found = q.separated
     assert found is not None
     time, limit = found.discharge_s, q.rule("separation_discharge_time")
@@ -22,6 +22,8 @@ def _judge(_: Points, q: Quantities) -> Judged:
     cases.when(np.isnan(found.stored_j), Standing.NOT_EXAMINED, "not-stated")
     if cases.settle_everything():
         return cases.settle_unvalued()
+    below = points.number(Number.STORED_V) <= q.rule("separation_discharged")
+    cases.when(below, Standing.MET, "below")
     cases.when(np.isnan(time) | np.isinf(time), Standing.UNDETERMINED, "discharge-unknown")
     cases.when(time > limit, Standing.MET, "slow")
     cases.when(time <= limit, Standing.MET, "quick")

@@ -7,7 +7,14 @@ from faultloop.assessment.judged import AT_LEAST, Cases, Check, Judged, Standing
 from faultloop.assessment.points import SEPARATED, Choice, Flags, Number, Points, Reading, Windings
 from faultloop.assessment.quantities import Quantities
 
-REASONS = (*COMPARISON, "dielectric-low", "not-measured", "beyond-instruments", "over-range-below-limit")
+REASONS = (
+    *COMPARISON,
+    "windings-joined",
+    "dielectric-low",
+    "not-measured",
+    "beyond-instruments",
+    "over-range-below-limit",
+)
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -21,7 +28,9 @@ def _judge(points: Points, q: Quantities) -> Judged:
     read = q.given.reading(Reading.WINDING_INSULATION)
     cases = Cases(REASONS)
     low = points.number(Number.DIELECTRIC_V) < points.number(Number.DIELECTRIC_ASKED_V)
-    cases.when(low, Standing.UNMET, "dielectric-low")
+    assert q.separated is not None
+    cases.when(q.separated.joined.by_windings, Standing.UNMET, "windings-joined", defect=True)
+    cases.when(low, Standing.UNDETERMINED, "dielectric-low")
     cases.when(~q.given.known[Reading.WINDING_INSULATION], Standing.NOT_EXAMINED, "not-measured")
     cases.when(read.nominal > q.rule("greatest_insulation"), Standing.UNDETERMINED, "beyond-instruments")
     open_end = np.isinf(read.greatest) & (read.least < limit)
