@@ -1,0 +1,193 @@
+"""All states of a bench solved at once: potentials, ties to earth, contact currents, currents of the sources."""
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import NDArray
+
+from faultloop.assessment.benches.contacts import Contact, usual_contacts, worked_at
+from faultloop.assessment.benches.network import EARTH, Bench, Link, node_names
+from faultloop.assessment.benches.states import UNPLUGGED, States, states_of
+from faultloop.assessment.benches.typical import typical
+from faultloop.assessment.benches.wires import Variant, Wire, meanings, present, wires_of
+from faultloop.electrical.circuit_elements import Mask, Phasor
+from faultloop.electrical.measurement import Array
+from faultloop.electrical.wirings import EARTH as EARTH_NODE
+from faultloop.electrical.wirings import Branches, Places, Wired, contact, nearest_path, solve_wirings
+
+
+@dataclass(frozen=True, slots=True)
+class Ends:
+    """Least, nominal and greatest magnitude over all that is not known, (...,) each."""
+
+    least: Array
+    nominal: Array
+    greatest: Array
+
+
+@dataclass(frozen=True)
+class SolvedBench:
+    """A bench with all its states solved; rows of `wired` are states by variants, state first."""
+
+    bench: Bench
+    states: States
+    variants: tuple[Variant, ...]
+    nodes: dict[str, int]
+    wires: list[Wire]
+    wire_of: Places
+    branches: Branches
+    wired: Wired
+    path_ohm: Array
+    following: Places
+    body_ohm: float
+
+    @property
+    def count(self) -> int:
+        """Number of states."""
+        return len(self.states.every)
+
+    def ends(self, phasor: Phasor) -> Ends:
+        """Ends over the variants of something found for every row, (states·variants, ...)."""
+        size = np.abs(phasor).reshape(self.count, len(self.variants), *phasor.shape[1:])
+        nominal = next(at for at, variant in enumerate(self.variants) if variant.level == "nominal")
+        return Ends(size.min(axis=1), size[:, nominal], size.max(axis=1))
+
+    @cached_property
+    def meanings(self) -> dict[str, tuple[int, tuple[str, ...]]]:
+        """What the poles of items are, by place."""
+        return meanings(self.bench)
+
+    def node(self, name: str) -> Places:
+        """Place of a name in every state, (states,)."""
+        if name not in self.meanings:
+            return np.full(self.count, self.nodes[name])
+        item, names = self.meanings[name]
+        # A place that no state takes has no node.
+        by_place = np.array([self.nodes.get(of, EARTH_NODE) for of in names])
+        picked: Places = by_place[self.places[:, item]]
+        return picked
+
+    @cached_property
+    def places(self) -> Places:
+        """Where every item stands, (states, items)."""
+        return self.states.column("places")
+
+    def rows(self, of_states: Places) -> Places:
+        """The same for every row."""
+        return np.repeat(of_states, len(self.variants), axis=0)
+
+    def touched(self, contacts: list[Contact]) -> tuple[Ends, Ends]:
+        """Voltage [V] before and current [A] through a body at each contact, (states, contacts)."""
+        one, other = (
+            np.stack([self.node(name) for name in names], axis=1)
+            for names in ([c.one for c in contacts], [c.other for c in contacts])
+        )
+        voltage, current = contact(self.wired, self.rows(one), self.rows(other), self.body_ohm)
+        return self.ends(voltage), self.ends(current)
+
+    def through_link(self, link: Link, state: int) -> Ends:
+        """Current [A] that a link would carry if it were made in a state, (states,)."""
+        least = typical().joined_directly.usual
+        told = {"low": link.ohm.greatest, "nominal": link.ohm.nominal, "high": link.ohm.least}
+        ohm = np.array([max(told[variant.level], least) for variant in self.variants])
+        one, other = (self.rows(self.node(name))[:, None] for name in (link.one, link.other))
+        _, current = contact(self.wired, one, other, np.tile(ohm, self.count)[:, None])
+        ends = self.ends(current[:, 0])
+        return Ends(ends.least[state], ends.nominal[state], ends.greatest[state])
+
+    @cached_property
+    def tied(self) -> Mask:
+        """Whether a node has a way to earth that ties it, in any variant, (states, nodes)."""
+        least = self.path_ohm.reshape(self.count, len(self.variants), -1).min(axis=1)
+        return np.asarray(least < typical().tie_below.usual, np.bool_)
+
+    @cached_property
+    def floats(self) -> Mask:
+        """Whether every pole that is to float has no tie to earth, (states,)."""
+        separated = [supply for supply in self.bench.supplies if supply.kind == "separated"]
+        names = [name for supply in separated for name in (supply.l1, supply.l2)]
+        where = np.arange(self.count)
+        tied = [self.tied[where, self.node(name)] for name in names]
+        for one in (touched.one for touched in worked_at(self.bench)):
+            plugged = self.places[:, self.meanings[one][0]] != UNPLUGGED
+            tied.append(self.tied[where, self.node(one)] & plugged)
+        return np.asarray(~np.logical_or.reduce(tied), np.bool_) if tied else np.ones(self.count, np.bool_)
+
+    @cached_property
+    def singles(self) -> list[Contact]:
+        """Contacts of one hand, of poles and of accessible parts."""
+        return [*(c for c in usual_contacts(self.bench) if c.single), *worked_at(self.bench)]
+
+    @cached_property
+    def single_currents(self) -> Ends:
+        """Their currents [A], (states, contacts)."""
+        return self.touched(self.singles)[1]
+
+    def branch_current(self) -> Phasor:
+        """Current of every branch from plus to minus [A], (k,)."""
+        b, v = self.branches, self.wired.potential_v
+        return b.admittance * (v[b.network, b.plus] - v[b.network, b.minus] - b.emf)
+
+    def summed(self, current: Phasor, wires: list[int], signs: list[float]) -> Ends:
+        """Ends of a sum of some wires' currents in every state, (states,)."""
+        sign = np.zeros(len(self.wires))
+        sign[wires] = signs
+        total = np.zeros(self.count * len(self.variants), np.complex128)
+        np.add.at(total, self.branches.network, sign[self.wire_of] * current)
+        return self.ends(total)
+
+
+def variants_of(bench: Bench) -> tuple[Variant, ...]:
+    """What has to be solved beside the nominal: both ends of all that is not known, and the primary poled either way."""
+    spans = [span for supply in bench.supplies for span in (supply.source_ohm, supply.cable_nf, supply.interwinding_nf)]
+    spans += [s for item in bench.items for s in (item.filter_nf, item.ground_ohm, item.ground_nf, item.chassis_ohm)]
+    spans += [item.load_ohm for item in bench.items] + [link.ohm for link in bench.all_links]
+    levels = ["nominal"] + (["low", "high"] if any(span is not None and span.open for span in spans) else [])
+    poled = any(s.interwinding_nf is not None and s.interwinding_nf.greatest > 0 and not s.screen for s in bench.supplies)
+    return tuple(Variant(level, turned) for turned in ((False, True) if poled else (False,)) for level in levels)
+
+
+def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
+    """Solve a bench in all its states; the order of its parts is of no account."""
+    bench = bench.in_order()
+    states, variants = states_of(bench), variants_of(bench)
+    wires = wires_of(bench, variants)
+    columns = {what: states.column(what) for what in ("places", "links", "bonding")}
+    there = present(wires, columns, len(states.every))
+    used = there.any(axis=0)
+    wires, there = [wire for wire, kept in zip(wires, used, strict=True) if kept], there[:, used]
+    nodes = _nodes(bench, states, wires)
+    branches, wire_of = _branches(wires, there, nodes, len(variants))
+    rows = len(states.every) * len(variants)
+    wired = solve_wirings(rows, len(nodes), branches)
+    conductive = np.array([wire.conductive for wire in wires], np.bool_)[wire_of]
+    weight = np.where(conductive, 1.0 / np.abs(branches.admittance), np.inf)
+    path_ohm, following = nearest_path(rows, len(nodes), branches, weight)
+    return SolvedBench(
+        bench, states, variants, nodes, wires, wire_of, branches, wired, path_ohm, following, body_ohm
+    )  # fmt: skip
+
+
+def _nodes(bench: Bench, states: States, wires: list[Wire]) -> dict[str, int]:
+    """Place of every node, earth first: what wires end at, and what no wire ends at in any state."""
+    names = {end for wire in wires for end in (wire.plus, wire.minus)} | set(node_names(bench))
+    told = meanings(bench)
+    used = {nodes[place] for at, nodes in told.values() for place in {state.places[at] for state in states.every}}
+    return {name: at for at, name in enumerate([EARTH, *sorted((names - set(told)) - {EARTH} | used)])}
+
+
+def _branches(
+    wires: list[Wire], there: NDArray[np.bool_], nodes: dict[str, int], variants: int
+) -> tuple[Branches, Places]:
+    """The wires of every row as branches; what is zero in a variant is no branch of it."""
+    siemens = np.array([wire.siemens for wire in wires], np.complex128)
+    state, wire = np.nonzero(there)
+    row = (state[:, None] * variants + np.arange(variants)).ravel()
+    wire_of = np.repeat(wire, variants)
+    admittance = siemens[wire].ravel()
+    kept = admittance != 0.0
+    row, wire_of, admittance = row[kept], wire_of[kept], admittance[kept]
+    plus, minus = (np.array([nodes[getattr(w, end)] for w in wires])[wire_of] for end in ("plus", "minus"))
+    emf = np.array([wire.emf_v for wire in wires], np.complex128)[wire_of]
+    return Branches(row, plus, minus, admittance, emf), wire_of
