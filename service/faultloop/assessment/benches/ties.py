@@ -38,7 +38,10 @@ class Ties:
         self._solved, self._state = solved, state
         count = len(solved.variants)
         mine = solved.path_ohm[state * count : (state + 1) * count]
-        self._row = state * count + int(np.argmin(np.where(np.isinf(mine), np.finfo(float).max, mine).sum(axis=1)))
+        reached = np.isfinite(mine)
+        # The variant that joins most nodes to earth, and these by the least resistance.
+        told = list(zip(-reached.sum(axis=1), np.where(reached, mine, 0.0).sum(axis=1), strict=True))
+        self._row = state * count + told.index(min(told))
         self._names = {at: name for name, at in solved.nodes.items()}
         branches = solved.branches
         self._mine = np.flatnonzero(branches.network == self._row)

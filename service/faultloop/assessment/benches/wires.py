@@ -76,6 +76,10 @@ class Wiring:
         ends = {"low": span.greatest, "nominal": span.nominal, "high": span.least}
         return tuple(complex(1.0 / max(ends[variant.level], least)) for variant in self.variants)
 
+    def reactance(self, span: Span) -> tuple[complex, ...]:
+        """Admittance of a transformer's impedance in each variant, taken as leakage alone: no contact is made smaller."""
+        return tuple(-1j * y for y in self.resistance(span))
+
     def capacitance(self, span: Span, share: float = 1.0) -> tuple[complex, ...]:
         """Admittance of a capacitance in each variant."""
         ends = {"low": span.least, "nominal": span.nominal, "high": span.greatest}
@@ -129,6 +133,7 @@ def _put_supply(wiring: Wiring, supply: Supply, *holds: Holds) -> None:
         # Half of the loop lies in the neutral (common practice).
         wiring.put("neutral", supply.id, supply.l2, EARTH, tuple(2.0 * y for y in source), *holds)
         return
+    source = wiring.reactance(supply.source_ohm) if supply.kind == "separated" else source
     wiring.put("source", supply.id, supply.l1, supply.l2, source, *holds, emf=supply.voltage_v)
     if supply.cable_nf is not None:
         for pole in (supply.l1, supply.l2):
