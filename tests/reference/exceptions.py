@@ -69,6 +69,15 @@ UNUSED: dict[str, dict[str, str]] = {
         "RT-UK-0017": "of a superseded standard (BS 4293)",
         "RT-A-": "pulsating direct current is not judged yet",
     },
+    "separation": {
+        "SS-413-": "separated circuits are not judged yet",
+        "SS-IT-": "IT is not judged yet",
+        "SS-TR-": "isolating transformers are not judged yet",
+        "SS-TC-": "touch current is not judged yet",
+        "SS-BI-": "body current of separated circuits is not judged yet",
+        "SS-SE-": "stored energy is not judged yet",
+        "SS-WE-": "no check of separated circuits compares its figures yet",
+    },
     "worked_examples": {
         "WE-05": "a rule of thumb of three quarters",
         "WE-07": "a longest length, rounded up by its source",

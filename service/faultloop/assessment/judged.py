@@ -6,7 +6,7 @@ from functools import lru_cache
 
 import numpy as np
 
-from faultloop.assessment.points import Codes, Decision, Flags, Ints, Points
+from faultloop.assessment.points import EARTHED, Codes, Decision, Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.standing import Standing, Verdict, compare
 from faultloop.electrical.measurement import Array, Interval
@@ -26,6 +26,12 @@ class Condition(Codes):
     CONDUCTOR_RATING = 4
     BACK_UP_DOCUMENTED = 5
     INSTRUMENT_CHECKED = 6
+    BENCH_AS_IT_STANDS = 7
+    ONE_ITEM_AT_A_TIME = 8
+    CONTACT_FELT = 9
+    DISCHARGED_FIRST = 10
+    FIRST_FAULT_CLEARED = 11
+    MONITOR_TESTED = 12
 
 
 @lru_cache(maxsize=64)
@@ -80,6 +86,12 @@ class Judged:
     conditions: Ints
 
 
+def unjudged(count: int) -> Judged:
+    """Of a check that concerns none of n points: nothing."""
+    nothing = np.full(count, np.nan)
+    return Judged(Interval(nothing, nothing, nothing), nothing, Cases(()), np.zeros(count, np.int64))
+
+
 @dataclass(frozen=True, slots=True)
 class Settled:
     """Every check's cases drawn together, (K, n) each.
@@ -103,9 +115,9 @@ def _layout(counts: tuple[int, ...]) -> tuple[Ints, Ints]:
     return rows, starts[:, None]
 
 
-def settled(checks: list[Cases]) -> Settled:
-    """Settle all checks at once: one look for the first case that holds, whatever the number of checks."""
-    always = np.ones_like(checks[0].holds[0])
+def settled(checks: list[Cases], count: int) -> Settled:
+    """Settle all checks at n points: one look for the first case that holds, whatever the number of checks."""
+    always = np.ones(count, np.bool_)
     holds = np.array([flags for cases in checks for flags in (*cases.holds, always)])
     rows, starts = _layout(tuple(len(cases.holds) for cases in checks))
     first = starts + holds[rows].argmax(axis=1)
@@ -120,7 +132,7 @@ def settled(checks: list[Cases]) -> Settled:
 
 @dataclass(frozen=True, slots=True)
 class Check:
-    """A check: what it is called, what it measures, how it reasons.
+    """A check: what it is called, what it measures, how it reasons, and which supplies it is for.
 
     The first three reasons are those of a comparison: met, limit inside the uncertainty, not met.
     """
@@ -134,3 +146,4 @@ class Check:
     judge: Callable[[Points, Quantities], Judged]
     group: str | None = None
     report: bool = False
+    supplies: frozenset[int] = EARTHED

@@ -48,6 +48,15 @@ class Reading(Codes):
     VOLTAGE = 14
     NEUTRAL_EARTH_VOLTAGE = 15
     OPERATING_CURRENT = 16
+    L1_EARTH_VOLTAGE = 17
+    L2_EARTH_VOLTAGE = 18
+    L1_CONTACT = 19
+    L2_CONTACT = 20
+    WINDING_INSULATION = 21
+    BONDING = 22
+    LINE_LINE = 23
+    FIRST_FAULT = 24
+    MONITORED = 25
 
 
 class Bound(Codes):
@@ -104,6 +113,27 @@ class Number(Codes):
     COMBINATION_TO_KA = 28
     ZERO_EXCESS = 29
     OVERLOAD_CURRENT_A = 30
+    FREQUENCY_HZ = 31
+    TRANSFORMER_VA = 32
+    SHORT_CIRCUIT_PERCENT = 33
+    SHORT_CIRCUIT_TOLERANCE = 34
+    PRIMARY_V = 35
+    DIELECTRIC_V = 36
+    INTERWINDING_NF = 37
+    OUTLETS = 38
+    ITEMS = 39
+    CLASS_I_ITEMS = 40
+    WIRING_M = 41
+    FILTERS_NF = 42
+    LEADS_OHM = 43
+    STORED_UF = 44
+    STORED_V = 45
+    DISCHARGE_OHM = 46
+    CONTACT_LEAST_MA = 47
+    CONTACT_MA = 48
+    CONTACT_GREATEST_MA = 49
+    LINE_EARTH_NF = 50
+    SET_POINT_KOHM = 51
 
 
 class Choice(Codes):
@@ -128,6 +158,13 @@ class Choice(Codes):
     MULTIPOLE = 16
     LET_THROUGH = 17
     CALIBRATION_LAPSED = 18
+    PHASES = 19
+    EARTH_CONTACTS = 20
+    REFERENCE = 21
+    WINDINGS = 22
+    MONITOR = 23
+    NEUTRAL_DISTRIBUTED = 24
+    EXPOSED_PARTS = 25
 
 
 class Earthing(Codes):
@@ -210,6 +247,56 @@ class MeansOfEarthing(Codes):
     LOST = 3
 
 
+class EarthContacts(Codes):
+    """What the earth contacts of a separated supply's outlets are joined to."""
+
+    UNKNOWN = 0
+    UNCONNECTED = 1
+    BONDED = 2
+    EARTHED = 3
+
+
+class Reference(Codes):
+    """Whether a live part of a separated supply is known to be joined to earth."""
+
+    UNKNOWN = 0
+    FLOATING = 1
+    EARTHED = 2
+
+
+class Windings(Codes):
+    """Insulation between the windings of a separating transformer."""
+
+    UNKNOWN = 0
+    BASIC = 1
+    REINFORCED = 2
+
+
+class Monitor(Codes):
+    """What is known of an IT supply's insulation monitor."""
+
+    UNKNOWN = 0
+    ABSENT = 1
+    UNTESTED = 2
+    TESTED = 3
+
+
+class Distributed(Codes):
+    """Whether an IT supply's neutral goes along to the outlets."""
+
+    UNKNOWN = 0
+    YES = 1
+    NO = 2
+
+
+class ExposedParts(Codes):
+    """How the exposed parts of an IT supply are earthed."""
+
+    UNKNOWN = 0
+    TOGETHER = 1
+    SEPARATELY = 2
+
+
 class Current(Codes):
     """Kind of current."""
 
@@ -217,6 +304,10 @@ class Current(Codes):
     DC = 1
 
 
+# Supplies by how a fault to earth behaves: on the first an earth fault current flows and is cleared.
+EARTHED = frozenset((Earthing.UNKNOWN, Earthing.TN_S, Earthing.TN_C_S, Earthing.TN_C, Earthing.TT))
+INSULATED = frozenset((Earthing.IT,))
+SEPARATED = frozenset((Earthing.SEPARATED,))
 # Row of a compiled table of devices that stands for no device: its last.
 NO_DEVICE = -1
 READINGS, NUMBERS, CHOICES = len(Reading.codes()), len(Number.codes()), len(Choice.codes())

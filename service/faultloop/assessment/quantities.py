@@ -5,6 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.given import Given, given
+from faultloop.assessment.insulated import Insulated, insulated
 from faultloop.assessment.let_through import LetThroughEnergy, let_through
 from faultloop.assessment.line_neutral import LineNeutral, line_neutral
 from faultloop.assessment.loops import Basis, Loops, loops
@@ -24,7 +25,8 @@ from faultloop.assessment.points import (
 from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
 from faultloop.assessment.series import Upstream, greatest_time, least_time, quickest_upstream
-from faultloop.assessment.severity import Severity, severity
+from faultloop.assessment.separated import Separated, separated
+from faultloop.assessment.severity import Severity, of_insulated, of_separated, severity
 from faultloop.assessment.standing import Verdict, compare
 from faultloop.assessment.tables import Tables
 from faultloop.electrical.body import touch_voltage
@@ -33,6 +35,7 @@ from faultloop.electrical.fault_current import heated_loop, prospective_current
 from faultloop.electrical.measurement import Array, Interval
 
 AT_MOST = np.array(1)
+COVERED = (Earthing.TN_S, Earthing.TN_C_S, Earthing.TT, Earthing.IT)
 # Nominal voltages are rounded: 230/400 V is not quite the square root of three.
 SYSTEM_RATIO_TOLERANCE = 0.1
 
@@ -73,6 +76,8 @@ class Quantities:
     electrode: Interval
     touch_v: Array
     touch_known: Flags
+    separated: Separated | None
+    insulated: Insulated | None
 
     @property
     def cleared_upstream(self) -> Flags:
@@ -114,6 +119,14 @@ def shared(points: Points, tables: Tables) -> Quantities:
     # A no-trip reading never fails alone within what its method can add, whatever the decision rule.
     undecided = (found.basis == Basis.NO_TRIP) & (overcurrent == Verdict.FAIL) & (compared.least <= limit)
     touch, touch_known = _touch(g, found, hot, factor)
+    earthing = points.choice(Choice.EARTHING)
+    apart = separated(g, factor) if (earthing == Earthing.SEPARATED).any() else None
+    unearthed = insulated(g, operating) if (earthing == Earthing.IT).any() else None
+    harm = severity(g, touch, overcurrent_s, residual)
+    if apart is not None:
+        harm = of_separated(harm, g, apart)
+    if unearthed is not None:
+        harm = of_insulated(harm, g, unearthed)
     return Quantities(
         given=g,
         wanting=_wanting(g, required),
@@ -130,18 +143,20 @@ def shared(points: Points, tables: Tables) -> Quantities:
         current=current,
         overcurrent_s=overcurrent_s,
         residual=residual,
-        severity=severity(g, touch, overcurrent_s, residual),
+        severity=harm,
         line_neutral=line_neutral(g, found, hot, factor),
         let_through=let_through(g, current),
         electrode=_electrode(g, found),
         touch_v=touch,
         touch_known=touch_known,
+        separated=apart,
+        insulated=unearthed,
     )
 
 
 def _wanting(g: Given, required: Array) -> Ints:
     points, earthing = g.points, g.points.choice(Choice.EARTHING)
-    covered = (earthing == Earthing.TN_S) | (earthing == Earthing.TN_C_S) | (earthing == Earthing.TT)
+    covered = np.isin(earthing, COVERED)
     rows = g.rule.table.nominal[points.choice(Choice.RULES)]
     nominal = (points.number(Number.VOLTAGE)[:, None] == rows).any(axis=1)
     no_role = points.choice(Choice.ROLE) == Role.UNKNOWN

@@ -10,7 +10,9 @@ from faultloop.assessment.points import (
     Choice,
     Current,
     Earthing,
+    ExposedParts,
     Feeds,
+    Flags,
     Ints,
     Method,
     Number,
@@ -21,6 +23,16 @@ from faultloop.assessment.points import (
 from faultloop.electrical.measurement import Array
 from faultloop.rules.sheets import RuleSet
 
+# Voltages, and small currents that are read as the voltage over a known resistance.
+_VOLTMETER = (
+    Reading.VOLTAGE,
+    Reading.NEUTRAL_EARTH_VOLTAGE,
+    Reading.L1_EARTH_VOLTAGE,
+    Reading.L2_EARTH_VOLTAGE,
+    Reading.L1_CONTACT,
+    Reading.L2_CONTACT,
+    Reading.FIRST_FAULT,
+)
 TIME_READINGS = (Reading.TIME_HALF, Reading.TIME_1, Reading.TIME_2, Reading.TIME_5)
 
 
@@ -97,6 +109,7 @@ def _values(rules: RuleSet) -> dict[str, float]:
         "body_wet": u.body_wet.value,
         "sustained_ma": u.sustained_current.value,
         "insulation": rules.insulation.value,
+        **{f"separation_{name}": value.value for name, value in rules.separation},
     }
 
 
@@ -122,6 +135,7 @@ def _instruments(rules: RuleSet) -> tuple[Array, Array]:
         Reading.LINE_NEUTRAL,
         Reading.ORIGIN_LINE_NEUTRAL,
         Reading.BOARD_LOOP,
+        Reading.LINE_LINE,
     )
     for reading in Reading.codes().values():
         default = i.high_current if reading in loop else i.electrode if reading == Reading.ELECTRODE else i.continuity
@@ -129,8 +143,9 @@ def _instruments(rules: RuleSet) -> tuple[Array, Array]:
     for reading in loop:
         percent[reading, Method.NO_TRIP] = i.no_trip.percent.value
         constant[reading, Method.NO_TRIP] = i.no_trip.constant.value
-    percent[Reading.INSULATION, :], constant[Reading.INSULATION, :] = i.insulation.value, 0.0
-    for reading in (Reading.VOLTAGE, Reading.NEUTRAL_EARTH_VOLTAGE):
+    for reading in (Reading.INSULATION, Reading.WINDING_INSULATION, Reading.MONITORED):
+        percent[reading, :], constant[reading, :] = i.insulation.value, 0.0
+    for reading in _VOLTMETER:
         percent[reading, :], constant[reading, :] = i.voltage.value, 0.0
     # A stated current is no reading unless its instrument is stated too.
     percent[Reading.BOARD_CURRENT, :], constant[Reading.BOARD_CURRENT, :] = 0.0, 0.0
@@ -167,15 +182,23 @@ def compile_rules(sets: Sequence[RuleSet]) -> RuleTable:
 
 def required_time(points: Points, rule: RuleValues) -> Array:
     """Required disconnection time of each circuit [s]; nan where role, voltage or earthing leaves it open."""
-    table, rules, voltage = rule.table, points.choice(Choice.RULES), points.number(Number.VOLTAGE)
-    role, tt = points.choice(Choice.ROLE), points.choice(Choice.EARTHING) == Earthing.TT
-    system, current = tt.astype(np.int64), points.choice(Choice.CURRENT)
-    band = (voltage[:, None] > table.band_above[rules, system, current]).sum(axis=1)
-    inside = voltage <= table.band_to[rules, system, current, band]
-    final = np.where(inside, table.band_time[rules, system, current, band], np.nan)
+    role, earthing = points.choice(Choice.ROLE), points.choice(Choice.EARTHING)
+    # Exposed parts that an IT supply earths separately meet each other through their electrodes, as on TT.
+    apart = (earthing == Earthing.IT) & (points.choice(Choice.EXPOSED_PARTS) == ExposedParts.SEPARATELY)
+    tt = (earthing == Earthing.TT) | apart
+    final = final_time(points, rule, points.number(Number.VOLTAGE), tt)
     fixed = points.choice(Choice.FEEDS) == Feeds.FIXED_EQUIPMENT
     scope = np.where(fixed, rule["scope_fixed_equipment"], rule["scope_socket_outlets"])
     beyond = points.number(Number.RATED_CURRENT) > scope
     longer = np.where(tt, rule["distribution_tt"], rule["distribution_tn"])
     time = np.where((role == Role.FINAL) & ~beyond, final, longer)
     return np.where((role == Role.UNKNOWN) | np.isnan(final), np.nan, time)
+
+
+def final_time(points: Points, rule: RuleValues, voltage: Array, tt: Flags) -> Array:
+    """Time of the table of final circuits for a voltage [s]; nan where it has no row."""
+    table, rules, system = rule.table, points.choice(Choice.RULES), tt.astype(np.int64)
+    current = points.choice(Choice.CURRENT)
+    band = (voltage[:, None] > table.band_above[rules, system, current]).sum(axis=1)
+    inside = voltage <= table.band_to[rules, system, current, band]
+    return np.where(inside, table.band_time[rules, system, current, band], np.nan)

@@ -5,8 +5,10 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Choice, Feeds, Number
+from faultloop.assessment.insulated import Insulated
+from faultloop.assessment.points import Choice, Feeds, Flags, Number
 from faultloop.assessment.residual_times import ResidualTimes
+from faultloop.assessment.separated import Separated
 from faultloop.electrical.body import severity_ratio
 from faultloop.electrical.measurement import Array, Interval
 from faultloop.protection.band import faster
@@ -51,3 +53,33 @@ def severity(g: Given, touch_v: Array, overcurrent_s: Interval, device: Residual
         body_ohm=body,
         body_ma=1000.0 * touch_v / body,
     )
+
+
+def of_separated(found: Severity, g: Given, supply: Separated) -> Severity:
+    """Severity on separated supplies: the whole voltage where it stands between cases or to earth, else a contact.
+
+    Nothing interrupts a contact; two faults behind one another leave the whole voltage.
+    """
+    body = g.rule["body_dry"]
+    whole = supply.joined | supply.unbonded
+    felt = np.nan_to_num(supply.contact.current_ma.nominal) / 1000.0 * body
+    return _without_end(found, supply.here, np.where(whole, supply.voltage, felt), supply.voltage, body)
+
+
+def of_insulated(found: Severity, g: Given, supply: Insulated) -> Severity:
+    """Severity on IT supplies: what a first fault leaves on exposed parts, and behind it the whole voltage."""
+    body = g.rule["body_dry"]
+    return _without_end(found, supply.here, supply.touch_v.nominal, g.points.number(Number.VOLTAGE), body)
+
+
+def _without_end(found: Severity, here: Flags, standing_v: Array, behind_v: Array, body: Array) -> Severity:
+    endless = np.full(here.shape, np.inf)
+    parts = {
+        "as_is": severity_ratio(standing_v, body, endless),
+        "barrier_failed": severity_ratio(behind_v, body, endless),
+        "time_s": endless,
+        "touch_v": standing_v,
+        "body_ohm": body,
+        "body_ma": 1000.0 * standing_v / body,
+    }
+    return Severity(**{name: np.where(here, part, getattr(found, name)) for name, part in parts.items()})

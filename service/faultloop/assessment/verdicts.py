@@ -1,11 +1,12 @@
 """decide(): judged values -> findings -> groups -> verdict and urgency; the any-of groups are data."""
 
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 
 from faultloop.assessment.checks import CHECKS
-from faultloop.assessment.judged import Condition, Judged, Settled, Standing, Verdict, compare, settled
+from faultloop.assessment.judged import Condition, Judged, Settled, Standing, Verdict, compare, settled, unjudged
 from faultloop.assessment.points import Choice, Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities, shared
 from faultloop.assessment.standing import STANDING_VERDICT
@@ -62,12 +63,25 @@ def decide(points: Points, by: Tables | None = None) -> Outcome:
     """
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         quantities = shared(points, by or tables())
-        judged = [check.judge(points, quantities) for check in CHECKS]
-        applies = [check.applies(points, quantities) for check in CHECKS]
+        judged, applies = zip(*_judged(points, quantities), strict=True)
         return _outcome(points, quantities, judged, applies)
 
 
-def _outcome(points: Points, quantities: Quantities, judged: list[Judged], applies: list[Flags]) -> Outcome:
+def _judged(points: Points, q: Quantities) -> Iterator[tuple[Judged, Flags]]:
+    """Every check judged, and where it applies; one that is for other supplies than there are is not looked at."""
+    earthing = points.choice(Choice.EARTHING)
+    present, nobody, nowhere = frozenset(earthing.tolist()), unjudged(points.count), np.zeros(points.count, np.bool_)
+    for check in CHECKS:
+        if present.isdisjoint(check.supplies):
+            yield nobody, nowhere
+            continue
+        applies = check.applies(points, q)
+        if not present <= check.supplies:
+            applies = applies & np.isin(earthing, tuple(check.supplies))
+        yield check.judge(points, q), applies
+
+
+def _outcome(points: Points, quantities: Quantities, judged: Sequence[Judged], applies: Sequence[Flags]) -> Outcome:
     value = Interval(
         np.array([j.value.least for j in judged]),
         np.array([j.value.greatest for j in judged]),
@@ -75,7 +89,7 @@ def _outcome(points: Points, quantities: Quantities, judged: list[Judged], appli
     )
     limit, conditions = np.array([j.limit for j in judged]), np.array([j.conditions for j in judged])
     compared = compare(value, limit, SENSES, points.choice(Choice.DECISION))
-    drawn = settled([j.cases for j in judged])
+    drawn = settled([j.cases for j in judged], points.count)
     verdict, reason = _verdicts(compared, drawn, np.array(applies), conditions)
     counts, overall = _grouped(verdict)
     findings = Findings(

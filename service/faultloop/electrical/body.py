@@ -1,4 +1,4 @@
-"""Body current, set against a current-time limit, to order work by severity."""
+"""Body current, set against a current-time limit, to order work by severity; and the energy that capacitors keep."""
 
 import numpy as np
 
@@ -59,3 +59,53 @@ def touch_voltage(voltage_v: Array, protective_ohm: Array, loop_ohm: Array) -> A
         share = protective_ohm / loop_ohm
     share = np.where(np.isinf(loop_ohm), 1.0, share)
     return voltage_v * np.minimum(share, 1.0)
+
+
+def stored_energy(capacitance_uf: Array, voltage_v: Array) -> Array:
+    """Energy in a charged capacitor.
+
+    Parameters
+    ----------
+    capacitance_uf : (n,) array
+        Capacitance [µF].
+    voltage_v : (n,) array
+        Voltage over it [V].
+
+    Returns
+    -------
+    (n,) array
+        E = C·U²/2 [J].
+
+    References
+    ----------
+    .. [1] IEC 60050-131:2002, 131-12-13 (capacitance).
+    """
+    return 0.5e-6 * capacitance_uf * voltage_v * voltage_v
+
+
+def discharge_time(capacitance_uf: Array, voltage_v: Array, resistance_ohm: Array, to_v: Array) -> Array:
+    """Time in which a capacitor falls to a voltage through a resistance.
+
+    Parameters
+    ----------
+    capacitance_uf : (n,) array
+        Capacitance [µF].
+    voltage_v : (n,) array
+        Voltage at the beginning [V].
+    resistance_ohm : (n,) array
+        Resistance that discharges it [Ω]; inf where there is none.
+    to_v : (n,) array
+        Voltage to be reached [V].
+
+    Returns
+    -------
+    (n,) array
+        t = R·C·ln(U/U_to) [s]; 0 where it is there already, inf without a resistance, nan where an input is unknown.
+
+    References
+    ----------
+    .. [1] IEC 60050-131:2002, 131-11-26 (time constant).
+    """
+    with np.errstate(divide="ignore", invalid="ignore"):
+        falls = resistance_ohm * (capacitance_uf * 1e-6) * np.log(voltage_v / to_v)
+    return np.where(voltage_v <= to_v, np.where(np.isnan(capacitance_uf), np.nan, 0.0), falls)

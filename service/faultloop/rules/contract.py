@@ -74,6 +74,23 @@ BOUNDS: dict[str, Bounds] = {
     "urgency.body_wet": Bounds(100, 10_000),
     "urgency.sustained_current": Bounds(0, 100, True),
     "insulation": Bounds(0, 10_000, True),
+    "separation.voltage": Bounds(0, 1000, True),
+    "separation.wiring_length": Bounds(0, 10_000, True),
+    "separation.voltage_length": Bounds(0, 1_000_000, True),
+    "separation.contact_unfelt": Bounds(0, 10),
+    "separation.contact_most": Bounds(0, 10, True),
+    "separation.contact_referenced": Bounds(0, 30, True),
+    "separation.pole_at_earth": Bounds(0, 50),
+    "separation.short_circuit_tolerance": Bounds(0, 100),
+    "separation.capacitance_tolerance": Bounds(0, 100),
+    "separation.interwinding": Bounds(0, 1000),
+    "separation.wiring_capacitance": Bounds(0, 100),
+    "separation.winding_basic": Bounds(0, 1000, True),
+    "separation.winding_reinforced": Bounds(0, 1000, True),
+    "separation.dielectric_basic": Bounds(500, 20_000),
+    "separation.dielectric_reinforced": Bounds(500, 20_000),
+    "separation.discharged": Bounds(0, 120, True),
+    "separation.discharge_time": Bounds(0, 60),
     **{f"instruments.{name}.percent": Bounds(0, 100) for name in METHODS},
     **{f"instruments.{name}.constant": Bounds(0, 100) for name in METHODS},
 }
@@ -141,6 +158,11 @@ def _order(rules: RuleSet) -> Iterator[Fault]:
         yield Fault(("temperature", "two_thirds", "value"), "two_thirds must be less than four_fifths")
     if u.body_wet.value > u.body_dry.value:
         yield Fault(("urgency", "body_wet", "value"), "a wet body must not resist more than a dry one")
+    p = rules.separation
+    lines = (p.contact_unfelt.value, p.contact_most.value, p.contact_referenced.value)
+    if sorted(lines) != list(lines):
+        words = "contact_unfelt, contact_most and contact_referenced must rise in this order"
+        yield Fault(("separation", "contact_most", "value"), words)
 
 
 def _voltages(rules: RuleSet) -> Iterator[Fault]:

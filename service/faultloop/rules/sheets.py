@@ -18,6 +18,10 @@ def _in_unit(unit: str) -> AfterValidator:
 
 Ratio = Annotated[Parameter, _in_unit("1")]
 Volts = Annotated[Parameter, _in_unit("V")]
+VoltMetres = Annotated[Parameter, _in_unit("V*m")]
+Metres = Annotated[Parameter, _in_unit("m")]
+Nanofarads = Annotated[Parameter, _in_unit("nF")]
+NanofaradsPerMetre = Annotated[Parameter, _in_unit("nF/m")]
 Amperes = Annotated[Parameter, _in_unit("A")]
 Milliamperes = Annotated[Parameter, _in_unit("mA")]
 Seconds = Annotated[Parameter, _in_unit("s")]
@@ -143,6 +147,28 @@ class Urgency(Sheet):
     sustained_current: Milliamperes
 
 
+class Separation(Sheet):
+    """What a source asks and gives whose live parts are not earthed: a separated supply's limits, and an IT supply's."""
+
+    voltage: Volts
+    wiring_length: Metres
+    voltage_length: VoltMetres
+    contact_unfelt: Milliamperes
+    contact_most: Milliamperes
+    contact_referenced: Milliamperes
+    pole_at_earth: Percent
+    short_circuit_tolerance: Percent
+    capacitance_tolerance: Percent
+    interwinding: Nanofarads
+    wiring_capacitance: NanofaradsPerMetre
+    winding_basic: Megohms
+    winding_reinforced: Megohms
+    dielectric_basic: Volts
+    dielectric_reinforced: Volts
+    discharged: Volts
+    discharge_time: Seconds
+
+
 class OperatingCurrent(Sourced):
     """A current that the rule set itself prints for a device and a time."""
 
@@ -170,6 +196,7 @@ class RuleSet(Sheet):
     policy: Policy
     expected: Expected
     urgency: Urgency
+    separation: Separation
     insulation: Megohms
     clauses: dict[str, Text]
     operating_current: list[OperatingCurrent] = Field(default_factory=list)

@@ -11,6 +11,7 @@ from pydantic import BaseModel, ConfigDict, Field, ValidationError
 Unit = Literal[
     "1",
     "V",
+    "V*m",
     "A",
     "mA",
     "kA",
@@ -19,6 +20,9 @@ Unit = Literal[
     "ohm",
     "Mohm",
     "ohm/km",
+    "m",
+    "nF",
+    "nF/m",
     "1/K",
     "degC",
     "%",

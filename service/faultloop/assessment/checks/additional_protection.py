@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import Choice, Feeds, Flags, Ints, Number, Points, Role, Users
+from faultloop.assessment.points import EARTHED, INSULATED, Choice, Feeds, Flags, Ints, Number, Points, Role, Users
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 from faultloop.protection.catalogue import catalogue
@@ -79,4 +79,5 @@ CHECK = Check(
     reasons=REASONS,
     applies=_applies,
     judge=_judge,
+    supplies=EARTHED | INSULATED,
 )

@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import Choice, Flags, Number, Points, Reading
+from faultloop.assessment.points import EARTHED, INSULATED, Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.electrical.measurement import Array, Interval
@@ -97,4 +97,5 @@ CHECK = Check(
     reasons=REASONS,
     applies=_applies,
     judge=_judge,
+    supplies=EARTHED | INSULATED,
 )

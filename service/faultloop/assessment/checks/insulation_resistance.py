@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_LEAST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import Bound, Flags, Points, Reading
+from faultloop.assessment.points import EARTHED, INSULATED, SEPARATED, Bound, Flags, Points, Reading
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (*COMPARISON, "not-measured", "beyond-instruments", "over-range-below-limit")
@@ -34,4 +34,5 @@ CHECK = Check(
     reasons=REASONS,
     applies=_applies,
     judge=_judge,
+    supplies=EARTHED | INSULATED | SEPARATED,
 )

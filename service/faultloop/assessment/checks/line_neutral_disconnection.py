@@ -4,10 +4,9 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
-from faultloop.assessment.points import Choice, Flags, Number, Points, Reading
+from faultloop.assessment.points import EARTHED, INSULATED, Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities, by_policy
-from faultloop.assessment.series import greatest_time
-from faultloop.electrical.conductors import ADIABATIC_FROM_S, withstand_time
+from faultloop.assessment.withstand import withstands
 from faultloop.electrical.fault_current import prospective_current
 
 REASONS = (
@@ -42,7 +41,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
         return cases.settle_unvalued()
     loop = by_policy(points, found.hot, found.cold)
     met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
-    withstands = _withstands(points, q)
+    borne = _withstands(points, q)
     rated = points.number(Number.OVERLOAD_CURRENT_A) <= points.number(Number.CARRYING_CAPACITY_A)
     rated &= points.number(Number.BREAKING_CAPACITY_KA) >= q.given.reading(Reading.BOARD_CURRENT).greatest
     implausible = measured & (loop.nominal < q.rule("least_plausible"))
@@ -50,35 +49,22 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(inferred & met, Standing.MET, "inferred-within-limit")
     cases.when(measured & met, Standing.MET, "within-limit")
     cases.when(np.isinf(loop.greatest) & measured, Standing.UNDETERMINED, "reading-over-range")
-    cases.when(withstands, Standing.MET, "conductor-withstands")
+    cases.when(borne, Standing.MET, "conductor-withstands")
     cases.when(rated, Standing.MET, "conductor-rating")
     cases.when(np.isinf(q.operating_current), Standing.UNDETERMINED, "no-guaranteed-current")
     cases.when(inferred, Standing.UNDETERMINED, "inferred-not-decided")
     cases.when(measured, Standing.UNDETERMINED, "not-cleared-at-once")
-    carried = rated & ~withstands & ~met & (measured | inferred) & ~np.isinf(loop.greatest) & ~implausible
+    carried = rated & ~borne & ~met & (measured | inferred) & ~np.isinf(loop.greatest) & ~implausible
     bits = np.where(carried, 1 << Condition.CONDUCTOR_RATING, 0)
     return cases.settle(loop, limit, bits)
 
 
 def _withstands(points: Points, q: Quantities) -> Flags:
-    """Whether the conductor bears the current for as long as the devices in series may take, over the whole interval.
-
-    Within one step of the band the time is constant and the withstand falls with the current, so the
-    greatest current of each step is tried: both ends, and just below every tested current between them.
-    From 0.1 s down let-through energy decides, not the step of the band, which then refutes nothing; that
-    holds for the circuit's own device, while one upstream is credited only with what its step shows.
-    """
-    voltage, series = points.number(Number.VOLTAGE), (points.choice(Choice.DEVICE), *points.upstream)
-    k, area = points.number(Number.ADIABATIC_K), points.number(Number.LINE_MM2)
-    least = prospective_current(q.rule("c_min"), voltage, q.line_neutral.hot.greatest)
-    greatest = prospective_current(q.rule("c_max"), voltage, q.line_neutral.cold.least)
-    edges = np.nextafter(np.concatenate([points.overcurrent.slow_current[row].T for row in series]), 0.0)
-    inside = (edges > least) & (edges < greatest)
-    tried = np.concatenate([least[None], greatest[None], np.where(inside, edges, least)])
-    own = points.overcurrent.greatest_time(points.choice(Choice.DEVICE), tried)
-    borne = (own <= ADIABATIC_FROM_S) | (greatest_time(points, tried) <= withstand_time(k, area, tried))
-    everywhere: Flags = np.logical_and.reduce(borne, axis=0)
-    return everywhere & ~np.isnan(k * area)
+    """Whether the conductor bears the current of the line-neutral loop, hot and cold."""
+    voltage, found = points.number(Number.VOLTAGE), q.line_neutral
+    least = prospective_current(q.rule("c_min"), voltage, found.hot.greatest)
+    greatest = prospective_current(q.rule("c_max"), voltage, found.cold.least)
+    return withstands(points, least, greatest)
 
 
 CHECK = Check(
@@ -89,4 +75,5 @@ CHECK = Check(
     reasons=REASONS,
     applies=_applies,
     judge=_judge,
+    supplies=EARTHED | INSULATED,
 )

@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import Choice, Flags, Points, Polarity
+from faultloop.assessment.points import EARTHED, INSULATED, Choice, Flags, Points, Polarity
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
@@ -33,4 +33,5 @@ CHECK = Check(
     reasons=REASONS,
     applies=_applies,
     judge=_judge,
+    supplies=EARTHED | INSULATED,
 )

@@ -4,7 +4,7 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import Bound, Choice, Flags, Number, Points, Reading
+from faultloop.assessment.points import EARTHED, INSULATED, Bound, Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.residual_times import TEST_MULTIPLES, TESTS
 from faultloop.electrical.measurement import Interval
@@ -71,4 +71,5 @@ CHECK = Check(
     reasons=REASONS,
     applies=_applies,
     judge=_judge,
+    supplies=EARTHED | INSULATED,
 )

@@ -1,0 +1,37 @@
+"""What does a first fault leave on the exposed parts of an IT supply?"""
+
+import numpy as np
+
+from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
+from faultloop.assessment.points import INSULATED, Flags, Points, Reading
+from faultloop.assessment.quantities import Quantities
+
+REASONS = (*COMPARISON, "electrode-missing", "current-missing", "reading-over-range")
+
+
+def _applies(points: Points, _: Quantities) -> Flags:
+    return np.ones(points.count, dtype=np.bool_)
+
+
+def _judge(_: Points, q: Quantities) -> Judged:
+    found = q.insulated
+    assert found is not None
+    touch, limit = found.touch_v, q.rule("touch_voltage")
+    cases = Cases(REASONS)
+    cases.when(~q.given.known[Reading.ELECTRODE], Standing.UNDETERMINED, "electrode-missing")
+    cases.when(np.isnan(found.first_fault_ma.nominal), Standing.UNDETERMINED, "current-missing")
+    cases.when(np.isinf(touch.greatest) & ~(touch.least > limit), Standing.UNDETERMINED, "reading-over-range")
+    return cases.settle(touch, limit)
+
+
+CHECK = Check(
+    id="first-fault",
+    quantity="touch_voltage_v",
+    unit="V",
+    sense=AT_MOST,
+    reasons=REASONS,
+    applies=_applies,
+    judge=_judge,
+    supplies=INSULATED,
+)
