@@ -134,6 +134,9 @@ class Number(Codes):
     CONTACT_GREATEST_MA = 49
     LINE_EARTH_NF = 50
     SET_POINT_KOHM = 51
+    LINK_LEAST_MA = 52
+    LINK_MA = 53
+    LINK_GREATEST_MA = 54
 
 
 class Choice(Codes):
@@ -165,6 +168,7 @@ class Choice(Codes):
     MONITOR = 23
     NEUTRAL_DISTRIBUTED = 24
     EXPOSED_PARTS = 25
+    PLANNED_LINK = 26
 
 
 class Earthing(Codes):
@@ -295,6 +299,15 @@ class ExposedParts(Codes):
     UNKNOWN = 0
     TOGETHER = 1
     SEPARATELY = 2
+
+
+class PlannedLink(Codes):
+    """What a link that is about to be made does to a bench: it keeps it floating, ties it, or it was tied before."""
+
+    NONE = 0
+    KEEPS = 1
+    TIES = 2
+    TIED_BEFORE = 3
 
 
 class Current(Codes):

@@ -1,0 +1,209 @@
+"""Parts of a bench's answer: intervals, nodes, contacts, and what devices see of a planned link."""
+
+from dataclasses import dataclass
+from functools import cached_property
+from typing import Any
+
+import numpy as np
+
+from faultloop.assessment.benches.consequences import Planned
+from faultloop.assessment.benches.contacts import MOST_PARTS_PAIRED, Contact, accessible, usual_contacts
+from faultloop.assessment.benches.network import EARTH, Link, Span, node_names
+from faultloop.assessment.benches.solving import Ends, SolvedBench
+from faultloop.assessment.benches.texts import BenchTexts
+from faultloop.assessment.benches.ties import APART, Standing, Ties
+from faultloop.assessment.benches.typical import typical
+from faultloop.assessment.points import PlannedLink
+from faultloop.digests import rounded
+from faultloop.exchange.bench_networks import BenchContact
+from faultloop.rules.sheets import RuleSet
+
+Body = dict[str, Any]
+MILLI = 1000.0
+ONE_NODE_V = 1.0  # parts that stand less than this apart are told as one
+
+
+def ends_body(least: float, greatest: float, scale: float = 1.0) -> Body:
+    """Least and greatest of what is known at both ends."""
+    return {"least": rounded(least * scale), "greatest": rounded(greatest * scale)}
+
+
+def short(value: float) -> str:
+    """A number for a sentence."""
+    return f"{value:.3g}" if abs(value) < 1e4 else f"{value:.3g}".replace("e+0", "e").replace("e+", "e")
+
+
+@dataclass(frozen=True)
+class BenchWords:
+    """Puts parts of one solved bench in words."""
+
+    solved: SolvedBench
+    texts: BenchTexts
+    rules: RuleSet
+    asked: list[BenchContact]
+
+    @cached_property
+    def told_states(self) -> dict[str, int]:
+        """The states that are told in full: by the name of their field, their number."""
+        told = {"as_found": 0}
+        return told if self.solved.bench.planned is None else {**told, "with_planned_link": 1}
+
+    def between(self, least: float, greatest: float) -> str:
+        """Two ends as a sentence has them: one number where they print alike."""
+        one, other = short(least), short(greatest)
+        if one == other:
+            return one
+        return self.texts.parts["interval"].format(least=one, greatest=other, unit="").strip()
+
+    def span(self, span: Span, unit: str) -> str:
+        """An assumed span with its unit."""
+        return f"{self.between(span.least, span.greatest)} {'Ω' if unit == 'ohm' else unit}"
+
+    def nodes(self) -> list[Body]:
+        """Every node, with the names that an item's poles have beside."""
+        names = node_names(self.solved.bench)
+        aliases: dict[str, list[str]] = {}
+        for name in names:
+            if name in self.solved.meanings:
+                aliases.setdefault(self.solved.meanings[name][1][0], []).append(name)
+        ties = {field: Ties(self.solved, state) for field, state in self.told_states.items()}
+        real = [name for name in names if name != EARTH and name not in self.solved.meanings]
+        at = np.stack([self.solved.node(name) for name in real], axis=1)
+        wired, rows = self.solved.wired, np.arange(len(self.solved.wired.potential_v))[:, None]
+        potential = self.solved.ends(wired.potential_v[rows, self.solved.rows(at)])
+        found = []
+        for column, name in enumerate(real):
+            body: Body = {"node": name, "same_as": sorted(aliases.get(name, []))}
+            for field, state in self.told_states.items():
+                stands = ties[field].standing(name)
+                told: Body = {"standing": stands.word, "path": self._path(stands), "steps": self._steps(stands)}
+                if stands.word != APART:
+                    told["path_impedance_ohm"] = rounded(stands.path_ohm)
+                    ends = (float(potential.least[state, column]), float(potential.greatest[state, column]))
+                    told["potential_v"] = ends_body(*ends)
+                body[field] = told
+            found.append(body)
+        return found
+
+    def _path(self, stands: Standing) -> str:
+        steps = self.texts.parts["then"].join(
+            self.texts.parts["step"].format(step=self.step(step.kind, step.owner), node=self._name(step.to))
+            for step in stands.steps
+        )
+        tie = short(typical().tie_below.usual)
+        return self.texts.standing[stands.word].format(steps=steps, ohm=short(stands.path_ohm), tie=tie)
+
+    def _steps(self, stands: Standing) -> list[Body]:
+        return [
+            {"through": self.step(step.kind, step.owner), "of": step.owner, "to": step.to} for step in stands.steps
+        ]
+
+    def _name(self, node: str) -> str:
+        return self.texts.parts["earth"] if node == EARTH else node
+
+    def step(self, kind: str, owner: str) -> str:
+        """What a step leads through."""
+        told = self.texts.steps
+        if kind == "link":
+            link = next(link for link in self.solved.bench.all_links if link.id == owner)
+            return told["link"].format(kind=self.texts.links[link.kind], owner=owner)
+        earthed = kind == "source" and self.solved.bench.supply(owner).kind == "earthed"
+        return told["source-earthed" if earthed else kind].format(owner=owner)
+
+    def link_words(self, link: Link) -> dict[str, str]:
+        """What sentences quote of a link."""
+        return {"kind": self.texts.links[link.kind], "id": link.id, "one": link.one, "other": self._name(link.other)}
+
+    def contacts(self) -> list[Body]:
+        """The usual contacts and those asked for; pairs of parts that are one node are no contact."""
+        usual = [of for of in usual_contacts(self.solved.bench) if of.kind != "part-to-part" or self._apart(of)]
+        told = [*usual, *(Contact("asked", of.one, of.other) for of in self.asked)]
+        voltage, current = self.solved.touched(told)
+        found = []
+        for column, contact in enumerate(told):
+            body: Body = {
+                "kind": contact.kind,
+                "hands": "one" if contact.single else "two",
+                "from": contact.one,
+                "to": contact.other,
+                "text": self.contact_words(contact),
+            }
+            for field, state in self.told_states.items():
+                body[field] = self._touched(voltage, current, state, column)
+            found.append(body)
+        return found
+
+    def _apart(self, contact: Contact) -> bool:
+        """Whether two parts are not simply joined by conductors in both states that are told."""
+        voltage, _ = self.solved.touched([contact])
+        between = voltage.greatest[list(self.told_states.values()), 0]
+        return bool(np.any(~(between < ONE_NODE_V)))
+
+    def left_out(self) -> int:
+        """How many pairs of parts were too many to look at."""
+        parts = len(accessible(self.solved.bench))
+        most = min(parts, MOST_PARTS_PAIRED)
+        return parts * (parts - 1) // 2 - most * (most - 1) // 2
+
+    def contact_words(self, contact: Contact) -> str:
+        """A contact as a sentence names it."""
+        return self.texts.contacts[contact.kind].format(one=contact.one, other=self._name(contact.other))
+
+    def _touched(self, voltage: Ends, current: Ends, state: int, column: int) -> Body:
+        most = float(current.greatest[state, column]) * MILLI
+        body: Body = {"current_ma": ends_body(float(current.least[state, column]), most / MILLI, MILLI)}
+        if np.isfinite(voltage.greatest[state, column]):
+            body["voltage_v"] = ends_body(
+                float(voltage.least[state, column]), float(voltage.greatest[state, column])
+            )
+        body["within"] = self.within(most)
+        return body
+
+    def within(self, most_ma: float) -> str:
+        """The line of the rule set that a contact current stays within."""
+        lines = self.rules.separation
+        for word, line in (("unfelt", lines.contact_unfelt), ("limit", lines.contact_most)):
+            if most_ma <= line.value:
+                return word
+        return "let-go" if most_ma <= lines.contact_referenced.value else "none"
+
+    def worst(self, state: int) -> tuple[Contact, float, float]:
+        """The contact of one hand that carries most in a state, with its ends [mA]."""
+        ends = self.solved.single_currents
+        column = int(np.argmax(ends.greatest[state]))
+        return (
+            self.solved.singles[column],
+            float(ends.least[state, column]) * MILLI,
+            float(ends.greatest[state, column]) * MILLI,
+        )
+
+    def planned(self, planned: Planned, devices: list[Body]) -> Body:
+        """The planned link with its consequences."""
+        link = self.solved.bench.planned
+        assert link is not None
+        words = {PlannedLink.KEEPS: "keeps", PlannedLink.TIES: "ties", PlannedLink.TIED_BEFORE: "tied-before"}
+        contact, _, after = self.worst(1)
+        before = self._same_contact(contact, 0)
+        current = (float(planned.current_a.least), float(planned.current_a.greatest))
+        text = self.texts.planned[words[planned.code]].format(
+            **self.link_words(link),
+            current=self.between(current[0] * MILLI, current[1] * MILLI),
+            contact=self.contact_words(contact),
+            after=short(after),
+            before=short(before),
+        )
+        return {
+            "id": link.id,
+            "kind": link.kind,
+            "from": link.one,
+            "to": link.other,
+            "current_ma": ends_body(*current, MILLI),
+            "ties": planned.code != PlannedLink.KEEPS,
+            "devices": devices,
+            "text": text,
+        }
+
+    def _same_contact(self, contact: Contact, state: int) -> float:
+        column = self.solved.singles.index(contact)
+        return float(self.solved.single_currents.greatest[state, column]) * MILLI
+
