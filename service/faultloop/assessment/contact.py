@@ -10,77 +10,100 @@ from faultloop.electrical.measurement import Array, Interval
 from faultloop.electrical.unearthed import SeparatedCircuit, single_contact_currents
 
 MILLI, MEGA = 1e3, 1e6
-POLES = (Reading.L1_CONTACT, Reading.L2_CONTACT)
+POLES = [Reading.L1_CONTACT, Reading.L2_CONTACT]
 SOLVED = (Number.CONTACT_LEAST_MA, Number.CONTACT_GREATEST_MA, Number.CONTACT_MA)
+
+
+@dataclass(frozen=True, slots=True)
+class Driven:
+    """Contact current (2, n) of the poles [mA] by capacitance and insulation.
+
+    `least`, `stated` and `stated_most` count what was stated alone; `nominal` and `greatest` wiring and windings too.
+    """
+
+    least: Array
+    stated: Array
+    stated_most: Array
+    nominal: Array
+    greatest: Array
 
 
 @dataclass(frozen=True, slots=True)
 class Contact:
     """Current of a single contact [mA], of the worse pole; its greatest end is open where not all is known.
 
-    `parted` has the same of each pole as read, and `driven` as computed: by these it is explained.
+    `stated_nf` and `pole_nf` are what of each pole's capacitance to earth was stated, and all of it with the wiring.
     """
 
     current_ma: Interval
     read: Flags
+    every_pole_read: Flags
     solved: Flags
+    stated_nf: Array
     pole_nf: Array
-    driven_ma: Array
+    driven: Driven
 
 
-def contact(g: Given, voltage: Array) -> Contact:
-    """Of each pole the higher of what was read and what was computed, of the two poles the greater.
+def contact(g: Given, voltage: Array, joined: Flags) -> Contact:
+    """Of each pole the higher of what was read and what the stated capacitance drives, else all that may drive it.
 
-    A network that was solved elsewhere brings its current along, and nothing is put beside it.
+    Of the two poles the greater counts; with one pole joined to earth the other has the whole voltage.  A network that
+    was solved elsewhere brings its current along, and nothing is put beside it.
     """
-    number, known = g.points.number, g.known[list(POLES)]
-    pole_nf, complete = _capacitance(g, voltage)
-    least, greatest, nominal = _driven(g, voltage, pole_nf)
-    ends = np.where(complete, greatest, np.inf)
-    top = np.where(known, np.fmax(g.greatest[list(POLES)], greatest), ends)
-    found = (np.fmax(g.least[list(POLES)], least), top, np.fmax(g.points.value[list(POLES)], nominal))
-    worse = (np.fmax(*of) for of in found)
-    solved = ~np.isnan(number(Number.CONTACT_MA))
-    current = (np.where(solved, number(which), of) for which, of in zip(SOLVED, worse, strict=True))
-    return Contact(Interval(*current), np.logical_or(*known), solved, pole_nf, np.fmax(*nominal))
+    known, solved = g.known[POLES], ~np.isnan(g.points.number(Number.CONTACT_MA))
+    stated, pole_nf, complete = _capacitance(g, voltage)
+    driven = _driven(g, voltage, stated, pole_nf)
+    least = np.fmax(g.least[POLES], driven.least)
+    greatest = np.fmax(g.greatest[POLES], driven.stated_most)
+    greatest = np.where(known, greatest, np.where(complete, driven.greatest, np.inf))
+    nominal = np.where(known, np.fmax(g.points.value[POLES], driven.stated), driven.nominal)
+    whole = MILLI * voltage / g.rule["body_dry"]
+    worse = (np.where(joined, whole, np.fmax(*of)) for of in (least, greatest, nominal))
+    ends = (np.where(solved, g.points.number(which), of) for which, of in zip(SOLVED, worse, strict=True))
+    every = np.logical_and(*known)
+    return Contact(Interval(*ends), np.logical_or(*known), every, solved, stated, pole_nf, driven)
 
 
-def _capacitance(g: Given, voltage: Array) -> tuple[Array, Flags]:
-    """Capacitance of each pole to earth by wiring and filters [nF], and where all that drives a current is known.
+def _capacitance(g: Given, voltage: Array) -> tuple[Array, Array, Flags]:
+    """Capacitance of each pole to earth [nF], by filters alone and with the wiring; and whether all of it is known.
 
     Filters end at the cases, which reach earth by earth contacts that are wired through; where those are not joined to
     earth the filters' way ends there.  A capacitance that is not known is left out, and what is left is the least.
     """
     contacts, filters = g.points.choice(Choice.EARTH_CONTACTS), g.points.number(Number.FILTERS_NF)
     cut = (contacts == EarthContacts.UNCONNECTED) | (contacts == EarthContacts.BONDED)
-    filters = np.where(cut & np.isnan(filters), 0.0, filters)
+    filters = np.where(cut, 0.0, filters)
     wiring = g.points.number(Number.WIRING_M) * g.rule["separation_wiring_capacitance"]
     complete = ~np.isnan(filters + wiring + voltage) & g.known[Reading.INSULATION]
-    return np.nan_to_num(filters) + np.nan_to_num(wiring), complete
+    stated = np.nan_to_num(filters)
+    return stated, stated + np.nan_to_num(wiring), complete
 
 
-def _driven(g: Given, voltage: Array, pole_nf: Array) -> tuple[Array, Array, Array]:
-    """Contact current of each pole (2, n) by capacitance and insulation [mA]: least, greatest, nominal."""
+def _driven(g: Given, voltage: Array, stated: Array, pole_nf: Array) -> Driven:
     number, count = g.points.number, g.points.count
-    if np.isnan(voltage).all():
+    if np.isnan(voltage).all() or not np.isnan(number(Number.CONTACT_MA)).any():
         nothing = np.full((2, count), np.nan)
-        return nothing, nothing, nothing
+        return Driven(nothing, nothing, nothing, nothing, nothing)
+    spread, one = g.rule["separation_capacitance_tolerance"] / 100.0, np.ones(count)
+    none = np.zeros(count)
+    # What is taken where nothing is stated lies high, and so raises no least.
+    scales: tuple[Array, ...] = (1.0 - spread, one, 1.0 + spread, one, 1.0 + spread)
+    poles = (stated, stated, stated, pole_nf, pole_nf)
     between, primary = number(Number.INTERWINDING_NF), number(Number.PRIMARY_V)
-    spread = g.rule["separation_capacitance_tolerance"] / 100.0
-    scale = np.concatenate([1.0 - spread, 1.0 + spread, np.ones(count)])
     # Insulation that was not read is not counted, and then nothing above the least is known.
     insulation = np.where(g.known[Reading.INSULATION], MEGA * g.least[Reading.INSULATION], np.inf)
+    capacitance = np.concatenate([pole * scale for pole, scale in zip(poles, scales, strict=True)])
+    windings = (none, none, none, between, between)
     supply = SeparatedCircuit(
-        secondary_v=np.tile(voltage, 3),
-        primary_v=np.tile(np.where(np.isnan(primary), voltage, primary), 3),
-        source_ohm=np.zeros(3 * count),
-        frequency_hz=np.tile(number(Number.FREQUENCY_HZ), 3),
-        l1_earth_nf=np.tile(pole_nf, 3) * scale,
-        l2_earth_nf=np.tile(pole_nf, 3) * scale,
-        interwinding_nf=np.tile(np.where(np.isnan(between), g.rule["separation_interwinding"], between), 3) * scale,
-        l1_earth_ohm=np.tile(insulation, 3),
-        l2_earth_ohm=np.tile(insulation, 3),
+        secondary_v=np.tile(voltage, 5),
+        primary_v=np.tile(np.where(np.isnan(primary), voltage, primary), 5),
+        source_ohm=np.zeros(5 * count),
+        frequency_hz=np.tile(number(Number.FREQUENCY_HZ), 5),
+        l1_earth_nf=capacitance,
+        l2_earth_nf=capacitance,
+        interwinding_nf=np.concatenate([of * scale for of, scale in zip(windings, scales, strict=True)]),
+        l1_earth_ohm=np.concatenate([np.full(3 * count, np.inf), np.tile(insulation, 2)]),
+        l2_earth_ohm=np.concatenate([np.full(3 * count, np.inf), np.tile(insulation, 2)]),
     )
-    poles = MILLI * np.array(single_contact_currents(supply, np.tile(g.rule["body_dry"], 3)))
-    least, greatest, nominal = poles[:, :count], poles[:, count : 2 * count], poles[:, 2 * count :]
-    return least, greatest, nominal
+    found = MILLI * np.array(single_contact_currents(supply, np.tile(g.rule["body_dry"], 5)))
+    return Driven(*(found[:, at * count : (at + 1) * count] for at in range(5)))

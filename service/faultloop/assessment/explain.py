@@ -8,6 +8,7 @@ from functools import lru_cache
 import numpy as np
 
 from faultloop.assessment.checks import CHECKS
+from faultloop.assessment.explain_unearthed import unearthed_columns
 from faultloop.assessment.loops import Basis
 from faultloop.assessment.points import (
     Choice,
@@ -28,6 +29,10 @@ from faultloop.protection.catalogue import catalogue
 
 _POLICIES = {code: word for word, code in TemperaturePolicy.codes().items()}
 _DECISIONS = {code: word for word, code in Decision.codes().items()}
+UNEARTHED_CAUTIONS = {
+    Earthing.SEPARATED: ("upstream-residual-blind", "separated-state"),
+    Earthing.IT: ("insulated-first-fault", "medical-locations"),
+}
 _BASES = {code: word for word, code in Basis.codes().items()}
 
 
@@ -118,6 +123,29 @@ def _residual_limit(q: Quoted) -> str:
     return q.phrases["residual-limit-touch" if q["limit"] == touch else "residual-limit-time"].format_map(q)
 
 
+def _contact_told(q: Quoted) -> str:
+    """What the current of a contact rests on: a solved network, a reading, capacitance, or two of them."""
+    if q.number("contact_solved"):
+        return q.phrases["contact-solved"].format(nominal=q.number("contact_ma"))
+    if q.number("joined") and q.number("contact_ma") == 1000.0 * q.number("u_sep") / q.number("body"):
+        return q.phrases["contact-joined"].format_map(q)
+    read = [(pole, q.number(f"contact_{pole.lower()}")) for pole in ("L1", "L2")]
+    told = [q.phrases["contact-pole"].format(pole=pole, ma=ma) for pole, ma in read if not math.isnan(ma)]
+    parts = [q.phrases["contact-read"].format(contact_reads=", ".join(told))] if told else []
+    if q.number("every_pole_read"):
+        parts += [q.phrases["contact-stated"].format_map(q)] if q.number("stated_nf") > 0.0 else []
+    elif not math.isnan(q.number("driven")):
+        parts.append(q.phrases["contact-driven"].format_map(q))
+    if len(parts) < 2:
+        return parts[0] if parts else q.phrases["contact-nothing"]
+    return q.phrases["contact-and"].format(contact_one=parts[0], contact_two=parts[1])
+
+
+def _by_supply(q: Quoted, phrase: str) -> str:
+    """A phrase that differs between a separated and an IT supply."""
+    return q.phrases[f"{phrase}-{'separated' if q.number('is_separated') else 'insulated'}"].format_map(q)
+
+
 # Phrases that depend on what is known of the point.
 _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     "withstand": _withstand,
@@ -134,6 +162,9 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
     "marginal_question": lambda q: q.phrases[
         "marginal-question-external" if math.isnan(q.number("ze")) else "marginal-question"
     ],
+    "contact_told": _contact_told,
+    "second_told": lambda q: _by_supply(q, "second"),
+    "second_limit": lambda q: _by_supply(q, "second-limit"),
     "side": lambda q: q.phrases["below" if q.number("nominal") <= q.number("limit") else "above"],
     "z_or_value": lambda q: q["nominal"],
     "excess_told": lambda q: max(round(q.number("nominal"), 9), 0.0),
@@ -141,7 +172,7 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
 
 
 # Phrases that speak of one finding's own numbers.
-_OWN_PHRASES = ("side", "residual_limit", "z_or_value", "excess_told")
+_OWN_PHRASES = ("side", "residual_limit", "z_or_value", "excess_told", "contact_told", "second_told", "second_limit")
 
 
 Template = tuple[str, bool, Said]
@@ -280,6 +311,7 @@ def _columns(points: Points, outcome: Outcome) -> dict[str, list[float]]:
         "time_5": value[Reading.TIME_5],
         "i_ln": line_neutral,
     }
+    columns |= unearthed_columns(points, outcome)
     return {name: column.tolist() for name, column in columns.items()}
 
 
@@ -294,6 +326,8 @@ def cautions_of(points: Points, outcome: Outcome, at: int) -> set[str]:
         named.add("no-trip-reading")
     if not math.isnan(points.numbers[Number.RESIDUAL_MA, at]):
         named.add("line-neutral-unseen")
+    if earthing in UNEARTHED_CAUTIONS:
+        return {*UNEARTHED_CAUTIONS[earthing], "pole-to-pole"}
     if int(outcome.quantities.loops.basis[at]) == Basis.LIVE and earthing != Earthing.TT:
         named.add("parallel-paths")
     return named

@@ -26,10 +26,12 @@ class Insulated:
     first_fault_ma: Interval
     touch_v: Interval
     contact_ma: Array
+    second_v: Array
     second_limit: Array
+    second_fault_a: Interval
 
 
-def insulated(g: Given, operating: Array) -> Insulated:
+def insulated(g: Given, operating: Array, hot: Interval, cold: Interval) -> Insulated:
     """Compute what the checks of n IT supplies share."""
     points, number = g.points, g.points.number
     here = points.choice(Choice.EARTHING) == Earthing.IT
@@ -49,8 +51,14 @@ def insulated(g: Given, operating: Array) -> Insulated:
     with_neutral = points.choice(Choice.NEUTRAL_DISTRIBUTED) != Distributed.NO
     between = np.where(points.choice(Choice.PHASES) == 1, number(Number.VOLTAGE), number(Number.BETWEEN_LINES_V))
     voltage = np.where(with_neutral, number(Number.VOLTAGE), between)
-    limit = prospective_current(g.rule["c_min"], voltage, 2.0 * operating)
-    return Insulated(here, apart, current, touch, touched, np.where(np.isinf(operating), np.nan, limit))
+    c_min, limit = g.rule["c_min"], prospective_current(g.rule["c_min"], voltage, 2.0 * operating)
+    second = Interval(
+        prospective_current(c_min, voltage, 2.0 * hot.greatest),
+        prospective_current(g.rule["c_max"], voltage, 2.0 * cold.least),
+        prospective_current(c_min, voltage, 2.0 * hot.nominal),
+    )
+    limit = np.where(np.isinf(operating), np.nan, limit)
+    return Insulated(here, apart, current, touch, touched, voltage, limit, second)
 
 
 def _currents(g: Given, here: Flags) -> tuple[Interval, Array]:

@@ -134,9 +134,11 @@ class Number(Codes):
     CONTACT_GREATEST_MA = 49
     LINE_EARTH_NF = 50
     SET_POINT_KOHM = 51
-    LINK_LEAST_MA = 52
-    LINK_MA = 53
-    LINK_GREATEST_MA = 54
+    SECONDARY_V = 52
+    LOAD_LOSS_W = 53
+    LINK_LEAST_MA = 54
+    LINK_MA = 55
+    LINK_GREATEST_MA = 56
 
 
 class Choice(Codes):

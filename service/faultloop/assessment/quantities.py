@@ -24,8 +24,8 @@ from faultloop.assessment.points import (
 )
 from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
-from faultloop.assessment.series import Upstream, greatest_time, least_time, quickest_upstream
 from faultloop.assessment.separated import Separated, separated
+from faultloop.assessment.series import Upstream, greatest_time, least_time, quickest_upstream
 from faultloop.assessment.severity import Severity, of_insulated, of_separated, severity
 from faultloop.assessment.standing import Verdict, compare
 from faultloop.assessment.tables import Tables
@@ -121,7 +121,7 @@ def shared(points: Points, tables: Tables) -> Quantities:
     touch, touch_known = _touch(g, found, hot, factor)
     earthing = points.choice(Choice.EARTHING)
     apart = separated(g, factor) if (earthing == Earthing.SEPARATED).any() else None
-    unearthed = insulated(g, operating) if (earthing == Earthing.IT).any() else None
+    unearthed = insulated(g, operating, hot, found.loop) if (earthing == Earthing.IT).any() else None
     harm = severity(g, touch, overcurrent_s, residual)
     if apart is not None:
         harm = of_separated(harm, g, apart)

@@ -1,4 +1,4 @@
-"""What a separated supply would do: its source, a fault from pole to pole, two faults, a contact, what stays charged."""
+"""What a separated supply would do: its source, a fault pole to pole, two faults, a contact, what stays charged."""
 
 from dataclasses import dataclass
 
@@ -6,7 +6,7 @@ import numpy as np
 
 from faultloop.assessment.contact import Contact, contact
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Choice, EarthContacts, Earthing, Flags, Number, Reading, Reference
+from faultloop.assessment.points import Bound, Choice, EarthContacts, Earthing, Flags, Number, Reading, Reference
 from faultloop.assessment.rule_table import final_time
 from faultloop.electrical.body import discharge_time, stored_energy
 from faultloop.electrical.conductors import resistance
@@ -39,6 +39,7 @@ class Separated:
     pole_to_pole: Fault
     second_fault: Fault
     conductors_ohm: Array
+    class_i: Array
     several: Flags
     unbonded: Flags
     contact: Contact
@@ -60,9 +61,12 @@ def separated(g: Given, factor: Array) -> Separated:
     bonding = g.reading(Reading.BONDING)
     cores = wiring + number(Number.LEADS_OHM)
     both = Interval(*(cores + of for of in (bonding.least, bonding.greatest, bonding.nominal)))
-    found, at_earth = contact(g, voltage), _pole_at_earth(g, voltage)
+    at_earth = _pole_at_earth(g, voltage)
     joined = (points.choice(Choice.REFERENCE) == Reference.EARTHED) | at_earth
-    several = here & (_class_i(g) > 1.0)
+    joined |= points.bound[Reading.LOOP] == Bound.EXACT
+    found = contact(g, voltage, joined)
+    class_i = _class_i(g)
+    several = here & (class_i > 1.0)
     stored = (number(Number.STORED_UF), number(Number.STORED_V))
     return Separated(
         here=here,
@@ -74,6 +78,7 @@ def separated(g: Given, factor: Array) -> Separated:
         pole_to_pole=_pole_to_pole(g, voltage, source, wiring, factor),
         second_fault=_fault(g, voltage, _added(source, both, factor), source.least),
         conductors_ohm=both.nominal,
+        class_i=class_i,
         several=several,
         unbonded=several & (points.choice(Choice.EARTH_CONTACTS) == EarthContacts.UNCONNECTED),
         contact=found,

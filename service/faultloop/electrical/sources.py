@@ -102,4 +102,4 @@ def regulation(short_circuit_percent: Array, resistive_percent: Array, power_fac
         sine = np.sqrt(1.0 - power_factor**2)
     along = resistive_percent * power_factor + reactive * sine
     across = reactive * power_factor - resistive_percent * sine
-    return along + across * across / 200.0
+    return np.asarray(along + across * across / 200.0, np.float64)

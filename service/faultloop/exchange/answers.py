@@ -63,6 +63,19 @@ class Quantities(Answer):
     heated_earth_fault_loop_impedance_ohm: IntervalBody | None = None
     temperature_factor: float | None = None
     residual_current_multiple: float | None = None
+    transformer_ratio: float | None = None
+    rated_secondary_current_a: float | None = None
+    rated_primary_current_a: float | None = None
+    regulation_percent: float | None = None
+    source_impedance_ohm: IntervalBody | None = None
+    line_line_fault_current_a: IntervalBody | None = None
+    reflected_fault_current_a: IntervalBody | None = None
+    second_fault_current_a: IntervalBody | None = None
+    contact_current_ma: IntervalBody | None = None
+    first_fault_current_ma: IntervalBody | None = None
+    pole_capacitance_to_earth_nf: float | None = None
+    stored_energy_j: float | None = None
+    discharge_time_s: float | None = None
 
 
 class Condition(Answer):

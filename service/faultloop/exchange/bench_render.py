@@ -12,7 +12,7 @@ from faultloop.assessment.benches.texts import bench_texts
 from faultloop.assessment.benches.typical import typical
 from faultloop.assessment.points import Codes
 from faultloop.assessment.standing import Verdict
-from faultloop.assessment.texts import LANGUAGES
+from faultloop.assessment.texts import LANGUAGES, texts
 from faultloop.assessment.urgency import Urgency
 from faultloop.digests import digest, rounded
 from faultloop.electrical.body import discharge_time, stored_energy
@@ -192,19 +192,22 @@ class _Answer:
         ]
 
     def _cautions(self) -> list[Body]:
-        """Cautions of the points, and those of this bench."""
-        bench, told = self._solved.bench, self._words.texts.cautions
-        named = ["pole-to-pole", "upstream-blind", "this-state", "float-the-item"]
+        """Cautions of this bench, some of them every point's too, and those of its supplies; each once."""
+        bench, language = self._solved.bench, self._words.texts.language
+        named = ["pole-to-pole", "upstream-residual-blind", "separated-state"]
         if not all(self._solved.floats[state] for state in self._words.told_states.values()):
-            named.append("bench-tied")
+            named.append("bench-referenced")
         if any(item.stored is not None for item in bench.items):
-            named.append("stored-charge")
+            named.append("stored-energy")
+        own = ["float-the-item"]
         if any(supply.kind == "battery" for supply in bench.supplies):
-            named.append("battery-not-solved")
+            own.append("battery-not-solved")
         if any(item.live_chassis and bench.supply(item.fed_by).kind == "earthed" for item in bench.items):
-            named.append("plugs-as-stated")
-        own = [{"caution": name, "text": told[name]} for name in named]
-        return [*own, *(of for of in self._gathered("cautions", "caution") if of["caution"] not in named)]
+            own.append("plugs-as-stated")
+        told = [(name, texts(language).cautions[name].text) for name in named]
+        told += [(name, self._words.texts.cautions[name]) for name in own]
+        told += [(of["caution"], of["text"]) for of in self._gathered("cautions", "caution") if of["caution"] not in named]
+        return [{"caution": name, "text": text} for name, text in told]
 
     def _provenance(self, told: Body) -> Body:
         own = _data_digests(self._words.texts.language)

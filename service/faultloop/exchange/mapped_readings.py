@@ -26,6 +26,15 @@ PLAIN_READINGS = {
     "residual_operating_current_ma": Reading.OPERATING_CURRENT,
     "voltage_v": Reading.VOLTAGE,
     "voltage_neutral_to_earth_v": Reading.NEUTRAL_EARTH_VOLTAGE,
+    "voltage_l1_to_earth_v": Reading.L1_EARTH_VOLTAGE,
+    "voltage_l2_to_earth_v": Reading.L2_EARTH_VOLTAGE,
+    "contact_current_l1_ma": Reading.L1_CONTACT,
+    "contact_current_l2_ma": Reading.L2_CONTACT,
+    "winding_insulation_resistance_megohm": Reading.WINDING_INSULATION,
+    "bonding_resistance_ohm": Reading.BONDING,
+    "line_line_loop_impedance_ohm": Reading.LINE_LINE,
+    "first_fault_current_ma": Reading.FIRST_FAULT,
+    "monitored_insulation_kohm": Reading.MONITORED,
 }
 # Readings to which the leads add their own resistance.
 _THROUGH_LEADS = {
@@ -36,9 +45,10 @@ _THROUGH_LEADS = {
     Reading.PROTECTIVE,
     Reading.ORIGIN_LINE_NEUTRAL,
     Reading.BOARD_LOOP,
+    Reading.BONDING,
+    Reading.LINE_LINE,
 }
-_UNUSED_READINGS = {"line_line_loop_impedance_ohm", "standing_leakage_ma"}
-_UNUSED_SUPPLY = {"frequency_hz"}
+_UNUSED_READINGS = {"standing_leakage_ma"}
 _UNUSED_UPSTREAM = ("breaking_capacity_ka", "energy_limiting_class", "let_through_energy_a2s", "poles")
 
 
@@ -80,9 +90,8 @@ def put_readings(point: Mapped, request: rq.AssessmentRequest) -> None:
 
 def unused(request: rq.AssessmentRequest) -> list[str]:
     """Values that were given and on which nothing is decided: what is ignored is said."""
-    parts = (("supply", request.supply, _UNUSED_SUPPLY), ("readings", request.readings, _UNUSED_READINGS))
-    given = [(part, body, sorted(body.model_fields_set & names)) for part, body, names in parts]
-    found = [f"{part}.{name}" for part, body, names in given for name in names if getattr(body, name) is not None]
+    given = sorted(request.readings.model_fields_set & _UNUSED_READINGS)
+    found = [f"readings.{name}" for name in given if getattr(request.readings, name) is not None]
     device, own = request.residual_current_device, request.overcurrent_device
     found += ["residual_current_device.delay_ms"] if device and device.delay_ms is not None else []
     if isinstance(own, oc.MouldedCase) and own.settings.overload_time_s is not None:

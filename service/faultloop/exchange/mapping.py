@@ -26,6 +26,7 @@ from faultloop.exchange import overcurrent as oc
 from faultloop.exchange import requests as rq
 from faultloop.exchange.mapped import Mapped
 from faultloop.exchange.mapped_readings import put_readings, unused
+from faultloop.exchange.mapped_unearthed import put_unearthed, unused_unearthed
 from faultloop.exchange.own_rules import is_own
 from faultloop.protection import designations as ds
 from faultloop.protection.band import Band
@@ -67,7 +68,8 @@ def mapped(request: rq.AssessmentRequest, by: Tables | None = None) -> Mapped:
     _put_devices(point, request)
     _put_circuit(point, request)
     put_readings(point, request)
-    point.unused.extend(unused(request))
+    put_unearthed(point, request)
+    point.unused.extend(dict.fromkeys([*unused(request), *unused_unearthed(request)]))
     return point
 
 

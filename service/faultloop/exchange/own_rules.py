@@ -24,7 +24,7 @@ LONGEST_TITLE = 200
 CAUTION = "own-rules"
 STORED_NAME = re.compile(r"[a-z0-9]+(-[a-z0-9]+)*:[0-9]{4}(-[0-9]{2})?", re.ASCII)
 NEEDED_CLAUSES = frozenset(check.id for check in CHECKS)
-KNOWN_CLAUSES = NEEDED_CLAUSES | {f"{name}-tt" for name in NEEDED_CLAUSES}
+KNOWN_CLAUSES = NEEDED_CLAUSES | {f"{name}-{own}" for name in NEEDED_CLAUSES for own in ("tt", "it")}
 # Times the rated current: below the conventional tripping current no breaker is sure to operate at all.
 LEAST_MULTIPLE = 1.45
 

@@ -7,12 +7,13 @@ from typing import Any
 import numpy as np
 
 from faultloop.assessment.loops import Fault
-from faultloop.assessment.points import Flags, Number, Points
+from faultloop.assessment.points import EARTHED, Choice, Flags, Number, Points
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.digests import rounded_all
 from faultloop.electrical.fault_current import prospective_current
-from faultloop.electrical.measurement import Array
+from faultloop.electrical.measurement import Array, Interval
+from faultloop.exchange.quantities_unearthed import unearthed_quantities
 from faultloop.protection.band import faster
 
 Body = dict[str, Any]
@@ -80,23 +81,35 @@ def quantity_columns(points: Points, outcome: Outcome) -> QuantityColumns:
             np.where(given, prospective_current(q.rule(factor), voltage, z), np.nan)
             for factor, z in (("c_min", q.line_neutral.hot.greatest), ("c_max", q.line_neutral.cold.least))
         ]
-    # Nothing is reported of a current that a disbelieved loop or a lost earth leaves unknown.
+    # Nothing is reported of a current that a disbelieved loop or a lost earth leaves unknown, or that no fault drives.
     flows = (q.loops.fault == Fault.NONE) & ~q.given.earth_lost
+    if q.separated is not None or q.insulated is not None:
+        flows &= np.isin(points.choice(Choice.EARTHING), tuple(EARTHED))
     touch_least, touch_greatest = _touch_ends(outcome, voltage)
     ends = {
-        "prospective_earth_fault_current_a": _ends(_where(flows, q.current.least), _where(flows, q.current.greatest)),
-        "prospective_short_circuit_current_a": _ends(short[0], short[1]),
-        "touch_voltage_v": _ends(_where(flows, touch_least), _where(flows, touch_greatest)),
-        "earth_fault_loop_impedance_ohm": _ends(q.loops.loop.least, q.loops.loop.greatest),
-        "heated_earth_fault_loop_impedance_ohm": _ends(q.hot.least, q.hot.greatest),
+        "prospective_earth_fault_current_a": (_where(flows, q.current.least), _where(flows, q.current.greatest)),
+        "prospective_short_circuit_current_a": (short[0], short[1]),
+        "touch_voltage_v": (_where(flows, touch_least), _where(flows, touch_greatest)),
+        "earth_fault_loop_impedance_ohm": (q.loops.loop.least, q.loops.loop.greatest),
+        "heated_earth_fault_loop_impedance_ohm": (q.hot.least, q.hot.greatest),
     }
     time, by = _disconnection(outcome, flows)
     plain = {
-        "required_disconnection_time_s": rounded_all(np.where(q.wanting == 0, q.required_s, np.nan).tolist()),
-        "temperature_factor": rounded_all(q.factor.tolist()),
-        "residual_current_multiple": rounded_all(q.residual.multiple.tolist()),
+        "required_disconnection_time_s": np.where(q.wanting == 0, q.required_s, np.nan),
+        "temperature_factor": q.factor,
+        "residual_current_multiple": q.residual.multiple,
     }
-    return QuantityColumns(ends, time, by, plain)
+    for here, own_ends, own_plain in unearthed_quantities(points, outcome):
+        ends |= {name: _either(here, own, ends.get(name)) for name, own in own_ends.items()}
+        plain |= {name: np.where(here, own, plain.get(name, np.nan)) for name, own in own_plain.items()}
+    told = {name: _ends(*pair) for name, pair in ends.items()}
+    return QuantityColumns(told, time, by, {name: rounded_all(column.tolist()) for name, column in plain.items()})
+
+
+def _either(here: Flags, own: Interval, other: tuple[Array, Array] | None) -> tuple[Array, Array]:
+    """The ends of one quantity: where the supply is of the kind at hand its own, else what stands there already."""
+    least, greatest = other or (np.full(here.shape, np.nan),) * 2
+    return np.where(here, own.least, least), np.where(here, own.greatest, greatest)
 
 
 def _where(known: Flags, of: Array) -> Array:

@@ -10,8 +10,18 @@ import numpy as np
 from faultloop import __version__
 from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.explain import Explainer, Names, Quoted, cautions_of
+from faultloop.assessment.judged import Check
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import Points, Reading, from_rows
+from faultloop.assessment.points import (
+    EARTHED,
+    INSULATED,
+    SEPARATED,
+    Choice,
+    Earthing,
+    Points,
+    Reading,
+    from_rows,
+)
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.texts import LANGUAGES, Texts, texts
 from faultloop.assessment.urgency import Urgency
@@ -26,6 +36,8 @@ from faultloop.protection.catalogue import catalogue
 
 Body = dict[str, Any]
 _VERDICTS = {code: word for word, code in Verdict.codes().items()}
+_OWN_CLAUSE = {Earthing.TT: "tt", Earthing.IT: "it"}
+_NOT_CONCERNED = {Earthing.IT: "not-concerned-it", Earthing.SEPARATED: "not-concerned-separated"}
 LOOP_ROWS = np.array([check.quantity == "earth_fault_loop_impedance_ohm" for check in CHECKS])[:, None]
 _URGENCIES = {code: word for word, code in Urgency.codes().items()}
 
@@ -62,7 +74,7 @@ class _Fixed:
 
     digest: str
     titles: list[str]
-    not_applicable: list[Body]
+    not_applicable: dict[int, list[Body | None]]
     not_examined: list[list[Body | None]]
     subjects: list[Body]
 
@@ -73,10 +85,22 @@ def _fixed(language: str) -> _Fixed:
     return _Fixed(
         digest=digest(told.model_dump(mode="json")),
         titles=[told.checks[check.id].title for check in CHECKS],
-        not_applicable=[{"check": check.id, "text": told.checks[check.id].applies_not} for check in CHECKS],
+        not_applicable={
+            earthing: [_not_applicable(told, check, earthing) for check in CHECKS]
+            for earthing in EARTHED | INSULATED | SEPARATED
+        },
         not_examined=[[_said_alike(told, check.id, reason) for reason in check.reasons] for check in CHECKS],
         subjects=[_not_examined(name, "out-of-scope", text, None) for name, text in told.subjects.items()],
     )
+
+
+def _not_applicable(told: Texts, check: Check, earthing: int) -> Body | None:
+    """Entry of a check that does not apply; of checks for other supplies only those of an earthed one are missed."""
+    if earthing in check.supplies:
+        return {"check": check.id, "text": told.checks[check.id].applies_not}
+    if earthing in EARTHED or check.supplies.isdisjoint(EARTHED):
+        return None
+    return {"check": check.id, "text": told.phrases[_NOT_CONCERNED[earthing]]}
 
 
 def _said_alike(told: Texts, check: str, reason: str) -> Body | None:
@@ -129,7 +153,7 @@ class Renderer:
         found = outcome.findings
         # Points first: an answer walks through the checks of one point.
         self._verdict, self._reason = found.verdict.T.tolist(), found.reason.T.tolist()
-        self._counts, self._tt = found.counts.T.tolist(), outcome.quantities.tt.tolist()
+        self._counts, self._earthing = found.counts.T.tolist(), points.choice(Choice.EARTHING).tolist()
         self._values = _Values(points, outcome)
         self._quantities = quantity_columns(points, outcome)
 
@@ -139,11 +163,12 @@ class Renderer:
         quoted = self._explainer.quoted(at, names)
         cautions: set[str] = set(point.cautions)
         findings, not_examined, not_applicable = [], [], []
-        said, counts = self._explainer.said, self._counts[at]
+        said, counts, earthing = self._explainer.said, self._counts[at], self._earthing[at]
         settled = zip(CHECKS, self._verdict[at], self._reason[at], strict=True)
         for row, (check, verdict, reason) in enumerate(settled):
             if verdict == Verdict.NOT_APPLICABLE:
-                not_applicable.append(self._fixed.not_applicable[row])
+                if (told_why := self._fixed.not_applicable[earthing][row]) is not None:
+                    not_applicable.append(told_why)
                 continue
             if verdict == Verdict.NOT_EXAMINED and (alike := self._fixed.not_examined[row][reason]) is not None:
                 not_examined.append(alike)
@@ -200,7 +225,8 @@ class Renderer:
         if check.group is not None:
             body["group"] = check.group
         body["counts"] = self._counts[at][row]
-        body["clause"] = (clauses.get(f"{check.id}-tt") if self._tt[at] else None) or clauses[check.id]
+        own = _OWN_CLAUSE.get(self._earthing[at])
+        body["clause"] = (clauses.get(f"{check.id}-{own}") if own else None) or clauses[check.id]
         body["reason"] = check.reasons[self._reason[at][row]]
         body["explanation"] = explanation
         if question is not None and Verdict.FAIL < verdict < Verdict.PASS_WITH_CONDITIONS:

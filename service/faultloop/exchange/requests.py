@@ -10,6 +10,7 @@ from pydantic_core import PydanticCustomError
 from faultloop.exchange.fields import WHOLE, Closed, Label, Measured, number
 from faultloop.exchange.overcurrent import OvercurrentDevice, listed
 from faultloop.exchange.own_rules import OwnRules, own_rules
+from faultloop.exchange.unearthed import InsulatedSupply, SeparatedSupply
 from faultloop.protection.residual import residual_table
 from faultloop.rules.loader import LoadedRules, resolve, shipped
 
@@ -132,6 +133,14 @@ class Readings(Closed):
     standing_leakage_ma: Measured | None = None
     voltage_v: Measured | None = None
     voltage_neutral_to_earth_v: Measured | None = None
+    voltage_l1_to_earth_v: Measured | None = None
+    voltage_l2_to_earth_v: Measured | None = None
+    contact_current_l1_ma: Measured | None = None
+    contact_current_l2_ma: Measured | None = None
+    winding_insulation_resistance_megohm: Measured | None = None
+    bonding_resistance_ohm: Measured | None = None
+    first_fault_current_ma: Measured | None = None
+    monitored_insulation_kohm: Measured | None = None
     polarity: Literal["correct", "reversed", "not-tested"] | None = None
 
 
@@ -198,6 +207,8 @@ class AssessmentRequest(Closed):
 
     point: Point
     supply: Supply = Field(default_factory=Supply)
+    separated_supply: SeparatedSupply | None = None
+    it_supply: InsulatedSupply | None = None
     circuit: Circuit = Field(default_factory=Circuit)
     board: Board | None = None
     overcurrent_device: OvercurrentDevice | None = None

@@ -84,6 +84,7 @@ BOUNDS: dict[str, Bounds] = {
     "separation.short_circuit_tolerance": Bounds(0, 100),
     "separation.capacitance_tolerance": Bounds(0, 100),
     "separation.interwinding": Bounds(0, 1000),
+    "separation.interwinding_screened": Bounds(0, 1000),
     "separation.wiring_capacitance": Bounds(0, 100),
     "separation.winding_basic": Bounds(0, 1000, True),
     "separation.winding_reinforced": Bounds(0, 1000, True),

@@ -148,7 +148,7 @@ class Urgency(Sheet):
 
 
 class Separation(Sheet):
-    """What a source asks and gives whose live parts are not earthed: a separated supply's limits, and an IT supply's."""
+    """Limits of supplies whose live parts are not earthed, and what is taken where it is not stated."""
 
     voltage: Volts
     wiring_length: Metres
@@ -160,6 +160,7 @@ class Separation(Sheet):
     short_circuit_tolerance: Percent
     capacitance_tolerance: Percent
     interwinding: Nanofarads
+    interwinding_screened: Nanofarads
     wiring_capacitance: NanofaradsPerMetre
     winding_basic: Megohms
     winding_reinforced: Megohms

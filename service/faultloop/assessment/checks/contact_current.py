@@ -14,7 +14,7 @@ def _applies(points: Points, _: Quantities) -> Flags:
     return np.ones(points.count, dtype=np.bool_)
 
 
-def _judge(points: Points, q: Quantities) -> Judged:
+def _judge(_: Points, q: Quantities) -> Judged:
     found = q.separated
     assert found is not None
     current, limit = found.contact.current_ma, q.rule("separation_contact_most")

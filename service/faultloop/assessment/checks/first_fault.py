@@ -4,21 +4,22 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import INSULATED, Flags, Points, Reading
+from faultloop.assessment.points import INSULATED, Choice, Current, Flags, Points, Reading
 from faultloop.assessment.quantities import Quantities
 
-REASONS = (*COMPARISON, "electrode-missing", "current-missing", "reading-over-range")
+REASONS = (*COMPARISON, "direct-current-not-covered", "electrode-missing", "current-missing", "reading-over-range")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
     return np.ones(points.count, dtype=np.bool_)
 
 
-def _judge(_: Points, q: Quantities) -> Judged:
+def _judge(points: Points, q: Quantities) -> Judged:
     found = q.insulated
     assert found is not None
     touch, limit = found.touch_v, q.rule("touch_voltage")
     cases = Cases(REASONS)
+    cases.when(points.choice(Choice.CURRENT) == Current.DC, Standing.UNDETERMINED, "direct-current-not-covered")
     cases.when(~q.given.known[Reading.ELECTRODE], Standing.UNDETERMINED, "electrode-missing")
     cases.when(np.isnan(found.first_fault_ma.nominal), Standing.UNDETERMINED, "current-missing")
     cases.when(np.isinf(touch.greatest) & ~(touch.least > limit), Standing.UNDETERMINED, "reading-over-range")

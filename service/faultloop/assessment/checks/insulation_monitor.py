@@ -2,12 +2,19 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_LEAST, Cases, Check, Condition, Judged, Standing
 from faultloop.assessment.points import INSULATED, Choice, Flags, Monitor, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities
 
-REASONS = (*COMPARISON, "absent", "monitor-unknown", "set-point-unknown", "first-fault-standing", "tested", "untested")
+REASONS = (
+    "absent",
+    "monitor-unknown",
+    "set-point-unknown",
+    "first-fault-standing",
+    "untested",
+    "above-set-point",
+    "tested",
+)
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -25,6 +32,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(known & np.isnan(limit), Standing.UNDETERMINED, "set-point-unknown")
     cases.when(standing, Standing.MET, "first-fault-standing")
     cases.when(untested, Standing.MET, "untested")
+    cases.when(known, Standing.MET, "above-set-point")
     cases.when(~known, Standing.MET, "tested")
     bits = np.where(standing, 1 << Condition.FIRST_FAULT_CLEARED, 0)
     bits |= np.where(untested, 1 << Condition.MONITOR_TESTED, 0)

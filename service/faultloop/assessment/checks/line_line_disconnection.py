@@ -2,14 +2,13 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing, Verdict, compare
 from faultloop.assessment.points import SEPARATED, Choice, Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.withstand import withstands
 
 REASONS = (
-    *COMPARISON,
+    "within-limit",
     "voltage-unknown",
     "loop-unknown",
     "device-missing",

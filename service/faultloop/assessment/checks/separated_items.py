@@ -2,14 +2,12 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
 from faultloop.assessment.points import SEPARATED, Choice, EarthContacts, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
 REASONS = (
-    *COMPARISON,
     "earth-contacts-earthed",
     "items-unknown",
     "not-bonded",
@@ -17,6 +15,7 @@ REASONS = (
     "several-bonded",
     "several-without-exposed-parts",
     "one-of-several-outlets",
+    "one-item",
 )
 
 
@@ -38,6 +37,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(found.several & bonded, Standing.MET, "several-bonded")
     cases.when(more, Standing.MET, "several-without-exposed-parts")
     cases.when(~single, Standing.MET, "one-of-several-outlets")
+    cases.when(np.ones(points.count, np.bool_), Standing.MET, "one-item")
     bits = np.where(more, 1 << Condition.SUPERVISION, np.where(single, 0, 1 << Condition.ONE_ITEM_AT_A_TIME))
     return cases.settle(Interval(items, items, items), np.ones(points.count), bits)
 

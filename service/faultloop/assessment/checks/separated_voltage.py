@@ -2,25 +2,28 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Flags, Points
+from faultloop.assessment.points import SEPARATED, Choice, Current, Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = (*COMPARISON, "voltage-unknown")
+REASONS = ("direct-current-not-covered", "voltage-unknown", "within-limit", "over-limit")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
     return np.ones(points.count, dtype=np.bool_)
 
 
-def _judge(_: Points, q: Quantities) -> Judged:
+def _judge(points: Points, q: Quantities) -> Judged:
     found = q.separated
     assert found is not None
     cases = Cases(REASONS)
+    limit = q.rule("separation_voltage")
+    cases.when(points.choice(Choice.CURRENT) == Current.DC, Standing.UNDETERMINED, "direct-current-not-covered")
     cases.when(np.isnan(found.voltage), Standing.UNDETERMINED, "voltage-unknown")
-    return cases.settle(Interval(found.voltage, found.voltage, found.voltage), q.rule("separation_voltage"))
+    cases.when(found.voltage <= limit, Standing.MET, "within-limit")
+    cases.when(found.voltage > limit, Standing.UNMET, "over-limit")
+    return cases.settle(Interval(found.voltage, found.voltage, found.voltage), limit)
 
 
 CHECK = Check(

@@ -2,16 +2,15 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Choice, Flags, Points, Reading, Reference
+from faultloop.assessment.points import SEPARATED, Bound, Choice, Flags, Points, Reading, Reference
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (
-    *COMPARISON,
     "pole-earthed",
     "contact-shows-earth",
     "pole-at-earth",
+    "loop-reads-earth",
     "floats-by-solution",
     "contact-shows-none",
     "insulation-shows-none",
@@ -33,8 +32,11 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(reference == Reference.EARTHED, Standing.UNMET, "pole-earthed", defect=True)
     cases.when(contact.current_ma.least > limit, Standing.UNMET, "contact-shows-earth", defect=True)
     cases.when(found.pole_at_earth, Standing.UNMET, "pole-at-earth", defect=True)
+    # Between a pole and earth of a floating supply a loop tester finds nothing to read.
+    loop_read = points.bound[Reading.LOOP] == Bound.EXACT
+    cases.when(loop_read, Standing.UNMET, "loop-reads-earth", defect=True)
     cases.when(contact.solved & (reference == Reference.FLOATING), Standing.MET, "floats-by-solution")
-    cases.when(contact.read & (contact.current_ma.greatest <= limit), Standing.MET, "contact-shows-none")
+    cases.when(contact.every_pole_read & (contact.current_ma.greatest <= limit), Standing.MET, "contact-shows-none")
     cases.when(insulation.least >= q.rule("insulation"), Standing.MET, "insulation-shows-none")
     voltages = known[Reading.L1_EARTH_VOLTAGE] | known[Reading.L2_EARTH_VOLTAGE]
     cases.when(voltages, Standing.UNDETERMINED, "pole-voltages-alone")

@@ -2,20 +2,19 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Flags, Number, Points
+from faultloop.assessment.points import SEPARATED, Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = (*COMPARISON, "not-stated", "discharge-unknown", "slow")
+REASONS = ("not-stated", "discharge-unknown", "slow", "quick")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
     return np.ones(points.count, dtype=np.bool_)
 
 
-def _judge(points: Points, q: Quantities) -> Judged:
+def _judge(_: Points, q: Quantities) -> Judged:
     found = q.separated
     assert found is not None
     time, limit = found.discharge_s, q.rule("separation_discharge_time")
@@ -25,6 +24,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
         return cases.settle_unvalued()
     cases.when(np.isnan(time) | np.isinf(time), Standing.UNDETERMINED, "discharge-unknown")
     cases.when(time > limit, Standing.MET, "slow")
+    cases.when(time <= limit, Standing.MET, "quick")
     bits = np.where(time > limit, 1 << Condition.DISCHARGED_FIRST, 0)
     return cases.settle(Interval(time, time, time), limit, bits)
 

@@ -2,13 +2,12 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
 from faultloop.assessment.points import SEPARATED, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = (*COMPARISON, "not-stated", "over-guidance-read", "over-guidance")
+REASONS = ("not-stated", "over-guidance-read", "over-guidance", "voltage-unknown", "within-limit")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -23,9 +22,11 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(np.isnan(length), Standing.NOT_EXAMINED, "not-stated")
     over, contact = length > limit, found.contact
     # The figure is recommended for the sake of the current that a contact carries: where that was read, it decides.
-    read = contact.read & (contact.current_ma.greatest <= q.rule("separation_contact_most"))
+    read = contact.every_pole_read & (contact.current_ma.greatest <= q.rule("separation_contact_most"))
     cases.when(over & read, Standing.MET, "over-guidance-read")
     cases.when(over, Standing.UNDETERMINED, "over-guidance")
+    cases.when(np.isnan(found.voltage), Standing.NOT_EXAMINED, "voltage-unknown")
+    cases.when(length <= limit, Standing.MET, "within-limit")
     return cases.settle(Interval(length, length, length), limit)
 
 
