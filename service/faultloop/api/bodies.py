@@ -14,6 +14,9 @@ from pydantic import TypeAdapter, ValidationError
 
 from faultloop.api.problems import Refused
 from faultloop.digests import canonical_bytes
+from faultloop.exchange.bench_faults import validated_json
+from faultloop.exchange.bench_judging import bench_bytes
+from faultloop.exchange.bench_networks import BenchRequest
 from faultloop.exchange.own_rules import LONGEST_SET, OwnRules, own_rules
 from faultloop.exchange.requests import UNKNOWN_RULES, AssessmentRequest
 from faultloop.rules.loader import LoadedRules, shipped
@@ -40,6 +43,12 @@ OWN_RULES_BODY: dict[str, Any] = {
     "requestBody": {
         "required": True,
         "content": {"application/json": {"schema": {"$ref": "#/components/schemas/OwnRuleSet"}}},
+    }
+}
+BENCH_BODY: dict[str, Any] = {
+    "requestBody": {
+        "required": True,
+        "content": {"application/json": {"schema": {"$ref": "#/components/schemas/BenchRequest"}}},
     }
 }
 _OWN_RULES: TypeAdapter[Any] = TypeAdapter(OwnRules)
@@ -75,6 +84,17 @@ async def read_rule_set(request: Request) -> tuple[LoadedRules, LoadedRules | No
         return own_rules(said), shipped().get(said.extends or "")
     except ValidationError as error:
         raise _refused(error, raw) from None
+
+
+async def read_bench(request: Request) -> BenchRequest:
+    """Give a validated bench whose parts fit together."""
+    raw = await _json(request, request.app.state.max_body_bytes)
+    try:
+        body = validated_json(raw)
+    except ValidationError as error:
+        raise _refused(error, raw) from None
+    refuse_duplicates(raw, bench_bytes(body))
+    return body
 
 
 async def _json(request: Request, most: int) -> bytes:

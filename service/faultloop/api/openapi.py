@@ -10,7 +10,10 @@ from faultloop.api.problems import KINDS, MEDIA_TYPE
 from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer, answer_csv
 from faultloop.exchange.batches import BatchQuery, BatchRequest
-from faultloop.exchange.examples import EXAMPLE_BATCH, EXAMPLE_FILE, EXAMPLE_REQUEST, EXAMPLE_RULES
+from faultloop.exchange.bench_faults import validated
+from faultloop.exchange.bench_networks import BenchRequest
+from faultloop.exchange.bench_render import bench_answer
+from faultloop.exchange.examples import EXAMPLE_BATCH, EXAMPLE_BENCH, EXAMPLE_FILE, EXAMPLE_REQUEST, EXAMPLE_RULES
 from faultloop.exchange.judging import judged
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
@@ -41,6 +44,7 @@ def document(app: FastAPI) -> dict[str, Any]:
                 _mend(operation)
         _put_examples(schema)
         _put_batch_examples(schema)
+        _put_bench_example(schema)
         app.openapi_schema = schema
     return app.openapi_schema
 
@@ -48,7 +52,7 @@ def document(app: FastAPI) -> dict[str, Any]:
 def _put_request_schemas(schema: dict[str, Any]) -> None:
     """The body is read from its bytes, so the framework does not know its schema."""
     components = schema["components"]["schemas"]
-    for model in (AssessmentRequest, BatchRequest):
+    for model in (AssessmentRequest, BatchRequest, BenchRequest):
         body = model.model_json_schema(ref_template="#/components/schemas/{model}")
         components |= body.pop("$defs", {}) | {model.__name__: body}
     schema["components"]["schemas"] = dict(sorted(components.items()))
@@ -56,7 +60,8 @@ def _put_request_schemas(schema: dict[str, Any]) -> None:
 
 def _open_answers(schema: dict[str, Any]) -> None:
     """Requests are closed; an answer may gain a field, and a client must bear it."""
-    asked = {"AssessmentRequest", *AssessmentRequest.model_json_schema().get("$defs", {})}
+    bodies = (AssessmentRequest, BenchRequest)
+    asked = {name for body in bodies for name in (body.__name__, *body.model_json_schema().get("$defs", {}))}
     for name, model in schema["components"]["schemas"].items():
         if name not in asked:
             model.pop("additionalProperties", None)
@@ -106,6 +111,16 @@ def _put_batch_examples(schema: dict[str, Any]) -> None:
             examples[form] = {"summary": f"{summary}, answered", "value": told}
             if form == "csv":
                 answered["text/csv"]["examples"] = {form: {"summary": "The file", "value": answer_csv(batch)}}
+
+
+def _put_bench_example(schema: dict[str, Any]) -> None:
+    """One bench, solved when the document is written."""
+    operation = schema["paths"]["/v1/bench-networks"]["post"]
+    body = operation["requestBody"]["content"]["application/json"]
+    body["examples"] = {"clip": {"summary": "A clip about to be made", "value": EXAMPLE_BENCH}}
+    content = operation["responses"]["200"]["content"]["application/json"]
+    answer = json.loads(json_bytes(bench_answer(validated(EXAMPLE_BENCH))))
+    content["examples"] = {"clip": {"summary": "A clip about to be made", "value": answer}}
 
 
 def problem_responses(model: Any) -> dict[int | str, dict[str, Any]]:

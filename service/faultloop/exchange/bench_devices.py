@@ -5,7 +5,7 @@ import math
 from faultloop.assessment.benches.consequences import Seen
 from faultloop.assessment.benches.solving import Ends
 from faultloop.assessment.benches.texts import BenchTexts
-from faultloop.exchange.bench_networks import BatterySupply, BenchRequest, BenchSupply, EarthedSupply
+from faultloop.exchange.bench_networks import BatteryBenchSupply, BenchRequest, BenchSupply, EarthedBenchSupply
 from faultloop.exchange.bench_words import Body, ends_body, short
 from faultloop.exchange.mapping import overcurrent_device
 from faultloop.protection.band import Band
@@ -15,7 +15,7 @@ from faultloop.rules.sheets import RuleSet
 
 # At half of its rated residual current or less a device does not trip (IEC 61008-1, 5.3.4).
 NON_OPERATING = 0.5
-LEAST_TOLD_A = 1e-9
+LEAST_TOLD_A = 1e-6
 MILLI = 1000.0
 
 
@@ -26,10 +26,11 @@ def devices_seen(request: BenchRequest, rules: RuleSet, found: list[Seen], texts
     told = []
     for of in found:
         supply = bodies[of.supply.id]
-        if isinstance(supply, EarthedSupply):
+        if isinstance(supply, EarthedBenchSupply):
             told.append(_residual(supply, of, texts, ahead=supply.id in feeding))
         told.append(_overcurrent(supply, of, rules, texts))
-    return told
+    # A device that is not stated and sees nothing is not worth a word.
+    return [of for of in told if of["outcome"] != "absent" or of["current_a"]["greatest"] > 0.0]
 
 
 def _between(ends: Ends, scale: float) -> str:
@@ -43,7 +44,7 @@ def _greatest_time(band: Band, scale: float, current: float) -> float:
     return min((time for at, time in band.slow if current >= at * scale), default=math.inf)
 
 
-def _residual(supply: EarthedSupply, of: Seen, texts: BenchTexts, *, ahead: bool) -> Body:
+def _residual(supply: EarthedBenchSupply, of: Seen, texts: BenchTexts, *, ahead: bool) -> Body:
     quoted = {"supply": supply.id, "current": _between(of.residual_a, MILLI)}
     body: Body = {"supply": supply.id, "sees": "residual-current"}
     current = ends_body(float(of.residual_a.least), float(of.residual_a.greatest))
@@ -67,7 +68,7 @@ def _residual(supply: EarthedSupply, of: Seen, texts: BenchTexts, *, ahead: bool
 
 
 def _overcurrent(supply: BenchSupply, of: Seen, rules: RuleSet, texts: BenchTexts) -> Body:
-    assert not isinstance(supply, BatterySupply)
+    assert not isinstance(supply, BatteryBenchSupply)
     quoted = {"supply": supply.id, "current": _between(of.given_a, 1.0)}
     body: Body = {"supply": supply.id, "sees": "current"}
     current = ends_body(float(of.given_a.least), float(of.given_a.greatest))

@@ -8,7 +8,7 @@ from typing import Any
 from pydantic import ValidationError
 from pydantic_core import InitErrorDetails, PydanticCustomError
 
-from faultloop.exchange.bench_networks import BenchContact, BenchLink, BenchRequest, EarthedSupply, SeparatedSupply
+from faultloop.exchange.bench_networks import BenchContact, BenchLink, BenchRequest, EarthedBenchSupply, SeparatedBenchSupply
 
 Fault = tuple[tuple[str | int, ...], str, str]
 MOST_NAMED = 60
@@ -71,8 +71,8 @@ def _feeding(request: BenchRequest) -> Iterator[Fault]:
             place = ("items", at, "chassis_resistance_ohm")
             yield place, "chassis_not_live", "say by live_chassis which pole the chassis is joined to"
     for at, supply in enumerate(request.supplies):
-        if isinstance(supply, SeparatedSupply) and supply.fed_from is not None and kinds.get(supply.fed_from) != "earthed":
-            earthed = ", ".join(s.id for s in request.supplies if isinstance(s, EarthedSupply)) or "none yet"
+        if isinstance(supply, SeparatedBenchSupply) and supply.fed_from is not None and kinds.get(supply.fed_from) != "earthed":
+            earthed = ", ".join(s.id for s in request.supplies if isinstance(s, EarthedBenchSupply)) or "none yet"
             told = f"the primary is fed from an earthed supply of this bench; there are: {earthed}"
             yield ("supplies", at, "fed_from"), "unknown_supply", told
 
@@ -82,7 +82,7 @@ def names_of(request: BenchRequest) -> list[str]:
     names = ["earth"]
     for supply in request.supplies:
         names += [f"{supply.id}.L1", f"{supply.id}.L2"]
-        if isinstance(supply, SeparatedSupply) and supply.bonding != "none":
+        if isinstance(supply, SeparatedBenchSupply) and supply.bonding != "none":
             names.append(f"{supply.id}.bonding")
     for item in request.items:
         names += [f"{item.id}.{end}" for end in ("case", "L1", "L2")]
@@ -128,6 +128,6 @@ def _unknown(name: str, names: list[str], feeds: dict[str, str]) -> str:
 
 
 def _supplies_needed(request: BenchRequest) -> Iterator[Fault]:
-    if not any(isinstance(supply, SeparatedSupply) for supply in request.supplies):
+    if not any(isinstance(supply, SeparatedBenchSupply) for supply in request.supplies):
         told = "a bench needs a separated supply: nothing else can float; judge earthed outlets as points"
         yield ("supplies",), "no_separated_supply", told

@@ -10,7 +10,7 @@ from faultloop.assessment.benches.solving import SolvedBench
 from faultloop.assessment.points import Number, Points, from_rows
 from faultloop.assessment.verdicts import Outcome, decide
 from faultloop.digests import canonical_bytes, sha256
-from faultloop.exchange.bench_networks import BenchRequest, SeparatedSupply
+from faultloop.exchange.bench_networks import BenchRequest, SeparatedBenchSupply
 from faultloop.exchange.mapped import Mapped
 from faultloop.exchange.mapping import mapped, tables_of
 from faultloop.exchange.render import Body, Renderer
@@ -34,7 +34,7 @@ def bench_bytes(request: BenchRequest) -> bytes:
 
 def judged_bench(request: BenchRequest, solved: SolvedBench, input_digest: str, language: str) -> JudgedBench:
     """Judge every separated supply in every state."""
-    bodies = sorted((s for s in request.supplies if isinstance(s, SeparatedSupply)), key=lambda s: s.id)
+    bodies = sorted((s for s in request.supplies if isinstance(s, SeparatedBenchSupply)), key=lambda s: s.id)
     points_of = [_point(request, body) for body in bodies]
     by = tables_of(points_of)
     given = [mapped(point, by) for point in points_of]
@@ -67,7 +67,7 @@ def _told(
     return [renderer.answer(row, given[row % len(given)], input_digest) for row in range(len(at))]
 
 
-def _point(request: BenchRequest, body: SeparatedSupply) -> AssessmentRequest:
+def _point(request: BenchRequest, body: SeparatedBenchSupply) -> AssessmentRequest:
     """A separated supply as a point of its own."""
     told = {
         "point": {"label": request.label},
@@ -85,7 +85,7 @@ def _point(request: BenchRequest, body: SeparatedSupply) -> AssessmentRequest:
     return AssessmentRequest.model_validate(told)
 
 
-def _put_supply(point: Mapped, request: BenchRequest, body: SeparatedSupply) -> None:
+def _put_supply(point: Mapped, request: BenchRequest, body: SeparatedBenchSupply) -> None:
     """What the checks ask of the transformer."""
     numbers, told = point.row.numbers, body.transformer
     numbers[Number.BETWEEN_LINES_V] = body.nominal_voltage_between_lines_v

@@ -6,13 +6,13 @@ from typing import Any
 from faultloop.assessment.benches.network import Bench, Item, Link, Span, Stored, Supply
 from faultloop.assessment.benches.typical import Typical, TypicalTable, typical
 from faultloop.exchange.bench_networks import (
-    BatterySupply,
+    BatteryBenchSupply,
     BenchItem,
     BenchLink,
     BenchRequest,
     BenchSupply,
-    EarthedSupply,
-    SeparatedSupply,
+    EarthedBenchSupply,
+    SeparatedBenchSupply,
 )
 
 DEVICE_FREE = 0.0
@@ -69,13 +69,13 @@ def mapped_bench(request: BenchRequest) -> MappedBench:
 
 
 def _supply(found: MappedBench, body: BenchSupply, by_id: dict[str, BenchSupply], table: TypicalTable) -> Supply:
-    if isinstance(body, BatterySupply):
+    if isinstance(body, BatteryBenchSupply):
         return Supply(body.id, "battery", DEVICE_FREE, BATTERY_OHM)
-    if isinstance(body, EarthedSupply):
+    if isinstance(body, EarthedBenchSupply):
         loop = found.span(body.earth_fault_loop_impedance_ohm, "earth-loop", body.id, table.earth_loop)
         return Supply(body.id, "earthed", body.nominal_voltage_to_earth_v, loop)
     feeding = by_id.get(body.fed_from or "")
-    primary = feeding.nominal_voltage_to_earth_v if isinstance(feeding, EarthedSupply) else table.mains.usual
+    primary = feeding.nominal_voltage_to_earth_v if isinstance(feeding, EarthedBenchSupply) else table.mains.usual
     told = body.transformer
     return Supply(
         id=body.id,
@@ -91,7 +91,7 @@ def _supply(found: MappedBench, body: BenchSupply, by_id: dict[str, BenchSupply]
     )
 
 
-def _source(found: MappedBench, body: SeparatedSupply, table: TypicalTable) -> Span:
+def _source(found: MappedBench, body: SeparatedBenchSupply, table: TypicalTable) -> Span:
     """u_k/100·U²/S, by what is stated of it."""
     told = body.transformer
     if told.rated_power_va is None:
@@ -132,7 +132,7 @@ def _item(found: MappedBench, body: BenchItem, supply: BenchSupply, table: Typic
 
 def _filter(found: MappedBench, body: BenchItem, supply: BenchSupply, table: TypicalTable) -> Span | None:
     """Line to case or signal ground; what runs on a battery has none unless it is stated."""
-    if body.filter_capacitance_nf is None and isinstance(supply, BatterySupply):
+    if body.filter_capacitance_nf is None and isinstance(supply, BatteryBenchSupply):
         return None
     if body.protection_class == "I":
         return found.span(body.filter_capacitance_nf, "filter-class-1", body.id, table.filter_class_1)

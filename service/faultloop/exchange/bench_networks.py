@@ -1,8 +1,8 @@
 """The body of a bench: supplies, the items that they feed, links between them, and a link that is planned."""
 
-from typing import Annotated, Any, Literal
+from typing import Annotated, Any, Literal, Self
 
-from pydantic import BaseModel, ConfigDict, Discriminator, Field, Tag, model_validator
+from pydantic import BaseModel, Discriminator, Field, Tag, model_validator
 
 from faultloop.exchange.fields import Closed, Label, number
 from faultloop.exchange.overcurrent import OvercurrentDevice
@@ -34,33 +34,57 @@ def _shape(value: Any) -> str:
     return "range" if isinstance(value, (dict, BaseModel)) else "number"
 
 
-def _amount(unit: str, most: float, description: str) -> Any:
-    """A number, or two ends between which it lies; left out it is unknown, and never zero."""
+class Ends(Closed):
+    """Two ends between which a value lies."""
 
-    class Ends(Closed):
-        """Two ends between which a value lies."""
-
-        model_config = ConfigDict(title=f"Ends in {unit}")
-        least: Annotated[float, number(unit, most=most, description="Least")]
-        greatest: Annotated[float, number(unit, most=most, description="Greatest")]
-
-        @model_validator(mode="after")
-        def _in_order(self) -> "Ends":
-            if self.least > self.greatest:
-                raise ValueError("least must not exceed greatest")
-            return self
-
-    Ends.__name__ = Ends.__qualname__ = {"nF": "NanofaradEnds", "ohm": "OhmEnds", "%": "PercentEnds"}[unit]
-    plain = Annotated[float, number(unit, most=most, description=description)]
-    return Annotated[Annotated[plain, Tag("number")] | Annotated[Ends, Tag("range")], Discriminator(_shape)]
+    @model_validator(mode="after")
+    def _in_order(self) -> Self:
+        told = self.model_dump()
+        if told["least"] > told["greatest"]:
+            raise ValueError("least must not exceed greatest")
+        return self
 
 
-Nanofarads: Any = _amount("nF", 1e6, "Capacitance")
-Ohms: Any = _amount("ohm", 1e12, "Resistance")
-Percent: Any = _amount("%", 100.0, "Share")
+class NanofaradEnds(Ends):
+    """Two ends between which a capacitance lies."""
+
+    least: Annotated[float, number("nF", most=1e6, description="Least")]
+    greatest: Annotated[float, number("nF", most=1e6, description="Greatest")]
 
 
-class Transformer(Closed):
+class OhmEnds(Ends):
+    """Two ends between which a resistance lies."""
+
+    least: Annotated[float, number("ohm", most=1e12, description="Least")]
+    greatest: Annotated[float, number("ohm", most=1e12, description="Greatest")]
+
+
+class PercentEnds(Ends):
+    """Two ends between which a share lies."""
+
+    least: Annotated[float, number("%", most=100, description="Least")]
+    greatest: Annotated[float, number("%", most=100, description="Greatest")]
+
+
+# A number, or two ends between which it lies; left out it is unknown, and never zero.
+Nanofarads = Annotated[
+    Annotated[Annotated[float, number("nF", most=1e6, description="Capacitance")], Tag("number")]
+    | Annotated[NanofaradEnds, Tag("range")],
+    Discriminator(_shape),
+]
+Ohms = Annotated[
+    Annotated[Annotated[float, number("ohm", most=1e12, description="Resistance")], Tag("number")]
+    | Annotated[OhmEnds, Tag("range")],
+    Discriminator(_shape),
+]
+Percent = Annotated[
+    Annotated[Annotated[float, number("%", most=100, description="Share")], Tag("number")]
+    | Annotated[PercentEnds, Tag("range")],
+    Discriminator(_shape),
+]
+
+
+class BenchTransformer(Closed):
     """The separating transformer."""
 
     rated_power_va: Annotated[float, number("VA", most=1e6, positive=True, description="Rated power")] | None = None
@@ -74,13 +98,13 @@ class Transformer(Closed):
 Volts = Annotated[float, number("V", most=1000, positive=True, description="Nominal, not measured")]
 
 
-class SeparatedSupply(Closed):
+class SeparatedBenchSupply(Closed):
     """A supply behind a separating transformer."""
 
     id: Id
     kind: Literal["separated"]
     nominal_voltage_between_lines_v: Volts
-    transformer: Transformer = Field(default_factory=Transformer)
+    transformer: BenchTransformer = Field(default_factory=BenchTransformer)
     cable_capacitance_to_earth_nf: Nanofarads | None = Field(default=None, description="Wiring, each pole to earth [nF]")
     overcurrent_device: OvercurrentDevice | None = None
     bonding: Literal["none", "non-earthed", "earthed"] = Field(
@@ -89,7 +113,7 @@ class SeparatedSupply(Closed):
     fed_from: Id | None = Field(default=None, description="Earthed supply that feeds the primary")
 
 
-class EarthedSupply(Closed):
+class EarthedBenchSupply(Closed):
     """Ordinary earthed outlets."""
 
     id: Id
@@ -100,7 +124,7 @@ class EarthedSupply(Closed):
     earth_fault_loop_impedance_ohm: Ohms | None = Field(default=None, description="Zs at the outlets [ohm]")
 
 
-class BatterySupply(Closed):
+class BatteryBenchSupply(Closed):
     """A battery: it floats; direct current is not solved here."""
 
     id: Id
@@ -108,7 +132,7 @@ class BatterySupply(Closed):
     nominal_voltage_v: Volts | None = None
 
 
-BenchSupply = Annotated[SeparatedSupply | EarthedSupply | BatterySupply, Field(discriminator="kind")]
+BenchSupply = Annotated[SeparatedBenchSupply | EarthedBenchSupply | BatteryBenchSupply, Field(discriminator="kind")]
 
 
 class SignalGround(Closed):

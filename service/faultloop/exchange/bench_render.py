@@ -113,7 +113,7 @@ class _Answer:
         words = "tied" if not told["floats"] else "helps" if most <= limit else "floats-too-much"
         text = self._words.texts.outcomes[words].format(
             change=self.change_words(change),
-            contact=self._words.contact_words(contact),
+            contact=self._words.contact_short(contact),
             current=short(most),
             limit=f"{limit:g}",
             pole=self._tied_pole(state),

@@ -20,12 +20,18 @@ from faultloop.rules.sheets import RuleSet
 
 Body = dict[str, Any]
 MILLI = 1000.0
+LEAST_TOLD = 1e-6  # volts, milliamperes and amperes below it are rounding
 ONE_NODE_V = 1.0  # parts that stand less than this apart are told as one
 
 
 def ends_body(least: float, greatest: float, scale: float = 1.0) -> Body:
     """Least and greatest of what is known at both ends."""
-    return {"least": rounded(least * scale), "greatest": rounded(greatest * scale)}
+    return {"least": _told(least * scale), "greatest": _told(greatest * scale)}
+
+
+def _told(value: float) -> float | None:
+    """A number as printed; what is left of sums that cancel is no number."""
+    return 0.0 if abs(value) < LEAST_TOLD else rounded(value)
 
 
 def short(value: float) -> str:
@@ -53,7 +59,7 @@ class BenchWords:
         one, other = short(least), short(greatest)
         if one == other:
             return one
-        return self.texts.parts["interval"].format(least=one, greatest=other, unit="").strip()
+        return self.texts.parts["interval"].format(least=one, greatest=other)
 
     def span(self, span: Span, unit: str) -> str:
         """An assumed span with its unit."""
@@ -149,6 +155,10 @@ class BenchWords:
         """A contact as a sentence names it."""
         return self.texts.contacts[contact.kind].format(one=contact.one, other=self._name(contact.other))
 
+    def contact_short(self, contact: Contact) -> str:
+        """A contact by its two nodes."""
+        return self.texts.parts["contact"].format(one=contact.one, other=self._name(contact.other))
+
     def _touched(self, voltage: Ends, current: Ends, state: int, column: int) -> Body:
         most = float(current.greatest[state, column]) * MILLI
         body: Body = {"current_ma": ends_body(float(current.least[state, column]), most / MILLI, MILLI)}
@@ -188,7 +198,7 @@ class BenchWords:
         text = self.texts.planned[words[planned.code]].format(
             **self.link_words(link),
             current=self.between(current[0] * MILLI, current[1] * MILLI),
-            contact=self.contact_words(contact),
+            contact=self.contact_short(contact),
             after=short(after),
             before=short(before),
         )
