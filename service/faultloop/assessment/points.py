@@ -304,12 +304,13 @@ class ExposedParts(Codes):
 
 
 class PlannedLink(Codes):
-    """What a link that is about to be made does to a bench: it keeps it floating, ties it, or it was tied before."""
+    """What a link that is about to be made does to a bench, by how it stands with it and stood before."""
 
     NONE = 0
     KEEPS = 1
     TIES = 2
     TIED_BEFORE = 3
+    MAY_TIE = 4
 
 
 class Current(Codes):

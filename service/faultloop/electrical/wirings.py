@@ -67,8 +67,8 @@ def solve_wirings(networks: int, nodes: int, branches: Branches) -> Wired:
 
     Notes
     -----
-    Y·v = j by nodes, with a source as a current j = y·E beside its admittance.  In each part that nothing joins to earth
-    the balance of one node is replaced by "its potential is zero".
+    Y·v = j by nodes, with a source as a current j = y·E beside its admittance.  In each part that nothing joins to
+    earth the balance of one node is replaced by "its potential is zero".
 
     References
     ----------
@@ -85,14 +85,15 @@ def solve_wirings(networks: int, nodes: int, branches: Branches) -> Wired:
     matrix, joined = flat.reshape(networks, nodes, nodes), joins.reshape(networks, nodes, nodes)
     side = np.zeros((networks, nodes, nodes + 1), np.complex128)
     driven = y * branches.emf
-    np.add.at(side, (network, plus, 0), driven)
-    np.add.at(side, (network, minus, 0), -driven)
+    sources = side[:, :, 0]
+    np.add.at(sources, (network, plus), driven)
+    np.add.at(sources, (network, minus), -driven)
     side[:, :, 1:] = np.eye(nodes)
     reference = _references(joined)
     pinned = reference == np.arange(nodes)
     matrix[pinned] = np.broadcast_to(np.eye(nodes, dtype=np.complex128), matrix.shape)[pinned]
     side[pinned] = 0.0
-    found = np.linalg.solve(matrix, side)
+    found: Phasor = np.asarray(np.linalg.solve(matrix, side), np.complex128)
     return Wired(found[:, :, 0], reference, found[:, :, 1:])
 
 

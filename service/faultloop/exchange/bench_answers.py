@@ -30,6 +30,7 @@ ChangeWord = Literal[
     "lift-bonding",
     "move-instruments",
 ]
+TiedWord = Literal["no", "perhaps", "yes"]
 
 
 class PathStep(Answer):
@@ -98,7 +99,7 @@ class PlannedLinkBody(Answer):
     one: Text = Field(alias="from")
     other: Text = Field(alias="to")
     current_ma: IntervalBody
-    ties: bool = Field(description="Whether the bench is tied to earth once it is made")
+    ties: TiedWord = Field(description="Whether the bench is tied to earth once it is made")
     devices: list[SeenBody]
     text: Text
 
@@ -115,7 +116,8 @@ class BenchState(Answer):
 
     verdict: VerdictWord
     urgency: UrgencyWord
-    floats: bool
+    floats: bool = Field(description="Whether nothing ties it to earth, whatever is not known")
+    tied: TiedWord
     worst_contact: WorstContact
     worst_contact_current_ma: IntervalBody
 
@@ -126,7 +128,7 @@ class ChangedState(BenchState):
     rank: int
     change: ChangeWord
     subject: Text | None = None
-    helps: bool = Field(description="Whether the bench floats then, and its worst contact of one hand is within the limit")
+    helps: bool = Field(description="Whether it floats then, and its worst contact of one hand is within the limit")
     text: Text
 
 
@@ -166,6 +168,9 @@ class BenchNetwork(Answer):
     planned_link: PlannedLinkBody | None = None
     nodes: list[BenchNode]
     contacts: list[ContactBody]
+    lines_ma: dict[Literal["unfelt", "limit", "let-go"], float] = Field(
+        description="Lines of the rule set that contact currents are held against [mA]"
+    )
     contacts_left_out: int = Field(description="Pairs of accessible parts that were not looked at, being too many")
     changes_as_found: list[ChangedState] = Field(description="Of the bench as it stands, without the planned link")
     changes: list[ChangedState] = Field(description="Of the bench as judged, the best first; none is left out")

@@ -8,9 +8,16 @@ from typing import Any
 from pydantic import ValidationError
 from pydantic_core import InitErrorDetails, PydanticCustomError
 
-from faultloop.exchange.bench_networks import BenchContact, BenchLink, BenchRequest, EarthedBenchSupply, SeparatedBenchSupply
+from faultloop.exchange.bench_networks import (
+    BenchContact,
+    BenchLink,
+    BenchRequest,
+    EarthedBenchSupply,
+    SeparatedBenchSupply,
+)
 
-Fault = tuple[tuple[str | int, ...], str, str]
+Loc = tuple[str | int, ...]
+Fault = tuple[Loc, str, str]
 MOST_NAMED = 60
 
 
@@ -41,9 +48,9 @@ def consistent(request: BenchRequest) -> BenchRequest:
 
 
 def _ids(request: BenchRequest) -> Iterator[Fault]:
-    parts = [(("supplies", at, "id"), supply.id) for at, supply in enumerate(request.supplies)]
+    parts: list[tuple[Loc, str]] = [(("supplies", at, "id"), supply.id) for at, supply in enumerate(request.supplies)]
     parts += [(("items", at, "id"), item.id) for at, item in enumerate(request.items)]
-    links = [(("links", at, "id"), link.id) for at, link in enumerate(request.links)]
+    links: list[tuple[Loc, str]] = [(("links", at, "id"), link.id) for at, link in enumerate(request.links)]
     if request.planned_link is not None:
         links.append((("planned_link", "id"), request.planned_link.id))
     for named in (parts, links):
@@ -51,7 +58,7 @@ def _ids(request: BenchRequest) -> Iterator[Fault]:
         for place, name in named:
             seen[name] += 1
             if seen[name] > 1:
-                yield place, "id_stands_twice", "another part has this id; ids of supplies and items, and of links, differ"
+                yield place, "id_stands_twice", "another part has this id; supplies and items differ, and so do links"
     for place, name in parts:
         if name == "earth":
             yield place, "id_reserved", "earth is what everything is counted from; give the part another id"
@@ -65,13 +72,14 @@ def _feeding(request: BenchRequest) -> Iterator[Fault]:
             yield ("items", at, "fed_by"), "unknown_supply", f"no supply has this id; there are: {known}"
         ground = item.signal_ground
         if ground is not None and ground.kind != "resistance" and ground.resistance_ohm is not None:
-            place = ("items", at, "signal_ground", "resistance_ohm")
-            yield place, "resistance_not_asked", "a resistance goes with the kind resistance; here leave it out"
+            told = "a resistance goes with the kind resistance; here leave it out"
+            yield ("items", at, "signal_ground", "resistance_ohm"), "resistance_not_asked", told
         if item.chassis_resistance_ohm is not None and item.live_chassis is None:
-            place = ("items", at, "chassis_resistance_ohm")
-            yield place, "chassis_not_live", "say by live_chassis which pole the chassis is joined to"
+            told = "say by live_chassis which pole the chassis is joined to"
+            yield ("items", at, "chassis_resistance_ohm"), "chassis_not_live", told
     for at, supply in enumerate(request.supplies):
-        if isinstance(supply, SeparatedBenchSupply) and supply.fed_from is not None and kinds.get(supply.fed_from) != "earthed":
+        fed_from = supply.fed_from if isinstance(supply, SeparatedBenchSupply) else None
+        if fed_from is not None and kinds.get(fed_from) != "earthed":
             earthed = ", ".join(s.id for s in request.supplies if isinstance(s, EarthedBenchSupply)) or "none yet"
             told = f"the primary is fed from an earthed supply of this bench; there are: {earthed}"
             yield ("supplies", at, "fed_from"), "unknown_supply", told
@@ -94,7 +102,7 @@ def names_of(request: BenchRequest) -> list[str]:
 def _ends(request: BenchRequest) -> Iterator[Fault]:
     names = names_of(request)
     feeds = {item.id: item.fed_by for item in request.items}
-    joints: list[tuple[tuple[str | int, ...], BenchLink | BenchContact]] = [
+    joints: list[tuple[Loc, BenchLink | BenchContact]] = [
         (("links", at), link) for at, link in enumerate(request.links)
     ]
     if request.planned_link is not None:

@@ -106,7 +106,9 @@ def _source(found: MappedBench, body: SeparatedBenchSupply, table: TypicalTable)
 def _item(found: MappedBench, body: BenchItem, supply: BenchSupply, table: TypicalTable) -> Item:
     ground = "none" if body.signal_ground is None else body.signal_ground.kind
     floats = ground == "floating" and body.protection_class == "I"
-    ohm = None
+    ohm = beside = None
+    if floats:
+        beside = found.span(None, "signal-ground-capacitance", body.id, table.signal_ground_to_case)
     if body.signal_ground is not None and ground == "resistance":
         ohm = found.span(body.signal_ground.resistance_ohm, "signal-ground", body.id, table.links["antistatic-mat"])
     chassis = None
@@ -121,7 +123,7 @@ def _item(found: MappedBench, body: BenchItem, supply: BenchSupply, table: Typic
         filter_nf=_filter(found, body, supply, table),
         ground=ground,
         ground_ohm=ohm,
-        ground_nf=found.span(None, "signal-ground-capacitance", body.id, table.signal_ground_to_case) if floats else None,
+        ground_nf=beside,
         live_chassis=body.live_chassis,
         chassis_ohm=chassis,
         load_ohm=None if body.load_resistance_ohm is None else stated(body.load_resistance_ohm),

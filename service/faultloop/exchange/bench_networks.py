@@ -105,7 +105,7 @@ class SeparatedBenchSupply(Closed):
     kind: Literal["separated"]
     nominal_voltage_between_lines_v: Volts
     transformer: BenchTransformer = Field(default_factory=BenchTransformer)
-    cable_capacitance_to_earth_nf: Nanofarads | None = Field(default=None, description="Wiring, each pole to earth [nF]")
+    cable_capacitance_to_earth_nf: Nanofarads | None = Field(default=None, description="Each pole to earth [nF]")
     overcurrent_device: OvercurrentDevice | None = None
     bonding: Literal["none", "non-earthed", "earthed"] = Field(
         description="What the outlets' earth contacts are joined to: nothing, each other only, or earth"
@@ -160,7 +160,7 @@ class BenchItem(Closed):
     fed_by: Id
     protection_class: Literal["I", "II", "III"]
     role: Literal["under-test", "instrument"] | None = Field(
-        default=None, description="Whether live parts of it are worked at; left out, it is told by links, charge, chassis"
+        default=None, description="Whether its live parts are worked at; else told by links, charge, chassis"
     )
     filter_capacitance_nf: Nanofarads | None = Field(
         default=None, description="Each line conductor to its case, or to signal ground for class II [nF]"

@@ -73,6 +73,7 @@ class _Answer:
             body["planned_link"] = self._words.planned(planned, devices)
         body["nodes"] = self._words.nodes()
         body["contacts"] = self._words.contacts()
+        body["lines_ma"] = self._words.lines()
         body["contacts_left_out"] = self._words.left_out()
         body["changes_as_found"] = self._changes(self._states.found_changes)
         body["changes"] = self._changes(self._states.changes)
@@ -91,6 +92,7 @@ class _Answer:
             "verdict": _VERDICTS[self._judged.verdict[state]],
             "urgency": _URGENCIES[self._judged.urgency[state]],
             "floats": bool(self._solved.floats[state]),
+            "tied": self._words.tied(state),
             "worst_contact": {"from": contact.one, "to": contact.other},
             "worst_contact_current_ma": ends_body(least, greatest),
         }
@@ -102,15 +104,24 @@ class _Answer:
 
         def rank(state: int) -> tuple[bool, float, int, str, str]:
             change = self._states.every[state]
-            return not floats[state], rounded(most[state]) or 0.0, INTRUSION[change.kind], change.kind, change.subject
+            # Nobody measures a contact current closer than to two digits; below that the lesser intrusion goes first.
+            return not floats[state], float(f"{most[state]:.2g}"), self._intrusion(change), change.kind, change.subject
 
         return [self._change(at + 1, state) for at, state in enumerate(sorted(states, key=rank))]
+
+    def _intrusion(self, change: State) -> int:
+        """How much a change takes; without the item that is worked at there is no work."""
+        bench = self._solved.bench
+        item = next((item for item in bench.items if item.id == change.subject), None)
+        ends_work = change.kind == "unplug" and item is not None and bench.under_test(item)
+        return max(INTRUSION.values()) + 1 if ends_work else INTRUSION[change.kind]
 
     def _change(self, rank: int, state: int) -> Body:
         change, told = self._states.every[state], self._state(state)
         contact, _, most = self._words.worst(state)
         limit = self._words.rules.separation.contact_most.value
-        words = "tied" if not told["floats"] else "helps" if most <= limit else "floats-too-much"
+        words = {"yes": "tied", "perhaps": "may-be-tied"}.get(told["tied"])
+        words = words or ("helps" if most <= limit else "floats-too-much")
         text = self._words.texts.outcomes[words].format(
             change=self.change_words(change),
             contact=self._words.contact_short(contact),
@@ -137,7 +148,7 @@ class _Answer:
         solved = self._solved
         named = [pole for supply in self._judged.supplies for pole in (supply.l2, supply.l1)]
         named += [item.pole("L1") for item in solved.bench.items if solved.bench.under_test(item)]
-        return next((name for name in named if solved.tied[state, solved.node(name)[state]]), "")
+        return next((name for name in named if solved.tied_at([name])[1, state]), "")
 
     def _stored(self) -> list[Body]:
         to_v = self._words.rules.separation.discharged.value
@@ -206,8 +217,8 @@ class _Answer:
             own.append("plugs-as-stated")
         told = [(name, texts(language).cautions[name].text) for name in named]
         told += [(name, self._words.texts.cautions[name]) for name in own]
-        told += [(of["caution"], of["text"]) for of in self._gathered("cautions", "caution") if of["caution"] not in named]
-        return [{"caution": name, "text": text} for name, text in told]
+        first = [{"caution": name, "text": text} for name, text in told]
+        return first + [of for of in self._gathered("cautions", "caution") if of["caution"] not in named]
 
     def _provenance(self, told: Body) -> Body:
         own = _data_digests(self._words.texts.language)

@@ -100,9 +100,7 @@ class BenchWords:
         return self.texts.standing[stands.word].format(steps=steps, ohm=short(stands.path_ohm), tie=tie)
 
     def _steps(self, stands: Standing) -> list[Body]:
-        return [
-            {"through": self.step(step.kind, step.owner), "of": step.owner, "to": step.to} for step in stands.steps
-        ]
+        return [{"through": self.step(step.kind, step.owner), "of": step.owner, "to": step.to} for step in stands.steps]
 
     def _name(self, node: str) -> str:
         return self.texts.parts["earth"] if node == EARTH else node
@@ -155,6 +153,11 @@ class BenchWords:
         """A contact as a sentence names it."""
         return self.texts.contacts[contact.kind].format(one=contact.one, other=self._name(contact.other))
 
+    def tied(self, state: int) -> str:
+        """Whether the bench is tied in a state: yes, perhaps (by what is not known), no."""
+        surely, perhaps = self.solved.bench_tied[:, state]
+        return "yes" if surely else "perhaps" if perhaps else "no"
+
     def contact_short(self, contact: Contact) -> str:
         """A contact by its two nodes."""
         return self.texts.parts["contact"].format(one=contact.one, other=self._name(contact.other))
@@ -163,19 +166,22 @@ class BenchWords:
         most = float(current.greatest[state, column]) * MILLI
         body: Body = {"current_ma": ends_body(float(current.least[state, column]), most / MILLI, MILLI)}
         if np.isfinite(voltage.greatest[state, column]):
-            body["voltage_v"] = ends_body(
-                float(voltage.least[state, column]), float(voltage.greatest[state, column])
-            )
+            body["voltage_v"] = ends_body(float(voltage.least[state, column]), float(voltage.greatest[state, column]))
         body["within"] = self.within(most)
         return body
 
+    def lines(self) -> dict[str, float]:
+        """The rule set's lines of contact current [mA], the least first."""
+        told = self.rules.separation
+        return {
+            "unfelt": told.contact_unfelt.value,
+            "limit": told.contact_most.value,
+            "let-go": told.contact_referenced.value,
+        }
+
     def within(self, most_ma: float) -> str:
         """The line of the rule set that a contact current stays within."""
-        lines = self.rules.separation
-        for word, line in (("unfelt", lines.contact_unfelt), ("limit", lines.contact_most)):
-            if most_ma <= line.value:
-                return word
-        return "let-go" if most_ma <= lines.contact_referenced.value else "none"
+        return next((word for word, line in self.lines().items() if most_ma <= line), "none")
 
     def worst(self, state: int) -> tuple[Contact, float, float]:
         """The contact of one hand that carries most in a state, with its ends [mA]."""
@@ -191,7 +197,7 @@ class BenchWords:
         """The planned link with its consequences."""
         link = self.solved.bench.planned
         assert link is not None
-        words = {PlannedLink.KEEPS: "keeps", PlannedLink.TIES: "ties", PlannedLink.TIED_BEFORE: "tied-before"}
+        words = {code: word for word, code in PlannedLink.codes().items()}
         contact, _, after = self.worst(1)
         before = self._same_contact(contact, 0)
         current = (float(planned.current_a.least), float(planned.current_a.greatest))
@@ -208,7 +214,7 @@ class BenchWords:
             "from": link.one,
             "to": link.other,
             "current_ma": ends_body(*current, MILLI),
-            "ties": planned.code != PlannedLink.KEEPS,
+            "ties": self.tied(1),
             "devices": devices,
             "text": text,
         }
@@ -216,4 +222,3 @@ class BenchWords:
     def _same_contact(self, contact: Contact, state: int) -> float:
         column = self.solved.singles.index(contact)
         return float(self.solved.single_currents.greatest[state, column]) * MILLI
-

@@ -8,9 +8,8 @@ from faultloop.assessment.benches.consequences import planned_link
 from faultloop.assessment.benches.contacts import worked_at
 from faultloop.assessment.benches.network import Item, Supply
 from faultloop.assessment.benches.solving import Ends, SolvedBench
-from faultloop.assessment.benches.states import AS_FOUND, LIFTED, UNPLUGGED
-from faultloop.assessment.points import Choice, EarthContacts, Flags, Ints, Number, PlannedLink, Points, Reference
-from faultloop.electrical.body import discharge_time
+from faultloop.assessment.benches.states import AS_FOUND, LIFTED
+from faultloop.assessment.points import Choice, EarthContacts, Ints, Number, PlannedLink, Points, Reference
 from faultloop.electrical.measurement import Array
 
 MILLI = 1000.0
@@ -22,7 +21,7 @@ class Columns:
     """What the checks are told of one supply in every state, (states,) each."""
 
     contact_ma: Ends
-    tied: Flags
+    reference: Ints
     items: Array
     class_i: Array
     earth_contacts: Ints
@@ -36,7 +35,9 @@ def supply_columns(solved: SolvedBench, supply: Supply) -> Columns:
     exposed = np.array([bench.items[at].protection_class == "I" for at in mine], np.float64)
     lifted = solved.states.column("bonding")[:, bench.supplies.index(supply)] == LIFTED
     contacts = np.where(lifted, EarthContacts.BONDED, _CONTACTS[supply.bonding])
-    return Columns(_contact(solved, supply), _tied(solved, supply), here.sum(axis=1), (here * exposed).sum(axis=1), contacts)
+    reference = _reference(solved, supply)
+    contact = _contact(solved, supply, reference)
+    return Columns(contact, reference, here.sum(axis=1), (here * exposed).sum(axis=1), contacts)
 
 
 def _concerns(solved: SolvedBench, supply: Supply, item: Item) -> bool:
@@ -44,30 +45,33 @@ def _concerns(solved: SolvedBench, supply: Supply, item: Item) -> bool:
     return item.fed_by == supply.id or solved.bench.supply(item.fed_by).kind == "earthed"
 
 
-def _contact(solved: SolvedBench, supply: Supply) -> Ends:
-    """Greatest current of one hand [mA]: at this supply's poles, at any part, at what is worked at."""
+def _contact(solved: SolvedBench, supply: Supply, reference: Ints) -> Ends:
+    """Greatest current of one hand [mA]: at this supply's poles, at any part, at what is worked at.
+
+    Where nobody knows whether a pole is joined to earth the worse is taken as nominal, for the work is ordered by it.
+    """
     others = {pole for s in solved.bench.supplies if s.id != supply.id for pole in (s.l1, s.l2)}
     others |= {
-        item.pole(which)
-        for item in solved.bench.items
-        if not _concerns(solved, supply, item)
-        for which in ("L1", "L2")
+        item.pole(which) for item in solved.bench.items if not _concerns(solved, supply, item) for which in ("L1", "L2")
     }
     chosen = [at for at, contact in enumerate(solved.singles) if contact.one not in others]
     ends = solved.single_currents
-    return Ends(*(MILLI * of[:, chosen].max(axis=1) for of in (ends.least, ends.nominal, ends.greatest)))
+    least, nominal, greatest = (MILLI * of[:, chosen].max(axis=1) for of in (ends.least, ends.nominal, ends.greatest))
+    return Ends(least, np.where(reference == Reference.UNKNOWN, greatest, nominal), greatest)
 
 
-def _tied(solved: SolvedBench, supply: Supply) -> Flags:
-    """Whether a pole of the supply, or of what is worked at elsewhere, has a tie to earth."""
-    where = np.arange(solved.count)
-    tied = [solved.tied[where, solved.node(name)] for name in (supply.l1, supply.l2)]
-    for touched in worked_at(solved.bench):
-        item = solved.bench.items[solved.meanings[touched.one][0]]
-        if _concerns(solved, supply, item):
-            plugged = solved.places[:, solved.meanings[touched.one][0]] != UNPLUGGED
-            tied.append(solved.tied[where, solved.node(touched.one)] & plugged)
-    return np.asarray(np.logical_or.reduce(tied), np.bool_)
+def _reference(solved: SolvedBench, supply: Supply) -> Ints:
+    """Whether a pole of the supply, or of what is worked at elsewhere, is joined to earth; unknown where it may be."""
+    names = [supply.l1, supply.l2]
+    names += [of.one for of in worked_at(solved.bench) if _concerns(solved, supply, _item(solved, of.one))]
+    surely, perhaps = solved.tied_at(names)
+    unsure = np.where(perhaps, Reference.UNKNOWN, Reference.FLOATING)
+    return np.where(surely, Reference.EARTHED, unsure)
+
+
+def _item(solved: SolvedBench, pole: str) -> Item:
+    """The item whose pole a name is."""
+    return solved.bench.items[solved.meanings[pole][0]]
 
 
 def put_columns(points: Points, solved: SolvedBench) -> None:
@@ -76,7 +80,7 @@ def put_columns(points: Points, solved: SolvedBench) -> None:
     told = [supply_columns(solved, supply) for supply in supplies]
     numbers, choices = points.numbers, points.choices
 
-    def laid(columns: list[Array] | list[Ints] | list[Flags]) -> Array:
+    def laid(columns: list[Array] | list[Ints]) -> Array:
         return np.stack(columns, axis=1).ravel().astype(np.float64)
 
     numbers[Number.CONTACT_LEAST_MA] = laid([of.contact_ma.least for of in told])
@@ -85,10 +89,10 @@ def put_columns(points: Points, solved: SolvedBench) -> None:
     numbers[Number.ITEMS] = laid([of.items for of in told])
     numbers[Number.CLASS_I_ITEMS] = laid([of.class_i for of in told])
     choices[Choice.EARTH_CONTACTS] = laid([of.earth_contacts for of in told])
-    tied = laid([of.tied for of in told]) > 0.0
-    choices[Choice.REFERENCE] = np.where(tied, Reference.EARTHED, Reference.FLOATING)
-    for which, value in zip((Number.STORED_UF, Number.STORED_V, Number.DISCHARGE_OHM), stored(solved), strict=True):
-        numbers[which] = value
+    choices[Choice.REFERENCE] = laid([of.reference for of in told])
+    charged = (Number.STORED_UF, Number.STORED_V, Number.DISCHARGE_OHM)
+    for which, held in zip(charged, stored(solved), strict=True):
+        numbers[which] = held
     link = planned_link(solved)
     if link is not None:
         made = np.repeat(np.array([state.planned for state in solved.states.every]), len(supplies))
@@ -106,10 +110,7 @@ def stored(solved: SolvedBench) -> tuple[float, float, float]:
     charged = [item.stored for item in solved.bench.items if item.stored is not None]
     if not charged:
         return np.nan, np.nan, np.nan
-    told = [(of.capacitance_uf, of.voltage_v, np.inf if of.discharge_ohm is None else of.discharge_ohm) for of in charged]
-    columns = [np.array(column) for column in zip(*told, strict=True)]
-    times = discharge_time(*columns, np.ones(len(told)))
-    # Of those that nothing discharges, the one with the most charge.
-    longest = max(range(len(told)), key=lambda at: (times[at], told[at][0] * told[at][1]))
-    uf, volts, ohm = told[longest]
+    told = [(of.capacitance_uf, of.voltage_v, of.discharge_ohm or np.inf) for of in charged]
+    # By the time constant; of those that nothing discharges, the one with the most charge.
+    uf, volts, ohm = max(told, key=lambda of: (of[2] * of[0], of[0] * of[1]))
     return uf, volts, np.nan if np.isinf(ohm) else ohm

@@ -29,9 +29,10 @@ def planned_link(solved: SolvedBench) -> Planned | None:
     if solved.bench.planned is None:
         return None
     current = solved.through_link(solved.bench.planned, 0)
-    found, after = bool(solved.floats[0]), bool(solved.floats[1])
-    code = PlannedLink.KEEPS if after else PlannedLink.TIES if found else PlannedLink.TIED_BEFORE
-    return Planned(current, code)
+    (found, after), (_, perhaps) = solved.bench_tied[:, :2]
+    if after:
+        return Planned(current, PlannedLink.TIED_BEFORE if found else PlannedLink.TIES)
+    return Planned(current, PlannedLink.MAY_TIE if perhaps else PlannedLink.KEEPS)
 
 
 def seen(solved: SolvedBench, state: int) -> list[Seen]:

@@ -23,7 +23,7 @@ class Contact:
 
 
 def accessible(bench: Bench) -> list[str]:
-    """Conductive parts that may be touched: cases of class I, signal grounds, and whatever a filter or a clip ends at."""
+    """Conductive parts that may be touched: cases of class I, signal grounds, what a filter or a clip ends at."""
     ends = {end for link in bench.all_links for end in (link.one, link.other)}
     parts = []
     for item in bench.items:

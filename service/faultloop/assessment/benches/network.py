@@ -130,11 +130,10 @@ class Bench:
 
     def in_order(self) -> "Bench":
         """The same bench with its parts in the order of their ids."""
-        supplies, items, links = (
-            tuple(sorted(parts, key=lambda part: part.id))  # type: ignore[attr-defined]
-            for parts in (self.supplies, self.items, self.links)
-        )
-        return replace(self, supplies=supplies, items=items, links=links)  # type: ignore[arg-type]
+        supplies = tuple(sorted(self.supplies, key=lambda part: part.id))
+        items = tuple(sorted(self.items, key=lambda part: part.id))
+        links = tuple(sorted(self.links, key=lambda part: part.id))
+        return replace(self, supplies=supplies, items=items, links=links)
 
     @property
     def all_links(self) -> tuple[Link, ...]:

@@ -98,21 +98,31 @@ class SolvedBench:
 
     @cached_property
     def tied(self) -> Mask:
-        """Whether a node has a way to earth that ties it, in any variant, (states, nodes)."""
-        least = self.path_ohm.reshape(self.count, len(self.variants), -1).min(axis=1)
-        return np.asarray(least < typical().tie_below.usual, np.bool_)
+        """Whether a node is tied by some way to earth: surely, and by what is not known perhaps, (2, states, nodes)."""
+        ways = self.path_ohm.reshape(self.count, len(self.variants), -1) < typical().tie_below.usual
+        return np.array([ways.all(axis=1), ways.any(axis=1)])
+
+    def tied_at(self, names: list[str]) -> Mask:
+        """Whether any of some nodes is tied surely, and perhaps, (2, states); a pulled plug is no node."""
+        where, found = np.arange(self.count), np.zeros((2, self.count), np.bool_)
+        for name in names:
+            here = self.tied[:, where, self.node(name)]
+            if name in self.meanings:
+                here = here & (self.places[:, self.meanings[name][0]] != UNPLUGGED)
+            found |= here
+        return found
 
     @cached_property
-    def floats(self) -> Mask:
-        """Whether every pole that is to float has no tie to earth, (states,)."""
+    def bench_tied(self) -> Mask:
+        """Whether anything is tied that is to float, surely and perhaps, (2, states)."""
         separated = [supply for supply in self.bench.supplies if supply.kind == "separated"]
-        names = [name for supply in separated for name in (supply.l1, supply.l2)]
-        where = np.arange(self.count)
-        tied = [self.tied[where, self.node(name)] for name in names]
-        for one in (touched.one for touched in worked_at(self.bench)):
-            plugged = self.places[:, self.meanings[one][0]] != UNPLUGGED
-            tied.append(self.tied[where, self.node(one)] & plugged)
-        return np.asarray(~np.logical_or.reduce(tied), np.bool_) if tied else np.ones(self.count, np.bool_)
+        poles = [name for supply in separated for name in (supply.l1, supply.l2)]
+        return self.tied_at(poles + [touched.one for touched in worked_at(self.bench)])
+
+    @property
+    def floats(self) -> Mask:
+        """Whether the bench floats whatever is not known, (states,)."""
+        return np.asarray(~self.bench_tied[1], np.bool_)
 
     @cached_property
     def singles(self) -> list[Contact]:
@@ -139,12 +149,13 @@ class SolvedBench:
 
 
 def variants_of(bench: Bench) -> tuple[Variant, ...]:
-    """What has to be solved beside the nominal: both ends of all that is not known, and the primary poled either way."""
+    """What is solved beside the nominal: both ends of all that is not known, and the primary poled either way."""
     spans = [span for supply in bench.supplies for span in (supply.source_ohm, supply.cable_nf, supply.interwinding_nf)]
     spans += [s for item in bench.items for s in (item.filter_nf, item.ground_ohm, item.ground_nf, item.chassis_ohm)]
     spans += [item.load_ohm for item in bench.items] + [link.ohm for link in bench.all_links]
     levels = ["nominal"] + (["low", "high"] if any(span is not None and span.open for span in spans) else [])
-    poled = any(s.interwinding_nf is not None and s.interwinding_nf.greatest > 0 and not s.screen for s in bench.supplies)
+    unscreened = [supply.interwinding_nf for supply in bench.supplies if not supply.screen]
+    poled = any(windings is not None and windings.greatest > 0.0 for windings in unscreened)
     return tuple(Variant(level, turned) for turned in ((False, True) if poled else (False,)) for level in levels)
 
 
@@ -155,7 +166,7 @@ def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
     wires = wires_of(bench, variants)
     columns = {what: states.column(what) for what in ("places", "links", "bonding")}
     there = present(wires, columns, len(states.every))
-    used = there.any(axis=0)
+    used = there.any(axis=0).tolist()
     wires, there = [wire for wire, kept in zip(wires, used, strict=True) if kept], there[:, used]
     nodes = _nodes(bench, states, wires)
     branches, wire_of = _branches(wires, there, nodes, len(variants))

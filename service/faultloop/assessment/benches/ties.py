@@ -53,7 +53,7 @@ class Ties:
     def standing(self, name: str) -> Standing:
         """How one node stands."""
         node = int(self._solved.node(name)[self._state])
-        if self._solved.tied[self._state, node]:
+        if self._solved.tied[1, self._state, node]:
             ohm = float(self._solved.path_ohm[self._row, node])
             return Standing(TIED, self._steps(node, self._solved.following[self._row], conductive=True), ohm)
         if int(self._solved.wired.reference[self._row, node]) != self._solved.nodes[EARTH]:

@@ -77,7 +77,7 @@ class Wiring:
         return tuple(complex(1.0 / max(ends[variant.level], least)) for variant in self.variants)
 
     def reactance(self, span: Span) -> tuple[complex, ...]:
-        """Admittance of a transformer's impedance in each variant, taken as leakage alone: no contact is made smaller."""
+        """Admittance of a transformer's impedance in each variant, taken as leakage: it makes no contact smaller."""
         return tuple(-1j * y for y in self.resistance(span))
 
     def capacitance(self, span: Span, share: float = 1.0) -> tuple[complex, ...]:
@@ -86,7 +86,14 @@ class Wiring:
         return tuple(complex(0.0, self.omega * ends[variant.level] * share * 1e-9) for variant in self.variants)
 
     def put(
-        self, kind: str, owner: str, plus: str, minus: str, siemens: tuple[complex, ...], *holds: Holds, emf: float = 0.0
+        self,
+        kind: str,
+        owner: str,
+        plus: str,
+        minus: str,
+        siemens: tuple[complex, ...],
+        *holds: Holds,
+        emf: float = 0.0,
     ) -> None:
         """Add a wire; both ends at one node make none."""
         if plus != minus:

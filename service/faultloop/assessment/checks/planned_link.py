@@ -6,7 +6,7 @@ from faultloop.assessment.points import SEPARATED, Choice, Flags, Number, Planne
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = (*COMPARISON, "ties-and-nothing-clears", "tied-before")
+REASONS = (*COMPARISON, "ties-and-nothing-clears", "tied-before", "may-tie")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -20,6 +20,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases = Cases(REASONS)
     cases.when(planned == PlannedLink.TIES, Standing.UNMET, "ties-and-nothing-clears", defect=True)
     cases.when(planned == PlannedLink.TIED_BEFORE, Standing.UNMET, "tied-before", defect=True)
+    cases.when(planned == PlannedLink.MAY_TIE, Standing.UNDETERMINED, "may-tie")
     current = Interval(*(points.number(which) for which in ends))
     return cases.settle(current, limit, (planned > 0) * (1 << Condition.BENCH_AS_IT_STANDS))
 
