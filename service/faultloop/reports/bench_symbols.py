@@ -30,8 +30,8 @@ def put_earth(sheet: Sheet, x: float, y: float) -> None:
 
 def put_number(sheet: Sheet, x: float, y: float, number: int, *, planned: bool) -> None:
     """The number of a link at one of its ends."""
-    style = {"fill": PAPER if planned else LIVE, "stroke": PLANNED if planned else LIVE, "stroke_width": 1.6}
-    put(sheet.sheet, "circle", class_="link-end", cx=x, cy=y, r=8.0, **style)
+    fill, stroke = (PAPER, PLANNED) if planned else (LIVE, LIVE)
+    put(sheet.sheet, "circle", class_="link-end", cx=x, cy=y, r=8.0, fill=fill, stroke=stroke, stroke_width=1.6)
     ink = PLANNED if planned else PAPER
     sheet.write(str(number), x, y + 3.6, font_size=10.5, font_weight="bold", text_anchor="middle", fill=ink)
 

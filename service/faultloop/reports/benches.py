@@ -3,6 +3,7 @@
 from typing import Any
 
 from faultloop.assessment.benches.network import Bench
+from faultloop.assessment.benches.texts import bench_texts
 from faultloop.digests import digest
 from faultloop.reports.bench_layout import WIDTH, laid_out
 from faultloop.reports.bench_network import put_network
@@ -29,6 +30,9 @@ def bench_drawing(bench: Bench, answer: dict[str, Any], language: str = "en") ->
     put_network(sheet, bench, layout, answer, told)
     sheet.y = layout.earth + 26.0
     put_key(sheet, answer, told)
+    for at, link in enumerate(bench.all_links):
+        kind = bench_texts(language).links[link.kind]
+        sheet.lines(f"{at + 1}  {kind} {link.id}: {link.one} – {link.other}", PLAIN)
     put_scale(sheet, answer, told)
     _put_changes(sheet, answer, told)
     sheet.y += 6.0

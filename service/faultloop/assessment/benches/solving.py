@@ -166,8 +166,8 @@ def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
     wires = wires_of(bench, variants)
     columns = {what: states.column(what) for what in ("places", "links", "bonding")}
     there = present(wires, columns, len(states.every))
-    used = there.any(axis=0).tolist()
-    wires, there = [wire for wire, kept in zip(wires, used, strict=True) if kept], there[:, used]
+    used = np.flatnonzero(there.any(axis=0))
+    wires, there = [wires[at] for at in used.tolist()], there[:, used]
     nodes = _nodes(bench, states, wires)
     branches, wire_of = _branches(wires, there, nodes, len(variants))
     rows = len(states.every) * len(variants)

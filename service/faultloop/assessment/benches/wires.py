@@ -23,6 +23,8 @@ OWN, DEAD, OUTLET = "~own", "~dead", "~outlet"
 PLACES = (AS_FOUND, TO_EARTHED, TO_OWN, UNPLUGGED)
 # Which part, and how it must stand, for a wire to be there.
 Holds = tuple[str, int, int]
+# Admittance in each variant.
+Siemens = tuple[complex, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,7 +43,7 @@ class Wire:
     owner: str
     plus: str
     minus: str
-    siemens: tuple[complex, ...]
+    siemens: Siemens
     emf_v: float = 0.0
     holds: tuple[Holds, ...] = ()
 
@@ -70,17 +72,17 @@ class Wiring:
         """Angular frequency [rad/s]."""
         return 2.0 * np.pi * self.bench.frequency_hz
 
-    def resistance(self, span: Span) -> tuple[complex, ...]:
+    def resistance(self, span: Span) -> Siemens:
         """Admittance of a resistance in each variant; no joint is better than the least that is taken."""
         least = typical().joined_directly.usual
         ends = {"low": span.greatest, "nominal": span.nominal, "high": span.least}
         return tuple(complex(1.0 / max(ends[variant.level], least)) for variant in self.variants)
 
-    def reactance(self, span: Span) -> tuple[complex, ...]:
+    def reactance(self, span: Span) -> Siemens:
         """Admittance of a transformer's impedance in each variant, taken as leakage: it makes no contact smaller."""
         return tuple(-1j * y for y in self.resistance(span))
 
-    def capacitance(self, span: Span, share: float = 1.0) -> tuple[complex, ...]:
+    def capacitance(self, span: Span, share: float = 1.0) -> Siemens:
         """Admittance of a capacitance in each variant."""
         ends = {"low": span.least, "nominal": span.nominal, "high": span.greatest}
         return tuple(complex(0.0, self.omega * ends[variant.level] * share * 1e-9) for variant in self.variants)
@@ -91,7 +93,7 @@ class Wiring:
         owner: str,
         plus: str,
         minus: str,
-        siemens: tuple[complex, ...],
+        siemens: Siemens,
         *holds: Holds,
         emf: float = 0.0,
     ) -> None:
