@@ -163,7 +163,8 @@ def nearest_path(networks: int, nodes: int, branches: Branches, weight: Array) -
 
     References
     ----------
-    .. [1] R. Bellman, "On a routing problem", Quart. Appl. Math. 16, 1958, 87-90.
+    .. [1] IEC 60050-131:2002, 131-13 (path).
+    .. [2] R. Bellman, "On a routing problem", Quart. Appl. Math. 16, 1958, 87-90.
     """
     step = np.full((networks, nodes, nodes), np.inf)
     for one, other in ((branches.plus, branches.minus), (branches.minus, branches.plus)):
