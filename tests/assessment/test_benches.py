@@ -145,15 +145,8 @@ def test_a_clip_on_the_live_line_of_the_wall_blows_and_trips() -> None:
 def test_a_clip_on_the_neutral_of_the_wall_shows_in_its_residual_device() -> None:
     body = small()
     body["supplies"][0]["residual_current_device"] = {"residual_type": "A", "rated_residual_operating_current_ma": 30}
-    body["items"].append(
-        {
-            "id": "heater",
-            "fed_by": "wall",
-            "protection_class": "II",
-            "filter_capacitance_nf": 0,
-            "load_resistance_ohm": 53,
-        }
-    )
+    heater = {"id": "heater", "fed_by": "wall", "protection_class": "II", "filter_capacitance_nf": 0}
+    body["items"].append({**heater, "load_resistance_ohm": 53})
     body["planned_link"] = {"id": "clip", "kind": "probe-clip", "from": "scope.signal_ground", "to": "wall.L2"}
     residual = next(d for d in bench_network(body)["planned_link"]["devices"] if d["sees"] == "residual-current")
     # The load's current parts between the neutral (half of the loop) and the clip's way to earth.

@@ -20,18 +20,23 @@ from faultloop.rules.sheets import RuleSet
 
 Body = dict[str, Any]
 MILLI = 1000.0
-LEAST_TOLD = 1e-6  # volts, milliamperes and amperes below it are rounding
+LEAST_TOLD, LEAST_TOLD_V = 1e-6, 1e-3  # amperes, milliamperes and volts below these are rounding
 ONE_NODE_V = 1.0  # parts that stand less than this apart are told as one
 
 
 def ends_body(least: float, greatest: float, scale: float = 1.0) -> Body:
     """Least and greatest of what is known at both ends."""
-    return {"least": _told(least * scale), "greatest": _told(greatest * scale)}
+    return {"least": _told(least * scale, LEAST_TOLD), "greatest": _told(greatest * scale, LEAST_TOLD)}
 
 
-def _told(value: float) -> float | None:
+def volts_body(least: float, greatest: float) -> Body:
+    """Least and greatest of a voltage."""
+    return {"least": _told(least, LEAST_TOLD_V), "greatest": _told(greatest, LEAST_TOLD_V)}
+
+
+def _told(value: float, least: float) -> float | None:
     """A number as printed; what is left of sums that cancel is no number."""
-    return 0.0 if abs(value) < LEAST_TOLD else rounded(value)
+    return 0.0 if abs(value) < least else rounded(value)
 
 
 def short(value: float) -> str:
@@ -86,7 +91,7 @@ class BenchWords:
                 if stands.word != APART:
                     told["path_impedance_ohm"] = rounded(stands.path_ohm)
                     ends = (float(potential.least[state, column]), float(potential.greatest[state, column]))
-                    told["potential_v"] = ends_body(*ends)
+                    told["potential_v"] = volts_body(*ends)
                 body[field] = told
             found.append(body)
         return found
@@ -166,7 +171,7 @@ class BenchWords:
         most = float(current.greatest[state, column]) * MILLI
         body: Body = {"current_ma": ends_body(float(current.least[state, column]), most / MILLI, MILLI)}
         if np.isfinite(voltage.greatest[state, column]):
-            body["voltage_v"] = ends_body(float(voltage.least[state, column]), float(voltage.greatest[state, column]))
+            body["voltage_v"] = volts_body(float(voltage.least[state, column]), float(voltage.greatest[state, column]))
         body["within"] = self.within(most)
         return body
 

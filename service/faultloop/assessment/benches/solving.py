@@ -16,6 +16,8 @@ from faultloop.electrical.measurement import Array
 from faultloop.electrical.wirings import EARTH as EARTH_NODE
 from faultloop.electrical.wirings import Branches, Places, Wired, contact, nearest_path, solve_wirings
 
+NO_CURRENT_A = 1e-9
+
 
 @dataclass(frozen=True, slots=True)
 class Ends:
@@ -84,7 +86,7 @@ class SolvedBench:
             for names in ([c.one for c in contacts], [c.other for c in contacts])
         )
         voltage, current = contact(self.wired, self.rows(one), self.rows(other), self.body_ohm)
-        return self.ends(voltage), self.ends(current)
+        return self.ends(voltage), self.ends(_flowing(current))
 
     def through_link(self, link: Link, state: int) -> Ends:
         """Current [A] that a link would carry if it were made in a state, (states,)."""
@@ -93,7 +95,7 @@ class SolvedBench:
         ohm = np.array([max(told[variant.level], least) for variant in self.variants])
         one, other = (self.rows(self.node(name))[:, None] for name in (link.one, link.other))
         _, current = contact(self.wired, one, other, np.tile(ohm, self.count)[:, None])
-        ends = self.ends(current[:, 0])
+        ends = self.ends(_flowing(current[:, 0]))
         return Ends(ends.least[state], ends.nominal[state], ends.greatest[state])
 
     @cached_property
@@ -145,7 +147,12 @@ class SolvedBench:
         sign[wires] = signs
         total = np.zeros(self.count * len(self.variants), np.complex128)
         np.add.at(total, self.branches.network, sign[self.wire_of] * current)
-        return self.ends(total)
+        return self.ends(_flowing(total))
+
+
+def _flowing(current: Phasor) -> Phasor:
+    """The current without what is left of sums that cancel."""
+    return np.where(np.abs(current) < NO_CURRENT_A, 0.0, current)
 
 
 def variants_of(bench: Bench) -> tuple[Variant, ...]:
