@@ -290,6 +290,21 @@ def test_refusals_name_the_place_and_what_there_is() -> None:
     assert "needs a separated supply" in refused(body)[0][1]
 
 
+def assert_alike(one: Any, other: Any) -> None:
+    """The same but for the last digits of numbers; sentences quote them and are left out."""
+    if isinstance(one, dict):
+        assert one.keys() == other.keys()
+        for name in one.keys() - {"text", "explanation"}:
+            assert_alike(one[name], other[name])
+    elif isinstance(one, list):
+        for left, right in zip(one, other, strict=True):
+            assert_alike(left, right)
+    elif isinstance(one, float):
+        assert one == pytest.approx(other, rel=1e-5, abs=1e-5)
+    else:
+        assert one == other
+
+
 # ---- properties ------------------------------------------------------------------------------------------------
 
 
@@ -381,5 +396,5 @@ def test_one_bench_is_solved_the_same_with_a_part_more_that_touches_nothing(body
     more = copy.deepcopy(body)
     more["supplies"].append({"id": "spare", "kind": "battery"})
     one, other = (bench_network(told) for told in (body, more))
-    for name in ("as_found", "with_planned_link", "changes", "contacts", "findings"):
-        assert one.get(name) == other.get(name), name
+    for name in ("verdict", "urgency", "as_found", "with_planned_link", "changes", "contacts", "findings"):
+        assert_alike(one.get(name), other.get(name))

@@ -191,7 +191,9 @@ class BenchWords:
     def worst(self, state: int) -> tuple[Contact, float, float]:
         """The contact of one hand that carries most in a state, with its ends [mA]."""
         ends = self.solved.single_currents
-        column = int(np.argmax(ends.greatest[state]))
+        # Two poles often carry the same but for rounding: the first of them is named.
+        told = [rounded(value) or 0.0 for value in ends.greatest[state].tolist()]
+        column = told.index(max(told))
         return (
             self.solved.singles[column],
             float(ends.least[state, column]) * MILLI,
