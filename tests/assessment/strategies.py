@@ -141,6 +141,7 @@ supplies = st.fixed_dictionaries(
         "nominal_voltage_to_earth_v": st.sampled_from([230.0, 230.0, 230.0, 120.0, 277.0, 400.0, 240.0, 50.0, 1e-9]),
         "current": st.sampled_from(["ac", "ac", "ac", "dc"]),
         "phases": st.sampled_from([1, 3]),
+        "frequency_hz": st.sampled_from([50.0, 60.0, 400.0]),
         "nominal_voltage_between_lines_v": st.sampled_from([400.0, 400.0, 240.0, 690.0, 230.0]),
         "declared_prospective_current_ka": between(0.1, 25),
         "means_of_earthing": st.fixed_dictionaries(
@@ -168,6 +169,15 @@ all_readings = st.fixed_dictionaries(
         "voltage_v": measured(between(0, 300)),
         "voltage_neutral_to_earth_v": measured(between(0, 240)),
         "standing_leakage_ma": between(0, 30),
+        "line_line_loop_impedance_ohm": measured(ohms),
+        "voltage_l1_to_earth_v": measured(between(0, 240)),
+        "voltage_l2_to_earth_v": measured(between(0, 240)),
+        "contact_current_l1_ma": measured(between(0, 30)),
+        "contact_current_l2_ma": measured(between(0, 30)),
+        "winding_insulation_resistance_megohm": measured(between(0, 1000)),
+        "bonding_resistance_ohm": measured(between(0, 5)),
+        "first_fault_current_ma": measured(between(0, 2000)),
+        "monitored_insulation_kohm": measured(between(0, 1000)),
         "polarity": st.sampled_from(["correct", "reversed", "not-tested"]),
     },
 )
@@ -180,12 +190,68 @@ boards = st.fixed_dictionaries(
         "assembly_conditional_rating_ka": between(1, 25),
     },
 )
+cores = st.fixed_dictionaries(
+    {"length_m": between(0, 50), "area_mm2": st.sampled_from([0.75, 1.5, 4.0, 3.3])},
+    optional={"material": st.sampled_from(["copper", "aluminium"])},
+)
+transformers = st.fixed_dictionaries(
+    {},
+    optional={
+        "rated_power_va": between(25, 25_000),
+        "primary_voltage_v": st.sampled_from([230.0, 400.0]),
+        "secondary_voltage_v": st.sampled_from([115.0, 230.0, 600.0]),
+        "short_circuit_voltage_percent": between(1, 20),
+        "short_circuit_tolerance_percent": between(0, 30),
+        "load_loss_w": between(0, 500),
+        "winding_insulation": st.sampled_from(["basic", "double-or-reinforced"]),
+        "dielectric_test_v": between(500, 6000),
+        "interwinding_capacitance_nf": between(0, 5),
+        "screen": st.booleans(),
+    },
+)
+items = st.fixed_dictionaries(
+    {},
+    optional={
+        "protection_class": st.sampled_from(["I", "I", "II", "III"]),
+        "filter_capacitance_nf": between(0, 50),
+        "lead": cores,
+        "stored": st.fixed_dictionaries(
+            {"capacitance_uf": between(0.1, 1000), "voltage_v": between(0, 400)},
+            optional={"discharge_resistance_ohm": between(10, 1e6)},
+        ),
+    },
+)
+separated_supplies = st.fixed_dictionaries(
+    {},
+    optional={
+        "transformer": transformers,
+        "outlets": st.integers(1, 6),
+        "items": st.lists(items, max_size=4),
+        "earth_contacts": st.sampled_from(["unconnected", "bonded", "earthed"]),
+        "bonding_conductor": cores,
+        "pole_earthed": st.booleans(),
+        "wiring_length_m": between(0, 600),
+    },
+)
+it_supplies = st.fixed_dictionaries(
+    {},
+    optional={
+        "line_capacitance_to_earth_nf": between(0, 5000),
+        "neutral_distributed": st.booleans(),
+        "exposed_parts": st.sampled_from(["together", "separately"]),
+        "insulation_monitor": st.fixed_dictionaries(
+            {"fitted": st.booleans()}, optional={"set_point_kohm": between(1, 500), "alarm_tested": st.booleans()}
+        ),
+    },
+)
 requests = st.fixed_dictionaries(
     {"point": st.fixed_dictionaries({"label": st.text("abc äΩ", min_size=1, max_size=8)})},
     optional={
         "supply": supplies,
         "circuit": circuits,
         "board": boards,
+        "separated_supply": separated_supplies,
+        "it_supply": it_supplies,
         "overcurrent_device": devices(),
         "upstream_overcurrent_devices": st.lists(devices(), max_size=2),
         "residual_current_device": residual_devices,

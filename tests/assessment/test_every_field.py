@@ -58,6 +58,14 @@ FIELDS: dict[str, dict[str, Any]] = {
         "voltage_v": 110,
         "voltage_neutral_to_earth_v": 60,
         "polarity": "reversed",
+        "voltage_l1_to_earth_v": 115,
+        "voltage_l2_to_earth_v": 115,
+        "contact_current_l1_ma": 0.4,
+        "contact_current_l2_ma": 0.4,
+        "winding_insulation_resistance_megohm": 20,
+        "bonding_resistance_ohm": 0.1,
+        "first_fault_current_ma": 13,
+        "monitored_insulation_kohm": 90,
     },
 }
 MODELS: dict[str, type[BaseModel]] = {

@@ -12,7 +12,7 @@ from faultloop.assessment.explain import Explainer, Names
 from faultloop.assessment.judged import Condition
 from faultloop.assessment.limits import loop_limit
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import Decision, TemperaturePolicy, from_rows
+from faultloop.assessment.points import EARTHED, SEPARATED, Decision, TemperaturePolicy, from_rows
 from faultloop.assessment.texts import LANGUAGES, Said, texts
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.mapping import mapped
@@ -34,6 +34,9 @@ BASES: dict[str, tuple[str, dict[str, object]]] = {
 }
 
 
+UNEARTHED = ("separated", "IT")
+
+
 def request(earthing: str, readings: dict[str, object], policy: str) -> dict[str, Any]:
     """A B32 socket circuit with a residual device."""
     return {
@@ -48,9 +51,10 @@ def request(earthing: str, readings: dict[str, object], policy: str) -> dict[str
 
 
 def explainer(basis: str, policy: str, language: str = "en") -> tuple[Explainer, Names]:
-    """The explainer of one point whose loop rests on that basis, and what its sentences may quote."""
-    point = mapped(AssessmentRequest.model_validate(request(*BASES[basis], policy)))
-    points = from_rows([point.row])
+    """The explainer of a point whose loop rests on that basis and of one on each unearthed supply; and their words."""
+    asked = [request(*BASES[basis], policy), *(request(earthing, {}, policy) for earthing in UNEARTHED)]
+    point, *others = [mapped(AssessmentRequest.model_validate(body)) for body in asked]
+    points = from_rows([point.row, *(other.row for other in others)])
     outcome = decide(points)
     assert Basis.word(int(outcome.quantities.loops.basis[0])) == basis
     found = Explainer(points, outcome, language)
@@ -114,8 +118,9 @@ def test_no_shared_text_is_orphaned() -> None:
 def test_every_placeholder_of_every_reason_is_known(basis: str, policy: str, language: str) -> None:
     found, names = explainer(basis, policy, language)
     for row, check in enumerate(CHECKS):
+        place = 0 if check.supplies & EARTHED else 1 if check.supplies & SEPARATED else 2
         for at in range(len(check.reasons)):
-            explanation, question, _ = found.said(row, at, 0, found.quoted(0, names))
+            explanation, question, _ = found.said(row, at, place, found.quoted(place, names))
             assert explanation
             assert finished(explanation), explanation
             assert question is None or finished(question), question

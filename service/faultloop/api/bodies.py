@@ -5,7 +5,7 @@ The body is validated from its bytes: JSON's own types stay strict, and a busy s
 
 import json
 from collections.abc import Callable, Coroutine
-from typing import Any
+from typing import Any, TypeVar
 
 from fastapi import Request, Response
 from fastapi.exceptions import RequestValidationError
@@ -14,11 +14,11 @@ from pydantic import TypeAdapter, ValidationError
 
 from faultloop.api.problems import Refused
 from faultloop.digests import canonical_bytes
-from faultloop.exchange.bench_faults import validated_json
+from faultloop.exchange.bench_faults import consistent
 from faultloop.exchange.bench_judging import bench_bytes
 from faultloop.exchange.bench_networks import BenchRequest
 from faultloop.exchange.own_rules import LONGEST_SET, OwnRules, own_rules
-from faultloop.exchange.requests import UNKNOWN_RULES, AssessmentRequest
+from faultloop.exchange.requests import UNKNOWN_RULES, AssessmentRequest, Ruled
 from faultloop.rules.loader import LoadedRules, shipped
 
 
@@ -31,40 +31,35 @@ class DirectRoute(APIRoute):
         return handler
 
 
-POINT_BODY: dict[str, Any] = {
-    "requestBody": {
-        "required": True,
-        "content": {"application/json": {"schema": {"$ref": "#/components/schemas/AssessmentRequest"}}},
-    }
-}
+def json_body(schema: str) -> dict[str, Any]:
+    """What the document says of a body that a function reads itself."""
+    content = {"application/json": {"schema": {"$ref": f"#/components/schemas/{schema}"}}}
+    return {"requestBody": {"required": True, "content": content}}
 
 
-OWN_RULES_BODY: dict[str, Any] = {
-    "requestBody": {
-        "required": True,
-        "content": {"application/json": {"schema": {"$ref": "#/components/schemas/OwnRuleSet"}}},
-    }
-}
-BENCH_BODY: dict[str, Any] = {
-    "requestBody": {
-        "required": True,
-        "content": {"application/json": {"schema": {"$ref": "#/components/schemas/BenchRequest"}}},
-    }
-}
+POINT_BODY = json_body("AssessmentRequest")
+RuledT = TypeVar("RuledT", bound=Ruled)
+OWN_RULES_BODY = json_body("OwnRuleSet")
+BENCH_BODY = json_body("BenchRequest")
 _OWN_RULES: TypeAdapter[Any] = TypeAdapter(OwnRules)
 
 
 async def read_point(request: Request) -> tuple[AssessmentRequest, bytes]:
     """Give the validated point and the bytes that it came in."""
+    return await read_ruled(request, AssessmentRequest)
+
+
+async def read_ruled(request: Request, model: type[RuledT]) -> tuple[RuledT, bytes]:
+    """Give a validated request that names its rules, and the bytes that it came in."""
     raw, own = await _json(request, request.app.state.max_body_bytes), request.app.state.own_rules
     try:
-        return AssessmentRequest.model_validate_json(raw, context=own.by_name), raw
+        return model.model_validate_json(raw, context=own.by_name), raw
     except ValidationError as error:
         name = _unknown_rules(error)
         if name is None or await own.find(name) is None:
             raise _refused(error, raw) from None
     try:
-        return AssessmentRequest.model_validate_json(raw, context=own.by_name), raw
+        return model.model_validate_json(raw, context=own.by_name), raw
     except ValidationError as error:
         raise _refused(error, raw) from None
 
@@ -88,13 +83,12 @@ async def read_rule_set(request: Request) -> tuple[LoadedRules, LoadedRules | No
 
 async def read_bench(request: Request) -> BenchRequest:
     """Give a validated bench whose parts fit together."""
-    raw = await _json(request, request.app.state.max_body_bytes)
+    body, raw = await read_ruled(request, BenchRequest)
+    refuse_duplicates(raw, bench_bytes(body))
     try:
-        body = validated_json(raw)
+        return consistent(body)
     except ValidationError as error:
         raise _refused(error, raw) from None
-    refuse_duplicates(raw, bench_bytes(body))
-    return body
 
 
 async def _json(request: Request, most: int) -> bytes:

@@ -5,6 +5,7 @@ from typing import Any
 
 from fastapi import FastAPI
 from fastapi.openapi.utils import get_openapi
+from pydantic import BaseModel
 
 from faultloop.api.problems import KINDS, MEDIA_TYPE
 from faultloop.digests import json_bytes
@@ -13,12 +14,22 @@ from faultloop.exchange.batches import BatchQuery, BatchRequest
 from faultloop.exchange.bench_faults import validated
 from faultloop.exchange.bench_networks import BenchRequest
 from faultloop.exchange.bench_render import bench_answer
-from faultloop.exchange.examples import EXAMPLE_BATCH, EXAMPLE_BENCH, EXAMPLE_FILE, EXAMPLE_REQUEST, EXAMPLE_RULES
+from faultloop.exchange.examples import (
+    EXAMPLE_BATCH,
+    EXAMPLE_BENCH,
+    EXAMPLE_FILE,
+    EXAMPLE_REQUEST,
+    EXAMPLE_RULES,
+    EXAMPLE_SEPARATED,
+)
 from faultloop.exchange.judging import judged
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
+from faultloop.exchange.separated_supplies import SeparatedSupplyRequest, as_assessment
 from faultloop.exchange.uploads import Upload, read_upload
 
+# Requests whose bodies are read from their bytes, and hold no field that is not known.
+CLOSED: tuple[type[BaseModel], ...] = (AssessmentRequest, SeparatedSupplyRequest, BenchRequest)
 EXAMPLE_ID = "00000000-0000-4000-8000-000000000000"
 DESCRIPTION = (
     "Measured points in; prospective fault current, disconnection time and a verdict with its arithmetic out. "
@@ -52,7 +63,8 @@ def document(app: FastAPI) -> dict[str, Any]:
 def _put_request_schemas(schema: dict[str, Any]) -> None:
     """The body is read from its bytes, so the framework does not know its schema."""
     components = schema["components"]["schemas"]
-    for model in (AssessmentRequest, BatchRequest, BenchRequest):
+    models: tuple[type[BaseModel], ...] = (*CLOSED, BatchRequest)
+    for model in models:
         body = model.model_json_schema(ref_template="#/components/schemas/{model}")
         components |= body.pop("$defs", {}) | {model.__name__: body}
     schema["components"]["schemas"] = dict(sorted(components.items()))
@@ -60,8 +72,7 @@ def _put_request_schemas(schema: dict[str, Any]) -> None:
 
 def _open_answers(schema: dict[str, Any]) -> None:
     """Requests are closed; an answer may gain a field, and a client must bear it."""
-    bodies = (AssessmentRequest, BenchRequest)
-    asked = {name for body in bodies for name in (body.__name__, *body.model_json_schema().get("$defs", {}))}
+    asked = {name for model in CLOSED for name in (model.__name__, *model.model_json_schema().get("$defs", {}))}
     for name, model in schema["components"]["schemas"].items():
         if name not in asked:
             model.pop("additionalProperties", None)
@@ -81,7 +92,14 @@ def _mend(operation: dict[str, Any]) -> None:
 
 
 def _put_examples(schema: dict[str, Any]) -> None:
-    """One example, answered by the engine when the document is written, so that it cannot lie."""
+    """One example each, answered by the engine when the document is written, so that it cannot lie."""
+    separated = SeparatedSupplyRequest.model_validate(EXAMPLE_SEPARATED)
+    operation = schema["paths"]["/v1/separated-supplies"]["post"]
+    asked = operation["requestBody"]["content"]["application/json"]
+    asked["examples"] = {"bench": {"summary": "A transformer and one item", "value": EXAMPLE_SEPARATED}}
+    told = assess_requests([as_assessment(separated)])[0]
+    content = operation["responses"]["200"]["content"]["application/json"]
+    content["examples"] = {"bench": {"summary": "A transformer and one item", "value": told}}
     answer = assess_requests([AssessmentRequest.model_validate(EXAMPLE_REQUEST)])[0]
     for path, method, status in (("/preview", "post", "200"), ("/{id}", "put", "201")):
         operation = schema["paths"][f"/v1/assessments{path}"][method]

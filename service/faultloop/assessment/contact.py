@@ -6,8 +6,8 @@ import numpy as np
 
 from faultloop.assessment.given import Given
 from faultloop.assessment.points import Choice, EarthContacts, Flags, Number, Reading
+from faultloop.electrical.circuit_supplies import SeparatedCircuit, single_contact_currents
 from faultloop.electrical.measurement import Array, Interval
-from faultloop.electrical.unearthed import SeparatedCircuit, single_contact_currents
 
 MILLI, MEGA = 1e3, 1e6
 POLES = [Reading.L1_CONTACT, Reading.L2_CONTACT]

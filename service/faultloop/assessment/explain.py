@@ -123,12 +123,17 @@ def _residual_limit(q: Quoted) -> str:
     return q.phrases["residual-limit-touch" if q["limit"] == touch else "residual-limit-time"].format_map(q)
 
 
+def _begun(sentence: str) -> str:
+    """A phrase with which a sentence begins."""
+    return sentence[0].upper() + sentence[1:]
+
+
 def _contact_told(q: Quoted) -> str:
     """What the current of a contact rests on: a solved network, a reading, capacitance, or two of them."""
     if q.number("contact_solved"):
         return q.phrases["contact-solved"].format(nominal=q.number("contact_ma"))
     if q.number("joined") and q.number("contact_ma") == 1000.0 * q.number("u_sep") / q.number("body"):
-        return q.phrases["contact-joined"].format_map(q)
+        return _begun(q.phrases["contact-joined"].format_map(q))
     read = [(pole, q.number(f"contact_{pole.lower()}")) for pole in ("L1", "L2")]
     told = [q.phrases["contact-pole"].format(pole=pole, ma=ma) for pole, ma in read if not math.isnan(ma)]
     parts = [q.phrases["contact-read"].format(contact_reads=", ".join(told))] if told else []
@@ -137,13 +142,13 @@ def _contact_told(q: Quoted) -> str:
     elif not math.isnan(q.number("driven")):
         parts.append(q.phrases["contact-driven"].format_map(q))
     if len(parts) < 2:
-        return parts[0] if parts else q.phrases["contact-nothing"]
+        return _begun(parts[0] if parts else q.phrases["contact-nothing"])
     return q.phrases["contact-and"].format(contact_one=parts[0], contact_two=parts[1])
 
 
-def _by_supply(q: Quoted, phrase: str) -> str:
+def _by_supply(q: Quoted, separated: str, insulated: str) -> str:
     """A phrase that differs between a separated and an IT supply."""
-    return q.phrases[f"{phrase}-{'separated' if q.number('is_separated') else 'insulated'}"].format_map(q)
+    return q.phrases[separated if q.number("is_separated") else insulated].format_map(q)
 
 
 # Phrases that depend on what is known of the point.
@@ -163,8 +168,8 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
         "marginal-question-external" if math.isnan(q.number("ze")) else "marginal-question"
     ],
     "contact_told": _contact_told,
-    "second_told": lambda q: _by_supply(q, "second"),
-    "second_limit": lambda q: _by_supply(q, "second-limit"),
+    "second_told": lambda q: _by_supply(q, "second-separated", "second-insulated"),
+    "second_limit": lambda q: _by_supply(q, "second-limit-separated", "second-limit-insulated"),
     "side": lambda q: q.phrases["below" if q.number("nominal") <= q.number("limit") else "above"],
     "z_or_value": lambda q: q["nominal"],
     "excess_told": lambda q: max(round(q.number("nominal"), 9), 0.0),

@@ -6,9 +6,9 @@ import numpy as np
 
 from faultloop.assessment.given import Given
 from faultloop.assessment.points import Choice, Distributed, Earthing, ExposedParts, Flags, Number, Reading
+from faultloop.electrical.circuit_supplies import InsulatedSupply, current_to_earth
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.electrical.measurement import Array, Interval
-from faultloop.electrical.unearthed import InsulatedSupply, current_to_earth
 
 MILLI = 1e3
 

@@ -26,11 +26,6 @@ def validated(body: Any) -> BenchRequest:
     return consistent(BenchRequest.model_validate(body))
 
 
-def validated_json(raw: bytes) -> BenchRequest:
-    """The bench of a body given as JSON."""
-    return consistent(BenchRequest.model_validate_json(raw))
-
-
 def consistent(request: BenchRequest) -> BenchRequest:
     """Refuse a bench whose parts do not fit together; every fault is told at its place."""
     faults = [*_ids(request), *_feeding(request)]

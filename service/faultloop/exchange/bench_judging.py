@@ -16,6 +16,8 @@ from faultloop.exchange.mapping import mapped, tables_of
 from faultloop.exchange.render import Body, Renderer
 from faultloop.exchange.requests import AssessmentRequest
 
+DEFAULT_RULES = "iec-60364"
+
 
 @dataclass(frozen=True, slots=True)
 class JudgedBench:
@@ -81,8 +83,8 @@ def _point(request: BenchRequest, body: SeparatedBenchSupply) -> AssessmentReque
     if body.overcurrent_device is not None:
         told["overcurrent_device"] = body.overcurrent_device
     if "rules" in request.model_fields_set:
-        told["rules"] = request.rules
-    return AssessmentRequest.model_validate(told)
+        told["rules"] = DEFAULT_RULES  # named, so that none is assumed; the set itself follows
+    return AssessmentRequest.model_validate(told).under(request.rule_set)
 
 
 def _put_supply(point: Mapped, request: BenchRequest, body: SeparatedBenchSupply) -> None:

@@ -6,7 +6,7 @@ from pydantic import BaseModel, Discriminator, Field, Tag, model_validator
 
 from faultloop.exchange.fields import Closed, Label, number
 from faultloop.exchange.overcurrent import OvercurrentDevice
-from faultloop.exchange.requests import Policy, ResidualCurrentDevice, RulesName
+from faultloop.exchange.requests import ResidualCurrentDevice, Ruled
 
 MOST_SUPPLIES, MOST_ITEMS, MOST_LINKS, MOST_CONTACTS = 6, 24, 24, 40
 Id = Annotated[
@@ -192,7 +192,7 @@ class BenchContact(Closed):
     other: NodeName = Field(alias="to")
 
 
-class BenchRequest(Closed):
+class BenchRequest(Ruled):
     """A bench as it stands now, and the link that somebody is about to make."""
 
     label: Label
@@ -203,5 +203,3 @@ class BenchRequest(Closed):
     links: Annotated[list[BenchLink], Field(max_length=MOST_LINKS)] = Field(default_factory=list)
     planned_link: BenchLink | None = None
     contacts: Annotated[list[BenchContact], Field(max_length=MOST_CONTACTS)] = Field(default_factory=list)
-    rules: RulesName = "iec-60364"
-    policy: Policy = Field(default_factory=Policy)

@@ -21,7 +21,6 @@ from faultloop.exchange.bench_judging import JudgedBench, input_digest_of, judge
 from faultloop.exchange.bench_mapping import MappedBench, mapped_bench
 from faultloop.exchange.bench_networks import BenchRequest
 from faultloop.exchange.bench_words import BenchWords, Body, ends_body, short
-from faultloop.rules.loader import resolve
 
 
 def _words(codes: type[Codes]) -> dict[int, str]:
@@ -38,8 +37,7 @@ def bench_answer(request: BenchRequest, language: str = LANGUAGES[0]) -> Body:
 
 def solved_answer(request: BenchRequest, language: str = LANGUAGES[0]) -> tuple[SolvedBench, Body]:
     """The solved bench beside its answer, as a drawing needs both."""
-    rules = resolve(request.rules)
-    assert rules is not None, "the body's model refuses unknown rule sets"
+    rules = request.rule_set
     given = mapped_bench(request)
     solved = solve_bench(given.bench, rules.rules.urgency.body_dry.value)
     judged = judged_bench(request, solved, input_digest_of(request), language)

@@ -27,6 +27,11 @@ _UNITS = {
     "ka": {"kA"},
     "m": {"m"},
     "mm2": {"mm2", "mm²"},
+    "kohm": {"kohm", "kOhm", "kΩ", "k\u2126"},
+    "nf": {"nF"},
+    "hz": {"Hz"},
+    "va": {"VA"},
+    "percent": {"%"},
 }
 
 

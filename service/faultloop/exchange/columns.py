@@ -8,6 +8,15 @@ from pydantic import BaseModel
 
 from faultloop.exchange.fields import MethodWord
 from faultloop.exchange.requests import AssessmentRequest, Readings, rule_names
+from faultloop.exchange.unearthed_columns import (
+    MONITOR,
+    MONITOR_WORDS,
+    OTHERS,
+    TRUTH,
+    UNEARTHED_NUMBERS,
+    UNEARTHED_WORDS,
+    YES_OR_NO,
+)
 
 Path = tuple[str, ...]
 WORDS: dict[str, Path] = {
@@ -15,7 +24,7 @@ WORDS: dict[str, Path] = {
     "earthing": ("supply", "earthing"), "current": ("supply", "current"), "role": ("circuit", "role"),
     "feeds": ("circuit", "feeds"), "arrangement": ("circuit", "arrangement"), "users": ("circuit", "users"),
     "polarity": ("readings", "polarity"), "rules": ("rules",),
-    "policy_temperature": ("policy", "temperature"), "policy_decision": ("policy", "decision"),
+    "policy_temperature": ("policy", "temperature"), "policy_decision": ("policy", "decision"), **UNEARTHED_WORDS,
 }  # fmt: skip
 NUMBERS: dict[str, Path] = {
     "nominal_voltage_to_earth_v": ("supply", "nominal_voltage_to_earth_v"),
@@ -24,6 +33,7 @@ NUMBERS: dict[str, Path] = {
     "rated_current_a": ("circuit", "rated_current_a"),
     "length_m": ("circuit", "length_m"),
     "current_carrying_capacity_a": ("circuit", "current_carrying_capacity_a"),
+    **UNEARTHED_NUMBERS,
 }
 CONDUCTORS: dict[str, Path] = {
     f"{name}_conductor_mm2": ("circuit", f"{name}_conductor") for name in ("line", "neutral", "protective")
@@ -44,9 +54,9 @@ READINGS: dict[str, Path] = {
 } | BOARD | TIMES  # fmt: skip
 DEVICES = ("overcurrent_device", "breaking_capacity_ka", "residual_current_device")
 BESIDES = ("reading_method", "conductor_material", "conductor_insulation")
-COLUMNS = (*WORDS, *NUMBERS, *CONDUCTORS, *READINGS, *DEVICES, *BESIDES)
+COLUMNS = (*WORDS, *NUMBERS, *CONDUCTORS, *READINGS, *DEVICES, *BESIDES, *OTHERS)
 PATHS: dict[str, Path] = {
-    **WORDS, **NUMBERS, **CONDUCTORS, **READINGS,
+    **WORDS, **NUMBERS, **CONDUCTORS, **READINGS, **OTHERS,
     "overcurrent_device": ("overcurrent_device",), "residual_current_device": ("residual_current_device",),
 }  # fmt: skip
 
@@ -57,14 +67,24 @@ def _words(annotation: Any) -> Iterator[str]:
         yield from [argument] if isinstance(argument, str) else _words(argument)
 
 
+def _model(annotation: Any) -> type[BaseModel] | None:
+    """The model that a field holds, or may hold."""
+    kinds = (annotation, *get_args(annotation))
+    return next((kind for kind in kinds if isinstance(kind, type) and issubclass(kind, BaseModel)), None)
+
+
 def _choices() -> dict[str, dict[str, str]]:
     """Words of a column by their lower-case form: a file may write them in capitals."""
     fields = {part: field.annotation for part, field in AssessmentRequest.model_fields.items()}
     words = {"reading_method": set(_words(MethodWord)), "rules": set(rule_names())}
+    words |= {column: set(TRUTH) for column in YES_OR_NO} | {MONITOR: set(MONITOR_WORDS)}
     for column, path in WORDS.items():
-        model = fields.get(path[0])
-        if len(path) == 2 and isinstance(model, type) and issubclass(model, BaseModel):
-            words[column] = set(_words(model.model_fields[path[1]].annotation))
+        told = fields.get(path[0])
+        for part in path[1:]:
+            model = _model(told)
+            told = None if model is None else model.model_fields[part].annotation
+        if len(path) > 1:
+            words[column] = set(_words(told))
     return {column: {word.casefold(): word for word in told} for column, told in words.items() if told}
 
 

@@ -16,6 +16,36 @@ EXAMPLE_REQUEST: dict[str, Any] = {
     "rules": "bs-7671",
 }
 
+EXAMPLE_SEPARATED: dict[str, Any] = {
+    "label": "Bench 4, transformer outlet",
+    "nominal_voltage_between_lines_v": 230,
+    "frequency_hz": 50,
+    "transformer": {
+        "rated_power_va": 630,
+        "primary_voltage_v": 230,
+        "secondary_voltage_v": 230,
+        "short_circuit_voltage_percent": 5.5,
+        "load_loss_w": 24,
+        "winding_insulation": "double-or-reinforced",
+    },
+    "outlets": 1,
+    "items": [{"label": "amplifier under repair", "protection_class": "I", "filter_capacitance_nf": 4.7}],
+    "earth_contacts": "unconnected",
+    "wiring_length_m": 6,
+    "overcurrent_device": {
+        "kind": "miniature-circuit-breaker",
+        "characteristic": "B",
+        "rated_current_a": 2,
+        "poles": 2,
+    },
+    "readings": {
+        "contact_current_l1_ma": 0.12,
+        "contact_current_l2_ma": 0.09,
+        "insulation_resistance_megohm": 80,
+        "winding_insulation_resistance_megohm": {"value": 200, "bound": "above"},
+    },
+    "rules": "bs-7671",
+}
 EXAMPLE_FILE = (
     "point_id,label,earthing,nominal_voltage_to_earth_v,role,feeds,rated_current_a,overcurrent_device,"
     "residual_current_device,external_earth_fault_loop_impedance_ohm,earth_fault_loop_impedance_ohm,"

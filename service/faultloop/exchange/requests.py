@@ -202,22 +202,9 @@ RulesChoice = Annotated[
 ]
 
 
-class AssessmentRequest(Closed):
-    """One measured point: what protects it, what was read, by which rules it is to be judged."""
+class Ruled(Closed):
+    """A request that is judged by a rule set, under a policy."""
 
-    point: Point
-    supply: Supply = Field(default_factory=Supply)
-    separated_supply: SeparatedSupply | None = None
-    it_supply: InsulatedSupply | None = None
-    circuit: Circuit = Field(default_factory=Circuit)
-    board: Board | None = None
-    overcurrent_device: OvercurrentDevice | None = None
-    upstream_overcurrent_devices: Annotated[list[OvercurrentDevice], Field(max_length=8)] = Field(default_factory=list)
-    residual_current_device: ResidualCurrentDevice | None = None
-    upstream_residual_current_devices: Annotated[list[ResidualCurrentDevice], Field(max_length=8)] = Field(
-        default_factory=list
-    )
-    readings: Readings = Field(default_factory=Readings)
     rules: RulesChoice = "iec-60364"
     policy: Policy = Field(default_factory=Policy)
     _rule_set: LoadedRules = PrivateAttr()
@@ -246,6 +233,24 @@ class AssessmentRequest(Closed):
     def _keep(self, info: ValidationInfo) -> Self:
         self._rule_set = _resolved(self.rules, info.context)
         return self
+
+
+class AssessmentRequest(Ruled):
+    """One measured point: what protects it, what was read, by which rules it is to be judged."""
+
+    point: Point
+    supply: Supply = Field(default_factory=Supply)
+    separated_supply: SeparatedSupply | None = None
+    it_supply: InsulatedSupply | None = None
+    circuit: Circuit = Field(default_factory=Circuit)
+    board: Board | None = None
+    overcurrent_device: OvercurrentDevice | None = None
+    upstream_overcurrent_devices: Annotated[list[OvercurrentDevice], Field(max_length=8)] = Field(default_factory=list)
+    residual_current_device: ResidualCurrentDevice | None = None
+    upstream_residual_current_devices: Annotated[list[ResidualCurrentDevice], Field(max_length=8)] = Field(
+        default_factory=list
+    )
+    readings: Readings = Field(default_factory=Readings)
 
 
 def _resolved(told: Any, stored: Mapping[str, LoadedRules] | None) -> LoadedRules:

@@ -10,6 +10,16 @@ from faultloop.exchange import faults
 from faultloop.exchange.cells import MISSING, Cell, Decimal, read_cell
 from faultloop.exchange.columns import CHOICES, CONDUCTORS, NUMBERS, READINGS, WORDS, Path, column_at
 from faultloop.exchange.requests import AssessmentRequest
+from faultloop.exchange.unearthed_columns import (
+    ITEMS,
+    MONITOR,
+    MONITOR_WORDS,
+    TRUTH,
+    WHOLE,
+    YES_OR_NO,
+    items_fault,
+    items_of,
+)
 from faultloop.protection.designations import Breaker, UnknownDesignation, parse_overcurrent, parse_residual
 from faultloop.rules.loader import LoadedRules
 
@@ -93,7 +103,8 @@ def read_cells(cells: Mapping[str, str], number: int, form: Format, stored: Stor
     _put_devices(body, said, told, form)
     for column, path in NUMBERS.items():
         if (value := _plain(said, column, told, form)) is not None:
-            _put(body, path, int(value) if column == "phases" and value.is_integer() else value)
+            _put(body, path, int(value) if column in WHOLE and value.is_integer() else value)
+    _put_unearthed(body, said, told, form)
     _put_conductors(body, said, told, form)
     _put_readings(body, said, told, form)
     return _checked(told, body, _in_file, stored)
@@ -167,11 +178,33 @@ def _put_conductors(body: Body, said: Mapping[str, str], told: Told, form: Forma
             _put(body, path, {"material": material, "insulation": insulation, "area_mm2": area})
 
 
+def _put_unearthed(body: Body, said: Mapping[str, str], told: Told, form: Format) -> None:
+    """What hangs on a separated supply, an IT supply's monitor, and what is answered by yes or no."""
+    for column, path in YES_OR_NO.items():
+        if column in said:
+            word = CHOICES[column].get(said[column].casefold(), said[column])
+            _put(body, path, TRUTH.get(word, word))
+    if MONITOR in said:
+        word = CHOICES[MONITOR].get(said[MONITOR].casefold(), said[MONITOR])
+        told_of: Body = MONITOR_WORDS.get(word, {"fitted": word})
+        for name, value in told_of.items():
+            _put(body, ("it_supply", MONITOR, name), value)
+    cells = {name: value for name in ITEMS if (value := _plain(said, name, told, form)) is not None}
+    if asked := items_fault(cells):
+        told.questions.append(_asked("items", said.get("items", ""), asked))
+    elif (items := items_of(cells)) is not None:
+        _put(body, ("separated_supply", "items"), items)
+
+
 def _put_readings(body: Body, said: Mapping[str, str], told: Told, form: Format) -> None:
     for column, path in READINGS.items():
         if column not in said:
             continue
-        reading = _reading(form.cell(said[column], column), column, said[column], told)
+        cell = form.cell(said[column], column)
+        if cell.over_range and said.get("earthing", "").casefold() == "separated":
+            # Between a pole and earth of a floating supply there is nothing to read.
+            continue
+        reading = _reading(cell, column, said[column], told)
         if reading is not None:
             if column == "earth_fault_loop_impedance_ohm" and "reading_method" in said:
                 method = said["reading_method"]

@@ -7,7 +7,7 @@ from faultloop.assessment.points import SEPARATED, Choice, Current, Flags, Point
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = ("direct-current-not-covered", "voltage-unknown", "within-limit", "over-limit")
+REASONS = ("within-limit", "over-limit", "voltage-unknown", "direct-current-not-covered")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:

@@ -30,11 +30,11 @@ def _judge(points: Points, q: Quantities) -> Judged:
     insulation, limit = q.given.reading(Reading.INSULATION), q.rule("separation_contact_referenced")
     cases = Cases(REASONS)
     cases.when(reference == Reference.EARTHED, Standing.UNMET, "pole-earthed", defect=True)
-    cases.when(contact.current_ma.least > limit, Standing.UNMET, "contact-shows-earth", defect=True)
     cases.when(found.pole_at_earth, Standing.UNMET, "pole-at-earth", defect=True)
     # Between a pole and earth of a floating supply a loop tester finds nothing to read.
     loop_read = points.bound[Reading.LOOP] == Bound.EXACT
     cases.when(loop_read, Standing.UNMET, "loop-reads-earth", defect=True)
+    cases.when(contact.current_ma.least > limit, Standing.UNMET, "contact-shows-earth", defect=True)
     cases.when(contact.solved & (reference == Reference.FLOATING), Standing.MET, "floats-by-solution")
     cases.when(contact.every_pole_read & (contact.current_ma.greatest <= limit), Standing.MET, "contact-shows-none")
     cases.when(insulation.least >= q.rule("insulation"), Standing.MET, "insulation-shows-none")

@@ -7,7 +7,7 @@ from faultloop.assessment.points import SEPARATED, Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = ("not-stated", "discharge-unknown", "slow", "quick")
+REASONS = ("quick", "discharge-unknown", "not-stated", "slow")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:

@@ -7,7 +7,7 @@ from faultloop.assessment.points import SEPARATED, Flags, Number, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = ("not-stated", "over-guidance-read", "over-guidance", "voltage-unknown", "within-limit")
+REASONS = ("within-limit", "over-guidance", "voltage-unknown", "not-stated", "over-guidance-read")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
