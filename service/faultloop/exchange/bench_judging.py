@@ -7,8 +7,8 @@ import numpy as np
 from faultloop.assessment.benches.columns import put_columns
 from faultloop.assessment.benches.network import Supply
 from faultloop.assessment.benches.solving import SolvedBench
-from faultloop.assessment.points import Number, Points, from_rows
-from faultloop.assessment.verdicts import Outcome, decide
+from faultloop.assessment.points import Number, from_rows
+from faultloop.assessment.verdicts import decide
 from faultloop.digests import canonical_bytes, sha256
 from faultloop.exchange.bench_networks import BenchRequest, SeparatedBenchSupply
 from faultloop.exchange.mapped import Mapped
@@ -48,25 +48,14 @@ def judged_bench(request: BenchRequest, solved: SolvedBench, input_digest: str, 
     outcome = decide(points, by)
     shape = (solved.count, len(given))
     base = solved.states.base
-    at = range(base * len(given), (base + 1) * len(given))
-    told = _told(points, given, outcome, list(at), input_digest, language)
+    renderer = Renderer(points, outcome, language)
+    told = [renderer.answer(base * len(given) + row, point, input_digest) for row, point in enumerate(given)]
     return JudgedBench(
         outcome.verdict.reshape(shape).min(axis=1).tolist(),
         outcome.urgency.reshape(shape).min(axis=1).tolist(),
         {base: told},
         [supply for supply in solved.bench.supplies if supply.kind == "separated"],
     )
-
-
-def _told(
-    points: Points, given: list[Mapped], outcome: Outcome, at: list[int], input_digest: str, language: str
-) -> list[Body]:
-    """Answers in words of some points; what is judged of them does not depend on the others."""
-    if points.count > len(at):
-        points = points.picked(np.array(at))
-        outcome = decide(points, given[0].tables)
-    renderer = Renderer(points, outcome, language)
-    return [renderer.answer(row, given[row % len(given)], input_digest) for row in range(len(at))]
 
 
 def _point(request: BenchRequest, body: SeparatedBenchSupply) -> AssessmentRequest:

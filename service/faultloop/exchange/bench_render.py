@@ -1,6 +1,6 @@
 """A bench in words, and the one path from a request to its answer."""
 
-from functools import lru_cache
+from functools import cached_property, lru_cache
 
 import numpy as np
 
@@ -141,12 +141,17 @@ class _Answer:
         quoted = {"subject": change.subject, "kind": self._words.texts.links[kind]}
         return self._words.texts.changes[words].format_map(quoted)
 
-    def _tied_pole(self, state: int) -> str:
-        """A pole that is tied in a state."""
+    @cached_property
+    def _tied_poles(self) -> dict[str, list[bool]]:
+        """Of every pole that is to float whether it is tied, state by state."""
         solved = self._solved
         named = [pole for supply in self._judged.supplies for pole in (supply.l2, supply.l1)]
         named += [item.pole("L1") for item in solved.bench.items if solved.bench.under_test(item)]
-        return next((name for name in named if solved.tied_at([name])[1, state]), "")
+        return {name: solved.tied_at([name])[1].tolist() for name in named}
+
+    def _tied_pole(self, state: int) -> str:
+        """A pole that is tied in a state."""
+        return next((name for name, tied in self._tied_poles.items() if tied[state]), "")
 
     def _stored(self) -> list[Body]:
         to_v = self._words.rules.separation.discharged.value

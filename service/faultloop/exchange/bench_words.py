@@ -125,11 +125,14 @@ class BenchWords:
 
     def contacts(self) -> list[Body]:
         """The usual contacts and those asked for; pairs of parts that are one node are no contact."""
-        usual = [of for of in usual_contacts(self.solved.bench) if of.kind != "part-to-part" or self._apart(of)]
-        told = [*usual, *(Contact("asked", of.one, of.other) for of in self.asked)]
+        told = [*usual_contacts(self.solved.bench), *(Contact("asked", of.one, of.other) for of in self.asked)]
         voltage, current = self.solved.touched(told)
-        found = []
+        between, found = voltage.greatest[list(self.told_states.values())], []
+        # Parts that stand together in every state that is told are one part.
+        one = (between < ONE_NODE_V).all(axis=0).tolist()
         for column, contact in enumerate(told):
+            if contact.kind == "part-to-part" and one[column]:
+                continue
             body: Body = {
                 "kind": contact.kind,
                 "hands": "one" if contact.single else "two",
@@ -141,12 +144,6 @@ class BenchWords:
                 body[field] = self._touched(voltage, current, state, column)
             found.append(body)
         return found
-
-    def _apart(self, contact: Contact) -> bool:
-        """Whether two parts are not simply joined by conductors in both states that are told."""
-        voltage, _ = self.solved.touched([contact])
-        between = voltage.greatest[list(self.told_states.values()), 0]
-        return bool(np.any(~(between < ONE_NODE_V)))
 
     def left_out(self) -> int:
         """How many pairs of parts were too many to look at."""
@@ -191,9 +188,7 @@ class BenchWords:
     def worst(self, state: int) -> tuple[Contact, float, float]:
         """The contact of one hand that carries most in a state, with its ends [mA]."""
         ends = self.solved.single_currents
-        # Two poles often carry the same but for rounding: the first of them is named.
-        told = [rounded(value) or 0.0 for value in ends.greatest[state].tolist()]
-        column = told.index(max(told))
+        column = int(self.solved.worst[state])
         return (
             self.solved.singles[column],
             float(ends.least[state, column]) * MILLI,

@@ -16,7 +16,7 @@ from faultloop.electrical.measurement import Array
 from faultloop.electrical.wirings import EARTH as EARTH_NODE
 from faultloop.electrical.wirings import Branches, Places, Wired, contact, nearest_path, solve_wirings
 
-NO_CURRENT_A = 1e-9
+NO_CURRENT_A, ROUNDING = 1e-9, 1e-6
 
 
 @dataclass(frozen=True, slots=True)
@@ -60,8 +60,18 @@ class SolvedBench:
         """What the poles of items are, by place."""
         return meanings(self.bench)
 
+    @cached_property
+    def _places_of(self) -> dict[str, Places]:
+        """Places of names that were looked up already."""
+        return {}
+
     def node(self, name: str) -> Places:
         """Place of a name in every state, (states,)."""
+        if name not in self._places_of:
+            self._places_of[name] = self._look_up(name)
+        return self._places_of[name]
+
+    def _look_up(self, name: str) -> Places:
         if name not in self.meanings:
             return np.full(self.count, self.nodes[name])
         item, names = self.meanings[name]
@@ -113,6 +123,13 @@ class SolvedBench:
                 here = here & (self.places[:, self.meanings[name][0]] != UNPLUGGED)
             found |= here
         return found
+
+    @cached_property
+    def worst(self) -> Places:
+        """Which contact of one hand carries most in each state, the first where several do but for rounding."""
+        most = self.single_currents.greatest
+        first: Places = (most >= most.max(axis=1, keepdims=True) * (1.0 - ROUNDING)).argmax(axis=1)
+        return first
 
     @cached_property
     def bench_tied(self) -> Mask:
