@@ -398,3 +398,28 @@ def test_one_bench_is_solved_the_same_with_a_part_more_that_touches_nothing(body
     one, other = (bench_network(told) for told in (body, more))
     for name in ("verdict", "urgency", "as_found", "with_planned_link", "changes", "contacts", "findings"):
         assert_alike(one.get(name), other.get(name))
+
+
+def test_two_bonded_items_are_judged_for_a_second_fault() -> None:
+    """The worked case of two class I items: 63 A through C10 fail, through B6 hold."""
+    lead = {"length_m": 5, "area_mm2": 1.5}
+    items = [{"id": name, "fed_by": "iso", "protection_class": "I", "role": "under-test", "lead": lead} for name in "ab"]
+    found = {}
+    for letter, rated in (("C", 10), ("B", 6)):
+        body = small(items=items)
+        body["supplies"][1] |= {
+            "bonding": "non-earthed",
+            "bonding_conductor": {"length_m": 1, "area_mm2": 4},
+            "transformer": {"rated_power_va": 1000, "short_circuit_voltage_percent": 6},
+            "overcurrent_device": {
+                "kind": "miniature-circuit-breaker",
+                "characteristic": letter,
+                "rated_current_a": rated,
+            },
+        }
+        verdicts = {of["check"]: of["verdict"] for of in bench_network(body)["findings"]}
+        found[f"{letter}{rated}"] = verdicts["second-fault-disconnection"]
+    assert found == {"C10": "fail", "B6": "pass"}
+    alone = small(items=items)
+    without = {of["check"]: of["verdict"] for of in bench_network(alone)["findings"]}
+    assert without["separated-items"] == "fail"

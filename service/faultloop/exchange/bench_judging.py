@@ -1,22 +1,25 @@
 """States of a solved bench judged by the same checks as any point."""
 
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
 from faultloop.assessment.benches.columns import put_columns
 from faultloop.assessment.benches.network import Supply
 from faultloop.assessment.benches.solving import SolvedBench
-from faultloop.assessment.points import Number, from_rows
+from faultloop.assessment.points import from_rows
 from faultloop.assessment.verdicts import decide
 from faultloop.digests import canonical_bytes, sha256
-from faultloop.exchange.bench_networks import BenchRequest, SeparatedBenchSupply
-from faultloop.exchange.mapped import Mapped
+from faultloop.exchange.bench_mapping import stated
+from faultloop.exchange.bench_networks import BenchItem, BenchRequest, BenchTransformer, SeparatedBenchSupply
 from faultloop.exchange.mapping import mapped, tables_of
 from faultloop.exchange.render import Body, Renderer
 from faultloop.exchange.requests import AssessmentRequest
 
 DEFAULT_RULES = "iec-60364"
+SOLVED_NF = 0.0
+_CONTACTS = {"none": "unconnected", "non-earthed": "bonded", "earthed": "earthed"}
 
 
 @dataclass(frozen=True, slots=True)
@@ -40,8 +43,6 @@ def judged_bench(request: BenchRequest, solved: SolvedBench, input_digest: str, 
     points_of = [_point(request, body) for body in bodies]
     by = tables_of(points_of)
     given = [mapped(point, by) for point in points_of]
-    for point, body in zip(given, bodies, strict=True):
-        _put_supply(point, request, body)
     rows = from_rows([point.row for point in given])
     points = rows.picked(np.tile(np.arange(len(given)), solved.count))
     put_columns(points, solved)
@@ -59,13 +60,21 @@ def judged_bench(request: BenchRequest, solved: SolvedBench, input_digest: str, 
 
 
 def _point(request: BenchRequest, body: SeparatedBenchSupply) -> AssessmentRequest:
-    """A separated supply as a point of its own."""
-    told = {
+    """A separated supply as a point of its own; what was solved of it takes the place of what would be estimated."""
+    told: dict[str, Any] = {
         "point": {"label": request.label},
         "supply": {
             "earthing": "separated",
             "nominal_voltage_between_lines_v": body.nominal_voltage_between_lines_v,
             "frequency_hz": request.frequency_hz,
+        },
+        "separated_supply": {
+            "transformer": _transformer(body.transformer),
+            "outlets": body.outlets,
+            "items": [_item(item) for item in request.items if item.fed_by == body.id],
+            "earth_contacts": _CONTACTS[body.bonding],
+            "bonding_conductor": body.bonding_conductor,
+            "wiring_length_m": body.wiring_length_m,
         },
         "policy": request.policy,
     }
@@ -76,20 +85,24 @@ def _point(request: BenchRequest, body: SeparatedBenchSupply) -> AssessmentReque
     return AssessmentRequest.model_validate(told).under(request.rule_set)
 
 
-def _put_supply(point: Mapped, request: BenchRequest, body: SeparatedBenchSupply) -> None:
-    """What the checks ask of the transformer."""
-    numbers, told = point.row.numbers, body.transformer
-    numbers[Number.BETWEEN_LINES_V] = body.nominal_voltage_between_lines_v
-    numbers[Number.FREQUENCY_HZ] = request.frequency_hz
-    if told.rated_power_va is not None:
-        numbers[Number.TRANSFORMER_VA] = told.rated_power_va
-    percent = told.short_circuit_voltage_percent
-    if isinstance(percent, int | float):
-        numbers[Number.SHORT_CIRCUIT_PERCENT] = float(percent)
-    elif percent is not None and percent.greatest > 0.0:
-        middle = 0.5 * (percent.least + percent.greatest)
-        numbers[Number.SHORT_CIRCUIT_PERCENT] = middle
-        numbers[Number.SHORT_CIRCUIT_TOLERANCE] = 100.0 * (percent.greatest - middle) / middle
+def _transformer(body: BenchTransformer) -> dict[str, Any]:
+    """The transformer as a point has it: the middle of an impedance with its half width as tolerance."""
+    told: dict[str, Any] = {"rated_power_va": body.rated_power_va, "screen": body.screen}
+    # The current of a contact is solved with the windings' capacitance, so none is to be assumed.
+    told["interwinding_capacitance_nf"] = SOLVED_NF
+    if body.short_circuit_voltage_percent is None:
+        return told
+    percent = stated(body.short_circuit_voltage_percent)
+    if percent.nominal > 0.0:
+        told["short_circuit_voltage_percent"] = percent.nominal
+        if percent.open:
+            width = min(100.0, 100.0 * (percent.greatest - percent.nominal) / percent.nominal)
+            told["short_circuit_tolerance_percent"] = width
+    return told
+
+
+def _item(body: BenchItem) -> dict[str, Any]:
+    return {"protection_class": body.protection_class, "lead": body.lead}
 
 
 def input_digest_of(request: BenchRequest) -> str:

@@ -4,9 +4,10 @@ from typing import Annotated, Any, Literal, Self
 
 from pydantic import BaseModel, Discriminator, Field, Tag, model_validator
 
-from faultloop.exchange.fields import Closed, Label, number
+from faultloop.exchange.fields import WHOLE, Closed, Label, number
 from faultloop.exchange.overcurrent import OvercurrentDevice
 from faultloop.exchange.requests import ResidualCurrentDevice, Ruled
+from faultloop.exchange.unearthed import CorePair
 
 MOST_SUPPLIES, MOST_ITEMS, MOST_LINKS, MOST_CONTACTS = 6, 24, 24, 40
 Id = Annotated[
@@ -111,6 +112,11 @@ class SeparatedBenchSupply(Closed):
         description="What the outlets' earth contacts are joined to: nothing, each other only, or earth"
     )
     fed_from: Id | None = Field(default=None, description="Earthed supply that feeds the primary")
+    outlets: Annotated[int, Field(strict=True, ge=1, le=1000), WHOLE] | None = None
+    bonding_conductor: CorePair | None = Field(default=None, description="Between the outlets' earth contacts")
+    wiring_length_m: (
+        Annotated[float, number("m", most=100_000, description="Of all wiring and leads together")] | None
+    ) = None
 
 
 class EarthedBenchSupply(Closed):
@@ -169,6 +175,7 @@ class BenchItem(Closed):
     live_chassis: Literal["L1", "L2"] | None = Field(default=None, description="Pole that its chassis is joined to")
     chassis_resistance_ohm: Ohms | None = Field(default=None, description="Between chassis and pole [ohm]")
     load_resistance_ohm: Ohms | None = Field(default=None, description="What it draws, as a resistance [ohm]")
+    lead: CorePair | None = Field(default=None, description="Its flexible lead, for a second fault")
     stored: StoredCharge | None = None
 
 

@@ -125,13 +125,16 @@ class BenchWords:
 
     def contacts(self) -> list[Body]:
         """The usual contacts and those asked for; pairs of parts that are one node are no contact."""
-        told = [*usual_contacts(self.solved.bench), *(Contact("asked", of.one, of.other) for of in self.asked)]
+        told = usual_contacts(self.solved.bench)
+        asked = {frozenset((of.one, of.other)) for of in self.asked}
+        usual = {frozenset((of.one, of.other)) for of in told}
+        told += [Contact("asked", of.one, of.other) for of in self.asked if frozenset((of.one, of.other)) not in usual]
         voltage, current = self.solved.touched(told)
         between, found = voltage.greatest[list(self.told_states.values())], []
         # Parts that stand together in every state that is told are one part.
-        one = (between < ONE_NODE_V).all(axis=0).tolist()
+        one: list[bool] = np.all(between < ONE_NODE_V, axis=0).tolist()
         for column, contact in enumerate(told):
-            if contact.kind == "part-to-part" and one[column]:
+            if contact.kind == "part-to-part" and one[column] and frozenset((contact.one, contact.other)) not in asked:
                 continue
             body: Body = {
                 "kind": contact.kind,

@@ -4,7 +4,7 @@ from dataclasses import dataclass, field
 
 from faultloop.assessment.benches.network import EARTH, Bench, Item, Supply
 
-WIDTH, LEFT = 1012.0, 178.0
+WIDTH, LEFT = 1024.0, 178.0
 CARD, GAP, ROW = 144.0, 22.0, 5
 CARD_HEIGHT, DROP, BUS = 112.0, 56.0, 20.0
 FOOT, BETWEEN = 24.0, 30.0

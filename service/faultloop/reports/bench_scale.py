@@ -2,6 +2,7 @@
 
 from typing import Any
 
+from faultloop.assessment.benches.network import EARTH
 from faultloop.reports.bench_symbols import PLANNED, QUIET
 from faultloop.reports.scale import Axis, ampere
 from faultloop.reports.sheet import FAINT, GREY, INK, MARGIN, PAPER, PLAIN, Sheet, put
@@ -22,7 +23,7 @@ def put_scale(sheet: Sheet, answer: dict[str, Any], told: Words) -> None:
     top, bottom = sheet.y, sheet.y + STEP * len(shown)
     _put_lines(sheet, axis, top, bottom, answer, told)
     for at, contact in enumerate(shown):
-        _put_contact(sheet, axis, top + STEP * (at + 0.5), contact)
+        _put_contact(sheet, axis, top + STEP * (at + 0.5), contact, told)
     sheet.y = bottom + 20.0
     if "with_planned_link" in answer:
         sheet.lines(told.bench["contacts-key"], PLAIN)
@@ -61,8 +62,8 @@ def _put_lines(sheet: Sheet, axis: Axis, top: float, bottom: float, answer: dict
         sheet.write(words, x + aside, top - 8.0, font_size=9.5, text_anchor=anchor)
 
 
-def _put_contact(sheet: Sheet, axis: Axis, y: float, contact: dict[str, Any]) -> None:
-    words = f"{contact['from']} – {contact['to']}"
+def _put_contact(sheet: Sheet, axis: Axis, y: float, contact: dict[str, Any], told: Words) -> None:
+    words = " – ".join(told.bench["earth"] if end == EARTH else end for end in (contact["from"], contact["to"]))
     sheet.write(words, MARGIN, y + 4.0, font_size=11)
     states = [contact[field]["current_ma"] for field in ("as_found", "with_planned_link") if field in contact]
     places = [axis.at(max(state["greatest"] * MILLI, axis.least)) for state in states]
@@ -77,8 +78,8 @@ def _put_contact(sheet: Sheet, axis: Axis, y: float, contact: dict[str, Any]) ->
     if len(places) > 1:
         put(sheet.sheet, "circle", class_="with-planned-link", cx=places[1], cy=y, r=4.0, fill=PLANNED)
     most = states[-1]["greatest"]
-    told = f"{most:.3g}\u00a0mA" if most >= LEAST_SHOWN_MA else f"< {LEAST_SHOWN_MA:g}\u00a0mA"
-    sheet.write(told, LEFT - 12.0, y + 4.0, font_size=11, font_weight="bold", text_anchor="end")
+    current = f"{most:.3g}\u00a0mA" if most >= LEAST_SHOWN_MA else f"< {LEAST_SHOWN_MA:g}\u00a0mA"
+    sheet.write(current, LEFT - 12.0, y + 4.0, font_size=11, font_weight="bold", text_anchor="end")
 
 
 def _put_arrow(sheet: Sheet, begin: float, end: float, y: float) -> None:

@@ -2,7 +2,7 @@
 
 from typing import Any
 
-from faultloop.assessment.benches.network import Bench
+from faultloop.assessment.benches.network import EARTH, Bench
 from faultloop.assessment.benches.texts import bench_texts
 from faultloop.digests import digest
 from faultloop.reports.bench_layout import WIDTH, laid_out
@@ -32,7 +32,8 @@ def bench_drawing(bench: Bench, answer: dict[str, Any], language: str = "en") ->
     put_key(sheet, answer, told)
     for at, link in enumerate(bench.all_links):
         kind = bench_texts(language).links[link.kind]
-        sheet.lines(f"{at + 1}  {kind} {link.id}: {link.one} – {link.other}", PLAIN)
+        ends = " – ".join(told.bench["earth"] if end == EARTH else end for end in (link.one, link.other))
+        sheet.lines(f"{at + 1}. {kind} {link.id}: {ends}", PLAIN)
     put_scale(sheet, answer, told)
     _put_changes(sheet, answer, told)
     sheet.y += 6.0
