@@ -158,6 +158,7 @@ def test_sentences_are_used_and_have_a_variant_for_each_case() -> None:
         "line-neutral": POLICIES,
         "loop": sorted(Basis.codes()),
         "within": sorted(Decision.codes()),
+        "beyond": sorted(Decision.codes()),
     }
     needed = {f"{name}.{v}" for name in named if name in variants for v in variants[name]}
     needed |= {name for name in named if name not in variants}

@@ -138,7 +138,8 @@ def _contact_told(q: Quoted) -> str:
     told = [q.phrases["contact-pole"].format(pole=pole, ma=ma) for pole, ma in read if not math.isnan(ma)]
     parts = [q.phrases["contact-read"].format(contact_reads=", ".join(told))] if told else []
     if q.number("every_pole_read"):
-        parts += [q.phrases["contact-stated"].format_map(q)] if q.number("stated_nf") > 0.0 else []
+        told_too = q.number("stated_nf") > 0.0 and not math.isnan(q.number("stated_ma"))
+        parts += [q.phrases["contact-stated"].format_map(q)] if told_too else []
     elif not math.isnan(q.number("driven")):
         parts.append(q.phrases["contact-driven"].format_map(q))
     if len(parts) < 2:
@@ -168,6 +169,8 @@ _PHRASES: dict[str, Callable[[Quoted], float | str]] = {
         "marginal-question-external" if math.isnan(q.number("ze")) else "marginal-question"
     ],
     "contact_told": _contact_told,
+    "u_told": lambda q: q.phrases["voltage-whole" if math.isnan(q.number("u_sep")) else "voltage-known"].format_map(q),
+    "pole_told": lambda q: q.phrases["pole-made" if math.isnan(q.number("line_line")) else "pole-read"].format_map(q),
     "second_told": lambda q: _by_supply(q, "second-separated", "second-insulated"),
     "second_limit": lambda q: _by_supply(q, "second-limit-separated", "second-limit-insulated"),
     "side": lambda q: q.phrases["below" if q.number("nominal") <= q.number("limit") else "above"],
@@ -190,7 +193,7 @@ def _templates(language: str, policy: str, basis: str, decision: str) -> list[li
     # Of a loop taken from the electrode nothing is heated.
     heating = basis if basis == "electrode" else policy
     variants = dict.fromkeys(("limit", "upstream", "line-neutral"), policy)
-    variants |= {"heating": heating, "loop": basis, "within": decision}
+    variants |= {"heating": heating, "loop": basis, "within": decision, "beyond": decision}
 
     def template(said: Said) -> Template:
         text = told.expanded(said.explanation, variants)

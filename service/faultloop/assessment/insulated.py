@@ -42,10 +42,12 @@ def insulated(g: Given, operating: Array, hot: Interval, cold: Interval) -> Insu
     current = Interval(
         np.fmax(read.least, fault.least), np.fmax(read.greatest, fault.greatest), np.fmax(read.nominal, fault.nominal)
     )
+    # A line that is held to earth by an electrode brings no more to it than its own voltage.
+    line = g.rule["c_max"] * number(Number.VOLTAGE)
     touch = Interval(
-        current.least * electrode.least / MILLI,
-        current.greatest * electrode.greatest / MILLI,
-        current.nominal * electrode.nominal / MILLI,
+        np.minimum(current.least * electrode.least / MILLI, line),
+        np.minimum(current.greatest * electrode.greatest / MILLI, line),
+        np.minimum(current.nominal * electrode.nominal / MILLI, line),
     )
     # Two faults share the loop: without a neutral between two lines, with one between line and neutral.
     with_neutral = points.choice(Choice.NEUTRAL_DISTRIBUTED) != Distributed.NO
@@ -81,8 +83,8 @@ def _currents(g: Given, here: Flags) -> tuple[Interval, Array]:
         neutral_earth_nf=np.tile(np.where(neutral, line, 0.0), 4) * scale,
     )
     electrode = g.reading(Reading.ELECTRODE)
-    # A first fault meets an electrode of some ohms, which takes nothing off what tens of nanofarads drive.
-    path = np.concatenate([electrode.greatest, electrode.least, electrode.nominal, g.rule["body_dry"]])
+    # Paired as the touch voltage wants them: the least current into the least electrode.
+    path = np.concatenate([electrode.least, electrode.greatest, electrode.nominal, g.rule["body_dry"]])
     by = MILLI * current_to_earth(supply, path)
     least, greatest, nominal, touched = (by[at * count : (at + 1) * count] for at in range(4))
     return Interval(least, greatest, nominal), touched

@@ -38,6 +38,7 @@ class Separated:
     limit: Array
     pole_to_pole: Fault
     second_fault: Fault
+    wiring_ohm: Array
     conductors_ohm: Array
     class_i: Array
     several: Flags
@@ -77,6 +78,7 @@ def separated(g: Given, factor: Array) -> Separated:
         limit=np.where(np.isinf(operating), np.nan, prospective_current(g.rule["c_min"], voltage, operating)),
         pole_to_pole=_pole_to_pole(g, voltage, source, wiring, factor),
         second_fault=_fault(g, voltage, _added(source, both, factor), source.least),
+        wiring_ohm=wiring,
         conductors_ohm=both.nominal,
         class_i=class_i,
         several=several,

@@ -145,7 +145,8 @@ def _put_items(point: Mapped, items: list[ue.Item]) -> None:
     leads = [math.nan if item.lead is None else 2.0 * _core_ohm(item.lead) for item in exposed]
     numbers[Number.LEADS_OHM] = math.nan if any(map(math.isnan, leads)) else math.fsum(sorted(leads)[-2:])
     if charged := [item.stored for item in items if item.stored is not None]:
-        slowest = max(charged, key=lambda stored: _discharge(stored, point.rules.rules.separation.discharged.value))
+        to_v = point.rules.rules.separation.discharged.value
+        slowest = max(charged, key=lambda stored: (_discharge(stored, to_v), stored.voltage_v, stored.capacitance_uf))
         numbers[Number.STORED_UF], numbers[Number.STORED_V] = slowest.capacitance_uf, slowest.voltage_v
         _put(numbers, Number.DISCHARGE_OHM, slowest.discharge_resistance_ohm)
 

@@ -37,6 +37,16 @@ from faultloop.protection.catalogue import catalogue
 Body = dict[str, Any]
 _VERDICTS = {code: word for word, code in Verdict.codes().items()}
 _OWN_CLAUSE = {Earthing.TT: "tt", Earthing.IT: "it"}
+_CLEARING_EARTH_FAULTS = (
+    "overcurrent-disconnection",
+    "residual-disconnection",
+    "barrier-failed-path",
+    "touch-voltage",
+    "protective-conductor-condition",
+    "protective-conductor-heating",
+    "means-of-earthing",
+    "earth-electrode",
+)
 _NOT_CONCERNED = {Earthing.IT: "not-concerned-it", Earthing.SEPARATED: "not-concerned-separated"}
 LOOP_ROWS = np.array([check.quantity == "earth_fault_loop_impedance_ohm" for check in CHECKS])[:, None]
 _URGENCIES = {code: word for word, code in Urgency.codes().items()}
@@ -100,7 +110,8 @@ def _not_applicable(told: Texts, check: Check, earthing: int) -> Body | None:
         return {"check": check.id, "text": told.checks[check.id].applies_not}
     if earthing in EARTHED or check.supplies.isdisjoint(EARTHED):
         return None
-    return {"check": check.id, "text": told.phrases[_NOT_CONCERNED[earthing]]}
+    cleared = check.id in _CLEARING_EARTH_FAULTS
+    return {"check": check.id, "text": told.phrases[_NOT_CONCERNED[earthing] if cleared else "not-looked-at"]}
 
 
 def _said_alike(told: Texts, check: str, reason: str) -> Body | None:

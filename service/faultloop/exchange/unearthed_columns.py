@@ -24,7 +24,9 @@ UNEARTHED_NUMBERS: dict[str, Path] = {
     "monitor_set_point_kohm": ("it_supply", "insulation_monitor", "set_point_kohm"),
 }
 # Of the items a file says how many there are, how many have exposed parts, and what is alike in all of these.
-ITEMS: dict[str, Path] = dict.fromkeys(("items", "class_i_items", "filter_capacitance_nf", "lead_length_m", "lead_mm2"), ("separated_supply", "items"))
+ITEMS: dict[str, Path] = dict.fromkeys(
+    ("items", "class_i_items", "filter_capacitance_nf", "lead_length_m", "lead_mm2"), ("separated_supply", "items")
+)
 YES_OR_NO: dict[str, Path] = {
     "pole_earthed": ("separated_supply", "pole_earthed"),
     "neutral_distributed": ("it_supply", "neutral_distributed"),

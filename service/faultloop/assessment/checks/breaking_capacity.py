@@ -4,8 +4,9 @@ import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import EARTHED, INSULATED, Choice, Flags, Number, Points, Reading
+from faultloop.assessment.points import EARTHED, INSULATED, SEPARATED, Choice, Flags, Number, Points, Reading
 from faultloop.assessment.quantities import Quantities
+from faultloop.assessment.separated import Separated
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.electrical.measurement import Array, Interval
 
@@ -52,7 +53,17 @@ def _at_board(points: Points, q: Quantities) -> tuple[Interval, Flags]:
         greater(stated.greatest, loop.least, earth.least),
         greater(stated.nominal, loop.nominal, earth.nominal),
     )
+    if q.separated is not None:
+        interval = _behind_the_transformer(q, q.separated, interval)
     return interval, ~np.isnan(interval.nominal)
+
+
+def _behind_the_transformer(q: Quantities, supply: Separated, other: Interval) -> Interval:
+    """On separated supplies the current that the transformer alone lets flow [kA]."""
+    ends = (supply.source.greatest, supply.source.least, supply.source.nominal)
+    by_source = (prospective_current(q.rule("c_max"), supply.voltage, of) / 1000.0 for of in ends)
+    others = (other.least, other.greatest, other.nominal)
+    return Interval(*(np.where(supply.here, own, of) for own, of in zip(by_source, others, strict=True)))
 
 
 def _judge(points: Points, q: Quantities) -> Judged:
@@ -97,5 +108,5 @@ CHECK = Check(
     reasons=REASONS,
     applies=_applies,
     judge=_judge,
-    supplies=EARTHED | INSULATED,
+    supplies=EARTHED | INSULATED | SEPARATED,
 )

@@ -10,6 +10,7 @@ from faultloop.assessment.withstand import withstands
 REASONS = (
     "within-limit",
     "voltage-unknown",
+    "no-required-time",
     "loop-unknown",
     "device-missing",
     "conductor-withstands",
@@ -29,6 +30,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     loop, limit, current = found.pole_to_pole.loop, found.limit, found.pole_to_pole.current
     cases = Cases(REASONS)
     cases.when(np.isnan(found.voltage), Standing.NOT_EXAMINED, "voltage-unknown")
+    cases.when(np.isnan(found.required_s), Standing.NOT_EXAMINED, "no-required-time")
     cases.when(np.isnan(loop.nominal), Standing.NOT_EXAMINED, "loop-unknown")
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS

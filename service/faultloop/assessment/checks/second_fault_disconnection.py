@@ -23,6 +23,7 @@ REASONS = (
     *COMPARISON,
     "device-missing",
     "voltage-unknown",
+    "no-required-time",
     "loop-unknown",
     "exposed-parts-unknown",
     "loop-missing",
@@ -49,20 +50,24 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases = Cases(REASONS)
     apart, here = np.zeros(points.count, np.bool_), np.zeros(points.count, np.bool_)
     loop, limit, operating, voltage = q.compared, q.loop_limit, q.operating_current, points.number(Number.VOLTAGE)
+    required = q.required_s
     if q.separated is not None:
         here, supply = q.separated.here, q.separated
         loop = _where(here, supply.second_fault.loop, loop)
         limit = np.where(here, supply.limit, limit)
         operating = np.where(here, supply.operating_current, operating)
+        required = np.where(here, supply.required_s, required)
         voltage = np.where(here, supply.voltage, voltage)
     if q.insulated is not None:
         apart = q.insulated.apart
         limit = np.where(q.insulated.here, q.insulated.second_limit, limit)
+        voltage = np.where(q.insulated.here, q.insulated.second_v, voltage)
         _together_or_apart(cases, points, q)
     if apart.any():
         loop, limit = _by_electrode(cases, q, apart, loop, limit)
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     cases.when(np.isnan(voltage), Standing.UNDETERMINED, "voltage-unknown")
+    cases.when(here & np.isnan(required), Standing.NOT_EXAMINED, "no-required-time")
     cases.when(here & np.isnan(loop.nominal), Standing.UNDETERMINED, "loop-unknown")
     cases.when(~here & (q.loops.fault != Fault.NONE), Standing.UNDETERMINED, "loop-missing")
     cases.when(np.isinf(operating), Standing.UNDETERMINED, "no-guaranteed-current")

@@ -24,8 +24,6 @@ def _judge(points: Points, q: Quantities) -> Judged:
     stated = points.choice(Choice.WINDINGS) != Windings.UNKNOWN
     cases.when(stated & (points.number(Number.DIELECTRIC_V) < tested), Standing.UNMET, "dielectric-low")
     cases.when(~q.given.known[Reading.WINDING_INSULATION], Standing.NOT_EXAMINED, "not-measured")
-    if cases.settle_everything():
-        return cases.settle_unvalued()
     cases.when(read.nominal > q.rule("greatest_insulation"), Standing.UNDETERMINED, "beyond-instruments")
     open_end = np.isinf(read.greatest) & (read.least < limit)
     cases.when(open_end, Standing.UNDETERMINED, "over-range-below-limit")
