@@ -12,9 +12,9 @@ from faultloop.assessment.benches.states import UNPLUGGED, States, states_of
 from faultloop.assessment.benches.typical import typical
 from faultloop.assessment.benches.wires import Variant, Wire, meanings, present, wires_of
 from faultloop.electrical.circuit_elements import Mask, Phasor
+from faultloop.electrical.circuit_wirings import EARTH as EARTH_NODE
+from faultloop.electrical.circuit_wirings import Branches, Places, Wired, contact, nearest_path, solve_wirings
 from faultloop.electrical.measurement import Array
-from faultloop.electrical.wirings import EARTH as EARTH_NODE
-from faultloop.electrical.wirings import Branches, Places, Wired, contact, nearest_path, solve_wirings
 
 NO_CURRENT_A, ROUNDING = 1e-9, 1e-6
 

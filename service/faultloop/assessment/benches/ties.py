@@ -7,8 +7,8 @@ import numpy as np
 
 from faultloop.assessment.benches.network import EARTH
 from faultloop.assessment.benches.solving import SolvedBench
+from faultloop.electrical.circuit_wirings import Branches, Places, nearest_path
 from faultloop.electrical.measurement import Array
-from faultloop.electrical.wirings import Branches, Places, nearest_path
 
 TIED, COUPLED, APART = "tied", "floating", "apart"
 

@@ -10,8 +10,8 @@ from hypothesis import strategies as st
 from faultloop.electrical.circuit_elements import Element, Impedance, VoltageSource
 from faultloop.electrical.circuit_layout import Circuit
 from faultloop.electrical.circuit_solution import current_through, voltage_between
+from faultloop.electrical.circuit_wirings import Branches, contact, nearest_path, solve_wirings
 from faultloop.electrical.circuits import solve
-from faultloop.electrical.wirings import Branches, contact, nearest_path, solve_wirings
 
 NODES, OMEGA = 6, 2.0 * np.pi * 50.0
 branch = st.tuples(
