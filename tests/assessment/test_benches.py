@@ -184,6 +184,17 @@ def test_a_mat_that_nobody_described_is_asked_about() -> None:
     assert bench_network(bolted)["verdict"] == "fail"
 
 
+def test_a_tie_through_a_resistance_is_no_live_mains() -> None:
+    body = small(planned_link={**CLIP, "kind": "other", "resistance_ohm": 100e3})
+    answer = bench_network(body)
+    assert answer["planned_link"]["ties"] == "yes"
+    assert "live mains" not in answer["planned_link"]["text"]
+    # 230 V over 100 kΩ, and what the cable's capacitance adds beside it.
+    assert greatest(answer, "iso.L1", state="with_planned_link") == pytest.approx(230 / 101e3 * 1000, rel=5e-3)
+    reasons = {finding["check"]: finding["reason"] for finding in answer["findings"]}
+    assert reasons["planned-link"] == "ties-through-resistance"
+
+
 def test_a_live_chassis_on_the_wall_is_no_floating_bench() -> None:
     body = small()
     body["items"][0] |= {"fed_by": "wall", "protection_class": "II", "live_chassis": "L1"}
@@ -403,7 +414,9 @@ def test_one_bench_is_solved_the_same_with_a_part_more_that_touches_nothing(body
 def test_two_bonded_items_are_judged_for_a_second_fault() -> None:
     """The worked case of two class I items: 63 A through C10 fail, through B6 hold."""
     lead = {"length_m": 5, "area_mm2": 1.5}
-    items = [{"id": name, "fed_by": "iso", "protection_class": "I", "role": "under-test", "lead": lead} for name in "ab"]
+    items = [
+        {"id": name, "fed_by": "iso", "protection_class": "I", "role": "under-test", "lead": lead} for name in "ab"
+    ]
     found = {}
     for letter, rated in (("C", 10), ("B", 6)):
         body = small(items=items)

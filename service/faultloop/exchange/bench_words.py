@@ -206,7 +206,8 @@ class BenchWords:
         contact, _, after = self.worst(1)
         before = self._same_contact(contact, 0)
         current = (float(planned.current_a.least), float(planned.current_a.greatest))
-        text = self.texts.planned[words[planned.code]].format(
+        light = planned.code == PlannedLink.TIES and after <= self.lines()["let-go"]
+        text = self.texts.planned["ties-lightly" if light else words[planned.code]].format(
             **self.link_words(link),
             current=self.between(current[0] * MILLI, current[1] * MILLI),
             contact=self.contact_short(contact),
