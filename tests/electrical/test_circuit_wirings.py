@@ -7,10 +7,11 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from faultloop.electrical import circuit_wirings
 from faultloop.electrical.circuit_elements import Element, Impedance, VoltageSource
 from faultloop.electrical.circuit_layout import Circuit
 from faultloop.electrical.circuit_solution import current_through, voltage_between
-from faultloop.electrical.circuit_wirings import Branches, contact, nearest_path, solve_wirings
+from faultloop.electrical.circuit_wirings import Branches, contact, contact_with_earth, nearest_path, solve_wirings
 from faultloop.electrical.circuits import solve
 
 NODES, OMEGA = 6, 2.0 * np.pi * 50.0
@@ -59,7 +60,7 @@ def elements(told: list[Any], joined: tuple[int, int] | None) -> tuple[Element, 
 
 @given(told=networks, one=st.integers(0, NODES - 1), other=st.integers(0, NODES - 1))
 def test_same_as_the_solver_of_one_shape(told: list[list[Any]], one: int, other: int) -> None:
-    wired = solve_wirings(len(told), NODES, branches(told))
+    wired = solve_wirings(len(told), NODES, branches(told), len(told))
     pair = (np.full((len(told), 1), one), np.full((len(told), 1), other))
     voltage, current = contact(wired, *pair, 1000.0)
     for at, network in enumerate(told):
@@ -76,9 +77,9 @@ def test_same_as_the_solver_of_one_shape(told: list[list[Any]], one: int, other:
 
 @given(told=networks)
 def test_one_alone_is_the_same_as_among_others(told: list[list[Any]]) -> None:
-    together = solve_wirings(len(told), NODES, branches(told))
+    together = solve_wirings(len(told), NODES, branches(told), len(told))
     for at, network in enumerate(told):
-        alone = solve_wirings(1, NODES, branches([network]))
+        alone = solve_wirings(1, NODES, branches([network]), 1)
         assert (alone.potential_v[0] == together.potential_v[at]).all()
         assert (alone.transfer_ohm[0] == together.transfer_ohm[at]).all()
 
@@ -103,3 +104,25 @@ def test_a_path_leads_to_earth_and_is_as_long_as_it_says(told: list[list[Any]]) 
                     break
             assert here == 0
             assert length == pytest.approx(distance[at, node])
+
+
+@given(told=networks)
+def test_a_contact_with_earth_is_a_contact(told: list[list[Any]]) -> None:
+    wired = solve_wirings(len(told), NODES, branches(told), len(told))
+    nodes = np.tile(np.arange(NODES), (len(told), 1))
+    _, current = contact(wired, nodes, np.zeros_like(nodes), 1000.0)
+    np.testing.assert_allclose(contact_with_earth(wired, nodes, 1000.0), current, rtol=1e-12, atol=1e-15)
+
+
+@given(told=networks)
+def test_blocks_make_no_difference(told: list[list[Any]]) -> None:
+    parts = branches(told)
+    weight, found = 1.0 / np.abs(parts.admittance), []
+    for entries in (1, 1 << 17):
+        with pytest.MonkeyPatch.context() as patch:
+            patch.setattr(circuit_wirings, "BLOCK_ENTRIES", entries)
+            wired = solve_wirings(len(told), NODES, parts, 2)
+            found.append((wired.potential_v, wired.own_ohm, wired.transfer_ohm))
+            found[-1] += nearest_path(len(told), NODES, parts, weight)
+    for one, other in zip(*found, strict=True):
+        assert (one == other).all()

@@ -5,6 +5,7 @@ otherwise nearly all elements would be open in nearly all of them, so here a net
 stamped, counted from their references and solved at once.  Every branch is an admittance above zero; none is ideal.
 """
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 import numpy as np
@@ -15,6 +16,7 @@ from faultloop.electrical.measurement import Array
 
 Places = NDArray[np.int64]
 EARTH = 0
+BLOCK_ENTRIES = 1 << 17  # matrix entries solved at a time: about 2 MB, so that a block stays in the cache
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,17 +43,20 @@ class Wired:
         Potential of each node from its reference [V].
     reference : (n, m) array of int
         Node that each node is counted from: earth (0) where anything joins it to earth, else one of its own part.
-    transfer_ohm : (n, m, m) array of complex
-        Potential of each node for one ampere driven out of the reference into each node [Ω].
+    own_ohm : (n, m) array of complex
+        Potential of each node for one ampere driven into it out of its reference [Ω].
+    transfer_ohm : (k, m, m) array of complex
+        Potential of each node for one ampere driven into each other, of the first k networks [Ω].
     """
 
     potential_v: Phasor
     reference: Places
+    own_ohm: Phasor
     transfer_ohm: Phasor
 
 
-def solve_wirings(networks: int, nodes: int, branches: Branches) -> Wired:
-    """Potentials of many networks, and how each node answers to a current driven into another.
+def solve_wirings(networks: int, nodes: int, branches: Branches, whole: int) -> Wired:
+    """Potentials of many networks, and how each node answers to a current driven into it.
 
     Parameters
     ----------
@@ -59,6 +64,8 @@ def solve_wirings(networks: int, nodes: int, branches: Branches) -> Wired:
         How many there are; node 0 is earth.
     branches : Branches
         At least none; every admittance is finite and not zero.
+    whole : int
+        How many of the first networks are to tell of every pair of nodes too.
 
     Returns
     -------
@@ -74,17 +81,39 @@ def solve_wirings(networks: int, nodes: int, branches: Branches) -> Wired:
     ----------
     .. [1] IEC 60050-131:2002, 131-13 (connected network), 131-15 (Kirchhoff laws).
     """
-    network, plus, minus, y = branches.network, branches.plus, branches.minus, branches.admittance
-    size = nodes * nodes
-    flat, base = np.zeros(networks * size, np.complex128), network * size
-    joins = np.zeros(networks * size, np.bool_)
+    found = Wired(
+        np.empty((networks, nodes), np.complex128),
+        np.empty((networks, nodes), np.int64),
+        np.empty((networks, nodes), np.complex128),
+        np.empty((min(whole, networks), nodes, nodes), np.complex128),
+    )
+    for block, mine in _blocks(networks, nodes, branches):
+        _solve_block(found, block, branches, mine)
+    return found
+
+
+def _blocks(networks: int, nodes: int, branches: Branches) -> Iterator[tuple[slice, Places]]:
+    """Some networks at a time, with the branches that are theirs."""
+    order = np.argsort(branches.network, kind="stable")
+    sorted_by, step = branches.network[order], max(1, BLOCK_ENTRIES // (nodes * nodes))
+    for start in range(0, networks, step):
+        stop = min(start + step, networks)
+        begin, end = np.searchsorted(sorted_by, (start, stop)).tolist()
+        yield slice(start, stop), order[begin:end]
+
+
+def _solve_block(found: Wired, block: slice, branches: Branches, mine: Places) -> None:
+    """Solve some networks by the branches that are theirs."""
+    nodes, count = found.potential_v.shape[1], block.stop - block.start
+    network, plus, minus = branches.network[mine] - block.start, branches.plus[mine], branches.minus[mine]
+    y, driven = branches.admittance[mine], branches.admittance[mine] * branches.emf[mine]
+    flat, joins = np.zeros(count * nodes * nodes, np.complex128), np.zeros(count * nodes * nodes, np.bool_)
     for row, column, sign in ((plus, plus, 1.0), (minus, minus, 1.0), (plus, minus, -1.0), (minus, plus, -1.0)):
-        place = base + row * nodes + column
+        place = (network * nodes + row) * nodes + column
         np.add.at(flat, place, sign * y)
         joins[place] = True
-    matrix, joined = flat.reshape(networks, nodes, nodes), joins.reshape(networks, nodes, nodes)
-    side = np.zeros((networks, nodes, nodes + 1), np.complex128)
-    driven = y * branches.emf
+    matrix, joined = flat.reshape(count, nodes, nodes), joins.reshape(count, nodes, nodes)
+    side = np.zeros((count, nodes, nodes + 1), np.complex128)
     sources = side[:, :, 0]
     np.add.at(sources, (network, plus), driven)
     np.add.at(sources, (network, minus), -driven)
@@ -93,8 +122,11 @@ def solve_wirings(networks: int, nodes: int, branches: Branches) -> Wired:
     pinned = reference == np.arange(nodes)
     matrix[pinned] = np.broadcast_to(np.eye(nodes, dtype=np.complex128), matrix.shape)[pinned]
     side[pinned] = 0.0
-    found: Phasor = np.asarray(np.linalg.solve(matrix, side), np.complex128)
-    return Wired(found[:, :, 0], reference, found[:, :, 1:])
+    solved = np.linalg.solve(matrix, side)
+    found.potential_v[block], found.reference[block] = solved[:, :, 0], reference
+    found.own_ohm[block] = np.diagonal(solved[:, :, 1:], axis1=1, axis2=2)
+    kept = found.transfer_ohm[block]
+    kept[:] = solved[: len(kept), :, 1:]
 
 
 def _references(joined: Mask) -> Places:
@@ -107,23 +139,53 @@ def _references(joined: Mask) -> Places:
     return first
 
 
+def contact_with_earth(wired: Wired, touched: Places, resistance_ohm: float) -> Phasor:
+    """Current of a resistance put between a node and earth.
+
+    Parameters
+    ----------
+    wired : Wired
+        Of n networks.
+    touched : (n, c) array of int
+        Nodes of each network.
+    resistance_ohm : float
+        What joins them: a body [Ω].
+
+    Returns
+    -------
+    (n, c) array of complex
+        [A]; zero where nothing joins the node to earth.
+
+    Notes
+    -----
+    I = U/(Z + R), where Z is the impedance between the node and earth with all sources at rest.
+
+    References
+    ----------
+    .. [1] IEC 60050-131:2002, 131-15-21 (Thévenin theorem).
+    """
+    at = np.arange(len(touched))[:, None]
+    current = wired.potential_v[at, touched] / (wired.own_ohm[at, touched] + resistance_ohm)
+    return np.where(wired.reference[at, touched] == EARTH, current, 0.0)
+
+
 def contact(wired: Wired, plus: Places, minus: Places, resistance_ohm: float | Array) -> tuple[Phasor, Phasor]:
     """Voltage that stands between two nodes, and the current of a resistance put between them.
 
     Parameters
     ----------
     wired : Wired
-        Of n networks.
-    plus, minus : (n, c) array of int
-        Pairs of nodes of each network.
-    resistance_ohm : float or (n, 1) array
+        Of which the first k networks were solved whole.
+    plus, minus : (k, c) array of int
+        Pairs of nodes of these networks.
+    resistance_ohm : float or (k, 1) array
         What joins them: a body, a link [Ω].
 
     Returns
     -------
-    voltage_v : (n, c) array of complex
+    voltage_v : (k, c) array of complex
         Before they are joined [V]; nan where nothing joins the two parts, for then it is not determined.
-    current_a : (n, c) array of complex
+    current_a : (k, c) array of complex
         Once they are joined [A]; zero where nothing joins the two parts.
 
     Notes
@@ -166,18 +228,24 @@ def nearest_path(networks: int, nodes: int, branches: Branches, weight: Array) -
     .. [1] IEC 60050-131:2002, 131-13 (path).
     .. [2] R. Bellman, "On a routing problem", Quart. Appl. Math. 16, 1958, 87-90.
     """
-    step = np.full((networks, nodes, nodes), np.inf)
-    for one, other in ((branches.plus, branches.minus), (branches.minus, branches.plus)):
-        np.minimum.at(step, (branches.network, one, other), weight)
-    distance = np.full((networks, nodes), np.inf)
+    distance, following = np.full((networks, nodes), np.inf), np.zeros((networks, nodes), np.int64)
     distance[:, EARTH] = 0.0
-    following = np.zeros((networks, nodes), np.int64)
-    for _ in range(nodes):
+    for block, mine in _blocks(networks, nodes, branches):
+        network = branches.network[mine] - block.start
+        step = np.full((block.stop - block.start, nodes, nodes), np.inf)
+        for one, other in ((branches.plus[mine], branches.minus[mine]), (branches.minus[mine], branches.plus[mine])):
+            np.minimum.at(step, (network, one, other), weight[mine])
+        _shorten(distance[block], following[block], step)
+    return distance, following
+
+
+def _shorten(distance: Array, following: Places, step: Array) -> None:
+    """Go on by one branch more until nothing gets shorter."""
+    for _ in range(distance.shape[1]):
         sums = step + distance[:, None, :]
-        best = sums.min(axis=2)
+        after = sums.argmin(axis=2)
+        best = np.take_along_axis(sums, after[:, :, None], axis=2)[:, :, 0]
         shorter = best < distance
         if not shorter.any():
-            break
-        following = np.where(shorter, sums.argmin(axis=2), following)
-        distance = np.where(shorter, best, distance)
-    return distance, following
+            return
+        following[shorter], distance[shorter] = after[shorter], best[shorter]

@@ -8,7 +8,10 @@ from typing import Any
 from pydantic import ValidationError
 from pydantic_core import InitErrorDetails, PydanticCustomError
 
+from faultloop.assessment.benches.solving import open_resistances
+from faultloop.exchange.bench_mapping import mapped_bench
 from faultloop.exchange.bench_networks import (
+    MOST_OPEN_RESISTANCES,
     BenchContact,
     BenchLink,
     BenchRequest,
@@ -31,6 +34,8 @@ def consistent(request: BenchRequest) -> BenchRequest:
     faults = [*_ids(request), *_feeding(request)]
     if not faults:  # names mean something only once ids and feeding do
         faults = [*_ends(request), *_supplies_needed(request)]
+    if not faults:
+        faults = [*_open_resistances(request)]
     if not faults:
         return request
     raise ValidationError.from_exception_data(
@@ -134,3 +139,12 @@ def _supplies_needed(request: BenchRequest) -> Iterator[Fault]:
     if not any(isinstance(supply, SeparatedBenchSupply) for supply in request.supplies):
         told = "a bench needs a separated supply: nothing else can float; judge earthed outlets as points"
         yield ("supplies",), "no_separated_supply", told
+
+
+def _open_resistances(request: BenchRequest) -> Iterator[Fault]:
+    """Every choice of ends of what is not known is solved, and these double with each of them."""
+    parts = open_resistances(mapped_bench(request).bench)
+    if len(parts) > MOST_OPEN_RESISTANCES:
+        named = ", ".join(f"{kind} of {owner}" for kind, owner in parts)
+        told = f"at most {MOST_OPEN_RESISTANCES} resistances may be left open; state some of these: {named}"
+        yield (), "too_many_open_resistances", told

@@ -9,7 +9,9 @@ from faultloop.exchange.overcurrent import OvercurrentDevice
 from faultloop.exchange.requests import ResidualCurrentDevice, Ruled
 from faultloop.exchange.unearthed import CorePair
 
-MOST_SUPPLIES, MOST_ITEMS, MOST_LINKS, MOST_CONTACTS = 6, 24, 24, 40
+MOST_SUPPLIES, MOST_ITEMS, MOST_LINKS, MOST_CONTACTS = 6, 16, 16, 40
+# Every choice of their ends is solved.
+MOST_OPEN_RESISTANCES = 4
 Id = Annotated[
     str,
     Field(

@@ -28,7 +28,7 @@ def planned_link(solved: SolvedBench) -> Planned | None:
     """The planned link, if there is one."""
     if solved.bench.planned is None:
         return None
-    current = solved.through_link(solved.bench.planned, 0)
+    current = solved.through_link(solved.bench.planned)
     (found, after), (_, perhaps) = solved.bench_tied[:, :2]
     if after:
         return Planned(current, PlannedLink.TIED_BEFORE if found else PlannedLink.TIES)

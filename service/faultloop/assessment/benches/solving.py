@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass
 from functools import cached_property
+from itertools import combinations
 
 import numpy as np
 from numpy.typing import NDArray
@@ -10,10 +11,18 @@ from faultloop.assessment.benches.contacts import Contact, usual_contacts, worke
 from faultloop.assessment.benches.network import EARTH, Bench, Link, node_names
 from faultloop.assessment.benches.states import UNPLUGGED, States, states_of
 from faultloop.assessment.benches.typical import typical
-from faultloop.assessment.benches.wires import Variant, Wire, meanings, present, wires_of
+from faultloop.assessment.benches.wires import Part, Variant, Wire, meanings, present, wires_of
 from faultloop.electrical.circuit_elements import Mask, Phasor
 from faultloop.electrical.circuit_wirings import EARTH as EARTH_NODE
-from faultloop.electrical.circuit_wirings import Branches, Places, Wired, contact, nearest_path, solve_wirings
+from faultloop.electrical.circuit_wirings import (
+    Branches,
+    Places,
+    Wired,
+    contact,
+    contact_with_earth,
+    nearest_path,
+    solve_wirings,
+)
 from faultloop.electrical.measurement import Array
 
 NO_CURRENT_A, ROUNDING = 1e-9, 1e-6
@@ -49,9 +58,14 @@ class SolvedBench:
         """Number of states."""
         return len(self.states.every)
 
+    @property
+    def told(self) -> int:
+        """How many of the first states are told in full: as found, and with the planned link."""
+        return self.states.base + 1
+
     def ends(self, phasor: Phasor) -> Ends:
         """Ends over the variants of something found for every row, (states·variants, ...)."""
-        size = np.abs(phasor).reshape(self.count, len(self.variants), *phasor.shape[1:])
+        size = np.abs(phasor).reshape(-1, len(self.variants), *phasor.shape[1:])
         nominal = next(at for at, variant in enumerate(self.variants) if variant.level == "nominal")
         return Ends(size.min(axis=1), size[:, nominal], size.max(axis=1))
 
@@ -90,23 +104,21 @@ class SolvedBench:
         return np.repeat(of_states, len(self.variants), axis=0)
 
     def touched(self, contacts: list[Contact]) -> tuple[Ends, Ends]:
-        """Voltage [V] before and current [A] through a body at each contact, (states, contacts)."""
+        """Voltage [V] and current [A] through a body at contacts, in the states told in full, (told, contacts)."""
         one, other = (
-            np.stack([self.node(name) for name in names], axis=1)
+            self.rows(np.stack([self.node(name)[: self.told] for name in names], axis=1))
             for names in ([c.one for c in contacts], [c.other for c in contacts])
         )
-        voltage, current = contact(self.wired, self.rows(one), self.rows(other), self.body_ohm)
+        voltage, current = contact(self.wired, one, other, self.body_ohm)
         return self.ends(voltage), self.ends(_flowing(current))
 
-    def through_link(self, link: Link, state: int) -> Ends:
-        """Current [A] that a link would carry if it were made in a state, (states,)."""
-        least = typical().joined_directly.usual
-        told = {"low": link.ohm.greatest, "nominal": link.ohm.nominal, "high": link.ohm.least}
-        ohm = np.array([max(told[variant.level], least) for variant in self.variants])
-        one, other = (self.rows(self.node(name))[:, None] for name in (link.one, link.other))
-        _, current = contact(self.wired, one, other, np.tile(ohm, self.count)[:, None])
-        ends = self.ends(_flowing(current[:, 0]))
-        return Ends(ends.least[state], ends.nominal[state], ends.greatest[state])
+    def through_link(self, link: Link) -> Ends:
+        """Current [A] that a link would carry if it were made at the bench as found."""
+        ohm = np.array([variant.ohm(link.ohm, ("link", link.id)) for variant in self.variants])[:, None]
+        one, other = (np.full_like(ohm, self.node(name)[0], np.int64) for name in (link.one, link.other))
+        _, current = contact(self.wired, one, other, ohm)
+        ends = self.ends(_flowing(current))
+        return Ends(ends.least[0, 0], ends.nominal[0, 0], ends.greatest[0, 0])
 
     @cached_property
     def tied(self) -> Mask:
@@ -151,7 +163,8 @@ class SolvedBench:
     @cached_property
     def single_currents(self) -> Ends:
         """Their currents [A], (states, contacts)."""
-        return self.touched(self.singles)[1]
+        touched = self.rows(np.stack([self.node(single.one) for single in self.singles], axis=1))
+        return self.ends(_flowing(contact_with_earth(self.wired, touched, self.body_ohm)))
 
     def branch_current(self) -> Phasor:
         """Current of every branch from plus to minus [A], (k,)."""
@@ -172,15 +185,31 @@ def _flowing(current: Phasor) -> Phasor:
     return np.where(np.abs(current) < NO_CURRENT_A, 0.0, current)
 
 
+def open_resistances(bench: Bench) -> list[Part]:
+    """Resistances of links, signal grounds and chassis that are known only between two ends."""
+    parts = [("signal-ground", item.id, item.ground_ohm) for item in bench.items]
+    parts += [("chassis", item.id, item.chassis_ohm) for item in bench.items]
+    parts += [("link", link.id, link.ohm) for link in bench.all_links]
+    return sorted((kind, owner) for kind, owner, span in parts if span is not None and span.open)
+
+
 def variants_of(bench: Bench) -> tuple[Variant, ...]:
-    """What is solved beside the nominal: both ends of all that is not known, and the primary poled either way."""
+    """What is solved beside the nominal: both ends of all that is not known, and the primary poled either way.
+
+    Of resistances that are not known every choice of ends is solved, with all capacitances at their greatest.
+    """
     spans = [span for supply in bench.supplies for span in (supply.source_ohm, supply.cable_nf, supply.interwinding_nf)]
-    spans += [s for item in bench.items for s in (item.filter_nf, item.ground_ohm, item.ground_nf, item.chassis_ohm)]
-    spans += [item.load_ohm for item in bench.items] + [link.ohm for link in bench.all_links]
-    levels = ["nominal"] + (["low", "high"] if any(span is not None and span.open for span in spans) else [])
+    spans += [span for item in bench.items for span in (item.filter_nf, item.ground_nf, item.load_ohm)]
+    parts = open_resistances(bench)
+    found = [("nominal", frozenset[Part]())]
+    if parts or any(span is not None and span.open for span in spans):
+        found += [("low", frozenset()), ("high", frozenset())]
+    chosen = (some for size in range(1, len(parts) + 1) for some in combinations(parts, size))
+    found += [("high", frozenset(some)) for some in chosen]
     unscreened = [supply.interwinding_nf for supply in bench.supplies if not supply.screen]
     poled = any(windings is not None and windings.greatest > 0.0 for windings in unscreened)
-    return tuple(Variant(level, turned) for turned in ((False, True) if poled else (False,)) for level in levels)
+    turns = (False, True) if poled else (False,)
+    return tuple(Variant(level, turned, against) for turned in turns for level, against in found)
 
 
 def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
@@ -195,7 +224,7 @@ def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
     nodes = _nodes(bench, states, wires)
     branches, wire_of = _branches(wires, there, nodes, len(variants))
     rows = len(states.every) * len(variants)
-    wired = solve_wirings(rows, len(nodes), branches)
+    wired = solve_wirings(rows, len(nodes), branches, (states.base + 1) * len(variants))
     conductive = np.array([wire.conductive for wire in wires], np.bool_)[wire_of]
     weight = np.where(conductive, 1.0 / np.abs(branches.admittance), np.inf)
     path_ohm, following = nearest_path(rows, len(nodes), branches, weight)

@@ -21,6 +21,8 @@ from faultloop.assessment.benches.typical import Typical, typical
 # Nodes that only changed states use: poles of a transformer of an item's own, and the dead poles of a pulled plug.
 OWN, DEAD, OUTLET = "~own", "~dead", "~outlet"
 PLACES = (AS_FOUND, TO_EARTHED, TO_OWN, UNPLUGGED)
+# Kind and owner of a wire whose resistance may be unknown.
+Part = tuple[str, str]
 # Which part, and how it must stand, for a wire to be there.
 Holds = tuple[str, int, int]
 # Admittance in each variant.
@@ -29,10 +31,21 @@ Siemens = tuple[complex, ...]
 
 @dataclass(frozen=True, slots=True)
 class Variant:
-    """One choice of what is not known: unknown admittances at an end, and how the primary is poled."""
+    """One choice of what is not known: unknown admittances at an end, and how the primary is poled.
+
+    Earthing both poles by resistances can lower the current of a contact with either, so resistances are put at either
+    end each by itself: those ``against`` the level at the other one.
+    """
 
     level: str
     reversed: bool
+    against: frozenset[Part] = frozenset()
+
+    def ohm(self, span: Span, part: Part | None = None) -> float:
+        """A resistance; of parts that stand against the level it is the other end."""
+        turned = {"low": "high", "high": "low"}.get(self.level, self.level) if part in self.against else self.level
+        least = typical().joined_directly.usual
+        return max({"low": span.greatest, "nominal": span.nominal, "high": span.least}[turned], least)
 
 
 @dataclass(frozen=True, slots=True)
@@ -72,11 +85,9 @@ class Wiring:
         """Angular frequency [rad/s]."""
         return 2.0 * np.pi * self.bench.frequency_hz
 
-    def resistance(self, span: Span) -> Siemens:
+    def resistance(self, span: Span, part: Part | None = None) -> Siemens:
         """Admittance of a resistance in each variant; no joint is better than the least that is taken."""
-        least = typical().joined_directly.usual
-        ends = {"low": span.greatest, "nominal": span.nominal, "high": span.least}
-        return tuple(complex(1.0 / max(ends[variant.level], least)) for variant in self.variants)
+        return tuple(complex(1.0 / variant.ohm(span, part)) for variant in self.variants)
 
     def reactance(self, span: Span) -> Siemens:
         """Admittance of a transformer's impedance in each variant, taken as leakage: it makes no contact smaller."""
@@ -176,7 +187,9 @@ def _put_item(wiring: Wiring, at: int, item: Item) -> None:
                 wiring.put("filter", item.id, pole, item.filtered_to, wiring.capacitance(item.filter_nf), here)
         if item.live_chassis is not None and item.chassis_ohm is not None:
             pole = l1 if item.live_chassis == "L1" else l2
-            wiring.put("chassis", item.id, pole, item.chassis, wiring.resistance(item.chassis_ohm), here)
+            wiring.put(
+                "chassis", item.id, pole, item.chassis, wiring.resistance(item.chassis_ohm, ("chassis", item.id)), here
+            )
         if item.load_ohm is not None:
             wiring.put("load", item.id, l1, l2, wiring.resistance(item.load_ohm), here)
         if item.protection_class == "I":
@@ -208,7 +221,13 @@ def _put_ground(wiring: Wiring, item: Item) -> None:
         ohm = wiring.resistance(span_of(typical().protective_conductor))
         wiring.put("signal-ground", item.id, item.signal_ground, beside, ohm)
     if item.ground == "resistance" and item.ground_ohm is not None:
-        wiring.put("signal-ground", item.id, item.signal_ground, beside, wiring.resistance(item.ground_ohm))
+        wiring.put(
+            "signal-ground",
+            item.id,
+            item.signal_ground,
+            beside,
+            wiring.resistance(item.ground_ohm, ("signal-ground", item.id)),
+        )
     if item.ground_nf is not None:
         nf = wiring.capacitance(item.ground_nf)
         wiring.put("ground-capacitance", item.id, item.signal_ground, item.case, nf)
@@ -217,7 +236,8 @@ def _put_ground(wiring: Wiring, item: Item) -> None:
 def _put_link(wiring: Wiring, at: int, link: Link) -> None:
     """The link, and in its place the two inputs of a differential probe, each to earth; an item's poles may move."""
     ends = [_alternatives(wiring, end) for end in (link.one, link.other)]
-    ohm, probe = wiring.resistance(link.ohm), wiring.resistance(span_of(typical().differential_probe))
+    ohm = wiring.resistance(link.ohm, ("link", link.id))
+    probe = wiring.resistance(span_of(typical().differential_probe))
     for (plus, first), (minus, second) in product(*ends):
         if first and second and first[0][1] == second[0][1] and first != second:
             continue  # one item cannot stand in two places
