@@ -139,4 +139,13 @@ def bodies(draw: st.DrawFn, *, planned: bool | None = None) -> Body:
     body["links"] = [made for at in range(draw(st.integers(0, 3))) if (made := link(f"link{at}")) is not None]
     if planned if planned is not None else draw(st.booleans()):
         body["planned_link"] = link("planned") or {"id": "planned", "kind": "usb", "from": "earth", "to": "item0.case"}
+    return _not_too_open(body)
+
+
+def _not_too_open(body: Body) -> Body:
+    """State the resistances that are one too many to be left open."""
+    grounds = [item["signal_ground"] for item in body["items"] if item.get("signal_ground") == {"kind": "resistance"}]
+    links = [link for link in (*body["links"], body.get("planned_link")) if link is not None]
+    for told in [*grounds, *links][4:]:
+        told["resistance_ohm"] = 1e5
     return body

@@ -3,6 +3,7 @@
 import copy
 import json
 import math
+from dataclasses import replace
 from typing import Any
 
 import pytest
@@ -11,6 +12,10 @@ from hypothesis import strategies as st
 from pydantic import ValidationError
 
 from faultloop import bench_network
+from faultloop.assessment.benches.network import Span
+from faultloop.assessment.benches.solving import solve_bench
+from faultloop.exchange.bench_faults import validated
+from faultloop.exchange.bench_mapping import mapped_bench
 from tests.assessment.bench_bodies import CLIP, Body, bodies, clip_case, fixture, small
 
 OMEGA = 2.0 * math.pi * 50.0
@@ -436,3 +441,59 @@ def test_two_bonded_items_are_judged_for_a_second_fault() -> None:
     alone = small(items=items)
     without = {of["check"]: of["verdict"] for of in bench_network(alone)["findings"]}
     assert without["separated-items"] == "fail"
+
+
+# ---- plausible, and false --------------------------------------------------------------------------------------
+
+
+def mats(*ohm: float | None) -> Body:
+    """Both poles of an item led to earth, each over a mat of a resistance, or of one that nobody stated."""
+    links = []
+    for pole, value in zip(("L1", "L2"), ohm, strict=True):
+        link = {"id": f"mat-{pole}", "kind": "antistatic-mat", "from": f"set.{pole}", "to": "earth"}
+        links.append(link if value is None else {**link, "resistance_ohm": value})
+    return small(links=links)
+
+
+def test_the_least_resistances_are_not_the_worst() -> None:
+    """Two poles that are both earthed hold each other near earth; one alone leaves the other at the whole voltage."""
+    worst = {
+        ohm: bench_network(mats(*ohm))["as_found"]["worst_contact_current_ma"]["greatest"]
+        for ohm in ((100.0, 100.0), (100.0, 1e6), (None, None))
+    }
+    assert worst[100.0, 100.0] < 0.6 * worst[100.0, 1e6]
+    assert worst[None, None] >= worst[100.0, 1e6] * 0.999
+
+
+def test_too_many_open_resistances_are_refused_by_name() -> None:
+    links = [{"id": f"mat{at}", "kind": "antistatic-mat", "from": "set.case", "to": "earth"} for at in range(5)]
+    ((_, words),) = refused(small(links=links))
+    assert "at most 4" in words
+    assert "link of mat4" in words
+
+
+@slow
+@given(body=bodies(), share=st.lists(st.sampled_from([0.0, 0.5, 1.0]), min_size=40, max_size=40))
+def test_whatever_the_unknown_values_are_no_contact_carries_much_more(body: Body, share: list[float]) -> None:
+    """Not nothing more: of two sources whose impedances are not known one may limit the other by some percent."""
+    bench = mapped_bench(validated(body)).bench
+    shares = iter(share)
+
+    def settled(span: Span | None) -> Span | None:
+        if span is None:
+            return None
+        value = span.least + next(shares, 1.0) * (span.greatest - span.least)
+        return Span(value, value, value)
+
+    def fixed(part: Any, *names: str) -> Any:
+        return replace(part, **{name: settled(getattr(part, name)) for name in names})
+
+    one = replace(
+        bench,
+        supplies=tuple(fixed(supply, "source_ohm", "cable_nf", "interwinding_nf") for supply in bench.supplies),
+        items=tuple(fixed(item, "filter_nf", "ground_ohm", "ground_nf", "chassis_ohm") for item in bench.items),
+        links=tuple(fixed(link, "ohm") for link in bench.links),
+        planned=None if bench.planned is None else fixed(bench.planned, "ohm"),
+    )
+    said, found = (solve_bench(told, 1000.0).single_currents.greatest[0].max() for told in (bench, one))
+    assert found <= said * 1.05 + 1e-9
