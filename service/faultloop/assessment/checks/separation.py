@@ -16,6 +16,8 @@ REASONS = (
     "insulation-shows-none",
     "pole-voltages-alone",
     "not-shown",
+    "tied-by-solution",
+    "perhaps-tied-by-solution",
 )
 
 
@@ -29,6 +31,8 @@ def _judge(points: Points, q: Quantities) -> Judged:
     contact, reference, known = found.contact, points.choice(Choice.REFERENCE), q.given.known
     insulation, limit = q.given.reading(Reading.INSULATION), q.rule("separation_contact_referenced")
     cases = Cases(REASONS)
+    cases.when(contact.solved & (reference == Reference.EARTHED), Standing.UNMET, "tied-by-solution", defect=True)
+    cases.when(contact.solved & (reference == Reference.UNKNOWN), Standing.UNDETERMINED, "perhaps-tied-by-solution")
     cases.when(reference == Reference.EARTHED, Standing.UNMET, "pole-earthed", defect=True)
     cases.when(found.pole_at_earth, Standing.UNMET, "pole-at-earth", defect=True)
     # Between a pole and earth of a floating supply a loop tester finds nothing to read.
