@@ -15,6 +15,7 @@ from jsonschema import Draft202012Validator
 from faultloop import bench_network
 from tests.api.client import problem, served
 from tests.api.test_batches import migrated
+from tests.api.test_openapi import SCHEMAS, reachable
 from tests.assessment.bench_bodies import CLIP, Body, clip_case, fixture, small
 
 URL = "/v1/bench-networks"
@@ -231,3 +232,16 @@ def test_the_largest_bench_is_answered(tmp_path: Path) -> None:
             assert (await client.post(URL, json=body, params={"format": form})).status_code == 200
 
     run(tmp_path, work)
+
+
+def test_the_body_is_closed_and_every_number_has_its_unit() -> None:
+    for name in reachable("BenchRequest", set()):
+        schema = SCHEMAS[name]
+        if schema.get("type") != "object":
+            continue
+        assert schema["additionalProperties"] is False, name
+        assert schema["description"], name
+        for field, told in schema["properties"].items():
+            parts = [told, *told.get("anyOf", []), *told.get("oneOf", [])]
+            for number in (part for part in parts if part.get("type") == "number"):
+                assert "x-unit" in number or "enum" in number or "[" in number.get("description", ""), (name, field)

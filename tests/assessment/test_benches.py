@@ -224,13 +224,43 @@ def test_a_change_of_every_kind_is_solved_and_those_that_do_not_help_say_why() -
         "move-instruments",
     }
     for found in answer["changes"]:
-        if not found["helps"]:
+        if not found["helps"] and not found["live_parts"]:
             most = found["worst_contact_current_ma"]["greatest"]
             assert f"{most:.3g} mA" in found["text"]
     assert [found["rank"] for found in answer["changes"]] == list(range(1, len(answer["changes"]) + 1))
     assert [found["floats"] for found in answer["changes"]] == sorted(
         (found["floats"] for found in answer["changes"]), reverse=True
     )
+
+
+def test_to_float_the_oscilloscope_is_no_remedy() -> None:
+    """Its case is then joined to a pole: the bench floats, and 230 V stand between the case and the other pole."""
+    answer = bench_network(small(planned_link=CLIP))
+    for kind in ("unplug", "move-to-own"):
+        found = change(answer, kind, "scope")
+        assert found["floats"]
+        assert not found["helps"]
+        assert {"scope.case", "scope.signal_ground"} <= set(found["live_parts"])
+        assert "Never float an instrument" in found["text"]
+    for kind in ("remove-link", "differential-probe"):
+        found = change(answer, kind, "clip")
+        assert found["helps"]
+        assert found["live_parts"] == []
+    lifted = change(bench_network(clip_case()), "lift-bonding", "isolating")
+    assert not lifted["helps"]
+
+
+def test_a_battery_meter_on_a_pole_is_said_to_be_live() -> None:
+    body = small()
+    body["supplies"].append({"id": "cell", "kind": "battery"})
+    meter = {"id": "meter", "fed_by": "cell", "protection_class": "II", "role": "instrument"}
+    body["items"].append({**meter, "signal_ground": {"kind": "floating"}})
+    body["planned_link"] = {"id": "clip", "kind": "probe-clip", "from": "meter.signal_ground", "to": "set.L2"}
+    answer = bench_network(body)
+    assert answer["planned_link"]["ties"] == "no"
+    assert answer["with_planned_link"]["live_parts"] == ["meter.signal_ground"]
+    assert "meter.signal_ground would then be joined to a pole" in answer["planned_link"]["text"]
+    assert any(told["caution"] == "live-part" for told in answer["cautions"])
 
 
 def test_of_two_ties_taking_off_one_does_not_help() -> None:

@@ -204,8 +204,8 @@ def contact(wired: Wired, plus: Places, minus: Places, resistance_ohm: float | A
     return np.where(together, voltage, np.nan), np.where(together, voltage / (inner + resistance_ohm), 0.0)
 
 
-def nearest_path(networks: int, nodes: int, branches: Branches, weight: Array) -> tuple[Array, Places]:
-    """Least sum of weights from each node to earth, and the next node on that way.
+def nearest_path(networks: int, nodes: int, branches: Branches, weight: Array, to: int = EARTH) -> tuple[Array, Places]:
+    """Least sum of weights from each node to earth or another node, and the next node on that way.
 
     Parameters
     ----------
@@ -215,13 +215,15 @@ def nearest_path(networks: int, nodes: int, branches: Branches, weight: Array) -
         Of all networks.
     weight : (k,) array
         Of each branch [Ω], not negative; inf where a branch is no way.
+    to : int
+        Node that the ways lead to.
 
     Returns
     -------
     distance : (n, m) array
         Sum along the best way [Ω]; inf where there is none.
     following : (n, m) array of int
-        Next node on the way to earth.
+        Next node on the way.
 
     References
     ----------
@@ -229,7 +231,7 @@ def nearest_path(networks: int, nodes: int, branches: Branches, weight: Array) -
     .. [2] R. Bellman, "On a routing problem", Quart. Appl. Math. 16, 1958, 87-90.
     """
     distance, following = np.full((networks, nodes), np.inf), np.zeros((networks, nodes), np.int64)
-    distance[:, EARTH] = 0.0
+    distance[:, to] = 0.0
     for block, mine in _blocks(networks, nodes, branches):
         network = branches.network[mine] - block.start
         step = np.full((block.stop - block.start, nodes, nodes), np.inf)

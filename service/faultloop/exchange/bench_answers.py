@@ -120,6 +120,9 @@ class BenchState(Answer):
     tied: TiedWord
     worst_contact: WorstContact
     worst_contact_current_ma: IntervalBody
+    live_parts: list[Text] = Field(
+        description="Parts of items that nobody works at, which are joined to a pole and not earthed"
+    )
 
 
 class ChangedState(BenchState):
@@ -128,7 +131,9 @@ class ChangedState(BenchState):
     rank: int
     change: ChangeWord
     subject: Text | None = None
-    helps: bool = Field(description="Whether it floats then, and its worst contact of one hand is within the limit")
+    helps: bool = Field(
+        description="Whether it floats then, a contact of one hand is within the limit, and no instrument becomes live"
+    )
     text: Text
 
 

@@ -93,6 +93,7 @@ class _Answer:
             "tied": self._words.tied(state),
             "worst_contact": {"from": contact.one, "to": contact.other},
             "worst_contact_current_ma": ends_body(least, greatest),
+            "live_parts": self._words.live(state),
         }
 
     def _changes(self, states: tuple[int, ...]) -> list[Body]:
@@ -100,10 +101,11 @@ class _Answer:
         floats = self._solved.floats
         most = self._solved.single_currents.greatest.max(axis=1) * MILLI
 
-        def rank(state: int) -> tuple[bool, float, int, str, str]:
+        def rank(state: int) -> tuple[bool, bool, float, int, str, str]:
             change = self._states.every[state]
             # Nobody measures a contact current closer than to two digits; below that the lesser intrusion goes first.
-            return not floats[state], float(f"{most[state]:.2g}"), self._intrusion(change), change.kind, change.subject
+            current, intrusion = float(f"{most[state]:.2g}"), self._intrusion(change)
+            return not floats[state], bool(self._words.live(state)), current, intrusion, change.kind, change.subject
 
         return [self._change(at + 1, state) for at, state in enumerate(sorted(states, key=rank))]
 
@@ -119,6 +121,7 @@ class _Answer:
         contact, _, most = self._words.worst(state)
         limit = self._words.rules.separation.contact_most.value
         words = {"yes": "tied", "perhaps": "may-be-tied"}.get(told["tied"])
+        words = words or ("instrument-live" if told["live_parts"] else None)
         words = words or ("helps" if most <= limit else "floats-too-much")
         text = self._words.texts.outcomes[words].format(
             change=self.change_words(change),
@@ -126,6 +129,8 @@ class _Answer:
             current=short(most),
             limit=f"{limit:g}",
             pole=self._tied_pole(state),
+            parts=", ".join(told["live_parts"]),
+            voltage=self._words.voltage,
         )
         body: Body = {"rank": rank, "change": change.kind}
         if change.subject:
@@ -214,6 +219,8 @@ class _Answer:
         if any(item.stored is not None for item in bench.items):
             named.append("stored-energy")
         own = ["float-the-item"]
+        if any(self._words.live(state) for state in self._words.told_states.values()):
+            own.append("live-part")
         if any(supply.kind == "battery" for supply in bench.supplies):
             own.append("battery-not-solved")
         if any(item.live_chassis and bench.supply(item.fed_by).kind == "earthed" for item in bench.items):

@@ -163,6 +163,16 @@ class BenchWords:
         surely, perhaps = self.solved.bench_tied[:, state]
         return "yes" if surely else "perhaps" if perhaps else "no"
 
+    def live(self, state: int) -> list[str]:
+        """Parts of instruments that are joined to a pole in a state."""
+        return [name for name, live in self.solved.live_parts.items() if live[state]]
+
+    @property
+    def voltage(self) -> str:
+        """The highest voltage between the poles of a separated supply."""
+        told = [supply.voltage_v for supply in self.solved.bench.supplies if supply.kind == "separated"]
+        return f"{max(told):g}"
+
     def contact_short(self, contact: Contact) -> str:
         """A contact by its two nodes."""
         return self.texts.parts["contact"].format(one=contact.one, other=self._name(contact.other))
@@ -214,6 +224,9 @@ class BenchWords:
             after=short(after),
             before=short(before),
         )
+        fresh = [name for name in self.live(1) if name not in self.live(0)]
+        if fresh:
+            text += " " + self.texts.planned["live"].format(parts=", ".join(fresh), voltage=self.voltage)
         return {
             "id": link.id,
             "kind": link.kind,

@@ -7,7 +7,7 @@ from itertools import combinations
 import numpy as np
 from numpy.typing import NDArray
 
-from faultloop.assessment.benches.contacts import Contact, usual_contacts, worked_at
+from faultloop.assessment.benches.contacts import Contact, accessible, usual_contacts, worked_at
 from faultloop.assessment.benches.network import EARTH, Bench, Link, node_names
 from faultloop.assessment.benches.states import UNPLUGGED, States, states_of
 from faultloop.assessment.benches.typical import typical
@@ -49,6 +49,7 @@ class SolvedBench:
     wire_of: Places
     branches: Branches
     wired: Wired
+    weight: Array
     path_ohm: Array
     following: Places
     body_ohm: float
@@ -156,6 +157,29 @@ class SolvedBench:
         return np.asarray(~self.bench_tied[1], np.bool_)
 
     @cached_property
+    def live_parts(self) -> dict[str, Mask]:
+        """Parts of items that nobody works at, by name, and where they are joined to a pole without being earthed.
+
+        An oscilloscope without its protective conductor, clipped to a pole, is such a part: (states,) each.
+        """
+        names = [part for part in accessible(self.bench) if not self._worked_at(part)]
+        if not names or not self.bench.all_links:
+            return {}
+        found = np.zeros((self.count, len(self.nodes)), np.bool_)
+        for supply in (supply for supply in self.bench.supplies if supply.kind == "separated"):
+            rows = self.count * len(self.variants)
+            ways, _ = nearest_path(rows, len(self.nodes), self.branches, self.weight, self.nodes[supply.l1])
+            least = ways.reshape(self.count, len(self.variants), -1).min(axis=1)
+            found |= least < typical().tie_below.usual
+        found &= ~self.tied[1]
+        return {name: found[:, self.nodes[name]] for name in names}
+
+    def _worked_at(self, part: str) -> bool:
+        """Whether a part is of an item that somebody works at."""
+        owner = part.partition(".")[0]
+        return any(item.id == owner and self.bench.under_test(item) for item in self.bench.items)
+
+    @cached_property
     def singles(self) -> list[Contact]:
         """Contacts of one hand, of poles and of accessible parts."""
         return [*(c for c in usual_contacts(self.bench) if c.single), *worked_at(self.bench)]
@@ -229,7 +253,7 @@ def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
     weight = np.where(conductive, 1.0 / np.abs(branches.admittance), np.inf)
     path_ohm, following = nearest_path(rows, len(nodes), branches, weight)
     return SolvedBench(
-        bench, states, variants, nodes, wires, wire_of, branches, wired, path_ohm, following, body_ohm
+        bench, states, variants, nodes, wires, wire_of, branches, wired, weight, path_ohm, following, body_ohm
     )  # fmt: skip
 
 
