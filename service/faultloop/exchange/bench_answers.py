@@ -176,6 +176,7 @@ class BenchNetwork(Answer):
     lines_ma: dict[Literal["unfelt", "limit", "let-go"], float] = Field(
         description="Lines of the rule set that contact currents are held against [mA]"
     )
+    touch_voltage_limit_v: float = Field(description="Above it a node that is tied is drawn as dangerous [V]")
     contacts_left_out: int = Field(description="Pairs of accessible parts that were not looked at, being too many")
     changes_as_found: list[ChangedState] = Field(description="Of the bench as it stands, without the planned link")
     changes: list[ChangedState] = Field(description="Of the bench as judged, the best first; none is left out")

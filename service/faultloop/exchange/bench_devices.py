@@ -5,6 +5,7 @@ import math
 from faultloop.assessment.benches.consequences import Seen
 from faultloop.assessment.benches.solving import Ends
 from faultloop.assessment.benches.texts import BenchTexts
+from faultloop.assessment.benches.typical import typical
 from faultloop.exchange.bench_networks import BatteryBenchSupply, BenchRequest, BenchSupply, EarthedBenchSupply
 from faultloop.exchange.bench_words import Body, ends_body, short
 from faultloop.exchange.mapping import overcurrent_device
@@ -13,8 +14,6 @@ from faultloop.protection.catalogue import guaranteed
 from faultloop.protection.designations import ResidualDevice
 from faultloop.rules.sheets import RuleSet
 
-# At half of its rated residual current or less a device does not trip (IEC 61008-1, 5.3.4).
-NON_OPERATING = 0.5
 LEAST_TOLD_A = 1e-6
 MILLI = 1000.0
 
@@ -27,7 +26,7 @@ def devices_seen(request: BenchRequest, rules: RuleSet, found: list[Seen], texts
     for of in found:
         supply = bodies[of.supply.id]
         if isinstance(supply, EarthedBenchSupply):
-            told.append(_residual(supply, of, texts, ahead=supply.id in feeding))
+            told.append(_residual(supply, of, rules, texts, ahead=supply.id in feeding))
         told.append(_overcurrent(supply, of, rules, texts))
     # A device that is not stated and sees nothing is not worth a word.
     return [of for of in told if of["outcome"] != "absent" or of["current_a"]["greatest"] > 0.0]
@@ -44,7 +43,7 @@ def _greatest_time(band: Band, scale: float, current: float) -> float:
     return min((time for at, time in band.slow if current >= at * scale), default=math.inf)
 
 
-def _residual(supply: EarthedBenchSupply, of: Seen, texts: BenchTexts, *, ahead: bool) -> Body:
+def _residual(supply: EarthedBenchSupply, of: Seen, rules: RuleSet, texts: BenchTexts, *, ahead: bool) -> Body:
     quoted = {"supply": supply.id, "current": _between(of.residual_a, MILLI)}
     body: Body = {"supply": supply.id, "sees": "residual-current"}
     current = ends_body(float(of.residual_a.least), float(of.residual_a.greatest))
@@ -57,10 +56,10 @@ def _residual(supply: EarthedBenchSupply, of: Seen, texts: BenchTexts, *, ahead:
     outcome, words = "stays", "windings-blind" if ahead else "residual-stays"
     time = math.inf
     if of.residual_a.least >= rated:
-        band, scale = guaranteed(told, None)  # type: ignore[arg-type]
+        band, scale = guaranteed(told, rules)
         time = _greatest_time(band, scale, float(of.residual_a.least))
         outcome, words = "operates", "residual-slow" if math.isinf(time) else "residual-operates"
-    elif of.residual_a.greatest > NON_OPERATING * rated:
+    elif of.residual_a.greatest > typical().residual_stays.usual * rated:
         outcome, words = "may-operate", "residual-may"
     quoted |= {"device": told.designation, "rated": f"{told.rated_ma:g}", "time": short(time)}
     text = texts.seen[words].format_map(quoted)

@@ -72,6 +72,7 @@ class _Answer:
         body["nodes"] = self._words.nodes()
         body["contacts"] = self._words.contacts()
         body["lines_ma"] = self._words.lines()
+        body["touch_voltage_limit_v"] = self._words.rules.disconnection.touch_voltage_ac.value
         body["contacts_left_out"] = self._words.left_out()
         body["changes_as_found"] = self._changes(self._states.found_changes)
         body["changes"] = self._changes(self._states.changes)

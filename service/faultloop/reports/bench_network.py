@@ -41,7 +41,7 @@ class _Network:
     def __init__(self, sheet: Sheet, bench: Bench, layout: Layout, answer: dict[str, Any], told: Words) -> None:
         self.sheet, self.bench, self.layout, self.told = sheet, bench, layout, told
         self.nodes = {node["node"]: node for node in answer["nodes"]}
-        self.planned = "with_planned_link" in answer
+        self.planned, self.limit_v = "with_planned_link" in answer, answer["touch_voltage_limit_v"]
         self.ends: dict[str, int] = {}
 
     def potential(self, name: str) -> str:
@@ -60,7 +60,7 @@ class _Network:
     def node(self, name: str, x: float, y: float) -> None:
         """The mark of a node."""
         state = self.state(name)
-        put_node(self.sheet, x, y, state["standing"], dangerous=dangerous(state))
+        put_node(self.sheet, x, y, state["standing"], dangerous=dangerous(state, self.limit_v))
 
     def line(self, x1: float, y1: float, x2: float, y2: float, **style: float | str) -> None:
         """A straight line."""

@@ -8,8 +8,6 @@ from faultloop.reports.texts import Words
 
 LIVE, PLANNED, QUIET, TINT = "#17405c", "#7a4a00", "#5f6b73", "#f4f7f9"
 PLANNED_DASH = "7 4"
-# From this voltage to earth on a node is drawn as dangerous: U_L of IEC 60364-4-41, 411.5.3.
-DANGEROUS_V = 50.0
 
 
 def put_node(sheet: Sheet, x: float, y: float, standing: str, *, dangerous: bool = False) -> None:
@@ -49,17 +47,18 @@ def _volt(value: float) -> str:
     return f"{value:.0f}" if value >= 9.95 or value < 0.05 else f"{value:.1f}"
 
 
-def dangerous(state: dict[str, Any]) -> bool:
-    """Whether a node that is tied stands at a voltage that nothing limits."""
+def dangerous(state: dict[str, Any], limit_v: float) -> bool:
+    """Whether a node that is tied stands above the rule set's limit of touch voltage."""
     ends = state.get("potential_v")
-    return bool(state["standing"] == "tied" and ends is not None and ends["greatest"] > DANGEROUS_V)
+    return bool(state["standing"] == "tied" and ends is not None and ends["greatest"] > limit_v)
 
 
 def put_key(sheet: Sheet, answer: dict[str, Any], told: Words) -> None:
     """What the marks mean."""
     x, y = MARGIN + 8.0, sheet.y + 8.0
     for standing, ring in (("tied", False), ("tied", True), ("floating", False), ("apart", False)):
-        text = told.bench["key-dangerous" if ring else f"key-{standing}"]
+        limit = f"{answer['touch_voltage_limit_v']:g}"
+        text = told.bench["key-dangerous" if ring else f"key-{standing}"].format(limit=limit)
         needed = 16.0 + width(text, PLAIN) * 0.92 + 22.0
         if x + needed > sheet.width - MARGIN:
             x, y = MARGIN + 8.0, y + 22.0

@@ -13,7 +13,7 @@ class Typical(Sourced):
     least: float
     usual: float
     greatest: float
-    unit: Literal["nF", "ohm", "%", "V"]
+    unit: Literal["nF", "ohm", "%", "V", "1"]
 
 
 class TypicalTable(Sheet):
@@ -32,6 +32,7 @@ class TypicalTable(Sheet):
     tie_below: Typical
     joined_directly: Typical
     mains: Typical
+    residual_stays: Typical
     links: dict[str, Typical]
 
 
