@@ -230,24 +230,19 @@ def nearest_path(networks: int, nodes: int, branches: Branches, weight: Array, t
     .. [1] IEC 60050-131:2002, 131-13 (path).
     .. [2] R. Bellman, "On a routing problem", Quart. Appl. Math. 16, 1958, 87-90.
     """
-    distance, following = np.full((networks, nodes), np.inf), np.zeros((networks, nodes), np.int64)
-    distance[:, to] = 0.0
-    for block, mine in _blocks(networks, nodes, branches):
-        network = branches.network[mine] - block.start
-        step = np.full((block.stop - block.start, nodes, nodes), np.inf)
-        for one, other in ((branches.plus[mine], branches.minus[mine]), (branches.minus[mine], branches.plus[mine])):
-            np.minimum.at(step, (network, one, other), weight[mine])
-        _shorten(distance[block], following[block], step)
-    return distance, following
-
-
-def _shorten(distance: Array, following: Places, step: Array) -> None:
-    """Go on by one branch more until nothing gets shorter."""
-    for _ in range(distance.shape[1]):
-        sums = step + distance[:, None, :]
-        after = sums.argmin(axis=2)
-        best = np.take_along_axis(sums, after[:, :, None], axis=2)[:, :, 0]
-        shorter = best < distance
-        if not shorter.any():
-            return
-        following[shorter], distance[shorter] = after[shorter], best[shorter]
+    ways = np.flatnonzero(np.isfinite(weight))
+    base = branches.network[ways] * nodes
+    one, other = base + branches.plus[ways], base + branches.minus[ways]
+    begin, end, long = np.concatenate([one, other]), np.concatenate([other, one]), np.tile(weight[ways], 2)
+    distance = np.full(networks * nodes, np.inf)
+    distance[to::nodes] = 0.0
+    for _ in range(nodes):
+        before = distance.copy()
+        np.minimum.at(distance, begin, distance[end] + long)
+        if (distance == before).all():
+            break
+    following = np.zeros(networks * nodes, np.int64)
+    # Behind each node stands the first by which it is as near as it is; the root has none.
+    nearest = np.flatnonzero((distance[begin] == distance[end] + long) & (distance[begin] > 0.0))[::-1]
+    following[begin[nearest]] = end[nearest] % nodes
+    return distance.reshape(networks, nodes), following.reshape(networks, nodes)

@@ -90,7 +90,7 @@ class _Answer:
         return {
             "verdict": _VERDICTS[self._judged.verdict[state]],
             "urgency": _URGENCIES[self._judged.urgency[state]],
-            "floats": bool(self._solved.floats[state]),
+            "floats": self._words.tied(state) == "no",
             "tied": self._words.tied(state),
             "worst_contact": {"from": contact.one, "to": contact.other},
             "worst_contact_current_ma": ends_body(least, greatest),

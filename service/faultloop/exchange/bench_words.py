@@ -160,12 +160,20 @@ class BenchWords:
 
     def tied(self, state: int) -> str:
         """Whether the bench is tied in a state: yes, perhaps (by what is not known), no."""
-        surely, perhaps = self.solved.bench_tied[:, state]
-        return "yes" if surely else "perhaps" if perhaps else "no"
+        return self._tied[state]
+
+    @cached_property
+    def _tied(self) -> list[str]:
+        surely, perhaps = self.solved.bench_tied.tolist()
+        return ["yes" if one else "perhaps" if other else "no" for one, other in zip(surely, perhaps, strict=True)]
 
     def live(self, state: int) -> list[str]:
         """Parts of instruments that are joined to a pole in a state."""
-        return [name for name, live in self.solved.live_parts.items() if live[state]]
+        return [name for name, live in self._live.items() if live[state]]
+
+    @cached_property
+    def _live(self) -> dict[str, list[bool]]:
+        return {name: live.tolist() for name, live in self.solved.live_parts.items() if live.any()}
 
     @property
     def voltage(self) -> str:
@@ -200,13 +208,16 @@ class BenchWords:
 
     def worst(self, state: int) -> tuple[Contact, float, float]:
         """The contact of one hand that carries most in a state, with its ends [mA]."""
-        ends = self.solved.single_currents
-        column = int(self.solved.worst[state])
-        return (
-            self.solved.singles[column],
-            float(ends.least[state, column]) * MILLI,
-            float(ends.greatest[state, column]) * MILLI,
-        )
+        return self._worst[state]
+
+    @cached_property
+    def _worst(self) -> list[tuple[Contact, float, float]]:
+        """Of every state the contact of one hand that carries most, with its ends [mA]."""
+        ends, at = self.solved.single_currents, np.arange(self.solved.count)
+        columns = self.solved.worst
+        least, greatest = ((of[at, columns] * MILLI).tolist() for of in (ends.least, ends.greatest))
+        contacts = [self.solved.singles[column] for column in columns.tolist()]
+        return list(zip(contacts, least, greatest, strict=True))
 
     def planned(self, planned: Planned, devices: list[Body]) -> Body:
         """The planned link with its consequences."""
