@@ -3,6 +3,7 @@
 import copy
 import json
 import math
+import re
 from dataclasses import replace
 from typing import Any
 
@@ -527,3 +528,18 @@ def test_whatever_the_unknown_values_are_no_contact_carries_much_more(body: Body
     )
     said, found = (solve_bench(told, 1000.0).single_currents.greatest[0].max() for told in (bench, one))
     assert found <= said * 1.05 + 1e-9
+
+
+@slow
+@given(body=bodies())
+def test_the_arithmetic_of_a_contact_comes_out(body: Body) -> None:
+    found = 0
+    for told in bench_network(body)["contacts"]:
+        for state in (told["as_found"], told.get("with_planned_link", told["as_found"])):
+            sum_ = re.match(r"([0-9.]+) V / ([0-9.]+) Ω = ([0-9.]+) mA", state["explanation"])
+            if sum_ is not None:
+                voltage, impedance, current = (float(part) for part in sum_.groups())
+                assert 1000.0 * voltage / impedance == pytest.approx(current, rel=2e-3)
+                assert state["current_ma"]["least"] * 0.999 <= current <= state["current_ma"]["greatest"] * 1.001
+                found += 1
+    assert found  # both poles always

@@ -66,6 +66,7 @@ class ContactState(Answer):
     current_ma: IntervalBody
     voltage_v: IntervalBody | None = None
     within: Literal["unfelt", "limit", "let-go", "none"]
+    explanation: Text = Field(description="Arithmetic at the nominal values")
 
 
 class ContactBody(Answer):

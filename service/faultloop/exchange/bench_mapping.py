@@ -65,6 +65,8 @@ def mapped_bench(request: BenchRequest) -> MappedBench:
         tuple(_link(found, link, table) for link in sorted(request.links, key=lambda link: link.id)),
         None if request.planned_link is None else _link(found, request.planned_link, table),
     ).in_order()
+    if not any(isinstance(supply, EarthedBenchSupply) for supply in request.supplies):
+        found.span(None, "outlet", "", table.mains, asks=False)
     return found
 
 
@@ -75,8 +77,11 @@ def _supply(found: MappedBench, body: BenchSupply, by_id: dict[str, BenchSupply]
         loop = found.span(body.earth_fault_loop_impedance_ohm, "earth-loop", body.id, table.earth_loop)
         return Supply(body.id, "earthed", body.nominal_voltage_to_earth_v, loop)
     feeding = by_id.get(body.fed_from or "")
-    primary = feeding.nominal_voltage_to_earth_v if isinstance(feeding, EarthedBenchSupply) else table.mains.usual
     told = body.transformer
+    if isinstance(feeding, EarthedBenchSupply):
+        primary = feeding.nominal_voltage_to_earth_v
+    else:
+        primary = found.span(None, "primary", body.id, table.mains, asks=False).nominal
     return Supply(
         id=body.id,
         kind="separated",

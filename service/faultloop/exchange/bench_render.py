@@ -205,7 +205,7 @@ class _Answer:
         told = self._words.texts.assumed
         return [
             {
-                "assumption": f"{of.owner}: {of.what}",
+                "assumption": f"{of.owner}: {of.what}" if of.owner else of.what,
                 "text": told[of.what].format(owner=of.owner, span=self._words.span(of.span, of.unit)),
             }
             for of in self._given.assumed

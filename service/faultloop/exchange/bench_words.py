@@ -191,7 +191,20 @@ class BenchWords:
         if np.isfinite(voltage.greatest[state, column]):
             body["voltage_v"] = volts_body(float(voltage.least[state, column]), float(voltage.greatest[state, column]))
         body["within"] = self.within(most)
+        body["explanation"] = self._arithmetic(voltage.nominal[state, column], current.nominal[state, column])
         return body
+
+    def _arithmetic(self, voltage: float, current: float) -> str:
+        """How a contact's current comes about at the nominal values."""
+        told = self.texts.contacts
+        if not np.isfinite(voltage):
+            return told["apart"]
+        if voltage < LEAST_TOLD_V or current == 0.0:
+            return told["quiet"]
+        quoted = {"voltage": voltage, "impedance": voltage / current, "current": current * MILLI}
+        # Four digits, and no power of ten: these are typed into a calculator.
+        words = {name: f"{float(f'{value:.4g}'):.12g}" for name, value in quoted.items()}
+        return told["arithmetic"].format(**words, body=f"{self.solved.body_ohm:g}")
 
     def lines(self) -> dict[str, float]:
         """The rule set's lines of contact current [mA], the least first."""
