@@ -36,8 +36,8 @@ def _judge(points: Points, q: Quantities) -> Judged:
     met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
     cases.when(met, Standing.MET, "within-limit")
     cases.when(withstands(points, current.least, current.greatest), Standing.MET, "conductor-withstands")
-    cases.when(np.isinf(loop.greatest), Standing.UNDETERMINED, "reading-over-range")
     cases.when(np.isinf(found.operating_current), Standing.UNDETERMINED, "no-guaranteed-current")
+    cases.when(np.isinf(loop.greatest), Standing.UNDETERMINED, "reading-over-range")
     cases.when(np.ones(points.count, np.bool_), Standing.UNDETERMINED, "not-cleared-at-once")
     return cases.settle(loop, limit)
 
