@@ -384,9 +384,7 @@ def test_no_order_means_anything(body: Body, order: Any) -> None:
 def test_leaving_a_planned_link_off_is_the_bench_as_found(body: Body) -> None:
     answer = bench_network(body)
     off = change(answer, "remove-link", "planned")
-    for name in ("verdict", "floats", "tied", "worst_contact_current_ma"):
-        if name == "verdict":
-            continue
+    for name in ("verdict", "urgency", "floats", "tied", "live_parts", "worst_contact_current_ma"):
         assert off[name] == answer["as_found"][name]
 
 

@@ -96,7 +96,8 @@ def put_columns(points: Points, solved: SolvedBench) -> None:
     link = planned_link(solved)
     if link is not None:
         made = np.repeat(np.array([state.planned for state in solved.states.every]), len(supplies))
-        choices[Choice.PLANNED_LINK] = np.where(made, link.code, PlannedLink.NONE)
+        codes = np.repeat(link.codes, len(supplies))
+        choices[Choice.PLANNED_LINK] = np.where(made, codes, PlannedLink.NONE)
         for which, value in zip(
             (Number.LINK_LEAST_MA, Number.LINK_MA, Number.LINK_GREATEST_MA),
             (link.current_a.least, link.current_a.nominal, link.current_a.greatest),

@@ -2,17 +2,24 @@
 
 from dataclasses import dataclass
 
+import numpy as np
+
 from faultloop.assessment.benches.network import Supply
 from faultloop.assessment.benches.solving import Ends, SolvedBench
-from faultloop.assessment.points import PlannedLink
+from faultloop.assessment.points import Ints, PlannedLink
 
 
 @dataclass(frozen=True, slots=True)
 class Planned:
-    """The planned link: its current [A] as it is made, and what comes of it."""
+    """The planned link: its current [A] as it is made, and what comes of it in every state, (states,)."""
 
     current_a: Ends
-    code: int
+    codes: Ints
+
+    @property
+    def code(self) -> int:
+        """What comes of it at the bench as it stands."""
+        return int(self.codes[1])
 
 
 @dataclass(frozen=True, slots=True)
@@ -29,10 +36,10 @@ def planned_link(solved: SolvedBench) -> Planned | None:
     if solved.bench.planned is None:
         return None
     current = solved.through_link(solved.bench.planned)
-    (found, after), (_, perhaps) = solved.bench_tied[:, :2]
-    if after:
-        return Planned(current, PlannedLink.TIED_BEFORE if found else PlannedLink.TIES)
-    return Planned(current, PlannedLink.MAY_TIE if perhaps else PlannedLink.KEEPS)
+    surely, perhaps = solved.bench_tied
+    tied = PlannedLink.TIED_BEFORE if surely[0] else PlannedLink.TIES
+    unsure = np.where(perhaps, PlannedLink.MAY_TIE, PlannedLink.KEEPS)
+    return Planned(current, np.where(surely, tied, unsure))
 
 
 def seen(solved: SolvedBench, state: int) -> list[Seen]:

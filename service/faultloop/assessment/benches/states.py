@@ -76,7 +76,8 @@ def _changes(bench: Bench, base: State) -> list[State]:
 
     def changed(kind: str, subject: str, **parts: tuple[int, ...]) -> None:
         kept = {"places": base.places, "links": base.links, "bonding": base.bonding} | parts
-        found.append(State(kind, subject, planned=base.planned, **kept))
+        planned = bench.planned is not None and kept["links"][-1] == MADE
+        found.append(State(kind, subject, planned=planned, **kept))
 
     for at, link in enumerate(bench.all_links):
         if base.links[at] == MADE:
