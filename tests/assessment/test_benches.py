@@ -426,12 +426,12 @@ def test_an_unknown_filter_never_reads_better_than_a_known_one(body: Body, share
         item.pop("filter_capacitance_nf", None)
         least, most = usual[item["protection_class"]]
         stated["filter_capacitance_nf"] = round(least + share * (most - least), 6)
-    fed_by_cell = any(item["fed_by"] == "cell" for item in body["items"])
-    assume(not fed_by_cell)
+    assume(all(item["fed_by"] != "cell" for item in body["items"]))
     unknown, told = bench_network(body), bench_network(known)
     assert WORST_FIRST.index(unknown["verdict"]) <= WORST_FIRST.index(told["verdict"])
     worst = [answer["as_found"]["worst_contact_current_ma"]["greatest"] for answer in (unknown, told)]
-    assert worst[0] >= worst[1] * (1 - 1e-4)
+    # Below a microampere it is the drop along a protective conductor, which may cancel.
+    assert worst[0] >= worst[1] * (1 - 1e-4) - 1e-3
 
 
 @slow
