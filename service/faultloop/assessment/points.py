@@ -136,9 +136,11 @@ class Number(Codes):
     SET_POINT_KOHM = 51
     SECONDARY_V = 52
     LOAD_LOSS_W = 53
-    LINK_LEAST_MA = 54
-    LINK_MA = 55
-    LINK_GREATEST_MA = 56
+    DIELECTRIC_ASKED_V = 54
+    LEADS_LEAST_OHM = 55
+    LINK_LEAST_MA = 56
+    LINK_MA = 57
+    LINK_GREATEST_MA = 58
 
 
 class Choice(Codes):
