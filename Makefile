@@ -39,6 +39,7 @@ trials: $(READY)
 benchmark: $(READY)
 	$(BIN)/python -m tests.benchmarks.http_speed
 	$(BIN)/python -m tests.benchmarks.circuits_speed
+	$(BIN)/python -m tests.benchmarks.bench_speed
 
 openapi: $(READY)
 	$(BIN)/faultloop openapi > openapi/openapi.json

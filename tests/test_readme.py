@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import Any
 from urllib.parse import parse_qsl
 
-from faultloop import assess
+from faultloop import assess, bench_network
 from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer
 from faultloop.exchange.batches import BatchQuery
@@ -53,6 +53,10 @@ def test_the_batch_is_answered_as_shown() -> None:
 
 def test_request_is_answered_as_shown() -> None:
     _hold(_block("answer"), assess(_block("request")), "")
+
+
+def test_the_bench_is_answered_as_shown() -> None:
+    _hold(_block("bench answer"), bench_network(_block("bench")), "")
 
 
 def test_own_rules_are_resolved_and_judged_by_as_said() -> None:

@@ -7,7 +7,7 @@ __version__ = "0.1.0"
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-__all__ = ["__version__", "assess", "assess_many"]
+__all__ = ["__version__", "assess", "assess_many", "bench_network"]
 
 
 def assess(request: dict[str, Any]) -> dict[str, Any]:
@@ -21,3 +21,11 @@ def assess_many(requests: "Sequence[dict[str, Any]]") -> list[dict[str, Any]]:
     from faultloop.exchange.requests import AssessmentRequest
 
     return assess_requests([AssessmentRequest.model_validate(request) for request in requests])
+
+
+def bench_network(request: dict[str, Any], language: str = "en") -> dict[str, Any]:
+    """Solve and judge one bench; the body and the answer are those of the service."""
+    from faultloop.exchange.bench_faults import validated
+    from faultloop.exchange.bench_render import bench_answer
+
+    return bench_answer(validated(request), language)

@@ -421,9 +421,8 @@ def test_an_outlet_better_than_its_transformer_is_asked_about() -> None:
 
 def test_a_worse_outlet_is_counted_in_a_second_fault() -> None:
     read = {**FLOATS, "bonding_resistance_ohm": 0.05, "line_line_loop_impedance_ohm": 9.0}
-    assert verdict_of(
-        assess(bench(read, items=[item(), item()], earth_contacts="bonded")), "second-fault-disconnection"
-    ) == ("fail")
+    answer = assess(bench(read, items=[item(), item()], earth_contacts="bonded"))
+    assert verdict_of(answer, "second-fault-disconnection") == "fail"
 
 
 def test_a_device_ahead_of_the_transformer_is_credited_with_nothing() -> None:

@@ -5,11 +5,16 @@ import gc
 from fastapi import FastAPI
 
 from faultloop.exchange.answers import Assessment
-from faultloop.exchange.examples import EXAMPLE_REQUEST
+from faultloop.exchange.bench_answers import BenchNetwork
+from faultloop.exchange.bench_faults import validated
+from faultloop.exchange.bench_networks import BenchRequest
+from faultloop.exchange.bench_render import bench_answer
+from faultloop.exchange.examples import EXAMPLE_BENCH, EXAMPLE_REQUEST
 from faultloop.exchange.render import assess_requests
 from faultloop.exchange.requests import AssessmentRequest
 
 ANSWER = Assessment.model_validate(assess_requests([AssessmentRequest.model_validate(EXAMPLE_REQUEST)])[0])
+BENCH = BenchNetwork.model_validate(bench_answer(validated(EXAMPLE_BENCH)))
 
 app = FastAPI()
 
@@ -18,6 +23,12 @@ app = FastAPI()
 async def bare(body: AssessmentRequest) -> Assessment:  # noqa: ARG001
     """Validate the request, answer a ready answer through its model."""
     return ANSWER
+
+
+@app.post("/bare-bench", response_model_exclude_none=True)
+async def bare_bench(body: BenchRequest) -> BenchNetwork:  # noqa: ARG001
+    """The same for a bench."""
+    return BENCH
 
 
 gc.collect()

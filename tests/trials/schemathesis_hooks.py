@@ -15,5 +15,6 @@ PUBLISHED = ("iec-60364", "bs-7671", "as-nzs-3000:2018")
 def before_call(_: Any, case: Any, __: Any) -> None:
     """Judge a generated point by a published set; one that is meant to be refused is left as it is."""
     meant_well = case.meta is None or case.meta.generation.mode is GenerationMode.POSITIVE
-    if meant_well and isinstance(case.body, dict) and "point" in case.body and "rules" in case.body:
+    judged = isinstance(case.body, dict) and ("point" in case.body or "supplies" in case.body)
+    if meant_well and judged and "rules" in case.body:
         case.body = {**case.body, "rules": PUBLISHED[len(str(case.body["rules"])) % len(PUBLISHED)]}

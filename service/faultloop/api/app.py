@@ -8,7 +8,17 @@ from fastapi import FastAPI
 from starlette.types import ASGIApp, Message, Receive, Scope, Send
 
 from faultloop import __version__
-from faultloop.api import assessments, batches, devices, openapi, problems, rule_sets, separated_supplies, service
+from faultloop.api import (
+    assessments,
+    batches,
+    bench_networks,
+    devices,
+    openapi,
+    problems,
+    rule_sets,
+    separated_supplies,
+    service,
+)
 from faultloop.api.gather import Gather
 from faultloop.api.own_rules import OwnRuleSets
 from faultloop.api.worker import Worker
@@ -74,6 +84,7 @@ def create_app(settings: Settings) -> FastAPI:
         redoc_url=None,
     )
     app.include_router(assessments.judging)
+    app.include_router(bench_networks.router)
     app.include_router(separated_supplies.router)
     for module in (assessments, batches, devices, rule_sets, service):
         app.include_router(module.router)

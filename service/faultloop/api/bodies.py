@@ -14,6 +14,9 @@ from pydantic import TypeAdapter, ValidationError
 
 from faultloop.api.problems import Refused
 from faultloop.digests import canonical_bytes
+from faultloop.exchange.bench_faults import consistent
+from faultloop.exchange.bench_judging import bench_bytes
+from faultloop.exchange.bench_networks import BenchRequest
 from faultloop.exchange.own_rules import LONGEST_SET, OwnRules, own_rules
 from faultloop.exchange.requests import UNKNOWN_RULES, AssessmentRequest, Ruled
 from faultloop.rules.loader import LoadedRules, shipped
@@ -28,7 +31,6 @@ class DirectRoute(APIRoute):
         return handler
 
 
-
 def json_body(schema: str) -> dict[str, Any]:
     """What the document says of a body that a function reads itself."""
     content = {"application/json": {"schema": {"$ref": f"#/components/schemas/{schema}"}}}
@@ -38,6 +40,7 @@ def json_body(schema: str) -> dict[str, Any]:
 POINT_BODY = json_body("AssessmentRequest")
 RuledT = TypeVar("RuledT", bound=Ruled)
 OWN_RULES_BODY = json_body("OwnRuleSet")
+BENCH_BODY = json_body("BenchRequest")
 _OWN_RULES: TypeAdapter[Any] = TypeAdapter(OwnRules)
 
 
@@ -74,6 +77,16 @@ async def read_rule_set(request: Request) -> tuple[LoadedRules, LoadedRules | No
         said = _OWN_RULES.validate_json(raw)
         refuse_duplicates(raw, canonical_bytes(said.model_dump(mode="json", exclude_unset=True)))
         return own_rules(said), shipped().get(said.extends or "")
+    except ValidationError as error:
+        raise _refused(error, raw) from None
+
+
+async def read_bench(request: Request) -> BenchRequest:
+    """Give a validated bench whose parts fit together."""
+    body, raw = await read_ruled(request, BenchRequest)
+    refuse_duplicates(raw, bench_bytes(body))
+    try:
+        return consistent(body)
     except ValidationError as error:
         raise _refused(error, raw) from None
 

@@ -11,8 +11,12 @@ from faultloop.api.problems import KINDS, MEDIA_TYPE
 from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer, answer_csv
 from faultloop.exchange.batches import BatchQuery, BatchRequest
+from faultloop.exchange.bench_faults import validated
+from faultloop.exchange.bench_networks import BenchRequest
+from faultloop.exchange.bench_render import bench_answer
 from faultloop.exchange.examples import (
     EXAMPLE_BATCH,
+    EXAMPLE_BENCH,
     EXAMPLE_FILE,
     EXAMPLE_REQUEST,
     EXAMPLE_RULES,
@@ -20,12 +24,12 @@ from faultloop.exchange.examples import (
 )
 from faultloop.exchange.judging import judged
 from faultloop.exchange.render import assess_requests
-from faultloop.exchange.requests import AssessmentRequest, Ruled
+from faultloop.exchange.requests import AssessmentRequest
 from faultloop.exchange.separated_supplies import SeparatedSupplyRequest, as_assessment
 from faultloop.exchange.uploads import Upload, read_upload
 
 # Requests whose bodies are read from their bytes, and hold no field that is not known.
-CLOSED: tuple[type[Ruled], ...] = (AssessmentRequest, SeparatedSupplyRequest)
+CLOSED: tuple[type[BaseModel], ...] = (AssessmentRequest, SeparatedSupplyRequest, BenchRequest)
 EXAMPLE_ID = "00000000-0000-4000-8000-000000000000"
 DESCRIPTION = (
     "Measured points in; prospective fault current, disconnection time and a verdict with its arithmetic out. "
@@ -51,6 +55,7 @@ def document(app: FastAPI) -> dict[str, Any]:
                 _mend(operation)
         _put_examples(schema)
         _put_batch_examples(schema)
+        _put_bench_example(schema)
         app.openapi_schema = schema
     return app.openapi_schema
 
@@ -124,6 +129,16 @@ def _put_batch_examples(schema: dict[str, Any]) -> None:
             examples[form] = {"summary": f"{summary}, answered", "value": told}
             if form == "csv":
                 answered["text/csv"]["examples"] = {form: {"summary": "The file", "value": answer_csv(batch)}}
+
+
+def _put_bench_example(schema: dict[str, Any]) -> None:
+    """One bench, solved when the document is written."""
+    operation = schema["paths"]["/v1/bench-networks"]["post"]
+    body = operation["requestBody"]["content"]["application/json"]
+    body["examples"] = {"clip": {"summary": "A clip about to be made", "value": EXAMPLE_BENCH}}
+    content = operation["responses"]["200"]["content"]["application/json"]
+    answer = json.loads(json_bytes(bench_answer(validated(EXAMPLE_BENCH))))
+    content["examples"] = {"clip": {"summary": "A clip about to be made", "value": answer}}
 
 
 def problem_responses(model: Any) -> dict[int | str, dict[str, Any]]:

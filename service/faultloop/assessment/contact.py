@@ -82,7 +82,7 @@ def _capacitance(g: Given, voltage: Array) -> tuple[Array, Array, Flags]:
 
 def _driven(g: Given, voltage: Array, stated: Array, pole_nf: Array) -> Driven:
     number, count = g.points.number, g.points.count
-    if np.isnan(voltage).all():
+    if np.isnan(voltage).all() or not np.isnan(number(Number.CONTACT_MA)).any():
         nothing = np.full((2, count), np.nan)
         return Driven(nothing, nothing, nothing, nothing, nothing)
     spread, one = g.rule["separation_capacitance_tolerance"] / 100.0, np.ones(count)

@@ -139,6 +139,9 @@ class Number(Codes):
     DIELECTRIC_ASKED_V = 54
     LEADS_LEAST_OHM = 55
     FILTERS_LEAST_NF = 56
+    LINK_LEAST_MA = 57
+    LINK_MA = 58
+    LINK_GREATEST_MA = 59
 
 
 class Choice(Codes):
@@ -171,6 +174,7 @@ class Choice(Codes):
     NEUTRAL_DISTRIBUTED = 24
     EXPOSED_PARTS = 25
     LOOP_LINKED = 26
+    PLANNED_LINK = 27
 
 
 class Earthing(Codes):
@@ -301,6 +305,16 @@ class ExposedParts(Codes):
     UNKNOWN = 0
     TOGETHER = 1
     SEPARATELY = 2
+
+
+class PlannedLink(Codes):
+    """What a link that is about to be made does to a bench, by how it stands with it and stood before."""
+
+    NONE = 0
+    KEEPS = 1
+    TIES = 2
+    TIED_BEFORE = 3
+    MAY_TIE = 4
 
 
 class Current(Codes):

@@ -64,9 +64,9 @@ def higher(one: Interval, other: Interval) -> Interval:
     ----------
     .. [1] JCGM 106:2012, 3.3.4 (coverage interval).
     """
-    return Interval(
-        np.fmax(one.least, other.least), np.fmax(one.greatest, other.greatest), np.fmax(one.nominal, other.nominal)
-    )
+    pairs = ((one.least, other.least), (one.greatest, other.greatest), (one.nominal, other.nominal))
+    # Of two zeros either may be given; adding nothing makes them one.
+    return Interval(*(np.fmax(first, second) + 0.0 for first, second in pairs))
 
 
 def expanded_uncertainty(value: Array, percent: Array, constant: Array) -> Array:

@@ -29,9 +29,17 @@ EXAMPLE_SEPARATED: dict[str, Any] = {
         "winding_insulation": "double-or-reinforced",
     },
     "outlets": 1,
-    "items": [{"label": "amplifier under repair", "protection_class": "I", "filter_capacitance_nf": 4.7}],
+    "items": [
+        {
+            "label": "amplifier under repair",
+            "protection_class": "I",
+            "filter_capacitance_nf": 4.7,
+            "lead": {"length_m": 2, "area_mm2": 1},
+        }
+    ],
     "earth_contacts": "unconnected",
     "wiring_length_m": 6,
+    "circuit": {"line_conductor": {"material": "copper", "insulation": "pvc", "area_mm2": 1.5}},
     "overcurrent_device": {
         "kind": "miniature-circuit-breaker",
         "characteristic": "B",
@@ -74,4 +82,45 @@ EXAMPLE_RULES: dict[str, Any] = {
         "sourcing": "assumption",
         "checked": "2026-11-30",
     },
+}
+EXAMPLE_BENCH: dict[str, Any] = {
+    "label": "Bench 2",
+    "location": "repair room",
+    "supplies": [
+        {
+            "id": "wall",
+            "kind": "earthed",
+            "nominal_voltage_to_earth_v": 230,
+            "overcurrent_device": {"kind": "miniature-circuit-breaker", "characteristic": "B", "rated_current_a": 16},
+            "residual_current_device": {"residual_type": "A", "rated_residual_operating_current_ma": 30},
+            "earth_fault_loop_impedance_ohm": 0.6,
+        },
+        {
+            "id": "separated",
+            "kind": "separated",
+            "nominal_voltage_between_lines_v": 230,
+            "transformer": {"rated_power_va": 630, "short_circuit_voltage_percent": 5, "screen": False},
+            "bonding": "none",
+            "fed_from": "wall",
+        },
+    ],
+    "items": [
+        {
+            "id": "amplifier",
+            "label": "valve amplifier under repair",
+            "fed_by": "separated",
+            "protection_class": "I",
+            "role": "under-test",
+            "filter_capacitance_nf": 4.7,
+            "stored": {"capacitance_uf": 100, "voltage_v": 400, "discharge_resistance_ohm": 220000},
+        },
+        {
+            "id": "scope",
+            "fed_by": "wall",
+            "protection_class": "I",
+            "role": "instrument",
+            "signal_ground": {"kind": "earthed"},
+        },
+    ],
+    "planned_link": {"id": "clip", "kind": "probe-clip", "from": "scope.signal_ground", "to": "amplifier.L2"},
 }

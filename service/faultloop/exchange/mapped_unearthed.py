@@ -203,7 +203,7 @@ def _put_stored(point: Mapped, stored: list[ue.Stored]) -> None:
     charged = [of for of in stored if of.capacitance_uf * of.voltage_v > let_stand] or stored
     if charged:
         to_v = limits.discharged.value
-        worst = max(charged, key=lambda of: (_discharge(of, to_v), of.capacitance_uf * of.voltage_v**2, of.voltage_v))
+        worst = max(charged, key=lambda of: (_discharge(of, to_v), of.capacitance_uf * of.voltage_v**2, repr(of)))
         numbers[Number.STORED_UF], numbers[Number.STORED_V] = worst.capacitance_uf, worst.voltage_v
         _put(numbers, Number.DISCHARGE_OHM, worst.discharge_resistance_ohm)
 

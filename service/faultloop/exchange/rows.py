@@ -194,9 +194,8 @@ def _put_unearthed(body: Body, said: Mapping[str, str], told: Told, form: Format
             _put(body, ("it_supply", MONITOR, name), value)
     elif SET_POINT in said:
         told.questions.append(_asked(MONITOR, "", f"a set point but no monitor: {', '.join(MONITOR_WORDS)}?"))
-    for column in WHOLE:
-        if column in said and column not in ITEMS and not _whole(said[column]):
-            told.questions.append(_asked(column, said[column], "a whole number is expected"))
+    if "outlets" in said and not _whole(said["outlets"]):
+        told.questions.append(_asked("outlets", said["outlets"], "a whole number is expected"))
     cells = {name: value for name in ITEMS if (value := _plain(said, name, told, form)) is not None}
     if asked := items_fault(cells):
         told.questions.append(_asked(asked[0], said.get(asked[0], ""), asked[1]))

@@ -4,18 +4,24 @@ It is told apart by hatching, dashes and marks and not by colour, so that it may
 """
 
 from collections.abc import Iterable
-from xml.etree.ElementTree import Element, SubElement, indent, tostring
 
 from faultloop.reports.figure import PLOT_HEIGHT, PLOT_LEFT, PLOT_WIDTH, Figure, Region
-from faultloop.reports.lettering import clean, wrapped
 from faultloop.reports.paths import fast_edge, outline, slow_edge
 from faultloop.reports.scale import Axis
+from faultloop.reports.sheet import FAINT as _FAINT
+from faultloop.reports.sheet import GREY as _GREY
+from faultloop.reports.sheet import INK as _INK
+from faultloop.reports.sheet import LARGE as _LARGE
+from faultloop.reports.sheet import MARGIN, Sheet
+from faultloop.reports.sheet import PAPER as _PAPER
+from faultloop.reports.sheet import PLAIN as _PLAIN
+from faultloop.reports.sheet import SMALL as _SMALL
+from faultloop.reports.sheet import number as _number
+from faultloop.reports.sheet import put as _put
 
-WIDTH, MARGIN = 720.0, 16.0
+WIDTH = 720.0
 ROOM = WIDTH - 2 * MARGIN
 _LEGEND_LEFT = 64.0
-_SMALL, _PLAIN, _LARGE = 10.0, 12.0, 17.0
-_PAPER, _INK, _GREY, _FAINT = "#ffffff", "#111111", "#9a9a9a", "#dedede"
 # Ink, hatching angle and dashes of an overcurrent and of a residual device.
 _STYLES: dict[bool, tuple[str, float, dict[str, str]]] = {
     False: ("#17405c", 45, {}),
@@ -24,64 +30,28 @@ _STYLES: dict[bool, tuple[str, float, dict[str, str]]] = {
 _DEADLINE_DASH = "14 4 2 4"
 
 
-def _number(value: float) -> str:
-    return f"{value:.2f}".rstrip("0").rstrip(".")
-
-
-def _put(parent: Element, tag: str, **attributes: float | str) -> Element:
-    """Add an element; numbers are written with at most two decimals."""
-    told = {
-        name.rstrip("_").replace("_", "-"): value if isinstance(value, str) else _number(value)
-        for name, value in attributes.items()
-    }
-    return SubElement(parent, tag, told)
-
-
-class _Drawing:
-    """One document being drawn from the top down; `y` is where the next line stands."""
+class _Drawing(Sheet):
+    """One figure being drawn from the top down."""
 
     def __init__(self, figure: Figure) -> None:
-        self.figure, self.y = figure, 0.0
-        names = {"xmlns": "http://www.w3.org/2000/svg", "xml:lang": figure.language, "lang": figure.language}
-        self.root = Element("svg", names | {"role": "img", "aria-labelledby": self.id("title") + " " + self.id("desc")})
-        _put(self.root, "title", id=self.id("title")).text = clean(figure.title)
-        _put(self.root, "desc", id=self.id("desc")).text = clean(figure.description)
-        defs = _put(self.root, "defs")
+        self.figure = figure
+        super().__init__(figure.key, figure.language, figure.title, figure.description, WIDTH)
         for region in figure.regions:
             ink, angle, _ = _STYLES[region.residual]
-            self._hatching(defs, _hatch(region), ink, angle, step=7)
+            self._hatching(_hatch(region), ink, angle, step=7)
         if figure.span is not None:
-            self._hatching(defs, "span", _INK, 90, step=4)
-        self.paper = _put(self.root, "rect", width="100%", height="100%", fill=_PAPER)
-        font = "'DejaVu Sans', Verdana, Arial, sans-serif"
-        self.sheet = _put(self.root, "g", font_family=font, font_size=_PLAIN, fill=_INK)
+            self._hatching("span", _INK, 90, step=4)
 
-    def id(self, name: str) -> str:
-        """An id that stays its own where several drawings stand on one page."""
-        return f"{self.figure.key}-{name}"
-
-    def _hatching(self, defs: Element, name: str, ink: str, angle: float, step: float) -> None:
+    def _hatching(self, name: str, ink: str, angle: float, step: float) -> None:
         turned = f"rotate({angle})"
         box = {"patternUnits": "userSpaceOnUse", "patternTransform": turned}
-        pattern = _put(defs, "pattern", id=self.id(name), width=step, height=step, **box)
+        pattern = _put(self.defs, "pattern", id=self.id(name), width=step, height=step, **box)
         _put(pattern, "rect", width=step, height=step, fill=ink, fill_opacity=0.10)
         _put(pattern, "line", x1=0, y1=0, x2=step, y2=0, stroke=ink, stroke_width=1, stroke_opacity=0.55)
 
     def fill(self, name: str) -> str:
         """Reference to a hatching."""
         return f"url(#{self.id(name)})"
-
-    def write(self, text: str, x: float, y: float, **style: float | str) -> None:
-        """One line of text."""
-        _put(self.sheet, "text", x=x, y=y, **style).text = clean(text)
-
-    def lines(self, text: str, size: float, left: float = MARGIN, after: float = 0.0, **style: float | str) -> None:
-        """A paragraph, broken to the width of the sheet; more letters fit in none of the usual fonts."""
-        heavy = 1.15 if style.get("font_weight") == "bold" else 1.0
-        for line in wrapped(text, size * heavy, WIDTH - MARGIN - left):
-            self.y += size * 1.35
-            self.write(line, left, self.y, font_size=size, **style)
-        self.y += after
 
 
 def _hatch(region: Region) -> str:
@@ -105,13 +75,7 @@ def svg_bytes(figure: Figure) -> bytes:
     drawing.y += 6
     for line in figure.footer:
         drawing.lines(line, _SMALL, fill="#333333")
-    height = drawing.y + MARGIN
-    drawing.root.set("viewBox", f"0 0 {_number(WIDTH)} {_number(height)}")
-    drawing.root.set("width", _number(WIDTH))
-    drawing.root.set("height", _number(height))
-    indent(drawing.root, " ")
-    written: bytes = tostring(drawing.root, encoding="utf-8", xml_declaration=True)
-    return written
+    return drawing.written()
 
 
 def _put_grid(drawing: _Drawing, x: Axis, y: Axis) -> None:

@@ -48,8 +48,8 @@ def _judge(points: Points, q: Quantities) -> Judged:
     rated = points.number(Number.OVERLOAD_CURRENT_A) <= points.number(Number.CARRYING_CAPACITY_A)
     rated &= 1000.0 * points.number(Number.BREAKING_CAPACITY_KA) >= current.greatest
     cases.when(rated & ~np.isinf(loop.greatest), Standing.MET, "conductor-rating")
-    cases.when(np.isinf(loop.greatest), Standing.UNDETERMINED, "reading-over-range")
     cases.when(np.isinf(found.operating_current), Standing.UNDETERMINED, "no-guaranteed-current")
+    cases.when(np.isinf(loop.greatest), Standing.UNDETERMINED, "reading-over-range")
     cases.when(np.ones(points.count, np.bool_), Standing.UNDETERMINED, "not-cleared-at-once")
     carried = rated & ~borne & ~met
     return cases.settle(loop, limit, np.where(carried, 1 << Condition.CONDUCTOR_RATING, 0))

@@ -22,6 +22,8 @@ REASONS = (
     "insulation-not-enough",
     "pole-voltages-alone",
     "not-shown",
+    "tied-by-solution",
+    "perhaps-tied-by-solution",
 )
 
 
@@ -35,6 +37,8 @@ def _judge(points: Points, q: Quantities) -> Judged:
     contact, reference, joined = found.contact, points.choice(Choice.REFERENCE), found.joined
     limit, most = q.rule("separation_contact_referenced"), q.rule("separation_contact_most")
     cases = Cases(REASONS)
+    cases.when(contact.solved & (reference == Reference.EARTHED), Standing.UNMET, "tied-by-solution", defect=True)
+    cases.when(contact.solved & (reference == Reference.UNKNOWN), Standing.UNDETERMINED, "perhaps-tied-by-solution")
     cases.when(reference == Reference.EARTHED, Standing.UNMET, "pole-earthed", defect=True)
     cases.when(joined.pole_at_earth, Standing.UNMET, "pole-at-earth", defect=True)
     cases.when(joined.by_loop, Standing.UNMET, "loop-reads-earth", defect=True)

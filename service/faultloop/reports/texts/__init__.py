@@ -44,6 +44,7 @@ class Words(Sheet):
     provenance_input: Text
     verdicts: dict[str, Text] = Field(min_length=1)
     by: dict[str, Text] = Field(min_length=1)
+    bench: dict[str, Text] = Field(min_length=1)
 
 
 @lru_cache(maxsize=8)

@@ -1,0 +1,117 @@
+"""States of a solved bench as columns of points: every separated supply in every state is one point to be judged."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from faultloop.assessment.benches.consequences import planned_link
+from faultloop.assessment.benches.contacts import worked_at
+from faultloop.assessment.benches.network import Item, Supply
+from faultloop.assessment.benches.solving import Ends, SolvedBench
+from faultloop.assessment.benches.states import AS_FOUND, LIFTED
+from faultloop.assessment.points import Choice, EarthContacts, Ints, Number, PlannedLink, Points, Reference
+from faultloop.electrical.measurement import Array
+
+MILLI = 1000.0
+_CONTACTS = {"none": EarthContacts.UNCONNECTED, "non-earthed": EarthContacts.BONDED, "earthed": EarthContacts.EARTHED}
+
+
+@dataclass(frozen=True, slots=True)
+class Columns:
+    """What the checks are told of one supply in every state, (states,) each."""
+
+    contact_ma: Ends
+    reference: Ints
+    items: Array
+    class_i: Array
+    earth_contacts: Ints
+
+
+def supply_columns(solved: SolvedBench, supply: Supply) -> Columns:
+    """One separated supply in every state."""
+    bench, places = solved.bench, solved.places
+    mine = [at for at, item in enumerate(bench.items) if item.fed_by == supply.id]
+    here = (places[:, mine] == AS_FOUND).astype(np.float64)
+    exposed = np.array([bench.items[at].protection_class == "I" for at in mine], np.float64)
+    lifted = solved.states.column("bonding")[:, bench.supplies.index(supply)] == LIFTED
+    contacts = np.where(lifted, EarthContacts.BONDED, _CONTACTS[supply.bonding])
+    reference = _reference(solved, supply)
+    contact = _contact(solved, supply, reference)
+    return Columns(contact, reference, here.sum(axis=1), (here * exposed).sum(axis=1), contacts)
+
+
+def _concerns(solved: SolvedBench, supply: Supply, item: Item) -> bool:
+    """An item worked at counts at the supply that feeds it; one on an earthed outlet at every separated supply."""
+    return item.fed_by == supply.id or solved.bench.supply(item.fed_by).kind == "earthed"
+
+
+def _contact(solved: SolvedBench, supply: Supply, reference: Ints) -> Ends:
+    """Greatest current of one hand [mA]: at this supply's poles, at any part, at what is worked at.
+
+    Where nobody knows whether a pole is joined to earth the worse is taken as nominal, for the work is ordered by it.
+    """
+    others = {pole for s in solved.bench.supplies if s.id != supply.id for pole in (s.l1, s.l2)}
+    others |= {
+        item.pole(which) for item in solved.bench.items if not _concerns(solved, supply, item) for which in ("L1", "L2")
+    }
+    chosen = [at for at, contact in enumerate(solved.singles) if contact.one not in others]
+    ends = solved.single_currents
+    least, nominal, greatest = (MILLI * of[:, chosen].max(axis=1) for of in (ends.least, ends.nominal, ends.greatest))
+    return Ends(least, np.where(reference == Reference.UNKNOWN, greatest, nominal), greatest)
+
+
+def _reference(solved: SolvedBench, supply: Supply) -> Ints:
+    """Whether a pole of the supply, or of what is worked at elsewhere, is joined to earth; unknown where it may be."""
+    names = [supply.l1, supply.l2]
+    names += [of.one for of in worked_at(solved.bench) if _concerns(solved, supply, _item(solved, of.one))]
+    surely, perhaps = solved.tied_at(names)
+    unsure = np.where(perhaps, Reference.UNKNOWN, Reference.FLOATING)
+    return np.where(surely, Reference.EARTHED, unsure)
+
+
+def _item(solved: SolvedBench, pole: str) -> Item:
+    """The item whose pole a name is."""
+    return solved.bench.items[solved.meanings[pole][0]]
+
+
+def put_columns(points: Points, solved: SolvedBench) -> None:
+    """Fill the columns of points that are laid out state by state, the separated supplies of each in their order."""
+    supplies = [supply for supply in solved.bench.supplies if supply.kind == "separated"]
+    told = [supply_columns(solved, supply) for supply in supplies]
+    numbers, choices = points.numbers, points.choices
+
+    def laid(columns: list[Array] | list[Ints]) -> Array:
+        return np.stack(columns, axis=1).ravel().astype(np.float64)
+
+    numbers[Number.CONTACT_LEAST_MA] = laid([of.contact_ma.least for of in told])
+    numbers[Number.CONTACT_MA] = laid([of.contact_ma.nominal for of in told])
+    numbers[Number.CONTACT_GREATEST_MA] = laid([of.contact_ma.greatest for of in told])
+    numbers[Number.ITEMS] = laid([of.items for of in told])
+    numbers[Number.CLASS_I_ITEMS] = laid([of.class_i for of in told])
+    choices[Choice.EARTH_CONTACTS] = laid([of.earth_contacts for of in told])
+    choices[Choice.REFERENCE] = laid([of.reference for of in told])
+    charged = (Number.STORED_UF, Number.STORED_V, Number.DISCHARGE_OHM)
+    for which, held in zip(charged, stored(solved), strict=True):
+        numbers[which] = held
+    link = planned_link(solved)
+    if link is not None:
+        made = np.repeat(np.array([state.planned for state in solved.states.every]), len(supplies))
+        codes = np.repeat(link.codes, len(supplies))
+        choices[Choice.PLANNED_LINK] = np.where(made, codes, PlannedLink.NONE)
+        for which, value in zip(
+            (Number.LINK_LEAST_MA, Number.LINK_MA, Number.LINK_GREATEST_MA),
+            (link.current_a.least, link.current_a.nominal, link.current_a.greatest),
+            strict=True,
+        ):
+            numbers[which] = np.where(made, MILLI * value, np.nan)
+
+
+def stored(solved: SolvedBench) -> tuple[float, float, float]:
+    """Capacitance, voltage and resistance of what stays charged the longest; nan where nothing is."""
+    charged = [item.stored for item in solved.bench.items if item.stored is not None]
+    if not charged:
+        return np.nan, np.nan, np.nan
+    told = [(of.capacitance_uf, of.voltage_v, of.discharge_ohm or np.inf) for of in charged]
+    # By the time constant; of those that nothing discharges, the one with the most charge.
+    uf, volts, ohm = max(told, key=lambda of: (of[2] * of[0], of[0] * of[1]))
+    return uf, volts, np.nan if np.isinf(ohm) else ohm
