@@ -14,7 +14,7 @@ from faultloop.electrical.circuit_elements import Capacitor, CurrentSource, Elem
 from faultloop.electrical.circuit_layout import Circuit
 from faultloop.electrical.circuits import solve
 
-NETWORKS, NODES, LOOPED, REPEATS = 10_000, 20, 500, 5
+NETWORKS, NODES, LOOPED, REPEATS = 10_000, 20, 500, 15
 OMEGA = 2.0 * np.pi * 50.0
 FREQUENCY = np.array([50.0])
 
@@ -104,9 +104,9 @@ def main() -> None:
     batch = per_network(lambda: solve(Circuit(parts, FREQUENCY)), NETWORKS)
     own = per_network(lambda: [solve(one_of(parts, at)) for at in range(LOOPED)], LOOPED)
     lean = per_network(lambda: [by_hand(plan, at) for at in range(LOOPED)], LOOPED)
-    print(f"one batch of {NETWORKS} networks of {NODES} nodes: {batch:8.1f} µs a network")
-    print(f"loop over solve():                       {own:8.1f} µs, {own / batch:6.1f} times as long")
-    print(f"loop by hand over numpy.linalg.solve:    {lean:8.1f} µs, {lean / batch:6.1f} times as long")
+    print(f"one batch of {NETWORKS} networks of {NODES} nodes: {batch:8.2f} µs a network")
+    print(f"loop over solve():                       {own:8.2f} µs, {own / batch:6.1f} times as long")
+    print(f"loop by hand over numpy.linalg.solve:    {lean:8.2f} µs, {lean / batch:6.1f} times as long")
 
 
 if __name__ == "__main__":

@@ -45,9 +45,9 @@ def insulated(g: Given, operating: Array, hot: Interval, cold: Interval) -> Insu
     # A line that is held to earth by an electrode brings no more to it than its own voltage.
     line = g.rule["c_max"] * number(Number.VOLTAGE)
     touch = Interval(
-        np.minimum(current.least * electrode.least / MILLI, line),
-        np.minimum(current.greatest * electrode.greatest / MILLI, line),
-        np.minimum(current.nominal * electrode.nominal / MILLI, line),
+        np.fmin(current.least * electrode.least / MILLI, line),
+        np.fmin(current.greatest * electrode.greatest / MILLI, line),
+        np.fmin(current.nominal * electrode.nominal / MILLI, line),
     )
     # Two faults share the loop: without a neutral between two lines, with one between line and neutral.
     with_neutral = points.choice(Choice.NEUTRAL_DISTRIBUTED) != Distributed.NO

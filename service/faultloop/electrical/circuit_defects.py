@@ -5,6 +5,7 @@ from collections.abc import Iterable, Sequence
 import numpy as np
 
 from faultloop.electrical.circuit_elements import Mask, Phasor
+from faultloop.electrical.circuit_equations import source_terms
 from faultloop.electrical.circuit_solution import (
     CONFLICTING_SOURCES,
     IMPOSSIBLE_VALUE,
@@ -38,7 +39,7 @@ def floating_islands(equations: Equations) -> tuple[Island, ...]:
     """
     layout = equations.layout
     found: dict[tuple[tuple[str, ...], str], Mask] = {}
-    for at, fixing in enumerate(equations.fixings):
+    for at, fixing in enumerate(equations.kinds.fixings):
         here = equations.kind(at)
         if not here.any():
             continue
@@ -69,18 +70,21 @@ def impossible_values(equations: Equations, good: Sequence[Mask]) -> list[Defect
     .. [1] IEC 60050-131:2002 (ideal circuit elements).
     """
     named = zip(equations.circuit.elements, good, strict=True)
-    return [Defect(IMPOSSIBLE_VALUE, (), (element.name,), ~mask) for element, mask in named if not mask.all()]
+    shape = equations.usable.shape
+    return [
+        Defect(IMPOSSIBLE_VALUE, (), (element.name,), np.broadcast_to(~mask, shape))
+        for element, mask in named
+        if not mask.all()
+    ]
 
 
-def conflicting_sources(equations: Equations, terms: Sequence[tuple[int, int, Phasor]]) -> list[Defect]:
+def conflicting_sources(equations: Equations) -> list[Defect]:
     """Sources that contradict each other, or that drive a current that has no way back.
 
     Parameters
     ----------
     equations : Equations
         Of n networks.
-    terms : sequence of (element, row, (n,) array of complex)
-        What each source adds to the right side.
 
     Returns
     -------
@@ -97,7 +101,10 @@ def conflicting_sources(equations: Equations, terms: Sequence[tuple[int, int, Ph
     """
     layout = equations.layout
     found: list[tuple[Parts, Mask]] = []
-    for at, fixing in enumerate(equations.fixings):
+    if not any(fixing.conditions for fixing in equations.kinds.fixings):
+        return []
+    terms = source_terms(layout, equations.laws)
+    for at, fixing in enumerate(equations.kinds.fixings):
         here = equations.kind(at)
         for condition in fixing.conditions:
             shares: dict[int, Phasor] = {}
@@ -107,7 +114,7 @@ def conflicting_sources(equations: Equations, terms: Sequence[tuple[int, int, Ph
                 size += np.abs(condition[row] * term)
             total = sum(shares.values(), np.zeros(len(here), np.complex128))
             conflict = here & (np.abs(total) > AGREE * size)
-            concerned = {element for element, share in shares.items() if np.abs(share[conflict]).any()}
+            concerned = {element for element, share in shares.items() if (conflict & (share != 0.0)).any()}
             concerned |= {one for one, row in enumerate(layout.own_unknown) if row >= 0 and condition[row] != 0.0}
             nodes = [name for name, row in zip(layout.nodes, layout.row, strict=True) if row >= 0 and condition[row]]
             found.append(((tuple(nodes), _names(equations, concerned)), conflict))
@@ -133,7 +140,7 @@ def undetermined_parts(equations: Equations) -> list[Defect]:
     """
     layout = equations.layout
     found: list[tuple[Parts, Mask]] = []
-    for at, fixing in enumerate(equations.fixings):
+    for at, fixing in enumerate(equations.kinds.fixings):
         lost = [unknown for unknown, is_lost in enumerate(fixing.lost) if is_lost]
         nodes = tuple(name for name, row in zip(layout.nodes, layout.row, strict=True) if row in lost)
         elements = {element for element, own in enumerate(layout.own_unknown) if own in lost}
@@ -141,13 +148,13 @@ def undetermined_parts(equations: Equations) -> list[Defect]:
     return _merged(UNDETERMINED, found)
 
 
-def singular_networks(unknown: Phasor) -> list[Defect]:
+def singular_networks(mask: Mask) -> list[Defect]:
     """Networks whose values cancel.
 
     Parameters
     ----------
-    unknown : (n, m) array of complex
-        Solved potentials and currents, not finite where the matrix has no inverse.
+    mask : (n,) array of bool
+        Where the matrix has no inverse.
 
     Returns
     -------
@@ -158,7 +165,6 @@ def singular_networks(unknown: Phasor) -> list[Defect]:
     ----------
     .. [1] IEC 60050-131:2002 (resonance).
     """
-    mask = np.asarray(~np.isfinite(unknown).all(axis=1), np.bool_)
     return _merged(SINGULAR, [(((), ()), mask)])
 
 

@@ -9,7 +9,8 @@ current is an unknown of its own, so a milliohm beside insulation of a gigaohm c
 `Capacitor` is stamped by its admittance and may be open, but never zero ohms.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields, replace
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -20,6 +21,8 @@ Phasor = NDArray[np.complex128]
 Mask = NDArray[np.bool_]
 FARADS_IN_A_NANOFARAD = 1e-9
 LEAST_RESISTANCE_OHM = 1e-300  # its reciprocal is still a number
+NOUGHT = np.zeros(1)
+NOUGHT.flags.writeable = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -105,35 +108,65 @@ Element = Resistor | Capacitor | Inductor | Impedance | VoltageSource | CurrentS
 
 @dataclass(frozen=True, slots=True)
 class AdmittanceLaw:
-    """i = y·v, with y = real + j·imag [S]."""
+    """i = y·v, with y = 1/R + j·b·c: a resistance [Ω], inf where there is none, beside c [nF] of b siemens each."""
 
-    real: Array
-    imag: Array
+    resistance: Array
+    siemens: Array
+    nanofarads: Array
+
+    @property
+    def real(self) -> Array:
+        """Conductance [S]."""
+        return 1.0 / self.resistance
+
+    @property
+    def imag(self) -> Array:
+        """Susceptance [S]."""
+        return self.siemens * self.nanofarads
 
     @property
     def open(self) -> Mask:
         """Where no current can flow."""
-        return np.asarray((self.real == 0.0) & (self.imag == 0.0), np.bool_)
+        return _both(self.resistance == np.inf, self.imag == 0.0)
 
 
 @dataclass(frozen=True, slots=True)
 class ImpedanceLaw:
-    """v = E + z·i, kept as s·v - (s·z)·i = s·E with s = 1/(1 + |R| + |X|), so that z may be zero or without end."""
+    """v = E + z·i where closed, i = 0 where not.
 
-    scale: Array
-    real: Array
-    imag: Array
+    In a matrix it stands as s·v - (s·z)·i = s·E with s = 1/(1 + |R| + |X|), so that z may be zero or without end; real
+    and imag are the parts of s·z.
+    """
+
+    closed: Mask
+    resistance: Array
+    reactance: Array
     emf: Phasor
+
+    @property
+    def scale(self) -> Array:
+        """The factor s, zero where open."""
+        return np.where(self.closed, 1.0 / (1.0 + np.abs(self.resistance) + np.abs(self.reactance)), 0.0)
+
+    @property
+    def real(self) -> Array:
+        """Real part of s·z, one where open."""
+        return np.where(self.closed, self.scale * self.resistance, 1.0)
+
+    @property
+    def imag(self) -> Array:
+        """Imaginary part of s·z."""
+        return self.scale * self.reactance
 
     @property
     def open(self) -> Mask:
         """Where no current can flow."""
-        return np.equal(self.scale, 0.0)
+        return ~self.closed
 
     @property
     def ideal(self) -> Mask:
         """Where the voltage is E whatever the current."""
-        return np.asarray((self.real == 0.0) & (self.imag == 0.0), np.bool_)
+        return np.asarray(self.closed & (self.resistance == 0.0) & (self.reactance == 0.0), np.bool_)
 
 
 @dataclass(frozen=True, slots=True)
@@ -153,21 +186,44 @@ class RatioLaw:
 Law = AdmittanceLaw | ImpedanceLaw | CurrentLaw | RatioLaw
 
 
+def law_of(law: Law, chosen: slice | NDArray[np.intp]) -> Law:
+    """The law of some networks.
+
+    Parameters
+    ----------
+    law : Law
+        With columns (n,), or (1,) that hold for all.
+    chosen : slice or (k,) array of int
+        Which networks.
+
+    Returns
+    -------
+    Law
+        With columns of the chosen ones, or the same (1,).
+
+    References
+    ----------
+    .. [1] IEC 60050-131:2002 (laws of ideal circuit elements).
+    """
+    columns = {field.name: getattr(law, field.name) for field in fields(law)}
+    return replace(law, **{name: column[chosen] for name, column in columns.items() if len(column) != 1})
+
+
 def element_law(element: Element, angular_frequency: Array) -> tuple[Law, Mask]:
     """Law of an element at a frequency, and where its values can hold.
 
     Parameters
     ----------
     element : Element
-        With (n,) values.
-    angular_frequency : (n,) array
+        With (n,) values, or (1,) where one holds for all.
+    angular_frequency : (n,) or (1,) array
         ω = 2πf [rad/s]; zero for direct current, where a capacitor is open and an inductor a link.
 
     Returns
     -------
     Law
-        Its coefficients, (n,) each; a harmless one (open, or ratio 1) where the values cannot hold.
-    (n,) array of bool
+        Its coefficients, (n,) or (1,) each; a harmless one (open, or ratio 1) where the values cannot hold.
+    (n,) or (1,) array of bool
         False where a value is unknown (nan), negative where that has no meaning, or zero or inf where that is excluded.
 
     References
@@ -176,19 +232,17 @@ def element_law(element: Element, angular_frequency: Array) -> tuple[Law, Mask]:
     """
     if isinstance(element, Resistor):
         good = element.resistance_ohm >= LEAST_RESISTANCE_OHM
-        conductance = 1.0 / np.where(good, element.resistance_ohm, np.inf)
-        return AdmittanceLaw(conductance, np.zeros_like(conductance)), good
+        return AdmittanceLaw(_kept(good, element.resistance_ohm, np.inf), NOUGHT, NOUGHT), good
     if isinstance(element, Capacitor):
         good = (element.capacitance_nf >= 0.0) & np.isfinite(element.capacitance_nf)
-        farads = np.where(good, element.capacitance_nf, 0.0) * FARADS_IN_A_NANOFARAD
-        susceptance = angular_frequency * farads
-        return AdmittanceLaw(np.zeros_like(susceptance), susceptance), good
+        siemens = angular_frequency * FARADS_IN_A_NANOFARAD
+        return AdmittanceLaw(np.array([np.inf]), siemens, _kept(good, element.capacitance_nf, 0.0)), good
     if isinstance(element, CurrentSource):
         good = np.isfinite(element.current_a)
-        return CurrentLaw(np.where(good, element.current_a, 0.0)), good
+        return CurrentLaw(_kept(good, element.current_a, 0.0)), good
     if isinstance(element, IdealTransformer):
         good = np.isfinite(element.ratio) & (element.ratio != 0.0)
-        return RatioLaw(np.where(good, element.ratio, 1.0)), good
+        return RatioLaw(_kept(good, element.ratio, 1.0)), good
     return _series_law(element, angular_frequency)
 
 
@@ -196,16 +250,26 @@ def _series_law(element: Inductor | Impedance | VoltageSource, angular_frequency
     """Law of what is stamped by its voltage equation."""
     if isinstance(element, Inductor):
         good = (element.inductance_h >= 0.0) & np.isfinite(element.inductance_h)
-        reactance = angular_frequency * np.where(good, element.inductance_h, 0.0)
-        resistance = np.zeros_like(reactance)
+        resistance, reactance = NOUGHT, angular_frequency * _kept(good, element.inductance_h, 0.0)
     else:
         resistance, reactance = element.resistance_ohm, element.reactance_ohm
         good = (resistance >= 0.0) & ~np.isnan(reactance)
-    emf = np.zeros(resistance.shape, np.complex128)
+    emf: Phasor = NOUGHT.astype(np.complex128)
     if isinstance(element, VoltageSource):
         good = good & np.isfinite(element.emf_v)
-        emf = np.where(good, element.emf_v, 0.0)
-    shut = good & np.isfinite(np.abs(resistance) + np.abs(reactance))
-    resistance, reactance = np.where(shut, resistance, 0.0), np.where(shut, reactance, 0.0)
-    scale = np.where(shut, 1.0 / (1.0 + np.abs(resistance) + np.abs(reactance)), 0.0)
-    return ImpedanceLaw(scale, np.where(shut, scale * resistance, 1.0), scale * reactance, emf), good
+        emf = _kept(good, element.emf_v, 0.0)
+    closed = good & np.isfinite(np.abs(resistance) + np.abs(reactance))
+    return ImpedanceLaw(closed, _kept(closed, resistance, 0.0), _kept(closed, reactance, 0.0), emf), good
+
+
+def _kept(mask: Mask, column: Any, other: float) -> Any:
+    """The column, with another value where the mask is false; itself where it is true throughout."""
+    return column if mask.all() else np.where(mask, column, other)
+
+
+def _both(one: Mask, other: Mask) -> Mask:
+    """Where both hold, without a pass where one of length one holds for all."""
+    for mask, rest in ((one, other), (other, one)):
+        if len(mask) == 1 and mask[0]:
+            return rest
+    return np.asarray(one & other, np.bool_)

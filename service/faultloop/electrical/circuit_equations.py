@@ -2,6 +2,7 @@
 
 from collections.abc import Sequence
 from dataclasses import fields, replace
+from itertools import product
 from typing import Any
 
 import numpy as np
@@ -18,11 +19,13 @@ from faultloop.electrical.circuit_elements import (
     RatioLaw,
     element_law,
 )
-from faultloop.electrical.circuit_layout import Circuit, Layout
+from faultloop.electrical.circuit_layout import LETTERS, SOURCE, Circuit, Layout, branch_ends
+
+VALUES = {kind: tuple(field.name for field in fields(kind) if field.type is not str) for kind in LETTERS}
 
 
-def spread(circuit: Circuit) -> Circuit:
-    """Give every value the length of the many networks.
+def columns(circuit: Circuit) -> tuple[Circuit, int]:
+    """The circuit with values as columns of numbers, and how many networks it is.
 
     Parameters
     ----------
@@ -32,7 +35,9 @@ def spread(circuit: Circuit) -> Circuit:
     Returns
     -------
     Circuit
-        Values (n,), float64 or complex128.
+        Values (n,) or (1,), float64 or complex128; of the same memory where they are that already.
+    int
+        n.
 
     Raises
     ------
@@ -43,30 +48,29 @@ def spread(circuit: Circuit) -> Circuit:
     ----------
     .. [1] IEC 60050-131:2002 (laws of ideal circuit elements).
     """
-    lengths = {value.shape for element in circuit.elements for value in _values(element).values()}
-    lengths.add(circuit.frequency_hz.shape)
-    longer = sorted(lengths - {(1,)})
+    elements = tuple(_with_columns(element) for element in circuit.elements)
+    made = Circuit(elements, _column(circuit.frequency_hz), circuit.earth)
+    shapes = {made.frequency_hz.shape}
+    for element in elements:
+        shapes |= {getattr(element, name).shape for name in VALUES[type(element)]}
+    longer = sorted(shapes - {(1,)})
     shape = longer[0] if longer else (1,)
     if len(longer) > 1 or len(shape) != 1:
-        told = ", ".join(f"{e.name}: {[v.shape for v in _values(e).values()]}" for e in circuit.elements)
+        told = ", ".join(f"{e.name}: {[getattr(e, name).shape for name in VALUES[type(e)]]}" for e in elements)
         raise ValueError(f"every value must be a column of one length, or of length one; found {told}")
-    elements = tuple(
-        replace(element, **{name: _column(value, shape[0]) for name, value in _values(element).items()})
-        for element in circuit.elements
-    )
-    return replace(circuit, elements=elements, frequency_hz=_column(circuit.frequency_hz, shape[0]))
+    return made, shape[0]
 
 
-def _values(element: Element) -> dict[str, NDArray[Any]]:
-    """The arrays of an element by field."""
-    told = {field.name: getattr(element, field.name) for field in fields(element)}
-    return {name: np.asarray(value) for name, value in told.items() if not isinstance(value, str)}
+def _with_columns(element: Element) -> Element:
+    """The element itself, where its values are columns of numbers already."""
+    told: dict[str, Any] = {name: getattr(element, name) for name in VALUES[type(element)]}
+    made: dict[str, Any] = {name: _column(value) for name, value in told.items()}
+    return element if all(made[name] is told[name] for name in told) else replace(element, **made)
 
 
-def _column(value: NDArray[Any], count: int) -> Any:
-    """One value a network, of its own memory."""
-    dtype = np.complex128 if np.iscomplexobj(value) else np.float64
-    return np.array(np.broadcast_to(value, (count,)), dtype=dtype)
+def _column(value: Any) -> NDArray[Any]:
+    """Values as float64 or complex128."""
+    return np.asarray(value, np.complex128 if np.iscomplexobj(value) else np.float64)
 
 
 def circuit_laws(circuit: Circuit) -> tuple[tuple[Law, ...], tuple[Mask, ...]]:
@@ -75,13 +79,13 @@ def circuit_laws(circuit: Circuit) -> tuple[tuple[Law, ...], tuple[Mask, ...]]:
     Parameters
     ----------
     circuit : Circuit
-        Values (n,).
+        Values (n,) or (1,).
 
     Returns
     -------
     tuple of Law
         One an element.
-    tuple of (n,) array of bool
+    tuple of (n,) or (1,) array of bool
         One an element; false in every one where the frequency is unknown, negative or without end.
 
     References
@@ -92,10 +96,10 @@ def circuit_laws(circuit: Circuit) -> tuple[tuple[Law, ...], tuple[Mask, ...]]:
     known = (frequency >= 0.0) & np.isfinite(frequency)
     angular = 2.0 * np.pi * np.where(known, frequency, 0.0)
     pairs = [element_law(element, angular) for element in circuit.elements]
-    return tuple(law for law, _ in pairs), tuple(good & known for _, good in pairs)
+    return tuple(law for law, _ in pairs), tuple(good if known.all() else good & known for _, good in pairs)
 
 
-def left_side(layout: Layout, laws: Sequence[Law], chosen: slice) -> Phasor:
+def left_side(layout: Layout, laws: Sequence[Law], count: int) -> Phasor:
     """Matrices A of some networks: a row for the current balance of each node, then one for each voltage equation.
 
     Parameters
@@ -103,18 +107,18 @@ def left_side(layout: Layout, laws: Sequence[Law], chosen: slice) -> Phasor:
     layout : Layout
         Places of m unknowns.
     laws : sequence of Law
-        One an element, (n,) coefficients.
-    chosen : slice
-        Which k of the n networks.
+        One an element, (n,) or (1,) coefficients.
+    count : int
+        n.
 
     Returns
     -------
-    (k, m, m) array of complex
+    (n, m, m) array of complex
         Earth has no row and no column.
 
     Notes
     -----
-    Coefficients are added one by one along (k,), never as a product of matrices, so that a network's matrix does not
+    Coefficients are added one by one along (n,), never as a product of matrices, so that a network's matrix does not
     depend on its neighbours.
 
     References
@@ -122,29 +126,28 @@ def left_side(layout: Layout, laws: Sequence[Law], chosen: slice) -> Phasor:
     .. [1] C.-W. Ho, A. E. Ruehli, P. A. Brennan, "The modified nodal approach to network analysis",
        IEEE Trans. Circuits Syst. 22(6), 1975, 504-509.
     """
-    count = len(range(*chosen.indices(_length(laws[0]))))
     matrix = np.zeros((count, layout.unknowns, layout.unknowns), np.complex128)
     real, imag = matrix.real, matrix.imag
     for at, law in enumerate(laws):
-        plus, minus = _rows(layout, layout.first_branch[at])
-        own = layout.own_unknown[at]
+        first, own = layout.first_branch[at], layout.own_unknown[at]
+        ends = branch_ends(layout, first)
         if isinstance(law, AdmittanceLaw):
-            for row, column, sign in _pairs(plus, minus):
-                real[:, row, column] += sign * law.real[chosen]
-                imag[:, row, column] += sign * law.imag[chosen]
+            for (row, one), (column, other) in product(ends, ends):
+                real[:, row, column] += one * other * law.real
+                imag[:, row, column] += one * other * law.imag
         elif isinstance(law, ImpedanceLaw):
-            for node, sign in _live(plus, minus):
+            for node, sign in ends:
                 real[:, node, own] += sign
-                real[:, own, node] += sign * law.scale[chosen]
-            real[:, own, own] -= law.real[chosen]
-            imag[:, own, own] -= law.imag[chosen]
+                real[:, own, node] += sign * law.scale
+            real[:, own, own] -= law.real
+            imag[:, own, own] -= law.imag
         elif isinstance(law, RatioLaw):
-            for node, sign in _live(plus, minus):
+            for node, sign in ends:
                 real[:, node, own] += sign
                 real[:, own, node] += sign
-            for node, sign in _live(*_rows(layout, layout.first_branch[at] + 1)):
-                real[:, node, own] -= sign * law.ratio[chosen]
-                real[:, own, node] -= sign * law.ratio[chosen]
+            for node, sign in branch_ends(layout, first + 1):
+                real[:, node, own] -= sign * law.ratio
+                real[:, own, node] -= sign * law.ratio
     return matrix
 
 
@@ -156,11 +159,11 @@ def source_terms(layout: Layout, laws: Sequence[Law]) -> list[tuple[int, int, Ph
     layout : Layout
         Places of m unknowns.
     laws : sequence of Law
-        One an element, (n,) coefficients.
+        One an element, (n,) or (1,) coefficients.
 
     Returns
     -------
-    list of (element, row, (n,) array of complex)
+    list of (element, row, (n,) or (1,) array of complex)
         In the order of the elements.
 
     References
@@ -169,34 +172,10 @@ def source_terms(layout: Layout, laws: Sequence[Law]) -> list[tuple[int, int, Ph
        IEEE Trans. Circuits Syst. 22(6), 1975, 504-509.
     """
     terms: list[tuple[int, int, Phasor]] = []
-    for at, law in enumerate(laws):
-        if isinstance(law, ImpedanceLaw):
+    for at, (kind, law) in enumerate(zip(layout.kinds, laws, strict=True)):
+        if kind == SOURCE and isinstance(law, ImpedanceLaw):
             terms.append((at, layout.own_unknown[at], law.emf * law.scale))
         elif isinstance(law, CurrentLaw):
-            live = _live(*_rows(layout, layout.first_branch[at]))
-            terms += [(at, node, sign * law.injected) for node, sign in live]
+            ends = branch_ends(layout, layout.first_branch[at])
+            terms += [(at, node, sign * law.injected) for node, sign in ends]
     return terms
-
-
-def _length(law: Law) -> int:
-    """Number of networks."""
-    if isinstance(law, AdmittanceLaw | ImpedanceLaw):
-        return len(law.real)
-    return len(law.injected) if isinstance(law, CurrentLaw) else len(law.ratio)
-
-
-def _rows(layout: Layout, branch: int) -> tuple[int, int]:
-    """Unknowns of the two nodes of a branch, -1 for earth."""
-    plus, minus = layout.terminals[branch]
-    return layout.row[plus], layout.row[minus]
-
-
-def _live(plus: int, minus: int) -> list[tuple[int, float]]:
-    """The nodes that have an unknown, with the sign of the branch at them."""
-    return [(node, sign) for node, sign in ((plus, 1.0), (minus, -1.0)) if node >= 0]
-
-
-def _pairs(plus: int, minus: int) -> list[tuple[int, int, float]]:
-    """Where an admittance stands in the matrix, with its sign."""
-    live = _live(plus, minus)
-    return [(row, column, one * other) for row, one in live for column, other in live]

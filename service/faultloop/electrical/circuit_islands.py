@@ -5,20 +5,22 @@ parts (sources, links, transformers) leave open or contradict is found by the ra
 ordinary element put at a plain positive value, so that milliohms beside gigaohms are not taken for a missing rank.
 """
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, ImpedanceLaw, Law, RatioLaw
 from faultloop.electrical.circuit_equations import left_side
-from faultloop.electrical.circuit_layout import Layout
+from faultloop.electrical.circuit_layout import ADMITTANCE, CURRENT, RATIO, Layout
 from faultloop.electrical.measurement import Array
 
 ORDINARY, OPEN, IDEAL = 0, 1, 2
 NO_RANK = 1e-9  # singular values and entries below this part of the greatest count as zero
-States = NDArray[np.int8]
+KEPT = 256
 
 
 @dataclass(frozen=True, slots=True)
@@ -36,46 +38,24 @@ class Fixing:
     conditions: tuple[tuple[float, ...], ...]
 
 
-def element_states(laws: Sequence[Law]) -> States:
-    """Which elements are open, ideal or ordinary.
+@dataclass(frozen=True, slots=True)
+class Kinds:
+    """Kinds of networks of one shape: what is open or ideal, the fixing, and (n,) which kind each network is."""
 
-    Parameters
-    ----------
-    laws : sequence of Law
-        One an element, (n,) coefficients.
-
-    Returns
-    -------
-    (n, e) array of int8
-        OPEN where no current can flow, IDEAL where the voltage does not depend on the current.
-
-    References
-    ----------
-    .. [1] IEC 60050-131:2002 (ideal circuit elements).
-    """
-    columns = []
-    for law in laws:
-        if isinstance(law, AdmittanceLaw):
-            columns.append(np.where(law.open, OPEN, ORDINARY))
-        elif isinstance(law, ImpedanceLaw):
-            columns.append(np.where(law.open, OPEN, np.where(law.ideal, IDEAL, ORDINARY)))
-        else:
-            length = len(law.injected) if isinstance(law, CurrentLaw) else len(law.ratio)
-            columns.append(np.zeros(length, np.int8))
-    return np.stack(columns, axis=1).astype(np.int8)
+    states: tuple[tuple[int, ...], ...]
+    fixings: tuple[Fixing, ...]
+    which: NDArray[np.intp]
 
 
-def islands(layout: Layout, laws: Sequence[Law], states: States) -> tuple[int, ...]:
+def islands(layout: Layout, states: Sequence[int]) -> tuple[int, ...]:
     """Least node of the island that each node belongs to, earth standing for its own.
 
     Parameters
     ----------
     layout : Layout
-        Nodes and branches.
-    laws : sequence of Law
-        One an element; a current source joins nothing, a winding joins its ends and not the other winding.
-    states : (e,) array of int8
-        Of these networks; an open element joins nothing.
+        Nodes and branches; a current source joins nothing, a winding joins its ends and not the other winding.
+    states : sequence of int
+        One an element; an open one joins nothing.
 
     Returns
     -------
@@ -95,11 +75,11 @@ def islands(layout: Layout, laws: Sequence[Law], states: States) -> tuple[int, .
             node = parent[node]
         return node
 
-    for at, law in enumerate(laws):
-        if isinstance(law, CurrentLaw) or states[at] == OPEN:
+    for at, kind in enumerate(layout.kinds):
+        if kind == CURRENT or states[at] == OPEN:
             continue
         first = layout.first_branch[at]
-        for branch in (first, first + 1) if isinstance(law, RatioLaw) else (first,):
+        for branch in (first, first + 1) if kind == RATIO else (first,):
             low, high = sorted(root(node) for node in layout.terminals[branch])
             parent[high] = low
     earth = [node for node, row in enumerate(layout.row) if row < 0]
@@ -108,7 +88,7 @@ def islands(layout: Layout, laws: Sequence[Law], states: States) -> tuple[int, .
     return tuple(root(node) for node in range(len(layout.nodes)))
 
 
-def fixings(layout: Layout, laws: Sequence[Law]) -> tuple[tuple[Fixing, ...], NDArray[np.intp]]:
+def fixings(layout: Layout, laws: Sequence[Law], count: int) -> Kinds:
     """How each of the networks is made solvable.
 
     Parameters
@@ -116,18 +96,18 @@ def fixings(layout: Layout, laws: Sequence[Law]) -> tuple[tuple[Fixing, ...], ND
     layout : Layout
         Places of m unknowns.
     laws : sequence of Law
-        One an element, (n,) coefficients.
+        One an element, (n,) or (1,) coefficients.
+    count : int
+        n.
 
     Returns
     -------
-    tuple of Fixing
-        As many as there are kinds.
-    (n,) array of int
-        Which of them holds for each network.
+    Kinds
+        As many as differ in what is open or ideal, or in the ratios of transformers.
 
     Notes
     -----
-    Kinds differ in what is open or ideal and in the ratios of transformers; ordinary values make no difference.
+    Ordinary values make no difference.
 
     References
     ----------
@@ -136,47 +116,73 @@ def fixings(layout: Layout, laws: Sequence[Law]) -> tuple[tuple[Fixing, ...], ND
     .. [2] G. H. Golub, C. F. Van Loan, Matrix Computations, 4th ed., 2.4 (rank and null space by singular values).
     .. [3] IEC 60050-131:2002, 131-13 (connected network).
     """
-    states = element_states(laws)
     ratios = [law.ratio for law in laws if isinstance(law, RatioLaw)]
-    told = np.column_stack([states, *ratios])
-    kinds, which = _unique_rows(told)
-    found: dict[Fixing, int] = {}
-    place = np.zeros(len(kinds), np.intp)
-    for shape, members in _by_states(kinds[:, : len(laws)].astype(np.int8)):
-        reference = islands(layout, laws, shape)
-        turns = iter(kinds[members, len(laws) :].T)
-        plain = [_plain(law, at, shape[at], turns, len(members)) for at, law in enumerate(laws)]
-        for member, fixing in zip(members, _fix(layout, plain, reference, len(members)), strict=True):
-            place[member] = found.setdefault(fixing, len(found))
-    return tuple(found), place[which]
+    told, which = _unique_rows([*(_state(law) for law in laws), *ratios], count)
+    found: dict[tuple[tuple[int, ...], Fixing], int] = {}
+    place = np.zeros(len(told), np.intp)
+    for states, members in _by_states(told[:, : len(laws)].astype(np.int8)):
+        turns = told[members, len(laws) :]
+        if len(members) == 1:
+            made = _fixed_once(layout, states, tuple(turns[0].tolist()))
+        else:
+            made = _fixed(layout, states, turns)
+        for member, fixing in zip(members, made, strict=True):
+            place[member] = found.setdefault((states, fixing), len(found))
+    return Kinds(tuple(states for states, _ in found), tuple(fixing for _, fixing in found), place[which])
 
 
-def _unique_rows(rows: Array) -> tuple[Array, NDArray[np.intp]]:
+def _state(law: Law) -> NDArray[np.int8]:
+    """OPEN, IDEAL where the voltage does not depend on the current, or ORDINARY; a single one where all agree."""
+    if isinstance(law, AdmittanceLaw) and law.open.any():
+        return np.where(law.open, OPEN, ORDINARY).astype(np.int8)
+    if isinstance(law, ImpedanceLaw) and (law.open.any() or law.ideal.any()):
+        return np.where(law.open, OPEN, np.where(law.ideal, IDEAL, ORDINARY)).astype(np.int8)
+    return np.zeros(1, np.int8)
+
+
+def _unique_rows(columns: Sequence[NDArray[Any]], count: int) -> tuple[Array, NDArray[np.intp]]:
     """Distinct rows, and which of them each row is; the usual case of equal rows is not sorted."""
-    if len(rows) == 0 or (rows == rows[:1]).all():
-        return rows[:1], np.zeros(len(rows), np.intp)
+    if count == 0 or all(len(column) == 1 or (column == column[0]).all() for column in columns):
+        return np.array([[column[0] for column in columns]] * min(count, 1)).reshape(-1, len(columns)), np.zeros(
+            count, np.intp
+        )
+    rows = np.column_stack([np.broadcast_to(column, (count,)) for column in columns])
     kinds, which = np.unique(rows, axis=0, return_inverse=True)
     return kinds, which.reshape(-1)
 
 
-def _by_states(states: States) -> list[tuple[States, list[int]]]:
+@lru_cache(maxsize=KEPT)
+def _fixed_once(layout: Layout, states: tuple[int, ...], ratios: tuple[float, ...]) -> list[Fixing]:
+    """Fixing of networks that agree in their ratios."""
+    return _fixed(layout, states, np.array([ratios]))
+
+
+def _fixed(layout: Layout, states: tuple[int, ...], ratios: Array) -> list[Fixing]:
+    """Fixings of networks that differ in their ratios only, (n, transformers)."""
+    turns = iter(ratios.T)
+    plain = [_plain(kind, at, states[at], turns, len(ratios)) for at, kind in enumerate(layout.kinds)]
+    return _fix(layout, plain, islands(layout, states), len(ratios))
+
+
+def _by_states(states: NDArray[np.int8]) -> Iterable[tuple[tuple[int, ...], list[int]]]:
     """Rows with one pattern of open and ideal elements, together."""
-    groups: dict[bytes, list[int]] = {}
-    for at, row in enumerate(states):
-        groups.setdefault(row.tobytes(), []).append(at)
-    return [(states[members[0]], members) for members in groups.values()]
+    groups: dict[tuple[int, ...], list[int]] = {}
+    for at, row in enumerate(states.tolist()):
+        groups.setdefault(tuple(row), []).append(at)
+    return groups.items()
 
 
-def _plain(law: Law, at: int, state: int, ratios: Iterator[Array], count: int) -> Law:
+def _plain(kind: str, at: int, state: int, ratios: Iterator[Array], count: int) -> Law:
     """The law with an ordinary value put at one between 1 and 2, another for each element, without reactance."""
     value = np.full(count, 1.0 + (at * 0.6180339887498949) % 1.0)
     zero, one = np.zeros(count), np.ones(count)
-    if isinstance(law, AdmittanceLaw):
-        return AdmittanceLaw(zero if state == OPEN else value, zero)
-    if isinstance(law, ImpedanceLaw):
-        real = zero if state == IDEAL else value
-        return ImpedanceLaw(zero if state == OPEN else one, real, zero, zero.astype(np.complex128))
-    return RatioLaw(next(ratios)) if isinstance(law, RatioLaw) else CurrentLaw(zero.astype(np.complex128))
+    if kind == ADMITTANCE:
+        return AdmittanceLaw(one * np.inf if state == OPEN else value, zero, zero)
+    if kind == RATIO:
+        return RatioLaw(next(ratios))
+    if kind == CURRENT:
+        return CurrentLaw(zero.astype(np.complex128))
+    return ImpedanceLaw(one > float(state == OPEN), zero if state == IDEAL else value, zero, zero.astype(np.complex128))
 
 
 def _fix(layout: Layout, laws: Sequence[Law], reference: tuple[int, ...], count: int) -> list[Fixing]:
@@ -188,7 +194,7 @@ def _fix(layout: Layout, laws: Sequence[Law], reference: tuple[int, ...], count:
         if own in floating:
             sums[floating.index(own), layout.row[node]] = 1.0
     nothing: tuple[Array, Array] = (np.zeros((0, layout.unknowns)), np.zeros((0, layout.unknowns)))
-    spaces = _null_spaces(layout, laws, pins) if _has_ideal_parts(laws) else [nothing] * count
+    spaces = _null_spaces(layout, laws, pins, count) if _has_ideal_parts(laws) else [nothing] * count
     found = []
     for left, right in spaces:
         conditions, rows = _reduced(left)
@@ -209,9 +215,11 @@ def _has_ideal_parts(laws: Sequence[Law]) -> bool:
     return any(isinstance(law, RatioLaw) or (isinstance(law, ImpedanceLaw) and law.ideal.any()) for law in laws)
 
 
-def _null_spaces(layout: Layout, laws: Sequence[Law], pins: Sequence[tuple[int, int]]) -> Iterator[tuple[Array, Array]]:
+def _null_spaces(
+    layout: Layout, laws: Sequence[Law], pins: Sequence[tuple[int, int]], count: int
+) -> Iterator[tuple[Array, Array]]:
     """Of each network, the sums of equations in which all unknowns cancel, and the unknowns that nothing determines."""
-    matrix = left_side(layout, laws, slice(None)).real
+    matrix = left_side(layout, laws, count).real
     for row, unknown in pins:
         matrix[:, row, :] = 0.0
         matrix[:, row, unknown] = 1.0

@@ -1,11 +1,33 @@
 """A circuit, and the places of its nodes, branches and unknowns."""
 
 from dataclasses import dataclass
+from functools import lru_cache
 
-from faultloop.electrical.circuit_elements import Element, IdealTransformer, Impedance, Inductor, VoltageSource
+from faultloop.electrical.circuit_elements import (
+    Capacitor,
+    CurrentSource,
+    Element,
+    IdealTransformer,
+    Impedance,
+    Inductor,
+    Resistor,
+    VoltageSource,
+)
 from faultloop.electrical.measurement import Array
 
-WITH_OWN_EQUATION = (Inductor, Impedance, VoltageSource, IdealTransformer)
+ADMITTANCE, IMPEDANCE, SOURCE, CURRENT, RATIO = "yzejr"
+LETTERS: dict[type[Element], str] = {
+    Resistor: ADMITTANCE,
+    Capacitor: ADMITTANCE,
+    Inductor: IMPEDANCE,
+    Impedance: IMPEDANCE,
+    VoltageSource: SOURCE,
+    CurrentSource: CURRENT,
+    IdealTransformer: RATIO,
+}
+WITH_OWN_EQUATION = (IMPEDANCE, SOURCE, RATIO)
+LAYOUTS = 256
+Branches = tuple[tuple[str, str, str], ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,10 +46,12 @@ class Circuit:
 class Layout:
     """Names and places of a circuit's nodes, branches and unknowns.
 
+    ``kinds`` has a letter an element: y admittance, z impedance, e impedance with a source, j current, r ratio.
     ``row`` is the unknown of each node (-1 for earth), ``terminals`` are the nodes of each branch, ``first_branch`` and
     ``own_unknown`` the branch and the current unknown (-1 if none) of each element.
     """
 
+    kinds: str
     nodes: tuple[str, ...]
     branches: tuple[str, ...]
     terminals: tuple[tuple[int, int], ...]
@@ -37,7 +61,7 @@ class Layout:
     unknowns: int
 
 
-def element_branches(element: Element) -> tuple[tuple[str, str, str], ...]:
+def element_branches(element: Element) -> Branches:
     """Branches of an element, by name and nodes.
 
     Parameters
@@ -93,19 +117,27 @@ def lay_out(circuit: Circuit) -> Layout:
     """
     if not circuit.elements:
         raise ValueError("a circuit needs at least one element")
-    branches = [branch for element in circuit.elements for branch in element_branches(element)]
+    shape = tuple((LETTERS[type(element)], element_branches(element)) for element in circuit.elements)
+    return _laid_out(shape, circuit.earth)
+
+
+@lru_cache(maxsize=LAYOUTS)
+def _laid_out(shape: tuple[tuple[str, Branches], ...], earth: str) -> Layout:
+    """Layout of what has these letters and branches."""
+    branches = [branch for _, own in shape for branch in own]
     names = [name for name, _, _ in branches]
     twice = sorted({name for name in names if names.count(name) > 1})
     if twice:
         raise ValueError(f"two parts of the circuit have one name: {', '.join(twice)}")
     nodes = tuple(sorted({node for _, *ends in branches for node in ends}))
-    live = [node for node in nodes if node != circuit.earth]
+    live = [node for node in nodes if node != earth]
     first_branch, own_unknown, equations = [], [], 0
-    for element in circuit.elements:
-        first_branch.append(names.index(element_branches(element)[0][0]))
-        own_unknown.append(equations if isinstance(element, WITH_OWN_EQUATION) else -1)
-        equations += isinstance(element, WITH_OWN_EQUATION)
+    for letter, own in shape:
+        first_branch.append(names.index(own[0][0]))
+        own_unknown.append(equations if letter in WITH_OWN_EQUATION else -1)
+        equations += letter in WITH_OWN_EQUATION
     return Layout(
+        kinds="".join(letter for letter, _ in shape),
         nodes=nodes,
         branches=tuple(names),
         terminals=tuple((nodes.index(plus), nodes.index(minus)) for _, plus, minus in branches),
@@ -114,3 +146,26 @@ def lay_out(circuit: Circuit) -> Layout:
         own_unknown=tuple(own_unknown),
         unknowns=equations + len(live),
     )
+
+
+def branch_ends(layout: Layout, branch: int) -> list[tuple[int, int]]:
+    """Unknowns of the nodes of a branch.
+
+    Parameters
+    ----------
+    layout : Layout
+        Places of the unknowns.
+    branch : int
+        Index of the branch.
+
+    Returns
+    -------
+    list of (unknown, sign)
+        One where the branch leaves a node and minus one where it arrives; earth has no unknown.
+
+    References
+    ----------
+    .. [1] IEC 60050-131:2002, 131-13 (branch, node).
+    """
+    rows = (layout.row[node] for node in layout.terminals[branch])
+    return [(row, sign) for row, sign in zip(rows, (1, -1), strict=True) if row >= 0]

@@ -4,6 +4,7 @@ from collections.abc import Mapping
 
 import numpy as np
 
+from faultloop.electrical.circuit_dense import solved
 from faultloop.electrical.circuit_elements import (
     FARADS_IN_A_NANOFARAD,
     AdmittanceLaw,
@@ -17,8 +18,8 @@ from faultloop.electrical.circuit_elements import (
     Resistor,
     VoltageSource,
 )
+from faultloop.electrical.circuit_layout import branch_ends
 from faultloop.electrical.circuit_solution import Solution, current_through, voltage_between
-from faultloop.electrical.circuits import solved
 from faultloop.electrical.measurement import Array
 
 Sensitivities = dict[tuple[str, str], Phasor]
@@ -103,9 +104,8 @@ def current_sensitivities(solution: Solution, branch: str) -> Sensitivities:
     chosen = np.zeros((len(known), layout.unknowns), np.complex128)
     direct: Sensitivities = {}
     if isinstance(law, AdmittanceLaw):
-        for node, sign in zip(layout.terminals[at], (1.0, -1.0), strict=True):
-            if layout.row[node] >= 0:
-                chosen[:, layout.row[node]] += sign * (law.real + 1j * law.imag)
+        for row, sign in branch_ends(layout, at):
+            chosen[:, row] += sign * (law.real + 1j * law.imag)
         for field, slope in _admittance_slope(solution, element).items():
             direct[element.name, field] = slope * _voltage(solution, at)
     elif isinstance(element, CurrentSource):
@@ -148,13 +148,12 @@ def magnitude_sensitivities(
 def _by_adjoint(solution: Solution, chosen: Phasor) -> Sensitivities:
     """λᵀ·(∂b/∂p - ∂A/∂p·x) for every value p."""
     equations, layout = solution.equations, solution.equations.layout
-    adjoint = solved(equations, chosen, adjoint=True)
+    adjoint = solved(equations, chosen, np.arange(len(chosen)), adjoint=True)
     found: Sensitivities = {}
 
     def lift(branch: int) -> Phasor:
-        plus, minus = (layout.row[node] for node in layout.terminals[branch])
-        none = np.zeros(len(adjoint), np.complex128)
-        return (adjoint[:, plus] if plus >= 0 else none) - (adjoint[:, minus] if minus >= 0 else none)
+        none: Phasor = np.zeros(len(adjoint), np.complex128)
+        return sum((sign * adjoint[:, row] for row, sign in branch_ends(layout, branch)), none)
 
     for at, (element, law) in enumerate(zip(equations.circuit.elements, equations.laws, strict=True)):
         first, own = layout.first_branch[at], adjoint[:, layout.own_unknown[at]]

@@ -6,7 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from faultloop.electrical.circuit_elements import Law, Mask, Phasor
-from faultloop.electrical.circuit_islands import Fixing
+from faultloop.electrical.circuit_islands import Kinds
 from faultloop.electrical.circuit_layout import Circuit, Layout
 from faultloop.electrical.measurement import Array
 
@@ -48,17 +48,16 @@ class Equations:
     circuit: Circuit
     layout: Layout
     laws: tuple[Law, ...]
-    fixings: tuple[Fixing, ...]
-    which: NDArray[np.intp]
+    kinds: Kinds
     usable: Mask
 
     def kind(self, at: int) -> Mask:
-        """Usable networks of one fixing.
+        """Usable networks of one kind.
 
         Parameters
         ----------
         at : int
-            Index of the fixing.
+            Index of the kind.
 
         Returns
         -------
@@ -69,7 +68,7 @@ class Equations:
         ----------
         .. [1] IEC 60050-131:2002, 131-13 (connected network).
         """
-        return np.asarray((self.which == at) & self.usable, np.bool_)
+        return np.asarray((self.kinds.which == at) & self.usable, np.bool_)
 
 
 @dataclass(frozen=True, slots=True)

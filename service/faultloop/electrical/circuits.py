@@ -4,7 +4,11 @@ A part that no branch joins to earth floats: its potentials are counted from a n
 and anything else is unknown (nan), never invented.  What cannot be solved is named in ``Solution.defects``.
 """
 
+from itertools import accumulate
+from math import comb
+
 import numpy as np
+from numpy.typing import NDArray
 
 from faultloop.electrical.circuit_defects import (
     conflicting_sources,
@@ -13,13 +17,15 @@ from faultloop.electrical.circuit_defects import (
     singular_networks,
     undetermined_parts,
 )
-from faultloop.electrical.circuit_elements import AdmittanceLaw, CurrentLaw, Phasor, RatioLaw
-from faultloop.electrical.circuit_equations import circuit_laws, left_side, source_terms, spread
-from faultloop.electrical.circuit_islands import fixings
+from faultloop.electrical.circuit_dense import answered
+from faultloop.electrical.circuit_elements import Mask, Phasor, law_of
+from faultloop.electrical.circuit_elimination import eliminated
+from faultloop.electrical.circuit_equations import circuit_laws, columns
+from faultloop.electrical.circuit_islands import OPEN, fixings
 from faultloop.electrical.circuit_layout import Circuit, Layout, lay_out
+from faultloop.electrical.circuit_plan import PLANS, plan
 from faultloop.electrical.circuit_solution import Equations, Solution
-
-BLOCK_ENTRIES = 1 << 17  # matrix entries solved at a time: about 2 MB, so that a block stays in the cache
+from faultloop.electrical.circuit_tape import Program
 
 
 def solve(circuit: Circuit) -> Solution:
@@ -44,7 +50,7 @@ def solve(circuit: Circuit) -> Solution:
     Notes
     -----
     A·x = b, where x holds the potentials of the nodes and the currents of `Inductor`, `Impedance`, `VoltageSource` and
-    `IdealTransformer`.
+    `IdealTransformer`.  Values are not copied.
 
     References
     ----------
@@ -52,105 +58,79 @@ def solve(circuit: Circuit) -> Solution:
        IEEE Trans. Circuits Syst. 22(6), 1975, 504-509.
     """
     layout = lay_out(circuit)
-    circuit = spread(circuit)
+    circuit, count = columns(circuit)
     laws, good = circuit_laws(circuit)
-    equations = Equations(circuit, layout, laws, *fixings(layout, laws), np.logical_and.reduce(good))
-    terms = source_terms(layout, laws)
-    right = np.zeros((len(equations.which), layout.unknowns), np.complex128)
-    for _, row, term in terms:
-        right[:, row] += term
-    unknown = solved(equations, right)
-    defects = impossible_values(equations, good)
-    defects += conflicting_sources(equations, terms)
-    defects += singular_networks(unknown)
-    current = _currents(equations, unknown)  # while a lost potential stands at zero: the currents do not depend on it
-    lost = np.array([fixing.lost for fixing in equations.fixings], np.bool_).reshape(-1, layout.unknowns)
-    unknown[lost[equations.which]] = np.nan
+    usable = np.ones(count, np.bool_)
+    for mask in good:
+        if not mask.all():
+            usable &= mask
+    equations = Equations(circuit, layout, laws, fixings(layout, laws, count), usable)
+    found, singular = _answers(equations)
+    defects = [*impossible_values(equations, good), *conflicting_sources(equations), *singular_networks(singular)]
+    nodes = len(layout.nodes)
     for defect in defects:
-        unknown[defect.networks] = current[defect.networks] = np.nan
-    reference = np.array([fixing.reference for fixing in equations.fixings], np.intp).reshape(-1, len(layout.nodes))
+        found[nodes:, defect.networks] = np.nan
+        for node, row in enumerate(layout.row):
+            if row >= 0:
+                found[node, defect.networks] = np.nan
     return Solution(
         equations=equations,
-        potential_v=_potentials(layout, unknown),
-        current_a=current,
-        reference=reference[equations.which],
+        potential_v=found[:nodes].T,
+        current_a=found[nodes:].T,
+        reference=_references(equations),
         islands=floating_islands(equations),
         defects=(*defects, *undetermined_parts(equations)),
     )
 
 
-def solved(equations: Equations, right: Phasor, adjoint: bool = False) -> Phasor:
-    """Unknowns for a right side, in blocks of networks.
+def _answers(equations: Equations) -> tuple[Phasor, Mask]:
+    """Potentials and currents of all networks, one row each, and where the values cancel altogether."""
+    layout, count = equations.layout, len(equations.usable)
+    groups = _by_program(equations)
+    program = next(iter(groups), None)
+    if len(groups) == 1 and program is not None:
+        found, sound = eliminated(program, equations.laws, count)
+    else:
+        found = np.zeros((len(layout.nodes) + len(layout.branches), count), np.complex128)
+        sound = np.zeros(count, np.bool_)
+        for program, kinds in groups.items():
+            chosen = np.flatnonzero(np.isin(equations.kinds.which, kinds))
+            if program is not None:
+                laws = [law_of(law, chosen) for law in equations.laws]
+                found[:, chosen], sound[chosen] = eliminated(program, laws, len(chosen))
+    singular = np.zeros(count, np.bool_)
+    rest = np.flatnonzero(~sound & equations.usable)
+    if len(rest):
+        found[:, rest], singular[rest] = answered(equations, rest)
+    return found, singular
 
-    Parameters
-    ----------
-    equations : Equations
-        Of n networks with m unknowns.
-    right : (n, m) array of complex
-        Right side b; where an equation is pinned, zero is taken.
-    adjoint : bool
-        Solve with the transposed matrix, as sensitivities ask.
 
-    Returns
-    -------
-    (n, m) array of complex
-        x; nan where the matrix has no inverse.
+def _by_program(equations: Equations) -> dict[Program | None, list[int]]:
+    """Kinds of networks that share a program; those with none are solved by whole matrices."""
+    layout, kinds = equations.layout, equations.kinds
+    groups: dict[Program | None, list[int]] = {}
+    most = _most_cut(layout)
+    for at, (states, fixing) in enumerate(zip(kinds.states, kinds.fixings, strict=True)):
+        program = None
+        cut = frozenset(one for one, own in enumerate(layout.own_unknown) if own >= 0 and states[one] == OPEN)
+        if not any(fixing.lost) and len(cut) <= most:
+            program = plan(layout, cut, frozenset(row for row, _ in fixing.pins))
+        groups.setdefault(program, []).append(at)
+    return groups
 
-    References
-    ----------
-    .. [1] C.-W. Ho, A. E. Ruehli, P. A. Brennan, "The modified nodal approach to network analysis",
-       IEEE Trans. Circuits Syst. 22(6), 1975, 504-509.
+
+def _most_cut(layout: Layout) -> int:
+    """How many elements may be open: so many that no more programs than are kept can be asked for one layout.
+
+    It depends on the layout alone, so that a network is solved by itself as it is among others.
     """
-    networks, unknowns = right.shape
-    found = np.empty((networks, unknowns), np.complex128)
-    step = max(1, BLOCK_ENTRIES // max(1, unknowns * unknowns))
-    for start in range(0, networks, step):
-        block = slice(start, start + step)
-        matrix = left_side(equations.layout, equations.laws, block)
-        side = right[block, :, None].copy()
-        for kind in np.unique(equations.which[block]):
-            here = equations.which[block] == kind
-            for row, unknown in equations.fixings[kind].pins:
-                matrix[here, row, :] = 0.0
-                matrix[here, row, unknown] = 1.0
-                if not adjoint:
-                    side[here, row] = 0.0
-        found[block] = _solved_or_nan(matrix.transpose(0, 2, 1) if adjoint else matrix, side)[:, :, 0]
-    return found
+    elements = sum(own >= 0 for own in layout.own_unknown)
+    programs = accumulate(comb(elements, most) for most in range(elements + 1))
+    return sum(asked <= PLANS for asked in programs) - 1
 
 
-def _solved_or_nan(matrix: Phasor, side: Phasor) -> Phasor:
-    """Solve a block; where it holds a singular network, one by one."""
-    try:
-        return np.asarray(np.linalg.solve(matrix, side), np.complex128)
-    except np.linalg.LinAlgError:
-        if len(matrix) == 1:
-            return np.full_like(side, np.nan)
-        return np.concatenate([_solved_or_nan(matrix[at : at + 1], side[at : at + 1]) for at in range(len(matrix))])
-
-
-def _potentials(layout: Layout, unknown: Phasor) -> Phasor:
-    """Potentials of all nodes, earth at zero; nan in a network that is unknown altogether."""
-    columns = [unknown[:, row] if row >= 0 else np.zeros(len(unknown)) for row in layout.row]
-    return np.stack(columns, axis=1).astype(np.complex128)
-
-
-def _currents(equations: Equations, unknown: Phasor) -> Phasor:
-    """Currents of all branches."""
-    layout = equations.layout
-    potential = _potentials(layout, unknown)
-    lost = np.array([fixing.lost for fixing in equations.fixings], np.bool_).reshape(-1, layout.unknowns)
-    unknown = np.where(lost[equations.which], np.nan, unknown)
-    columns = []
-    for at, law in enumerate(equations.laws):
-        plus, minus = layout.terminals[layout.first_branch[at]]
-        own = unknown[:, layout.own_unknown[at]]
-        if isinstance(law, AdmittanceLaw):
-            columns.append((law.real + 1j * law.imag) * (potential[:, plus] - potential[:, minus]))
-        elif isinstance(law, CurrentLaw):
-            columns.append(-law.injected)
-        elif isinstance(law, RatioLaw):
-            columns += [own, -law.ratio * own]
-        else:
-            columns.append(own)
-    return np.stack(columns, axis=1)
+def _references(equations: Equations) -> NDArray[np.intp]:
+    """Reference of each node of each network; one row seen many times where all agree."""
+    shape = (len(equations.usable), len(equations.layout.nodes))
+    told = np.array([fixing.reference for fixing in equations.kinds.fixings], np.intp).reshape(-1, shape[1])
+    return np.broadcast_to(told, shape) if len(told) == 1 else told[equations.kinds.which]
