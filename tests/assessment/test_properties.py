@@ -122,6 +122,14 @@ def test_whatever_is_open_says_what_would_settle_it(body: Body) -> None:
 
 @many
 @given(s.requests)
+def test_no_number_is_missing_from_a_sentence(body: Body) -> None:
+    for found in assess(body)["findings"]:
+        for told in (found["explanation"], found.get("settled_by", "")):
+            assert not re.search(r"\b(nan|None)\b", told), found
+
+
+@many
+@given(s.requests)
 def test_every_check_is_a_finding_or_listed_with_its_reason(body: Body) -> None:
     answer = assess(body)
     findings = [f["check"] for f in answer["findings"]]

@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
 from faultloop.assessment.loops import Fault
 from faultloop.assessment.points import (
@@ -16,11 +16,12 @@ from faultloop.assessment.points import (
     Points,
     Reading,
 )
-from faultloop.assessment.quantities import Quantities
+from faultloop.assessment.quantities import Quantities, Wanting
 from faultloop.electrical.measurement import Array, Interval
 
 REASONS = (
     *COMPARISON,
+    *PREREQUISITES,
     "device-missing",
     "voltage-unknown",
     "no-required-time",
@@ -65,6 +66,8 @@ def _judge(points: Points, q: Quantities) -> Judged:
         _together_or_apart(cases, points, q)
     if apart.any():
         loop, limit = _by_electrode(cases, q, apart, loop, limit)
+    wanting = np.where(here, Wanting.NOTHING, q.wanting)
+    cases.when(wanting != Wanting.NOTHING, Standing.UNDETERMINED, PREREQUISITES[0], offset=wanting - 1)
     cases.when(points.choice(Choice.DEVICE) < 0, Standing.UNDETERMINED, "device-missing")
     cases.when(np.isnan(voltage), Standing.UNDETERMINED, "voltage-unknown")
     cases.when(here & np.isnan(required), Standing.NOT_EXAMINED, "no-required-time")
