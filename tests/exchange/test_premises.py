@@ -195,7 +195,7 @@ def test_a_blank_number_of_items_beside_what_is_said_of_them_is_asked_for() -> N
 
 
 def test_a_voltage_between_lines_in_the_place_of_that_to_earth_is_not_met() -> None:
-    # With a neutral that nobody spoke of 230 V allow 230 / 160 = 1.44 ohm, and 400 V would allow 2.5; 1.92 is there hot.
+    # A neutral that nobody spoke of counts: 230 V allow 230 / 160 = 1.44 ohm, 400 V would allow 2.5; 1.92 is there hot.
     cells = {"neutral_distributed": "", "earth_fault_loop_impedance_ohm": "1.6"}
     assert verdict("I1", **cells)[1] == "fail"
     assert verdict("I1", nominal_voltage_to_earth_v="400", **cells)[1] not in MET
