@@ -8,6 +8,10 @@ import pytest
 
 from faultloop import assess
 from faultloop.cli import main
+from faultloop.digests import json_bytes
+from faultloop.exchange.batches import BatchQuery
+from faultloop.exchange.judging import judged
+from faultloop.exchange.uploads import Upload, read_upload
 from tests.exchange.files import judge, written
 from tests.exchange.premises import NAMES, Body, body, by_hand, differences, premises
 
@@ -155,6 +159,14 @@ def test_no_reading_to_earth_is_the_good_result_of_a_separated_outlet(text: str)
     # It shows nothing where nothing else was read.
     unread = {"contact_current_l1_ma": "", "contact_current_l2_ma": "", "insulation_resistance_megohm": ""}
     assert verdict("S1", earth_fault_loop_impedance_ohm=text, **unread)[1] == "undetermined"
+
+
+@pytest.mark.xfail(strict=True, reason="in a list of requests it is asked about as on an earthed outlet")
+def test_no_reading_to_earth_is_the_good_result_in_a_list_of_requests_too() -> None:
+    request = body(ROWS["S1"])
+    request["readings"]["earth_fault_loop_impedance_ohm"] = "OL"
+    batch = judged(read_upload(Upload("json", json_bytes({"rows": [request]}), BatchQuery())).rows)
+    assert batch.verdict(0) == "pass-with-conditions"
 
 
 def test_an_over_range_contact_never_becomes_less_than_was_shown() -> None:
