@@ -18,7 +18,7 @@ from faultloop.electrical.measurement import Array, Interval
 EDGES = [0.0, -0.0, 1.0, -1.0, 0.1, 1e-300, 1e300, np.inf, -np.inf, np.nan, 230.0, 1.37, 20.0, 70.0]
 NUMBERS = st.sampled_from(EDGES) | st.floats(-1e6, 1e6)
 SCALAR_FUNCTIONS = {"coverage_scale"}  # one probability of a whole request, no column
-NETWORKS = "faultloop.electrical.circuit"  # modules that take whole networks; test_circuits holds them to the same
+NETWORKS = "faultloop.electrical.circuit"  # these take whole networks: test_circuits, test_circuit_supplies hold them
 
 
 def modules_of_columns() -> list[str]:
@@ -66,6 +66,7 @@ def draw_arguments(data: st.DataObject, function: Callable[..., Any], count: int
 
 def test_every_module_has_functions_to_try() -> None:
     assert {function.__module__ for function in FUNCTIONS.values()} == set(modules_of_columns())
+    assert {"stored_energy", "discharge_time", "transformer_impedance", "regulation"} <= set(FUNCTIONS)
 
 
 @pytest.mark.parametrize("name", sorted(FUNCTIONS))

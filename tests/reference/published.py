@@ -41,6 +41,11 @@ def named(name: str, row_id: str) -> Row:
     return next(row for row in oracles(name) if row["id"] == row_id)
 
 
+def unproven(name: str, row_id: str) -> Row:
+    """One row that no test may rely on: recalled, common practice, or arithmetic that is printed nowhere."""
+    return next(row for row in _file(name) if row["id"] == row_id and not row["oracle"])
+
+
 def files() -> list[str]:
     """Names of all files of published figures."""
     return sorted(file.stem for file in FOLDER.glob("*.json"))

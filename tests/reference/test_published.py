@@ -8,11 +8,12 @@ import pytest
 
 from faultloop.assessment.points import Current, Earthing
 from faultloop.digests import rounded
-from tests.reference import examples, limits, quantities
+from tests.reference import examples, limits, quantities, separation, separation_figures
 from tests.reference.exceptions import CONTRADICTED, CUT, UNUSED
 from tests.reference.published import EDITIONS, Comparison, document, files, oracles, rules_for
 
-COMPARISONS: list[Comparison] = [*limits.comparisons(), *quantities.comparisons(), *examples.comparisons()]
+MODULES = (limits, quantities, examples, separation, separation_figures)
+COMPARISONS: list[Comparison] = [comparison for module in MODULES for comparison in module.comparisons()]
 CONCLUDED = examples.concluded()
 GUARD = oracles("conformance", "CF-guard-")
 
@@ -120,7 +121,9 @@ def test_enough_was_really_compared() -> None:
     done = [c for c in COMPARISONS if math.isfinite(values()[c.title]) and agrees(c)]
     figures = {(c.row, c.printed) for c in done}
     worked = {c.row for c in done if c.row.startswith("WE-")}
+    unearthed = {c.row for c in done if c.row.startswith("SS-")}
     documents = {document(c.source) for c in done if not c.row.startswith("WE-")}
     assert len(documents) >= 6
     assert len(figures) >= 150
     assert len(worked) >= 12
+    assert len(unearthed) >= 40

@@ -91,14 +91,17 @@ def regulation(short_circuit_percent: Array, resistive_percent: Array, power_fac
     Returns
     -------
     (n,) array
-        ε = u_R·cos φ + u_X·sin φ + (u_X·cos φ - u_R·sin φ)²/200 [%]; nan where u_R exceeds u_k.
+        ε = u_R·cos φ + u_X·sin φ + (u_X·cos φ - u_R·sin φ)²/200 [%]; nan where u_R exceeds u_k by more than rounding.
 
     References
     ----------
     .. [1] IEC 60076-8:1997, 8.1 (voltage drop for a load condition).
     """
     with np.errstate(invalid="ignore"):
-        reactive = np.sqrt(short_circuit_percent**2 - resistive_percent**2)
+        # All resistance, as in small transformers: the last figure of a quotient must not make it unknown.
+        square = short_circuit_percent**2 - resistive_percent**2
+        rounding = resistive_percent <= short_circuit_percent * (1.0 + 1e-12)
+        reactive = np.sqrt(np.where(rounding, np.maximum(square, 0.0), square))
         sine = np.sqrt(1.0 - power_factor**2)
     along = resistive_percent * power_factor + reactive * sine
     across = reactive * power_factor - resistive_percent * sine
