@@ -10,11 +10,12 @@ from sqlalchemy import Engine
 
 from faultloop import assess
 from tests.api.client import served
-from tests.exchange.premises import FOLDER, NAMES, Body, body, differences, numbers, premises
+from tests.exchange.premises import FOLDER, NAMES, Body, at, body, differences, numbers, premises
 
 CSV = {"Content-Type": "text/csv"}
 ORDER = ("stop-use", "urgent", "planned", "note", "none")
 SUPPLIES: Body = json.loads((FOLDER / "repair-shop" / "supplies.json").read_text(encoding="utf-8"))["benches"]
+NETWORKS: Body = json.loads((FOLDER / "repair-shop" / "bench-networks.json").read_text(encoding="utf-8"))["benches"]
 ISLAND = (FOLDER / "teaching-laboratory" / "island.json").read_bytes()
 
 
@@ -156,5 +157,46 @@ def test_each_bench_as_a_separated_supply_is_judged_as_by_hand(url: str, bench: 
         assert differences(told.json(), premises("repair-shop").expected["supplies"][bench]) == []
         german = await client.post("/v1/separated-supplies", json=SUPPLIES[bench], headers={"Accept-Language": "de"})
         assert numbers(german.json()) == numbers(told.json())
+
+    served(url, work)
+
+
+@pytest.mark.parametrize("bench", NETWORKS)
+def test_each_bench_as_a_network_is_solved_as_by_hand(url: str, bench: str) -> None:
+    expected = premises("repair-shop").expected["networks"][bench]
+
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        solved = await client.post("/v1/bench-networks", json=NETWORKS[bench])
+        assert solved.status_code == 200
+        told = solved.json()
+        for state in ("as_found", "with_planned_link"):
+            words = {**told[state], "ties": told["planned_link"]["ties"]}
+            assert {word: words[word] for word in expected[state]} == expected[state]
+        changes = {f"{change['change']} {change.get('subject', '')}".strip(): change for change in told["changes"]}
+        assert {name: changes[name]["helps"] for name in expected["changes"]} == expected["changes"]
+        for value in expected["values"]:
+            assert at(told, value["at"]) == pytest.approx(value["value"], rel=value["rel_tol"]), value["at"]
+        spoken = await client.post("/v1/bench-networks", json=NETWORKS[bench], headers={"Accept-Language": "de"})
+        german = spoken.json()
+        assert numbers(german) == numbers(told)
+        assert german["planned_link"]["current_ma"] == told["planned_link"]["current_ma"]
+
+    served(url, work)
+
+
+LEFT_ON = pytest.mark.xfail(strict=True, reason="a link that is left off is still judged as planned")
+
+
+@pytest.mark.parametrize("bench", [pytest.param("bench-1", marks=LEFT_ON), "bench-4"])
+def test_a_clip_that_is_left_off_leaves_the_bench_as_it_was_found(url: str, bench: str) -> None:
+    async def work(client: httpx.AsyncClient, _: FastAPI) -> None:
+        told = (await client.post("/v1/bench-networks", json=NETWORKS[bench])).json()
+        link = NETWORKS[bench]["planned_link"]["id"]
+        left = next(c for c in told["changes"] if (c["change"], c.get("subject")) == ("remove-link", link))
+        names = ("verdict", "urgency", "floats", "tied", "worst_contact_current_ma")
+        assert {name: left[name] for name in names} == {name: told["as_found"][name] for name in names}
+        without = {name: part for name, part in NETWORKS[bench].items() if name != "planned_link"}
+        bare = (await client.post("/v1/bench-networks", json=without)).json()
+        assert bare["as_found"] == told["as_found"]
 
     served(url, work)
