@@ -183,8 +183,6 @@ def test_an_over_range_contact_never_becomes_less_than_was_shown() -> None:
         ("S1", ("overcurrent_device",)),
         ("S2L", ("earth_contacts",)),
         ("S3L", ("earth_contacts",)),
-        ("S2L", ("lead_length_m", "lead_mm2")),
-        ("S2L", ("bonding_resistance_ohm",)),
         ("S2L", ("transformer_short_circuit_voltage_percent",)),
         ("I1", ("line_capacitance_to_earth_nf",)),
         ("I1", ("phases",)),
@@ -200,6 +198,14 @@ def test_an_over_range_contact_never_becomes_less_than_was_shown() -> None:
 def test_what_is_left_blank_is_unknown_and_never_a_pass(point: str, blank: tuple[str, ...]) -> None:
     status, word, _ = verdict(point, **dict.fromkeys(blank, ""))
     assert (status, word) == ("judged", "undetermined")
+
+
+@pytest.mark.parametrize("blank", [("lead_length_m", "lead_mm2"), ("bonding_resistance_ohm",)])
+def test_conductors_that_are_not_known_pass_no_second_fault_and_save_none(blank: tuple[str, ...]) -> None:
+    # A C10 has at most 2.185 ohm, and the source alone has 0.8 x 3.174 = 2.539; a B6 has 7.283 and leaves it open.
+    cells = dict.fromkeys(blank, "")
+    assert verdict("S2L", **cells)[1] == "fail"
+    assert verdict("S2L", overcurrent_device="B6", **cells)[1] == "undetermined"
 
 
 def test_a_blank_number_of_items_beside_what_is_said_of_them_is_asked_for() -> None:

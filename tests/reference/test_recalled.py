@@ -192,7 +192,6 @@ def test_guidance_on_lengths_is_the_lower_of_both(volts: float) -> None:
     assert greatest_length(bench, volts) == pytest.approx(min(500.0, 100_000.0 / volts), rel=NEAR)
 
 
-@pytest.mark.xfail(reason="one column of the table is held, over 150 to 300 V, whatever the working voltage")
 @pytest.mark.parametrize(("working_v", "column"), [(115.0, 150), (400.0, 600)])
 @pytest.mark.parametrize(("kind", "word"), [("basic", "basic"), ("double-or-reinforced", "reinforced")])
 def test_test_voltages_follow_the_working_voltage(working_v: float, column: int, kind: str, word: str) -> None:

@@ -169,8 +169,10 @@ def test_an_outlet_of_an_insulated_supply_tells_the_same(nanofarads: float, ohm:
         {"earth_electrode_resistance_ohm": exact(ohm)}, it_supply={"line_capacitance_to_earth_nf": nanofarads}
     )
     assert finding(body, "first-fault")["value"] == pytest.approx(current * ohm, rel=1e-5)
-    touched = abs(230.0 * drive / (1.0 + drive * 1000.0))
-    assert quantity(body, "contact_current_ma")["greatest"] == pytest.approx(1000.0 * touched, rel=1e-5)
+    # Capacitors are within 20 % (common practice).
+    for end, part in (("least", 0.8), ("greatest", 1.2)):
+        touched = abs(230.0 * part * drive / (1.0 + part * drive * 1000.0))
+        assert quantity(body, "contact_current_ma")[end] == pytest.approx(1000.0 * touched, rel=1e-5)
 
 
 @pytest.mark.parametrize("nanofarads", [0.1, 4.7, 300.0, 1e5])
@@ -190,16 +192,7 @@ def test_a_separated_outlet_tells_the_same(nanofarads: float) -> None:
 @pytest.mark.parametrize("wiring", [None, 20.0])
 @pytest.mark.parametrize(
     "factor",
-    [
-        pytest.param(
-            1.0,
-            marks=pytest.mark.xfail(
-                reason="temperature policy `none` heats the loop of a separated supply all the same, by 1.2; of other "
-                "supplies it leaves the loop cold"
-            ),
-        ),
-        1.2,
-    ],
+    [1.0, 1.2],
 )
 def test_two_faults_of_a_separated_supply(bonding: float, wiring: float | None, factor: float) -> None:
     """Source, wiring, two leads and the bonding of their cases, added by size: U over the loop."""
@@ -220,7 +213,8 @@ def test_two_faults_of_a_separated_supply(bonding: float, wiring: float | None, 
     assert told["value"] == pytest.approx(source + factor * (cores + bonding), rel=1e-5)
     assert told["limit"] == pytest.approx(230.0 / 30.0, rel=1e-5)
     current = quantity(body, "second_fault_current_a")
-    assert current["least"] == pytest.approx(230.0 / (1.1 * source + factor * (cores + bonding)), rel=1e-5)
+    # The least current that is told is that of hot conductors, whatever the policy compares.
+    assert current["least"] == pytest.approx(230.0 / (1.1 * source + 1.2 * (cores + bonding)), rel=1e-5)
     assert current["greatest"] == pytest.approx(1.1 * 230.0 / (0.9 * source), rel=1e-5)
 
 

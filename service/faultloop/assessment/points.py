@@ -136,6 +136,8 @@ class Number(Codes):
     SET_POINT_KOHM = 51
     SECONDARY_V = 52
     LOAD_LOSS_W = 53
+    DIELECTRIC_ASKED_V = 54
+    LEADS_LEAST_OHM = 55
 
 
 class Choice(Codes):

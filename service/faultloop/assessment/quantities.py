@@ -20,8 +20,8 @@ from faultloop.assessment.points import (
     Points,
     Reading,
     Role,
-    TemperaturePolicy,
 )
+from faultloop.assessment.policies import by_policy, limit_factor
 from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
 from faultloop.assessment.separated import Separated, separated
@@ -176,11 +176,8 @@ def _system_voltage(g: Given) -> Flags:
 
 
 def _loop_limit(g: Given, operating: Array) -> Array:
-    policy, voltage = g.points.choice(Choice.TEMPERATURE_POLICY), g.points.number(Number.VOLTAGE)
-    two_thirds = g.rule["two_thirds"]
-    factor = np.where(policy == TemperaturePolicy.FOUR_FIFTHS, g.rule["four_fifths"] * g.rule["c_min"], g.rule["c_min"])
-    factor = np.where(policy == TemperaturePolicy.TWO_THIRDS, two_thirds, factor)
-    return np.where(np.isinf(operating), np.nan, prospective_current(factor, voltage, operating))
+    limit = prospective_current(limit_factor(g), g.points.number(Number.VOLTAGE), operating)
+    return np.where(np.isinf(operating), np.nan, limit)
 
 
 def _upstream(g: Given, compared: Interval, required: Array) -> Upstream:
@@ -191,16 +188,6 @@ def _upstream(g: Given, compared: Interval, required: Array) -> Upstream:
         return Upstream(operating, place, unknown, np.full(points.count, Verdict.UNDETERMINED))
     limit = _loop_limit(g, operating)
     return Upstream(operating, place, limit, compare(compared, limit, AT_MOST, points.choice(Choice.DECISION)))
-
-
-def by_policy(points: Points, hot: Interval, cold: Interval) -> Interval:
-    """The loop that the temperature policy sets against its limit: hot under `split`, else as read."""
-    split = points.choice(Choice.TEMPERATURE_POLICY) == TemperaturePolicy.SPLIT
-    return Interval(
-        np.where(split, hot.least, cold.least),
-        np.where(split, hot.greatest, cold.greatest),
-        np.where(split, hot.nominal, cold.nominal),
-    )
 
 
 def _touch(g: Given, found: Loops, hot: Interval, factor: Array) -> tuple[Array, Flags]:

@@ -22,6 +22,7 @@ from faultloop.assessment.points import (
 )
 from faultloop.electrical.measurement import Array
 from faultloop.rules.sheets import RuleSet
+from faultloop.rules.strict import Parameter
 
 # Voltages, and small currents that are read as the voltage over a known resistance.
 _VOLTMETER = (
@@ -109,7 +110,7 @@ def _values(rules: RuleSet) -> dict[str, float]:
         "body_wet": u.body_wet.value,
         "sustained_ma": u.sustained_current.value,
         "insulation": rules.insulation.value,
-        **{f"separation_{name}": value.value for name, value in rules.separation},
+        **{f"separation_{name}": held.value for name, held in rules.separation if isinstance(held, Parameter)},
     }
 
 

@@ -7,6 +7,7 @@ import numpy as np
 from faultloop.assessment.contact import Contact, contact
 from faultloop.assessment.given import Given
 from faultloop.assessment.points import Bound, Choice, EarthContacts, Earthing, Flags, Number, Reading, Reference
+from faultloop.assessment.policies import by_policy, limit_factor
 from faultloop.assessment.rule_table import final_time
 from faultloop.electrical.body import discharge_time, stored_energy
 from faultloop.electrical.conductors import resistance
@@ -17,9 +18,10 @@ from faultloop.electrical.sources import transformer_impedance
 
 @dataclass(frozen=True, slots=True)
 class Fault:
-    """A fault on a separated supply: its loop hot [Ω] and its current [A]."""
+    """A fault on a separated supply: its hot loop and the one that the policy compares [Ω], and its current [A]."""
 
-    loop: Interval
+    hot: Interval
+    compared: Interval
     current: Interval
 
 
@@ -58,10 +60,8 @@ def separated(g: Given, factor: Array) -> Separated:
     # The time is that of a final circuit by the voltage that two faults put between two cases.
     required = final_time(points, g.rule, voltage, np.zeros(points.count, np.bool_))
     operating = points.overcurrent.operating_current(points.choice(Choice.DEVICE), required)
-    source, wiring = _source(g, voltage), _wiring(g)
-    bonding = g.reading(Reading.BONDING)
-    cores = wiring + number(Number.LEADS_OHM)
-    both = Interval(*(cores + of for of in (bonding.least, bonding.greatest, bonding.nominal)))
+    source, wiring, cold = _source(g, voltage), _wiring(g), np.ones(points.count)
+    both = _cores(g, wiring)
     at_earth = _pole_at_earth(g, voltage)
     joined = (points.choice(Choice.REFERENCE) == Reference.EARTHED) | at_earth
     joined |= points.bound[Reading.LOOP] == Bound.EXACT
@@ -75,9 +75,9 @@ def separated(g: Given, factor: Array) -> Separated:
         required_s=required,
         source=source,
         operating_current=operating,
-        limit=np.where(np.isinf(operating), np.nan, prospective_current(g.rule["c_min"], voltage, operating)),
+        limit=np.where(np.isinf(operating), np.nan, prospective_current(limit_factor(g), voltage, operating)),
         pole_to_pole=_pole_to_pole(g, voltage, source, wiring, factor),
-        second_fault=_fault(g, voltage, _added(source, both, factor), source.least),
+        second_fault=_fault(g, voltage, _added(source, both, factor), _added(source, both, cold), source.least),
         wiring_ohm=wiring,
         conductors_ohm=both.nominal,
         class_i=class_i,
@@ -113,8 +113,20 @@ def _wiring(g: Given) -> Array:
     return np.where(np.isnan(length), 0.0, 2.0 * resistance(per_km, length))
 
 
+def _cores(g: Given, wiring: Array) -> Interval:
+    """Wiring, leads and bonding of two faults, cold; open above where one of them is not known."""
+    leads, bonding = g.points.number(Number.LEADS_OHM), g.reading(Reading.BONDING)
+    stated = np.nan_to_num(np.fmax(leads, g.points.number(Number.LEADS_LEAST_OHM))) + np.nan_to_num(wiring)
+    whole = ~np.isnan(leads + wiring + bonding.nominal)
+    return Interval(
+        stated + np.nan_to_num(bonding.least),
+        np.where(whole, stated + bonding.greatest, np.inf),
+        stated + np.nan_to_num(bonding.nominal),
+    )
+
+
 def _added(source: Interval, cold: Interval, factor: Array) -> Interval:
-    """Source and hot conductors added by size, which no angle between them can exceed."""
+    """Source and conductors, hot by a factor, added by size, which no angle between them can exceed."""
     return Interval(
         source.least + cold.least * factor,
         source.greatest + cold.greatest * factor,
@@ -125,24 +137,28 @@ def _added(source: Interval, cold: Interval, factor: Array) -> Interval:
 def _pole_to_pole(g: Given, voltage: Array, source: Interval, wiring: Array, factor: Array) -> Fault:
     """The loop from pole to pole as read at the outlet, else by source and wiring."""
     read, known = g.reading(Reading.LINE_LINE), g.known[Reading.LINE_LINE]
-    made = _added(source, Interval(wiring, wiring, wiring), factor)
-    loop = Interval(
-        np.where(known, read.least * factor, made.least),
-        np.where(known, read.greatest * factor, made.greatest),
-        np.where(known, read.nominal * factor, made.nominal),
-    )
-    return _fault(g, voltage, loop, np.where(known, read.least, source.least))
+    made = Interval(wiring, wiring, wiring)
+
+    def heated(by: Array) -> Interval:
+        parts = _added(source, made, by)
+        return Interval(
+            np.where(known, read.least * by, parts.least),
+            np.where(known, read.greatest * by, parts.greatest),
+            np.where(known, read.nominal * by, parts.nominal),
+        )
+
+    return _fault(g, voltage, heated(factor), heated(np.ones_like(factor)), np.where(known, read.least, source.least))
 
 
-def _fault(g: Given, voltage: Array, loop: Interval, cold_least: Array) -> Fault:
+def _fault(g: Given, voltage: Array, hot: Interval, cold: Interval, cold_least: Array) -> Fault:
     """Least and nominal current by the hot loop; the greatest by the source alone, which no conductor raises."""
     c_min = g.rule["c_min"]
     current = Interval(
-        prospective_current(c_min, voltage, loop.greatest),
+        prospective_current(c_min, voltage, hot.greatest),
         prospective_current(g.rule["c_max"], voltage, cold_least),
-        prospective_current(c_min, voltage, loop.nominal),
+        prospective_current(c_min, voltage, hot.nominal),
     )
-    return Fault(loop, current)
+    return Fault(hot, by_policy(g.points, hot, cold), current)
 
 
 def _pole_at_earth(g: Given, voltage: Array) -> Flags:

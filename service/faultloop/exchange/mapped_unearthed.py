@@ -81,6 +81,7 @@ def _put_separated(point: Mapped, request: rq.AssessmentRequest) -> None:
     _put_transformer(point, body.transformer)
     if request.supply.nominal_voltage_between_lines_v is None and body.transformer.secondary_voltage_v is not None:
         numbers[Number.BETWEEN_LINES_V] = body.transformer.secondary_voltage_v
+    _put_dielectric(point, body.transformer)
     if request.circuit.length_m is None:
         point.assumptions.append("wiring-none")
     _put(numbers, Number.OUTLETS, body.outlets)
@@ -115,6 +116,17 @@ def _put_transformer(point: Mapped, body: ue.Transformer) -> None:
         point.assumptions.append("interwinding")
 
 
+def _put_dielectric(point: Mapped, body: ue.Transformer) -> None:
+    """What the windings are asked to have been tested with, by their insulation and the higher of their voltages."""
+    numbers, rows = point.row.numbers, point.rules.rules.separation.dielectric
+    working = np.fmax(numbers[Number.BETWEEN_LINES_V], numbers[Number.PRIMARY_V])
+    mine = [row for row in rows if row.insulation == body.winding_insulation]
+    held = [row.value for row in mine if row.above_v < working <= row.to_v]
+    numbers[Number.DIELECTRIC_ASKED_V] = max(held, default=math.nan)
+    if body.dielectric_test_v is not None and not held:
+        point.unused.append("separated_supply.transformer.dielectric_test_v")
+
+
 def _put(numbers: list[float], which: int, value: float | None) -> None:
     if value is not None:
         numbers[which] = value
@@ -143,7 +155,11 @@ def _put_items(point: Mapped, items: list[ue.Item]) -> None:
     filters = [math.nan if item.filter_capacitance_nf is None else item.filter_capacitance_nf for item in exposed]
     numbers[Number.FILTERS_NF] = math.fsum(filters)
     leads = [math.nan if item.lead is None else 2.0 * _core_ohm(item.lead) for item in exposed]
-    numbers[Number.LEADS_OHM] = math.nan if any(map(math.isnan, leads)) else math.fsum(sorted(leads)[-2:])
+    known = sorted(ohm for ohm in leads if not math.isnan(ohm))
+    # Two faults may lie in the two items of the longest leads; one that is not known makes the loop no shorter.
+    numbers[Number.LEADS_LEAST_OHM] = math.fsum(known[-2:])
+    if len(known) == len(leads):
+        numbers[Number.LEADS_OHM] = numbers[Number.LEADS_LEAST_OHM]
     if charged := [item.stored for item in items if item.stored is not None]:
         to_v = point.rules.rules.separation.discharged.value
         slowest = max(charged, key=lambda stored: (_discharge(stored, to_v), stored.voltage_v, stored.capacitance_uf))

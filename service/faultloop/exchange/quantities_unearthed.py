@@ -17,11 +17,10 @@ def unearthed_quantities(points: Points, outcome: Outcome) -> Iterator[Own]:
     """For each kind of supply that there is: where it is, its intervals and its plain numbers by name."""
     q = outcome.quantities
     if q.insulated is not None:
-        contact = q.insulated.contact_ma
         ends = {
             "first_fault_current_ma": q.insulated.first_fault_ma,
             "touch_voltage_v": q.insulated.touch_v,
-            "contact_current_ma": Interval(contact, contact, contact),
+            "contact_current_ma": q.insulated.contact_ma,
             "second_fault_current_a": q.insulated.second_fault_a,
         }
         yield q.insulated.here, ends, {}

@@ -88,8 +88,6 @@ BOUNDS: dict[str, Bounds] = {
     "separation.wiring_capacitance": Bounds(0, 100),
     "separation.winding_basic": Bounds(0, 1000, True),
     "separation.winding_reinforced": Bounds(0, 1000, True),
-    "separation.dielectric_basic": Bounds(500, 20_000),
-    "separation.dielectric_reinforced": Bounds(500, 20_000),
     "separation.discharged": Bounds(0, 120, True),
     "separation.discharge_time": Bounds(0, 60),
     **{f"instruments.{name}.percent": Bounds(0, 100) for name in METHODS},

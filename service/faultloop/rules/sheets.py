@@ -147,6 +147,16 @@ class Urgency(Sheet):
     sustained_current: Milliamperes
 
 
+class DielectricRow(Sourced):
+    """One cell of the table of test voltages between windings, by insulation and working voltage."""
+
+    insulation: Literal["basic", "double-or-reinforced"]
+    above_v: Annotated[float, Field(description="Working voltage above this [V]")]
+    to_v: Annotated[float, Field(description="and up to this [V]")]
+    value: Annotated[float, Field(gt=0, le=20_000, description="Test voltage asked for [V]")]
+    unit: Literal["V"]
+
+
 class Separation(Sheet):
     """Limits of supplies whose live parts are not earthed, and what is taken where it is not stated."""
 
@@ -164,8 +174,7 @@ class Separation(Sheet):
     wiring_capacitance: NanofaradsPerMetre
     winding_basic: Megohms
     winding_reinforced: Megohms
-    dielectric_basic: Volts
-    dielectric_reinforced: Volts
+    dielectric: list[DielectricRow] = Field(min_length=1)
     discharged: Volts
     discharge_time: Seconds
 

@@ -27,7 +27,7 @@ def _applies(points: Points, _: Quantities) -> Flags:
 def _judge(points: Points, q: Quantities) -> Judged:
     found = q.separated
     assert found is not None
-    loop, limit, current = found.pole_to_pole.loop, found.limit, found.pole_to_pole.current
+    loop, limit, current = found.pole_to_pole.compared, found.limit, found.pole_to_pole.current
     cases = Cases(REASONS)
     cases.when(np.isnan(found.voltage), Standing.NOT_EXAMINED, "voltage-unknown")
     cases.when(np.isnan(found.required_s), Standing.NOT_EXAMINED, "no-required-time")

@@ -33,6 +33,7 @@ REASONS = (
     "apart-within-limit",
     "apart-over-limit",
     "apart-limit-inside-uncertainty",
+    "over-limit-already",
     "no-guaranteed-current",
     "reading-over-range",
 )
@@ -54,7 +55,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     required = q.required_s
     if q.separated is not None:
         here, supply = q.separated.here, q.separated
-        loop = _where(here, supply.second_fault.loop, loop)
+        loop = _where(here, supply.second_fault.compared, loop)
         limit = np.where(here, supply.limit, limit)
         operating = np.where(here, supply.operating_current, operating)
         required = np.where(here, supply.required_s, required)
@@ -74,7 +75,10 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases.when(here & np.isnan(loop.nominal), Standing.UNDETERMINED, "loop-unknown")
     cases.when(~here & (q.loops.fault != Fault.NONE), Standing.UNDETERMINED, "loop-missing")
     cases.when(np.isinf(operating), Standing.UNDETERMINED, "no-guaranteed-current")
-    cases.when(np.isinf(loop.greatest) & (loop.least <= limit), Standing.UNDETERMINED, "reading-over-range")
+    open_end, within = np.isinf(loop.greatest), loop.least <= limit
+    cases.when(here & open_end & within, Standing.UNDETERMINED, "loop-unknown")
+    cases.when(here & open_end, Standing.UNMET, "over-limit-already")
+    cases.when(open_end & within, Standing.UNDETERMINED, "reading-over-range")
     return cases.settle(loop, limit)
 
 

@@ -18,11 +18,10 @@ def _judge(points: Points, q: Quantities) -> Judged:
     # What is not known to be basic insulation is held to the higher figures.
     basic = points.choice(Choice.WINDINGS) == Windings.BASIC
     limit = np.where(basic, q.rule("separation_winding_basic"), q.rule("separation_winding_reinforced"))
-    tested = np.where(basic, q.rule("separation_dielectric_basic"), q.rule("separation_dielectric_reinforced"))
     read = q.given.reading(Reading.WINDING_INSULATION)
     cases = Cases(REASONS)
-    stated = points.choice(Choice.WINDINGS) != Windings.UNKNOWN
-    cases.when(stated & (points.number(Number.DIELECTRIC_V) < tested), Standing.UNMET, "dielectric-low")
+    low = points.number(Number.DIELECTRIC_V) < points.number(Number.DIELECTRIC_ASKED_V)
+    cases.when(low, Standing.UNMET, "dielectric-low")
     cases.when(~q.given.known[Reading.WINDING_INSULATION], Standing.NOT_EXAMINED, "not-measured")
     cases.when(read.nominal > q.rule("greatest_insulation"), Standing.UNDETERMINED, "beyond-instruments")
     open_end = np.isinf(read.greatest) & (read.least < limit)
