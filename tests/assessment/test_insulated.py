@@ -171,8 +171,9 @@ def test_parts_that_are_earthed_separately_are_protected_as_on_tt(electrode: flo
     body["residual_current_device"] = {"rated_residual_operating_current_ma": 30}
     body["readings"]["residual_operating_time_ms"] = {"1": 24}
     assert verdict_of(assess(body), "second-fault-disconnection") == verdict
+    # By the overcurrent device alone the electrode would have to be below 50 V / 80 A.
     del body["residual_current_device"]
-    assert verdict_of(assess(body), "second-fault-disconnection") == "undetermined"
+    assert verdict_of(assess(body), "second-fault-disconnection") == "fail"
 
 
 @pytest.mark.parametrize(
@@ -252,7 +253,9 @@ def test_dropping_required_evidence_never_upgrades(it: Body, dropped: str) -> No
     del less["readings"][dropped]
     before, after = assess_many([body, less])
     known = "set_point_kohm" in it.get("insulation_monitor", {}) or dropped != "monitored_insulation_kohm"
-    assert rank(after["verdict"]) <= rank(before["verdict"]) or not known
+    # What showed a failure leaves the question open where it is gone; nothing is met by that.
+    open_now = max(rank(before["verdict"]), rank("undetermined"))
+    assert rank(after["verdict"]) <= open_now or not known
 
 
 FIELDS: Body = {

@@ -21,7 +21,7 @@ def unearthed_columns(points: Points, outcome: Outcome) -> dict[str, Array]:
         "is_separated": np.zeros(points.count),
     }
     if q.insulated is not None:
-        columns |= _insulated(q.insulated)
+        columns |= _insulated(q.insulated, points.number(Number.RESIDUAL_GREATEST_MA), q.operating_current)
     if q.separated is not None:
         here = q.separated.here
         columns |= _separated(points, outcome, q.separated)
@@ -83,10 +83,11 @@ def _separated(points: Points, outcome: Outcome, found: Separated) -> dict[str, 
     }
 
 
-def _insulated(found: Insulated) -> dict[str, Array]:
+def _insulated(found: Insulated, residual_ma: Array, operating: Array) -> dict[str, Array]:
     return {
         "first_ma": found.first_fault_ma.nominal,
         "first_least": found.first_fault_ma.least,
         "first_greatest": found.first_fault_ma.greatest,
         "u_second": found.second_v,
+        "apart_a": np.where(np.isnan(residual_ma), operating, residual_ma / 1000.0),
     }

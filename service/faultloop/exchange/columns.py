@@ -53,7 +53,7 @@ READINGS: dict[str, Path] = {
     name: ("readings", name) for name in Readings.model_fields if name not in _OTHER_READINGS
 } | BOARD | TIMES  # fmt: skip
 DEVICES = ("overcurrent_device", "breaking_capacity_ka", "residual_current_device")
-BESIDES = ("reading_method", "conductor_material", "conductor_insulation")
+BESIDES = ("reading_method", "reading_state", "conductor_material", "conductor_insulation")
 COLUMNS = (*WORDS, *NUMBERS, *CONDUCTORS, *READINGS, *DEVICES, *BESIDES, *OTHERS)
 PATHS: dict[str, Path] = {
     **WORDS, **NUMBERS, **CONDUCTORS, **READINGS, **OTHERS,

@@ -98,6 +98,9 @@ def read_cells(cells: Mapping[str, str], number: int, form: Format, stored: Stor
             _asked("rules", cells["rules"], "by which rule set? the file has the column, so none is assumed")
         )
     body: Body = {"point": {"label": said.get("point_id") or f"row {number}"}}
+    if "earthing" in said and said["earthing"].casefold() not in CHOICES["earthing"]:
+        # Everything else hangs on it, so it is told even where the row is held for another cell.
+        told.faults.append(Fault("earthing", "unknown-word", f"{', '.join(CHOICES['earthing'].values())} is expected"))
     for column, path in WORDS.items():
         if column in said:
             _put(body, path, CHOICES.get(column, {}).get(said[column].casefold(), said[column]))
@@ -197,9 +200,10 @@ def _put_unearthed(body: Body, said: Mapping[str, str], told: Told, form: Format
     if "outlets" in said and not _whole(said["outlets"]):
         told.questions.append(_asked("outlets", said["outlets"], "a whole number is expected"))
     cells = {name: value for name in ITEMS if (value := _plain(said, name, told, form)) is not None}
-    if asked := items_fault(cells):
+    unread = {question.where for question in told.questions} & set(ITEMS)
+    if not unread and (asked := items_fault(cells)):
         told.questions.append(_asked(asked[0], said.get(asked[0], ""), asked[1]))
-    elif (items := items_of(cells)) is not None:
+    elif not unread and (items := items_of(cells)) is not None:
         _put(body, ("separated_supply", "items"), items)
 
 
@@ -224,6 +228,8 @@ def _put_readings(body: Body, said: Mapping[str, str], told: Told, form: Format)
             if column == "earth_fault_loop_impedance_ohm" and "reading_method" in said:
                 method = said["reading_method"]
                 reading["method"] = CHOICES["reading_method"].get(method.casefold(), method)
+            if column == "earth_fault_loop_impedance_ohm" and "reading_state" in said:
+                reading["state"] = said["reading_state"]
             _put(body, path, reading)
 
 

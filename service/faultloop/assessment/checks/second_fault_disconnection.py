@@ -131,13 +131,16 @@ def _apart(cases: Cases, points: Points, q: Quantities, loop: Interval, limit: A
     """Exposed parts with electrodes of their own need residual devices, as on TT; settled in its own words."""
     assert q.insulated is not None
     apart, device = q.insulated.apart, q.residual
-    no_device = np.isnan(points.number(Number.RESIDUAL_MA))
-    cases.when(apart & no_device, Standing.UNDETERMINED, "apart-without-residual-device")
+    # Without a residual device the overcurrent device would have to do, which few electrodes allow.
+    no_device, operating = np.isnan(points.number(Number.RESIDUAL_MA)), q.operating_current
+    nothing = no_device & ~(operating < np.inf)
+    cases.when(apart & nothing, Standing.UNDETERMINED, "apart-without-residual-device")
     cases.when(apart & ~q.given.known[Reading.ELECTRODE], Standing.UNDETERMINED, "apart-electrode-missing")
     cases.when(apart & device.over_limit, Standing.UNMET, "device-over-time", defect=True)
-    cases.when(apart & ~device.tested, Standing.UNDETERMINED, "operating-time-missing")
+    cases.when(apart & ~no_device & ~device.tested, Standing.UNDETERMINED, "operating-time-missing")
     electrode = q.given.reading(Reading.ELECTRODE)
-    most = 1000.0 * q.rule("touch_voltage") / points.number(Number.RESIDUAL_GREATEST_MA)
+    residual_a = points.number(Number.RESIDUAL_GREATEST_MA) / 1000.0
+    most = q.rule("touch_voltage") / np.where(no_device, operating, residual_a)
     cases.when(apart & (electrode.greatest <= most), Standing.MET, "apart-within-limit")
     cases.when(apart & (electrode.least > most), Standing.UNMET, "apart-over-limit")
     cases.when(apart, Standing.UNDETERMINED, "apart-limit-inside-uncertainty")
