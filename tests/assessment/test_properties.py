@@ -12,7 +12,8 @@ from hypothesis import strategies as st
 
 from faultloop import assess, assess_many
 from faultloop.assessment.checks import CHECKS
-from faultloop.assessment.points import EARTHED, Earthing, from_rows
+from faultloop.assessment.codes import EARTHED, Earthing
+from faultloop.assessment.points import from_rows
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.answers import Assessment

@@ -11,14 +11,19 @@ import tempfile
 from pathlib import Path
 from statistics import median
 
-from faultloop.exchange.examples import EXAMPLE_BENCH
+from faultloop.exchange.examples import EXAMPLE_BENCH, EXAMPLE_SEPARATED
 from faultloop.records.database import open_engine
 from faultloop.records.migrate import migrate
 from tests.assessment.bench_bodies import Body, clip_case
 from tests.benchmarks.http_speed import alternated, server
 from tests.benchmarks.load import http
 
-BENCHES: dict[str, Body] = {"2 items": EXAMPLE_BENCH, "9 items": clip_case()}
+# What is asked, of which bare route, and of which of the service.
+ASKED: dict[str, tuple[Body, str, str]] = {
+    "a separated supply": (EXAMPLE_SEPARATED, "/bare-supply", "/v1/separated-supplies"),
+    "a bench of 2 items": (EXAMPLE_BENCH, "/bare-bench", "/v1/bench-networks"),
+    "a bench of 9 items": (clip_case(), "/bare-bench", "/v1/bench-networks"),
+}
 
 
 def main() -> None:
@@ -37,11 +42,11 @@ def main() -> None:
             server(["tests.benchmarks.bare:app"], single, "/openapi.json") as bare,
             server(factory, {"FAULTLOOP_DATABASE_URL": url, **single}, "/health/live") as port,
         ):
-            for name, body in BENCHES.items():
+            for name, (body, beside, path) in ASKED.items():
                 sent = json.dumps(body).encode()
                 targets = {
-                    "bare": (bare, lambda sent=sent: http("POST", "/bare-bench", sent)),
-                    "bench": (port, lambda sent=sent: http("POST", "/v1/bench-networks", sent)),
+                    "bare": (bare, lambda sent=sent, path=beside: http("POST", path, sent)),
+                    "bench": (port, lambda sent=sent, path=path: http("POST", path, sent)),
                 }
                 found = alternated(targets, connections=1, seconds=options.seconds, rounds=options.rounds)
                 times = {target: median(1000.0 * r.quantile(0.5) for r in results) for target, results in found.items()}

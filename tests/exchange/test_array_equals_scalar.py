@@ -10,7 +10,7 @@ from hypothesis import strategies as st
 
 from faultloop import assess
 from faultloop.assessment.checks import CHECKS
-from faultloop.assessment.points import EARTHED, Bound, Number, Reading
+from faultloop.assessment.codes import EARTHED, Bound, Number, Reading
 from faultloop.digests import json_bytes
 from faultloop.exchange.batches import BatchQuery
 from faultloop.exchange.compact import CHECK_IDS

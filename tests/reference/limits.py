@@ -6,9 +6,10 @@ from typing import Any, cast, get_args
 import numpy as np
 
 from faultloop import assess
+from faultloop.assessment.codes import Choice, Current, Earthing, Feeds, Number, Role
 from faultloop.assessment.limits import loop_limit
-from faultloop.assessment.points import Choice, Current, Earthing, Feeds, Number, Role, from_rows
 from faultloop.assessment.points import Row as PointRow
+from faultloop.assessment.points import from_rows
 from faultloop.assessment.rule_table import required_time
 from faultloop.assessment.tables import tables
 from faultloop.electrical.fault_current import prospective_current

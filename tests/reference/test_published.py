@@ -6,7 +6,7 @@ from statistics import NormalDist
 
 import pytest
 
-from faultloop.assessment.points import Current, Earthing
+from faultloop.assessment.codes import Current, Earthing
 from faultloop.digests import rounded
 from tests.reference import examples, limits, quantities, separation, separation_figures
 from tests.reference.exceptions import CONTRADICTED, CUT, UNUSED

@@ -8,11 +8,12 @@ from typing import Any
 import pytest
 
 from faultloop.assessment.checks import CHECKS
+from faultloop.assessment.codes import EARTHED, SEPARATED, Decision, TemperaturePolicy
 from faultloop.assessment.explain import Explainer, Names
 from faultloop.assessment.judged import Condition
 from faultloop.assessment.limits import loop_limit
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import EARTHED, SEPARATED, Decision, TemperaturePolicy, from_rows
+from faultloop.assessment.points import from_rows
 from faultloop.assessment.texts import LANGUAGES, Said, texts
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.mapping import mapped

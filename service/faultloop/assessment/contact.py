@@ -4,8 +4,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Choice, EarthContacts, Number, Reading
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Choice, EarthContacts, Flags, Number, Reading
+from faultloop.assessment.points import Flags
 from faultloop.electrical.circuit_supplies import SeparatedCircuit, single_contact_currents
 from faultloop.electrical.measurement import Array, Interval
 
@@ -82,9 +83,11 @@ def _capacitance(g: Given, voltage: Array) -> tuple[Array, Array, Flags]:
 
 def _driven(g: Given, voltage: Array, stated: Array, pole_nf: Array) -> Driven:
     number, count = g.points.number, g.points.count
-    if np.isnan(voltage).all() or not np.isnan(number(Number.CONTACT_MA)).any():
-        nothing = np.full((2, count), np.nan)
-        return Driven(nothing, nothing, nothing, nothing, nothing)
+    # What was read of every pole or solved elsewhere is not computed beside, unless capacitance was stated.
+    told = np.logical_and(*g.known[POLES]) & (stated == 0.0) | ~np.isnan(number(Number.CONTACT_MA)) | np.isnan(voltage)
+    if told.all():
+        zero, nothing = np.zeros((2, count)), np.full((2, count), np.nan)
+        return Driven(zero, zero, zero, nothing, nothing)
     spread, one = g.rule["separation_capacitance_tolerance"] / 100.0, np.ones(count)
     none = np.zeros(count)
     # What is taken where nothing is stated lies high, and so raises no least.
@@ -107,4 +110,7 @@ def _driven(g: Given, voltage: Array, stated: Array, pole_nf: Array) -> Driven:
         l2_earth_ohm=np.concatenate([np.full(3 * count, np.inf), np.tile(insulation, 2)]),
     )
     found = MILLI * np.array(single_contact_currents(supply, np.tile(g.rule["body_dry"], 5)))
-    return Driven(*(found[:, at * count : (at + 1) * count] for at in range(5)))
+    parts = [found[:, at * count : (at + 1) * count] for at in range(5)]
+    # Where nothing is stated nothing is driven, not even what rounding leaves.
+    counted = (stated > 0.0) & ~np.isnan(voltage)
+    return Driven(*(np.where(counted, part, 0.0) for part in parts[:3]), *parts[3:])

@@ -8,19 +8,19 @@ from functools import lru_cache
 import numpy as np
 
 from faultloop.assessment.checks import CHECKS
-from faultloop.assessment.explain_unearthed import unearthed_columns
-from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import (
+from faultloop.assessment.codes import (
     Choice,
     Decision,
     Earthing,
     LetThrough,
     Method,
     Number,
-    Points,
     Reading,
     TemperaturePolicy,
 )
+from faultloop.assessment.explain_unearthed import unearthed_columns
+from faultloop.assessment.loops import Basis
+from faultloop.assessment.points import Points
 from faultloop.assessment.texts import Said, texts
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.electrical.fault_current import prospective_current

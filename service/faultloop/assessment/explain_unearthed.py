@@ -2,8 +2,9 @@
 
 import numpy as np
 
+from faultloop.assessment.codes import Bound, Number, Reading
 from faultloop.assessment.insulated import Insulated
-from faultloop.assessment.points import Bound, Number, Points, Reading
+from faultloop.assessment.points import Points
 from faultloop.assessment.separated import Separated
 from faultloop.assessment.verdicts import Outcome
 from faultloop.electrical.measurement import Array

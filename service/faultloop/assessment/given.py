@@ -4,13 +4,14 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from faultloop.assessment.points import READINGS, Bound, Choice, Earthing, Flags, MeansOfEarthing, Points, Reading
+from faultloop.assessment.codes import Bound, Choice, Earthing, MeansOfEarthing, Reading, among
+from faultloop.assessment.points import READINGS, Flags, Points
 from faultloop.assessment.rule_table import RuleValues
 from faultloop.assessment.tables import Tables
 from faultloop.electrical.measurement import Array, Interval, expanded_uncertainty
 
 # Supplies whose external loop is all of metal.
-METALLIC = (Earthing.UNKNOWN, Earthing.TN_S, Earthing.TN_C_S, Earthing.TN_C)
+METALLIC = among((Earthing.UNKNOWN, Earthing.TN_S, Earthing.TN_C_S, Earthing.TN_C))
 # Dead tests of the protective conductor: over range they show it open.
 _DEAD_TESTS = [Reading.LINE_PLUS_PROTECTIVE, Reading.PROTECTIVE]
 
@@ -67,7 +68,7 @@ def given(points: Points, tables: Tables) -> Given:
 def _origin_lost(points: Points, rule: RuleValues, external_least: Array) -> Flags:
     """Where the means of earthing is stated as lost, or Ze shows on a TN supply that it is."""
     read = points.bound[Reading.EXTERNAL] != Bound.MISSING
-    metallic = np.isin(points.choice(Choice.EARTHING), METALLIC)
+    metallic = METALLIC[points.choice(Choice.EARTHING)]
     open_loop = metallic & read & (external_least > rule["tn_loop"])
     lost: Flags = (points.choice(Choice.MEANS_OF_EARTHING) == MeansOfEarthing.LOST) | open_loop
     return lost

@@ -4,18 +4,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Bound, Choice, Distributed, Earthing, ExposedParts, Method, Number, Reading
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import (
-    Bound,
-    Choice,
-    Distributed,
-    Earthing,
-    ExposedParts,
-    Flags,
-    Method,
-    Number,
-    Reading,
-)
+from faultloop.assessment.points import Flags
 from faultloop.assessment.policies import by_policy, limit_factor
 from faultloop.electrical.circuit_supplies import InsulatedSupply, current_to_earth
 from faultloop.electrical.fault_current import prospective_current

@@ -6,7 +6,8 @@ from functools import lru_cache
 
 import numpy as np
 
-from faultloop.assessment.points import EARTHED, Codes, Decision, Flags, Ints, Points
+from faultloop.assessment.codes import EARTHED, Codes, Decision
+from faultloop.assessment.points import Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.standing import Standing, Verdict, compare
 from faultloop.electrical.measurement import Array, Interval

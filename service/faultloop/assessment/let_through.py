@@ -4,8 +4,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Number, Reading
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Number, Reading
 from faultloop.electrical.fault_current import prospective_current
 from faultloop.electrical.measurement import Array, Interval
 

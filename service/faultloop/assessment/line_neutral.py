@@ -4,9 +4,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Bound, Choice, Earthing, Method, Number, Reading
 from faultloop.assessment.given import Given
 from faultloop.assessment.loops import Fault, Loops
-from faultloop.assessment.points import Bound, Choice, Earthing, Flags, Method, Number, Reading
+from faultloop.assessment.points import Flags
 from faultloop.electrical.fault_current import heated_loop
 from faultloop.electrical.measurement import Array, Interval, combined, either
 

@@ -4,8 +4,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Bound, Choice, Codes, Method, Number, Reading
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Bound, Choice, Codes, Flags, Ints, Method, Number, Reading
+from faultloop.assessment.points import Flags, Ints
 from faultloop.electrical.conductors import resistance
 from faultloop.electrical.measurement import Array, Interval, combined
 

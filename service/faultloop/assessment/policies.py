@@ -2,8 +2,9 @@
 
 import numpy as np
 
+from faultloop.assessment.codes import Choice, TemperaturePolicy
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Choice, Points, TemperaturePolicy
+from faultloop.assessment.points import Points
 from faultloop.electrical.measurement import Array, Interval, either
 
 

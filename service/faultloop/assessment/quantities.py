@@ -4,23 +4,13 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Choice, Codes, Current, Earthing, Number, Reading, Role, among
 from faultloop.assessment.given import Given, given
 from faultloop.assessment.insulated import Insulated, insulated
 from faultloop.assessment.let_through import LetThroughEnergy, let_through
 from faultloop.assessment.line_neutral import LineNeutral, line_neutral
 from faultloop.assessment.loops import Basis, Loops, loops
-from faultloop.assessment.points import (
-    Choice,
-    Codes,
-    Current,
-    Earthing,
-    Flags,
-    Ints,
-    Number,
-    Points,
-    Reading,
-    Role,
-)
+from faultloop.assessment.points import Flags, Ints, Points
 from faultloop.assessment.policies import by_policy, limit_factor
 from faultloop.assessment.residual_times import ResidualTimes, residual_times
 from faultloop.assessment.rule_table import required_time
@@ -35,7 +25,7 @@ from faultloop.electrical.fault_current import heated_loop, prospective_current
 from faultloop.electrical.measurement import Array, Interval
 
 AT_MOST = np.array(1)
-COVERED = (Earthing.TN_S, Earthing.TN_C_S, Earthing.TT, Earthing.IT)
+COVERED = among((Earthing.TN_S, Earthing.TN_C_S, Earthing.TT, Earthing.IT))
 # Nominal voltages are rounded: 230/400 V is not quite the square root of three.
 SYSTEM_RATIO_TOLERANCE = 0.1
 
@@ -156,7 +146,7 @@ def shared(points: Points, tables: Tables) -> Quantities:
 
 def _wanting(g: Given, required: Array) -> Ints:
     points, earthing = g.points, g.points.choice(Choice.EARTHING)
-    covered = np.isin(earthing, COVERED)
+    covered = COVERED[earthing]
     rows = g.rule.table.nominal[points.choice(Choice.RULES)]
     nominal = (points.number(Number.VOLTAGE)[:, None] == rows).any(axis=1)
     no_role = points.choice(Choice.ROLE) == Role.UNKNOWN

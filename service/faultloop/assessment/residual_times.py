@@ -4,8 +4,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Bound, Choice, Number, Reading
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Bound, Choice, Flags, Number, Reading
+from faultloop.assessment.points import Flags
 from faultloop.electrical.measurement import Array, Interval
 from faultloop.protection.catalogue import catalogue
 

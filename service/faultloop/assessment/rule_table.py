@@ -5,21 +5,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from faultloop.assessment.points import (
-    READINGS,
-    Choice,
-    Current,
-    Earthing,
-    ExposedParts,
-    Feeds,
-    Flags,
-    Ints,
-    Method,
-    Number,
-    Points,
-    Reading,
-    Role,
-)
+from faultloop.assessment.codes import Choice, Current, Earthing, ExposedParts, Feeds, Method, Number, Reading, Role
+from faultloop.assessment.points import READINGS, Flags, Ints, Points
 from faultloop.electrical.measurement import Array
 from faultloop.rules.sheets import RuleSet
 from faultloop.rules.strict import Parameter

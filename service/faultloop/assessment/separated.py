@@ -4,9 +4,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Bound, Choice, EarthContacts, Earthing, Number, Reading, Reference
 from faultloop.assessment.contact import Contact, contact
 from faultloop.assessment.given import Given
-from faultloop.assessment.points import Bound, Choice, EarthContacts, Earthing, Flags, Number, Reading, Reference
+from faultloop.assessment.points import Flags
 from faultloop.assessment.policies import by_policy, limit_factor
 from faultloop.assessment.rule_table import final_time
 from faultloop.electrical.body import discharge_time, stored_energy

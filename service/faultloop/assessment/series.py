@@ -4,7 +4,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from faultloop.assessment.points import Choice, Ints, Points
+from faultloop.assessment.codes import Choice
+from faultloop.assessment.points import Ints, Points
 from faultloop.electrical.measurement import Array
 from faultloop.protection.band import faster
 

@@ -4,9 +4,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from faultloop.assessment.codes import Choice, Feeds, Number
 from faultloop.assessment.given import Given
 from faultloop.assessment.insulated import Insulated
-from faultloop.assessment.points import Choice, Feeds, Flags, Number
+from faultloop.assessment.points import Flags
 from faultloop.assessment.residual_times import ResidualTimes
 from faultloop.assessment.separated import Separated
 from faultloop.electrical.body import severity_ratio

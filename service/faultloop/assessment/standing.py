@@ -2,7 +2,8 @@
 
 import numpy as np
 
-from faultloop.assessment.points import Codes, Decision, Ints
+from faultloop.assessment.codes import Codes, Decision
+from faultloop.assessment.points import Ints
 from faultloop.electrical.measurement import Array, Interval
 
 

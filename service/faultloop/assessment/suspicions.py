@@ -4,7 +4,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from faultloop.assessment.points import Bound, Flags, Ints, Reading
+from faultloop.assessment.codes import Bound, Reading
+from faultloop.assessment.points import Flags, Ints
 from faultloop.electrical.measurement import Array
 
 # So many points must show it before chance is a poor explanation (assumptions; no standard sets them).

@@ -2,7 +2,8 @@
 
 import numpy as np
 
-from faultloop.assessment.points import Codes, Flags, Ints, Points, Reading
+from faultloop.assessment.codes import Codes, Reading
+from faultloop.assessment.points import Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.standing import Verdict
 

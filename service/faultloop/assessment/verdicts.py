@@ -6,8 +6,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.checks import CHECKS
+from faultloop.assessment.codes import Choice
 from faultloop.assessment.judged import Condition, Judged, Settled, Standing, Verdict, compare, settled, unjudged
-from faultloop.assessment.points import Choice, Flags, Ints, Points
+from faultloop.assessment.points import Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities, shared
 from faultloop.assessment.standing import STANDING_VERDICT
 from faultloop.assessment.tables import Tables, tables

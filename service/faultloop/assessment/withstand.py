@@ -2,7 +2,8 @@
 
 import numpy as np
 
-from faultloop.assessment.points import Choice, Flags, Number, Points
+from faultloop.assessment.codes import Choice, Number
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.series import greatest_time
 from faultloop.electrical.conductors import ADIABATIC_FROM_S, withstand_time
 from faultloop.electrical.measurement import Array

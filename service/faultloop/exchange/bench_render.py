@@ -10,7 +10,7 @@ from faultloop.assessment.benches.solving import SolvedBench, solve_bench
 from faultloop.assessment.benches.states import INTRUSION, State
 from faultloop.assessment.benches.texts import bench_texts
 from faultloop.assessment.benches.typical import typical
-from faultloop.assessment.points import Codes
+from faultloop.assessment.codes import Codes
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.texts import LANGUAGES, texts
 from faultloop.assessment.urgency import Urgency

@@ -13,7 +13,7 @@ from faultloop.assessment.benches.solving import Ends, SolvedBench
 from faultloop.assessment.benches.texts import BenchTexts
 from faultloop.assessment.benches.ties import APART, Standing, Ties
 from faultloop.assessment.benches.typical import typical
-from faultloop.assessment.points import PlannedLink
+from faultloop.assessment.codes import PlannedLink
 from faultloop.digests import rounded
 from faultloop.exchange.bench_networks import BenchContact
 from faultloop.rules.sheets import RuleSet

@@ -6,7 +6,8 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from faultloop.assessment.points import Bound, Points, from_rows
+from faultloop.assessment.codes import Bound
+from faultloop.assessment.points import Points, from_rows
 from faultloop.assessment.suspicions import Suspicion, suspicions
 from faultloop.assessment.verdicts import decide
 from faultloop.exchange.compact import Compact, compact

@@ -4,7 +4,8 @@ from collections.abc import Sequence
 
 import numpy as np
 
-from faultloop.assessment.points import Bound, Choice, Method, Number, Polarity, Reading, Row
+from faultloop.assessment.codes import Bound, Choice, Method, Number, Polarity, Reading
+from faultloop.assessment.points import Row
 from faultloop.exchange import overcurrent as oc
 from faultloop.exchange import requests as rq
 from faultloop.exchange.fields import Instrument

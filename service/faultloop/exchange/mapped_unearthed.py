@@ -4,7 +4,7 @@ import math
 
 import numpy as np
 
-from faultloop.assessment.points import (
+from faultloop.assessment.codes import (
     Bound,
     Choice,
     Distributed,

@@ -5,8 +5,7 @@ from functools import lru_cache
 
 import numpy as np
 
-from faultloop.assessment.points import (
-    NO_DEVICE,
+from faultloop.assessment.codes import (
     Choice,
     Current,
     Decision,
@@ -16,10 +15,10 @@ from faultloop.assessment.points import (
     MeansOfEarthing,
     Number,
     Role,
-    Row,
     TemperaturePolicy,
     Users,
 )
+from faultloop.assessment.points import NO_DEVICE, Row
 from faultloop.assessment.tables import Tables, tables
 from faultloop.electrical.measurement import coverage_scale
 from faultloop.exchange import overcurrent as oc

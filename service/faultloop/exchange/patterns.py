@@ -8,7 +8,7 @@ from collections.abc import Callable, Hashable, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any, NamedTuple
 
-from faultloop.assessment.points import Number, Reading
+from faultloop.assessment.codes import Number, Reading
 from faultloop.digests import json_bytes
 from faultloop.exchange.columns import COLUMNS, TIMES, FileRefused, unknown
 from faultloop.exchange.mapped_readings import PLAIN_READINGS

@@ -6,8 +6,9 @@ from typing import Any
 
 import numpy as np
 
+from faultloop.assessment.codes import EARTHED, Choice, Number
 from faultloop.assessment.loops import Fault
-from faultloop.assessment.points import EARTHED, Choice, Flags, Number, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.verdicts import ROWS, Outcome
 from faultloop.digests import rounded_all

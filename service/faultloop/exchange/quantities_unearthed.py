@@ -4,7 +4,8 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from faultloop.assessment.points import Flags, Number, Points
+from faultloop.assessment.codes import Number
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.separated import Separated
 from faultloop.assessment.verdicts import Outcome
 from faultloop.electrical.measurement import Array, Interval

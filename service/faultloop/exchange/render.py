@@ -9,19 +9,11 @@ import numpy as np
 
 from faultloop import __version__
 from faultloop.assessment.checks import CHECKS
+from faultloop.assessment.codes import EARTHED, INSULATED, SEPARATED, Choice, Earthing, Reading
 from faultloop.assessment.explain import Explainer, Names, Quoted, cautions_of
 from faultloop.assessment.judged import Check
 from faultloop.assessment.loops import Basis
-from faultloop.assessment.points import (
-    EARTHED,
-    INSULATED,
-    SEPARATED,
-    Choice,
-    Earthing,
-    Points,
-    Reading,
-    from_rows,
-)
+from faultloop.assessment.points import Points, from_rows
 from faultloop.assessment.standing import Verdict
 from faultloop.assessment.texts import LANGUAGES, Texts, texts
 from faultloop.assessment.urgency import Urgency

@@ -9,7 +9,8 @@ from faultloop.assessment.benches.contacts import worked_at
 from faultloop.assessment.benches.network import Item, Supply
 from faultloop.assessment.benches.solving import Ends, SolvedBench
 from faultloop.assessment.benches.states import AS_FOUND, LIFTED
-from faultloop.assessment.points import Choice, EarthContacts, Ints, Number, PlannedLink, Points, Reference
+from faultloop.assessment.codes import Choice, EarthContacts, Number, PlannedLink, Reference
+from faultloop.assessment.points import Ints, Points
 from faultloop.electrical.measurement import Array
 
 MILLI = 1000.0

@@ -6,7 +6,8 @@ import numpy as np
 
 from faultloop.assessment.benches.network import Supply
 from faultloop.assessment.benches.solving import Ends, SolvedBench
-from faultloop.assessment.points import Ints, PlannedLink
+from faultloop.assessment.codes import PlannedLink
+from faultloop.assessment.points import Ints
 
 
 @dataclass(frozen=True, slots=True)

@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
+from faultloop.assessment.codes import EARTHED, INSULATED, Choice, Feeds, Number, Role, Users
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import EARTHED, INSULATED, Choice, Feeds, Flags, Ints, Number, Points, Role, Users
+from faultloop.assessment.points import Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 from faultloop.protection.catalogue import catalogue

@@ -9,8 +9,9 @@ from faultloop.assessment.checks.common import (
     loop_is_wanting,
     prerequisites_are_wanting,
 )
+from faultloop.assessment.codes import Choice, Number
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import Choice, Flags, Number, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (

@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.codes import EARTHED, INSULATED, SEPARATED, Choice, Number, Reading
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import EARTHED, INSULATED, SEPARATED, Choice, Flags, Number, Points, Reading
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.separated import Separated
 from faultloop.electrical.fault_current import prospective_current

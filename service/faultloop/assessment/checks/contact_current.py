@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.codes import SEPARATED
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Flags, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (*COMPARISON, "extra-low-voltage", "voltage-unknown", "not-read", "not-all-known")

@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
+from faultloop.assessment.codes import Choice, Earthing, Number
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import Choice, Earthing, Flags, Number, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (

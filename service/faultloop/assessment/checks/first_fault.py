@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.codes import INSULATED, Choice, Current, Reading
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import INSULATED, Choice, Current, Flags, Points, Reading
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (

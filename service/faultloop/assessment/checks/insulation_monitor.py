@@ -2,8 +2,9 @@
 
 import numpy as np
 
+from faultloop.assessment.codes import INSULATED, Choice, Monitor, Number, Reading
 from faultloop.assessment.judged import AT_LEAST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import INSULATED, Choice, Flags, Monitor, Number, Points, Reading
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (

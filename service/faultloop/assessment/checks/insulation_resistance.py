@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.codes import EARTHED, INSULATED, SEPARATED, Bound, Reading
 from faultloop.assessment.judged import AT_LEAST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import EARTHED, INSULATED, SEPARATED, Bound, Flags, Points, Reading
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (*COMPARISON, "not-measured", "beyond-instruments", "over-range-below-limit")

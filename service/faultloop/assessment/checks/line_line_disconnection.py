@@ -2,8 +2,9 @@
 
 import numpy as np
 
+from faultloop.assessment.codes import SEPARATED, Choice, Number, Reading
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
-from faultloop.assessment.points import SEPARATED, Choice, Flags, Number, Points, Reading
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.withstand import withstands
 

@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
+from faultloop.assessment.codes import EARTHED, INSULATED, Choice, Number, Reading
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing, Verdict, compare
-from faultloop.assessment.points import EARTHED, INSULATED, Choice, Flags, Number, Points, Reading
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.policies import by_policy
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.withstand import withstands

@@ -9,8 +9,9 @@ from faultloop.assessment.checks.common import (
     loop_is_wanting,
     prerequisites_are_wanting,
 )
+from faultloop.assessment.codes import Choice
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing, Verdict
-from faultloop.assessment.points import Choice, Flags, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Array
 

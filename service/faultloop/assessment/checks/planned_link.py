@@ -1,8 +1,9 @@
 """Would a link that is about to be made tie the bench to earth, or carry more than a floating bench can drive?"""
 
 from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.codes import SEPARATED, Choice, Number, PlannedLink
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Choice, Flags, Number, PlannedLink, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 

@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.codes import EARTHED, INSULATED, Choice, Polarity
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import EARTHED, INSULATED, Choice, Flags, Points, Polarity
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 

@@ -3,9 +3,10 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
+from faultloop.assessment.codes import Bound, Choice, Earthing, Number, Reading
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
 from faultloop.assessment.loops import Fault
-from faultloop.assessment.points import Bound, Choice, Earthing, Flags, Number, Points, Reading
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Array, Interval, combined
 

@@ -3,9 +3,10 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES, prerequisites_are_wanting
+from faultloop.assessment.codes import Choice, LetThrough, Number
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing, Verdict
 from faultloop.assessment.loops import Fault
-from faultloop.assessment.points import Choice, Flags, LetThrough, Number, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.series import least_time, upstream_time
 from faultloop.electrical.conductors import ADIABATIC_FROM_S, ADIABATIC_TO_S, let_through_area

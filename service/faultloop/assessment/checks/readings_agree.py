@@ -3,9 +3,10 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.codes import Bound, Choice, Number, Reading
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
 from faultloop.assessment.loops import Basis, Fault
-from faultloop.assessment.points import Bound, Choice, Flags, Number, Points, Reading
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Array, Interval, combined
 

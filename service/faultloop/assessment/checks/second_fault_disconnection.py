@@ -5,18 +5,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON, PREREQUISITES
+from faultloop.assessment.codes import INSULATED, SEPARATED, Choice, EarthContacts, ExposedParts, Number, Reading
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import (
-    INSULATED,
-    SEPARATED,
-    Choice,
-    EarthContacts,
-    ExposedParts,
-    Flags,
-    Number,
-    Points,
-    Reading,
-)
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities, Wanting
 from faultloop.electrical.measurement import Array, Interval, either
 

@@ -2,8 +2,9 @@
 
 import numpy as np
 
+from faultloop.assessment.codes import SEPARATED, Choice, EarthContacts, Number
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Choice, EarthContacts, Flags, Number, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 

@@ -2,8 +2,9 @@
 
 import numpy as np
 
+from faultloop.assessment.codes import SEPARATED, Choice, Current, Number
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Choice, Current, Flags, Number, Points
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 

@@ -2,8 +2,9 @@
 
 import numpy as np
 
+from faultloop.assessment.codes import SEPARATED, Choice, Reading, Reference
 from faultloop.assessment.judged import AT_MOST, Cases, Check, Condition, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Choice, Flags, Points, Reading, Reference
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (

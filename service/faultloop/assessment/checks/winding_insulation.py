@@ -3,8 +3,9 @@
 import numpy as np
 
 from faultloop.assessment.checks.common import COMPARISON
+from faultloop.assessment.codes import SEPARATED, Choice, Number, Reading, Windings
 from faultloop.assessment.judged import AT_LEAST, Cases, Check, Judged, Standing
-from faultloop.assessment.points import SEPARATED, Choice, Flags, Number, Points, Reading, Windings
+from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 
 REASONS = (
