@@ -11,6 +11,8 @@ from faultloop.digests import json_bytes
 from faultloop.exchange.batch_answers import answer
 from faultloop.exchange.batches import BatchQuery
 from faultloop.exchange.judging import judged
+from faultloop.exchange.render import assess_requests
+from faultloop.exchange.separated_supplies import SeparatedSupplyRequest, as_assessment
 from faultloop.exchange.uploads import Upload, read_upload
 
 README = (Path(__file__).parent.parent / "README.md").read_text(encoding="utf-8")
@@ -49,6 +51,11 @@ def test_the_batch_is_answered_as_shown() -> None:
     read = read_upload(upload)
     told = json.loads(json_bytes(answer(judged(read.rows), "x", read.reading, upload.input_digest)))
     _hold(_block("batch answer"), told, "")
+
+
+def test_the_separated_supply_is_answered_as_shown() -> None:
+    asked = as_assessment(SeparatedSupplyRequest.model_validate(_block("separated")))
+    _hold(_block("separated answer"), assess_requests([asked])[0], "")
 
 
 def test_request_is_answered_as_shown() -> None:

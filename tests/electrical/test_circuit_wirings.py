@@ -75,7 +75,8 @@ def test_same_as_the_solver_of_one_shape(told: list[list[Any]], one: int, other:
             continue
         np.testing.assert_allclose(voltage[at, 0], expected, rtol=1e-6, atol=LEFT * 230.0)
         body = current_through(solve(Circuit(elements(network, (one, other)), np.array([50.0]))), "body")[0]
-        np.testing.assert_allclose(current[at, 0], 0.0 if np.isnan(body) else body, rtol=1e-6, atol=LEFT * 230.0 / 1000.0)
+        flowing = 0.0 if np.isnan(body) else body
+        np.testing.assert_allclose(current[at, 0], flowing, rtol=1e-6, atol=LEFT * 230.0 / 1000.0)
 
 
 @given(told=networks)
