@@ -81,7 +81,7 @@ def separated(g: Given, factor: Array) -> Separated:
     read, extra = g.reading(Reading.LINE_LINE), _leads_and_bonding(g)
 
     def outlet(by: Array) -> Interval:
-        return higher(_added(source, Interval(wiring, wiring, wiring), by), _added(_nothing(wiring), read, by))
+        return higher(_added(source, wiring, by), _added(_nothing(voltage), read, by))
 
     def both(by: Array) -> Interval:
         return _added(outlet(by), extra, by)
@@ -106,8 +106,8 @@ def separated(g: Given, factor: Array) -> Separated:
         second_fault=_path(g, voltage, both(factor), both(cold), least),
         # No outlet has less than the transformer that feeds it.
         outlet_contradicts=here & (read.greatest < source.least),
-        wiring_ohm=wiring,
-        conductors_ohm=wiring + extra.nominal,
+        wiring_ohm=wiring.nominal,
+        conductors_ohm=wiring.nominal + extra.nominal,
         class_i=class_i,
         several=several,
         unbonded=several & _unbonded(g),
@@ -155,10 +155,15 @@ def _source(g: Given, voltage: Array) -> Interval:
     )
 
 
-def _wiring(g: Given) -> Array:
-    """Both conductors from the transformer to the outlets, cold; none where no wiring is stated, which is said."""
+def _wiring(g: Given) -> Interval:
+    """Both conductors from the transformer to the outlets, cold; none where no wiring is stated, which is said.
+
+    Wiring of a conductor that is not stated leaves the loop open above.
+    """
     length, per_km = g.points.number(Number.LENGTH_M), g.points.number(Number.LINE_OHM_PER_KM)
-    return np.where(np.isnan(length), 0.0, 2.0 * resistance(per_km, length))
+    both = np.where(np.isnan(length), 0.0, 2.0 * resistance(per_km, length))
+    counted = np.nan_to_num(both)
+    return Interval(counted, np.where(np.isnan(both), np.inf, both), counted)
 
 
 def _nothing(like: Array) -> Interval:

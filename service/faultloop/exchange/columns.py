@@ -85,7 +85,7 @@ def _choices() -> dict[str, dict[str, str]]:
             told = None if model is None else model.model_fields[part].annotation
         if len(path) > 1:
             words[column] = set(_words(told))
-    return {column: {word.casefold(): word for word in told} for column, told in words.items() if told}
+    return {column: {word.casefold(): word for word in sorted(told)} for column, told in words.items() if told}
 
 
 CHOICES = _choices()

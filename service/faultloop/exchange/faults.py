@@ -33,6 +33,8 @@ def _known_fields() -> list[str]:
 
 @lru_cache(maxsize=1024)
 def _nearest(name: str) -> str:
+    if name in _known_fields():
+        return "a field of this name belongs to another part of a request"
     near = get_close_matches(name, _known_fields(), n=1, cutoff=0.75)
     return f"did you mean {near[0]}?" if near else "check the spelling and the unit in its name"
 

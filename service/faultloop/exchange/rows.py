@@ -100,7 +100,8 @@ def read_cells(cells: Mapping[str, str], number: int, form: Format, stored: Stor
     body: Body = {"point": {"label": said.get("point_id") or f"row {number}"}}
     if "earthing" in said and said["earthing"].casefold() not in CHOICES["earthing"]:
         # Everything else hangs on it, so it is told even where the row is held for another cell.
-        told.faults.append(Fault("earthing", "unknown-word", f"{', '.join(CHOICES['earthing'].values())} is expected"))
+        known = f"{', '.join(CHOICES['earthing'].values())} is expected; separated is behind an isolating transformer"
+        told.faults.append(Fault("earthing", "unknown-word", known))
     for column, path in WORDS.items():
         if column in said:
             _put(body, path, CHOICES.get(column, {}).get(said[column].casefold(), said[column]))

@@ -40,7 +40,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     read = q.given.reading(Reading.LINE_LINE)
     cases.when(read.nominal < q.rule("least_plausible"), Standing.UNDETERMINED, "reading-implausible")
     cases.when(found.outlet_contradicts, Standing.UNDETERMINED, "reading-contradicts-plate")
-    cases.when(np.isinf(loop.greatest) & ~q.given.known[Reading.LINE_LINE], Standing.NOT_EXAMINED, "loop-unknown")
+    cases.when(np.isinf(loop.greatest) & ~q.given.known[Reading.LINE_LINE], Standing.UNDETERMINED, "loop-unknown")
     met = compare(loop, limit, np.array(AT_MOST), points.choice(Choice.DECISION)) == Verdict.PASS
     cases.when(met, Standing.MET, "within-limit")
     # A device ahead of the transformer sees another current, and is credited with nothing here.
