@@ -109,6 +109,17 @@ def test_refusals_point_at_the_field(tmp_path: Path) -> None:
     run(tmp_path, work)
 
 
+@pytest.mark.parametrize("percent", [1e-300, 0.4, {"least": 0.0, "greatest": 0.6}])
+def test_a_short_circuit_voltage_that_no_transformer_has_is_refused(tmp_path: Path, percent: Any) -> None:
+    async def work(client: httpx.AsyncClient) -> None:
+        body = small()
+        body["supplies"][1]["transformer"]["short_circuit_voltage_percent"] = percent
+        (error,) = problem(await client.post(URL, json=body), 422)["errors"]
+        assert error["pointer"].startswith("/supplies/1/transformer/short_circuit_voltage_percent")
+
+    run(tmp_path, work)
+
+
 def test_own_rules_decide(tmp_path: Path) -> None:
     """A set of the caller's own that lets less current stand fails the bench that the published one lets pass."""
     strict = {

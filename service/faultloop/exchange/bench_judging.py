@@ -93,11 +93,9 @@ def _transformer(body: BenchTransformer) -> dict[str, Any]:
     if body.short_circuit_voltage_percent is None:
         return told
     percent = stated(body.short_circuit_voltage_percent)
-    if percent.nominal > 0.0:
-        told["short_circuit_voltage_percent"] = percent.nominal
-        if percent.open:
-            width = min(100.0, 100.0 * (percent.greatest - percent.nominal) / percent.nominal)
-            told["short_circuit_tolerance_percent"] = width
+    told["short_circuit_voltage_percent"] = percent.nominal
+    if percent.open:
+        told["short_circuit_tolerance_percent"] = 100.0 * (percent.greatest - percent.nominal) / percent.nominal
     return told
 
 

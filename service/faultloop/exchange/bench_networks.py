@@ -63,10 +63,10 @@ class OhmEnds(Ends):
 
 
 class PercentEnds(Ends):
-    """Two ends between which a share lies."""
+    """Two ends between which a short-circuit voltage lies."""
 
-    least: Annotated[float, number("%", most=100, description="Least")]
-    greatest: Annotated[float, number("%", most=100, description="Greatest")]
+    least: Annotated[float, number("%", least=0.5, most=100, description="Least")]
+    greatest: Annotated[float, number("%", least=0.5, most=100, description="Greatest")]
 
 
 # A number, or two ends between which it lies; left out it is unknown, and never zero.
@@ -81,7 +81,7 @@ Ohms = Annotated[
     Discriminator(_shape),
 ]
 Percent = Annotated[
-    Annotated[Annotated[float, number("%", most=100, description="Share")], Tag("number")]
+    Annotated[Annotated[float, number("%", least=0.5, most=100, description="Short-circuit voltage")], Tag("number")]
     | Annotated[PercentEnds, Tag("range")],
     Discriminator(_shape),
 ]
