@@ -107,7 +107,7 @@ def bodies(draw: st.DrawFn, *, planned: bool | None = None) -> Body:
     items = []
     for at in range(draw(st.integers(1, 4))):
         ground = draw(st.sampled_from([None, "earthed", "floating", "resistance"]))
-        live = draw(st.sampled_from([None, None, "L1", "L2"]))
+        live = draw(st.sampled_from([None, None, "none", "L1", "L2"]))
         items.append(
             _without_nothing(
                 {

@@ -74,7 +74,7 @@ def _feeding(request: BenchRequest) -> Iterator[Fault]:
         if ground is not None and ground.kind != "resistance" and ground.resistance_ohm is not None:
             told = "a resistance goes with the kind resistance; here leave it out"
             yield ("items", at, "signal_ground", "resistance_ohm"), "resistance_not_asked", told
-        if item.chassis_resistance_ohm is not None and item.live_chassis is None:
+        if item.chassis_resistance_ohm is not None and item.live_chassis not in ("L1", "L2"):
             told = "say by live_chassis which pole the chassis is joined to"
             yield ("items", at, "chassis_resistance_ohm"), "chassis_not_live", told
     for at, supply in enumerate(request.supplies):

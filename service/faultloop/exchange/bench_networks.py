@@ -174,7 +174,10 @@ class BenchItem(Closed):
         default=None, description="Each line conductor to its case, or to signal ground for class II [nF]"
     )
     signal_ground: SignalGround | None = None
-    live_chassis: Literal["L1", "L2"] | None = Field(default=None, description="Pole that its chassis is joined to")
+    live_chassis: Literal["none", "L1", "L2"] | None = Field(
+        default=None,
+        description="Pole that its chassis is joined to, or none; left out it is unknown for an item worked at",
+    )
     chassis_resistance_ohm: Ohms | None = Field(default=None, description="Between chassis and pole [ohm]")
     load_resistance_ohm: Ohms | None = Field(default=None, description="What it draws, as a resistance [ohm]")
     lead: CorePair | None = Field(default=None, description="Its flexible lead, for a second fault")

@@ -1,6 +1,7 @@
 """All states of a bench solved at once: potentials, ties to earth, contact currents, currents of the sources."""
 
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
 from functools import cached_property
 from itertools import combinations
 
@@ -8,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from faultloop.assessment.benches.contacts import Contact, accessible, usual_contacts, worked_at
-from faultloop.assessment.benches.network import EARTH, Bench, Link, node_names
+from faultloop.assessment.benches.network import EARTH, Bench, Link, Span, node_names
 from faultloop.assessment.benches.states import UNPLUGGED, States, states_of
 from faultloop.assessment.benches.typical import typical
 from faultloop.assessment.benches.wires import Part, Variant, Wire, meanings, present, wires_of
@@ -220,20 +221,40 @@ def open_resistances(bench: Bench) -> list[Part]:
 def variants_of(bench: Bench) -> tuple[Variant, ...]:
     """What is solved beside the nominal: both ends of all that is not known, and the primary poled either way.
 
-    Of resistances that are not known every choice of ends is solved, with all capacitances at their greatest.
+    Of resistances that are not known every choice of ends is solved, with all capacitances at their greatest; the
+    windings pull a pole one way and what leads to earth the other, so these are put at opposite ends too.  A chassis
+    that nobody described is put at either pole, one by one and all together.
     """
-    spans = [span for supply in bench.supplies for span in (supply.source_ohm, supply.cable_nf, supply.interwinding_nf)]
-    spans += [span for item in bench.items for span in (item.filter_nf, item.ground_nf, item.load_ohm)]
+    windings = [supply.interwinding_nf for supply in bench.supplies]
+    others = [supply.cable_nf for supply in bench.supplies]
+    others += [span for item in bench.items for span in (item.filter_nf, item.ground_nf)]
+    spans = [supply.source_ohm for supply in bench.supplies] + [item.load_ohm for item in bench.items]
     parts = open_resistances(bench)
-    found = [("nominal", frozenset[Part]())]
-    if parts or any(span is not None and span.open for span in spans):
-        found += [("low", frozenset()), ("high", frozenset())]
+    found = [Variant("nominal", reversed=False)]
+    if parts or _any_open([*windings, *others, *spans]):
+        found += [Variant(level, reversed=False) for level in ("low", "high")]
+    if _any_open(windings) and _any_open(others):
+        found += [Variant("high", reversed=False, least=which) for which in ("windings", "others")]
     chosen = (some for size in range(1, len(parts) + 1) for some in combinations(parts, size))
-    found += [("high", frozenset(some)) for some in chosen]
+    found += [Variant("high", reversed=False, against=frozenset(some)) for some in chosen]
+    found += [Variant("high", reversed=False, chassis=joined) for joined in _chassis(bench)]
     unscreened = [supply.interwinding_nf for supply in bench.supplies if not supply.screen]
     poled = any(windings is not None and windings.greatest > 0.0 for windings in unscreened)
     turns = (False, True) if poled else (False,)
-    return tuple(Variant(level, turned, against) for turned in turns for level, against in found)
+    return tuple(replace(variant, reversed=turned) for turned in turns for variant in found)
+
+
+def _any_open(spans: Sequence[Span | None]) -> bool:
+    return any(span is not None and span.open for span in spans)
+
+
+def _chassis(bench: Bench) -> list[frozenset[tuple[str, str]]]:
+    """Ways in which chassis that nobody described may be joined to poles: each by itself, and all of them."""
+    items = [item.id for item in bench.items if item.chassis_open]
+    found = [frozenset([(item, which)]) for item in items for which in ("L1", "L2")]
+    if len(items) > 1:
+        found += [frozenset((item, which) for item in items) for which in ("L1", "L2")]
+    return found
 
 
 def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:

@@ -40,6 +40,10 @@ class Variant:
     level: str
     reversed: bool
     against: frozenset[Part] = frozenset()
+    # What stands at its least while all other capacitances are at their greatest: "windings", or "others" than these.
+    least: str = ""
+    # Items whose chassis nobody described, with the pole that it is joined to here; all others stand apart.
+    chassis: frozenset[tuple[str, str]] = frozenset()
 
     def ohm(self, span: Span, part: Part | None = None) -> float:
         """A resistance; of parts that stand against the level it is the other end."""
@@ -93,10 +97,16 @@ class Wiring:
         """Admittance of a transformer's impedance in each variant, taken as leakage: it makes no contact smaller."""
         return tuple(-1j * y for y in self.resistance(span))
 
-    def capacitance(self, span: Span, share: float = 1.0) -> Siemens:
+    def capacitance(self, span: Span, share: float = 1.0, sort: str = "others") -> Siemens:
         """Admittance of a capacitance in each variant."""
         ends = {"low": span.least, "nominal": span.nominal, "high": span.greatest}
-        return tuple(complex(0.0, self.omega * ends[variant.level] * share * 1e-9) for variant in self.variants)
+        levels = ("low" if variant.least == sort else variant.level for variant in self.variants)
+        return tuple(complex(0.0, self.omega * ends[level] * share * 1e-9) for level in levels)
+
+    def perhaps(self, item: Item, which: str) -> Siemens:
+        """Admittance between a pole and a chassis of which nobody said whether it is joined to one."""
+        joined = 1.0 / typical().joined_directly.usual
+        return tuple(complex(joined) if (item.id, which) in variant.chassis else 0j for variant in self.variants)
 
     def put(
         self,
@@ -164,14 +174,16 @@ def _put_supply(wiring: Wiring, supply: Supply, *holds: Holds) -> None:
 
 def _put_windings(wiring: Wiring, supply: Supply, interwinding_nf: Span, *holds: Holds) -> None:
     """Half of the windings' capacitance at each pole: to the screen, else to the primary's ends, poled either way."""
-    half = wiring.capacitance(interwinding_nf, 0.5)
+    half = wiring.capacitance(interwinding_nf, 0.5, "windings")
     for pole, turned in ((supply.l1, False), (supply.l2, True)):
         if supply.screen:
             wiring.put("interwinding", supply.id, pole, EARTH, half, *holds)
             continue
         live = tuple(y if variant.reversed is turned else 0j for y, variant in zip(half, wiring.variants, strict=True))
         dead = tuple(y - other for y, other in zip(half, live, strict=True))
-        wiring.put("interwinding", supply.id, pole, EARTH, live, *holds, emf=supply.primary_v)
+        # Turned over, the other pole lies beside the live end, and the primary stands against the secondary in phase.
+        emf = -supply.primary_v if turned else supply.primary_v
+        wiring.put("interwinding", supply.id, pole, EARTH, live, *holds, emf=emf)
         wiring.put("interwinding", supply.id, pole, EARTH, dead, *holds)
 
 
@@ -185,6 +197,9 @@ def _put_item(wiring: Wiring, at: int, item: Item) -> None:
         if item.filter_nf is not None:
             for pole in (l1, l2):
                 wiring.put("filter", item.id, pole, item.filtered_to, wiring.capacitance(item.filter_nf), here)
+        if item.chassis_open:
+            for which, pole in (("L1", l1), ("L2", l2)):
+                wiring.put("chassis", item.id, pole, item.chassis, wiring.perhaps(item, which), here)
         if item.live_chassis is not None and item.chassis_ohm is not None:
             pole = l1 if item.live_chassis == "L1" else l2
             wiring.put(
