@@ -6,7 +6,7 @@ import pytest
 
 from faultloop import bench_network
 from tests.assessment.bench_bodies import CLIP, Body, small
-from tests.assessment.test_benches import contact, greatest, node
+from tests.assessment.test_benches import change, contact, greatest, node
 
 OMEGA = 2.0 * math.pi * 50.0
 
@@ -82,3 +82,50 @@ def test_potentials_mix_the_ends_of_windings_and_wiring() -> None:
     most = (230 * 0.5 + 230 * (0.5 + 0.1)) / (2 * (0.5 + 0.1))
     assert told["greatest"] == pytest.approx(most, rel=2e-3)
     assert told["least"] == pytest.approx(230 * 0.1 / (2 * 0.6), rel=2e-3)
+
+
+# ---- instruments that stand at a pole --------------------------------------------------------------------------
+
+
+def floated(protection_class: str, fed_by: str) -> Body:
+    """An instrument that nothing earths, clipped to a pole."""
+    body = small()
+    body["supplies"].append({"id": "cell", "kind": "battery"})
+    body["items"][1] = {
+        "id": "scope",
+        "fed_by": fed_by,
+        "protection_class": protection_class,
+        "role": "instrument",
+        "filter_capacitance_nf": 1.0,
+        "signal_ground": {"kind": "floating"},
+    }
+    body["links"] = [CLIP]
+    return body
+
+
+@pytest.mark.parametrize(("protection_class", "fed_by"), [("I", "iso"), ("II", "iso"), ("II", "cell")])
+def test_an_instrument_at_a_pole_is_no_pass(protection_class: str, fed_by: str) -> None:
+    answer = bench_network(floated(protection_class, fed_by))
+    assert answer["as_found"]["live_parts"] == ["scope.signal_ground"]
+    assert answer["verdict"] == "fail"
+    assert answer["urgency"] == "stop-use"
+    reasons = {found["check"]: found["reason"] for found in answer["findings"]}
+    assert reasons["separation"] == "part-at-pole"
+    contact(answer, "scope.signal_ground")  # and to earth
+    hand = contact(answer, "scope.signal_ground", "iso.L1")
+    assert hand["kind"] == "part-to-pole"
+    assert hand["hands"] == "two"
+    assert hand["as_found"]["current_ma"]["greatest"] == pytest.approx(230.0, rel=2e-3)
+    off = change(answer, "remove-link", "clip")
+    assert off["live_parts"] == []
+
+
+def test_an_instrument_at_a_chassis_that_may_be_live_is_undetermined() -> None:
+    body = television()
+    body["supplies"].append({"id": "cell", "kind": "battery"})
+    body["items"][1] |= {"fed_by": "cell", "protection_class": "II"}
+    body["items"][1]["signal_ground"] = {"kind": "floating"}
+    answer = bench_network(body)
+    assert answer["verdict"] == "undetermined"
+    assert answer["urgency"] == "stop-use"
+    assert "scope.signal_ground may then be joined to a pole" in answer["planned_link"]["text"]

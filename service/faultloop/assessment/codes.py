@@ -265,6 +265,9 @@ class Reference(Codes):
     UNKNOWN = 0
     FLOATING = 1
     EARTHED = 2
+    # Nothing is earthed, but a part of an instrument that anybody may touch stands at a pole, or may stand there.
+    PART_AT_POLE = 3
+    PART_PERHAPS = 4
 
 
 class Windings(Codes):

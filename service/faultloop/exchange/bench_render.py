@@ -122,7 +122,8 @@ class _Answer:
         contact, _, most = self._words.worst(state)
         limit = self._words.rules.separation.contact_most.value
         words = {"yes": "tied", "perhaps": "may-be-tied"}.get(told["tied"])
-        words = words or ("instrument-live" if told["live_parts"] else None)
+        if words is None and told["live_parts"]:
+            words = "instrument-live" if self._words.live(state, surely=True) else "instrument-perhaps-live"
         words = words or ("helps" if most <= limit else "floats-too-much")
         text = self._words.texts.outcomes[words].format(
             change=self.change_words(change),

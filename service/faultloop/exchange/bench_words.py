@@ -125,7 +125,7 @@ class BenchWords:
 
     def contacts(self) -> list[Body]:
         """The usual contacts and those asked for; pairs of parts that are one node are no contact."""
-        told = usual_contacts(self.solved.bench)
+        told = [*usual_contacts(self.solved.bench), *self._live_contacts()]
         asked = {frozenset((of.one, of.other)) for of in self.asked}
         usual = {frozenset((of.one, of.other)) for of in told}
         told += [Contact("asked", of.one, of.other) for of in self.asked if frozenset((of.one, of.other)) not in usual]
@@ -134,7 +134,7 @@ class BenchWords:
         # Parts that stand together in every state that is told are one part.
         one: list[bool] = np.all(between < ONE_NODE_V, axis=0).tolist()
         for column, contact in enumerate(told):
-            if contact.kind == "part-to-part" and one[column] and frozenset((contact.one, contact.other)) not in asked:
+            if contact.kind in ("part-to-part", "part-to-pole") and one[column] and frozenset((contact.one, contact.other)) not in asked:
                 continue
             body: Body = {
                 "kind": contact.kind,
@@ -167,13 +167,24 @@ class BenchWords:
         surely, perhaps = self.solved.bench_tied.tolist()
         return ["yes" if one else "perhaps" if other else "no" for one, other in zip(surely, perhaps, strict=True)]
 
-    def live(self, state: int) -> list[str]:
-        """Parts of instruments that are joined to a pole in a state."""
-        return [name for name, live in self._live.items() if live[state]]
+    def live(self, state: int, *, surely: bool = False) -> list[str]:
+        """Parts of instruments that are joined to a pole in a state, or may be."""
+        return [name for name, live in self._live.items() if live[0 if surely else 1][state]]
 
     @cached_property
-    def _live(self) -> dict[str, list[bool]]:
+    def _live(self) -> dict[str, list[list[bool]]]:
         return {name: live.tolist() for name, live in self.solved.live_parts.items() if live.any()}
+
+    def _live_contacts(self) -> list[Contact]:
+        """Every live part with both poles of the supply that it is live from."""
+        told = list(self.told_states.values())
+        return [
+            Contact("part-to-pole", name, pole)
+            for supply in self.solved.bench.supplies
+            for name, live in self.solved.live_at.get(supply.id, {}).items()
+            if live[1, told].any()
+            for pole in (supply.l1, supply.l2)
+        ]
 
     @property
     def voltage(self) -> str:
@@ -250,7 +261,8 @@ class BenchWords:
         )
         fresh = [name for name in self.live(1) if name not in self.live(0)]
         if fresh:
-            text += " " + self.texts.planned["live"].format(parts=", ".join(fresh), voltage=self.voltage)
+            words = "live" if set(fresh) <= set(self.live(1, surely=True)) else "live-perhaps"
+            text += " " + self.texts.planned[words].format(parts=", ".join(fresh), voltage=self.voltage)
         return {
             "id": link.id,
             "kind": link.kind,

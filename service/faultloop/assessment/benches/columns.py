@@ -62,11 +62,16 @@ def _contact(solved: SolvedBench, supply: Supply, reference: Ints) -> Ends:
 
 
 def _reference(solved: SolvedBench, supply: Supply) -> Ints:
-    """Whether a pole of the supply, or of what is worked at elsewhere, is joined to earth; unknown where it may be."""
+    """Whether a pole of the supply, or of what is worked at elsewhere, is joined to earth, or to what may be touched."""
     names = [supply.l1, supply.l2]
     names += [of.one for of in worked_at(solved.bench) if _concerns(solved, supply, _item(solved, of.one))]
     surely, perhaps = solved.tied_at(names)
-    unsure = np.where(perhaps, Reference.UNKNOWN, Reference.FLOATING)
+    live = np.zeros((2, solved.count), np.bool_)
+    for part in solved.live_at.get(supply.id, {}).values():
+        live |= part
+    floating = np.where(live[1], Reference.PART_PERHAPS, Reference.FLOATING)
+    floating = np.where(live[0], Reference.PART_AT_POLE, floating)
+    unsure = np.where(perhaps, Reference.UNKNOWN, floating)
     return np.where(surely, Reference.EARTHED, unsure)
 
 

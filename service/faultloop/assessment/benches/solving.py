@@ -158,22 +158,33 @@ class SolvedBench:
         return np.asarray(~self.bench_tied[1], np.bool_)
 
     @cached_property
-    def live_parts(self) -> dict[str, Mask]:
-        """Parts of items that nobody works at, by name, and where they are joined to a pole without being earthed.
+    def live_at(self) -> dict[str, dict[str, Mask]]:
+        """By separated supply: parts of items that nobody works at, joined to a pole of it without being earthed.
 
-        An oscilloscope without its protective conductor, clipped to a pole, is such a part: (states,) each.
+        An oscilloscope without its protective conductor, clipped to a pole, is such a part: (2, states) each, surely and
+        by what is not known perhaps.
         """
         names = [part for part in accessible(self.bench) if not self._worked_at(part)]
         if not names or not self.bench.all_links:
             return {}
-        found = np.zeros((self.count, len(self.nodes)), np.bool_)
+        rows, found = self.count * len(self.variants), {}
         for supply in (supply for supply in self.bench.supplies if supply.kind == "separated"):
-            rows = self.count * len(self.variants)
             ways, _ = nearest_path(rows, len(self.nodes), self.branches, self.weight, self.nodes[supply.l1])
-            least = ways.reshape(self.count, len(self.variants), -1).min(axis=1)
-            found |= least < typical().tie_below.usual
-        found &= ~self.tied[1]
-        return {name: found[:, self.nodes[name]] for name in names}
+            live = (ways < typical().tie_below.usual) & ~(self.path_ohm < typical().tie_below.usual)
+            live = live.reshape(self.count, len(self.variants), -1)
+            surely, perhaps = live.all(axis=1), live.any(axis=1)
+            at = {name: self.nodes[name] for name in names}
+            found[supply.id] = {name: np.array([surely[:, node], perhaps[:, node]]) for name, node in at.items()}
+        return found
+
+    @cached_property
+    def live_parts(self) -> dict[str, Mask]:
+        """The same parts at whichever supply, by name: (2, states) each."""
+        found: dict[str, Mask] = {}
+        for parts in self.live_at.values():
+            for name, live in parts.items():
+                found[name] = live | found.get(name, np.zeros_like(live))
+        return found
 
     def _worked_at(self, part: str) -> bool:
         """Whether a part is of an item that somebody works at."""
