@@ -311,6 +311,7 @@ class PlannedLink(Codes):
     TIES = 2
     TIED_BEFORE = 3
     MAY_TIE = 4
+    SHORTS = 5
 
 
 class Current(Codes):

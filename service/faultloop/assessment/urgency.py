@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from faultloop.assessment.codes import Choice, Codes, Reading, Reference
+from faultloop.assessment.codes import Choice, Codes, PlannedLink, Reading, Reference
 from faultloop.assessment.points import Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.standing import Verdict
@@ -33,6 +33,7 @@ def urgency(points: Points, q: Quantities, verdict: Ints, defect: Flags, cleared
     level = np.full(points.count, Urgency.PLANNED, dtype=np.int64)
     level[defect & (found.barrier_failed >= 1.0)] = Urgency.URGENT
     standing = q.given.reading(Reading.NEUTRAL_EARTH_VOLTAGE).least > q.rule("touch_voltage")
+    level[points.choice(Choice.PLANNED_LINK) == PlannedLink.SHORTS] = Urgency.URGENT
     level[(lasting & (found.as_is >= 1.0)) | standing | _part_at_pole(points)] = Urgency.STOP_USE
     sustained = lasting & (found.body_ma > q.rule("sustained_ma")) & (found.time_s > LONGEST_ORDERED_S)
     level = np.where(sustained, np.maximum(level - 1, Urgency.STOP_USE), level)
@@ -45,6 +46,6 @@ def urgency(points: Points, q: Quantities, verdict: Ints, defect: Flags, cleared
 
 
 def _part_at_pole(points: Points) -> Flags:
-    """Where a part that is there to be touched stands at a pole, or may: two hands close the circuit, nothing opens it."""
+    """Where a part that is there to be touched stands at a pole, or may: two hands close the circuit, without end."""
     reference = points.choice(Choice.REFERENCE)
     return np.asarray((reference == Reference.PART_AT_POLE) | (reference == Reference.PART_PERHAPS), np.bool_)

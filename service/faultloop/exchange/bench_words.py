@@ -8,6 +8,7 @@ import numpy as np
 
 from faultloop.assessment.benches.consequences import Planned
 from faultloop.assessment.benches.contacts import MOST_PARTS_PAIRED, Contact, accessible, usual_contacts
+from faultloop.assessment.benches.joined import joined_supplies
 from faultloop.assessment.benches.network import EARTH, Link, Span, node_names
 from faultloop.assessment.benches.solving import Ends, SolvedBench
 from faultloop.assessment.benches.texts import BenchTexts
@@ -21,6 +22,7 @@ from faultloop.rules.sheets import RuleSet
 Body = dict[str, Any]
 MILLI = 1000.0
 LEAST_TOLD, LEAST_TOLD_V = 1e-6, 1e-3  # amperes, milliamperes and volts below these are rounding
+PAIRED = ("part-to-part", "part-to-pole", "across-supplies")
 ONE_NODE_V = 1.0  # parts that stand less than this apart are told as one
 
 
@@ -42,6 +44,14 @@ def _told(value: float, least: float) -> float | None:
 def short(value: float) -> str:
     """A number for a sentence."""
     return f"{value:.3g}" if abs(value) < 1e4 else f"{value:.3g}".replace("e+0", "e").replace("e+", "e")
+
+
+def ohms(value: float) -> str:
+    """A resistance with the unit that keeps its number small."""
+    for least, unit in ((1e9, "GΩ"), (1e6, "MΩ"), (1e3, "kΩ")):
+        if value >= least * (1.0 - 5e-4):
+            return f"{value / least:.3g} {unit}"
+    return f"{value:.3g} Ω"
 
 
 @dataclass(frozen=True)
@@ -68,7 +78,10 @@ class BenchWords:
 
     def span(self, span: Span, unit: str) -> str:
         """An assumed span with its unit."""
-        return f"{self.between(span.least, span.greatest)} {'Ω' if unit == 'ohm' else unit}"
+        if unit == "ohm":
+            one, other = ohms(span.least), ohms(span.greatest)
+            return one if one == other else self.texts.parts["interval"].format(least=one, greatest=other)
+        return f"{self.between(span.least, span.greatest)} {unit}"
 
     def nodes(self) -> list[Body]:
         """Every node, with the names that an item's poles have beside."""
@@ -101,8 +114,8 @@ class BenchWords:
             self.texts.parts["step"].format(step=self.step(step.kind, step.owner), node=self._name(step.to))
             for step in stands.steps
         )
-        tie = short(typical().tie_below.usual)
-        return self.texts.standing[stands.word].format(steps=steps, ohm=short(stands.path_ohm), tie=tie)
+        tie = ohms(self.solved.tie_ohm)
+        return self.texts.standing[stands.word].format(steps=steps, ohm=ohms(stands.path_ohm), tie=tie)
 
     def _steps(self, stands: Standing) -> list[Body]:
         return [{"through": self.step(step.kind, step.owner), "of": step.owner, "to": step.to} for step in stands.steps]
@@ -123,9 +136,22 @@ class BenchWords:
         """What sentences quote of a link."""
         return {"kind": self.texts.links[link.kind], "id": link.id, "one": link.one, "other": self._name(link.other)}
 
+    def _contacts_across(self) -> list[Contact]:
+        """Poles of two supplies that conductors join: nobody knows how their transformers are poled to each other."""
+        solved, told = self.solved, list(self.told_states.values())
+        return [
+            Contact("across-supplies", one, pole)
+            for supply in solved.bench.supplies
+            if supply.kind == "separated"
+            for other, joined in joined_supplies(solved, supply).items()
+            if supply.id < other and joined[1, told].any()
+            for one in (supply.l1, supply.l2)
+            for pole in (solved.bench.supply(other).l1, solved.bench.supply(other).l2)
+        ]
+
     def contacts(self) -> list[Body]:
         """The usual contacts and those asked for; pairs of parts that are one node are no contact."""
-        told = [*usual_contacts(self.solved.bench), *self._live_contacts()]
+        told = [*usual_contacts(self.solved.bench), *self._live_contacts(), *self._contacts_across()]
         asked = {frozenset((of.one, of.other)) for of in self.asked}
         usual = {frozenset((of.one, of.other)) for of in told}
         told += [Contact("asked", of.one, of.other) for of in self.asked if frozenset((of.one, of.other)) not in usual]
@@ -134,7 +160,7 @@ class BenchWords:
         # Parts that stand together in every state that is told are one part.
         one: list[bool] = np.all(between < ONE_NODE_V, axis=0).tolist()
         for column, contact in enumerate(told):
-            if contact.kind in ("part-to-part", "part-to-pole") and one[column] and frozenset((contact.one, contact.other)) not in asked:
+            if contact.kind in PAIRED and one[column] and frozenset((contact.one, contact.other)) not in asked:
                 continue
             body: Body = {
                 "kind": contact.kind,
@@ -252,17 +278,25 @@ class BenchWords:
         before = self._same_contact(contact, 0)
         current = (float(planned.current_a.least), float(planned.current_a.greatest))
         light = planned.code == PlannedLink.TIES and after <= self.lines()["let-go"]
+        amperes = planned.code == PlannedLink.SHORTS
+        scale = 1.0 if amperes else MILLI
         text = self.texts.planned["ties-lightly" if light else words[planned.code]].format(
             **self.link_words(link),
-            current=self.between(current[0] * MILLI, current[1] * MILLI),
+            current=self.between(current[0] * scale, current[1] * scale),
             contact=self.contact_short(contact),
             after=short(after),
             before=short(before),
         )
+        if amperes:
+            told = [of["text"] for of in devices if of["current_a"]["greatest"] >= typical().short_circuit_from.usual]
+            text = " ".join([text, *told])
+        elif planned.code == PlannedLink.KEEPS:
+            text += self._raised()
         fresh = [name for name in self.live(1) if name not in self.live(0)]
         if fresh:
-            words = "live" if set(fresh) <= set(self.live(1, surely=True)) else "live-perhaps"
-            text += " " + self.texts.planned[words].format(parts=", ".join(fresh), voltage=self.voltage)
+            sure = set(fresh) <= set(self.live(1, surely=True))
+            told_live = self.texts.planned["live" if sure else "live-perhaps"]
+            text += " " + told_live.format(parts=", ".join(fresh), voltage=self.voltage)
         return {
             "id": link.id,
             "kind": link.kind,
@@ -273,6 +307,18 @@ class BenchWords:
             "devices": devices,
             "text": text,
         }
+
+    def _raised(self) -> str:
+        """The contact that the planned link raises above a line of the rule set, if it does so to any."""
+        before, after = (self.solved.single_currents.greatest[state] * MILLI for state in (0, 1))
+        for line in sorted(self.lines().values(), reverse=True):
+            over = np.where((before <= line) & (after > line), after, 0.0)
+            if over.any():
+                contact = self.solved.singles[int(over.argmax())]
+                numbers = {"before": short(float(before[over.argmax()])), "after": short(float(over.max()))}
+                told = self.texts.planned["raises"]
+                return " " + told.format(contact=self.contact_short(contact), limit=f"{line:g}", **numbers)
+        return ""
 
     def _same_contact(self, contact: Contact, state: int) -> float:
         column = self.solved.singles.index(contact)

@@ -12,7 +12,7 @@ from faultloop.assessment.benches.contacts import Contact, accessible, usual_con
 from faultloop.assessment.benches.network import EARTH, Bench, Link, Span, node_names
 from faultloop.assessment.benches.states import UNPLUGGED, States, states_of
 from faultloop.assessment.benches.typical import typical
-from faultloop.assessment.benches.wires import Part, Variant, Wire, meanings, present, wires_of
+from faultloop.assessment.benches.wires import OWN, Part, Variant, Wire, meanings, present, wires_of
 from faultloop.electrical.circuit_elements import Phasor
 from faultloop.electrical.circuit_wirings import EARTH as EARTH_NODE
 from faultloop.electrical.circuit_wirings import (
@@ -54,6 +54,7 @@ class SolvedBench:
     path_ohm: Array
     following: Places
     body_ohm: float
+    tie_ohm: float
 
     @property
     def count(self) -> int:
@@ -125,7 +126,7 @@ class SolvedBench:
     @cached_property
     def tied(self) -> Mask:
         """Whether a node is tied by some way to earth: surely, and by what is not known perhaps, (2, states, nodes)."""
-        ways = self.path_ohm.reshape(self.count, len(self.variants), -1) < typical().tie_below.usual
+        ways = self.path_ohm.reshape(self.count, len(self.variants), -1) < self.tie_ohm
         return np.array([ways.all(axis=1), ways.any(axis=1)])
 
     def tied_at(self, names: list[str]) -> Mask:
@@ -158,23 +159,41 @@ class SolvedBench:
         return np.asarray(~self.bench_tied[1], np.bool_)
 
     @cached_property
+    def ways_to_pole(self) -> dict[str, Array]:
+        """Resistance of the best way from every node to the poles of a separated supply, (states, variants, nodes)."""
+        rows, found = self.count * len(self.variants), {}
+        for supply in (supply for supply in self.bench.supplies if supply.kind == "separated"):
+            ways, _ = nearest_path(rows, len(self.nodes), self.branches, self.weight, self.nodes[supply.l1])
+            found[supply.id] = ways.reshape(self.count, len(self.variants), -1)
+        return found
+
+    @cached_property
+    def shorts(self) -> Mask:
+        """Whether a link carries so much that it shorts a source, by whatever is not known, (states,)."""
+        links = np.array([wire.kind == "link" for wire in self.wires], np.bool_)
+        if not links.any():
+            return np.zeros(self.count, np.bool_)
+        much = links[self.wire_of] & (np.abs(self.branch_current()) >= typical().short_circuit_from.usual)
+        found = np.zeros(self.count, np.bool_)
+        found[self.branches.network[much] // len(self.variants)] = True
+        return found
+
+    @cached_property
     def live_at(self) -> dict[str, dict[str, Mask]]:
         """By separated supply: parts of items that nobody works at, joined to a pole of it without being earthed.
 
-        An oscilloscope without its protective conductor, clipped to a pole, is such a part: (2, states) each, surely and
-        by what is not known perhaps.
+        An oscilloscope without its protective conductor, clipped to a pole, is such a part: (2, states) each, surely,
+        and by what is not known perhaps.
         """
         names = [part for part in accessible(self.bench) if not self._worked_at(part)]
         if not names or not self.bench.all_links:
             return {}
-        rows, found = self.count * len(self.variants), {}
-        for supply in (supply for supply in self.bench.supplies if supply.kind == "separated"):
-            ways, _ = nearest_path(rows, len(self.nodes), self.branches, self.weight, self.nodes[supply.l1])
-            live = (ways < typical().tie_below.usual) & ~(self.path_ohm < typical().tie_below.usual)
-            live = live.reshape(self.count, len(self.variants), -1)
-            surely, perhaps = live.all(axis=1), live.any(axis=1)
+        found, earthed = {}, self.path_ohm.reshape(self.count, len(self.variants), -1) < self.tie_ohm
+        for supply, ways in self.ways_to_pole.items():
+            live = np.asarray((ways < self.tie_ohm) & ~earthed, np.bool_)
+            surely, perhaps = np.logical_and.reduce(live, axis=1), np.logical_or.reduce(live, axis=1)
             at = {name: self.nodes[name] for name in names}
-            found[supply.id] = {name: np.array([surely[:, node], perhaps[:, node]]) for name, node in at.items()}
+            found[supply] = {name: np.array([surely[:, node], perhaps[:, node]]) for name, node in at.items()}
         return found
 
     @cached_property
@@ -241,18 +260,21 @@ def variants_of(bench: Bench) -> tuple[Variant, ...]:
     others += [span for item in bench.items for span in (item.filter_nf, item.ground_nf)]
     spans = [supply.source_ohm for supply in bench.supplies] + [item.load_ohm for item in bench.items]
     parts = open_resistances(bench)
-    found = [Variant("nominal", reversed=False)]
+    found = [Variant("nominal")]
     if parts or _any_open([*windings, *others, *spans]):
-        found += [Variant(level, reversed=False) for level in ("low", "high")]
+        found += [Variant(level) for level in ("low", "high")]
     if _any_open(windings) and _any_open(others):
-        found += [Variant("high", reversed=False, least=which) for which in ("windings", "others")]
+        found += [Variant("high", least=which) for which in ("windings", "others")]
     chosen = (some for size in range(1, len(parts) + 1) for some in combinations(parts, size))
-    found += [Variant("high", reversed=False, against=frozenset(some)) for some in chosen]
-    found += [Variant("high", reversed=False, chassis=joined) for joined in _chassis(bench)]
+    found += [Variant("high", against=frozenset(some)) for some in chosen]
+    found += [Variant("high", chassis=joined) for joined in _chassis(bench)]
     unscreened = [supply.interwinding_nf for supply in bench.supplies if not supply.screen]
     poled = any(windings is not None and windings.greatest > 0.0 for windings in unscreened)
-    turns = (False, True) if poled else (False,)
-    return tuple(replace(variant, reversed=turned) for turned in turns for variant in found)
+    separated = [supply.id for supply in bench.supplies if supply.kind == "separated"]
+    # How two transformers are poled to each other is not known either: each is turned by itself, and all together.
+    several = [frozenset([supply]) for supply in separated] if len(separated) > 1 else []
+    turns = [frozenset[str](), *([frozenset([*separated, OWN])] if poled else []), *several]
+    return tuple(replace(variant, turned=turned) for turned in turns for variant in found)
 
 
 def _any_open(spans: Sequence[Span | None]) -> bool:
@@ -268,8 +290,11 @@ def _chassis(bench: Bench) -> list[frozenset[tuple[str, str]]]:
     return found
 
 
-def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
-    """Solve a bench in all its states; the order of its parts is of no account."""
+def solve_bench(bench: Bench, body_ohm: float, tie_ma: float) -> SolvedBench:
+    """Solve a bench in all its states; the order of its parts is of no account.
+
+    A way to earth ties where the highest voltage of a source drives more through it than `tie_ma`.
+    """
     bench = bench.in_order()
     states, variants = states_of(bench), variants_of(bench)
     wires = wires_of(bench, variants)
@@ -285,7 +310,8 @@ def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
     weight = np.where(conductive, 1.0 / np.abs(branches.admittance), np.inf)
     path_ohm, following = nearest_path(rows, len(nodes), branches, weight)
     return SolvedBench(
-        bench, states, variants, nodes, wires, wire_of, branches, wired, weight, path_ohm, following, body_ohm
+        bench, states, variants, nodes, wires, wire_of, branches, wired, weight, path_ohm, following, body_ohm,
+        1000.0 * max(supply.voltage_v for supply in bench.supplies) / tie_ma,
     )  # fmt: skip
 
 

@@ -31,14 +31,14 @@ Siemens = tuple[complex, ...]
 
 @dataclass(frozen=True, slots=True)
 class Variant:
-    """One choice of what is not known: unknown admittances at an end, and how the primary is poled.
+    """One choice of what is not known: unknown admittances at an end, and which transformers are poled the other way.
 
     Earthing both poles by resistances can lower the current of a contact with either, so resistances are put at either
     end each by itself: those ``against`` the level at the other one.
     """
 
     level: str
-    reversed: bool
+    turned: frozenset[str] = frozenset()
     against: frozenset[Part] = frozenset()
     # What stands at its least while all other capacitances are at their greatest: "windings", or "others" than these.
     least: str = ""
@@ -164,7 +164,10 @@ def _put_supply(wiring: Wiring, supply: Supply, *holds: Holds) -> None:
         wiring.put("neutral", supply.id, supply.l2, EARTH, tuple(2.0 * y for y in source), *holds)
         return
     source = wiring.reactance(supply.source_ohm) if supply.kind == "separated" else source
-    wiring.put("source", supply.id, supply.l1, supply.l2, source, *holds, emf=supply.voltage_v)
+    ways = _poled(wiring, supply, source)
+    for siemens, emf in zip(ways, (supply.voltage_v, -supply.voltage_v), strict=True):
+        if any(siemens):
+            wiring.put("source", supply.id, supply.l1, supply.l2, siemens, *holds, emf=emf)
     if supply.cable_nf is not None:
         for pole in (supply.l1, supply.l2):
             wiring.put("cable", supply.id, pole, EARTH, wiring.capacitance(supply.cable_nf), *holds)
@@ -179,12 +182,19 @@ def _put_windings(wiring: Wiring, supply: Supply, interwinding_nf: Span, *holds:
         if supply.screen:
             wiring.put("interwinding", supply.id, pole, EARTH, half, *holds)
             continue
-        live = tuple(y if variant.reversed is turned else 0j for y, variant in zip(half, wiring.variants, strict=True))
-        dead = tuple(y - other for y, other in zip(half, live, strict=True))
-        # Turned over, the other pole lies beside the live end, and the primary stands against the secondary in phase.
-        emf = -supply.primary_v if turned else supply.primary_v
-        wiring.put("interwinding", supply.id, pole, EARTH, live, *holds, emf=emf)
+        live, dead = _poled(wiring, supply, half) if not turned else reversed(_poled(wiring, supply, half))
+        wiring.put("interwinding", supply.id, pole, EARTH, live, *holds, emf=supply.primary_v)
         wiring.put("interwinding", supply.id, pole, EARTH, dead, *holds)
+
+
+def _poled(wiring: Wiring, supply: Supply, siemens: Siemens) -> tuple[Siemens, Siemens]:
+    """Admittances where a transformer stands as it is drawn, and where it is poled the other way.
+
+    Turned over, the other pole lies beside the live end of the primary, and the secondary's voltage is turned too.
+    """
+    turned = [supply.id in variant.turned for variant in wiring.variants]
+    as_drawn = tuple(0j if over else y for y, over in zip(siemens, turned, strict=True))
+    return as_drawn, tuple(y if over else 0j for y, over in zip(siemens, turned, strict=True))
 
 
 def _put_item(wiring: Wiring, at: int, item: Item) -> None:
