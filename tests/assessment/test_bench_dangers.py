@@ -7,7 +7,7 @@ import pytest
 
 from faultloop import bench_network
 from tests.assessment.bench_bodies import CLIP, Body, small
-from tests.assessment.test_benches import change, contact, greatest, node
+from tests.assessment.test_benches import change, contact, everything_said, greatest, node, refused
 
 OMEGA = 2.0 * math.pi * 50.0
 
@@ -301,3 +301,50 @@ def test_a_path_ties_by_the_current_that_it_lets_flow(ohm: float, tied: str, ver
     assert checks["contact-current"] == verdict
     assert greatest(answer, "iso.L1") == pytest.approx(current_ma, rel=3e-2)
     assert (answer["urgency"] == "stop-use") is (ohm < 23e3)
+
+
+# ---- refusals --------------------------------------------------------------------------------------------------
+
+
+def test_a_class_that_does_not_fit_its_supply_is_refused_at_its_place() -> None:
+    body = small()
+    body["items"][0]["protection_class"] = "III"
+    ((place, words),) = refused(body)
+    assert place == "items/0/protection_class"
+    assert "iso has 230 V" in words
+    body = small()
+    body["supplies"].append({"id": "cell", "kind": "battery"})
+    body["items"][1]["fed_by"] = "cell"
+    ((place, words),) = refused(body)
+    assert place == "items/1/protection_class"
+    assert "a battery has none" in words
+
+
+def test_refusals_show_what_is_expected_where_it_is() -> None:
+    body = small()
+    body["supplies"][1]["kind"] = "isolated"
+    ((place, words),) = refused(body)
+    assert place == "supplies/1/kind"
+    assert "separated, earthed or battery" in words
+    body = small()
+    del body["supplies"][1]["kind"]
+    ((place, words),) = refused(body)
+    assert place == "supplies/1/kind"
+    body = small()
+    body["items"][0]["id"] = "my set"
+    ((place, words),) = refused(body)
+    assert place == "items/0/id"
+    assert "letters, digits, - and _, with no space" in words
+    body = small()
+    body["supplies"][0] |= {"overcurrent_device": "B16", "residual_current_device": "30 mA"}
+    found = dict(refused(body))
+    assert '"characteristic": "B"' in found["supplies/0/earthed/overcurrent_device"]
+    assert '"residual_type": "A"' in found["supplies/0/earthed/residual_current_device"]
+
+
+def test_resistances_are_written_with_the_unit_that_keeps_them_short() -> None:
+    mat = {"id": "mat", "kind": "antistatic-mat", "from": "set.L2", "to": "earth"}
+    said = everything_said(bench_network(small(links=[mat], planned_link={**CLIP, "kind": "other"})))
+    assert "0.1 Ω to 1 MΩ" in said
+    assert "e+0" not in said
+    assert "1e6" not in said

@@ -32,6 +32,7 @@ class TypicalTable(Sheet):
     short_circuit_from: Typical
     joined_directly: Typical
     mains: Typical
+    extra_low_dc: Typical
     residual_stays: Typical
     links: dict[str, Typical]
 
