@@ -207,7 +207,7 @@ def test_a_change_that_helps_says_what_stays_failed() -> None:
     off = change(answer, "remove-link", "clip")
     assert off["helps"]
     assert off["verdict"] == "fail"
-    assert "Not met even so: One item, or several that are bonded and not earthed" in off["text"]
+    assert "Not met or not settled even so: One item, or several that are bonded and not earthed" in off["text"]
     helping = [found["verdict"] in ("fail", "undetermined") for found in answer["changes"] if found["floats"]]
     assert helping == sorted(helping)
 

@@ -27,6 +27,7 @@ from faultloop.electrical.circuit_wirings import (
 from faultloop.electrical.measurement import Array, Mask
 
 NO_CURRENT_A, ROUNDING = 1e-9, 1e-6
+MOST_CHASSIS_POLED = 4
 
 
 @dataclass(frozen=True, slots=True)
@@ -271,10 +272,17 @@ def variants_of(bench: Bench) -> tuple[Variant, ...]:
     unscreened = [supply.interwinding_nf for supply in bench.supplies if not supply.screen]
     poled = any(windings is not None and windings.greatest > 0.0 for windings in unscreened)
     separated = [supply.id for supply in bench.supplies if supply.kind == "separated"]
-    # How two transformers are poled to each other is not known either: each is turned by itself, and all together.
-    several = [frozenset([supply]) for supply in separated] if len(separated) > 1 else []
-    turns = [frozenset[str](), *([frozenset([*separated, OWN])] if poled else []), *several]
-    return tuple(replace(variant, turned=turned) for turned in turns for variant in found)
+    # How two transformers are poled to each other is not known either: all are turned together, and each by itself.
+    over = [frozenset[str](), *([frozenset([*separated, OWN])] if poled else [])]
+    found_over = [replace(variant, turned=turned) for turned in over for variant in found]
+    several = separated if len(separated) > 1 else []
+    few = [variant for variant in found if len(variant.chassis) != 1] if _many_chassis(bench) else found
+    return (*found_over, *(replace(variant, turned=frozenset([one])) for one in several for variant in few))
+
+
+def _many_chassis(bench: Bench) -> bool:
+    """Whether so many chassis are open that of several supplies' polings only all of them together are solved."""
+    return sum(item.chassis_open for item in bench.items) > MOST_CHASSIS_POLED
 
 
 def _any_open(spans: Sequence[Span | None]) -> bool:
