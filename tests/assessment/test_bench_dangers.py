@@ -156,6 +156,9 @@ def test_of_two_supplies_that_a_link_joins_the_poles_may_stand_at_the_sum() -> N
     items = [found for found in answer["findings"] if found["check"] == "separated-items"]
     assert [found["value"] for found in items] == [2.0, 2.0]
     assert {found["verdict"] for found in items} == {"fail"}
+    perhaps = bench_network(two_supplies({"id": "lead", "kind": "other", "from": "iso.L2", "to": "second.L2"}))
+    unsettled = {found["reason"] for found in perhaps["findings"] if found["check"] == "separated-items"}
+    assert unsettled == {"items-unknown"}
     apart = bench_network(two_supplies())
     assert not any(found["kind"] == "across-supplies" for found in apart["contacts"])
     assert {f["verdict"] for f in apart["findings"] if f["check"] == "separated-items"} == {"pass-with-conditions"}

@@ -8,8 +8,8 @@ from typing import Any
 from pydantic import ValidationError
 from pydantic_core import InitErrorDetails, PydanticCustomError
 
-from faultloop.assessment.benches.solving import open_resistances
 from faultloop.assessment.benches.typical import typical
+from faultloop.assessment.benches.variants import open_resistances
 from faultloop.exchange.bench_mapping import mapped_bench
 from faultloop.exchange.bench_networks import (
     MOST_OPEN_RESISTANCES,

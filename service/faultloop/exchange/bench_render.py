@@ -20,7 +20,8 @@ from faultloop.exchange.bench_devices import devices_seen
 from faultloop.exchange.bench_judging import JudgedBench, input_digest_of, judged_bench
 from faultloop.exchange.bench_mapping import MappedBench, mapped_bench
 from faultloop.exchange.bench_networks import BenchRequest
-from faultloop.exchange.bench_words import BenchWords, Body, ends_body, short
+from faultloop.exchange.bench_numbers import Body, ends_body, short
+from faultloop.exchange.bench_words import BenchWords
 
 
 def _words(codes: type[Codes]) -> dict[int, str]:
