@@ -17,6 +17,7 @@ from tests.api.client import problem, served
 from tests.api.test_batches import migrated
 from tests.api.test_openapi import SCHEMAS, reachable
 from tests.assessment.bench_bodies import CLIP, Body, clip_case, fixture, small
+from tests.assessment.test_bench_dangers import television
 
 URL = "/v1/bench-networks"
 DOCUMENT = json.loads((Path(__file__).parents[2] / "openapi" / "openapi.json").read_text(encoding="utf-8"))
@@ -105,6 +106,21 @@ def test_refusals_point_at_the_field(tmp_path: Path) -> None:
         (error,) = problem(await client.post(URL, json=body), 422)["errors"]
         assert error["pointer"] == "/supplies/1/interwinding_capacitance"
         assert "no such field here" in error["detail"]
+        body = small()
+        body["supplies"][1]["kind"] = "isolated"
+        body["supplies"][0]["overcurrent_device"] = "B16"
+        body["items"][0]["id"] = "my set"
+        told = {of["pointer"]: of["detail"] for of in problem(await client.post(URL, json=body), 422)["errors"]}
+        assert told["/supplies/1/kind"] == "a supply is separated, earthed or battery"
+        assert '"rated_current_a": 16' in told["/supplies/0/overcurrent_device"]
+        assert "no space" in told["/items/0/id"]
+        body = small()
+        del body["supplies"][1]["kind"]
+        (error,) = problem(await client.post(URL, json=body), 422)["errors"]
+        assert error["pointer"] == "/supplies/1/kind"
+        body = television(live_chassis="none")
+        answer = (await client.post(URL, json=body)).json()
+        assert answer["planned_link"]["ties"] == "no"
 
     run(tmp_path, work)
 

@@ -106,14 +106,15 @@ def bodies(draw: st.DrawFn, *, planned: bool | None = None) -> Body:
     fed = draw(supplies())
     items = []
     for at in range(draw(st.integers(1, 4))):
+        feed = draw(st.sampled_from([supply["id"] for supply in fed]))
         ground = draw(st.sampled_from([None, "earthed", "floating", "resistance"]))
-        live = draw(st.sampled_from([None, None, "L1", "L2"]))
+        live = draw(st.sampled_from([None, None, "none", "L1", "L2"]))
         items.append(
             _without_nothing(
                 {
                     "id": f"item{at}",
-                    "fed_by": draw(st.sampled_from([supply["id"] for supply in fed])),
-                    "protection_class": draw(st.sampled_from(["I", "II", "III"])),
+                    "fed_by": feed,
+                    "protection_class": draw(st.sampled_from(["II", "III"] if feed == "cell" else ["I", "II"])),
                     "role": draw(st.sampled_from([None, "under-test", "instrument"])),
                     "filter_capacitance_nf": draw(amounts),
                     "signal_ground": None if ground is None else {"kind": ground},

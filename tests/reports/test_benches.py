@@ -141,3 +141,35 @@ def test_fifteen_items_stand_apart() -> None:
     for at, (x, y, across, down) in enumerate(cards):
         for x2, y2, _, _ in cards[at + 1 :]:
             assert abs(x - x2) >= across or abs(y - y2) >= down
+
+
+def test_a_live_chassis_a_feed_and_an_instrument_are_drawn() -> None:
+    body = small()
+    body["items"][0] |= {"protection_class": "II", "signal_ground": {"kind": "floating"}, "live_chassis": "L2"}
+    root, _ = drawn(body)
+    assert len(marked(root, "path", "live-chassis")) == 1
+    (feed,) = marked(root, "g", "feed")
+    assert feed.findtext(SVG + "title") == "wall → iso"
+    assert "class I, instrument" in texts(root)
+    assert "class II, worked at" in texts(root)
+    del body["items"][0]["live_chassis"]
+    root, _ = drawn(body)
+    assert len(marked(root, "path", "live-chassis-perhaps")) == 2
+    body["items"][0]["live_chassis"] = "none"
+    root, _ = drawn(body)
+    assert not marked(root, "path", "live-chassis") + marked(root, "path", "live-chassis-perhaps")
+
+
+def test_long_ids_stand_clear_of_the_currents_and_are_told_in_full() -> None:
+    long = "W" * 40
+    body = small()
+    body["items"][0]["id"] = long
+    body["links"] = [{**CLIP, "to": f"{long}.L2"}]
+    body["contacts"] = [{"from": f"{long}.case", "to": "iso.L1"}]
+    root, _ = drawn(body)
+    shown = marked(root, "text", "contact")
+    assert shown
+    for text in shown:
+        assert float(text.get("x", "")) + width(text.text or "", 11) <= 360 - 12 - width("230\u00a0mA", 11)
+    titles = [text.findtext(SVG + "title") or "" for text in shown]
+    assert any(title.startswith(f"{long}.case – ") or f"– {long}.case" in title for title in titles)

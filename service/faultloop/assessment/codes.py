@@ -265,6 +265,9 @@ class Reference(Codes):
     UNKNOWN = 0
     FLOATING = 1
     EARTHED = 2
+    # Nothing is earthed, but a part of an instrument that anybody may touch stands at a pole, or may stand there.
+    PART_AT_POLE = 3
+    PART_PERHAPS = 4
 
 
 class Windings(Codes):
@@ -308,6 +311,7 @@ class PlannedLink(Codes):
     TIES = 2
     TIED_BEFORE = 3
     MAY_TIE = 4
+    SHORTS = 5
 
 
 class Current(Codes):

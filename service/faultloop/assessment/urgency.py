@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from faultloop.assessment.codes import Codes, Reading
+from faultloop.assessment.codes import Choice, Codes, PlannedLink, Reading, Reference
 from faultloop.assessment.points import Flags, Ints, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.assessment.standing import Verdict
@@ -33,7 +33,8 @@ def urgency(points: Points, q: Quantities, verdict: Ints, defect: Flags, cleared
     level = np.full(points.count, Urgency.PLANNED, dtype=np.int64)
     level[defect & (found.barrier_failed >= 1.0)] = Urgency.URGENT
     standing = q.given.reading(Reading.NEUTRAL_EARTH_VOLTAGE).least > q.rule("touch_voltage")
-    level[(lasting & (found.as_is >= 1.0)) | standing] = Urgency.STOP_USE
+    level[points.choice(Choice.PLANNED_LINK) == PlannedLink.SHORTS] = Urgency.URGENT
+    level[(lasting & (found.as_is >= 1.0)) | standing | _part_at_pole(points)] = Urgency.STOP_USE
     sustained = lasting & (found.body_ma > q.rule("sustained_ma")) & (found.time_s > LONGEST_ORDERED_S)
     level = np.where(sustained, np.maximum(level - 1, Urgency.STOP_USE), level)
     met = np.full(points.count, Urgency.NOTE)
@@ -42,3 +43,9 @@ def urgency(points: Points, q: Quantities, verdict: Ints, defect: Flags, cleared
         met = np.where(q.insulated.fault_standing, Urgency.PLANNED, met)
     level = np.where(verdict == Verdict.PASS_WITH_CONDITIONS, met, level)
     return np.where(verdict == Verdict.PASS, Urgency.NONE, level)
+
+
+def _part_at_pole(points: Points) -> Flags:
+    """Where a part that is there to be touched stands at a pole, or may: two hands close the circuit, without end."""
+    reference = points.choice(Choice.REFERENCE)
+    return np.asarray((reference == Reference.PART_AT_POLE) | (reference == Reference.PART_PERHAPS), np.bool_)

@@ -72,7 +72,9 @@ class ContactState(Answer):
 class ContactBody(Answer):
     """A contact of one hand, with earth, or of two."""
 
-    kind: Literal["pole-to-earth", "part-to-earth", "pole-to-pole", "part-to-part", "asked"]
+    kind: Literal[
+        "pole-to-earth", "part-to-earth", "pole-to-pole", "part-to-part", "part-to-pole", "across-supplies", "asked"
+    ]
     hands: Literal["one", "two"]
     one: Text = Field(alias="from")
     other: Text = Field(alias="to")
@@ -122,7 +124,7 @@ class BenchState(Answer):
     worst_contact: WorstContact
     worst_contact_current_ma: IntervalBody
     live_parts: list[Text] = Field(
-        description="Parts of items that nobody works at, which are joined to a pole and not earthed"
+        description="Parts of items that nobody works at, which are joined to a pole, or may be, and not earthed"
     )
 
 
@@ -133,7 +135,8 @@ class ChangedState(BenchState):
     change: ChangeWord
     subject: Text | None = None
     helps: bool = Field(
-        description="Whether it floats then, a contact of one hand is within the limit, and no instrument becomes live"
+        description="Whether it floats then, a contact of one hand is within the limit, no instrument becomes live, and"
+        " the verdict gets no worse; what fails even so the text says"
     )
     text: Text
 

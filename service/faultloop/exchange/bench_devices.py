@@ -7,7 +7,7 @@ from faultloop.assessment.benches.solving import Ends
 from faultloop.assessment.benches.texts import BenchTexts
 from faultloop.assessment.benches.typical import typical
 from faultloop.exchange.bench_networks import BatteryBenchSupply, BenchRequest, BenchSupply, EarthedBenchSupply
-from faultloop.exchange.bench_words import Body, ends_body, short
+from faultloop.exchange.bench_numbers import Body, ends_body, short
 from faultloop.exchange.mapping import overcurrent_device
 from faultloop.protection.band import Band
 from faultloop.protection.catalogue import guaranteed

@@ -8,11 +8,14 @@ from typing import Any
 from pydantic import ValidationError
 from pydantic_core import InitErrorDetails, PydanticCustomError
 
-from faultloop.assessment.benches.solving import open_resistances
+from faultloop.assessment.benches.typical import typical
+from faultloop.assessment.benches.variants import open_resistances
 from faultloop.exchange.bench_mapping import mapped_bench
 from faultloop.exchange.bench_networks import (
     MOST_OPEN_RESISTANCES,
+    BatteryBenchSupply,
     BenchContact,
+    BenchItem,
     BenchLink,
     BenchRequest,
     EarthedBenchSupply,
@@ -70,11 +73,13 @@ def _feeding(request: BenchRequest) -> Iterator[Fault]:
         if item.fed_by not in kinds:
             known = ", ".join(sorted(kinds))
             yield ("items", at, "fed_by"), "unknown_supply", f"no supply has this id; there are: {known}"
+        else:
+            yield from _class_fits(request, at, item)
         ground = item.signal_ground
         if ground is not None and ground.kind != "resistance" and ground.resistance_ohm is not None:
             told = "a resistance goes with the kind resistance; here leave it out"
             yield ("items", at, "signal_ground", "resistance_ohm"), "resistance_not_asked", told
-        if item.chassis_resistance_ohm is not None and item.live_chassis is None:
+        if item.chassis_resistance_ohm is not None and item.live_chassis not in ("L1", "L2"):
             told = "say by live_chassis which pole the chassis is joined to"
             yield ("items", at, "chassis_resistance_ohm"), "chassis_not_live", told
     for at, supply in enumerate(request.supplies):
@@ -83,6 +88,30 @@ def _feeding(request: BenchRequest) -> Iterator[Fault]:
             earthed = ", ".join(s.id for s in request.supplies if isinstance(s, EarthedBenchSupply)) or "none yet"
             told = f"the primary is fed from an earthed supply of this bench; there are: {earthed}"
             yield ("supplies", at, "fed_from"), "unknown_supply", told
+
+
+def _class_fits(request: BenchRequest, at: int, item: BenchItem) -> Iterator[Fault]:
+    """Class III takes extra-low voltage only, and class I has an earth contact, which no battery has."""
+    supply = next(supply for supply in request.supplies if supply.id == item.fed_by)
+    place: Loc = ("items", at, "protection_class")
+    limits = request.rule_set.rules.disconnection
+    most = limits.touch_voltage_ac.value
+    if isinstance(supply, BatteryBenchSupply):
+        most = typical().extra_low_dc.usual
+        volts = supply.nominal_voltage_v or 0.0
+        if item.protection_class == "I":
+            told = "class I means a protective conductor, and a battery has none; say II or III, or what feeds it"
+            yield place, "class_does_not_fit", told
+    elif isinstance(supply, SeparatedBenchSupply):
+        volts = supply.nominal_voltage_between_lines_v
+    else:
+        volts = supply.nominal_voltage_to_earth_v
+    if item.protection_class == "III" and volts > most:
+        told = (
+            f"class III takes extra-low voltage, at most {most:g} V, and {supply.id} has {volts:g} V; "
+            "state the class of what is plugged in there, such as II of its power supply"
+        )
+        yield place, "class_does_not_fit", told
 
 
 def names_of(request: BenchRequest) -> list[str]:

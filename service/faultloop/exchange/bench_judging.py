@@ -8,8 +8,11 @@ import numpy as np
 from faultloop.assessment.benches.columns import put_columns
 from faultloop.assessment.benches.network import Supply
 from faultloop.assessment.benches.solving import SolvedBench
+from faultloop.assessment.checks import CHECKS
 from faultloop.assessment.points import from_rows
-from faultloop.assessment.verdicts import decide
+from faultloop.assessment.standing import Verdict
+from faultloop.assessment.texts import texts
+from faultloop.assessment.verdicts import Outcome, decide
 from faultloop.digests import canonical_bytes, sha256
 from faultloop.exchange.bench_mapping import stated
 from faultloop.exchange.bench_networks import BenchItem, BenchRequest, BenchTransformer, SeparatedBenchSupply
@@ -29,6 +32,7 @@ class JudgedBench:
     verdict: list[int]
     urgency: list[int]
     answers: dict[int, list[Body]]
+    unmet: list[list[str]]
     supplies: list[Supply]
 
 
@@ -55,8 +59,18 @@ def judged_bench(request: BenchRequest, solved: SolvedBench, input_digest: str, 
         outcome.verdict.reshape(shape).min(axis=1).tolist(),
         outcome.urgency.reshape(shape).min(axis=1).tolist(),
         {base: told},
+        _unmet(outcome, shape, language),
         [supply for supply in solved.bench.supplies if supply.kind == "separated"],
     )
+
+
+def _unmet(outcome: Outcome, shape: tuple[int, int], language: str) -> list[list[str]]:
+    """Of every state the titles of the checks that fail or are undetermined at any of its supplies."""
+    verdict, counts = outcome.findings.verdict.reshape(-1, *shape), outcome.findings.counts.reshape(-1, *shape)
+    # A finding that decides nothing, as another of its group does, is left out.
+    unmet = np.logical_or.reduce((verdict <= Verdict.UNDETERMINED) & counts, axis=2)
+    titles = [texts(language).checks[check.id].title for check in CHECKS]
+    return [[titles[at] for at in np.flatnonzero(unmet[:, state])] for state in range(shape[0])]
 
 
 def _point(request: BenchRequest, body: SeparatedBenchSupply) -> AssessmentRequest:

@@ -1,6 +1,6 @@
 """A bench in words -> the graph that is solved, with what had to be assumed."""
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Any
 
 from faultloop.assessment.benches.network import Bench, Item, Link, Span, Stored, Supply
@@ -65,9 +65,35 @@ def mapped_bench(request: BenchRequest) -> MappedBench:
         tuple(_link(found, link, table) for link in sorted(request.links, key=lambda link: link.id)),
         None if request.planned_link is None else _link(found, request.planned_link, table),
     ).in_order()
+    _leave_chassis_open(found, request)
     if not any(isinstance(supply, EarthedBenchSupply) for supply in request.supplies):
         found.span(None, "outlet", "", table.mains, asks=False)
     return found
+
+
+def _leave_chassis_open(found: MappedBench, request: BenchRequest) -> None:
+    """Note items worked at of which nobody said whether a pole is joined to their chassis."""
+    bench, silent = found.bench, {item.id for item in request.items if item.live_chassis is None}
+    direct = typical().joined_directly
+    joined = Span(direct.least, direct.usual, direct.greatest, stated=False)
+    items = []
+    for item in bench.items:
+        chassis_open = item.id in silent and _may_be_live(bench, item)
+        items.append(replace(item, chassis_open=chassis_open))
+        if chassis_open:
+            found.assumed.append(Assumed("live-chassis", item.id, joined, direct.unit))
+    found.bench = replace(bench, items=tuple(items))
+
+
+def _may_be_live(bench: Bench, item: Item) -> bool:
+    """Whether a chassis may be joined to a pole: of class I only a signal ground that stands off the earthed case."""
+    if not bench.under_test(item) or item.protection_class == "III" or bench.supply(item.fed_by).kind == "battery":
+        return False
+    if item.protection_class == "I":
+        return item.ground in ("floating", "resistance")
+    # The case of class II is a chassis only where somebody clips to it.
+    linked = any(item.case in (link.one, link.other) for link in bench.all_links)
+    return item.ground != "none" or linked
 
 
 def _supply(found: MappedBench, body: BenchSupply, by_id: dict[str, BenchSupply], table: TypicalTable) -> Supply:
@@ -117,7 +143,7 @@ def _item(found: MappedBench, body: BenchItem, supply: BenchSupply, table: Typic
     if body.signal_ground is not None and ground == "resistance":
         ohm = found.span(body.signal_ground.resistance_ohm, "signal-ground", body.id, table.links["antistatic-mat"])
     chassis = None
-    if body.live_chassis is not None:
+    if body.live_chassis in ("L1", "L2"):
         direct = table.joined_directly
         chassis = found.span(body.chassis_resistance_ohm, "chassis", body.id, direct, asks=False)
     return Item(
@@ -129,7 +155,7 @@ def _item(found: MappedBench, body: BenchItem, supply: BenchSupply, table: Typic
         ground=ground,
         ground_ohm=ohm,
         ground_nf=beside,
-        live_chassis=body.live_chassis,
+        live_chassis=None if body.live_chassis == "none" else body.live_chassis,
         chassis_ohm=chassis,
         load_ohm=None if body.load_resistance_ohm is None else stated(body.load_resistance_ohm),
         stored=_stored(body),

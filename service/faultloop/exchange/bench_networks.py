@@ -1,8 +1,20 @@
 """The body of a bench: supplies, the items that they feed, links between them, and a link that is planned."""
 
+import re
 from typing import Annotated, Any, Literal, Self
 
-from pydantic import BaseModel, Discriminator, Field, Tag, model_validator
+from pydantic import (
+    BaseModel,
+    BeforeValidator,
+    Discriminator,
+    Field,
+    Tag,
+    ValidationError,
+    ValidatorFunctionWrapHandler,
+    WrapValidator,
+    model_validator,
+)
+from pydantic_core import InitErrorDetails, PydanticCustomError
 
 from faultloop.exchange.fields import WHOLE, Closed, Label, number
 from faultloop.exchange.overcurrent import OvercurrentDevice
@@ -12,8 +24,39 @@ from faultloop.exchange.unearthed import CorePair
 MOST_SUPPLIES, MOST_ITEMS, MOST_LINKS, MOST_CONTACTS = 6, 16, 16, 40
 # Every choice of their ends is solved.
 MOST_OPEN_RESISTANCES = 4
+_ID = re.compile(r"[A-Za-z0-9][A-Za-z0-9_-]{0,39}")
+
+
+def _named(value: Any) -> Any:
+    if isinstance(value, str) and not _ID.fullmatch(value):
+        told = "an id is 1 to 40 letters, digits, - and _, with no space, and begins with a letter or digit"
+        raise PydanticCustomError("id_form", told)
+    return value
+
+
+def _object(shown: str) -> BeforeValidator:
+    """Of a text where an object is expected the object is shown."""
+
+    def checked(value: Any) -> Any:
+        if isinstance(value, str):
+            raise PydanticCustomError("object_expected", "an object is expected, such as {shown}", {"shown": shown})
+        return value
+
+    return BeforeValidator(checked)
+
+
+def _kind_known(value: Any, handler: ValidatorFunctionWrapHandler) -> Any:
+    """A kind of supply that there is not is told at its own place."""
+    if not isinstance(value, dict) or value.get("kind") in ("separated", "earthed", "battery"):
+        return handler(value)
+    wrong = PydanticCustomError("unknown_kind", "a supply is separated, earthed or battery")
+    fault = InitErrorDetails(type=wrong if "kind" in value else "missing", loc=("kind",), input=value.get("kind"))
+    raise ValidationError.from_exception_data("BenchSupply", [fault])
+
+
 Id = Annotated[
     str,
+    BeforeValidator(_named),
     Field(
         min_length=1,
         max_length=40,
@@ -87,6 +130,15 @@ Percent = Annotated[
 ]
 
 
+Breaker = Annotated[
+    OvercurrentDevice,
+    _object('{"kind": "miniature-circuit-breaker", "characteristic": "B", "rated_current_a": 16}'),
+]
+Residual = Annotated[
+    ResidualCurrentDevice, _object('{"residual_type": "A", "rated_residual_operating_current_ma": 30}')
+]
+
+
 class BenchTransformer(Closed):
     """The separating transformer."""
 
@@ -107,9 +159,11 @@ class SeparatedBenchSupply(Closed):
     id: Id
     kind: Literal["separated"]
     nominal_voltage_between_lines_v: Volts
-    transformer: BenchTransformer = Field(default_factory=BenchTransformer)
+    transformer: Annotated[BenchTransformer, _object('{"rated_power_va": 500}')] = Field(
+        default_factory=BenchTransformer
+    )
     cable_capacitance_to_earth_nf: Nanofarads | None = Field(default=None, description="Each pole to earth [nF]")
-    overcurrent_device: OvercurrentDevice | None = None
+    overcurrent_device: Breaker | None = None
     bonding: Literal["none", "non-earthed", "earthed"] = Field(
         description="What the outlets' earth contacts are joined to: nothing, each other only, or earth"
     )
@@ -127,8 +181,8 @@ class EarthedBenchSupply(Closed):
     id: Id
     kind: Literal["earthed"]
     nominal_voltage_to_earth_v: Volts
-    overcurrent_device: OvercurrentDevice | None = None
-    residual_current_device: ResidualCurrentDevice | None = None
+    overcurrent_device: Breaker | None = None
+    residual_current_device: Residual | None = None
     earth_fault_loop_impedance_ohm: Ohms | None = Field(default=None, description="Zs at the outlets [ohm]")
 
 
@@ -140,7 +194,11 @@ class BatteryBenchSupply(Closed):
     nominal_voltage_v: Volts | None = None
 
 
-BenchSupply = Annotated[SeparatedBenchSupply | EarthedBenchSupply | BatteryBenchSupply, Field(discriminator="kind")]
+BenchSupply = Annotated[
+    SeparatedBenchSupply | EarthedBenchSupply | BatteryBenchSupply,
+    Field(discriminator="kind"),
+    WrapValidator(_kind_known),
+]
 
 
 class SignalGround(Closed):
@@ -174,7 +232,10 @@ class BenchItem(Closed):
         default=None, description="Each line conductor to its case, or to signal ground for class II [nF]"
     )
     signal_ground: SignalGround | None = None
-    live_chassis: Literal["L1", "L2"] | None = Field(default=None, description="Pole that its chassis is joined to")
+    live_chassis: Literal["none", "L1", "L2"] | None = Field(
+        default=None,
+        description="Pole that its chassis is joined to, or none; left out it is unknown for an item worked at",
+    )
     chassis_resistance_ohm: Ohms | None = Field(default=None, description="Between chassis and pole [ohm]")
     load_resistance_ohm: Ohms | None = Field(default=None, description="What it draws, as a resistance [ohm]")
     lead: CorePair | None = Field(default=None, description="Its flexible lead, for a second fault")

@@ -20,7 +20,8 @@ from faultloop.exchange.bench_devices import devices_seen
 from faultloop.exchange.bench_judging import JudgedBench, input_digest_of, judged_bench
 from faultloop.exchange.bench_mapping import MappedBench, mapped_bench
 from faultloop.exchange.bench_networks import BenchRequest
-from faultloop.exchange.bench_words import BenchWords, Body, ends_body, short
+from faultloop.exchange.bench_numbers import Body, ends_body, short
+from faultloop.exchange.bench_words import BenchWords
 
 
 def _words(codes: type[Codes]) -> dict[int, str]:
@@ -39,7 +40,8 @@ def solved_answer(request: BenchRequest, language: str = LANGUAGES[0]) -> tuple[
     """The solved bench beside its answer, as a drawing needs both."""
     rules = request.rule_set
     given = mapped_bench(request)
-    solved = solve_bench(given.bench, rules.rules.urgency.body_dry.value)
+    body, tie = rules.rules.urgency.body_dry.value, rules.rules.separation.contact_referenced.value
+    solved = solve_bench(given.bench, body, tie)
     judged = judged_bench(request, solved, input_digest_of(request), language)
     words = BenchWords(solved, bench_texts(language), rules.rules, request.contacts)
     return solved, _Answer(request, given, solved, judged, words).body()
@@ -98,15 +100,16 @@ class _Answer:
         }
 
     def _changes(self, states: tuple[int, ...]) -> list[Body]:
-        """Changes by what they come to: floating first, then the least worst contact, then the least intrusion."""
+        """Changes by what they come to: what floats, then what meets every check, the least contact and intrusion."""
         floats = self._solved.floats
         most = self._solved.single_currents.greatest.max(axis=1) * MILLI
 
-        def rank(state: int) -> tuple[bool, bool, float, int, str, str]:
+        def rank(state: int) -> tuple[bool, bool, bool, float, int, str, str]:
             change = self._states.every[state]
             # Nobody measures a contact current closer than to two digits; below that the lesser intrusion goes first.
             current, intrusion = float(f"{most[state]:.2g}"), self._intrusion(change)
-            return not floats[state], bool(self._words.live(state)), current, intrusion, change.kind, change.subject
+            live, unmet = bool(self._words.live(state)), bool(self._judged.unmet[state])
+            return not floats[state], live, unmet, current, intrusion, change.kind, change.subject
 
         return [self._change(at + 1, state) for at, state in enumerate(sorted(states, key=rank))]
 
@@ -122,8 +125,11 @@ class _Answer:
         contact, _, most = self._words.worst(state)
         limit = self._words.rules.separation.contact_most.value
         words = {"yes": "tied", "perhaps": "may-be-tied"}.get(told["tied"])
-        words = words or ("instrument-live" if told["live_parts"] else None)
+        if words is None and told["live_parts"]:
+            words = "instrument-live" if self._words.live(state, surely=True) else "instrument-perhaps-live"
         words = words or ("helps" if most <= limit else "floats-too-much")
+        if words == "helps" and self._judged.verdict[state] < self._judged.verdict[self._before(state)]:
+            words = "worsens"
         text = self._words.texts.outcomes[words].format(
             change=self.change_words(change),
             contact=self._words.contact_short(contact),
@@ -133,10 +139,16 @@ class _Answer:
             parts=", ".join(told["live_parts"]),
             voltage=self._words.voltage,
         )
+        if words in ("helps", "worsens") and self._judged.unmet[state]:
+            text += " " + self._words.texts.outcomes["still"].format(failed="; ".join(self._judged.unmet[state]))
         body: Body = {"rank": rank, "change": change.kind}
         if change.subject:
             body["subject"] = change.subject
         return {**body, **told, "helps": words == "helps", "text": text[:1].upper() + text[1:]}
+
+    def _before(self, state: int) -> int:
+        """The state that a change is made to."""
+        return 0 if state in self._states.found_changes else self._states.base
 
     def change_words(self, change: State) -> str:
         """A change as a sentence names it."""

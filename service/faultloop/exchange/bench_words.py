@@ -2,12 +2,12 @@
 
 from dataclasses import dataclass
 from functools import cached_property
-from typing import Any
 
 import numpy as np
 
 from faultloop.assessment.benches.consequences import Planned
 from faultloop.assessment.benches.contacts import MOST_PARTS_PAIRED, Contact, accessible, usual_contacts
+from faultloop.assessment.benches.joined import joined_supplies
 from faultloop.assessment.benches.network import EARTH, Link, Span, node_names
 from faultloop.assessment.benches.solving import Ends, SolvedBench
 from faultloop.assessment.benches.texts import BenchTexts
@@ -16,32 +16,12 @@ from faultloop.assessment.benches.typical import typical
 from faultloop.assessment.codes import PlannedLink
 from faultloop.digests import rounded
 from faultloop.exchange.bench_networks import BenchContact
+from faultloop.exchange.bench_numbers import LEAST_TOLD_V, Body, ends_body, ohms, short, volts_body
 from faultloop.rules.sheets import RuleSet
 
-Body = dict[str, Any]
 MILLI = 1000.0
-LEAST_TOLD, LEAST_TOLD_V = 1e-6, 1e-3  # amperes, milliamperes and volts below these are rounding
+PAIRED = ("part-to-part", "part-to-pole", "across-supplies")
 ONE_NODE_V = 1.0  # parts that stand less than this apart are told as one
-
-
-def ends_body(least: float, greatest: float, scale: float = 1.0) -> Body:
-    """Least and greatest of what is known at both ends."""
-    return {"least": _told(least * scale, LEAST_TOLD), "greatest": _told(greatest * scale, LEAST_TOLD)}
-
-
-def volts_body(least: float, greatest: float) -> Body:
-    """Least and greatest of a voltage."""
-    return {"least": _told(least, LEAST_TOLD_V), "greatest": _told(greatest, LEAST_TOLD_V)}
-
-
-def _told(value: float, least: float) -> float | None:
-    """A number as printed; what is left of sums that cancel is no number."""
-    return 0.0 if abs(value) < least else rounded(value)
-
-
-def short(value: float) -> str:
-    """A number for a sentence."""
-    return f"{value:.3g}" if abs(value) < 1e4 else f"{value:.3g}".replace("e+0", "e").replace("e+", "e")
 
 
 @dataclass(frozen=True)
@@ -68,7 +48,10 @@ class BenchWords:
 
     def span(self, span: Span, unit: str) -> str:
         """An assumed span with its unit."""
-        return f"{self.between(span.least, span.greatest)} {'Ω' if unit == 'ohm' else unit}"
+        if unit == "ohm":
+            one, other = ohms(span.least), ohms(span.greatest)
+            return one if one == other else self.texts.parts["interval"].format(least=one, greatest=other)
+        return f"{self.between(span.least, span.greatest)} {unit}"
 
     def nodes(self) -> list[Body]:
         """Every node, with the names that an item's poles have beside."""
@@ -101,8 +84,8 @@ class BenchWords:
             self.texts.parts["step"].format(step=self.step(step.kind, step.owner), node=self._name(step.to))
             for step in stands.steps
         )
-        tie = short(typical().tie_below.usual)
-        return self.texts.standing[stands.word].format(steps=steps, ohm=short(stands.path_ohm), tie=tie)
+        tie = ohms(self.solved.tie_ohm)
+        return self.texts.standing[stands.word].format(steps=steps, ohm=ohms(stands.path_ohm), tie=tie)
 
     def _steps(self, stands: Standing) -> list[Body]:
         return [{"through": self.step(step.kind, step.owner), "of": step.owner, "to": step.to} for step in stands.steps]
@@ -123,9 +106,22 @@ class BenchWords:
         """What sentences quote of a link."""
         return {"kind": self.texts.links[link.kind], "id": link.id, "one": link.one, "other": self._name(link.other)}
 
+    def _contacts_across(self) -> list[Contact]:
+        """Poles of two supplies that conductors join: nobody knows how their transformers are poled to each other."""
+        solved, told = self.solved, list(self.told_states.values())
+        return [
+            Contact("across-supplies", one, pole)
+            for supply in solved.bench.supplies
+            if supply.kind == "separated"
+            for other, joined in joined_supplies(solved, supply).items()
+            if supply.id < other and joined[1, told].any()
+            for one in (supply.l1, supply.l2)
+            for pole in (solved.bench.supply(other).l1, solved.bench.supply(other).l2)
+        ]
+
     def contacts(self) -> list[Body]:
         """The usual contacts and those asked for; pairs of parts that are one node are no contact."""
-        told = usual_contacts(self.solved.bench)
+        told = [*usual_contacts(self.solved.bench), *self._live_contacts(), *self._contacts_across()]
         asked = {frozenset((of.one, of.other)) for of in self.asked}
         usual = {frozenset((of.one, of.other)) for of in told}
         told += [Contact("asked", of.one, of.other) for of in self.asked if frozenset((of.one, of.other)) not in usual]
@@ -134,7 +130,7 @@ class BenchWords:
         # Parts that stand together in every state that is told are one part.
         one: list[bool] = np.all(between < ONE_NODE_V, axis=0).tolist()
         for column, contact in enumerate(told):
-            if contact.kind == "part-to-part" and one[column] and frozenset((contact.one, contact.other)) not in asked:
+            if contact.kind in PAIRED and one[column] and frozenset((contact.one, contact.other)) not in asked:
                 continue
             body: Body = {
                 "kind": contact.kind,
@@ -167,13 +163,24 @@ class BenchWords:
         surely, perhaps = self.solved.bench_tied.tolist()
         return ["yes" if one else "perhaps" if other else "no" for one, other in zip(surely, perhaps, strict=True)]
 
-    def live(self, state: int) -> list[str]:
-        """Parts of instruments that are joined to a pole in a state."""
-        return [name for name, live in self._live.items() if live[state]]
+    def live(self, state: int, *, surely: bool = False) -> list[str]:
+        """Parts of instruments that are joined to a pole in a state, or may be."""
+        return [name for name, live in self._live.items() if live[0 if surely else 1][state]]
 
     @cached_property
-    def _live(self) -> dict[str, list[bool]]:
+    def _live(self) -> dict[str, list[list[bool]]]:
         return {name: live.tolist() for name, live in self.solved.live_parts.items() if live.any()}
+
+    def _live_contacts(self) -> list[Contact]:
+        """Every live part with both poles of the supply that it is live from."""
+        told = list(self.told_states.values())
+        return [
+            Contact("part-to-pole", name, pole)
+            for supply in self.solved.bench.supplies
+            for name, live in self.solved.live_at.get(supply.id, {}).items()
+            if live[1, told].any()
+            for pole in (supply.l1, supply.l2)
+        ]
 
     @property
     def voltage(self) -> str:
@@ -241,16 +248,25 @@ class BenchWords:
         before = self._same_contact(contact, 0)
         current = (float(planned.current_a.least), float(planned.current_a.greatest))
         light = planned.code == PlannedLink.TIES and after <= self.lines()["let-go"]
+        amperes = planned.code == PlannedLink.SHORTS
+        scale = 1.0 if amperes else MILLI
         text = self.texts.planned["ties-lightly" if light else words[planned.code]].format(
             **self.link_words(link),
-            current=self.between(current[0] * MILLI, current[1] * MILLI),
+            current=self.between(current[0] * scale, current[1] * scale),
             contact=self.contact_short(contact),
             after=short(after),
             before=short(before),
         )
+        if amperes:
+            told = [of["text"] for of in devices if of["current_a"]["greatest"] >= typical().short_circuit_from.usual]
+            text = " ".join([text, *told])
+        elif planned.code == PlannedLink.KEEPS:
+            text += self._raised()
         fresh = [name for name in self.live(1) if name not in self.live(0)]
         if fresh:
-            text += " " + self.texts.planned["live"].format(parts=", ".join(fresh), voltage=self.voltage)
+            sure = set(fresh) <= set(self.live(1, surely=True))
+            told_live = self.texts.planned["live" if sure else "live-perhaps"]
+            text += " " + told_live.format(parts=", ".join(fresh), voltage=self.voltage)
         return {
             "id": link.id,
             "kind": link.kind,
@@ -261,6 +277,18 @@ class BenchWords:
             "devices": devices,
             "text": text,
         }
+
+    def _raised(self) -> str:
+        """The contact that the planned link raises above a line of the rule set, if it does so to any."""
+        before, after = (self.solved.single_currents.greatest[state] * MILLI for state in (0, 1))
+        for line in sorted(self.lines().values(), reverse=True):
+            over = np.where((before <= line) & (after > line), after, 0.0)
+            if over.any():
+                contact = self.solved.singles[int(over.argmax())]
+                numbers = {"before": short(float(before[over.argmax()])), "after": short(float(over.max()))}
+                told = self.texts.planned["raises"]
+                return " " + told.format(contact=self.contact_short(contact), limit=f"{line:g}", **numbers)
+        return ""
 
     def _same_contact(self, contact: Contact, state: int) -> float:
         column = self.solved.singles.index(contact)

@@ -74,6 +74,7 @@ def put_network(sheet: Sheet, bench: Bench, layout: Layout, answer: dict[str, An
     for at, band in enumerate(layout.bands):
         following = layout.bands[at + 1] if at + 1 < len(layout.bands) else None
         _put_band(network, band, following)
+    _put_feeds(network)
     _put_rail(network)
     links = list(enumerate(bench.all_links))
     routes = [_put_link(network, at + 1, link, planned=link is bench.planned) for at, link in links]
@@ -157,14 +158,44 @@ def _put_card(network: _Network, band: Band, card: Card) -> None:
     for line in lines:
         y += 13.5
         sheet.write(line, card.x + 9.0, y, font_size=11.5, font_weight=_BOLD)
-    words = network.told.bench["under-test" if network.bench.under_test(item) else "class"]
+    role = "under-test" if network.bench.under_test(item) else "class" if item.role is None else item.role
+    words = network.told.bench[role]
     sheet.write(words.format(protection=item.protection_class), card.x + 9.0, y + 13.0, font_size=9.5, fill=QUIET)
+    _put_chassis(network, card)
     for at, terminal in enumerate(terminals(item)):
         y = card.y + TERMINAL + STEP * at
         network.node(terminal, card.x + 15.0, y)
         part = network.told.bench["case" if terminal == item.case else "signal-ground"]
         sheet.write(part, card.x + 29.0, y - 2.0, font_size=9.5)
         sheet.write(network.potential(terminal), card.x + 29.0, y + 9.5, font_size=9.5, font_weight=_BOLD)
+
+
+def _put_chassis(network: _Network, card: Card) -> None:
+    """The joint between a pole and a live chassis, beside the card; dashed to both poles where nobody described it."""
+    item = card.item
+    poles = ("L1", "L2") if item.chassis_open else (item.live_chassis,) if item.live_chassis else ()
+    y = card.y + TERMINAL + STEP * terminals(item).index(item.chassis)
+    for at, pole in enumerate(poles):
+        x, height = drops(card)[0 if pole == "L1" else 1], card.y - 6.0 - 5.0 * at
+        side = card.x - 3.0
+        style = {"stroke_dasharray": "3 3"} if item.chassis_open else {}
+        path = f"M{number(x)} {number(height)}H{number(side)}V{number(y)}H{number(card.x + 15.0)}"
+        name = "live-chassis-perhaps" if item.chassis_open else "live-chassis"
+        put(network.sheet.sheet, "path", class_=name, d=path, fill="none", stroke=LIVE, stroke_width=1.8, **style)
+        put(network.sheet.sheet, "circle", cx=x, cy=height, r=2.6, fill=LIVE)
+
+
+def _put_feeds(network: _Network) -> None:
+    """What feeds the primary of each transformer: a line at the left edge, its arrow at the supply that is fed."""
+    heads = {band.supply.id: band.l1 - 17.0 for band in network.layout.bands if band.first}
+    fed = [supply for supply in network.bench.supplies if supply.fed_from is not None]
+    for at, supply in enumerate(fed):
+        x, begin, end = 4.0 + 2.0 * (at % 4), heads[supply.fed_from or supply.id], heads[supply.id]
+        group = put(network.sheet.sheet, "g", class_="feed")
+        put(group, "title").text = f"{supply.fed_from} \u2192 {supply.id}"
+        path = f"M{number(MARGIN - 2.0)} {number(begin)}H{number(x)}V{number(end)}H{number(MARGIN - 5.0)}"
+        put(group, "path", d=path, fill="none", stroke=QUIET, stroke_width=1.2)
+        put(group, "path", d=f"M{number(MARGIN - 1.0)} {number(end)}l-5 -3v6z", fill=QUIET)
 
 
 def _put_rail(network: _Network) -> None:

@@ -4,6 +4,7 @@ from typing import Any
 
 from faultloop.assessment.benches.network import EARTH
 from faultloop.reports.bench_symbols import PLANNED, QUIET
+from faultloop.reports.lettering import clean, shortened, width
 from faultloop.reports.scale import Axis, ampere
 from faultloop.reports.sheet import FAINT, GREY, INK, MARGIN, PAPER, PLAIN, Sheet, put
 from faultloop.reports.texts import Words
@@ -63,8 +64,7 @@ def _put_lines(sheet: Sheet, axis: Axis, top: float, bottom: float, answer: dict
 
 
 def _put_contact(sheet: Sheet, axis: Axis, y: float, contact: dict[str, Any], told: Words) -> None:
-    words = " – ".join(told.bench["earth"] if end == EARTH else end for end in (contact["from"], contact["to"]))
-    sheet.write(words, MARGIN, y + 4.0, font_size=11)
+    _put_name(sheet, y, [told.bench["earth"] if end == EARTH else end for end in (contact["from"], contact["to"])])
     states = [contact[field]["current_ma"] for field in ("as_found", "with_planned_link") if field in contact]
     places = [axis.at(max(state["greatest"] * MILLI, axis.least)) for state in states]
     put(sheet.sheet, "line", x1=LEFT, x2=axis.start + axis.length, y1=y, y2=y, stroke=FAINT, stroke_width=0.8)
@@ -80,6 +80,24 @@ def _put_contact(sheet: Sheet, axis: Axis, y: float, contact: dict[str, Any], to
     most = states[-1]["greatest"]
     current = f"{most:.3g}\u00a0mA" if most >= LEAST_SHOWN_MA else f"< {LEAST_SHOWN_MA:g}\u00a0mA"
     sheet.write(current, LEFT - 12.0, y + 4.0, font_size=11, font_weight="bold", text_anchor="end")
+
+
+def _put_name(sheet: Sheet, y: float, ends: list[str]) -> None:
+    """The two ends of a contact, shortened to stand clear of its current; in full as its title."""
+    room = LEFT - 12.0 - width("< 0.01\u00a0mA", 11 * 1.15) - 8.0 - MARGIN
+    full = " – ".join(ends)
+    half = (room - width(" – ", 11)) / 2.0
+    shown = full if width(full, 11) <= room else " – ".join(_cut(ends, half))
+    text = put(sheet.sheet, "text", class_="contact", x=MARGIN, y=y + 4.0, font_size=11)
+    text.text = clean(shown)
+    if shown != full:
+        put(text, "title").text = clean(full)
+
+
+def _cut(ends: list[str], half: float) -> list[str]:
+    """Both ends in the room of two halves, the one with what the other leaves."""
+    spare = [max(0.0, half - width(end, 11)) for end in ends]
+    return [shortened(end, 11, half + other) for end, other in zip(ends, reversed(spare), strict=True)]
 
 
 def _put_arrow(sheet: Sheet, begin: float, end: float, y: float) -> None:

@@ -42,6 +42,16 @@ def wrapped(text: str, size: float, room: float) -> list[str]:
     return [*lines, line] if line else lines
 
 
+def shortened(text: str, size: float, room: float) -> str:
+    """The text, cut behind with a mark where it needs more than the room."""
+    text = clean(text)
+    if width(text, size) <= room:
+        return text
+    while text and width(text + "…", size) > room:
+        text = text[:-1]
+    return text.rstrip(" ") + "…"
+
+
 def _parts(word: str, size: float, room: float) -> list[str]:
     """The word, cut wherever it would be longer than a line."""
     parts, used = [""], 0.0

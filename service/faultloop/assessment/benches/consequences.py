@@ -40,7 +40,7 @@ def planned_link(solved: SolvedBench) -> Planned | None:
     surely, perhaps = solved.bench_tied
     tied = PlannedLink.TIED_BEFORE if surely[0] else PlannedLink.TIES
     unsure = np.where(perhaps, PlannedLink.MAY_TIE, PlannedLink.KEEPS)
-    return Planned(current, np.where(surely, tied, unsure))
+    return Planned(current, np.where(solved.shorts, PlannedLink.SHORTS, np.where(surely, tied, unsure)))
 
 
 def seen(solved: SolvedBench, state: int) -> list[Seen]:
@@ -67,7 +67,14 @@ def _wires(solved: SolvedBench, supply: str, *kinds: str) -> list[int]:
 
 def _source(solved: SolvedBench, supply: Supply) -> tuple[list[int], list[float]]:
     wires = _wires(solved, supply.id, "source")
-    return wires, [1.0] * len(wires)
+    shares = [1.0] * len(wires)
+    # What a transformer gives its supply gives too, by the ratio of its windings.
+    for other in solved.bench.supplies:
+        if other.fed_from == supply.id:
+            behind = _wires(solved, other.id, "source")
+            wires += behind
+            shares += [solved.wires[at].emf_v / other.primary_v for at in behind]
+    return wires, shares
 
 
 def _residual(solved: SolvedBench, supply: Supply) -> tuple[list[int], list[float]]:

@@ -77,6 +77,7 @@ class Item:
     ground_ohm: Span | None = None
     ground_nf: Span | None = None
     live_chassis: Literal["L1", "L2"] | None = None
+    chassis_open: bool = False
     chassis_ohm: Span | None = None
     load_ohm: Span | None = None
     stored: Stored | None = None

@@ -2,7 +2,6 @@
 
 from dataclasses import dataclass
 from functools import cached_property
-from itertools import combinations
 
 import numpy as np
 from numpy.typing import NDArray
@@ -11,7 +10,8 @@ from faultloop.assessment.benches.contacts import Contact, accessible, usual_con
 from faultloop.assessment.benches.network import EARTH, Bench, Link, node_names
 from faultloop.assessment.benches.states import UNPLUGGED, States, states_of
 from faultloop.assessment.benches.typical import typical
-from faultloop.assessment.benches.wires import Part, Variant, Wire, meanings, present, wires_of
+from faultloop.assessment.benches.variants import variants_of
+from faultloop.assessment.benches.wires import Variant, Wire, meanings, present, wires_of
 from faultloop.electrical.circuit_elements import Phasor
 from faultloop.electrical.circuit_wirings import EARTH as EARTH_NODE
 from faultloop.electrical.circuit_wirings import (
@@ -53,6 +53,7 @@ class SolvedBench:
     path_ohm: Array
     following: Places
     body_ohm: float
+    tie_ohm: float
 
     @property
     def count(self) -> int:
@@ -124,7 +125,7 @@ class SolvedBench:
     @cached_property
     def tied(self) -> Mask:
         """Whether a node is tied by some way to earth: surely, and by what is not known perhaps, (2, states, nodes)."""
-        ways = self.path_ohm.reshape(self.count, len(self.variants), -1) < typical().tie_below.usual
+        ways = self.path_ohm.reshape(self.count, len(self.variants), -1) < self.tie_ohm
         return np.array([ways.all(axis=1), ways.any(axis=1)])
 
     def tied_at(self, names: list[str]) -> Mask:
@@ -157,22 +158,51 @@ class SolvedBench:
         return np.asarray(~self.bench_tied[1], np.bool_)
 
     @cached_property
-    def live_parts(self) -> dict[str, Mask]:
-        """Parts of items that nobody works at, by name, and where they are joined to a pole without being earthed.
+    def ways_to_pole(self) -> dict[str, Array]:
+        """Resistance of the best way from every node to the poles of a separated supply, (states, variants, nodes)."""
+        rows, found = self.count * len(self.variants), {}
+        for supply in (supply for supply in self.bench.supplies if supply.kind == "separated"):
+            ways, _ = nearest_path(rows, len(self.nodes), self.branches, self.weight, self.nodes[supply.l1])
+            found[supply.id] = ways.reshape(self.count, len(self.variants), -1)
+        return found
 
-        An oscilloscope without its protective conductor, clipped to a pole, is such a part: (states,) each.
+    @cached_property
+    def shorts(self) -> Mask:
+        """Whether a link carries so much that it shorts a source, by whatever is not known, (states,)."""
+        links = np.array([wire.kind == "link" for wire in self.wires], np.bool_)
+        if not links.any():
+            return np.zeros(self.count, np.bool_)
+        much = links[self.wire_of] & (np.abs(self.branch_current()) >= typical().short_circuit_from.usual)
+        found = np.zeros(self.count, np.bool_)
+        found[self.branches.network[much] // len(self.variants)] = True
+        return found
+
+    @cached_property
+    def live_at(self) -> dict[str, dict[str, Mask]]:
+        """By separated supply: parts of items that nobody works at, joined to a pole of it without being earthed.
+
+        An oscilloscope without its protective conductor, clipped to a pole, is such a part: (2, states) each, surely,
+        and by what is not known perhaps.
         """
         names = [part for part in accessible(self.bench) if not self._worked_at(part)]
         if not names or not self.bench.all_links:
             return {}
-        found = np.zeros((self.count, len(self.nodes)), np.bool_)
-        for supply in (supply for supply in self.bench.supplies if supply.kind == "separated"):
-            rows = self.count * len(self.variants)
-            ways, _ = nearest_path(rows, len(self.nodes), self.branches, self.weight, self.nodes[supply.l1])
-            least = ways.reshape(self.count, len(self.variants), -1).min(axis=1)
-            found |= least < typical().tie_below.usual
-        found &= ~self.tied[1]
-        return {name: found[:, self.nodes[name]] for name in names}
+        found, earthed = {}, self.path_ohm.reshape(self.count, len(self.variants), -1) < self.tie_ohm
+        for supply, ways in self.ways_to_pole.items():
+            live = np.asarray((ways < self.tie_ohm) & ~earthed, np.bool_)
+            surely, perhaps = np.logical_and.reduce(live, axis=1), np.logical_or.reduce(live, axis=1)
+            at = {name: self.nodes[name] for name in names}
+            found[supply] = {name: np.array([surely[:, node], perhaps[:, node]]) for name, node in at.items()}
+        return found
+
+    @cached_property
+    def live_parts(self) -> dict[str, Mask]:
+        """The same parts at whichever supply, by name: (2, states) each."""
+        found: dict[str, Mask] = {}
+        for parts in self.live_at.values():
+            for name, live in parts.items():
+                found[name] = live | found.get(name, np.zeros_like(live))
+        return found
 
     def _worked_at(self, part: str) -> bool:
         """Whether a part is of an item that somebody works at."""
@@ -209,35 +239,11 @@ def _flowing(current: Phasor) -> Phasor:
     return np.where(np.abs(current) < NO_CURRENT_A, 0.0, current)
 
 
-def open_resistances(bench: Bench) -> list[Part]:
-    """Resistances of links, signal grounds and chassis that are known only between two ends."""
-    parts = [("signal-ground", item.id, item.ground_ohm) for item in bench.items]
-    parts += [("chassis", item.id, item.chassis_ohm) for item in bench.items]
-    parts += [("link", link.id, link.ohm) for link in bench.all_links]
-    return sorted((kind, owner) for kind, owner, span in parts if span is not None and span.open)
+def solve_bench(bench: Bench, body_ohm: float, tie_ma: float) -> SolvedBench:
+    """Solve a bench in all its states; the order of its parts is of no account.
 
-
-def variants_of(bench: Bench) -> tuple[Variant, ...]:
-    """What is solved beside the nominal: both ends of all that is not known, and the primary poled either way.
-
-    Of resistances that are not known every choice of ends is solved, with all capacitances at their greatest.
+    A way to earth ties where the highest voltage of a source drives more through it than `tie_ma`.
     """
-    spans = [span for supply in bench.supplies for span in (supply.source_ohm, supply.cable_nf, supply.interwinding_nf)]
-    spans += [span for item in bench.items for span in (item.filter_nf, item.ground_nf, item.load_ohm)]
-    parts = open_resistances(bench)
-    found = [("nominal", frozenset[Part]())]
-    if parts or any(span is not None and span.open for span in spans):
-        found += [("low", frozenset()), ("high", frozenset())]
-    chosen = (some for size in range(1, len(parts) + 1) for some in combinations(parts, size))
-    found += [("high", frozenset(some)) for some in chosen]
-    unscreened = [supply.interwinding_nf for supply in bench.supplies if not supply.screen]
-    poled = any(windings is not None and windings.greatest > 0.0 for windings in unscreened)
-    turns = (False, True) if poled else (False,)
-    return tuple(Variant(level, turned, against) for turned in turns for level, against in found)
-
-
-def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
-    """Solve a bench in all its states; the order of its parts is of no account."""
     bench = bench.in_order()
     states, variants = states_of(bench), variants_of(bench)
     wires = wires_of(bench, variants)
@@ -253,7 +259,8 @@ def solve_bench(bench: Bench, body_ohm: float) -> SolvedBench:
     weight = np.where(conductive, 1.0 / np.abs(branches.admittance), np.inf)
     path_ohm, following = nearest_path(rows, len(nodes), branches, weight)
     return SolvedBench(
-        bench, states, variants, nodes, wires, wire_of, branches, wired, weight, path_ohm, following, body_ohm
+        bench, states, variants, nodes, wires, wire_of, branches, wired, weight, path_ohm, following, body_ohm,
+        1000.0 * max(supply.voltage_v for supply in bench.supplies) / tie_ma,
     )  # fmt: skip
 
 

@@ -13,7 +13,7 @@ class Typical(Sourced):
     least: float
     usual: float
     greatest: float
-    unit: Literal["nF", "ohm", "%", "V", "1"]
+    unit: Literal["nF", "ohm", "%", "V", "A", "1"]
 
 
 class TypicalTable(Sheet):
@@ -29,9 +29,10 @@ class TypicalTable(Sheet):
     earth_loop: Typical
     protective_conductor: Typical
     differential_probe: Typical
-    tie_below: Typical
+    short_circuit_from: Typical
     joined_directly: Typical
     mains: Typical
+    extra_low_dc: Typical
     residual_stays: Typical
     links: dict[str, Typical]
 

@@ -31,15 +31,19 @@ Siemens = tuple[complex, ...]
 
 @dataclass(frozen=True, slots=True)
 class Variant:
-    """One choice of what is not known: unknown admittances at an end, and how the primary is poled.
+    """One choice of what is not known: unknown admittances at an end, and which transformers are poled the other way.
 
     Earthing both poles by resistances can lower the current of a contact with either, so resistances are put at either
     end each by itself: those ``against`` the level at the other one.
     """
 
     level: str
-    reversed: bool
+    turned: frozenset[str] = frozenset()
     against: frozenset[Part] = frozenset()
+    # What stands at its least while all other capacitances are at their greatest: "windings", or "others" than these.
+    least: str = ""
+    # Items whose chassis nobody described, with the pole that it is joined to here; all others stand apart.
+    chassis: frozenset[tuple[str, str]] = frozenset()
 
     def ohm(self, span: Span, part: Part | None = None) -> float:
         """A resistance; of parts that stand against the level it is the other end."""
@@ -93,10 +97,16 @@ class Wiring:
         """Admittance of a transformer's impedance in each variant, taken as leakage: it makes no contact smaller."""
         return tuple(-1j * y for y in self.resistance(span))
 
-    def capacitance(self, span: Span, share: float = 1.0) -> Siemens:
+    def capacitance(self, span: Span, share: float = 1.0, sort: str = "others") -> Siemens:
         """Admittance of a capacitance in each variant."""
         ends = {"low": span.least, "nominal": span.nominal, "high": span.greatest}
-        return tuple(complex(0.0, self.omega * ends[variant.level] * share * 1e-9) for variant in self.variants)
+        levels = ("low" if variant.least == sort else variant.level for variant in self.variants)
+        return tuple(complex(0.0, self.omega * ends[level] * share * 1e-9) for level in levels)
+
+    def perhaps(self, item: Item, which: str) -> Siemens:
+        """Admittance between a pole and a chassis of which nobody said whether it is joined to one."""
+        joined = 1.0 / typical().joined_directly.usual
+        return tuple(complex(joined) if (item.id, which) in variant.chassis else 0j for variant in self.variants)
 
     def put(
         self,
@@ -154,7 +164,10 @@ def _put_supply(wiring: Wiring, supply: Supply, *holds: Holds) -> None:
         wiring.put("neutral", supply.id, supply.l2, EARTH, tuple(2.0 * y for y in source), *holds)
         return
     source = wiring.reactance(supply.source_ohm) if supply.kind == "separated" else source
-    wiring.put("source", supply.id, supply.l1, supply.l2, source, *holds, emf=supply.voltage_v)
+    ways = _poled(wiring, supply, source)
+    for siemens, emf in zip(ways, (supply.voltage_v, -supply.voltage_v), strict=True):
+        if any(siemens):
+            wiring.put("source", supply.id, supply.l1, supply.l2, siemens, *holds, emf=emf)
     if supply.cable_nf is not None:
         for pole in (supply.l1, supply.l2):
             wiring.put("cable", supply.id, pole, EARTH, wiring.capacitance(supply.cable_nf), *holds)
@@ -164,15 +177,24 @@ def _put_supply(wiring: Wiring, supply: Supply, *holds: Holds) -> None:
 
 def _put_windings(wiring: Wiring, supply: Supply, interwinding_nf: Span, *holds: Holds) -> None:
     """Half of the windings' capacitance at each pole: to the screen, else to the primary's ends, poled either way."""
-    half = wiring.capacitance(interwinding_nf, 0.5)
+    half = wiring.capacitance(interwinding_nf, 0.5, "windings")
     for pole, turned in ((supply.l1, False), (supply.l2, True)):
         if supply.screen:
             wiring.put("interwinding", supply.id, pole, EARTH, half, *holds)
             continue
-        live = tuple(y if variant.reversed is turned else 0j for y, variant in zip(half, wiring.variants, strict=True))
-        dead = tuple(y - other for y, other in zip(half, live, strict=True))
+        live, dead = _poled(wiring, supply, half) if not turned else reversed(_poled(wiring, supply, half))
         wiring.put("interwinding", supply.id, pole, EARTH, live, *holds, emf=supply.primary_v)
         wiring.put("interwinding", supply.id, pole, EARTH, dead, *holds)
+
+
+def _poled(wiring: Wiring, supply: Supply, siemens: Siemens) -> tuple[Siemens, Siemens]:
+    """Admittances where a transformer stands as it is drawn, and where it is poled the other way.
+
+    Turned over, the other pole lies beside the live end of the primary, and the secondary's voltage is turned too.
+    """
+    turned = [supply.id in variant.turned for variant in wiring.variants]
+    as_drawn = tuple(0j if over else y for y, over in zip(siemens, turned, strict=True))
+    return as_drawn, tuple(y if over else 0j for y, over in zip(siemens, turned, strict=True))
 
 
 def _put_item(wiring: Wiring, at: int, item: Item) -> None:
@@ -185,6 +207,9 @@ def _put_item(wiring: Wiring, at: int, item: Item) -> None:
         if item.filter_nf is not None:
             for pole in (l1, l2):
                 wiring.put("filter", item.id, pole, item.filtered_to, wiring.capacitance(item.filter_nf), here)
+        if item.chassis_open:
+            for which, pole in (("L1", l1), ("L2", l2)):
+                wiring.put("chassis", item.id, pole, item.chassis, wiring.perhaps(item, which), here)
         if item.live_chassis is not None and item.chassis_ohm is not None:
             pole = l1 if item.live_chassis == "L1" else l2
             wiring.put(

@@ -7,7 +7,7 @@ from faultloop.assessment.points import Flags, Points
 from faultloop.assessment.quantities import Quantities
 from faultloop.electrical.measurement import Interval
 
-REASONS = (*COMPARISON, "ties-and-nothing-clears", "ties-through-resistance", "tied-before", "may-tie")
+REASONS = (*COMPARISON, "ties-and-nothing-clears", "ties-through-resistance", "tied-before", "may-tie", "shorts")
 
 
 def _applies(points: Points, _: Quantities) -> Flags:
@@ -19,6 +19,7 @@ def _judge(points: Points, q: Quantities) -> Judged:
     planned, limit = points.choice(Choice.PLANNED_LINK), q.rule("separation_contact_referenced")
     ends = (Number.LINK_LEAST_MA, Number.LINK_GREATEST_MA, Number.LINK_MA)
     cases = Cases(REASONS)
+    cases.when(planned == PlannedLink.SHORTS, Standing.UNMET, "shorts", defect=True)
     light = (planned == PlannedLink.TIES) & (points.number(Number.CONTACT_GREATEST_MA) <= limit)
     cases.when(light, Standing.UNMET, "ties-through-resistance")
     cases.when(planned == PlannedLink.TIES, Standing.UNMET, "ties-and-nothing-clears", defect=True)

@@ -25,6 +25,8 @@ REASONS = (
     "not-shown",
     "tied-by-solution",
     "perhaps-tied-by-solution",
+    "part-at-pole",
+    "part-perhaps-at-pole",
 )
 
 
@@ -40,6 +42,8 @@ def _judge(points: Points, q: Quantities) -> Judged:
     cases = Cases(REASONS)
     cases.when(contact.solved & (reference == Reference.EARTHED), Standing.UNMET, "tied-by-solution", defect=True)
     cases.when(contact.solved & (reference == Reference.UNKNOWN), Standing.UNDETERMINED, "perhaps-tied-by-solution")
+    cases.when(reference == Reference.PART_AT_POLE, Standing.UNMET, "part-at-pole", defect=True)
+    cases.when(reference == Reference.PART_PERHAPS, Standing.UNDETERMINED, "part-perhaps-at-pole")
     cases.when(reference == Reference.EARTHED, Standing.UNMET, "pole-earthed", defect=True)
     cases.when(joined.pole_at_earth, Standing.UNMET, "pole-at-earth", defect=True)
     cases.when(joined.by_loop, Standing.UNMET, "loop-reads-earth", defect=True)
