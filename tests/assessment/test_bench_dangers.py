@@ -185,6 +185,13 @@ def two_cases(*links: Body, planned: Body | None = None) -> Body:
 BOND: Body = {"id": "bond", "kind": "bonding-lead", "from": "a.case", "to": "b.case"}
 
 
+def test_a_lead_stated_as_nothing_leaves_source_and_leads() -> None:
+    told = {f["check"]: f for f in bench_network(two_cases({**BOND, "resistance_ohm": 0}))["findings"]}
+    hair = {f["check"]: f for f in bench_network(two_cases({**BOND, "resistance_ohm": 1e-6}))["findings"]}
+    assert told["second-fault-disconnection"]["verdict"] == "pass"
+    assert told["second-fault-disconnection"]["interval"] == hair["second-fault-disconnection"]["interval"]
+
+
 @pytest.mark.parametrize("planned", [False, True])
 def test_a_lead_between_the_cases_is_the_bonding(planned: bool) -> None:
     answer = bench_network(two_cases(planned=BOND) if planned else two_cases(BOND))

@@ -234,7 +234,8 @@ class BenchItem(Closed):
     signal_ground: SignalGround | None = None
     live_chassis: Literal["none", "L1", "L2"] | None = Field(
         default=None,
-        description="Pole that its chassis is joined to, or none; left out it is unknown for an item worked at",
+        description="Pole that its chassis is joined to, or none; left out it is unknown for an item worked at,"
+        " unless its chassis is the case of class I",
     )
     chassis_resistance_ohm: Ohms | None = Field(default=None, description="Between chassis and pole [ohm]")
     load_resistance_ohm: Ohms | None = Field(default=None, description="What it draws, as a resistance [ohm]")

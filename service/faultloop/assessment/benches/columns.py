@@ -40,15 +40,14 @@ def supply_columns(solved: SolvedBench, supply: Supply) -> Columns:
     reference = _reference(solved, supply)
     contact = _contact(solved, supply, reference)
     items, class_i = (counted(solved, supply, of) for of in (list(range(len(bench.items))), exposed))
-    contacts, bonding = _bonding(solved, supply, np.asarray(contacts, np.int64))
     several = np.array([of[1] for of in joined_supplies(solved, supply).values()]).sum(axis=0) > 1
+    contacts, bonding = _bonding(solved, supply, np.asarray(contacts, np.int64), several)
     return Columns(contact, reference, items, class_i, contacts, bonding, several)
 
 
-def _bonding(solved: SolvedBench, supply: Supply, contacts: Ints) -> tuple[Ints, Interval]:
+def _bonding(solved: SolvedBench, supply: Supply, contacts: Ints, several: Mask) -> tuple[Ints, Interval]:
     """Earth contacts with what links make of them, and the resistance of a bonding by links [Ω], nan where none is."""
     contacts, ends = contacts.copy(), np.full((2, solved.count), np.nan)
-    several = np.array([of[1] for of in joined_supplies(solved, supply).values()]).sum(axis=0) > 1
     asked = (contacts == EarthContacts.UNCONNECTED) | (several & (contacts == EarthContacts.BONDED))
     for state in np.flatnonzero(asked):
         bonded = bonded_by_links(solved, supply, int(state))
@@ -140,9 +139,11 @@ def _put_bonding(points: Points, told: list[Columns]) -> None:
         np.stack([getattr(of.bonding_ohm, end) for of in told], axis=1).ravel() for end in ("greatest", "nominal")
     )
     by_links = np.isfinite(usual)
+    # A bonding stated as nothing has no width of its own.
+    percent = 100.0 * np.divide(greatest - usual, usual, out=np.zeros_like(usual), where=usual > 0.0)
     at = Reading.BONDING
     points.value[at] = np.where(by_links, usual, points.value[at])
-    points.percent[at] = np.where(by_links, 100.0 * (greatest - usual) / usual, points.percent[at])
+    points.percent[at] = np.where(by_links, percent, points.percent[at])
     points.constant[at] = np.where(by_links, 0.0, points.constant[at])
     points.bound[at] = np.where(by_links, Bound.EXACT, points.bound[at])
     points.method[at] = np.where(by_links, Method.CALCULATED, points.method[at])
